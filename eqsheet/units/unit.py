@@ -1,0 +1,46 @@
+"""A unit: symbol, dimension, factor to SI, and origin where readings in it have one."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from eqsheet.units.dimension import Dimension
+
+
+@dataclass(frozen=True, slots=True)
+class Unit:
+    """A unit, simple or compound.
+
+    Attributes
+    ----------
+    text : str
+        As written.
+    dimension : Dimension
+    factor : float
+        One of it in SI base units.
+    origin : float
+        SI value of its zero (273.15 for degC, the ambient pressure for barg); 0.0 for most.
+    reading : bool
+        Whether values in it are readings, with an origin.
+    difference : bool
+        Whether values in it can only be differences (``delta_degC``).
+    """
+
+    text: str
+    dimension: Dimension
+    factor: float
+    origin: float = 0.0
+    reading: bool = False
+    difference: bool = False
+
+    def to_si(self, value: float) -> float:
+        """SI value of `value` read in this unit, origin included."""
+        return value * self.factor + self.origin
+
+    def from_si(self, value: float) -> float:
+        """Value in this unit of the SI value of a reading."""
+        return (value - self.origin) / self.factor
+
+    def difference_from_si(self, value: float) -> float:
+        """Value in this unit of the SI value of a difference."""
+        return value / self.factor
