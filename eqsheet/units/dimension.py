@@ -16,8 +16,8 @@ class Dimension(tuple[tuple[str, Fraction], ...]):
     >>> speed = Dimension.of({"m": 1, "s": -1})
     >>> (speed * speed).text
     'm^2/s^2'
-    >>> (speed / speed).text
-    '1'
+    >>> (speed / speed).text, Dimension.of({"s": -1}).text
+    ('1', '1/s')
     """
 
     __slots__ = ()
@@ -73,11 +73,9 @@ def _text(dimension: Dimension) -> str:
     below = [_power(base, -e) for base, e in pairs if e < 0]
     if not above and not below:
         return "1"
-    if not above:
-        return "*".join(_power(base, e) for base, e in pairs)
     if not below:
         return "*".join(above)
-    return "*".join(above) + "/" + (below[0] if len(below) == 1 else "(" + "*".join(below) + ")")
+    return ("*".join(above) or "1") + "/" + (below[0] if len(below) == 1 else "(" + "*".join(below) + ")")
 
 
 DIMENSIONLESS = Dimension(())

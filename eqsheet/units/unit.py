@@ -24,6 +24,9 @@ class Unit:
         Whether values in it are readings, with an origin.
     difference : bool
         Whether values in it can only be differences (``delta_degC``).
+    sense : str
+        What the dimension does not tell: ``angle`` (rad, deg, rev), ``rotation`` (rpm, rad/s, rev/min),
+        ``frequency`` (Hz), else empty. Never changes a number; ground for a warning only.
     """
 
     text: str
@@ -32,6 +35,7 @@ class Unit:
     origin: float = 0.0
     reading: bool = False
     difference: bool = False
+    sense: str = ""
 
     def to_si(self, value: float) -> float:
         """SI value of `value` read in this unit, origin included."""
