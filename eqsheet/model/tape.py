@@ -32,17 +32,16 @@ Operations
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from fractions import Fraction
+from functools import lru_cache
 from typing import TypeAlias
 
 from eqsheet.units.dimension import Dimension
 
 Instruction: TypeAlias = tuple[object, ...]
 
-UNARY_FUNCTIONS = (
-    "sqrt exp ln log10 sin cos tan asin acos atan sinh cosh tanh abs sign erf gamma".split()
-)
+UNARY_FUNCTIONS = "sqrt exp ln log10 sin cos tan asin acos atan sinh cosh tanh abs sign erf gamma".split()
 BINARY_FUNCTIONS = "atan2 min max hypot logmean".split()
 COMPARISONS = ("lt", "le", "eq")
 
@@ -61,6 +60,8 @@ class Literal:
         bar, Pa: a pure unit of temperature or pressure without origin) or ``plain`` (all else).
     start, end : int
         Place in the logical line.
+    unit : str
+        The unit as written, for messages; empty if none.
     """
 
     value: float
@@ -68,6 +69,7 @@ class Literal:
     kind: str
     start: int
     end: int
+    unit: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -88,6 +90,25 @@ class Tape:
     outputs: tuple[int, ...]
     quantities: int
     literals: int
+    _hash: int = field(init=False, repr=False, compare=False)
+
+    def __post_init__(self) -> None:
+        # Taken once: a tape is a key of many memories, and hashing its fractions anew costs more than a look-up.
+        content = (self.instructions, self.outputs, self.quantities, self.literals)
+        object.__setattr__(self, "_hash", hash(content))
+
+    def __hash__(self) -> int:
+        return self._hash
+
+    def __reduce__(self) -> tuple[type[Tape], tuple[object, ...]]:
+        # Hashes of strings differ between processes, so the hash is not carried over.
+        return Tape, (self.instructions, self.outputs, self.quantities, self.literals)
+
+
+@lru_cache(maxsize=1 << 16)
+def interned(tape: Tape) -> Tape:
+    """The first tape seen that equals `tape`, so that later comparisons are by identity."""
+    return tape
 
 
 @dataclass(frozen=True, slots=True)
@@ -118,6 +139,66 @@ class Formula:
     statement: int
     alike: tuple[tuple[int, int], ...] = ()
     differences: tuple[int, ...] = ()
+
+
+def extract(formula: Formula, outputs: tuple[int, ...]) -> Formula:
+    """The formula of `outputs` alone: instructions, quantities and literals they do not need are left out.
+
+    Pairs of `alike` and `differences` are kept where all they name is kept.
+    """
+    instructions = formula.tape.instructions
+    needed = [False] * len(instructions)
+    for output in outputs:
+        needed[output] = True
+    for i in range(len(instructions) - 1, -1, -1):
+        if needed[i]:
+            for operand in operands_of(instructions[i]):
+                needed[operand] = True
+    number: dict[int, int] = {}
+    kept: list[Instruction] = []
+    slots: tuple[list[int], list[int]] = ([], [])
+    for i, instruction in enumerate(instructions):
+        if not needed[i]:
+            continue
+        number[i] = len(kept)
+        operation = instruction[0]
+        if operation in ("quantity", "literal"):
+            own = slots[operation == "literal"]
+            own.append(instruction[1])  # type: ignore[arg-type]  # a leaf's operand is its slot number
+            kept.append((operation, len(own) - 1))
+        elif operation == "const":
+            kept.append(instruction)
+        else:
+            operands = operands_of(instruction)
+            rest = instruction[1 + len(operands) :]
+            kept.append((operation, *(number[a] for a in operands), *rest))
+    return Formula(
+        Tape(tuple(kept), tuple(number[o] for o in outputs), len(slots[0]), len(slots[1])),
+        tuple(formula.quantities[k] for k in slots[0]),
+        tuple(formula.literals[k] for k in slots[1]),
+        tuple(place for place, need in zip(formula.places, needed) if need),
+        formula.statement,
+        tuple((number[a], number[b]) for a, b in formula.alike if a in number and b in number),
+        tuple(number[a] for a in formula.differences if a in number),
+    )
+
+
+_LEAVES = frozenset(("quantity", "literal", "const"))
+_ONE_OPERAND = frozenset(("power", "strip", "attach"))
+
+
+def operands_of(instruction: Instruction) -> tuple[int, ...]:
+    """Indices of the instructions it takes its values from.
+
+    >>> operands_of(("add", 3, 4)), operands_of(("power", 3, Fraction(2))), operands_of(("quantity", 0))
+    ((3, 4), (3,), ())
+    """
+    operation = instruction[0]
+    if operation in _LEAVES:
+        return ()
+    if operation in _ONE_OPERAND:
+        return (instruction[1],)  # type: ignore[return-value]  # the rest is a Fraction or a Unit
+    return instruction[1:]  # type: ignore[return-value]  # all operands are indices
 
 
 class TapeBuilder:
@@ -170,7 +251,7 @@ class TapeBuilder:
 
     def tape(self, outputs: tuple[int, ...]) -> Tape:
         """The finished tape; instructions no output needs are kept (places must keep their numbers)."""
-        return Tape(tuple(self.instructions), outputs, len(self.quantities), len(self.literals))
+        return interned(Tape(tuple(self.instructions), outputs, len(self.quantities), len(self.literals)))
 
     def formula(
         self,

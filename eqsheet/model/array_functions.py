@@ -1,0 +1,114 @@
+"""The functions of the language on arrays, by the names that generated array code uses.
+
+They follow `functions` value for value, with nan and infinities where those raise. `scipy.special` is loaded
+only where a worksheet uses ``erf`` or ``gamma``.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any
+
+import numpy as np
+
+from eqsheet.model.functions import _CLOSE, _SLOPE_TERMS
+
+
+def _erf(a: Any) -> Any:
+    from scipy.special import erf
+
+    return erf(a)
+
+
+def _gamma(a: Any) -> Any:
+    from scipy.special import gamma
+
+    a = np.asarray(a, dtype=float)
+    # At its poles the function has no value, as in `math`; the library gives signed infinities at 0 only.
+    return np.where((a <= 0) & (a == np.floor(a)), np.nan, gamma(a))
+
+
+def _digamma(a: Any) -> Any:
+    from scipy.special import digamma
+
+    a = np.asarray(a, dtype=float)
+    return np.where((a <= 0) & (a == np.floor(a)), np.nan, digamma(a))
+
+
+def _log_ratio(a: Any, b: Any) -> Any:
+    y = np.divide(a - b, a + b)
+    return np.where(np.abs(y) < _CLOSE, 2.0 * np.arctanh(y), np.log(np.divide(a, b)))
+
+
+def _logmean(a: Any, b: Any) -> Any:
+    a, b = np.asarray(a, dtype=float), np.asarray(b, dtype=float)
+    mean = np.divide(a - b, _log_ratio(a, b))
+    return np.where(a == b, a, np.where((a == 0.0) | (b == 0.0), 0.0, mean))
+
+
+def _logmean_slope(a: Any, b: Any) -> Any:
+    a, b = np.asarray(a, dtype=float), np.asarray(b, dtype=float)
+    s = _log_ratio(b, a)
+    near = np.clip(s, -1.0, 1.0)
+    total: Any = 0.0
+    for n in range(_SLOPE_TERMS + 1, 1, -1):
+        total = 1.0 + total * near / (n + 1)
+    far = np.divide(np.expm1(s) - s, s * s)
+    slope = np.where(np.abs(s) > 1.0, far, total / 2.0)
+    return np.where((b == 0.0) & (a != 0.0), 0.0, slope)
+
+
+ARRAY_FUNCTIONS: dict[str, Callable[..., Any]] = {
+    "sqrt": np.sqrt,
+    "exp": np.exp,
+    "ln": np.log,
+    "log10": np.log10,
+    "sin": np.sin,
+    "cos": np.cos,
+    "tan": np.tan,
+    "asin": np.arcsin,
+    "acos": np.arccos,
+    "atan": np.arctan,
+    "sinh": np.sinh,
+    "cosh": np.cosh,
+    "tanh": np.tanh,
+    "abs": np.abs,
+    "sign": np.sign,
+    "erf": _erf,
+    "gamma": _gamma,
+    "digamma": _digamma,
+    "asinh": np.arcsinh,
+    "acosh": np.arccosh,
+    "atanh": np.arctanh,
+    "atan2": np.arctan2,
+    "min": np.minimum,
+    "max": np.maximum,
+    "hypot": np.hypot,
+    "logmean": _logmean,
+    "logmean_slope": _logmean_slope,
+    # `float_power` never takes the detour over whole numbers that `power` takes for integer arrays.
+    "pow": np.float_power,
+    "divide": np.divide,
+    "where": np.where,
+    "both": np.logical_and,
+    "either": np.logical_or,
+    "negate": np.logical_not,
+    "errstate": np.errstate,
+}
+
+# All operations of a tape that take only instructions, for the interpreter.
+ARRAY_OPERATIONS: dict[str, Callable[..., Any]] = {
+    **ARRAY_FUNCTIONS,
+    "neg": np.negative,
+    "add": np.add,
+    "sub": np.subtract,
+    "mul": np.multiply,
+    "div": np.divide,
+    "lt": np.less,
+    "le": np.less_equal,
+    "eq": np.equal,
+    "and": np.logical_and,
+    "or": np.logical_or,
+    "not": np.logical_not,
+    "if": np.where,
+}

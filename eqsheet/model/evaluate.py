@@ -1,0 +1,435 @@
+"""Tapes interpreted one instruction at a time: values, their sizes and bounds of their errors.
+
+This is the judge of a solution: it reads the tape of the statement itself, not the simplified and compiled
+one that the solver used. It never raises outside a domain; such an instruction is nan, or infinite where that
+is the limit (1/0, overflow, ln 0).
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from fractions import Fraction
+from typing import Any
+
+from eqsheet.model.functions import BINARY, UNARY, as_float
+from eqsheet.model.tape import Tape, operands_of
+
+# Half the spacing of floats around 1: the largest relative error of one rounding.
+ROUNDING = 2.0**-53
+# Below the normal range a rounding is bounded by this instead.
+_UNDERFLOW = 5e-324
+
+
+def evaluate(tape: Tape, quantities: Sequence[float], literals: Sequence[float]) -> list[Any]:
+    """Value of each instruction: a float, or a truth value for comparisons and what is made of them.
+
+    Parameters
+    ----------
+    tape : Tape
+    quantities, literals : sequence of float
+        Values in SI, in the tape's numbering.
+    """
+    values: list[Any] = []
+    instructions: tuple[tuple[Any, ...], ...] = tape.instructions
+    for instruction in instructions:
+        operation = instruction[0]
+        if operation == "quantity":
+            values.append(float(quantities[instruction[1]]))
+        elif operation == "literal":
+            values.append(float(literals[instruction[1]]))
+        elif operation == "const":
+            values.append(as_float(instruction[1]))
+        elif operation in _OF_ATTRIBUTE:
+            values.append(_OF_ATTRIBUTE[operation](values[instruction[1]], instruction[2]))
+        else:
+            values.append(_STEPS[operation](*[values[i] for i in instruction[1:]]))
+    return values
+
+
+def evaluate_arrays(tape: Tape, quantities: Sequence[Any], literals: Sequence[Any]) -> list[Any]:
+    """`evaluate` for arrays of cases: each value, quantity and literal a float or an array."""
+    import numpy as np
+
+    from eqsheet.model.array_functions import ARRAY_OPERATIONS as steps
+
+    values: list[Any] = []
+    instructions: tuple[tuple[Any, ...], ...] = tape.instructions
+    with np.errstate(all="ignore"):
+        for instruction in instructions:
+            operation = instruction[0]
+            if operation == "quantity":
+                values.append(quantities[instruction[1]])
+            elif operation == "literal":
+                values.append(literals[instruction[1]])
+            elif operation == "const":
+                values.append(as_float(instruction[1]))
+            elif operation == "power":
+                values.append(steps["pow"](values[instruction[1]], as_float(instruction[2])))
+            elif operation == "strip":
+                values.append((values[instruction[1]] - instruction[2].origin) / instruction[2].factor)
+            elif operation == "attach":
+                values.append(values[instruction[1]] * instruction[2].factor + instruction[2].origin)
+            else:
+                values.append(steps[operation](*[values[i] for i in instruction[1:]]))
+    return values
+
+
+def used_instructions(tape: Tape, values: Sequence[Any]) -> list[bool]:
+    """For each instruction, whether the outputs depend on it with the branches that `values` take."""
+    used = [False] * len(tape.instructions)
+    for i in tape.outputs:
+        used[i] = True
+    instructions: tuple[tuple[Any, ...], ...] = tape.instructions
+    for i in range(len(used) - 1, -1, -1):
+        if not used[i]:
+            continue
+        instruction = instructions[i]
+        operation = instruction[0]
+        if operation == "if":
+            _, condition, a, b = instruction
+            used[condition] = True
+            used[a if values[condition] else b] = True
+        elif operation in ("and", "or"):
+            _, a, b = instruction
+            used[a] = True
+            used[b] = used[b] or bool(values[a]) == (operation == "and")
+        else:
+            for j in operands_of(instruction):
+                used[j] = True
+    return used
+
+
+def first_nonfinite(tape: Tape, values: Sequence[Any]) -> int | None:
+    """The first instruction that is nan or infinite, of those the outputs depend on; None if there is none.
+
+    A branch not taken does not count.
+    """
+    if all(math.isfinite(value) for value in values):
+        return None
+    used = used_instructions(tape, values)
+    for i, value in enumerate(values):
+        if used[i] and not math.isfinite(value):
+            return i
+    return None
+
+
+# --- one operation ----------------------------------------------------------------------------------------
+
+
+def _guarded(function: Callable[..., float]) -> Callable[..., float]:
+    def step(*values: float) -> float:
+        try:
+            return function(*values)
+        except (ValueError, ZeroDivisionError):
+            return math.nan
+        except OverflowError:
+            return math.inf
+
+    return step
+
+
+def divide(a: float, b: float) -> float:
+    """a / b, infinite for a/0."""
+    if b == 0.0:
+        return math.nan if a == 0.0 or a != a else math.copysign(math.inf, a) * math.copysign(1.0, b)
+    return a / b
+
+
+def raised(a: float, b: float) -> float:
+    """a to the power b; nan where that is not real, infinite for a negative power of 0."""
+    try:
+        return math.pow(a, b)
+    except ValueError:
+        return math.inf if a == 0.0 else math.nan
+    except OverflowError:
+        return -math.inf if a < 0.0 and b % 2.0 == 1.0 else math.inf
+
+
+def _ln(a: float) -> float:
+    return -math.inf if a == 0.0 else UNARY["ln"].value(a)
+
+
+def _log10(a: float) -> float:
+    return -math.inf if a == 0.0 else UNARY["log10"].value(a)
+
+
+def _sinh(a: float) -> float:
+    try:
+        return math.sinh(a)
+    except OverflowError:
+        return math.copysign(math.inf, a)
+
+
+_STEPS: dict[str, Callable[..., Any]] = {
+    "neg": lambda a: -a,
+    "add": lambda a, b: a + b,
+    "sub": lambda a, b: a - b,
+    "mul": lambda a, b: a * b,
+    "div": divide,
+    "pow": raised,
+    "lt": lambda a, b: a < b,
+    "le": lambda a, b: a <= b,
+    "eq": lambda a, b: a == b,
+    "and": lambda a, b: a and b,
+    "or": lambda a, b: a or b,
+    "not": lambda a: not a,
+    "if": lambda c, a, b: a if c else b,
+    **{name: _guarded(function.value) for name, function in UNARY.items()},
+    **{name: _guarded(function) for name, function in BINARY.items()},
+    "ln": _guarded(_ln),
+    "log10": _guarded(_log10),
+    "sinh": _sinh,
+}
+_OF_ATTRIBUTE: dict[str, Callable[[float, Any], float]] = {
+    "power": lambda a, r: raised(a, as_float(r)),
+    "strip": lambda a, unit: (a - unit.origin) / unit.factor,
+    "attach": lambda a, unit: a * unit.factor + unit.origin,
+}
+
+
+# --- evidence ---------------------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True, slots=True)
+class Evidence:
+    """Values of all instructions of a tape, and how far they can be relied on.
+
+    Attributes
+    ----------
+    values : tuple
+        As from `evaluate`.
+    sizes : tuple of float
+        Size propagated through the expression; 0 for truth values. A sum has the size of its largest term, a
+        product the product of the sizes, a power the power of the size; see `evaluate_with_evidence`.
+    errors : tuple of float
+        Bound of the absolute error of each value, from the errors put in and the rounding of every operation;
+        0 for truth values. First order in the errors put in, so exact only for small ones.
+    """
+
+    values: tuple[Any, ...]
+    sizes: tuple[float, ...]
+    errors: tuple[float, ...]
+
+
+def evaluate_with_evidence(
+    tape: Tape,
+    quantities: Sequence[float],
+    literals: Sequence[float],
+    errors: Sequence[float] | None = None,
+) -> Evidence:
+    """Value, size and error bound of each instruction.
+
+    Parameters
+    ----------
+    tape : Tape
+    quantities, literals : sequence of float
+        Values in SI.
+    errors : sequence of float, optional
+        Bound of the absolute error of each quantity; zero if left out.
+
+    Notes
+    -----
+    The error bound is a running one (Higham, Accuracy and Stability of Numerical Algorithms, 2nd edition,
+    2002, chapter 3): each operation hands on the errors of its operands to first order and adds its own
+    rounding.
+
+    The size of a sum is that of its largest term, so size/|value| tells how much was cancelled. Further on
+    that ratio is carried along: product and quotient multiply the ratios of their operands, a power raises it
+    to the power's magnitude. The size of f(a) is the larger of |f(a)| and |f'(a)|*size(a), what f makes of a
+    change of a by its size. ``min``, ``max`` and ``if`` have the size of the one chosen; ``hypot`` and
+    ``logmean`` the larger one of their operands'. Sizes of dimensioned values scale with their units.
+    """
+    values = evaluate(tape, quantities, literals)
+    sizes: list[float] = []
+    bounds: list[float] = []
+    instructions: tuple[tuple[Any, ...], ...] = tape.instructions
+    for i, instruction in enumerate(instructions):
+        operation = instruction[0]
+        v = values[i]
+        if operation == "quantity":
+            size, error = abs(v), 0.0 if errors is None else abs(errors[instruction[1]])
+        elif operation == "literal":
+            size, error = abs(v), 0.0
+        elif operation == "const":
+            size, error = abs(v), 0.0 if _is_exact(instruction[1], v) else _rounding(v)
+        elif operation in _TRUTH:
+            size, error = 0.0, 0.0
+        elif operation in UNARY:
+            a = instruction[1]
+            size, error = _unary_evidence(operation, v, values[a], sizes[a], bounds[a])
+        elif operation in ("power", "strip", "attach"):
+            a = instruction[1]
+            size, error = _EVIDENCE[operation](v, values[a], sizes[a], bounds[a], instruction[2])
+        elif operation == "if":
+            _, c, a, b = instruction
+            chosen = a if values[c] else b
+            size, error = sizes[chosen], bounds[chosen]
+        elif operation == "neg":
+            size, error = sizes[instruction[1]], bounds[instruction[1]]
+        else:
+            _, a, b = instruction
+            size, error = _EVIDENCE[operation](
+                v, values[a], sizes[a], bounds[a], values[b], sizes[b], bounds[b]
+            )
+        sizes.append(size)
+        bounds.append(error)
+    return Evidence(tuple(values), tuple(sizes), tuple(bounds))
+
+
+_TRUTH = frozenset({"lt", "le", "eq", "and", "or", "not"})
+
+
+def _is_exact(constant: Any, value: float) -> bool:
+    """Whether `value` stands for the constant exactly."""
+    return not math.isfinite(value) or Fraction(constant) == Fraction(value)
+
+
+def _rounding(v: float, units: float = 1.0) -> float:
+    return units * (ROUNDING * abs(v) + _UNDERFLOW) if v else 0.0
+
+
+def _product(a: float, b: float) -> float:
+    """a*b where nothing, 0, outweighs anything, even infinity."""
+    return a * b if a and b else 0.0
+
+
+def _unary_evidence(operation: str, v: float, a: float, size: float, error: float) -> tuple[float, float]:
+    function = UNARY[operation]
+    if operation == "sqrt":
+        # The slope is infinite at 0, where the root of the size and of the error say more.
+        reach = math.sqrt(max(a - error, 0.0)) if a == a else math.nan
+        spread = divide(error, v + reach) if error else 0.0
+        return _safe_power(v, divide(size, abs(a)) if a else 1.0, 0.5, size), spread + _rounding(v)
+    if operation in ("abs", "neg"):
+        return size, error
+    try:
+        slope = abs(function.slope(a, v))
+    except (ValueError, ZeroDivisionError, OverflowError):
+        slope = math.inf
+    return max(abs(v), _product(slope, size)), _product(slope, error) + _rounding(v, function.units)
+
+
+def _safe_power(v: float, ratio: float, r: float, size: float) -> float:
+    """|v|*ratio^|r|, and size^r where the base is 0."""
+    if v == 0.0:
+        return raised(size, r) if size and r > 0 else 0.0
+    return abs(v) * raised(ratio, abs(r))
+
+
+def _of_power(v: float, a: float, size: float, error: float, exponent: Fraction) -> tuple[float, float]:
+    r = as_float(exponent)
+    slope = abs(r) * abs(raised(a, r - 1.0))
+    # The exponent itself is rounded where it is no float; its effect is |ln a| times that.
+    inexact = 0.0 if Fraction(r) == exponent or not a else abs(r * v * math.log(abs(a))) * ROUNDING
+    bound = _product(slope, error) + _rounding(v, 4.0) + inexact
+    return _safe_power(v, divide(size, abs(a)) if a else 1.0, r, size), bound
+
+
+def _of_strip(v: float, a: float, size: float, error: float, unit: Any) -> tuple[float, float]:
+    rounding = _rounding(a - unit.origin) / unit.factor if unit.origin else 0.0
+    return max(size, abs(unit.origin)) / abs(unit.factor), error / abs(unit.factor) + rounding + _rounding(v)
+
+
+def _of_attach(v: float, a: float, size: float, error: float, unit: Any) -> tuple[float, float]:
+    factor = abs(unit.factor)
+    rounding = _rounding(a * factor) if unit.origin else 0.0
+    return max(size * factor, abs(unit.origin)), error * factor + rounding + _rounding(v)
+
+
+def _of_sum(
+    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
+) -> tuple[float, float]:
+    return max(a_size, b_size), a_error + b_error + _rounding(v)
+
+
+def _of_product(
+    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
+) -> tuple[float, float]:
+    error = _product(abs(a), b_error) + _product(abs(b), a_error) + _product(a_error, b_error)
+    return _product(a_size, b_size), error + _product_rounding(v, a, b)
+
+
+def _product_rounding(v: float, a: float, b: float) -> float:
+    return _rounding(v) if v else (_UNDERFLOW if a and b else 0.0)
+
+
+def _of_quotient(
+    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
+) -> tuple[float, float]:
+    room = abs(b) - b_error
+    spread = a_error + _product(abs(v), b_error)
+    error = (spread / room if room > 0.0 else math.inf) if spread else 0.0
+    size = _product(divide(a_size, abs(b)), divide(b_size, abs(b))) if a_size else 0.0
+    return size, error + (_rounding(v) if v or not a else _UNDERFLOW)
+
+
+def _of_general_power(
+    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
+) -> tuple[float, float]:
+    log = abs(math.log(abs(a))) if a else 0.0
+    base_slope = abs(b) * abs(raised(a, b - 1.0)) if b else 0.0
+    error = _product(base_slope, a_error) + _product(abs(v) * log, b_error) + _rounding(v, 4.0)
+    size = _safe_power(v, divide(a_size, abs(a)) if a else 1.0, b, a_size)
+    return max(size, _product(abs(v) * log, b_size)), error
+
+
+def _of_smaller(
+    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
+) -> tuple[float, float]:
+    return (a_size if v == a else b_size), max(a_error, b_error)
+
+
+def _of_hypot(
+    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
+) -> tuple[float, float]:
+    if v == 0.0:
+        return 0.0, math.hypot(a_error, b_error)
+    error = (abs(a) * a_error + abs(b) * b_error) / v + _rounding(v, 2.0)
+    return max(a_size, b_size, abs(v)), error
+
+
+def _of_angle(
+    v: float, y: float, y_size: float, y_error: float, x: float, x_size: float, x_error: float
+) -> tuple[float, float]:
+    square = x * x + y * y
+    if square == 0.0:
+        return abs(v), math.inf if y_error or x_error else 0.0
+    size = (abs(x) * y_size + abs(y) * x_size) / square
+    error = (abs(x) * y_error + abs(y) * x_error) / square
+    return max(abs(v), size), error + _rounding(v, 4.0)
+
+
+def _of_logmean(
+    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
+) -> tuple[float, float]:
+    slope = _STEPS["logmean_slope"]
+    error = _product(abs(slope(a, b)), a_error) + _product(abs(slope(b, a)), b_error)
+    # Difference, sum, quotient, atanh or ln, and the last quotient round in turn.
+    return max(a_size, b_size), error + _rounding(v, 12.0)
+
+
+def _of_logmean_slope(
+    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
+) -> tuple[float, float]:
+    # Written on derivative tapes only, which are no statements to be judged.
+    return abs(v), math.inf if a_error or b_error else _rounding(v, 64.0)
+
+
+_EVIDENCE: dict[str, Callable[..., tuple[float, float]]] = {
+    "power": _of_power,
+    "strip": _of_strip,
+    "attach": _of_attach,
+    "add": _of_sum,
+    "sub": _of_sum,
+    "mul": _of_product,
+    "div": _of_quotient,
+    "pow": _of_general_power,
+    "min": _of_smaller,
+    "max": _of_smaller,
+    "hypot": _of_hypot,
+    "atan2": _of_angle,
+    "logmean": _of_logmean,
+    "logmean_slope": _of_logmean_slope,
+}

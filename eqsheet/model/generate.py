@@ -1,0 +1,382 @@
+"""Python code generated from tapes: plain floats, arrays of cases, and whole blocks.
+
+The code is put together from the operations of a tape and the numbers of its operands only; no text of a
+worksheet ever gets into it. An instruction used once is written where it is used, any other becomes a local
+variable. In code for plain floats a branch of an ``if`` is evaluated only where it is taken.
+
+Code for plain floats raises ValueError, ZeroDivisionError or OverflowError outside the domain of an operation
+(a negative number to a fractional power included; nothing ever becomes complex); `safe_function` gives nan
+and infinities instead. Code for arrays gives nan and infinities.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Sequence
+from fractions import Fraction
+from functools import lru_cache
+from typing import Any
+
+from eqsheet.model.derive import gradient
+from eqsheet.model.evaluate import evaluate
+from eqsheet.model.functions import ALL_BINARY_FUNCTIONS, ALL_UNARY_FUNCTIONS, BINARY, UNARY, as_float
+from eqsheet.model.simplify import Simplifier, needed
+from eqsheet.model.tape import Tape, operands_of
+
+Function = Callable[..., Any]
+
+MEMORY = 1 << 14
+# Deepest expression written in one piece; the compiler's own stack allows about 200 brackets.
+_DEEPEST = 24
+
+DOMAIN_ERRORS = (ValueError, ZeroDivisionError, OverflowError)
+
+
+@lru_cache(maxsize=MEMORY)
+def float_function(tape: Tape) -> Function:
+    """The tape as a function of plain floats.
+
+    Returns
+    -------
+    callable
+        ``f(q0, q1, ..., l0, l1, ...)``: all quantities, then all literals of the tape. It returns a tuple of
+        the outputs, or the output itself where there is only one. It raises one of `DOMAIN_ERRORS` where an
+        instruction needed has no value.
+    """
+    return _compiled(_head(tape), _Code(tape, _SCALAR).lines(_packed), _scalar_names())
+
+
+@lru_cache(maxsize=MEMORY)
+def safe_function(tape: Tape) -> Function:
+    """`float_function` that gives nan and infinities (those of `evaluate`) instead of raising."""
+    fast = float_function(tape)
+    count = tape.quantities
+
+    def safe(*values: float) -> Any:
+        try:
+            return fast(*values)
+        except DOMAIN_ERRORS:
+            steps = evaluate(tape, values[:count], values[count:])
+            results = tuple(steps[i] for i in tape.outputs)
+            return results[0] if len(results) == 1 else results
+
+    return safe
+
+
+@lru_cache(maxsize=MEMORY)
+def array_function(tape: Tape) -> Function:
+    """The tape as a function of arrays.
+
+    Returns
+    -------
+    callable
+        Same signature as `float_function`; each argument a float or an array, broadcast against each other.
+        An output that depends on no argument is a float. nan and infinities where there is no value; never
+        raises.
+    """
+    lines = ["with errstate(all='ignore'):", *(" " + line for line in _Code(tape, _ARRAY).lines(_packed))]
+    return _compiled(_head(tape), lines, _array_names())
+
+
+def block_functions(
+    equations: Sequence[tuple[Tape, tuple[int, ...]]], unknowns: Sequence[int]
+) -> tuple[Function, tuple[int, ...]]:
+    """All residuals of a block and its dense Jacobian as one function.
+
+    Parameters
+    ----------
+    equations : sequence of (Tape, tuple of int)
+        For each equation its tape with the outputs (left, right), and the numbers of the quantities it takes.
+    unknowns : sequence of int
+        Numbers of the quantities to solve for, in the order of x.
+
+    Returns
+    -------
+    function : callable
+        ``f(x, p)`` for sequences of floats x (the unknowns) and p, giving ``(residuals, jacobian)``: a tuple
+        of left - right for each equation, and a tuple of the derivatives row by row. Raises one of
+        `DOMAIN_ERRORS`.
+    parameters : tuple of int
+        Numbers of the known quantities at the head of p; the literals of each equation follow, equation by
+        equation.
+    """
+    place = {number: i for i, number in enumerate(unknowns)}
+    parameters: dict[int, int] = {}
+    shapes = []
+    for tape, quantities in equations:
+        slots = []
+        for number in quantities:
+            if number not in place:
+                place[number] = len(unknowns) + len(parameters)
+                parameters[number] = len(parameters)
+            slots.append(place[number])
+        shapes.append((tape, tuple(slots)))
+    return _block_function(tuple(shapes), len(unknowns), len(parameters)), tuple(parameters)
+
+
+@lru_cache(maxsize=MEMORY)
+def _block_function(shapes: tuple[tuple[Tape, tuple[int, ...]], ...], unknowns: int, known: int) -> Function:
+    writer = Simplifier()
+    roots = []
+    literals = 0
+    for tape, slots in shapes:
+        new = writer.copy(
+            tape,
+            [writer.put("quantity", k) for k in slots],
+            [writer.put("literal", literals + k) for k in range(tape.literals)],
+        )
+        literals += tape.literals
+        roots.append(writer.sub(new[tape.outputs[0]], new[tape.outputs[1]]))
+    wanted = tuple(range(unknowns))
+    slopes = [slope for root in roots for slope in gradient(writer, root, wanted)]
+    tape = writer.tape((*roots, *slopes), unknowns + known, literals)
+
+    def pair(texts: list[str]) -> str:
+        return f"{_tuple(texts[: len(roots)])},{_tuple(texts[len(roots) :])}"
+
+    lines = []
+    if unknowns:
+        lines.append(f"{_tuple([f'q{k}' for k in range(unknowns)])}=x")
+    rest = [f"q{k}" for k in range(unknowns, unknowns + known)] + [f"l{k}" for k in range(literals)]
+    if rest:
+        lines.append(f"{_tuple(rest)}=p")
+    return _compiled("x,p", lines + _Code(tape, _SCALAR).lines(pair), _scalar_names())
+
+
+# --- writing ----------------------------------------------------------------------------------------------
+
+
+def _head(tape: Tape) -> str:
+    return ",".join([f"q{k}" for k in range(tape.quantities)] + [f"l{k}" for k in range(tape.literals)])
+
+
+def _tuple(texts: list[str]) -> str:
+    return f"({','.join(texts)},)" if texts else "()"
+
+
+def _packed(texts: list[str]) -> str:
+    return texts[0] if len(texts) == 1 else _tuple(texts)
+
+
+def _compiled(head: str, lines: list[str], names: dict[str, Any]) -> Function:
+    body = "\n ".join(lines)
+    scope: dict[str, Function] = {}
+    exec(compile(f"def f({head}):\n {body}\n", "<tape>", "exec"), names, scope)
+    return scope["f"]
+
+
+@lru_cache(maxsize=1)
+def _scalar_names() -> dict[str, Any]:
+    names: dict[str, Any] = {name: UNARY[name].value for name in ALL_UNARY_FUNCTIONS}
+    names.update({name: BINARY[name] for name in ALL_BINARY_FUNCTIONS})
+    names.update({"pow": math.pow, "inf": math.inf, "nan": math.nan, "__builtins__": {}})
+    return names
+
+
+@lru_cache(maxsize=1)
+def _array_names() -> dict[str, Any]:
+    from eqsheet.model.array_functions import ARRAY_FUNCTIONS
+
+    return {**ARRAY_FUNCTIONS, "inf": math.inf, "nan": math.nan, "__builtins__": {}}
+
+
+_COMMON = {
+    "add": "({}+{})",
+    "sub": "({}-{})",
+    "mul": "({}*{})",
+    "div": "({}/{})",
+    "neg": "(-{})",
+    "lt": "({}<{})",
+    "le": "({}<={})",
+    "eq": "({}=={})",
+    "pow": "pow({},{})",
+    **{name: f"{name}({{}})" for name in ALL_UNARY_FUNCTIONS},
+    **{name: f"{name}({{}},{{}})" for name in ALL_BINARY_FUNCTIONS},
+}
+_SCALAR = {
+    **_COMMON,
+    "and": "({} and {})",
+    "or": "({} or {})",
+    "not": "(not {})",
+    "if": "({1} if {0} else {2})",
+}
+_ARRAY = {
+    **_COMMON,
+    "div": "divide({},{})",
+    "and": "both({},{})",
+    "or": "either({},{})",
+    "not": "negate({})",
+    "if": "where({},{},{})",
+}
+
+# Powers written with products and roots. In array code a plain float may reach 1/a too, so it is a call
+# there.
+_POWERS = {Fraction(2): "({0}*{0})", Fraction(3): "({0}*{0}*{0})", Fraction(1, 2): "sqrt({0})"}
+_SCALAR_POWERS = {
+    **_POWERS,
+    Fraction(-1): "(1.0/{0})",
+    Fraction(-2): "(1.0/({0}*{0}))",
+    Fraction(-1, 2): "(1.0/sqrt({0}))",
+    Fraction(3, 2): "({0}*sqrt({0}))",
+}
+_REPEATING = frozenset({Fraction(2), Fraction(3), Fraction(-2), Fraction(3, 2)})
+
+
+def _number(constant: object) -> str:
+    value = as_float(constant)
+    return repr(value) if value >= 0 else f"({value!r})"
+
+
+class _Code:
+    """The statements that compute the outputs of one tape."""
+
+    def __init__(self, tape: Tape, patterns: dict[str, str]) -> None:
+        self.tape = tape
+        self.patterns = patterns
+        self.powers = _SCALAR_POWERS if patterns is _SCALAR else _POWERS
+        self.instructions: tuple[tuple[Any, ...], ...] = tape.instructions
+        self.text: list[str] = [""] * len(self.instructions)
+        self.depth = [0] * len(self.instructions)
+
+    def lines(self, result: Callable[[list[str]], str]) -> list[str]:
+        """The statements, the last of them returning ``result(texts of the outputs)``."""
+        uses, order, guards = self._plan()
+        body: list[str] = []
+        open_guards: tuple[tuple[int, bool], ...] = ()
+        for i in order:
+            text = self._expression(i)
+            if self.depth[i] and (uses[i] > 1 or self.depth[i] > _DEEPEST):
+                name = f"t{i}"
+                guard = guards.get(i, ())
+                if guard != open_guards:
+                    body.extend(self._opening(open_guards, guard))
+                    open_guards = guard
+                body.append(f"{' ' * len(guard)}{name}={text}")
+                text = name
+                self.depth[i] = 0
+            self.text[i] = text
+        body.append(f"return {result([self.text[i] for i in self.tape.outputs])}")
+        return body
+
+    def _expression(self, i: int) -> str:
+        instruction = self.instructions[i]
+        operation = instruction[0]
+        text = self.text
+        if operation == "quantity":
+            return f"q{instruction[1]}"
+        if operation == "literal":
+            return f"l{instruction[1]}"
+        if operation == "const":
+            return _number(instruction[1])
+        if operation == "power":
+            a, r = instruction[1:]
+            self.depth[i] = self.depth[a] + 1
+            pattern = self.powers.get(r)
+            return pattern.format(text[a]) if pattern else f"pow({text[a]},{_number(r)})"
+        if operation == "strip":
+            a, unit = instruction[1:]
+            self.depth[i] = self.depth[a] + 1
+            shifted = f"({text[a]}-{_number(unit.origin)})" if unit.origin else text[a]
+            return f"({shifted}/{_number(unit.factor)})"
+        if operation == "attach":
+            a, unit = instruction[1:]
+            self.depth[i] = self.depth[a] + 1
+            scaled = f"({text[a]}*{_number(unit.factor)})"
+            return f"({scaled}+{_number(unit.origin)})" if unit.origin else scaled
+        used = operands_of(instruction)
+        self.depth[i] = 1 + max([self.depth[j] for j in used])
+        return self.patterns[operation].format(*[text[j] for j in used])
+
+    # --- what becomes a local variable, in which order, and under which conditions ------------------------
+
+    def _plan(self) -> tuple[list[int], Sequence[int], dict[int, tuple[tuple[int, bool], ...]]]:
+        instructions = self.instructions
+        wanted = needed(instructions, self.tape.outputs)
+        uses = [0] * len(instructions)
+        branching = False
+        for i in self.tape.outputs:
+            uses[i] += 1
+        for i, instruction in enumerate(instructions):
+            if not wanted[i]:
+                continue
+            operation = instruction[0]
+            branching = branching or operation in _BRANCHING
+            for j in operands_of(instruction):
+                uses[j] += 1
+            if operation == "power" and instruction[2] in _REPEATING:
+                uses[instruction[1]] += 1
+        if not (branching and self.patterns is _SCALAR):
+            return uses, [i for i, needs in enumerate(wanted) if needs], {}
+        guards = _guards(instructions, self.tape.outputs, wanted)
+        for guard in guards.values():
+            for condition, _ in guard:
+                uses[condition] += 1
+        order = _order(instructions, self.tape.outputs, guards)
+        rank = {i: n for n, i in enumerate(order)}
+        nested = {
+            i: tuple(sorted(guard, key=lambda pair: (rank[pair[0]], pair[1]))) for i, guard in guards.items()
+        }
+        return uses, order, nested
+
+    def _opening(self, old: tuple[tuple[int, bool], ...], new: tuple[tuple[int, bool], ...]) -> list[str]:
+        """The ``if`` lines that lead from the guards now open to those wanted."""
+        shared = 0
+        while shared < min(len(old), len(new)) and old[shared] == new[shared]:
+            shared += 1
+        return [
+            f"{' ' * level}if {'' if side else 'not '}{self.text[condition]}:"
+            for level, (condition, side) in list(enumerate(new))[shared:]
+        ]
+
+
+_BRANCHING = frozenset({"if", "and", "or"})
+
+
+def _branches(instruction: tuple[Any, ...]) -> list[tuple[int, tuple[int, bool] | None]]:
+    """Operands of an instruction with the condition (index, truth) under which each is used."""
+    operation = instruction[0]
+    if operation == "if":
+        condition, a, b = instruction[1:]
+        return [(condition, None), (a, (condition, True)), (b, (condition, False))]
+    if operation in ("and", "or"):
+        a, b = instruction[1:]
+        return [(a, None), (b, (a, operation == "and"))]
+    return [(j, None) for j in operands_of(instruction)]
+
+
+def _guards(
+    instructions: Sequence[tuple[Any, ...]], outputs: Sequence[int], wanted: list[bool]
+) -> dict[int, frozenset[tuple[int, bool]]]:
+    """For each instruction needed, the conditions that hold whenever it is: common to all its uses."""
+    guards: dict[int, frozenset[tuple[int, bool]]] = {i: frozenset() for i in outputs}
+    for i in range(len(instructions) - 1, -1, -1):
+        if not wanted[i]:
+            continue
+        own = guards[i]
+        for j, branch in _branches(instructions[i]):
+            here = own if branch is None else own | {branch}
+            guards[j] = guards[j] & here if j in guards else here
+    return guards
+
+
+def _order(
+    instructions: Sequence[tuple[Any, ...]],
+    outputs: Sequence[int],
+    guards: dict[int, frozenset[tuple[int, bool]]],
+) -> list[int]:
+    """An evaluation order in which an instruction follows its operands and the conditions guarding it."""
+    order: list[int] = []
+    placed: set[int] = set()
+    stack = [(i, False) for i in reversed(outputs)]
+    while stack:
+        i, ready = stack.pop()
+        if i in placed:
+            continue
+        if ready:
+            placed.add(i)
+            order.append(i)
+            continue
+        stack.append((i, True))
+        stack.extend((j, False) for j in reversed(operands_of(instructions[i])) if j not in placed)
+        stack.extend((c, False) for c in sorted((c for c, _ in guards[i]), reverse=True) if c not in placed)
+    return order
