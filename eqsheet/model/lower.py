@@ -1,0 +1,514 @@
+"""Lowers syntax expressions to tape instructions: names bound, units resolved, definitions written out.
+
+Takes: expression nodes of one statement. Gives: instructions in a `TapeBuilder`, validity conditions met on
+the way, and findings. Quantities keep provisional numbers from a `NameTable`.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, field
+from fractions import Fraction
+from typing import Any, Never
+
+from eqsheet.model.findings import Finding
+from eqsheet.model.spelling import did_you_mean
+from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
+from eqsheet.syntax import nodes as syntax
+from eqsheet.units.constants import constant, constant_names
+from eqsheet.units.dimension import DIMENSIONLESS, Dimension
+from eqsheet.units.registry import UnitProblem, UnitTable
+from eqsheet.units.unit import Unit
+
+Place2 = tuple[int, int]
+
+# Whole numbers up to this size are part of a formula's shape (the 2 in x^2/2, the 4 in 4*pi); larger ones and
+# decimals are data, so that formulas that differ only in data share one tape.
+LARGEST_STRUCTURAL_INTEGER = 12
+# Exponents beyond this size or denominator are not physics; they are computed in floats, which keeps exact
+# arithmetic on the worksheet's numbers bounded.
+LARGEST_EXACT_EXPONENT = 1000
+# A definition that calls definitions can write out to exponential size; this many instructions are refused.
+LARGEST_FORMULA = 20_000
+
+FUNCTION_NAMES = frozenset((*UNARY_FUNCTIONS, *BINARY_FUNCTIONS))
+AGGREGATE_NAMES = frozenset(("sum", "prod"))
+TRUTH_OPERATIONS = frozenset(("lt", "le", "eq", "and", "or", "not"))
+_TEMPERATURE = Dimension.of({"K": 1})
+_PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
+
+
+class NameTable:
+    """Provisional numbers for names, in order of first sight."""
+
+    def __init__(self) -> None:
+        self.numbers: dict[str, int] = {}
+        self.names: list[str] = []
+
+    def number(self, name: str) -> int:
+        """The number of `name`, given now if it has none."""
+        number = self.numbers.get(name)
+        if number is None:
+            number = self.numbers[name] = len(self.names)
+            self.names.append(name)
+        return number
+
+
+@dataclass(frozen=True)
+class Context:
+    """What expressions are read against: units in force and definitions by name."""
+
+    unit_table: UnitTable
+    definitions: Mapping[str, syntax.Statement] = field(default_factory=dict)
+
+
+@dataclass(frozen=True, slots=True)
+class ConditionMet:
+    """A validity condition written out while lowering: its instruction, guards, text and place."""
+
+    instruction: int
+    guards: tuple[tuple[int, bool], ...]
+    text: str
+    place: Place2
+
+
+class Poisoned(Exception):
+    """The expression cannot be lowered; the finding that says why is already noted."""
+
+
+class Lowering:
+    """One formula in the making.
+
+    Attributes
+    ----------
+    builder : TapeBuilder
+    findings : list of Finding
+    conditions : list of ConditionMet
+    """
+
+    def __init__(self, context: Context, names: NameTable, text: str) -> None:
+        self.builder = TapeBuilder()
+        self.findings: list[Finding] = []
+        self.conditions: list[ConditionMet] = []
+        self.first_unit: Unit | None = None
+        self._context = context
+        self._names = names
+        self.text = text
+        self._parameters: Mapping[str, int] = {}
+        self._guards: tuple[tuple[int, bool], ...] = ()
+        self._calls: tuple[str, ...] = ()
+        self._empirical = ""
+        self._fixed_place: Place2 | None = None
+        self._written_out: dict[tuple[str, tuple[int, ...]], int] = {}
+
+    # --- entry points ---------------------------------------------------------------------------------
+
+    def value(self, node: syntax.Expression) -> int:
+        """Index of the instruction for a number-valued expression.
+
+        Raises
+        ------
+        Poisoned
+            After noting a finding.
+        """
+        index = _LOWER[type(node)](self, node)
+        if self.builder.instructions[index][0] in TRUTH_OPERATIONS:
+            self._refuse(
+                "condition-as-number",
+                "a condition stands where a number is needed",
+                node,
+                help="write `if condition then a else b`",
+            )
+        return index
+
+    def truth(self, node: syntax.Expression) -> int:
+        """Index of the instruction for a condition."""
+        index = _LOWER[type(node)](self, node)
+        if self.builder.instructions[index][0] not in TRUTH_OPERATIONS:
+            self._refuse(
+                "number-as-condition",
+                "a number stands where a condition is needed",
+                node,
+                help="compare it with something: `x > 0`",
+            )
+        return index
+
+    def valid(self, conditions: tuple[syntax.Expression, ...]) -> None:
+        """Note validity conditions of the equation itself."""
+        for node in conditions:
+            place = (node.start, node.end)
+            self.conditions.append(
+                ConditionMet(self.truth(node), self._guards, self.text[node.start : node.end], place)
+            )
+
+    def try_body(self, definition: syntax.Definition) -> None:
+        """Lower a definition's body with stand-ins for its parameters, for the findings in its own line."""
+        stand_ins = {
+            p.name: self.builder.quantity(self._names.number(p.name), (p.start, p.end))
+            for p in definition.parameters
+        }
+        self._parameters = stand_ins
+        self._calls = (definition.name,)
+        for unit in (*(p.unit for p in definition.parameters), definition.result_unit):
+            if unit is not None:
+                self.resolve(unit)
+        if definition.result_unit is not None:
+            self._empirical = definition.name
+        self.value(definition.body)
+        self._empirical = ""
+        self.valid(definition.valid)
+
+    def resolve(self, unit: syntax.UnitText) -> Unit:
+        """The unit as resolved; raises Poisoned after noting why it cannot be."""
+        factors = tuple((factor.symbol, factor.exponent) for factor in unit.factors)
+        resolved = self._context.unit_table.resolve(unit.text, factors)
+        if isinstance(resolved, UnitProblem):
+            factor = unit.factors[resolved.index] if unit.factors else unit
+            self._note(f"unit-{resolved.kind}", resolved.message, factor, self._unit_help(resolved, unit))
+            raise Poisoned
+        return resolved
+
+    def number(self, node: syntax.Number) -> tuple[float, Unit | None]:
+        """The literal's value as written (sign included) and its unit."""
+        value = float(node.text)
+        if math.isinf(value):
+            self._refuse(
+                "number-too-large",
+                f"the number {_short(node.text)} is too large",
+                node,
+                help="numbers go up to about 1.8e308",
+            )
+        unit = None if node.unit is None else self.resolve(node.unit)
+        return (-value if node.negated else value), unit
+
+    # --- node by node -----------------------------------------------------------------------------------
+
+    def _number(self, node: syntax.Number) -> int:
+        value, unit = self.number(node)
+        place = self._place(node)
+        if unit is None:
+            if value == 0.0:
+                return self.builder.constant(Fraction(0), place)
+            if value <= LARGEST_STRUCTURAL_INTEGER and value.is_integer():
+                return self.builder.constant(Fraction(int(value)), place)
+            return self.builder.literal(Literal(value, DIMENSIONLESS, "plain", *place))
+        if self.first_unit is None:
+            self.first_unit = unit
+        si = unit.to_si(value)
+        if math.isinf(si):
+            self._refuse("number-too-large", f"{_short(node.text)} {unit.text} is too large", node)
+        return self.builder.literal(Literal(si, unit.dimension, kind_of(unit), *place, unit.text))
+
+    def _reference(self, node: syntax.Reference) -> int:
+        place = self._place(node)
+        if node.owner is not None:
+            return self._owned(node, place)
+        if node.subscripts is not None:
+            self._refuse("not-a-family", f"`{node.name}` is not a family, so it takes no subscript", node)
+        parameter = self._parameters.get(node.name)
+        if parameter is not None:
+            return parameter
+        if node.name == "pi":
+            return self.builder.constant(math.pi, place)
+        if self._empirical:
+            self._refuse(
+                "quantity-in-empirical-formula",
+                f"`{node.name}` is a quantity of the worksheet, which the empirical formula "
+                f"`{self._empirical}` cannot use",
+                node,
+                help=f"make it a parameter with a unit: `{self._empirical}(..., {node.name} in UNIT)`",
+            )
+        return self.builder.quantity(self._names.number(node.name), place)
+
+    def _owned(self, node: syntax.Reference, place: Place2) -> int:
+        owner = node.owner
+        if owner is not None and owner.owner is None and owner.name == "const":
+            found = constant(node.name)
+            if found is None:
+                self._refuse(
+                    "unknown-constant",
+                    f"there is no constant `const.{node.name}`",
+                    node,
+                    help=did_you_mean(node.name, constant_names())
+                    or "the constants are " + ", ".join(sorted(constant_names())),
+                )
+            literal = Literal(found.value, found.dimension, "plain", *place)
+            return self.builder.literal(literal)
+        self._refuse(
+            "unknown-instance",
+            f"there is no instance `{owner.dotted if owner else ''}` to hold `{node.name}`",
+            node,
+            help="a dot leads into an instance of a template, or into `const`",
+        )
+
+    def _text_node(self, node: syntax.Text) -> int:
+        self._refuse("text-as-number", "a quoted name stands where a number is needed", node)
+
+    def _unary(self, node: syntax.Unary) -> int:
+        if node.operator == "not":
+            return self.builder.apply("not", self.truth(node.operand), place=self._place(node))
+        operand = self.value(node.operand)
+        if node.operator == "+":
+            return operand
+        if self.builder.instructions[operand] == ("const", Fraction(0)):
+            return operand
+        return self.builder.apply("neg", operand, place=self._place(node))
+
+    def _binary(self, node: syntax.Binary) -> int:
+        place = self._place(node)
+        if node.operator == "^":
+            base = self.value(node.left)
+            exponent = exact_value(node.right)
+            if exponent is not None:
+                return self.builder.apply("power", base, exponent, place=place)
+            power = self.value(node.right)
+            instruction = self.builder.instructions[power]
+            if instruction[0] == "const" and isinstance(instruction[1], Fraction):
+                # A parameter of a definition that stands for a whole number: `define f(x, n) = x^n`.
+                return self.builder.apply("power", base, instruction[1], place=place)
+            return self.builder.apply("pow", base, power, place=place)
+        operation = _ARITHMETIC[node.operator]
+        left = self.value(node.left)
+        return self.builder.apply(operation, left, self.value(node.right), place=place)
+
+    def _comparison(self, node: syntax.Comparison) -> int:
+        place = self._place(node)
+        operands = [self.value(operand) for operand in node.operands]
+        links = []
+        for operator, a, b in zip(node.operators, operands, operands[1:]):
+            operation, swapped = _COMPARISON[operator]
+            pair = (b, a) if swapped else (a, b)
+            links.append(self.builder.apply(operation, *pair, place=place))
+        return self._join("and", links, place)
+
+    def _logical(self, node: syntax.Logical) -> int:
+        operands = [self.truth(operand) for operand in node.operands]
+        return self._join(node.operator, operands, self._place(node))
+
+    def _join(self, operation: str, links: list[int], place: Place2) -> int:
+        result = links[0]
+        for link in links[1:]:
+            result = self.builder.apply(operation, result, link, place=place)
+        return result
+
+    def _conditional(self, node: syntax.Conditional) -> int:
+        condition = self.truth(node.condition)
+        outer = self._guards
+        self._guards = (*outer, (condition, True))
+        then = self.value(node.then)
+        self._guards = (*outer, (condition, False))
+        otherwise = self.value(node.otherwise)
+        self._guards = outer
+        return self.builder.apply("if", condition, then, otherwise, place=self._place(node))
+
+    def _aggregate(self, node: syntax.Aggregate) -> int:
+        self._refuse(
+            "unsupported-statement", f"`{node.function}(... for ...)` is not understood by this version", node
+        )
+
+    def _call(self, node: syntax.Call) -> int:
+        definition = self._context.definitions.get(node.name)
+        if definition is not None:
+            return self._use(node, definition)
+        if node.name not in FUNCTION_NAMES:
+            self._refuse_call(node)
+        arguments = [self.value(argument) for argument in node.arguments]
+        place = self._place(node)
+        if node.name in ("min", "max") and len(arguments) >= 2:
+            return self._join(node.name, arguments, place)
+        needed = 1 if node.name in UNARY_FUNCTIONS else 2
+        if len(arguments) != needed:
+            self._refuse_count(node, needed)
+        return self.builder.apply(node.name, *arguments, place=place)
+
+    def _use(self, node: syntax.Call, statement: syntax.Statement) -> int:
+        definition = statement.node
+        assert isinstance(definition, syntax.Definition)
+        if node.name in self._calls:
+            self._refuse(
+                "definition-uses-itself",
+                f"the definition `{node.name}` uses itself",
+                node,
+                help="a definition is written out at each use, so it cannot stand inside its own body",
+            )
+        if len(node.arguments) != len(definition.parameters):
+            self._refuse_count(node, len(definition.parameters))
+        arguments = tuple(self.value(argument) for argument in node.arguments)
+        key = (node.name, arguments)
+        if key not in self._written_out or definition.valid:
+            self._written_out[key] = self._write_out(node, statement, definition, arguments)
+        return self._written_out[key]
+
+    def _write_out(
+        self,
+        node: syntax.Call,
+        statement: syntax.Statement,
+        definition: syntax.Definition,
+        arguments: tuple[int, ...],
+    ) -> int:
+        if len(self.builder.instructions) > LARGEST_FORMULA:
+            self._refuse(
+                "formula-too-large", f"written out, this formula has over {LARGEST_FORMULA} operations", node
+            )
+        saved = self._parameters, self._calls, self._empirical, self._fixed_place, self.text
+        place = self._place(node)
+        self._calls = (*self._calls, node.name)
+        self._fixed_place = place
+        self.text = statement.line.text
+        try:
+            outside = dict(zip((p.name for p in definition.parameters), arguments))
+            inside = outside
+            if definition.result_unit is not None:
+                inside = {
+                    p.name: self.builder.apply("strip", outside[p.name], self.resolve(p.unit), place=place)
+                    if p.unit is not None
+                    else outside[p.name]
+                    for p in definition.parameters
+                }
+                self._empirical = node.name
+            self._parameters = inside
+            result = self.value(definition.body)
+            if definition.result_unit is not None:
+                unit = self.resolve(definition.result_unit)
+                result = self.builder.apply("attach", result, unit, place=place)
+            self._parameters, self._empirical = outside, ""
+            for condition in definition.valid:
+                text = f"{self.text[condition.start : condition.end]} (of {node.name})"
+                self.conditions.append(ConditionMet(self.truth(condition), self._guards, text, place))
+        finally:
+            self._parameters, self._calls, self._empirical, self._fixed_place, self.text = saved
+        return result
+
+    # --- findings ---------------------------------------------------------------------------------------
+
+    def _place(self, node: syntax.Expression) -> Place2:
+        return self._fixed_place or (node.start, node.end)
+
+    def _note(
+        self,
+        code: str,
+        message: str,
+        node: syntax.Expression | syntax.UnitText | syntax.UnitFactor,
+        help: str = "",
+    ) -> None:
+        start, end = self._fixed_place or (node.start, node.end)
+        self.findings.append(Finding(code, message, start, end, help))
+
+    def _refuse(self, code: str, message: str, node: syntax.Expression, help: str = "") -> Never:
+        self._note(code, message, node, help)
+        raise Poisoned
+
+    def _refuse_count(self, node: syntax.Call, needed: int) -> Never:
+        given = len(node.arguments)
+        self._refuse(
+            "argument-count",
+            f"`{node.name}` takes {needed} argument{'s' * (needed != 1)}, not {given}",
+            node,
+        )
+
+    def _refuse_call(self, node: syntax.Call) -> Never:
+        name = syntax.Reference(node.start, node.name_end, node.name)
+        if node.name == "log":
+            self._refuse(
+                "log-ambiguous",
+                "`log` does not say which logarithm is meant",
+                name,
+                help="write `ln` for the natural or `log10` for the decimal logarithm",
+            )
+        if node.name in self._names.numbers or node.name in self._parameters:
+            argument = self.text[node.name_end : node.end] if self._fixed_place is None else "(...)"
+            self._refuse(
+                "quantity-as-function",
+                f"`{node.name}` is a quantity, not a function",
+                name,
+                help=f"to multiply, write `{node.name}*{argument}`",
+            )
+        known = (*FUNCTION_NAMES, *self._context.definitions)
+        self._refuse(
+            "unknown-function",
+            f"there is no function `{node.name}`",
+            name,
+            help=did_you_mean(node.name, known)
+            or f"write `define {node.name}(...) = ...`, or `{node.name}*(...)` to multiply",
+        )
+
+    def _unit_help(self, problem: UnitProblem, unit: syntax.UnitText) -> str:
+        if problem.help or problem.kind != "unknown":
+            return problem.help
+        symbol = unit.factors[problem.index].symbol
+        if problem.index > 0:
+            return f"if `{symbol}` is a quantity, put spaces around the operator before it"
+        return f"if `{symbol}` is a quantity, write `*` between the number and it; the units are in grammar/UNITS.md"
+
+
+def kind_of(unit: Unit) -> str:
+    """The kind of a literal in `unit`: see `Literal.kind`."""
+    if unit.reading:
+        return "reading"
+    if unit.difference:
+        return "difference"
+    return "absolute" if unit.dimension in (_TEMPERATURE, _PRESSURE) else "plain"
+
+
+def exact_value(node: syntax.Expression) -> Fraction | None:
+    """Exact value of an expression of plain numbers, None if it is anything else or beyond physics.
+
+    Constant arithmetic in exponents is exact, so that ``x^(2/3)`` has an exact dimension.
+    """
+    value = _exact(node)
+    if value is None or abs(value) > LARGEST_EXACT_EXPONENT or value.denominator > LARGEST_EXACT_EXPONENT:
+        return None
+    return value
+
+
+def _exact(node: syntax.Expression) -> Fraction | None:
+    if isinstance(node, syntax.Number):
+        if node.unit is not None or abs(_decimal_exponent(node.text)) > 9 or len(node.text) > 30:
+            return None
+        return Fraction(node.text)
+    if isinstance(node, syntax.Unary) and node.operator in "+-":
+        operand = exact_value(node.operand)
+        return operand if operand is None or node.operator == "+" else -operand
+    if isinstance(node, syntax.Binary):
+        a, b = exact_value(node.left), exact_value(node.right)
+        if a is None or b is None:
+            return None
+        if node.operator == "/":
+            return None if b == 0 else a / b
+        if node.operator == "^":
+            return None
+        return {"+": a + b, "-": a - b, "*": a * b}[node.operator]
+    return None
+
+
+def _decimal_exponent(text: str) -> int:
+    _, _, exponent = text.lower().partition("e")
+    return int(exponent[:8]) if exponent else 0
+
+
+def _short(text: str) -> str:
+    return text if len(text) <= 24 else f"{text[:12]}...{text[-6:]}"
+
+
+_ARITHMETIC = {"+": "add", "-": "sub", "*": "mul", "/": "div"}
+# operator -> (operation, operands swapped)
+_COMPARISON = {
+    "<": ("lt", False),
+    "<=": ("le", False),
+    ">": ("lt", True),
+    ">=": ("le", True),
+    "=": ("eq", False),
+}
+_LOWER: dict[type, Callable[[Lowering, Any], int]] = {
+    syntax.Number: Lowering._number,
+    syntax.Reference: Lowering._reference,
+    syntax.Text: Lowering._text_node,
+    syntax.Unary: Lowering._unary,
+    syntax.Binary: Lowering._binary,
+    syntax.Comparison: Lowering._comparison,
+    syntax.Logical: Lowering._logical,
+    syntax.Call: Lowering._call,
+    syntax.Conditional: Lowering._conditional,
+    syntax.Aggregate: Lowering._aggregate,
+}

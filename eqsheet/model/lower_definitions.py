@@ -1,0 +1,91 @@
+"""Definitions: collected by name, and checked once in their own lines."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.model.findings import Finding
+from eqsheet.model.lower import AGGREGATE_NAMES, FUNCTION_NAMES, Context, Lowering, NameTable, Poisoned
+from eqsheet.syntax import nodes as syntax
+
+
+def collect_definitions(
+    statements: Sequence[syntax.Statement], diagnostics: list[Diagnostic]
+) -> Mapping[str, syntax.Statement]:
+    """Definitions by name; a name taken twice or by a built-in function is reported, the first one kept."""
+    found: dict[str, syntax.Statement] = {}
+    for statement in statements:
+        node = statement.node
+        if not isinstance(node, syntax.Definition):
+            continue
+        start = node.name_end - len(node.name)
+        here = Label(statement.span(start, node.name_end))
+        if node.name in FUNCTION_NAMES or node.name in AGGREGATE_NAMES:
+            diagnostics.append(
+                error(
+                    "definition-of-built-in",
+                    f"`{node.name}` is a built-in function",
+                    here,
+                    help="give the definition another name",
+                )
+            )
+        elif node.name in found:
+            other = found[node.name]
+            diagnostics.append(
+                error(
+                    "defined-twice", f"`{node.name}` is defined twice", here, Label(other.whole, "first here")
+                )
+            )
+        elif (problem := _parameter_problem(node)) is not None:
+            diagnostics.append(problem.at(statement))
+        else:
+            found[node.name] = statement
+    return found
+
+
+def _parameter_problem(node: syntax.Definition) -> Finding | None:
+    seen: set[str] = set()
+    for parameter in node.parameters:
+        if parameter.name in seen:
+            return Finding(
+                "parameter-twice",
+                f"the parameter `{parameter.name}` stands twice",
+                parameter.start,
+                parameter.end,
+            )
+        seen.add(parameter.name)
+    with_units = [p for p in node.parameters if p.unit is not None]
+    if node.result_unit is None and with_units:
+        return Finding(
+            "definition-half-with-units",
+            f"`{node.name}` has a parameter with a built-in unit, but its result has none",
+            node.start,
+            node.name_end,
+            "write the unit of the result too: `define f(T in degC) in mmHg = ...` (`in 1` for a plain number)",
+        )
+    if node.result_unit is not None and len(with_units) < len(node.parameters):
+        bare = next(p for p in node.parameters if p.unit is None)
+        return Finding(
+            "definition-half-with-units",
+            f"the parameter `{bare.name}` of the empirical formula `{node.name}` has no unit",
+            bare.start,
+            bare.end,
+            f"write `{bare.name} in UNIT` (`{bare.name} in 1` for a plain number)",
+        )
+    return None
+
+
+def check_definition(statement: syntax.Statement, context: Context) -> tuple[Finding, ...]:
+    """What is wrong with a definition, found in its own line with stand-ins for the parameters.
+
+    A use of the definition would find the same, but point at the use.
+    """
+    node = statement.node
+    assert isinstance(node, syntax.Definition)
+    work = Lowering(context, NameTable(), statement.line.text)
+    try:
+        work.try_body(node)
+    except Poisoned:
+        return tuple(work.findings)
+    return ()

@@ -1,0 +1,384 @@
+"""Lowers one statement: equations and knowns, guesses, limits, shown units.
+
+Each function takes a statement and gives a `LoweredStatement`, in which quantities have provisional numbers and
+all places say statement 0. Nothing here depends on the other statements besides the `Context`, so that the
+result can be kept while a worksheet is edited.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+from eqsheet.diagnostics.diagnostic import Severity
+from eqsheet.model.evaluate import evaluate_outputs
+from eqsheet.model.findings import Finding
+from eqsheet.model.lower import Context, Lowering, NameTable, Poisoned, kind_of
+from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
+from eqsheet.model.tape import Formula, Literal, extract
+from eqsheet.syntax import nodes as syntax
+from eqsheet.units.dimension import DIMENSIONLESS, Dimension
+from eqsheet.units.unit import Unit
+
+_PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
+
+
+@dataclass(frozen=True, slots=True)
+class GuessMeant:
+    """A guess before its target is looked up: a name, or a pattern over names."""
+
+    target: str
+    pattern: bool
+    formula: Formula
+    roles: tuple[str, ...]
+    start: int
+    end: int
+
+
+@dataclass(frozen=True, slots=True)
+class ShowMeant:
+    """One item of a `show`: the quantity's provisional number, its unit, and the formula that ties them."""
+
+    quantity: int
+    unit: Unit | None
+    formula: Formula | None
+    start: int
+    end: int
+
+
+@dataclass(frozen=True, slots=True)
+class LoweredStatement:
+    """What one statement comes to; all but `findings` empty where it is not understood.
+
+    Attributes
+    ----------
+    named : tuple of (int, int, int)
+        Provisional numbers of the quantities it names, with start and end of the first place.
+    unit_hints : tuple of (int, Unit)
+        Units in which it writes a quantity.
+    uses_gauge : bool
+        Whether a gauge unit occurs.
+    """
+
+    equation: EquationItem | None = None
+    guesses: tuple[GuessMeant, ...] = ()
+    limit: LimitItem | None = None
+    shows: tuple[ShowMeant, ...] = ()
+    named: tuple[tuple[int, int, int], ...] = ()
+    unit_hints: tuple[tuple[int, Unit], ...] = ()
+    uses_gauge: bool = False
+    findings: tuple[Finding, ...] = ()
+
+
+def lower_equation(statement: syntax.Statement, context: Context, names: NameTable) -> LoweredStatement:
+    """An equation, and whether it is a known: one name against an expression without names."""
+    node = statement.node
+    assert isinstance(node, syntax.Equation)
+    work = Lowering(context, names, statement.line.text)
+    try:
+        left = work.value(node.left)
+        right = work.value(node.right)
+        work.valid(node.valid)
+        target, value_node = _known_parts(node)
+        tolerance = _tolerance(node, value_node, work) if node.tolerance else None
+    except Poisoned:
+        return _broken(work, names, node)
+    formula = work.builder.formula((left, right), 0, ((left, right),))
+    valid = tuple(
+        Validity(
+            extract(formula, (met.instruction,)),
+            met.text,
+            Place(0, *met.place),
+            tuple(Guard(extract(formula, (c,)), branch) for c, branch in met.guards),
+        )
+        for met in work.conditions
+    )
+    if valid:
+        formula = extract(formula, (left, right))
+    known, value, hints = -1, math.nan, ()
+    if target is not None and len(formula.quantities) == 1:
+        known = formula.quantities[0]
+        side = formula.tape.outputs[0 if value_node is node.right else 1]
+        other = formula.tape.outputs[1 if side == formula.tape.outputs[0] else 0]
+        (value,) = evaluate_outputs(formula, {}, (other,))
+        if not math.isfinite(value):
+            work.findings.append(
+                Finding(
+                    "value-not-finite",
+                    f"the value of `{target}` is not a finite number",
+                    node.start,
+                    node.end,
+                )
+            )
+            return _broken(work, names, node)
+        if work.first_unit is not None:
+            hints = ((known, work.first_unit),)
+    item = EquationItem(formula, Place(0, node.start, node.end), known, value, tolerance, valid)
+    return LoweredStatement(
+        equation=item,
+        named=_named(formula),
+        unit_hints=hints,
+        uses_gauge=uses_gauge(work),
+        findings=tuple(work.findings),
+    )
+
+
+def lower_guess(statement: syntax.Statement, context: Context, names: NameTable) -> LoweredStatement:
+    """A guess: one formula that holds the start value and the bounds like its target."""
+    node = statement.node
+    assert isinstance(node, syntax.Guess)
+    work = Lowering(context, names, statement.line.text)
+    pattern = isinstance(node.target, syntax.NamePattern)
+    try:
+        parts = [
+            (role, work.value(part))
+            for role, part in (("near", node.near), ("lower", node.lower), ("upper", node.upper))
+            if part is not None
+        ]
+        target_name = (
+            node.target.pattern
+            if isinstance(node.target, syntax.NamePattern)
+            else _plain_name(node.target, work)
+        )
+        # A pattern stands for many quantities; each gets its own formula when the names are known, and until
+        # then a provisional quantity of the pattern's name holds the place.
+        target = work.builder.quantity(names.number(target_name), (node.target.start, node.target.end))
+    except Poisoned:
+        return _broken(work, names, node)
+    outputs = tuple(index for _, index in parts)
+    formula = work.builder.formula(outputs, 0, tuple((target, index) for index in outputs))
+    number = names.number(target_name)
+    literals = [p for p in (node.near, node.lower, node.upper) if isinstance(p, syntax.Number) and p.unit]
+    hints = ((number, work.resolve(literals[0].unit)),) if literals and literals[0].unit else ()
+    meant = GuessMeant(target_name, pattern, formula, tuple(role for role, _ in parts), node.start, node.end)
+    return LoweredStatement(
+        guesses=(meant,),
+        named=_named(formula),
+        unit_hints=() if pattern else hints,
+        uses_gauge=uses_gauge(work),
+        findings=tuple(work.findings),
+    )
+
+
+def lower_limit(statement: syntax.Statement, context: Context, names: NameTable) -> LoweredStatement:
+    """A limit: its operands as outputs of one formula, all alike."""
+    node = statement.node
+    assert isinstance(node, syntax.Limit)
+    work = Lowering(context, names, statement.line.text)
+    condition = node.condition
+    if not isinstance(condition, syntax.Comparison):
+        work.findings.append(
+            Finding(
+                "limit-form",
+                "a limit compares quantities",
+                condition.start,
+                condition.end,
+                "write one comparison or chain a line: `require 0.5 m/s <= v <= 2.5 m/s`",
+            )
+        )
+        return _broken(work, names, node)
+    try:
+        operands = [work.value(operand) for operand in condition.operands]
+        within = None if node.within is None else work.value(node.within)
+    except Poisoned:
+        return _broken(work, names, node)
+    alike = [(operands[0], other) for other in operands[1:]]
+    differences: tuple[int, ...] = ()
+    if within is not None and not node.relative:
+        alike.append((operands[0], within))
+        differences = (within,)
+    outputs = (*operands, *(() if within is None else (within,)))
+    formula = work.builder.formula(outputs, 0, tuple(alike), differences)
+    references = [o for o in condition.operands if _is_plain_reference(o)]
+    hints = []
+    if work.first_unit is not None:
+        for reference in references:
+            assert isinstance(reference, syntax.Reference)
+            hints.append((names.number(reference.name), work.first_unit))
+    text = statement.line.text[condition.start : node.end].strip()
+    item = LimitItem(
+        formula,
+        condition.operators,
+        within is not None,
+        node.relative,
+        text,
+        Place(0, node.start, node.end),
+        work.first_unit,
+    )
+    return LoweredStatement(
+        limit=item,
+        named=_named(formula),
+        unit_hints=tuple(hints),
+        uses_gauge=uses_gauge(work),
+        findings=tuple(work.findings),
+    )
+
+
+def lower_show(statement: syntax.Statement, context: Context, names: NameTable) -> LoweredStatement:
+    """Shown units, each tied to its quantity by a formula so that their dimensions must agree."""
+    node = statement.node
+    assert isinstance(node, syntax.Show)
+    work = Lowering(context, names, statement.line.text)
+    shows: list[ShowMeant] = []
+    gauge = False
+    for item in node.items:
+        one = Lowering(context, names, statement.line.text)
+        try:
+            name = _plain_name(item.target, one)
+            number = names.number(name)
+            unit = None if item.unit is None else one.resolve(item.unit)
+        except Poisoned:
+            work.findings.extend(one.findings)
+            continue
+        formula = None
+        if unit is not None and item.unit is not None:
+            quantity = one.builder.quantity(number, (item.target.start, item.target.end))
+            kind = "absolute" if kind_of(unit) == "reading" else kind_of(unit)
+            literal = one.builder.literal(
+                Literal(1.0, unit.dimension, kind, item.unit.start, item.unit.end, unit.text)
+            )
+            formula = one.builder.formula((quantity, literal), 0, ((quantity, literal),))
+            gauge = gauge or is_gauge(unit)
+        shows.append(ShowMeant(number, unit, formula, item.target.start, item.target.end))
+    return LoweredStatement(
+        shows=tuple(shows),
+        named=tuple((s.quantity, s.start, s.end) for s in shows),
+        uses_gauge=gauge,
+        findings=tuple(work.findings),
+    )
+
+
+def is_gauge(unit: Unit) -> bool:
+    """Whether values in the unit are gauge pressures."""
+    return unit.reading and unit.dimension == _PRESSURE
+
+
+def uses_gauge(work: Lowering) -> bool:
+    """Whether a literal of the formula is a gauge pressure."""
+    return any(l.kind == "reading" and l.dimension == _PRESSURE for l in work.builder.literals)
+
+
+def _is_plain_reference(node: syntax.Expression) -> bool:
+    return (
+        isinstance(node, syntax.Reference)
+        and node.owner is None
+        and node.subscripts is None
+        and node.name != "pi"
+    )
+
+
+def _plain_name(node: syntax.Reference, work: Lowering) -> str:
+    """Name of a plain reference; goes through `value` for the findings of any other."""
+    if not _is_plain_reference(node):
+        work.value(node)
+        work.findings.append(
+            Finding("name-needed", "the name of a quantity is needed here", node.start, node.end)
+        )
+        raise Poisoned
+    return node.name
+
+
+def _known_parts(node: syntax.Equation) -> tuple[str | None, syntax.Expression | None]:
+    """Name and value expression of a known; (None, None) for an equation."""
+    for target, value in ((node.left, node.right), (node.right, node.left)):
+        if _is_plain_reference(target) and not _has_names(value):
+            assert isinstance(target, syntax.Reference)
+            return target.name, value
+    return None, None
+
+
+def _has_names(node: syntax.Expression) -> bool:
+    """Whether a quantity or a definition occurs (pi, const.* and built-in functions apart)."""
+    match node:
+        case syntax.Number():
+            return False
+        case syntax.Reference():
+            in_const = node.owner is not None and node.owner.dotted == "const"
+            return not (in_const or (node.name == "pi" and node.owner is None))
+        case syntax.Unary():
+            return _has_names(node.operand)
+        case syntax.Binary():
+            return _has_names(node.left) or _has_names(node.right)
+        case syntax.Call():
+            return any(_has_names(a) for a in node.arguments)
+        case _:
+            return True
+
+
+def _tolerance(
+    node: syntax.Equation, value_node: syntax.Expression | None, work: Lowering
+) -> ToleranceOfKnown | None:
+    """The tolerance in SI; relative where written in % on a value that is not in %."""
+    written = node.tolerance
+    assert written is not None
+    half, unit = work.number(written.half_width)
+    start, end = written.start, written.end
+    text = work.text[start:end]
+    coverage = None if written.coverage is None else work.number(written.coverage)[0]
+    if coverage is not None and coverage <= 0:
+        work.findings.append(Finding("tolerance-form", "the coverage factor k must be positive", start, end))
+        raise Poisoned
+    if half < 0:
+        work.findings.append(Finding("tolerance-form", "a tolerance is not negative", start, end))
+        raise Poisoned
+    inner = value_node.operand if isinstance(value_node, syntax.Unary) else value_node
+    if not isinstance(inner, syntax.Number):
+        work.findings.append(
+            Finding(
+                "tolerance-form",
+                "a tolerance needs a known with a literal value",
+                start,
+                end,
+                "work the value out: `D = 52.5 mm ± 0.1 mm`",
+            )
+        )
+        raise Poisoned
+    value, value_unit = work.number(inner)
+    if unit is not None and unit.text == "%" and (value_unit is None or value_unit.text != "%"):
+        size = abs(value) if value_unit is None else abs(value_unit.to_si(value))
+        if value_unit is not None and value_unit.reading:
+            work.findings.append(
+                Finding(
+                    "tolerance-form",
+                    "a relative tolerance on a reading has no meaning",
+                    start,
+                    end,
+                    "give the tolerance as a difference, `T = 20 degC ± 0.5 K`",
+                )
+            )
+            raise Poisoned
+        return ToleranceOfKnown(half / 100.0 * size, coverage, text)
+    dimension = DIMENSIONLESS if unit is None else unit.dimension
+    expected = DIMENSIONLESS if value_unit is None else value_unit.dimension
+    if dimension != expected:
+        work.findings.append(
+            Finding(
+                "tolerance-unit",
+                f"the tolerance is in {_unit_words(unit)}, the value in {_unit_words(value_unit)}",
+                start,
+                end,
+            )
+        )
+        raise Poisoned
+    factor = 1.0 if unit is None else unit.factor
+    return ToleranceOfKnown(half * factor, coverage, text)
+
+
+def _unit_words(unit: Unit | None) -> str:
+    return "no unit" if unit is None else unit.text
+
+
+def _named(formula: Formula) -> tuple[tuple[int, int, int], ...]:
+    return tuple(
+        (formula.quantities[instruction[1]], *place)  # type: ignore[index]  # operand of a leaf: its slot
+        for instruction, place in zip(formula.tape.instructions, formula.places)
+        if instruction[0] == "quantity"
+    )
+
+
+def _broken(work: Lowering, names: NameTable, node: syntax.StatementNode) -> LoweredStatement:
+    """Only the findings; the names still count as seen, so that they are not reported as unknown."""
+    named = tuple((number, node.start, node.end) for number in work.builder.quantities)
+    severe = [f for f in work.findings if f.severity is Severity.ERROR]
+    assert severe, "a broken statement must say why"
+    return LoweredStatement(named=named, findings=tuple(work.findings))

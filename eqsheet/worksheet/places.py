@@ -1,0 +1,58 @@
+"""Places of the equation system as spans, labels and words."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+from eqsheet.diagnostics.diagnostic import Label
+from eqsheet.diagnostics.source import Span
+from eqsheet.model.system import EquationSystem, Place
+
+# Longer lists are folded: a reader acts on the first few and searches for the rest.
+MOST_LISTED = 8
+
+
+def span_of(system: EquationSystem, place: Place) -> Span:
+    """The span of a place."""
+    return system.statements[place.statement].span(place.start, place.end)
+
+
+def label_of(system: EquationSystem, place: Place, text: str = "") -> Label:
+    """A label at a place."""
+    return Label(span_of(system, place), text)
+
+
+def line_words(system: EquationSystem, places: Iterable[Place]) -> str:
+    """``line 3``, ``lines 3, 5 and 9``; the name of the source where lines mean nothing.
+
+    Lines are in ascending order, each once.
+    """
+    numbers: set[int] = set()
+    others: set[str] = set()
+    for place in places:
+        statement = system.statements[place.statement]
+        if statement.source.numbered:
+            numbers.add(statement.line.line)
+        else:
+            others.add(statement.source.name)
+    lines = listed([str(n) for n in sorted(numbers)])
+    words = ([f"line{'s' * (len(numbers) > 1)} {lines}"] if numbers else []) + sorted(others)
+    return " and ".join(words)
+
+
+def listed(words: list[str], joint: str = "and") -> str:
+    """``a``, ``a and b``, ``a, b and c``; long lists are folded.
+
+    >>> listed(["a", "b", "c"])
+    'a, b and c'
+    """
+    if len(words) > MOST_LISTED:
+        words = [*words[: MOST_LISTED - 1], f"{len(words) - MOST_LISTED + 1} more"]
+    if len(words) < 2:
+        return "".join(words)
+    return f"{', '.join(words[:-1])} {joint} {words[-1]}"
+
+
+def quoted(names: Iterable[str], joint: str = "and") -> str:
+    """Names in backquotes, listed."""
+    return listed([f"`{name}`" for name in names], joint)

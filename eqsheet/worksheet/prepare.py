@@ -1,0 +1,120 @@
+"""From text to ordered blocks: every stage before any number is computed, in order.
+
+The pass list reads top to bottom in `prepare`. Each pass takes values and gives a value and diagnostics.
+"""
+
+from __future__ import annotations
+
+import time
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+
+from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
+from eqsheet.model.build import LoweredCache, build_system
+from eqsheet.model.dimension_messages import dimension_diagnostics
+from eqsheet.model.infer_dimensions import DimensionResult, infer_dimensions
+from eqsheet.model.infer_kinds import KindResult, infer_kinds
+from eqsheet.model.settle import settle
+from eqsheet.model.system import EquationSystem
+from eqsheet.model.tape import Formula
+from eqsheet.structure.analyse import analyse
+from eqsheet.structure.verdict import Structure
+from eqsheet.syntax.nodes import Statement
+from eqsheet.worksheet.structure_messages import structure_diagnostics
+from eqsheet.worksheet.without_unknowns import Checked, check_without_unknowns
+
+
+@dataclass(frozen=True)
+class Prepared:
+    """A worksheet ready for numbers.
+
+    Attributes
+    ----------
+    system : EquationSystem
+    formulas : tuple of Formula
+        Of each equation of the system, conditions on knowns alone settled.
+    rows : tuple of int
+        Equation numbers that take part in the structure: all but those without unknowns and repeated knowns.
+    structure : Structure
+        Its rows are positions in `rows`, its columns are quantity numbers.
+    dimensions : DimensionResult
+    kinds : tuple of str
+        ``reading``, ``difference`` or ``plain`` for each quantity.
+    known_values : mapping of int to float
+    diagnostics : tuple of Diagnostic
+    valid_text : bool
+        No error in text, names, units or dimensions, so that numbers may be computed.
+    """
+
+    system: EquationSystem
+    formulas: tuple[Formula, ...]
+    rows: tuple[int, ...]
+    structure: Structure
+    dimensions: DimensionResult
+    kinds: KindResult
+    known_values: Mapping[int, float]
+    diagnostics: tuple[Diagnostic, ...]
+    valid_text: bool
+    timing: Mapping[str, float] = field(default_factory=dict)
+
+
+def prepare(
+    statements: Sequence[Statement],
+    earlier: Sequence[Diagnostic],
+    cache: LoweredCache | None = None,
+) -> Prepared:
+    """Build, infer dimensions, settle, and find the order of solution.
+
+    Parameters
+    ----------
+    statements : sequence of Statement
+    earlier : sequence of Diagnostic
+        What reading the text has found; errors among them keep numbers from being computed.
+    cache : LoweredCache, optional
+        See `build_system`.
+    """
+    clock = time.perf_counter
+    begin = clock()
+    system, found = build_system(statements, cache)
+    diagnostics = [*earlier, *found]
+    formulas = all_formulas(system)
+    dimensions = infer_dimensions(formulas, len(system.names), {})
+    kinds = infer_kinds(formulas, len(system.names), dimensions)
+    diagnostics += dimension_diagnostics(system, formulas, dimensions, kinds)
+    known_values: dict[int, float] = {}
+    for item in system.equations:
+        if item.known >= 0:
+            known_values.setdefault(item.known, item.value)
+    settled = tuple(settle(item.formula, known_values) for item in system.equations)
+    modelled = clock()
+    checked: Checked = check_without_unknowns(system, settled, known_values)
+    diagnostics += checked.diagnostics
+    structure = analyse([settled[i].quantities for i in checked.rows], len(system.names))
+    valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found)) and not dimensions.clashes
+    if valid_text:
+        diagnostics += structure_diagnostics(system, settled, checked.rows, structure)
+    done = clock()
+    timing = {"model": modelled - begin, "structure": done - modelled}
+    return Prepared(
+        system,
+        settled,
+        checked.rows,
+        structure,
+        dimensions,
+        kinds,
+        known_values,
+        tuple(diagnostics),
+        valid_text,
+        timing,
+    )
+
+
+def all_formulas(system: EquationSystem) -> tuple[Formula, ...]:
+    """Every formula whose dimensions must fit, equations first."""
+    formulas = [item.formula for item in system.equations]
+    for item in system.equations:
+        formulas.extend(v.formula for v in item.valid)
+    formulas.extend(guess.formula for guess in system.guesses)
+    formulas.extend(limit.formula for limit in system.limits)
+    formulas.extend(system.shows)
+    return tuple(formulas)

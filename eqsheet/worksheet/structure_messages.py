@@ -1,0 +1,135 @@
+"""The structural verdict in the worksheet's own terms: lines and names instead of rows and columns."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from eqsheet.diagnostics.diagnostic import Diagnostic, error
+from eqsheet.model.spelling import close_names
+from eqsheet.model.system import EquationSystem
+from eqsheet.model.tape import Formula
+from eqsheet.structure.verdict import Conflict, Shortfall, Structure
+from eqsheet.worksheet.places import label_of, line_words, listed, quoted
+
+MOST_LABELS = 6
+
+
+def structure_diagnostics(
+    system: EquationSystem, formulas: Sequence[Formula], rows: Sequence[int], structure: Structure
+) -> list[Diagnostic]:
+    """One diagnostic for each over- or under-determined piece.
+
+    Conflicts are not reported here: whether the statements contradict each other or merely repeat themselves is
+    told once the rest is solved, see `conflict_diagnostic`.
+    """
+    square = len(structure.unmatched_rows) == len(structure.unmatched_columns)
+    return [
+        shortfall_diagnostic(system, formulas, rows, shortfall, bool(structure.conflicts) and square)
+        for shortfall in structure.shortfalls
+    ]
+
+
+def shortfall_diagnostic(
+    system: EquationSystem,
+    formulas: Sequence[Formula],
+    rows: Sequence[int],
+    shortfall: Shortfall,
+    singular: bool,
+) -> Diagnostic:
+    """What is free in an under-determined piece, and what could be added.
+
+    Parameters
+    ----------
+    singular : bool
+        The worksheet as a whole has as many equations as unknowns, so that elsewhere there is one too many.
+    """
+    names = [system.names[c] for c in shortfall.columns]
+    items = [system.equations[rows[r]] for r in shortfall.rows]
+    missing = shortfall.missing
+    count = "one more equation or known is" if missing == 1 else f"{missing} more equations or knowns are"
+    if items:
+        where = line_words(system, [i.place for i in items])
+        number = len(items)
+        message = (
+            f"{where} {'does' if number == 1 else 'do'} not determine {quoted(names)}: {count} needed"
+        )
+    else:
+        message = f"nothing determines {quoted(names)}"
+    labels = [label_of(system, system.first_places[shortfall.columns[0]])]
+    labels += [
+        label_of(system, i.place)
+        for i in items[:MOST_LABELS]
+        if i.place.statement != system.first_places[shortfall.columns[0]].statement
+    ]
+    notes = []
+    if singular:
+        notes.append(
+            "the worksheet has as many equations as unknowns, but too many of them elsewhere: it is structurally singular"
+        )
+    notes += _spelling_notes(system, formulas, shortfall)
+    wanted = "one of" if missing == 1 else f"{missing} of"
+    help = (
+        f"set {names[0]!r}".replace("'", "`") + " by a line of its own, or add an equation for it"
+        if len(names) == 1
+        else f"set {wanted} {quoted(names, 'or')} by a line of its own, or add an equation between them"
+    )
+    return error("under-determined", message, *labels, notes=tuple(notes), help=help)
+
+
+def _spelling_notes(
+    system: EquationSystem, formulas: Sequence[Formula], shortfall: Shortfall
+) -> list[str]:
+    """A name that stands in one equation only and is close to another name is likely a slip."""
+    uses: dict[int, int] = {}
+    for formula in formulas:
+        for quantity in formula.quantities:
+            uses[quantity] = uses.get(quantity, 0) + 1
+    notes = []
+    for column in shortfall.columns:
+        if uses.get(column, 0) != 1:
+            continue
+        close = close_names(system.names[column], system.names)
+        if close:
+            place = line_words(system, (system.first_places[column],))
+            notes.append(
+                f"`{system.names[column]}` occurs only on {place}: did you mean {quoted(close, 'or')}?"
+            )
+    return notes
+
+
+def conflict_diagnostic(
+    system: EquationSystem, rows: Sequence[int], conflict: Conflict, satisfied: bool | None, gap: str
+) -> Diagnostic:
+    """What competes in an over-determined piece, and what could be switched off.
+
+    Parameters
+    ----------
+    satisfied : bool or None
+        Whether the left-out equations hold at the solution of the others; None where that could not be found.
+    gap : str
+        The sides of the first left-out equation that does not hold, in words.
+    """
+    items = [system.equations[rows[r]] for r in conflict.rows]
+    items.sort(key=lambda i: i.place.statement)
+    names = [system.names[c] for c in conflict.columns]
+    knowns = [system.names[i.known] for i in items if i.known >= 0]
+    where = line_words(system, [i.place for i in items])
+    many = f"{len(items)} statements for {len(names)} quantit{'y' if len(names) == 1 else 'ies'}"
+    left_out = [system.equations[rows[r]] for r in conflict.left_out]
+    labels = [label_of(system, left_out[0].place, "this is one too many" if satisfied is not True else "")]
+    labels += [label_of(system, i.place) for i in items if i is not left_out[0]][:MOST_LABELS]
+    notes = [f"they compete for {quoted(names)}"]
+    if gap:
+        notes.append(gap)
+    off = "one of them" if conflict.excess == 1 else f"{conflict.excess} of them"
+    help = f"switch {off} `off`"
+    if knowns:
+        help += f"; {'the known' if len(knowns) == 1 else 'a known'} that could go: {quoted(knowns, 'or')}"
+    if satisfied:
+        message = f"{where} repeat each other: {many}, all satisfied by the solution"
+        return error("redundant-equations", message, *labels, notes=tuple(notes), help=help)
+    if satisfied is False:
+        message = f"{where} contradict each other: {many}"
+        return error("contradicting-equations", message, *labels, notes=tuple(notes), help=help)
+    message = f"{where} over-determine {listed([f'`{n}`' for n in names])}: {many}"
+    return error("over-determined", message, *labels, notes=tuple(notes), help=help)
