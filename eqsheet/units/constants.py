@@ -5,10 +5,11 @@ from __future__ import annotations
 from dataclasses import dataclass
 from functools import cache
 
+from eqsheet.units.codata import VALUES
 from eqsheet.units.dimension import Dimension
 
 # name: (entry of the CODATA list, exponents of the base units, what it is)
-_CODATA: dict[str, tuple[str, dict[str, int], str]] = {
+CODATA_ENTRIES: dict[str, tuple[str, dict[str, int], str]] = {
     "c": ("speed of light in vacuum", {"m": 1, "s": -1}, "speed of light in vacuum"),
     "h": ("Planck constant", {"kg": 1, "m": 2, "s": -1}, "Planck constant"),
     "hbar": ("reduced Planck constant", {"kg": 1, "m": 2, "s": -1}, "reduced Planck constant"),
@@ -61,20 +62,19 @@ class Constant:
 def constant(name: str) -> Constant | None:
     """The constant called `name`, or None.
 
-    The values are those of CODATA as scipy carries them; scipy is imported when the first one is asked for.
+    The values are those of CODATA as `scipy.constants` carries them, copied into `eqsheet.units.codata` at
+    development time.
 
     >>> constant("R").dimension.text
     'kg*m^2/(s^2*K*mol)'
     """
-    entry = _CODATA.get(name)
+    entry = CODATA_ENTRIES.get(name)
     if entry is None:
         return None
-    from scipy.constants import value
-
     codata_name, exponents, description = entry
-    return Constant(name, float(value(codata_name)), Dimension.of(dict(exponents)), description)
+    return Constant(name, VALUES[codata_name], Dimension.of(dict(exponents)), description)
 
 
 def constant_names() -> tuple[str, ...]:
-    """Names of all constants, sorted; imports nothing."""
-    return tuple(sorted(_CODATA))
+    """Names of all constants, sorted."""
+    return tuple(sorted(CODATA_ENTRIES))

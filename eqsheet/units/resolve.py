@@ -1,11 +1,13 @@
 """Sizes of the published units, resolved by the units library pint into the table the program reads.
 
-Run at development time, after a change of ``grammar/units.toml``::
+Run at development time, after a change of ``grammar/units.toml`` or of the names in ``constants.py``::
 
     python -m eqsheet.units.resolve
 
-It writes ``table.py`` beside this module. A test runs the same and compares, so table and list cannot part.
-The units library is not needed to run the program: importing it would take longer than solving a worksheet.
+It writes ``table.py`` and, with the physical constants of `scipy.constants`, ``codata.py`` beside this
+module.
+Tests run the same and compare, so tables and lists cannot part. Neither library is imported when the program
+runs: that would take longer than solving a worksheet.
 
 The library computes in exact fractions here. Where a size holds pi, the list says so and the power of pi is
 kept beside the fraction, so that ``rev/rev`` is exactly 1 and ``rpm`` is correctly rounded.
@@ -18,8 +20,11 @@ from fractions import Fraction
 from pathlib import Path
 from typing import Any
 
+from eqsheet.units.constants import CODATA_ENTRIES
+
 LIST = Path(__file__).resolve().parents[2] / "grammar" / "units.toml"
 TABLE = Path(__file__).resolve().with_name("table.py")
+CODATA = Path(__file__).resolve().with_name("codata.py")
 
 # SI Brochure, 9th edition (2019), table 7, as far as any unit of the list takes them.
 PREFIXES = {
@@ -163,5 +168,27 @@ def table_text() -> str:
     return "\n".join(lines)
 
 
-if __name__ == "__main__":
+def codata_text() -> str:
+    """Text of ``codata.py``: the entries of the CODATA list that ``constants.py`` names."""
+    from scipy.constants import value
+
+    entries = [entry for entry, _, _ in CODATA_ENTRIES.values()]
+    lines = [
+        '"""Values of the CODATA list in SI units. Written by `python -m eqsheet.units.resolve`."""',
+        "",
+        "VALUES: dict[str, float] = {",
+        *(f'    "{entry}": {float(value(entry))!r},' for entry in entries),
+        "}",
+        "",
+    ]
+    return "\n".join(lines)
+
+
+def main() -> None:
+    """Write both files."""
     TABLE.write_text(table_text(), encoding="utf-8")
+    CODATA.write_text(codata_text(), encoding="utf-8")
+
+
+if __name__ == "__main__":
+    main()
