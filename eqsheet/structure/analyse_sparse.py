@@ -84,9 +84,9 @@ def analyse_sparse(indptr: Indices, indices: Indices, columns: int) -> Structure
         unmatched_columns=tuple([c for c in under.columns if column_match[c] < 0]),
         blocks=_ordered_blocks(
             incidence,
-            np.array(row_match),
-            np.array(column_match),
-            np.array(under.rows, int),
+            np.array(row_match, dtype=np.intp),
+            np.array(column_match, dtype=np.intp),
+            np.array(under.rows, dtype=np.intp),
             set(over.columns),
         ),
         conflicts=conflicts(over, row_lists, row_match),
