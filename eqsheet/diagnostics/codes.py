@@ -100,8 +100,8 @@ def reference() -> str:
     parts = [
         "# Diagnostics",
         "Every message carries a code. Below, for each: what it means, a worksheet that gives it, the\n"
-        "cure, and the worksheet mended. Written by `python -m eqsheet.diagnostics.codes`; edit the pages in\n"
-        "`eqsheet/diagnostics/pages` instead.",
+        "cure, and the worksheet mended. Written by `python -m eqsheet.diagnostics.codes` from the\n"
+        "pages in `eqsheet/diagnostics/pages`.",
     ]
     for code in codes():
         about = page(code)
