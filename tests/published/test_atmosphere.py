@@ -1,0 +1,68 @@
+"""U.S. Standard Atmosphere, 1976 (NOAA-S/T 76-1562), the two lowest layers, by geometric altitude."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import pytest
+
+import eqsheet
+
+Solve = Callable[[str], eqsheet.Solution]
+
+ATMOSPHERE = """
+# Constants of the standard itself, not today's best values.
+R_star = 8314.32 J/(kmol*K)
+M_0 = 28.9644 kg/kmol
+g_0 = 9.80665 m/s^2
+r_0 = 6356.766 km
+T_0 = 288.15 K
+p_0 = 1013.25 mbar
+lapse = 6.5 K/km
+H_1 = 11 km
+T_1 = T_0 - lapse*H_1
+p_1 = p_0*(T_1/T_0)^(g_0*M_0/(R_star*lapse))
+
+geopotential: H = r_0*Z/(r_0 + Z)
+T = if H <= H_1 then T_0 - lapse*H else T_1
+p = if H <= H_1 then p_0*(T/T_0)^(g_0*M_0/(R_star*lapse)) else p_1*exp(-g_0*M_0*(H - H_1)/(R_star*T_1))
+rho = p*M_0/(R_star*T)
+show Z in m, H in m, p in Pa, T in K, rho in kg/m^3
+"""
+
+# Table 1 of the standard, from memory: Z in m, T in K, p in Pa, rho in kg/m^3, with the digits printed.
+TABLE = [
+    (5000, 255.676, 5.4048e4, 7.3643e-1),
+    (10000, 223.252, 2.6500e4, 4.1351e-1),
+    (15000, 216.650, 1.2111e4, 1.9476e-1),
+    (20000, 216.650, 5.5293e3, 8.8910e-2),
+]
+
+
+@pytest.mark.parametrize(("altitude", "temperature", "pressure", "density"), TABLE)
+def test_table_by_altitude(
+    solved: Solve, altitude: int, temperature: float, pressure: float, density: float
+) -> None:
+    solution = solved(f"Z = {altitude} m\n{ATMOSPHERE}")
+    assert solution["T"].value == pytest.approx(temperature, abs=0.0006)
+    assert solution["p"].value == pytest.approx(pressure, rel=2e-5)
+    assert solution["rho"].value == pytest.approx(density, rel=2e-5)
+
+
+@pytest.mark.parametrize(("altitude", "temperature", "pressure", "density"), TABLE)
+def test_altitude_from_pressure(
+    solved: Solve, altitude: int, temperature: float, pressure: float, density: float
+) -> None:
+    """What an altimeter does: the layer is not known before the altitude is."""
+    del density
+    start = "Z near 8 km within 0 km .. 20.1 km\nH near 8 km within 0 km .. 20.1 km"
+    solution = solved(f"p = {pressure} Pa\n{start}\n{ATMOSPHERE}")
+    assert solution["Z"].to("m") == pytest.approx(altitude, abs=0.3)
+    assert solution["T"].to("K") == pytest.approx(temperature, abs=0.003)
+
+
+def test_base_pressures_of_the_layers(solved: Solve) -> None:
+    """Geopotential base levels, table 4 of the standard: 22632.06 Pa at 11 km, 5474.889 Pa at 20 km."""
+    solution = solved(f"H = 20 km\n{ATMOSPHERE}")
+    assert solution["p_1"].si == pytest.approx(22632.06, abs=0.01)
+    assert solution["p"].value == pytest.approx(5474.889, abs=0.002)
