@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from textwrap import dedent
 
 import pytest
 
@@ -11,10 +12,10 @@ import eqsheet
 
 @pytest.fixture
 def solved() -> Callable[[str], eqsheet.Solution]:
-    """Solves the text of a worksheet; a worksheet that is not solved fails the test with its diagnostics."""
+    """Solves a text, its common indentation removed; one that is not solved fails the test, saying why."""
 
     def solve(text: str) -> eqsheet.Solution:
-        solution = eqsheet.parse(text).solve()
+        solution = eqsheet.parse(dedent(text)).solve()
         said = "\n".join(f"{d.code}: {d.message}" for d in solution.diagnostics)
         assert solution.status == "solved", f"{solution.status}\n{said}"
         return solution
