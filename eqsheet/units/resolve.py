@@ -168,6 +168,11 @@ def table_text() -> str:
     return "\n".join(lines)
 
 
+def _literal(value: float) -> str:
+    """`value` as the code formatter writes it."""
+    return repr(float(value)).replace("e+", "e")
+
+
 def codata_text() -> str:
     """Text of ``codata.py``: the entries of the CODATA list that ``constants.py`` names."""
     from scipy.constants import value
@@ -177,7 +182,7 @@ def codata_text() -> str:
         '"""Values of the CODATA list in SI units. Written by `python -m eqsheet.units.resolve`."""',
         "",
         "VALUES: dict[str, float] = {",
-        *(f'    "{entry}": {float(value(entry))!r},' for entry in entries),
+        *(f'    "{entry}": {_literal(value(entry))},' for entry in entries),
         "}",
         "",
     ]
