@@ -30,8 +30,8 @@ def one_line(diagnostic: Diagnostic) -> str:
     >>> from eqsheet.diagnostics.diagnostic import Label, error
     >>> from eqsheet.diagnostics.source import Source, Span
     >>> where = Span(Source("loop.eqsheet", "D = 5 lbs"), 6, 9)
-    >>> one_line(error("unknown-unit", 'unknown unit "lbs"', Label(where)))
-    'loop.eqsheet:1:7: error: unknown unit "lbs" [unknown-unit]'
+    >>> one_line(error("unknown-unit", "unknown unit `lbs`", Label(where)))
+    'loop.eqsheet:1:7: error: unknown unit `lbs` [unknown-unit]'
     """
     where = place(diagnostic)
     return f"{where}: {headline(diagnostic)}" if where else headline(diagnostic)

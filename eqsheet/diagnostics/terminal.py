@@ -2,10 +2,10 @@
 
 ::
 
-    loop.eqsheet:4:7: error: unknown unit "lbs" [unknown-unit]
+    loop.eqsheet:4:7: error: unknown unit `lbs` [unknown-unit]
        4 | m = 5 lbs
          |       ^^^
-      help: write lb
+      help: write `lb`
 """
 
 from __future__ import annotations

@@ -81,7 +81,7 @@ class UnitTable:
     >>> table.resolve("kg/m^3", (("kg", Fraction(1)), ("m", Fraction(-3)))).factor
     1.0
     >>> table.resolve("lbs", (("lbs", Fraction(1)),)).help
-    'write lb'
+    'write `lb`'
     """
 
     ambient: float = STANDARD_ATMOSPHERE
@@ -114,15 +114,15 @@ class UnitTable:
             return UnitProblem(
                 "new-unit-value",
                 0,
-                f'a new unit cannot be a reading in "{unit.text}"',
-                "use a unit without an origin (K, bar)",
+                f"a new unit cannot be a reading in `{unit.text}`",
+                "use a unit without an origin, such as `K` or `bar`",
             )
         factor = count * unit.factor
         if not _SMALLEST_FACTOR < factor < _LARGEST_FACTOR:
             return UnitProblem(
                 "new-unit-value",
                 0,
-                f'the new unit "{symbol}" must be a positive number of "{unit.text or "1"}"',
+                f"the size of the new unit `{symbol}` must be positive and finite",
                 "",
             )
         atom = _Atom(unit.dimension, Fraction(factor), difference=unit.difference, sense=unit.sense)
@@ -139,7 +139,7 @@ class UnitTable:
             return UnitProblem(
                 "unit-redefined",
                 0,
-                f'"{symbol}" is already a unit{meaning}',
+                f"`{symbol}` is already a unit{meaning}",
                 "choose another symbol, or leave the line out",
             )
         return UnitTable(self.ambient, MappingProxyType({**self.added, symbol: atom}))
@@ -181,7 +181,7 @@ class UnitTable:
                 return UnitProblem(
                     "unit-out-of-range",
                     index,
-                    f'the exponent {exponent} of "{symbol}" is beyond {LARGEST_EXPONENT}',
+                    f"the exponent {exponent} of `{symbol}` is beyond {LARGEST_EXPONENT}",
                     "check the exponent",
                 )
             atoms.append((atom, exponent))
@@ -190,7 +190,7 @@ class UnitTable:
         factor = _product(atoms)
         if not _SMALLEST_FACTOR < factor < _LARGEST_FACTOR:
             return UnitProblem(
-                "unit-out-of-range", 0, f'the size of "{text}" is out of range', "check the exponents"
+                "unit-out-of-range", 0, f"the size of `{text}` is out of range", "check the exponents"
             )
         dimension = DIMENSIONLESS
         for atom, exponent in atoms:
@@ -214,25 +214,25 @@ class UnitTable:
         symbol = symbol.translate(_LOOKALIKES)
         if symbol in AMBIGUOUS:
             why, cure = AMBIGUOUS[symbol]
-            return UnitProblem("ambiguous-unit", index, f'"{symbol}" is not a unit here: {why}', cure)
+            return UnitProblem("ambiguous-unit", index, f"`{symbol}` is not a unit here: {why}", cure)
         cure = self._cure(symbol)
-        return UnitProblem("unknown-unit", index, f'unknown unit "{symbol}"', cure)
+        return UnitProblem("unknown-unit", index, f"unknown unit `{symbol}`", cure)
 
     def _cure(self, symbol: str) -> str:
         if symbol in SPELLINGS:
-            return f"write {SPELLINGS[symbol]}"
+            return f"write `{SPELLINGS[symbol]}`"
         stem = symbol.rstrip("0123456789")
         if stem != symbol and self._atom(stem) is not None:
-            return f"write {stem}^{symbol[len(stem) :]}"
+            return f"write `{stem}^{symbol[len(stem) :]}`"
         same_but_case = [known for known in self.known_symbols() if known.lower() == symbol.lower()]
         if same_but_case:
             return f"case counts in units: write {_either(same_but_case)}"
         for cut in range(1, len(symbol)):
             if self._atom(symbol[:cut]) is not None and self._atom(symbol[cut:]) is not None:
-                return f"write {symbol[:cut]}*{symbol[cut:]}"
+                return f"write `{symbol[:cut]}*{symbol[cut:]}`"
         near = closest(symbol, self.known_symbols())
         meant = f"write {_either(near)}, or " if near else ""
-        return f"{meant}make it a unit of the worksheet: new unit {symbol}"
+        return f"{meant}make it a unit of the worksheet: `new unit {symbol}`"
 
 
 def as_difference(unit: Unit) -> Unit:
@@ -314,4 +314,4 @@ def _published_symbols() -> frozenset[str]:
 
 
 def _either(choices: Sequence[str]) -> str:
-    return " or ".join(choices)
+    return " or ".join(f"`{choice}`" for choice in choices)

@@ -176,7 +176,7 @@ def test_newton_metre_needs_its_operator() -> None:
     assert problem("Nm").code == "ambiguous-unit"
     assert "N*m" in problem("Nm").help
     assert problem("Nm^2").code == "ambiguous-unit"
-    assert problem("kNm").help == "write kN*m"
+    assert problem("kNm").help == "write `kN*m`"
     assert unit("N*m").factor == 1.0
 
 
@@ -211,23 +211,23 @@ def test_angles_and_parts_are_plain_numbers() -> None:
 @pytest.mark.parametrize(
     ("written", "help_starts"),
     [
-        ("lbs", "write lb"),
-        ("sec", "write s"),
-        ("hr", "write h"),
-        ("kgs", "write kg"),
-        ("KW", "case counts in units: write kW"),
-        ("kw", "case counts in units: write kW"),
-        ("Kg", "case counts in units: write kg"),
-        ("mtr", "write m"),
-        ("ltr", "write L"),
-        ("bars", "write bar"),
-        ("degrees", "write deg"),
-        ("mmWC", "write mmH2O"),
-        ("m3", "write m^3"),
-        ("cm2", "write cm^2"),
-        ("Pas", "write Pa*s"),
-        ("gpn", "write gon or gpm, or make it"),
-        ("widget", "make it a unit of the worksheet: new unit widget"),
+        ("lbs", "write `lb`"),
+        ("sec", "write `s`"),
+        ("hr", "write `h`"),
+        ("kgs", "write `kg`"),
+        ("KW", "case counts in units: write `kW`"),
+        ("kw", "case counts in units: write `kW`"),
+        ("Kg", "case counts in units: write `kg`"),
+        ("mtr", "write `m`"),
+        ("ltr", "write `L`"),
+        ("bars", "write `bar`"),
+        ("degrees", "write `deg`"),
+        ("mmWC", "write `mmH2O`"),
+        ("m3", "write `m^3`"),
+        ("cm2", "write `cm^2`"),
+        ("Pas", "write `Pa*s`"),
+        ("gpn", "write `gon` or `gpm`, or make it"),
+        ("widget", "make it a unit of the worksheet: `new unit widget`"),
     ],
 )
 def test_help_for_an_unknown_unit(written: str, help_starts: str) -> None:
