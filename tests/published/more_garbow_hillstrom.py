@@ -1,9 +1,9 @@
 """The square problems of Moré, Garbow and Hillstrom, with their published starts.
 
-Source: J. J. Moré, B. S. Garbow, K. E. Hillstrom, Testing unconstrained optimization software, ACM Transactions on
-Mathematical Software 7 (1981), 17-41, section 3; numbers below are the paper's. Problems with m >= n free are taken with m = n.
-Problem 11 is printed there with a misprint (its own solution (50, 25, 1.5) is none); it is taken as
-``exp(-|y_i - x_2|^x_3 / x_1) - t_i``, which has that solution.
+Source: J. J. Moré, B. S. Garbow, K. E. Hillstrom, Testing unconstrained optimization software, ACM
+Transactions on Mathematical Software 7 (1981), 17-41, section 3; numbers below are the paper's. Problems
+with m >= n free are taken with m = n. Problem 11 is printed there with a misprint (its own solution (50,
+25, 1.5) is none); it is taken as ``exp(-|y_i - x_2|^x_3 / x_1) - t_i``, which has that solution.
 """
 
 from __future__ import annotations

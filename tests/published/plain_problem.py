@@ -1,4 +1,5 @@
-"""Problems from formulas written once for any kind of number: floats, complex steps, sized numbers, 50 digits."""
+"""Problems from formulas written once for any kind of number: floats, complex steps, sized numbers, 50
+digits."""
 
 from __future__ import annotations
 
@@ -11,7 +12,8 @@ from sized_numbers import SizedMath, sized
 
 from eqsheet.solve.problem import Problem
 
-# Complex-step derivatives are exact to rounding for any step this small (Squire and Trapp, SIAM Review 40, 1998).
+# Complex-step derivatives are exact to rounding for any step this small (Squire and Trapp, SIAM Review 40,
+# 1998).
 COMPLEX_STEP = 1e-100
 
 
@@ -31,7 +33,8 @@ ARITHMETIC = (OverflowError, ZeroDivisionError, ValueError)
 
 
 def plain_problem(formulas, start, lower=None, upper=None, magnitude=None, seen=None) -> Problem:
-    """A `Problem` from ``formulas(x, m)``, which gives the list of residuals of the list x with functions from m.
+    """A `Problem` from ``formulas(x, m)``, which gives the list of residuals of the list x with functions
+    from m.
 
     Parameters
     ----------
@@ -85,7 +88,8 @@ def plain_problem(formulas, start, lower=None, upper=None, magnitude=None, seen=
 
 
 def exact_newton_distance(formulas, x) -> float:
-    """How far the true root is from x by 50-digit Newton steps, relative to max(|x|, 1); inf where they do not converge."""
+    """How far the true root is from x by 50-digit Newton steps, relative to max(|x|, 1); inf where they do
+    not converge."""
     with mpmath.workdps(50):
         point = mpmath.matrix([mpmath.mpf(float(v)) for v in x])
         begin = point.copy()

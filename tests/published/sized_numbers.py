@@ -1,6 +1,7 @@
 """Numbers that carry the size of the terms they were made of, for the `sizes` of published problems.
 
-A sum has the size of its largest term, a product the product of the sizes; functions start afresh at their value.
+A sum has the size of its largest term, a product the product of the sizes; functions start afresh at their
+value.
 """
 
 from __future__ import annotations

@@ -1,0 +1,240 @@
+"""Damped Newton iteration with the natural monotonicity test.
+
+References
+----------
+P. Deuflhard, Newton Methods for Nonlinear Problems: Affine Invariance and Adaptive Algorithms, Springer
+2004, section 3.3.3, algorithm NLEQ-ERR: damping by the norm of the simplified Newton correction, which no
+linear transformation of the equations changes. Deviations: steps are cut unknown by unknown at the bounds,
+the estimate of the damping compares with the cut step, the weights of the norm keep every unknown at its
+own size, and the iteration ends at rounding level.
+"""
+
+from __future__ import annotations
+
+from math import sqrt
+from typing import NamedTuple
+
+import numpy as np
+
+from eqsheet.solve.factor import Factor, factorise, smallest_singular_vectors
+from eqsheet.solve.interior import Interior
+from eqsheet.solve.outcome import Outcome, Status
+from eqsheet.solve.problem import Matrix, Problem, Vector
+from eqsheet.solve.termination import (
+    ACCEPTABLE,
+    AT_REST,
+    ROUNDING,
+    SLOW,
+    confirmed,
+    equation_sizes,
+    floored,
+    kind_of_root,
+    residual_at,
+    scaled_norm,
+)
+from eqsheet.solve.trail import Trail
+
+# Smallest damping tried: below it a step changes no more than the rounding of the residuals does.
+LEAST_DAMPING = 2.0**-30
+# The norm of the damping weighs no unknown against less than this part of its typical size.
+WEIGHT_FLOOR = 0.1
+# Contraction of the corrections by a full step that needs no further look at the damping.
+SURE_CONTRACTION = 0.25
+# Ratio of two steps near the root from which on it is multiple: 1/2 at a double root, nearly 0 at a single
+# one.
+MULTIPLE = 0.4
+# Norm of the step below which it is looked at unknown by unknown.
+NEAR = 1e-6
+
+
+class Accepted(NamedTuple):
+    """A damped step that passed the test.
+
+    Attributes
+    ----------
+    x : ndarray (n,)
+    residual : ndarray (n,)
+    jacobian : ndarray (n, n)
+    damping : float
+    limiting : int
+        Unknown that limited the step, -1 if none did.
+    contraction : float
+        Norm of the simplified correction relative to that of the step.
+    correction : ndarray (n,)
+        Simplified Newton correction: that of the old Jacobian for the new residual, in the unit of x.
+    step : ndarray (n,)
+        The full Newton step that was damped, in the unit of x.
+    """
+
+    x: Vector
+    residual: Vector
+    jacobian: Matrix
+    damping: float
+    limiting: int
+    contraction: float
+    correction: Vector
+    step: Vector
+
+
+def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
+    """The root that damped Newton steps lead to from `start`, or where and why they end.
+
+    Parameters
+    ----------
+    problem : Problem
+    start : ndarray (n,)
+        Moved strictly inside the bounds first.
+    trail : Trail
+        Written on the way.
+    """
+    interior = Interior(problem)
+    x = interior.enter(start)
+    residual, jacobian = problem.linearise(x)
+    if not _finite(residual, jacobian):
+        return trail.close(Status.DOMAIN, x, np.inf)
+    damping, limiting = 0.0, -1
+    last: Accepted | None = None
+    last_rest, ratio = np.inf, 0.0
+    factor: Factor | None = None
+    while True:
+        scaled = residual_at(problem, x, residual, jacobian)
+        trail.note(x, scaled, damping, limiting)
+        if scaled <= ROUNDING:
+            return _finish(problem, interior, trail, x, residual, jacobian, factor, ratio)
+        if trail.spent:
+            return trail.close(Status.BUDGET)
+        weights = np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude)
+        factor = factorise(jacobian, weights)
+        step = -factor.solve(residual)
+        norm = _norm(step)
+        rest = float((np.abs(step * weights) / floored(x, problem)).max()) if norm < NEAR else np.inf
+        ratio = rest / last_rest if last_rest < np.inf else 0.0
+        if rest <= ROUNDING or (rest <= AT_REST and ratio > SLOW):
+            return _finish(problem, interior, trail, x, residual, jacobian, factor, ratio)
+        first = 1.0 if last is None else _predicted_damping(last, step, weights)
+        accepted = _first_accepted(problem, interior, x, factor, step, norm, first)
+        if accepted is None:
+            if rest <= AT_REST:
+                return _finish(problem, interior, trail, x, residual, jacobian, factor, ratio)
+            return _give_up(interior, trail, x, step * weights, factor)
+        last, last_rest = accepted, rest
+        x, residual, jacobian, damping, limiting = accepted[:5]
+
+
+def _predicted_damping(last: Accepted, step: Vector, weights: Vector) -> float:
+    """Damping to begin with, from how well the last Jacobian foretold this step."""
+    if last.damping == 1.0 and last.contraction < SURE_CONTRACTION:
+        return 1.0
+    correction = last.correction / weights
+    deviation = _norm(correction - step) * _norm(step)
+    if deviation <= 0.0:
+        return 1.0
+    estimate = last.damping * _norm(last.step / weights) * _norm(correction) / deviation
+    return min(1.0, max(estimate, LEAST_DAMPING))
+
+
+def _first_accepted(
+    problem: Problem,
+    interior: Interior,
+    x: Vector,
+    factor: Factor,
+    step: Vector,
+    norm: float,
+    damping: float,
+) -> Accepted | None:
+    """The first damped step that the natural monotonicity test accepts, or None where none does."""
+    weights = factor.weights
+    full = weights * step
+    raised = False
+    while damping >= LEAST_DAMPING:
+        trial, limiting = interior.cut(x, damping * full, norm)
+        # The Jacobian at the trial point is asked for with the residual: nearly every first trial is
+        # accepted.
+        residual, jacobian = problem.linearise(trial)
+        if not _finite(residual, jacobian):
+            damping *= 0.5
+            continue
+        correction = -factor.solve(residual)
+        contraction = _norm(correction) / norm
+        if damping == 1.0 and contraction < SURE_CONTRACTION:
+            return Accepted(
+                trial, residual, jacobian, damping, limiting, contraction, correction * weights, full
+            )
+        # Deviation from what the linear model predicts for the step as taken: the nonlinearity along it.
+        deviation = _norm(correction - (step - (trial - x) / weights))
+        estimate = 0.5 * norm * damping * damping / deviation if deviation > 0.0 else np.inf
+        if not contraction < 1.0:
+            damping = min(estimate, 0.5 * damping)
+            continue
+        if limiting < 0 and not raised and min(1.0, estimate) >= 4.0 * damping:
+            damping = min(1.0, estimate)
+            raised = True
+            continue
+        if limiting < 0 and damping < 1.0:
+            limiting = int(np.abs(step).argmax())
+        return Accepted(trial, residual, jacobian, damping, limiting, contraction, correction * weights, full)
+    return None
+
+
+def _finish(
+    problem: Problem,
+    interior: Interior,
+    trail: Trail,
+    x: Vector,
+    residual: Vector,
+    jacobian: Matrix,
+    factor: Factor | None,
+    ratio: float,
+) -> Outcome:
+    """One more correction if it improves the residuals, then the judgement of the point.
+
+    `factor` may be that of the point before: so near a root it serves as well. `ratio` is that of the last
+    two steps close to the root: far from 0, it betrays a multiple root that row scaling hides from the
+    condition number.
+    """
+    if factor is None:  # the start itself is a root
+        factor = factorise(jacobian, np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude))
+    sizes = equation_sizes(problem, x, jacobian)
+    scaled = scaled_norm(residual, sizes)
+    step = -factor.weights * factor.solve(residual)
+    polished, cut = interior.cut(x, step, 0.0)
+    if cut < 0:
+        improved = problem.residual(polished)
+        again = scaled_norm(improved, sizes)
+        if again <= scaled:
+            x, residual, scaled = polished, improved, again
+    if not (scaled <= ACCEPTABLE and confirmed(problem, x, residual, jacobian)):
+        return _give_up(interior, trail, x, step, factor)
+    kind = kind_of_root(problem, x, sizes, factor)
+    if kind is Status.CONVERGED and MULTIPLE < ratio < SLOW:
+        kind = Status.DOUBLE
+    if kind is Status.CONVERGED:
+        return trail.close(kind, x, scaled, interior.resting(x))
+    _, left, right = smallest_singular_vectors(factor.matrix)
+    return trail.close(kind, x, scaled, interior.resting(x), tuple(left.tolist()), tuple(right.tolist()))
+
+
+def _give_up(interior: Interior, trail: Trail, x: Vector, step: Vector, factor: Factor) -> Outcome:
+    """The outcome where no damped step helps: held by bounds, singular, or stalled."""
+    pressed = interior.pressed(x, step)
+    if factor.singular:
+        _, left, right = smallest_singular_vectors(factor.matrix)
+        return trail.close(
+            Status.SINGULAR,
+            on_bound=pressed,
+            null_equations=tuple(left.tolist()),
+            null_unknowns=tuple(right.tolist()),
+        )
+    return trail.close(Status.HELD if pressed else Status.STALLED, on_bound=pressed)
+
+
+def _norm(vector: Vector) -> float:
+    """Root mean square."""
+    return sqrt(float(np.dot(vector, vector)) / vector.size)
+
+
+def _finite(residual: Vector, jacobian: Matrix) -> bool:
+    """Whether all values are finite (a sum is, if and only if all its terms are)."""
+    data = jacobian.data if hasattr(jacobian, "tocsc") else jacobian
+    total = float(np.add.reduce(residual)) + float(np.add.reduce(data, axis=None))
+    return total - total == 0.0

@@ -1,0 +1,187 @@
+"""Safeguarded Newton iteration for one unknown, in plain floats.
+
+The damped Newton iteration of `newton` for n = 1, where the natural monotonicity test is that of the
+residual itself (Deuflhard 2004, section 3.3), with a bracket kept once a change of sign has been seen: a
+step that leaves it is replaced by its middle (Press et al., Numerical Recipes, section 9.4, "rtsafe", gives
+the idea; the code is our own).
+"""
+
+from __future__ import annotations
+
+from math import inf, nextafter
+
+from eqsheet.solve.factor import SINGULAR_CONDITION
+from eqsheet.solve.interior import LEAST_FRACTION, NUDGE, RESTING
+from eqsheet.solve.newton import LEAST_DAMPING
+from eqsheet.solve.outcome import Outcome, Status
+from eqsheet.solve.problem import ScalarProblem
+from eqsheet.solve.termination import (
+    ACCEPTABLE,
+    AT_REST,
+    BESIDE,
+    PROBE,
+    ROUNDING,
+    SLOW,
+    SUSPECT_CONDITION,
+    ZERO_FLOOR,
+)
+from eqsheet.solve.trail import Trail
+
+
+def scalar_newton(problem: ScalarProblem, start: float, trail: Trail) -> Outcome:
+    """The root that safeguarded Newton steps lead to from `start`, or where and why they end.
+
+    Parameters
+    ----------
+    problem : ScalarProblem
+    start : float
+        Moved strictly inside the bounds first.
+    trail : Trail
+        Written on the way.
+    """
+    x = enter(problem, start)
+    value, slope = problem.linearise(x)
+    if not _finite(value, slope):
+        return trail.close(Status.DOMAIN, x, inf)
+    damping, limiting = 0.0, -1
+    # Nearest points known to either side with the opposite sign of the residual at x.
+    below, above = -inf, inf
+    last_rest = inf
+    while True:
+        floor = max(abs(x), ZERO_FLOOR * problem.magnitude)
+        scaled = scaled_residual(problem, x, value, slope)
+        trail.note(x, scaled, damping, limiting)
+        step = -value / slope if slope != 0.0 else (0.0 if value == 0.0 else inf)
+        rest = abs(step) / floor
+        if scaled <= ROUNDING or rest <= ROUNDING or (rest <= AT_REST and rest > SLOW * last_rest):
+            return finish(problem, x, value, slope, trail)
+        if trail.spent:
+            return trail.close(Status.BUDGET)
+        if slope == 0.0:
+            if below == -inf and above == inf:
+                return trail.close(Status.SINGULAR)
+            step = (below if above == inf else above) - x
+        last_rest = rest
+        damping = 1.0
+        while True:
+            trial = x + damping * step
+            limiting = -1 if damping == 1.0 else 0
+            if not below < trial < above:
+                # Only one side can hold an opposite sign: half way to it.
+                trial, limiting = 0.5 * (x + (below if trial <= below else above)), 0
+            if not problem.lower < trial < problem.upper:
+                trial, limiting = _cut(problem, x, trial, min(1.0, rest)), 0
+            new_value, new_slope = problem.linearise(trial)
+            if _finite(new_value, new_slope):
+                crossed = (new_value > 0.0) != (value > 0.0) and new_value != 0.0
+                if abs(new_value) < abs(value):
+                    break
+                if crossed:
+                    if trial > x:
+                        above = min(above, trial)
+                    else:
+                        below = max(below, trial)
+            damping *= 0.5
+            if damping < LEAST_DAMPING or trial == x:
+                if rest <= AT_REST:
+                    return finish(problem, x, value, slope, trail)
+                held = not problem.lower < x + step < problem.upper
+                return trail.close(Status.HELD if held else Status.STALLED, on_bound=(0,) if held else ())
+        if crossed:
+            # The old point is now the one of opposite sign, and what was known beyond it is of the same sign.
+            below, above = (x, inf) if trial > x else (-inf, x)
+        x, value, slope = trial, new_value, new_slope
+
+
+def enter(problem: ScalarProblem, x: float) -> float:
+    """The point itself if strictly inside the bounds, else moved in."""
+    if problem.lower < x < problem.upper:
+        return x
+    room = NUDGE * min(problem.upper - problem.lower, problem.magnitude)
+    inside = problem.lower + room if x <= problem.lower else problem.upper - room
+    return _strictly(problem, inside)
+
+
+def scaled_residual(problem: ScalarProblem, x: float, value: float, slope: float) -> float:
+    """|value| relative to the size of the equation, as `termination` defines it; inf where that is zero."""
+    if value == 0.0:
+        return 0.0
+    size = max(problem.size(x), abs(slope) * max(abs(x), ZERO_FLOOR * problem.magnitude))
+    return abs(value) / size if size > 0.0 else inf
+
+
+def finish(problem: ScalarProblem, x: float, value: float, slope: float, trail: Trail) -> Outcome:
+    """One more correction if it improves the residual, then the judgement of the point."""
+    if slope != 0.0 and value != 0.0:
+        polished = x - value / slope
+        if problem.lower < polished < problem.upper:
+            again, again_slope = problem.linearise(polished)
+            if abs(again) <= abs(value):
+                x, value, slope = polished, again, again_slope
+    scaled = scaled_residual(problem, x, value, slope)
+    if not scaled <= ACCEPTABLE or not _confirmed(problem, x, value, slope):
+        return trail.close(Status.STALLED, x, scaled)
+    span = max(
+        abs(problem.lower if x - problem.lower < problem.upper - x else problem.upper), problem.magnitude
+    )
+    resting = (0,) if min(x - problem.lower, problem.upper - x) <= RESTING * span else ()
+    kind = _kind_of_root(problem, x, slope)
+    null = () if kind is Status.CONVERGED else (1.0,)
+    return trail.close(kind, x, scaled, resting, null, null)
+
+
+def _kind_of_root(problem: ScalarProblem, x: float, slope: float) -> Status:
+    """Whether the root is single, double, or one of a continuum; see `termination.kind_of_root`."""
+    floor = max(abs(x), ZERO_FLOOR * problem.magnitude)
+    reach = max(abs(x), problem.magnitude if abs(x) < ZERO_FLOOR * problem.magnitude else 0.0)
+    size = max(problem.size(x), abs(slope) * floor)
+    if abs(slope) * reach * SUSPECT_CONDITION >= size > 0.0:
+        return Status.CONVERGED
+    near, far = (_least_beside(problem, x, distance * reach) for distance in (PROBE, 2.0 * PROBE))
+    if far <= 64.0 * ROUNDING * size:
+        return Status.CONTINUUM
+    if far > 3.0 * near or abs(slope) * reach * SINGULAR_CONDITION < size:
+        return Status.DOUBLE
+    return Status.CONVERGED
+
+
+def _least_beside(problem: ScalarProblem, x: float, distance: float) -> float:
+    """Smaller of the residuals at `distance` to either side; inf where neither can be had."""
+    values = [
+        abs(problem.residual(p)) for p in (x - distance, x + distance) if problem.lower < p < problem.upper
+    ]
+    return min((v for v in values if v < inf), default=inf)
+
+
+def _confirmed(problem: ScalarProblem, x: float, value: float, slope: float) -> bool:
+    """Whether a residual small only against the slope belongs to a root, not a pole; see `termination`."""
+    if abs(value) <= ACCEPTABLE * problem.size(x):
+        return True
+    shift = BESIDE * max(abs(x), ZERO_FLOOR * problem.magnitude)
+    for moved in (x + shift, x - shift):
+        if problem.lower < moved < problem.upper:
+            there = problem.residual(moved)
+            if abs(there) < inf:
+                return abs(there) > abs(value)
+    return False
+
+
+def _cut(problem: ScalarProblem, x: float, trial: float, closeness: float) -> float:
+    """The trial stopped short of the bound it would pass."""
+    fraction = max(LEAST_FRACTION, 1.0 - closeness)
+    bound = problem.lower if trial <= problem.lower else problem.upper
+    return _strictly(problem, x + fraction * (bound - x))
+
+
+def _strictly(problem: ScalarProblem, x: float) -> float:
+    """The point, moved by one unit in the last place where rounding has put it onto a bound."""
+    if x <= problem.lower:
+        return nextafter(problem.lower, inf)
+    if x >= problem.upper:
+        return nextafter(problem.upper, -inf)
+    return x
+
+
+def _finite(value: float, slope: float) -> bool:
+    """Whether both are finite."""
+    return value - value == 0.0 and slope - slope == 0.0

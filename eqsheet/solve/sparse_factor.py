@@ -1,0 +1,50 @@
+"""The linear solve for large blocks: sparse LU of the scaled Jacobian; imports scipy, so on demand only."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+import scipy.sparse as sp
+from scipy.sparse.linalg import lsqr, splu
+
+from eqsheet.solve.factor import Factor
+from eqsheet.solve.problem import Matrix, Vector
+
+
+@dataclass(frozen=True, slots=True)
+class SparseInverse:
+    """Applies the inverse by ``@``, as a dense inverse does."""
+
+    lu: Any
+
+    def __matmul__(self, right: Vector) -> Vector:
+        return np.asarray(self.lu.solve(right))
+
+
+@dataclass(frozen=True, slots=True)
+class SparseLeastSquares:
+    """Applies the pseudo-inverse of a singular matrix by ``@`` (LSQR: Paige and Saunders, TOMS 8, 1982)."""
+
+    matrix: Any
+
+    def __matmul__(self, right: Vector) -> Vector:
+        return np.asarray(lsqr(self.matrix, right, atol=1e-14, btol=1e-14, iter_lim=500)[0])
+
+
+def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
+    """As `factor.factorise`; the condition is that of the pivots, a lower estimate."""
+    scaled = sp.csc_matrix(jacobian @ sp.diags(weights))
+    rows = np.asarray(abs(scaled).sum(axis=1)).ravel()
+    rows[rows == 0.0] = 1.0
+    scaled = sp.csc_matrix(sp.diags(1.0 / rows) @ scaled)
+    try:
+        lu = splu(scaled)
+    except RuntimeError:
+        # SuperLU's only way to say "exactly singular".
+        return Factor(scaled, weights, rows, SparseLeastSquares(scaled), np.inf)
+    pivots = np.abs(lu.U.diagonal())
+    smallest = float(pivots.min())
+    condition = float(pivots.max()) / smallest if smallest > 0.0 else np.inf
+    return Factor(scaled, weights, rows, SparseInverse(lu), condition)

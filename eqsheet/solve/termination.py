@@ -1,0 +1,151 @@
+"""The stopping test: how large residuals and steps are, and what kind of root a point is.
+
+Residuals are judged against the size of their equation, ``max(size_i, sum_j |J_ij| |x_j|)``: the second
+part is the change that a relative change of the unknowns makes, so a residual of a few roundings of it is
+explained by the rounding of the unknowns alone (a backward error in the sense of Rigal and Gaches, J. ACM
+14, 1967, row by row). Where only that second part makes a residual small, the equation must also be nearly
+linear about the point: beside a pole it is not. Steps are judged against the unknowns. Both lose their unit
+that way.
+"""
+
+from __future__ import annotations
+
+from math import inf
+
+import numpy as np
+
+from eqsheet.solve.factor import TINY, Factor, pseudo_inverse, smallest_singular_vectors
+from eqsheet.solve.outcome import Status
+from eqsheet.solve.problem import Matrix, Problem, Vector
+
+# Scaled residual that rounding alone explains: four units in the last place, as an equation of a few terms
+# makes.
+ROUNDING = 2.0**-50
+# Scaled residual up to which a point where the steps have come to rest counts as a root: equations lose
+# digits inside (powers, exponentials), but not five of them.
+ACCEPTABLE = 1e-11
+# Scaled step at which an iteration may be called at rest. Without the residual test it proves nothing.
+AT_REST = 1e-9
+# Scaled residual below which the sizes of the terms are asked for.
+NEARLY_ZERO = 1e-6
+# Ratio of successive steps, at rest, above which they are noise: at an m-fold root Newton's steps shrink by
+# 1 - 1/m.
+SLOW = 0.9
+# Relative displacement at which a residual must have grown for a root to be believed.
+BESIDE = 2.0**-20
+# An unknown is never judged against less than this part of its typical size: a root at zero has no relative
+# accuracy.
+ZERO_FLOOR = 2.0**-20
+# Condition from which a root is examined for being double or not isolated: 1/sqrt(eps) is where a double
+# root stops.
+SUSPECT_CONDITION = 1e7
+# How far from the root that examination looks, relative to the size of the unknowns.
+PROBE = 2.0**-6
+
+
+def floored(x: Vector, problem: Problem) -> Vector:
+    """|x| (n,), never below the part of the typical size that counts as zero."""
+    return np.maximum(np.abs(x), ZERO_FLOOR * problem.magnitude)
+
+
+def equation_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
+    """What each residual is judged against (n,), >= 0."""
+    return np.asarray(np.fmax(problem.sizes(x), abs(jacobian) @ floored(x, problem)))
+
+
+def scaled_norm(residual: Vector, sizes: Vector) -> float:
+    """Largest residual relative to its size; inf where one is not finite, or not zero while its size is."""
+    largest = float((np.abs(residual) / np.maximum(sizes, TINY)).max())
+    return largest if largest < inf else inf
+
+
+def residual_at(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> float:
+    """Largest scaled residual at x; far from a root it is measured by the Jacobian alone, which costs
+    less."""
+    scaled = scaled_norm(residual, abs(jacobian) @ floored(x, problem))
+    if ROUNDING < scaled < NEARLY_ZERO or scaled > 1.0:
+        return scaled_norm(residual, equation_sizes(problem, x, jacobian))
+    return scaled
+
+
+def confirmed(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> bool:
+    """Whether residuals that are small only against ``sum_j |J_ij| |x_j|`` grow away from x, as at a root.
+
+    Beside a pole ``|J| |x|`` is larger than everything else, and a huge residual would pass for rounding;
+    but there it falls with the distance.
+    """
+    doubtful = np.flatnonzero(np.abs(residual) > ACCEPTABLE * problem.sizes(x))
+    return all(_grows_away(problem, x, residual, jacobian, int(i)) for i in doubtful)
+
+
+def _grows_away(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix, equation: int) -> bool:
+    """Whether the residual of one equation is larger a little way off along its own gradient."""
+    row = jacobian[equation]
+    row = row.toarray().ravel() if hasattr(row, "toarray") else row
+    shift = BESIDE * floored(x, problem) * np.sign(row)
+    for displaced in (x + shift, x - shift):
+        if ((problem.lower < displaced) & (displaced < problem.upper)).all():
+            moved = problem.residual(displaced)[equation]
+            if abs(moved) < inf:
+                return bool(abs(moved) > abs(residual[equation]))
+    return False
+
+
+def kind_of_root(problem: Problem, x: Vector, sizes: Vector, factor: Factor) -> Status:
+    """Whether a point with vanishing residuals is an isolated root, a double one, or one of a continuum.
+
+    Parameters
+    ----------
+    x : ndarray (n,)
+        Strictly inside the bounds, scaled residual at rounding level.
+    sizes : ndarray (n,)
+        What the residuals are judged against.
+    factor : Factor
+        The Jacobian at x, or very near to it.
+
+    Notes
+    -----
+    Looks along the right singular vector v of the smallest singular value. At distances t and 2t along it the
+    residual is made as small as the other directions allow; what is left grows with t^2 at a double root
+    and with t at a regular one, and stays at rounding level on a continuum.
+    """
+    # Amplification of a relative error of the equations, in terms of their sizes, into one of the unknowns.
+    sensitivity = (
+        factor.inverse * (sizes / factor.rows) if isinstance(factor.inverse, np.ndarray) else factor.condition
+    )
+    if not factor.singular and np.max(np.abs(sensitivity)) < SUSPECT_CONDITION:
+        return Status.CONVERGED
+    dense = factor.matrix.toarray() if hasattr(factor.matrix, "toarray") else factor.matrix
+    _, _, direction = smallest_singular_vectors(dense * (factor.rows / sizes)[:, None])
+    left_over = [
+        _least_residual(problem, x, factor.weights, sizes, direction, t) for t in (PROBE, 2.0 * PROBE)
+    ]
+    near, far = (min(pair) for pair in left_over)
+    if far <= 64.0 * ROUNDING:
+        return Status.CONTINUUM
+    if far > 3.0 * near or factor.singular:
+        return Status.DOUBLE
+    return Status.CONVERGED
+
+
+def _least_residual(
+    problem: Problem, x: Vector, weights: Vector, sizes: Vector, direction: Vector, distance: float
+) -> tuple[float, float]:
+    """Least scaled residual at `distance` to either side, by Gauss-Newton steps across `direction`."""
+    across = np.eye(problem.n) - np.outer(direction, direction)
+    found = []
+    for side in (distance, -distance):
+        point = x + side * weights * direction
+        smallest = np.inf
+        for _ in range(6):
+            if not ((problem.lower < point) & (point < problem.upper)).all():
+                break
+            residual, jacobian = problem.linearise(point)
+            if not (np.isfinite(residual).all() and np.isfinite(np.asarray(jacobian)).all()):
+                break
+            smallest = min(smallest, scaled_norm(residual, sizes))
+            scale = np.where(sizes > 0.0, sizes, 1.0)
+            matrix = (np.asarray(jacobian) * weights / scale[:, None]) @ across
+            point = point - weights * (across @ (pseudo_inverse(matrix) @ (residual / scale)))
+        found.append(smallest)
+    return found[0], found[1]

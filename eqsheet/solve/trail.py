@@ -1,0 +1,85 @@
+"""The running record of a solver call: steps, best point, and what is left of the budget."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from math import inf
+from time import perf_counter
+
+import numpy as np
+
+from eqsheet.solve.outcome import Iteration, Outcome, Status
+from eqsheet.solve.problem import Vector
+
+
+@dataclass(frozen=True, slots=True)
+class Budget:
+    """What one block may cost.
+
+    Attributes
+    ----------
+    iterations : int
+        Accepted steps of one attempt.
+    seconds : float
+        Wall time of all attempts together.
+    """
+
+    iterations: int = 200
+    seconds: float = 10.0
+
+
+class Trail:
+    """Written by one solver call as it goes; read when it ends or is interrupted.
+
+    Attributes
+    ----------
+    method : str
+    best : ndarray (n,) or float
+        The point to fall back on: the last one accepted. By the test of its method it is better than all
+        before, which scaled residuals do not show when the scale itself falls.
+    best_residual : float
+    """
+
+    __slots__ = ("best", "best_residual", "budget", "deadline", "method", "steps")
+
+    def __init__(self, method: str, start: Vector | float, budget: Budget, deadline: float = inf) -> None:
+        self.method = method
+        self.best = start
+        self.best_residual = inf
+        self.budget = budget
+        self.deadline = min(deadline, perf_counter() + budget.seconds)
+        self.steps: list[Iteration] = []
+
+    def note(self, x: Vector | float, residual: float, damping: float, limiting: int) -> None:
+        """Record an accepted step to `x`."""
+        self.steps.append(Iteration(residual, damping, limiting, self.method))
+        self.best = x
+        self.best_residual = residual
+
+    @property
+    def spent(self) -> bool:
+        """Whether the iterations or the time are used up."""
+        return len(self.steps) > self.budget.iterations or perf_counter() > self.deadline
+
+    def close(
+        self,
+        status: Status,
+        x: Vector | float | None = None,
+        residual: float | None = None,
+        on_bound: tuple[int, ...] = (),
+        null_equations: tuple[float, ...] = (),
+        null_unknowns: tuple[float, ...] = (),
+    ) -> Outcome:
+        """The outcome: at `x` if given, else at the best point."""
+        point = self.best if x is None else x
+        return Outcome(
+            status,
+            np.array([point]) if isinstance(point, float) else point,
+            self.best_residual if residual is None else residual,
+            max(len(self.steps) - 1, 0),
+            self.method,
+            tuple(self.steps),
+            on_bound,
+            null_equations,
+            null_unknowns,
+        )

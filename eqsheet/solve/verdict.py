@@ -1,0 +1,101 @@
+"""The afresh judgement of a solution: is it one, and how many digits of it are to be trusted."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from eqsheet.solve.factor import factorise
+from eqsheet.solve.problem import Matrix, Vector
+from eqsheet.solve.termination import ACCEPTABLE, ZERO_FLOOR
+
+UNIT_ROUNDOFF = 2.0**-53
+# A running error bound counts every rounding as if all pushed the same way; a residual within it is zero as
+# far as doubles tell. The unknowns themselves are rounded too, which moves a residual by up to this many
+# roundings of |J| |x|.
+ROUNDED_UNKNOWNS = 4.0
+# Digits a double carries.
+MOST_DIGITS = 15
+
+
+@dataclass(frozen=True, slots=True)
+class Verdict:
+    """What the equations, evaluated afresh at the solution, say of it.
+
+    Attributes
+    ----------
+    solved : bool
+        Every residual is zero as far as doubles can tell, or within `ACCEPTABLE` of the size of its equation.
+    worst : int
+        Equation with the largest scaled residual.
+    residual : float
+        That residual, relative to the size of the equation; inf if not finite.
+    condition : float
+        Condition number of the scaled Jacobian (maximum norm): relative error of the equations times this
+        is the relative error of the unknowns at worst.
+    forward_error : ndarray (n,)
+        Estimate of the error of each unknown, in its own unit.
+    digits : tuple of int
+        Significant digits of each unknown to trust, 0 to 15.
+    """
+
+    solved: bool
+    worst: int
+    residual: float
+    condition: float
+    forward_error: Vector
+    digits: tuple[int, ...]
+
+
+def judge(
+    residual: Vector, sizes: Vector, error_bounds: Vector, jacobian: Matrix, x: Vector, magnitude: Vector
+) -> Verdict:
+    """The verdict on x.
+
+    Parameters
+    ----------
+    residual : ndarray (n,)
+        Residuals evaluated afresh at x, unscaled.
+    sizes : ndarray (n,)
+        Size of each equation at x, from a size propagated through its expression.
+    error_bounds : ndarray (n,)
+        Running error bound of each residual (Higham 2002, section 3.3), in its own unit.
+    jacobian : ndarray (n, n)
+    x, magnitude : ndarray (n,)
+
+    Notes
+    -----
+    The forward error is ``|J^-1| (|r| + bound)``, componentwise (Higham 2002, section 7.1).
+    """
+    reach = np.maximum(np.abs(x), ZERO_FLOOR * magnitude)
+    if not (np.isfinite(residual).all() and np.isfinite(abs(jacobian).sum())):
+        worst = int(np.flatnonzero(~np.isfinite(residual))[0]) if not np.isfinite(residual).all() else 0
+        return Verdict(False, worst, np.inf, np.inf, np.full(x.size, np.inf), (0,) * x.size)
+    rounding = error_bounds + ROUNDED_UNKNOWNS * UNIT_ROUNDOFF * (abs(jacobian) @ reach)
+    allowed = np.maximum(ACCEPTABLE * sizes, rounding)
+    tiny = np.finfo(float).tiny
+    worst = int((np.abs(residual) / np.maximum(allowed, tiny)).argmax())
+    size = max(float(sizes[worst]), float((abs(jacobian) @ reach)[worst]), tiny)
+    factor = factorise(jacobian, reach)
+    if factor.singular:
+        error = np.full(x.size, np.inf)
+    else:
+        error = reach * _absolute_solve(factor.inverse, (np.abs(residual) + rounding) / factor.rows)
+    with np.errstate(divide="ignore"):
+        digits = np.floor(-np.log10(np.maximum(error / reach, 1e-16)))
+    return Verdict(
+        bool((np.abs(residual) <= allowed).all()),
+        worst,
+        float(abs(residual[worst])) / size,
+        factor.condition,
+        error,
+        tuple(int(min(max(d, 0), MOST_DIGITS)) for d in digits),
+    )
+
+
+def _absolute_solve(inverse: Matrix, right: Vector) -> Vector:
+    """``|A^-1| right``; for a sparse factorisation the lower estimate ``|A^-1 right|``."""
+    if isinstance(inverse, np.ndarray):
+        return np.asarray(np.abs(inverse) @ right)
+    return np.asarray(np.abs(inverse @ right))
