@@ -59,7 +59,8 @@ class Number:
 class Reference:
     """A name in an expression: ``v``, ``T[i-1]``, ``supply.dP``, ``p[l].Q``, ``const.R``.
 
-    ``owner`` is the reference before the dot, if there is one. ``subscripts`` is None where no bracket stands.
+    ``owner`` is the reference before the dot, if there is one. ``subscripts`` is None where no bracket
+    stands.
     """
 
     start: int
@@ -180,16 +181,7 @@ class Aggregate:
 
 
 Expression: TypeAlias = (
-    Number
-    | Reference
-    | Text
-    | Unary
-    | Binary
-    | Comparison
-    | Logical
-    | Call
-    | Conditional
-    | Aggregate
+    Number | Reference | Text | Unary | Binary | Comparison | Logical | Call | Conditional | Aggregate
 )
 
 # --- statements -------------------------------------------------------------------------------------------
@@ -497,11 +489,15 @@ class Statement:
 
 @dataclass(frozen=True, slots=True)
 class Prose:
-    """A comment alone on its line, or a section heading (``title`` set, ``level`` from the number of #)."""
+    """A comment alone on its line, or a section heading (``title`` set, ``level`` from the number of #).
+
+    ``text`` is without the ``#`` and one space after it; a heading's is its title.
+    """
 
     line: int
     text: str
     title: str = ""
+    level: int = 0
 
 
 @dataclass(frozen=True, slots=True)
