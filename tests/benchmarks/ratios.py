@@ -1,0 +1,58 @@
+"""Prints how the program compares with a hand-written script.
+
+One run, one command: ``python tests/benchmarks/ratios.py``.
+"""
+
+from __future__ import annotations
+
+import sys
+import time
+
+import script_20
+from measure import (
+    LOOP,
+    NOT_FOR_SOLVE,
+    SCRIPT_COMMAND,
+    SOLVE_COMMAND,
+    call_times,
+    packages_imported_by_solve,
+    wall_times,
+)
+from one_line import one_line_worksheet
+
+import eqsheet
+
+
+def main() -> None:
+    """Measure and print, one line a figure."""
+    script, program = wall_times([SCRIPT_COMMAND, SOLVE_COMMAND], runs=7)
+    print("20 coupled equations, median of 7 runs each, interleaved")
+    print(
+        f"  cold   script {script:7.3f} s    eqsheet solve {program:7.3f} s    ratio {program / script:5.2f}"
+    )
+
+    sheet = eqsheet.parse(LOOP.read_text(encoding="utf-8"))
+    root, warm = call_times([script_20.find_root, sheet.solve], runs=51)
+    print(
+        f"  warm   script {root * 1e3:7.3f} ms   sheet.solve() {warm * 1e3:7.3f} ms  ratio {warm / root:5.2f}"
+    )
+
+    print("explicit one-line equations of varied shapes, text to answer")
+    for size in (2_500, 5_000, 10_000):
+        text, _ = one_line_worksheet(size)
+        start = time.perf_counter()
+        sheet = eqsheet.parse(text)
+        parsed = time.perf_counter()
+        sheet.solve()
+        solved = time.perf_counter()
+        print(
+            f"  {size:6}  {solved - start:6.2f} s   {(solved - start) / size * 1e3:6.3f} ms an equation"
+            f"   (parse {parsed - start:.2f} s, solve {solved - parsed:.2f} s)"
+        )
+
+    unwanted = sorted(packages_imported_by_solve() & set(NOT_FOR_SOLVE))
+    print("imported by solve but not wanted:", ", ".join(unwanted) or "nothing")
+
+
+if __name__ == "__main__":
+    sys.exit(main())
