@@ -362,7 +362,10 @@ def _unsupported(statement: syntax.Statement) -> Diagnostic:
 
 
 def _same_context(a: Context, b: Context) -> bool:
-    if a.unit_table != b.unit_table or a.definitions.keys() != b.definitions.keys():
+    mine, other = a.unit_table, b.unit_table
+    if mine is not other and (mine.ambient, mine.added) != (other.ambient, other.added):
+        return False
+    if a.definitions.keys() != b.definitions.keys():
         return False
     return all(
         x.node == b.definitions[name].node and x.line.text == b.definitions[name].line.text

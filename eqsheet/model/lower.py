@@ -165,7 +165,7 @@ class Lowering:
         resolved = self._context.unit_table.resolve(unit.text, factors)
         if isinstance(resolved, UnitProblem):
             factor = unit.factors[resolved.index] if unit.factors else unit
-            self._note(f"unit-{resolved.kind}", resolved.message, factor, self._unit_help(resolved, unit))
+            self._note(resolved.code, resolved.message, factor, self._unit_help(resolved, unit))
             raise Poisoned
         return resolved
 
@@ -434,12 +434,11 @@ class Lowering:
         )
 
     def _unit_help(self, problem: UnitProblem, unit: syntax.UnitText) -> str:
-        if problem.help or problem.kind != "unknown":
+        symbol = unit.factors[problem.index].symbol if unit.factors else ""
+        if problem.code != "unknown-unit" or not symbol.isidentifier():
             return problem.help
-        symbol = unit.factors[problem.index].symbol
-        if problem.index > 0:
-            return f"if `{symbol}` is a quantity, put spaces around the operator before it"
-        return f"if `{symbol}` is a quantity, write `*` between the number and it; the units are in grammar/UNITS.md"
+        cure = f"put spaces around the operator before it" if problem.index else f"write `*` before it"
+        return f"{problem.help}; if `{symbol}` is a quantity, {cure}"
 
 
 def kind_of(unit: Unit) -> str:

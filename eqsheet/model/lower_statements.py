@@ -11,7 +11,7 @@ import math
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Severity
-from eqsheet.model.evaluate import evaluate_outputs
+from eqsheet.model.evaluate import evaluate
 from eqsheet.model.findings import Finding
 from eqsheet.model.lower import Context, Lowering, NameTable, Poisoned, kind_of
 from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
@@ -100,7 +100,7 @@ def lower_equation(statement: syntax.Statement, context: Context, names: NameTab
         known = formula.quantities[0]
         side = formula.tape.outputs[0 if value_node is node.right else 1]
         other = formula.tape.outputs[1 if side == formula.tape.outputs[0] else 0]
-        (value,) = evaluate_outputs(formula, {}, (other,))
+        value = evaluate(formula.tape, (math.nan,), [l.value for l in formula.literals])[other]
         if not math.isfinite(value):
             work.findings.append(
                 Finding(
@@ -276,6 +276,12 @@ def _plain_name(node: syntax.Reference, work: Lowering) -> str:
         )
         raise Poisoned
     return node.name
+
+
+def known_name(statement: syntax.Statement) -> str | None:
+    """Name of the quantity that a statement sets if it is a known, else None."""
+    node = statement.node
+    return _known_parts(node)[0] if isinstance(node, syntax.Equation) else None
 
 
 def _known_parts(node: syntax.Equation) -> tuple[str | None, syntax.Expression | None]:

@@ -7,14 +7,14 @@ from collections.abc import Sequence
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.dimension import Dimension
-from eqsheet.units.registry import UnitProblem, UnitTable, standard
+from eqsheet.units.registry import UnitProblem, UnitTable
 
 _PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
 
 
 def collect_units(statements: Sequence[syntax.Statement], diagnostics: list[Diagnostic]) -> UnitTable:
     """The unit table of a worksheet: new units in the order of their dependence, gauge units on `ambient`."""
-    table = _with_ambient(standard(), statements, diagnostics)
+    table = _with_ambient(UnitTable.standard(), statements, diagnostics)
     waiting = [s for s in statements if isinstance(s.node, syntax.NewUnit)]
     while waiting:
         left: list[syntax.Statement] = []
@@ -36,7 +36,8 @@ def collect_units(statements: Sequence[syntax.Statement], diagnostics: list[Diag
 def _with_new_unit(table: UnitTable, statement: syntax.Statement) -> UnitTable | Diagnostic:
     node = statement.node
     assert isinstance(node, syntax.NewUnit)
-    multiple = None
+    base = None
+    count = 1.0
     if node.value is not None:
         text = node.value.unit
         factors = () if text is None else tuple((f.symbol, f.exponent) for f in text.factors)
@@ -49,10 +50,10 @@ def _with_new_unit(table: UnitTable, statement: syntax.Statement) -> UnitTable |
                 Label(statement.span(place.start, place.end)),
                 help=base.help,
             )
-        multiple = (float(node.value.text), base)
-    outcome = table.with_unit(node.symbol, multiple)
+        count = -float(node.value.text) if node.value.negated else float(node.value.text)
+    outcome = table.with_unit(node.symbol, base, count)
     if isinstance(outcome, UnitProblem):
-        return error(f"unit-{outcome.kind}", outcome.message, Label(statement.whole), help=outcome.help)
+        return error(outcome.code, outcome.message, Label(statement.whole), help=outcome.help)
     return outcome
 
 

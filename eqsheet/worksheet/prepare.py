@@ -13,8 +13,8 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
 from eqsheet.model.build import LoweredCache, build_system
 from eqsheet.model.dimension_messages import dimension_diagnostics
 from eqsheet.model.infer_dimensions import DimensionResult, infer_dimensions
-from eqsheet.model.infer_kinds import KindResult, infer_kinds
-from eqsheet.model.settle import settle
+from eqsheet.model.infer_kinds import infer_kinds
+from eqsheet.model.branches import settle
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.analyse import analyse
@@ -41,6 +41,8 @@ class Prepared:
     kinds : tuple of str
         ``reading``, ``difference`` or ``plain`` for each quantity.
     known_values : mapping of int to float
+    setters : mapping of int to int
+        Equation number of the known that sets a quantity.
     diagnostics : tuple of Diagnostic
     valid_text : bool
         No error in text, names, units or dimensions, so that numbers may be computed.
@@ -51,8 +53,9 @@ class Prepared:
     rows: tuple[int, ...]
     structure: Structure
     dimensions: DimensionResult
-    kinds: KindResult
+    kinds: tuple[str, ...]
     known_values: Mapping[int, float]
+    setters: Mapping[int, int]
     diagnostics: tuple[Diagnostic, ...]
     valid_text: bool
     timing: Mapping[str, float] = field(default_factory=dict)
@@ -77,20 +80,24 @@ def prepare(
     begin = clock()
     system, found = build_system(statements, cache)
     diagnostics = [*earlier, *found]
-    formulas = all_formulas(system)
-    dimensions = infer_dimensions(formulas, len(system.names), {})
-    kinds = infer_kinds(formulas, len(system.names), dimensions)
-    diagnostics += dimension_diagnostics(system, formulas, dimensions, kinds)
+    formulas, minor = all_formulas(system)
+    dimensions = infer_dimensions(formulas, len(system.names), minor=minor)
+    clashing = [clash.formula for clash in dimensions.clashes]
+    kinds = infer_kinds(formulas, dimensions.dimensions, minor, clashing)
+    diagnostics += dimension_diagnostics(dimensions, formulas, system.statements, system.names)
     known_values: dict[int, float] = {}
-    for item in system.equations:
+    setters: dict[int, int] = {}
+    for number, item in enumerate(system.equations):
         if item.known >= 0:
             known_values.setdefault(item.known, item.value)
-    settled = tuple(settle(item.formula, known_values) for item in system.equations)
+            setters.setdefault(item.known, number)
+    settled = tuple(settle(item.formula, known_values.get) for item in system.equations)
     modelled = clock()
     checked: Checked = check_without_unknowns(system, settled, known_values)
     diagnostics += checked.diagnostics
     structure = analyse([settled[i].quantities for i in checked.rows], len(system.names))
-    valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found)) and not dimensions.clashes
+    valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found)) 
+    valid_text = valid_text and not dimensions.clashes and not kinds.misuses
     if valid_text:
         diagnostics += structure_diagnostics(system, settled, checked.rows, structure)
     done = clock()
@@ -101,20 +108,22 @@ def prepare(
         checked.rows,
         structure,
         dimensions,
-        kinds,
+        kinds.kinds,
         known_values,
+        setters,
         tuple(diagnostics),
         valid_text,
         timing,
     )
 
 
-def all_formulas(system: EquationSystem) -> tuple[Formula, ...]:
-    """Every formula whose dimensions must fit, equations first."""
+def all_formulas(system: EquationSystem) -> tuple[tuple[Formula, ...], range]:
+    """Every formula whose dimensions must fit, and which of them state no physics (guesses, limits, ...)."""
     formulas = [item.formula for item in system.equations]
     for item in system.equations:
         formulas.extend(v.formula for v in item.valid)
+    physical = len(formulas)
     formulas.extend(guess.formula for guess in system.guesses)
     formulas.extend(limit.formula for limit in system.limits)
     formulas.extend(system.shows)
-    return tuple(formulas)
+    return tuple(formulas), range(physical, len(formulas))

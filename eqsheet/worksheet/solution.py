@@ -3,15 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
-from types import MappingProxyType
+from dataclasses import dataclass, field
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.syntax.nodes import Statement
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.registry import UnitTable
 from eqsheet.units.unit import Unit
-from eqsheet.units.written import resolve_text
+from eqsheet.worksheet.unit_text import resolve_text
 
 
 @dataclass(frozen=True, slots=True)
@@ -194,8 +193,8 @@ class Solution(Mapping[str, QuantityValue]):
         Best point of a failed block; never mixed with `quantities`.
     timing : mapping of str to float
         Seconds spent in each stage.
-    starts : mapping of str to float
-        Unknowns started without a guess, with the SI value taken.
+    statements : tuple of Statement
+        All statements of the worksheet as solved, those switched off included.
     """
 
     worksheet: str
@@ -204,8 +203,8 @@ class Solution(Mapping[str, QuantityValue]):
     blocks: tuple[BlockReport, ...] = ()
     limits: tuple[LimitReport, ...] = ()
     diagnostics: tuple[Diagnostic, ...] = ()
-    best: Mapping[str, QuantityValue] = MappingProxyType({})
-    timing: Mapping[str, float] = MappingProxyType({})
+    best: Mapping[str, QuantityValue] = field(default_factory=dict)
+    timing: Mapping[str, float] = field(default_factory=dict)
     statements: tuple[Statement, ...] = ()
 
     @property

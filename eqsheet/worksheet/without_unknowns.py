@@ -76,12 +76,17 @@ def _check(
     setter: Mapping[int, int],
 ) -> Diagnostic:
     item = system.equations[number]
-    evidence = evaluate_with_evidence(formula, known_values, {})
-    left, right = (evidence[o] for o in formula.tape.outputs)
-    size = max(left.size, right.size)
+    evidence = evaluate_with_evidence(
+        formula.tape,
+        [known_values[q] for q in formula.quantities],
+        [literal.value for literal in formula.literals],
+    )
+    left, right = formula.tape.outputs
+    gap = abs(evidence.values[left] - evidence.values[right])
+    size = max(evidence.sizes[left], evidence.sizes[right])
     here = Label(span_of(system, item.place))
     text = span_of(system, item.place).text
-    if abs(left.value - right.value) <= EQUAL_TO * size + left.error + right.error:
+    if gap <= EQUAL_TO * size + evidence.errors[left] + evidence.errors[right]:
         return note(
             "equation-always-true",
             f"`{text}` holds no unknown, and is true",
@@ -89,7 +94,9 @@ def _check(
         )
     knowns = [system.equations[setter[q]] for q in formula.quantities if q in setter]
     names = ", ".join(f"`{system.names[k.known]}`" for k in knowns)
-    sides = f"left side {written(left.value)}, right side {written(right.value)} in SI units"
+    sides = (
+        f"left side {written(evidence.values[left])}, right side {written(evidence.values[right])}, in SI units"
+    )
     return error(
         "equation-always-false",
         f"`{text}` holds no unknown, and is false",

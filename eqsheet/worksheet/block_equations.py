@@ -1,0 +1,127 @@
+"""The equations of one block as what the solver takes: callables over arrays or plain floats."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Sequence
+
+import numpy as np
+
+from eqsheet.model.branches import literal_values
+from eqsheet.model.derive import equation_partials
+from eqsheet.model.evaluate import evaluate_with_evidence
+from eqsheet.model.generate import DOMAIN_ERRORS, block_functions, safe_function
+from eqsheet.model.tape import Formula
+from eqsheet.solve.problem import Problem, ScalarProblem, Vector
+from eqsheet.worksheet.starting_values import Start
+
+
+def scalar_problem(formula: Formula, unknown: int, values: Sequence[float], start: Start) -> ScalarProblem:
+    """One equation in one unknown.
+
+    Parameters
+    ----------
+    unknown : int
+        Quantity number.
+    values : sequence of float
+        SI values by quantity number; that of the unknown is not read.
+    """
+    slot = formula.quantities.index(unknown)
+    both = safe_function(equation_partials(formula.tape, (slot,)))
+    arguments = [values[q] for q in formula.quantities] + literal_values(formula)
+    before, after = arguments[:slot], arguments[slot + 1 :]
+    count = len(formula.quantities)
+
+    def linearise(x: float) -> tuple[float, float]:
+        value, slope = both(*before, x, *after)
+        return value, slope
+
+    def residual(x: float) -> float:
+        return linearise(x)[0]
+
+    def size(x: float) -> float:
+        point = [*before, x, *after]
+        evidence = evaluate_with_evidence(formula.tape, point[:count], point[count:])
+        left, right = formula.tape.outputs
+        return max(evidence.sizes[left], evidence.sizes[right])
+
+    return ScalarProblem(
+        residual, linearise, size, start.values[0], start.lower[0], start.upper[0], start.magnitude[0]
+    )
+
+
+def block_problem(
+    formulas: Sequence[Formula], unknowns: Sequence[int], values: Sequence[float], start: Start
+) -> Problem:
+    """Several equations in as many unknowns; see `scalar_problem` for the parameters."""
+    n = len(unknowns)
+    function, known = block_functions([(f.tape, f.quantities) for f in formulas], unknowns)
+    parameters = [values[q] for q in known]
+    for formula in formulas:
+        parameters.extend(literal_values(formula))
+    one_by_one = _OneByOne(formulas, unknowns, values)
+
+    def linearise(x: Vector) -> tuple[Vector, Vector]:
+        try:
+            residuals, jacobian = function(x.tolist(), parameters)
+        except DOMAIN_ERRORS:
+            return one_by_one.linearise(x)
+        return np.array(residuals), np.array(jacobian).reshape(n, n)
+
+    def residual(x: Vector) -> Vector:
+        return linearise(x)[0]
+
+    return Problem(
+        n,
+        residual,
+        linearise,
+        one_by_one.sizes,
+        np.array(start.values),
+        np.array(start.lower),
+        np.array(start.upper),
+        np.array(start.magnitude),
+    )
+
+
+class _OneByOne:
+    """Equation by equation, for points where the fast function of the whole block has no value."""
+
+    def __init__(
+        self, formulas: Sequence[Formula], unknowns: Sequence[int], values: Sequence[float]
+    ) -> None:
+        self._formulas = formulas
+        self._unknowns = unknowns
+        self._values = values
+
+    def _inputs(self, x: Vector) -> Callable[[Formula], list[float]]:
+        own = dict(zip(self._unknowns, x.tolist()))
+        values = self._values
+        return lambda formula: [own[q] if q in own else values[q] for q in formula.quantities]
+
+    def linearise(self, x: Vector) -> tuple[Vector, Vector]:
+        """Residuals and Jacobian with nan in the rows that have no value."""
+        inputs = self._inputs(x)
+        n = len(self._unknowns)
+        residuals = np.full(n, math.nan)
+        jacobian = np.zeros((n, n))
+        position = {q: i for i, q in enumerate(self._unknowns)}
+        for row, formula in enumerate(self._formulas):
+            slots = tuple(s for s, q in enumerate(formula.quantities) if q in position)
+            results = safe_function(equation_partials(formula.tape, slots))(
+                *inputs(formula), *literal_values(formula)
+            )
+            value, *slopes = results if slots else (results,)
+            residuals[row] = value
+            for slot, slope in zip(slots, slopes):
+                jacobian[row, position[formula.quantities[slot]]] = slope
+        return residuals, jacobian
+
+    def sizes(self, x: Vector) -> Vector:
+        """Size of each equation at x."""
+        inputs = self._inputs(x)
+        sizes = np.empty(len(self._formulas))
+        for row, formula in enumerate(self._formulas):
+            evidence = evaluate_with_evidence(formula.tape, inputs(formula), literal_values(formula))
+            left, right = formula.tape.outputs
+            sizes[row] = max(evidence.sizes[left], evidence.sizes[right])
+        return sizes

@@ -1,0 +1,318 @@
+"""Why a block was not solved, and how far a solved one is to be trusted, in the worksheet's own terms."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Sequence
+from typing import TYPE_CHECKING
+
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note, warning
+from eqsheet.model.branches import literal_values
+from eqsheet.model.dimension_of import dimensions_of
+from eqsheet.model.evaluate import evaluate, first_nonfinite
+from eqsheet.model.system import EquationSystem
+from eqsheet.model.tape import Formula
+from eqsheet.solve.explain import Facts, explain
+from eqsheet.solve.outcome import Status
+from eqsheet.units.dimension import DIMENSIONLESS, Dimension
+from eqsheet.units.display import default_unit
+from eqsheet.worksheet.guesses import Guesses
+from eqsheet.worksheet.places import label_of, line_words, quoted
+from eqsheet.worksheet.shown_units import shown_unit, written_quantity
+from eqsheet.worksheet.solve_block import BlockResult, Known
+
+if TYPE_CHECKING:
+    from eqsheet.worksheet.prepare import Prepared
+    from eqsheet.worksheet.run import BlockRun
+
+MOST_TERMS = 6
+MOST_EQUATIONS = 3
+# Below this many digits a result is not good enough for ordinary work, and the run says so.
+FEW_DIGITS = 5
+
+_HEADLINES = {
+    Status.STALLED: "no solution found",
+    Status.HELD: "no solution found within the bounds",
+    Status.SINGULAR: "no solution found: the equations depend on each other at the best point",
+    Status.CONTINUUM: "no single solution: the equations leave a combination of unknowns free",
+    Status.DOMAIN: "no point found at which every equation has a value",
+    Status.POLE: "no solution found: the two sides only jump past each other",
+    Status.NO_SIGN_CHANGE: "no solution found: the two sides do not meet",
+    Status.NO_CONSISTENT_BRANCH: "no solution found: each branch of the conditions leads into another one",
+    Status.BUDGET: "no solution found within the iterations and time allowed",
+    Status.INTERRUPTED: "interrupted before a solution was found",
+}
+_CURES = {
+    Status.HELD: "widen the bounds named, or check the equation that pushes against them",
+    Status.CONTINUUM: "one more independent equation or known is needed among these lines",
+    Status.SINGULAR: "check that no equation of these lines repeats another, or start elsewhere with `near`",
+    Status.DOMAIN: "give start values (`near`) or bounds (`within`) inside the domain of the equations",
+    Status.NO_CONSISTENT_BRANCH: "let the branches meet where they switch, or check the condition",
+    Status.NO_SIGN_CHANGE: "widen the bounds, or check sign and size of the terms",
+}
+
+
+def failure_diagnostic(
+    system: EquationSystem, prepared: Prepared, run: BlockRun, known: Known, guesses: Guesses
+) -> Diagnostic:
+    """What went wrong in a failed block: equations, terms, bounds, dependence, and what to try."""
+    result = run.result
+    assert result is not None
+    names = [system.names[q] for q in run.unknowns]
+    places = [system.equations[e].place for e in run.equations]
+    where = line_words(system, places)
+    writer = _Writer(system, prepared, run, result, known, guesses)
+    if result.outside:
+        return writer.outside_bounds(where, names)
+    status = result.outcome.status if result.outcome is not None else Status.STALLED
+    if status.solved:
+        status = Status.STALLED
+    facts = None if result.problem is None or result.outcome is None else explain(result.problem, result.outcome)
+    worst = 0 if facts is None or not facts.worst else facts.worst[0][0]
+    headline = _HEADLINES.get(status, "no solution found")
+    if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
+        headline = "no solution found: the search ended where no step brings the sides closer together"
+    message = f"{headline}: {quoted(names)} from {where}"
+    labels = [label_of(system, places[worst], "the worst satisfied" if len(places) > 1 else "")]
+    labels += [label_of(system, p) for i, p in enumerate(places) if i != worst][:8]
+    notes = writer.at_best_point()
+    if facts is not None and facts.not_finite >= 0:
+        notes += writer.not_finite(facts.not_finite)
+    elif facts is not None:
+        notes += writer.terms([i for i, _ in facts.worst[:MOST_EQUATIONS]] or [0])
+        notes += writer.pressed(facts)
+        notes += writer.dependence(facts)
+    else:
+        notes += writer.not_finite(0) or writer.terms([0])
+        notes += writer.range_tried()
+    notes += writer.jump()
+    help = _CURES.get(status, "give a start value near the solution (`near`), or check sign and size of the terms")
+    return error("no-solution", message, *labels, notes=tuple(notes), help=help)
+
+
+class _Writer:
+    """Notes about one failed block."""
+
+    def __init__(
+        self,
+        system: EquationSystem,
+        prepared: Prepared,
+        run: BlockRun,
+        result: BlockResult,
+        known: Known,
+        guesses: Guesses,
+    ) -> None:
+        self.system = system
+        self.dimensions = prepared.dimensions.dimensions
+        self.kinds = prepared.kinds
+        self.run = run
+        self.result = result
+        self.guesses = guesses
+        self.own = dict(zip(run.unknowns, result.values))
+        self.known = known
+
+    def value(self, quantity: int, si: float) -> str:
+        """A value of a quantity in its own unit."""
+        unit = shown_unit(self.system, self.dimensions, self.kinds, quantity)
+        return written_quantity(unit, self.kinds[quantity], si)
+
+    def outside_bounds(self, where: str, names: Sequence[str]) -> Diagnostic:
+        """A closed form has only values outside the bounds."""
+        quantity = self.run.unknowns[self.result.outside[0]]
+        value = self.result.values[self.result.outside[0]]
+        low, high = self.guesses.bounds(quantity)
+        role = "lower" if value < low else "upper"
+        bound = low if role == "lower" else high
+        place = self.system.equations[self.run.equations[0]].place
+        bound_place = self.guesses.places.get((quantity, role))
+        labels = [label_of(self.system, place)]
+        if bound_place is not None:
+            labels.append(label_of(self.system, bound_place, "the bound"))
+        side = "below" if role == "lower" else "above"
+        return error(
+            "outside-bounds",
+            f"{where} gives `{names[0]}` = {self.value(quantity, value)}, {side} its bound {self.value(quantity, bound)}",
+            *labels,
+            help="widen the bound, or check the equation and the values it uses",
+        )
+
+    def at_best_point(self) -> list[str]:
+        """Values of the unknowns at the best point."""
+        parts = [f"{self.system.names[q]} = {self.value(q, v)}" for q, v in list(self.own.items())[:8]]
+        finite = [p for p, v in zip(parts, self.own.values()) if math.isfinite(v)]
+        return [f"best point: {', '.join(finite)}"] if finite else []
+
+    def terms(self, equations: Sequence[int]) -> list[str]:
+        """Both sides of the worst equations with the size of each term."""
+        notes = []
+        for position in equations:
+            formula = self.result.formulas[position]
+            results = self._evaluate(formula)
+            units = self._units(formula)
+            sides = [
+                " ".join(_signed(self._term(formula, i, results[i], units[i]), sign) for sign, i in terms)
+                for terms in (_terms(formula, output) for output in formula.tape.outputs)
+            ]
+            place = line_words(self.system, [self.system.equations[self.run.equations[position]].place])
+            totals = " against ".join(units[o](results[o]) for o in formula.tape.outputs)
+            note_text = f"{place}: {totals}"
+            if any(len(_terms(formula, o)) > 1 for o in formula.tape.outputs):
+                note_text += f"; terms: {sides[0]} = {sides[1]}"
+            notes.append(note_text)
+        return notes
+
+    def _term(self, formula: Formula, instruction: int, value: float, unit: Callable[[float], str]) -> str:
+        start, end = formula.places[instruction]
+        text = self.system.statements[formula.statement].line.text[start:end]
+        text = " ".join(text.split())
+        if len(text) > 30:
+            text = text[:27] + "..."
+        return f"{text} ({unit(value)})"
+
+    def _evaluate(self, formula: Formula) -> list[float]:
+        inputs = [self.own.get(q, self.known.values[q]) for q in formula.quantities]
+        return list(evaluate(formula.tape, inputs, literal_values(formula)))
+
+    def _units(self, formula: Formula) -> list[Callable[[float], str]]:
+        """For each instruction, what writes a value of its dimension."""
+        table = self.system.unit_table
+
+        def writer_for(dimension: Dimension | None) -> Callable[[float], str]:
+            unit = default_unit(DIMENSIONLESS if dimension is None else dimension, "plain", table)
+            return lambda si: written_quantity(unit, "plain", si)
+
+        return [writer_for(d) for d in dimensions_of(formula, self.dimensions)]
+
+    def not_finite(self, equation: int) -> list[str]:
+        """The first part of the equation that has no value."""
+        formula = self.result.formulas[equation]
+        found = first_nonfinite(formula.tape, self._evaluate(formula))
+        if found is None:
+            return []
+        start, end = formula.places[found]
+        text = self.system.statements[formula.statement].line.text[start:end]
+        place = line_words(self.system, [self.system.equations[self.run.equations[equation]].place])
+        return [f"{place}: `{text}` has no finite value there"]
+
+    def pressed(self, facts: Facts) -> list[str]:
+        """Unknowns on their bounds, and which equation pushes them."""
+        notes = []
+        for position, side, equation in facts.pressed[:4]:
+            quantity = self.run.unknowns[position]
+            low, high = self.guesses.bounds(quantity)
+            bound = self.value(quantity, low if side < 0 else high)
+            place = line_words(self.system, [self.system.equations[self.run.equations[equation]].place])
+            notes.append(
+                f"`{self.system.names[quantity]}` rests on its {'lower' if side < 0 else 'upper'} bound {bound}; "
+                f"{place} pushes it there"
+            )
+        return notes
+
+    def dependence(self, facts: Facts) -> list[str]:
+        """Equations that depend on each other and the combination of unknowns left free."""
+        if not facts.dependent_equations:
+            return []
+        lines = line_words(
+            self.system,
+            [self.system.equations[self.run.equations[i]].place for i, _ in facts.dependent_equations],
+        )
+        free = quoted(self.system.names[self.run.unknowns[i]] for i, _ in facts.free_unknowns)
+        verb = "depend" if len(facts.dependent_equations) > 1 else "says nothing"
+        tail = "on each other" if len(facts.dependent_equations) > 1 else "about the unknowns"
+        return [f"near the best point {lines} {verb} {tail} and leave {free} free"]
+
+    def range_tried(self) -> list[str]:
+        """Bounds within which one unknown was searched."""
+        quantity = self.run.unknowns[0]
+        low, high = self.guesses.bounds(quantity)
+        if not (math.isfinite(low) or math.isfinite(high)):
+            return []
+        parts = [self.value(quantity, b) if math.isfinite(b) else "" for b in (low, high)]
+        return [f"searched within {parts[0]} .. {parts[1]}".replace("  ", " ")]
+
+    def jump(self) -> list[str]:
+        """How far the branches lie apart."""
+        parts = [
+            f"{self.system.names[q]} by {self.value(q, abs(g))}"
+            for q, g in zip(self.run.unknowns, self.result.gap)
+            if g
+        ]
+        return [f"between the branches the solution jumps: {', '.join(parts)}"] if parts else []
+
+
+def _terms(formula: Formula, output: int) -> list[tuple[int, int]]:
+    """The terms of a sum with their signs: (+1 or -1, instruction)."""
+    found: list[tuple[int, int]] = []
+    stack = [(1, output)]
+    while stack:
+        sign, i = stack.pop()
+        operation, *rest = formula.tape.instructions[i]
+        if operation == "add":
+            stack += [(sign, rest[1]), (sign, rest[0])]  # type: ignore[list-item]  # operands are indices
+        elif operation == "sub":
+            stack += [(-sign, rest[1]), (sign, rest[0])]  # type: ignore[list-item]  # operands are indices
+        elif operation == "neg":
+            stack.append((-sign, rest[0]))  # type: ignore[arg-type]  # operands are indices
+        else:
+            found.append((sign, i))
+    return found[:MOST_TERMS]
+
+
+def _signed(text: str, sign: int) -> str:
+    return f"+ {text}" if sign > 0 else f"- {text}"
+
+
+def start_note(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
+    """A note that names the unknowns started without a guess, where a start matters."""
+    result = run.result
+    if result is None or result.start is None or result.method in ("closed form", "linear"):
+        return []
+    names = [system.names[run.unknowns[i]] for i in result.start.assumed]
+    if not names:
+        return []
+    place = system.equations[run.equations[0]].place
+    return [
+        note(
+            "started-without-guess",
+            f"{quoted(names)} {'was' if len(names) == 1 else 'were'} started without a guess",
+            Label(label_of(system, place).span),
+            help="a guess (`near`) or bounds (`within`) make sure which solution is meant",
+        )
+    ]
+
+
+def trust_warnings(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
+    """A warning where a solved block is close to singular, so that few digits are good."""
+    result = run.result
+    assert result is not None
+    worst: tuple[int, int] | None = None
+    for position, (value, error_bound) in enumerate(zip(result.values, result.errors)):
+        digits = digits_of(value, error_bound)
+        if value != 0.0 and digits < FEW_DIGITS and (worst is None or digits < worst[0]):
+            worst = (digits, position)
+    if worst is None:
+        return []
+    digits, position = worst
+    places = [system.equations[e].place for e in run.equations]
+    name = system.names[run.unknowns[position]]
+    double = result.outcome is not None and result.outcome.status is Status.DOUBLE
+    why = "a double root" if double else "the equations are close to depending on each other"
+    return [
+        warning(
+            "few-digits",
+            f"`{name}` from {line_words(system, places)} is good to about {digits} digits: {why}",
+            label_of(system, places[0]),
+            help="a small change of the inputs moves it much; check that the problem is posed as meant",
+        )
+    ]
+
+
+def digits_of(value: float, error_bound: float) -> int:
+    """Decimal digits of a value that an error leaves good, 0 to 15."""
+    if not math.isfinite(error_bound):
+        return 0
+    if error_bound == 0.0:
+        return 15
+    if value == 0.0:
+        return 0
+    return int(min(max(math.floor(-math.log10(error_bound / abs(value))), 0), 15))

@@ -1,0 +1,129 @@
+"""Guesses worked out from the knowns: start values and bounds in SI."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
+from eqsheet.model.evaluate import evaluate
+from eqsheet.model.system import EquationSystem, GuessItem, Place
+from eqsheet.worksheet.places import quoted, span_of
+
+
+@dataclass(frozen=True)
+class Guesses:
+    """Start values and bounds by quantity number, in SI; what was not written is missing.
+
+    ``places`` holds the statement that gave the bound or start value, by (quantity, role).
+    """
+
+    near: Mapping[int, float] = field(default_factory=dict)
+    lower: Mapping[int, float] = field(default_factory=dict)
+    upper: Mapping[int, float] = field(default_factory=dict)
+    places: Mapping[tuple[int, str], Place] = field(default_factory=dict)
+
+    def bounds(self, quantity: int) -> tuple[float, float]:
+        """Bounds of a quantity, infinite where there are none."""
+        return self.lower.get(quantity, -math.inf), self.upper.get(quantity, math.inf)
+
+
+def work_out_guesses(
+    system: EquationSystem, known_values: Mapping[int, float]
+) -> tuple[Guesses, tuple[Diagnostic, ...]]:
+    """Evaluate all guesses; those by name go before those by pattern.
+
+    Parameters
+    ----------
+    known_values : mapping of quantity number to SI value
+        All a guess may use.
+    """
+    by_role: dict[str, dict[int, float]] = {"near": {}, "lower": {}, "upper": {}}
+    places: dict[tuple[int, str], Place] = {}
+    diagnostics: list[Diagnostic] = []
+    for item in system.guesses:
+        values = _values(system, item, known_values, diagnostics)
+        for role, value in zip(item.roles, values):
+            if item.quantity not in by_role[role]:
+                by_role[role][item.quantity] = value
+                places[item.quantity, role] = item.place
+    _check_ranges(system, by_role, places, known_values, diagnostics)
+    return Guesses(by_role["near"], by_role["lower"], by_role["upper"], places), tuple(diagnostics)
+
+
+def _values(
+    system: EquationSystem,
+    item: GuessItem,
+    known_values: Mapping[int, float],
+    diagnostics: list[Diagnostic],
+) -> tuple[float, ...]:
+    formula = item.formula
+    unknown = [
+        system.names[q]
+        for slot, q in enumerate(formula.quantities)
+        if q not in known_values and not _is_only_target(item, slot)
+    ]
+    here = Label(span_of(system, item.place))
+    if unknown:
+        diagnostics.append(
+            error(
+                "guess-not-known",
+                f"the guess uses {quoted(sorted(set(unknown)))}, which {'is' if len(unknown) == 1 else 'are'} not known",
+                here,
+                help="a guess may use knowns only",
+            )
+        )
+        return ()
+    values = evaluate(
+        formula.tape,
+        [known_values.get(q, math.nan) for q in formula.quantities],
+        [literal.value for literal in formula.literals],
+    )
+    found = tuple(float(values[o]) for o in formula.tape.outputs)
+    if not all(map(math.isfinite, found)):
+        diagnostics.append(error("value-not-finite", "the guess is not a finite number", here))
+        return ()
+    return found
+
+
+def _is_only_target(item: GuessItem, slot: int) -> bool:
+    """Whether the slot is the guess's own quantity and no output needs it."""
+    formula = item.formula
+    if formula.quantities[slot] != item.quantity:
+        return False
+    from eqsheet.model.tape import extract
+
+    needed = extract(formula, formula.tape.outputs)
+    return item.quantity not in needed.quantities
+
+
+def _check_ranges(
+    system: EquationSystem,
+    by_role: dict[str, dict[int, float]],
+    places: Mapping[tuple[int, str], Place],
+    known_values: Mapping[int, float],
+    diagnostics: list[Diagnostic],
+) -> None:
+    near, lower, upper = by_role["near"], by_role["lower"], by_role["upper"]
+    for quantity in list(lower):
+        if quantity in upper and not lower[quantity] < upper[quantity]:
+            diagnostics.append(
+                error(
+                    "bounds-empty",
+                    f"the bounds of `{system.names[quantity]}` leave no room: the lower one is not below the upper",
+                    Label(span_of(system, places[quantity, "lower"])),
+                )
+            )
+            del lower[quantity], upper[quantity]
+    for quantity, value in near.items():
+        low, high = lower.get(quantity, -math.inf), upper.get(quantity, math.inf)
+        if not low <= value <= high and quantity not in known_values:
+            diagnostics.append(
+                warning(
+                    "guess-outside-bounds",
+                    f"the start value of `{system.names[quantity]}` lies outside its bounds; the nearer bound is used",
+                    Label(span_of(system, places[quantity, "near"])),
+                )
+            )
+            near[quantity] = min(max(value, low), high)

@@ -1,0 +1,200 @@
+"""Limits and validity ranges at a solution."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
+from eqsheet.model.branches import literal_values
+from eqsheet.model.dimension_of import dimensions_of
+from eqsheet.model.evaluate import Evidence, evaluate, evaluate_with_evidence
+from eqsheet.model.system import LimitItem, Validity
+from eqsheet.model.tape import Formula
+from eqsheet.units.dimension import Dimension
+from eqsheet.units.display import default_unit
+from eqsheet.worksheet.places import label_of, quoted
+from eqsheet.worksheet.prepare import Prepared
+from eqsheet.worksheet.run import Run
+from eqsheet.worksheet.shown_units import shown_unit, written_quantity
+from eqsheet.worksheet.solution import LimitReport
+
+_WITH_READINGS = frozenset((Dimension.of({"K": 1}), Dimension.of({"kg": 1, "m": -1, "s": -2})))
+
+
+def judge_limits(prepared: Prepared, run: Run) -> tuple[LimitReport, ...]:
+    """Every limit whose quantities are all found, in the order of the text."""
+    reports = []
+    for item in prepared.system.limits:
+        formula = item.formula
+        inputs = [run.values[q] for q in formula.quantities]
+        if not all(map(math.isfinite, inputs)):
+            continue
+        evidence = evaluate_with_evidence(
+            formula.tape, inputs, literal_values(formula), [run.errors[q] for q in formula.quantities]
+        )
+        reports.append(_report(prepared, item, evidence))
+    return tuple(reports)
+
+
+def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitReport:
+    system = prepared.system
+    outputs = item.formula.tape.outputs
+    operands = outputs[:-1] if item.within else outputs
+    dimension = next(
+        (d for d in (dimensions_of(item.formula, prepared.dimensions.dimensions)[o] for o in operands) if d is not None),
+        Dimension(()),
+    )
+    unit = item.unit
+    if unit is None or unit.dimension != dimension:
+        unit = default_unit(dimension, "plain", system.unit_table)
+    links = [
+        _link(item, operator, a, b, evidence)
+        for operator, a, b in zip(item.operators, operands, operands[1:])
+    ]
+    holds = all(slack >= -room for slack, _, room in links)
+    slack, scale, _ = min(links, key=lambda link: link[0])
+    reading = dimension in _WITH_READINGS and _compares_readings(prepared, item, operands)
+    margin = None if scale == 0.0 or reading else slack / abs(scale)
+    return LimitReport(
+        system.statements[item.place.statement],
+        item.text,
+        holds,
+        margin,
+        unit.difference_from_si(slack),
+        _difference_text(unit.text, prepared),
+    )
+
+
+def _link(
+    item: LimitItem, operator: str, a: int, b: int, evidence: Evidence
+) -> tuple[float, float, float]:
+    """Slack of one comparison, the limit it is relative to, and the forward error of its sides."""
+    values, errors = evidence.values, evidence.errors
+    left, right = values[a], values[b]
+    room = errors[a] + errors[b]
+    if operator == "=":
+        allowed = abs(values[item.formula.tape.outputs[-1]])
+        if item.relative:
+            allowed *= abs(right)
+        return allowed - abs(left - right), allowed, room
+    # The limit is the side that is no more than literals; where both move, the right one.
+    return (right - left if operator in ("<", "<=") else left - right), _limit_side(item, a, b, values), room
+
+
+def _limit_side(item: LimitItem, a: int, b: int, values: Sequence[float]) -> float:
+    instructions = item.formula.tape.instructions
+    fixed = [i for i in (b, a) if instructions[i][0] in ("literal", "const")]
+    return float(values[fixed[0] if fixed else b])
+
+
+def _compares_readings(prepared: Prepared, item: LimitItem, operands: Sequence[int]) -> bool:
+    """Whether a limit is on readings, which have no ratio."""
+    formula = item.formula
+    for operand in operands:
+        operation, *rest = formula.tape.instructions[operand]
+        if operation == "literal" and formula.literals[rest[0]].kind == "reading":  # type: ignore[index]  # a slot
+            return True
+        if operation == "quantity" and prepared.kinds[formula.quantities[rest[0]]] == "reading":  # type: ignore[index]  # a slot
+            return True
+    return False
+
+
+def _difference_text(text: str, prepared: Prepared) -> str:
+    """The unit of a slack: a distance between readings is a difference."""
+    unit = prepared.system.unit_table.lookup(text) if text else None
+    if unit is None or not unit.reading:
+        return text or "1"
+    if unit.dimension == Dimension.of({"K": 1}):
+        return f"delta_{text}"
+    return text.removesuffix("g")
+
+
+def judge_validity(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
+    """A warning for each validity range that the solution leaves, where its formula is in use."""
+    system = prepared.system
+    diagnostics = []
+    used = _quantities_used(prepared, run)
+    produced = {
+        equation: block.unknowns for block in run.blocks for equation in block.equations
+    }
+    for number, item in enumerate(system.equations):
+        unknowns = produced.get(number, ())
+        if unknowns and not any(q in used for q in unknowns) and len(unknowns) == 1:
+            continue
+        for validity in item.valid:
+            if _applies(validity, run) and not _truth(validity.formula, run):
+                diagnostics.append(_left(prepared, run, validity))
+    return tuple(diagnostics)
+
+
+def _quantities_used(prepared: Prepared, run: Run) -> set[int]:
+    """Quantities that matter: named in a formula in use besides their own, or in none but their own at all."""
+    system = prepared.system
+    own = {e: set(b.unknowns) for b in run.blocks for e in b.equations}
+    in_use: set[int] = set()
+    mentioned: set[int] = set()
+    for number, (item, formula) in enumerate(zip(system.equations, run.formulas)):
+        mine = own.get(number, set())
+        in_use.update(q for q in formula.quantities if q not in mine)
+        mentioned.update(q for q in item.formula.quantities if q not in mine)
+    for limit in system.limits:
+        in_use.update(limit.formula.quantities)
+    return in_use | (set(range(len(system.names))) - mentioned)
+
+
+def _applies(validity: Validity, run: Run) -> bool:
+    for guard in validity.guards:
+        if not _finite(guard.formula, run) or _truth(guard.formula, run) != guard.branch:
+            return False
+    return _finite(validity.formula, run)
+
+
+def _finite(formula: Formula, run: Run) -> bool:
+    return all(math.isfinite(run.values[q]) for q in formula.quantities)
+
+
+def _truth(formula: Formula, run: Run) -> bool:
+    values = evaluate(formula.tape, [run.values[q] for q in formula.quantities], literal_values(formula))
+    return bool(values[formula.tape.outputs[0]])
+
+
+def _left(prepared: Prepared, run: Run, validity: Validity) -> Diagnostic:
+    system = prepared.system
+    dimensions, kinds = prepared.dimensions.dimensions, prepared.kinds
+    values = [
+        f"`{system.names[q]}` is "
+        + written_quantity(shown_unit(system, dimensions, kinds, q), kinds[q], run.values[q])
+        for q in validity.formula.quantities
+    ]
+    return warning(
+        "outside-validity",
+        f"the solution leaves the range `{validity.text}`",
+        label_of(system, validity.place),
+        notes=(", ".join(values),) if values else (),
+        help="use a formula valid there, or say in the line that it is taken beyond its range",
+    )
+
+
+def known_bounds(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
+    """An error for each known that lies outside the bounds a guess gives it."""
+    system = prepared.system
+    found = []
+    for quantity, value in prepared.known_values.items():
+        low, high = run.guesses.bounds(quantity)
+        if low <= value <= high:
+            continue
+        role, bound = ("lower", low) if value < low else ("upper", high)
+        unit = shown_unit(system, prepared.dimensions.dimensions, prepared.kinds, quantity)
+        kind = prepared.kinds[quantity]
+        item = next(i for i in system.equations if i.known == quantity)
+        found.append(
+            error(
+                "outside-bounds",
+                f"{quoted([system.names[quantity]])} = {written_quantity(unit, kind, value)} is "
+                f"{'below' if role == 'lower' else 'above'} its bound {written_quantity(unit, kind, bound)}",
+                Label(label_of(system, item.place).span),
+                Label(label_of(system, run.guesses.places[quantity, role]).span, "the bound"),
+            )
+        )
+    return tuple(found)

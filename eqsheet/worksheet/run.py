@@ -1,0 +1,194 @@
+"""Runs the blocks of a prepared worksheet in order, and gathers values with their evidence."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.model.branches import literal_values
+from eqsheet.model.evaluate import evaluate_with_evidence
+from eqsheet.model.tape import Formula
+from eqsheet.solve.trail import Budget
+from eqsheet.structure.verdict import Conflict
+from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
+from eqsheet.worksheet.guesses import Guesses, work_out_guesses
+from eqsheet.worksheet.prepare import Prepared
+from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
+from eqsheet.worksheet.structure_messages import conflict_diagnostic
+from eqsheet.worksheet.without_unknowns import EQUAL_TO
+from eqsheet.worksheet.written_values import written
+
+
+@dataclass(frozen=True, slots=True)
+class BlockRun:
+    """One block of the order of solution, and what became of it.
+
+    Attributes
+    ----------
+    number : int
+        From 1; knowns are not counted.
+    equations : tuple of int
+        Numbers of its equations in the system, in the order of the text.
+    unknowns : tuple of int
+        Quantity numbers, ascending.
+    after : tuple of int
+        Numbers of the blocks it depends on directly.
+    result : BlockResult or None
+        None where it was not reached because a block before it failed.
+    """
+
+    number: int
+    equations: tuple[int, ...]
+    unknowns: tuple[int, ...]
+    after: tuple[int, ...]
+    result: BlockResult | None
+
+
+@dataclass(frozen=True)
+class Run:
+    """Values of all quantities by number (nan where not found) and how they were come by."""
+
+    values: tuple[float, ...]
+    errors: tuple[float, ...]
+    blocks: tuple[BlockRun, ...]
+    block_of: Mapping[int, int]
+    guesses: Guesses
+    formulas: tuple[Formula, ...]
+    diagnostics: tuple[Diagnostic, ...]
+    best: Mapping[int, float] = field(default_factory=dict)
+
+    @property
+    def failed(self) -> bool:
+        """Whether a block was tried and not solved."""
+        return any(b.result is not None and not b.result.solved for b in self.blocks)
+
+
+def run_blocks(prepared: Prepared, budget: Budget) -> Run:
+    """Solve block after block; what depends on a failed block is left out."""
+    system = prepared.system
+    guesses, found = work_out_guesses(system, prepared.known_values)
+    diagnostics = list(found)
+    count = len(system.names)
+    values = [math.nan] * count
+    errors = [0.0] * count
+    for quantity, value in prepared.known_values.items():
+        values[quantity] = value
+    formulas = list(prepared.formulas)
+    dimensions = prepared.dimensions.dimensions
+    known = Known(values, errors)
+    runs: list[BlockRun] = []
+    block_of: dict[int, int] = {}
+    best: dict[int, float] = {}
+    numbers: dict[int, int] = {}
+    failed: set[int] = set()
+    for position, block in enumerate(prepared.structure.blocks):
+        equations = [prepared.rows[r] for r in block.rows]
+        if len(equations) == 1 and system.equations[equations[0]].known >= 0:
+            continue
+        number = len(runs) + 1
+        numbers[position] = number
+        equations.sort(key=lambda e: system.equations[e].place.statement)
+        after = tuple(numbers[d] for d in block.depends if d in numbers)
+        result = None
+        if any(a in failed for a in after):
+            failed.add(number)
+        else:
+            result = solve_equations(
+                [formulas[e] for e in equations], block.columns, known, guesses, dimensions, budget
+            )
+            for equation, formula in zip(equations, result.formulas):
+                formulas[equation] = formula
+            if result.solved:
+                for quantity, value, error in zip(block.columns, result.values, result.errors):
+                    values[quantity] = value
+                    errors[quantity] = error
+            else:
+                failed.add(number)
+                best.update(zip(block.columns, result.values))
+        for quantity in block.columns:
+            block_of[quantity] = number
+        run = BlockRun(number, tuple(equations), block.columns, after, result)
+        runs.append(run)
+        if result is not None:
+            if not result.solved:
+                diagnostics.append(failure_diagnostic(system, prepared, run, known, guesses))
+            else:
+                diagnostics += trust_warnings(system, run)
+            diagnostics += start_note(system, run)
+    verdicts = _conflicts(prepared, formulas, values, errors)
+    diagnostics += [diagnostic for _, _, diagnostic in verdicts]
+    _withhold(prepared, runs, values, [c for c, satisfied, _ in verdicts if not satisfied])
+    return Run(
+        tuple(values),
+        tuple(errors),
+        tuple(runs),
+        block_of,
+        guesses,
+        tuple(formulas),
+        tuple(diagnostics),
+        best,
+    )
+
+
+def _conflicts(
+    prepared: Prepared, formulas: list[Formula], values: list[float], errors: list[float]
+) -> list[tuple[Conflict, bool | None, Diagnostic]]:
+    """Whether the statements of each over-determined piece contradict or merely repeat each other."""
+    found = []
+    for conflict in prepared.structure.conflicts:
+        satisfied, gap = left_out_hold(prepared, conflict, formulas, values, errors)
+        diagnostic = conflict_diagnostic(prepared.system, prepared.rows, conflict, satisfied, gap)
+        found.append((conflict, satisfied, diagnostic))
+    return found
+
+
+def left_out_hold(
+    prepared: Prepared,
+    conflict: Conflict,
+    formulas: list[Formula],
+    values: list[float],
+    errors: list[float],
+) -> tuple[bool | None, str]:
+    """Whether the equations left out of a conflict hold at the solution of the others.
+
+    Returns
+    -------
+    satisfied : bool or None
+        None where a value they need could not be found.
+    gap : str
+        The sides of the first that does not hold, in words.
+    """
+    for row in conflict.left_out:
+        number = prepared.rows[row]
+        formula = formulas[number]
+        inputs = [values[q] for q in formula.quantities]
+        if not all(map(math.isfinite, inputs)):
+            return None, ""
+        evidence = evaluate_with_evidence(
+            formula.tape, inputs, literal_values(formula), [errors[q] for q in formula.quantities]
+        )
+        left, right = formula.tape.outputs
+        gap = abs(evidence.values[left] - evidence.values[right])
+        size = max(evidence.sizes[left], evidence.sizes[right])
+        if not gap <= EQUAL_TO * size + evidence.errors[left] + evidence.errors[right]:
+            statement = prepared.system.statements[formula.statement]
+            return False, (
+                f"with the others, `{statement.line.text}` reads {written(evidence.values[left])} = "
+                f"{written(evidence.values[right])} in SI units"
+            )
+    return True, ""
+
+
+def _withhold(
+    prepared: Prepared, runs: list[BlockRun], values: list[float], contradicted: list[Conflict]
+) -> None:
+    """Values that contradicting statements give, and what depends on them, are not shown; knowns are."""
+    columns = {column for conflict in contradicted for column in conflict.columns}
+    tainted: set[int] = set()
+    for run in runs:
+        if columns.intersection(run.unknowns) or tainted.intersection(run.after):
+            tainted.add(run.number)
+            for quantity in run.unknowns:
+                values[quantity] = math.nan

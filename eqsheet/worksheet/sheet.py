@@ -1,0 +1,108 @@
+"""The worksheet: a text that has been read, and everything that can be asked of it."""
+
+from __future__ import annotations
+
+import time
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+
+from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.diagnostics.source import Source
+from eqsheet.model.build import LoweredCache
+from eqsheet.solve.ladder import DEFAULT_BUDGET
+from eqsheet.solve.trail import Budget
+from eqsheet.syntax.nodes import Document
+from eqsheet.syntax.parse import parse_document
+from eqsheet.worksheet.assemble import assemble
+from eqsheet.worksheet.changes import apply_changes
+from eqsheet.worksheet.prepare import Prepared, prepare
+from eqsheet.worksheet.run import run_blocks
+from eqsheet.worksheet.solution import Solution
+
+
+@dataclass(frozen=True)
+class Worksheet:
+    """A worksheet as read. Reading one never runs code.
+
+    Attributes
+    ----------
+    source : Source
+    document : Document
+    diagnostics : tuple of Diagnostic
+        What reading the text alone has found; `solve` finds more.
+    """
+
+    source: Source
+    document: Document
+    diagnostics: tuple[Diagnostic, ...]
+    timing: float = 0.0
+    cache: LoweredCache = field(default_factory=LoweredCache, repr=False, compare=False)
+
+    @property
+    def name(self) -> str:
+        """Name of the file."""
+        return self.source.name
+
+    def prepare(self, changes: Sequence[str] = (), free: Sequence[str] = ()) -> Prepared:
+        """Everything up to the order of solution, before any number is computed; parameters as in `solve`."""
+        statements, found = apply_changes(self.document.statements, changes, free)
+        return prepare(statements, (*self.diagnostics, *found), self.cache)
+
+    def solve(
+        self,
+        changes: Sequence[str] = (),
+        free: Sequence[str] = (),
+        budget: Budget = DEFAULT_BUDGET,
+    ) -> Solution:
+        """Solve the worksheet.
+
+        Parameters
+        ----------
+        changes : sequence of str
+            Statements for this call only: each replaces the known of its name, or is added.
+        free : sequence of str
+            Names of knowns to switch off for this call only.
+        budget : Budget
+            What one block may cost.
+
+        Returns
+        -------
+        Solution
+            Also where something is wrong: see its `status` and `diagnostics`.
+
+        >>> import eqsheet
+        >>> sheet = eqsheet.parse("v = Q/A\\nQ = 3 L/s\\nA = 12 cm^2")
+        >>> sheet.solve()["v"].to("m/s")
+        2.5
+        >>> sheet.solve(changes=["Q = 6 L/s"])["v"].to("m/s")
+        5.0
+        """
+        prepared = self.prepare(changes, free)
+        begin = time.perf_counter()
+        run = run_blocks(prepared, budget) if prepared.valid_text else None
+        solved_in = time.perf_counter() - begin
+        timing = {"parse": self.timing, **prepared.timing, "solve": solved_in}
+        return assemble(self.name, prepared, run, timing)
+
+
+def parse(text: str, name: str = "<text>") -> Worksheet:
+    """The worksheet that `text` holds.
+
+    Parameters
+    ----------
+    text : str
+    name : str
+        What messages call it.
+
+    >>> parse("x = 2 m").document.statements[0].line.text
+    'x = 2 m'
+    """
+    return read(Source(name, text.replace("\r\n", "\n").removeprefix("\ufeff")))
+
+
+def read(source: Source, cache: LoweredCache | None = None) -> Worksheet:
+    """The worksheet of a source; `cache` as in `build_system`."""
+    begin = time.perf_counter()
+    document, diagnostics = parse_document(source)
+    taken = time.perf_counter() - begin
+    return Worksheet(source, document, diagnostics, taken, cache or LoweredCache())

@@ -1,0 +1,318 @@
+"""Solves one block by the cheapest method that fits, and judges the result afresh.
+
+Closed form by isolation, else closed form of a linear equation, else a linear step, else the ladder of the
+solve layer; conditions that depend on the block's own unknowns are held, checked and switched.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from eqsheet.model.branches import chosen_branches, hold, literal_values, settle, switches
+from eqsheet.model.evaluate import evaluate, evaluate_with_evidence
+from eqsheet.model.isolate import isolate
+from eqsheet.model.linear import affine_in, is_linear_in
+from eqsheet.model.tape import Formula, Tape
+from eqsheet.solve.ladder import DEFAULT_BUDGET, solve_block, solve_scalar
+from eqsheet.solve.linear import linear_step
+from eqsheet.solve.outcome import Outcome, Status
+from eqsheet.solve.problem import Problem, Vector
+from eqsheet.solve.regimes import Held, solve_regimes
+from eqsheet.solve.termination import ACCEPTABLE
+from eqsheet.solve.trail import Budget, Trail
+from eqsheet.solve.verdict import judge
+from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.block_equations import block_problem, scalar_problem
+from eqsheet.worksheet.guesses import Guesses
+from eqsheet.worksheet.starting_values import Start, starting_values
+
+# Rounding of a closed form may put its value this far past a bound, relative to the bound.
+PAST_BOUND = 1e-12
+
+
+@dataclass(frozen=True)
+class BlockResult:
+    """What became of one block.
+
+    Attributes
+    ----------
+    solved : bool
+    values, errors : tuple of float
+        By position of the unknowns; the best point and infinities where it is not solved.
+    method : str
+    iterations : int
+    residual : float
+        Scaled, evaluated afresh.
+    condition : float
+    formulas : tuple of Formula
+        The equations with the branches taken.
+    outcome : Outcome or None
+        The solver's account; None for closed forms.
+    start : Start or None
+        Where it was started; None for closed forms.
+    gap : tuple of float
+        With no consistent branch: how far the solutions lie apart, by unknown.
+    outside : tuple of int
+        Positions of unknowns that a closed form puts outside their bounds.
+    problem : Problem or None
+        For explaining a failure.
+    """
+
+    solved: bool
+    values: tuple[float, ...]
+    errors: tuple[float, ...]
+    method: str
+    iterations: int = 0
+    residual: float = 0.0
+    condition: float = 1.0
+    formulas: tuple[Formula, ...] = ()
+    outcome: Outcome | None = None
+    start: Start | None = None
+    gap: tuple[float, ...] = ()
+    outside: tuple[int, ...] = ()
+    problem: Problem | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Known:
+    """What is known when a block is solved: SI values and error bounds by quantity number, nan where unknown."""
+
+    values: Sequence[float]
+    errors: Sequence[float]
+
+
+def solve_equations(
+    formulas: Sequence[Formula],
+    unknowns: Sequence[int],
+    known: Known,
+    guesses: Guesses,
+    dimensions: Sequence[Dimension | None],
+    budget: Budget = DEFAULT_BUDGET,
+) -> BlockResult:
+    """The solution of one block.
+
+    Parameters
+    ----------
+    formulas : sequence of Formula
+        As many as unknowns.
+    unknowns : sequence of int
+        Quantity numbers, ascending.
+    """
+    own = set(unknowns)
+    values = known.values
+    formulas = tuple(settle(f, lambda q: None if q in own else values[q]) for f in formulas)
+    found = switches(formulas)
+    if not found:
+        if len(unknowns) == 1:
+            closed = _closed_form(formulas[0], unknowns[0], known, guesses)
+            if closed is not None:
+                return closed
+        start = starting_values(unknowns, formulas, values, guesses, dimensions)
+        return _iterate(formulas, unknowns, known, start, budget)
+    start = starting_values(unknowns, formulas, values, guesses, dimensions)
+    return _by_regimes(formulas, unknowns, known, guesses, start, budget)
+
+
+def _closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses) -> BlockResult | None:
+    """The value an isolated or linear equation gives; None where there is no closed form with a finite value.
+
+    Of several values the one inside the bounds and nearest to the guess is taken, else the principal one.
+    """
+    tape = formula.tape
+    slot = formula.quantities.index(unknown)
+    isolation = isolate(tape, slot)
+    inputs = [known.values[q] for q in formula.quantities]
+    literals = literal_values(formula)
+    candidates: list[tuple[float, Tape]] = []
+    if isolation is not None:
+        for candidate in isolation.candidates:
+            value = evaluate(candidate.tape, inputs, literals)[candidate.tape.outputs[0]]
+            if not math.isfinite(value):
+                continue
+            if candidate.condition is not None:
+                truth = evaluate(candidate.condition, inputs, literals)[candidate.condition.outputs[0]]
+                if not truth:
+                    continue
+            candidates.append((value, candidate.tape))
+    else:
+        affine = affine_in(tape, slot)
+        if affine is None:
+            return None
+        value = evaluate(affine.solution, inputs, literals)[affine.solution.outputs[0]]
+        if math.isfinite(value):
+            candidates.append((value, affine.solution))
+    if not candidates:
+        return None
+    low, high = guesses.bounds(unknown)
+    inside = [c for c in candidates if _within(c[0], low, high)]
+    near = guesses.near.get(unknown)
+    choice = inside or candidates
+    value, closed = choice[0] if near is None else min(choice, key=lambda c: abs(c[0] - near))
+    evidence = evaluate_with_evidence(closed, inputs, literals, [known.errors[q] for q in formula.quantities])
+    error = evidence.errors[closed.outputs[0]]
+    inputs[slot] = value
+    afresh = evaluate_with_evidence(tape, inputs, literals)
+    left, right = tape.outputs
+    residual = abs(afresh.values[left] - afresh.values[right])
+    size = max(afresh.sizes[left], afresh.sizes[right])
+    # What the equation makes of an uncertainty of the value by its own error is no sign of a wrong value.
+    bound = afresh.errors[left] + afresh.errors[right]
+    if not residual <= max(ACCEPTABLE * size, bound):
+        return None
+    return BlockResult(
+        bool(inside),
+        (value,),
+        (error,),
+        "closed form",
+        residual=residual / size if size > 0 else 0.0,
+        formulas=(formula,),
+        outside=() if inside else (0,),
+    )
+
+
+def _within(value: float, low: float, high: float) -> bool:
+    slack = PAST_BOUND * abs(value)
+    return low - slack <= value <= high + slack
+
+
+def _solve_plain(
+    formulas: Sequence[Formula],
+    unknowns: Sequence[int],
+    known: Known,
+    start: Start,
+    budget: Budget,
+) -> tuple[Outcome, Problem | None]:
+    """The solver's outcome for equations without undecided conditions."""
+    if len(unknowns) == 1:
+        if unknowns[0] not in formulas[0].quantities:
+            # A held branch has lost the unknown.
+            point = np.array(start.values)
+            return Outcome(Status.SINGULAR, point, math.inf, 0, "newton"), None
+        return solve_scalar(scalar_problem(formulas[0], unknowns[0], known.values, start), budget), None
+    problem = block_problem(formulas, unknowns, known.values, start)
+    own = set(unknowns)
+    if all(is_linear_in(f.tape, {s for s, q in enumerate(f.quantities) if q in own}) for f in formulas):
+        return linear_step(problem, problem.start, Trail("linear", problem.start, budget)), problem
+    return solve_block(problem, budget), problem
+
+
+def _iterate(
+    formulas: tuple[Formula, ...], unknowns: Sequence[int], known: Known, start: Start, budget: Budget
+) -> BlockResult:
+    outcome, problem = _solve_plain(formulas, unknowns, known, start, budget)
+    return _judged(formulas, unknowns, known, start, outcome, problem)
+
+
+def _by_regimes(
+    formulas: tuple[Formula, ...],
+    unknowns: Sequence[int],
+    known: Known,
+    guesses: Guesses,
+    start: Start,
+    budget: Budget,
+) -> BlockResult:
+    """Hold the branches, solve, check, switch."""
+    found = switches(formulas)
+    position = {q: i for i, q in enumerate(unknowns)}
+
+    def choose(x: Vector) -> tuple[int, ...]:
+        return chosen_branches(
+            formulas, found, lambda q: float(x[position[q]]) if q in position else known.values[q]
+        )
+
+    def solve_held(branches: tuple[int, ...], at: Vector | None) -> Outcome:
+        held = hold(formulas, found, branches)
+        if len(unknowns) == 1:
+            closed = _closed_form(held[0], unknowns[0], known, guesses) if unknowns[0] in held[0].quantities else None
+            if closed is not None:
+                status = Status.CONVERGED if closed.solved else Status.HELD
+                return Outcome(status, np.array(closed.values), closed.residual, 0, "closed form")
+        begin = start if at is None else _started_at(start, at)
+        return _solve_plain(held, unknowns, known, begin, budget)[0]
+
+    first = choose(np.array(start.values))
+    held: Held = solve_regimes(first, (2,) * len(found), solve_held, choose, np.array(start.magnitude))
+    taken = hold(formulas, found, held.branches)
+    problem = None
+    if len(unknowns) > 1:
+        problem = block_problem(taken, unknowns, known.values, start)
+    gap = () if held.gap is None else tuple(held.gap.tolist())
+    return _judged(taken, unknowns, known, start, held.outcome, problem, gap)
+
+
+def _started_at(start: Start, x: Vector) -> Start:
+    """The same start at another point, kept inside the bounds."""
+    inside = [min(max(v, low), high) for v, low, high in zip(x.tolist(), start.lower, start.upper)]
+    values = tuple(v if math.isfinite(v) else s for v, s in zip(inside, start.values))
+    return Start(values, start.lower, start.upper, start.magnitude, start.assumed)
+
+
+def _judged(
+    formulas: tuple[Formula, ...],
+    unknowns: Sequence[int],
+    known: Known,
+    start: Start,
+    outcome: Outcome,
+    problem: Problem | None,
+    gap: tuple[float, ...] = (),
+) -> BlockResult:
+    """The solver's outcome, believed only where the equations evaluated afresh bear it out."""
+    x = np.asarray(outcome.x, dtype=float)
+    values = tuple(x.tolist())
+    failed = BlockResult(
+        False,
+        values,
+        (math.inf,) * len(values),
+        outcome.method,
+        outcome.iterations,
+        outcome.residual,
+        math.inf,
+        formulas,
+        outcome,
+        start,
+        gap,
+        problem=problem,
+    )
+    if not outcome.solved:
+        return failed
+    own = dict(zip(unknowns, values))
+    residuals, sizes, bounds = [], [], []
+    for formula in formulas:
+        evidence = evaluate_with_evidence(
+            formula.tape,
+            [own[q] if q in own else known.values[q] for q in formula.quantities],
+            literal_values(formula),
+            [0.0 if q in own else known.errors[q] for q in formula.quantities],
+        )
+        left, right = formula.tape.outputs
+        residuals.append(evidence.values[left] - evidence.values[right])
+        sizes.append(max(evidence.sizes[left], evidence.sizes[right]))
+        bounds.append(evidence.errors[left] + evidence.errors[right])
+    if len(unknowns) == 1:
+        _, slope = scalar_problem(formulas[0], unknowns[0], known.values, start).linearise(values[0])
+        jacobian = np.array([[slope]])
+    else:
+        assert problem is not None
+        jacobian = problem.linearise(x)[1]
+    verdict = judge(
+        np.array(residuals), np.array(sizes), np.array(bounds), jacobian, x, np.array(start.magnitude)
+    )
+    if not verdict.solved:
+        return failed
+    return BlockResult(
+        True,
+        values,
+        tuple(verdict.forward_error.tolist()),
+        outcome.method,
+        outcome.iterations,
+        verdict.residual,
+        verdict.condition,
+        formulas,
+        outcome,
+        start,
+        problem=problem,
+    )

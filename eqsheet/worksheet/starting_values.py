@@ -1,0 +1,168 @@
+"""Starting values where no guess is written: from bounds, else propagated from what is known, else typical.
+
+All rules but the last are independent of the units in use. The outcome does not depend on the order of the
+lines, and no two unknowns are started at the same number, nor any at zero, where equal starts would make a
+Jacobian singular.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, MutableMapping, Sequence
+from dataclasses import dataclass
+
+from eqsheet.model.evaluate import evaluate
+from eqsheet.model.isolate import isolate
+from eqsheet.model.tape import Formula
+from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.guesses import Guesses
+
+# What a quantity of a dimension is like in engineering, in SI, where nothing in the worksheet tells.
+TYPICAL: Mapping[str, float] = {
+    "K": 300.0,  # near room temperature
+    "kg/(m*s^2)": 1e5,  # the atmosphere
+    "kg/m^3": 1e3,  # water
+    "kg*m^2/s^2": 1e3,
+    "kg*m^2/s^3": 1e3,
+}
+# Golden section: multiples of it modulo 1 spread evenly without repeating, so that starts differ.
+_SPREAD = 0.6180339887498949
+# Bounds of a wider ratio are halved in the logarithm.
+_WIDE = 10.0
+
+
+@dataclass(frozen=True, slots=True)
+class Start:
+    """Start of one block, in SI, by position of its unknowns.
+
+    ``assumed`` holds the positions of unknowns without a guess of their own.
+    """
+
+    values: tuple[float, ...]
+    lower: tuple[float, ...]
+    upper: tuple[float, ...]
+    magnitude: tuple[float, ...]
+    assumed: tuple[int, ...]
+
+
+def starting_values(
+    unknowns: Sequence[int],
+    formulas: Sequence[Formula],
+    values: Sequence[float],
+    guesses: Guesses,
+    dimensions: Sequence[Dimension | None],
+) -> Start:
+    """Start values, bounds and magnitudes of the unknowns of one block.
+
+    Parameters
+    ----------
+    unknowns : sequence of int
+        Quantity numbers, ascending.
+    formulas : sequence of Formula
+        The block's equations.
+    values : sequence of float
+        SI values by quantity number, nan where not known yet.
+    """
+    found: dict[int, float] = {}
+    assumed = []
+    for position, quantity in enumerate(unknowns):
+        if quantity in guesses.near:
+            found[quantity] = guesses.near[quantity]
+            continue
+        assumed.append(position)
+        between = _between(*guesses.bounds(quantity), position)
+        if between is not None:
+            found[quantity] = between
+    _propagate(unknowns, formulas, values, guesses, found)
+    for position, quantity in enumerate(unknowns):
+        if quantity not in found:
+            found[quantity] = _inside(_typical(dimensions[quantity], position), guesses, quantity)
+            # One seed may let the equations tell the others.
+            _propagate(unknowns, formulas, values, guesses, found)
+    bounds = [guesses.bounds(quantity) for quantity in unknowns]
+    return Start(
+        tuple(found[q] for q in unknowns),
+        tuple(low for low, _ in bounds),
+        tuple(high for _, high in bounds),
+        tuple(_magnitude(found[q], guesses, q, dimensions[q]) for q in unknowns),
+        tuple(assumed),
+    )
+
+
+def _between(low: float, high: float, position: int) -> float | None:
+    """A point well inside finite bounds, different for each position; None where a side is open."""
+    if not (math.isfinite(low) and math.isfinite(high)):
+        return None
+    part = 0.35 + 0.3 * ((position + 1) * _SPREAD % 1.0)
+    if low > 0.0 and high / low > _WIDE:
+        return low * (high / low) ** part
+    return low + part * (high - low)
+
+
+def _propagate(
+    unknowns: Sequence[int],
+    formulas: Sequence[Formula],
+    values: Sequence[float],
+    guesses: Guesses,
+    found: MutableMapping[int, float],
+) -> None:
+    """Let each equation with one magnitude missing tell it, until none does."""
+    wanted = {q for q in unknowns if q not in found}
+    again = bool(wanted)
+    while again:
+        again = False
+        for formula in formulas:
+            missing = [q for q in formula.quantities if q in wanted]
+            if len(missing) != 1:
+                continue
+            quantity = missing[0]
+            value = _told(formula, quantity, values, found)
+            if value is not None:
+                found[quantity] = _inside(value, guesses, quantity)
+                wanted.discard(quantity)
+                again = True
+
+
+def _told(
+    formula: Formula, quantity: int, values: Sequence[float], found: Mapping[int, float]
+) -> float | None:
+    """What the equation makes the quantity, with the others at their values or starts."""
+    isolation = isolate(formula.tape, formula.quantities.index(quantity))
+    if isolation is None:
+        return None
+    inputs = [found.get(q, values[q]) for q in formula.quantities]
+    literals = [literal.value for literal in formula.literals]
+    for candidate in isolation.candidates:
+        result = evaluate(candidate.tape, inputs, literals)[candidate.tape.outputs[0]]
+        if math.isfinite(result) and result != 0.0:
+            return float(result)
+    return None
+
+
+def _typical(dimension: Dimension | None, position: int) -> float:
+    text = "" if dimension is None else dimension.text
+    return TYPICAL.get(text, 1.0) * (1.0 + 0.2 * ((position + 1) * _SPREAD % 1.0))
+
+
+def _inside(value: float, guesses: Guesses, quantity: int) -> float:
+    """The value, mirrored or moved to the inner side of a bound it passes."""
+    low, high = guesses.bounds(quantity)
+    if low < value < high:
+        return value
+    for candidate in (abs(value), -abs(value)):
+        if low < candidate < high:
+            return candidate
+    if math.isfinite(low) and math.isfinite(high):
+        return _between(low, high, 0) or low
+    if math.isfinite(low):
+        return low + (abs(low) or abs(value) or 1.0) * 0.5
+    return high - (abs(high) or abs(value) or 1.0) * 0.5
+
+
+def _magnitude(value: float, guesses: Guesses, quantity: int, dimension: Dimension | None) -> float:
+    """Typical size of an unknown, > 0."""
+    if value != 0.0:
+        return abs(value)
+    low, high = guesses.bounds(quantity)
+    finite = [abs(b) for b in (low, high) if math.isfinite(b) and b != 0.0]
+    return max(finite) if finite else TYPICAL.get("" if dimension is None else dimension.text, 1.0)
