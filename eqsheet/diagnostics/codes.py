@@ -55,7 +55,7 @@ def read_page(text: str) -> CodePage:
         raise ValueError("the first line must read '# code: what it is'")
     why, wrong, rest = _split_at_block(rest, _WRONG)
     cure, mended, rest = _split_at_block(rest, _MENDED)
-    if not why or not cure or rest:
+    if not why or not cure or rest.strip():
         raise ValueError("a page is: title, why, wrong worksheet, cure, mended worksheet, and no more")
     return CodePage(code, summary.strip(), why, wrong, cure, mended)
 
@@ -66,7 +66,7 @@ def _split_at_block(text: str, fence: str) -> tuple[str, str, str]:
     block, closed, after = rest.partition("```\n")
     if not opened or not closed:
         raise ValueError(f"there is no block fenced as {fence}")
-    return before.strip(), block, after.strip()
+    return before.strip(), block, after
 
 
 def codes() -> tuple[str, ...]:
