@@ -17,7 +17,7 @@ from eqsheet.units.unit import Unit
 STANDARD_ATMOSPHERE = 101325.0
 """Ambient pressure in Pa where a worksheet states none: the standard atmosphere (10th CGPM, 1954)."""
 
-LARGEST_EXPONENT = 60
+LARGEST_EXPONENT = 24
 """Beyond this an exponent in a unit is a slip, and exact powers of the sizes would grow without use."""
 
 _SMALLEST_FACTOR, _LARGEST_FACTOR = 1e-290, 1e290  # so that a value times its factor has room in a float

@@ -147,12 +147,8 @@ UNITS: dict[str, Row] = {
 # another way to write: symbol
 ALIASES: dict[str, str] = {
     'l': 'L',
-    '°C': 'degC',
-    '°F': 'degF',
-    '°': 'deg',
     'Ω': 'Ohm',
     'lbm': 'lb',
-    '‰': 'permille',
 }
 
 # refused way to write: what to write
@@ -264,9 +260,6 @@ SPELLINGS: dict[str, str] = {
     'Celcius': 'degC',
     'fahrenheit': 'degF',
     'Fahrenheit': 'degF',
-    '℃': 'degC',
-    '℉': 'degF',
-    '°K': 'K',
     'degK': 'K',
     'kelvin': 'K',
     'Kelvin': 'K',
@@ -315,10 +308,6 @@ SPELLINGS: dict[str, str] = {
     'kva': 'kVA',
     'percent': '%',
     'pct': '%',
-    '€': 'EUR',
-    '$': 'USD',
-    '£': 'GBP',
-    '¥': 'JPY',
     'euro': 'EUR',
     'euros': 'EUR',
     'dollar': 'USD',

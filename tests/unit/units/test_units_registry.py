@@ -84,7 +84,7 @@ def test_look_alike_characters_are_one_unit(one: str, other: str) -> None:
 
 def test_text_is_kept_as_written() -> None:
     assert unit("l/min").text == "l/min"
-    assert symbol("°C").text == "°C"
+    assert symbol("kΩ").text == "kΩ"
 
 
 # --- readings ---------------------------------------------------------------------------------------------
@@ -94,7 +94,7 @@ def test_text_is_kept_as_written() -> None:
     ("text", "value", "si"),
     [
         ("degC", 25.0, 298.15),
-        ("°C", -40.0, 233.15),
+        ("degC", -40.0, 233.15),
         ("degF", 32.0, 273.15),
         ("degF", 212.0, 373.15),
         ("barg", 2.0, 301325.0),
@@ -112,7 +112,7 @@ def test_reading_and_its_si_value(text: str, value: float, si: float) -> None:
 def test_only_units_with_an_origin_are_readings() -> None:
     readings = {text for text in STANDARD.known_symbols() if symbol(text).reading}
     assert readings == {
-        "degC", "degF", "°C", "°F", "barg", "mbarg", "Pag", "kPag", "MPag", "psig",
+        "degC", "degF", "barg", "mbarg", "Pag", "kPag", "MPag", "psig",
     }  # fmt: skip
 
 
@@ -271,8 +271,8 @@ def test_the_problem_names_the_factor_at_fault() -> None:
 
 def test_exponents_out_of_range() -> None:
     assert problem("m^100").code == "unit-out-of-range"
-    assert problem("TW^40").code == "unit-out-of-range"
-    assert problem("pm^60").code == "unit-out-of-range"
+    assert problem("TW^24*TW^24").code == "unit-out-of-range"
+    assert problem("pm^24*pm^24").code == "unit-out-of-range"
 
 
 def test_no_symbols_is_no_unit_but_a_plain_number() -> None:
@@ -313,7 +313,7 @@ def test_declaring_the_same_base_twice_changes_nothing() -> None:
     assert table.with_base("person") is table
 
 
-@pytest.mark.parametrize("taken", ["kg", "m", "bar", "kN", "°C", "Nm"])
+@pytest.mark.parametrize("taken", ["kg", "m", "bar", "kN", "Ω", "Nm"])
 def test_units_of_the_list_are_not_redefined(taken: str) -> None:
     found = STANDARD.with_base(taken)
     assert isinstance(found, UnitProblem)

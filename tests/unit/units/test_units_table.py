@@ -28,6 +28,13 @@ def test_every_way_to_write_a_unit_is_found_again() -> None:
     assert {form for form in forms if not form.startswith("u")} == set(table.known_symbols())
 
 
+def test_every_symbol_can_be_written_in_a_worksheet() -> None:
+    published = resolve.read_list()
+    words = [*resolve.written_forms(published), *published["spelling"], *published["ambiguous"]]
+    odd = [word for word in words if not word.isidentifier() and word not in ("%", "Nm^3", "Sm^3")]
+    assert odd == []
+
+
 def test_two_units_written_alike_are_noticed() -> None:
     published = {
         "unit": [
