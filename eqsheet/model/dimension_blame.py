@@ -156,7 +156,7 @@ def origins_of(lines: Worklines, given: Collection[int], found: Inference) -> tu
             origins[quantity] = Origin(reason.formula, place)
         elif quantity in found.fixed_together:
             source = found.elimination.pivots[quantity].source
-            origins[quantity] = Origin(source, _extent(lines.formulas[source]))
+            origins[quantity] = Origin(source, extent(lines.formulas[source]))
     return tuple(origins)
 
 
@@ -172,10 +172,11 @@ def _witness(formula: Formula, demand: Demand, quantity: int) -> Place:
             return formula.places[other] if other >= 0 else formula.places[demand.owner]
     if demand.owner >= 0:
         return formula.places[demand.owner]
-    return _extent(formula)
+    return extent(formula)
 
 
-def _extent(formula: Formula) -> Place:
+def extent(formula: Formula) -> Place:
+    """Place from the first to the last output of the formula."""
     places = [formula.places[output] for output in formula.tape.outputs] or list(formula.places)
     return min(start for start, _ in places), max(end for _, end in places)
 

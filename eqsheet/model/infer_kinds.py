@@ -1,0 +1,369 @@
+"""Kinds of temperatures and pressures, reading or difference, inferred from all formulas of a worksheet.
+
+Runs after `infer_dimensions`. Kinds spread from literals (`kind_rules` says how) over a worklist; a formula
+that cannot hold is set aside, or the known that brought it about, and reported as a `Misuse`.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Collection, Sequence
+from dataclasses import dataclass, field
+
+from eqsheet.model.dimension_blame import Origin, Place, extent
+from eqsheet.model.kind_rules import (
+    DIFFERENCE,
+    KEPT_APART,
+    READING,
+    TEMPERATURE,
+    Agreement,
+    Breach,
+    KindReader,
+    Weight,
+)
+from eqsheet.model.tape import Formula
+from eqsheet.units.dimension import Dimension
+
+#: Words for kinds, as results carry them.
+KIND_WORDS = {READING: "reading", DIFFERENCE: "difference"}
+UNKNOWN_KIND = "unknown"
+PLAIN_KIND = "plain"
+
+#: Offsets that make a reading absolute, in SI: 273.15 K, 459.67 degR and one atmosphere, as rounded in use.
+#: Readings are kept absolute already, so that added to one they count twice.
+TEMPERATURE_OFFSETS = ((272.9, 273.3), (255.3, 255.45))
+PRESSURE_OFFSETS = ((0.999e5, 1.0145e5),)
+
+
+@dataclass(frozen=True, slots=True)
+class Misuse:
+    """A reading where a difference is needed, or the other way round.
+
+    Attributes
+    ----------
+    what : str
+        ``sum``: the weight is that of several readings. ``reading``: a reading where a difference is needed.
+        ``difference``: a difference where a reading is needed. ``offset``: a reading made absolute twice.
+    formula : int
+    place : (int, int)
+        The guilty text.
+    against : (int, int) or None
+        The text in the same line it is in conflict with.
+    quantities : tuple of (int, int, Origin or None)
+        Quantities in the formula whose kinds matter: number, kind (1 reading, 0 difference), what fixed it.
+    literal : int
+        Number of the formula's literal that is the guilty text, -1 if it is none.
+    dimension : Dimension
+        Temperature or pressure.
+    """
+
+    what: str
+    formula: int
+    place: Place
+    against: Place | None
+    quantities: tuple[tuple[int, int, Origin | None], ...]
+    literal: int
+    dimension: Dimension
+
+
+@dataclass(frozen=True, slots=True)
+class KindResult:
+    """Kinds by quantity, what fixed them, and misuses.
+
+    Kinds are ``reading``, ``difference``, ``unknown`` for temperatures and pressures, ``plain`` for all else.
+    """
+
+    kinds: tuple[str, ...]
+    origins: tuple[Origin | None, ...]
+    misuses: tuple[Misuse, ...]
+
+    def __getitem__(self, quantity: int) -> str:
+        """The word results carry: a quantity of unknown kind is shown as a plain value."""
+        kind = self.kinds[quantity]
+        return PLAIN_KIND if kind == UNKNOWN_KIND else kind
+
+
+@dataclass(slots=True)
+class _Pass:
+    kinds: dict[int, int] = field(default_factory=dict)
+    reasons: dict[int, tuple[int, Agreement]] = field(default_factory=dict)
+    breaches: dict[int, Breach] = field(default_factory=dict)
+
+
+def infer_kinds(
+    formulas: Sequence[Formula],
+    dimensions: Sequence[Dimension | None],
+    minor: Collection[int] = (),
+    without: Collection[int] = (),
+) -> KindResult:
+    """Which temperatures and pressures are readings and which are differences.
+
+    Parameters
+    ----------
+    formulas, minor
+        As for `infer_dimensions`.
+    dimensions
+        By quantity, as inferred.
+    without
+        Formulas to leave out, whose dimensions clash.
+    """
+    readers: dict[int, KindReader] = {}
+    users: dict[int, list[int]] = {}
+    apart = [dimension in KEPT_APART for dimension in dimensions]
+    for index, formula in enumerate(formulas):
+        kinds_matter = any(apart[q] for q in formula.quantities) or any(
+            literal.kind != "plain" for literal in formula.literals
+        )
+        if index in without or not kinds_matter:
+            continue
+        reader = KindReader(formula, dimensions)
+        if reader.concerned:
+            readers[index] = reader
+            for quantity in formula.quantities:
+                users.setdefault(quantity, []).append(index)
+    set_aside: set[int] = set()
+    found = _spread(readers, users, set_aside)
+    while found.breaches:
+        set_aside.add(_culprit(readers, users, found, set_aside, frozenset(minor)))
+        found = _spread(readers, users, set_aside)
+    origins: list[Origin | None] = [None] * len(dimensions)
+    for quantity, (index, agreement) in found.reasons.items():
+        origins[quantity] = Origin(index, _witness(formulas[index], agreement, quantity))
+    misuses = [_misuse(readers[index], index, found, origins, dimensions) for index in sorted(set_aside)]
+    misuses.extend(_doubled_offsets(readers, found, origins, set_aside))
+    kinds = tuple(
+        PLAIN_KIND if not apart[q] else KIND_WORDS[found.kinds[q]] if q in found.kinds else UNKNOWN_KIND
+        for q in range(len(dimensions))
+    )
+    return KindResult(kinds, tuple(origins), tuple(m for m in misuses if m is not None))
+
+
+def _spread(readers: dict[int, KindReader], users: dict[int, list[int]], without: Collection[int]) -> _Pass:
+    """Kinds spread in rounds, knowns first, so that each is put down to the shortest chain of lines."""
+    found = _Pass()
+    left_out = set(without)
+    singles = [index for index, reader in readers.items() if len(reader.formula.quantities) <= 1]
+    queue = singles
+    first = True
+    while queue or first:
+        touched = set(readers) - set(singles) if first else set()
+        first = False
+        news: list[tuple[int, int, int, Agreement]] = []
+        for index in queue:
+            if index in left_out:
+                continue
+            reader = readers[index]
+            quantities = reader.formula.quantities
+            now = {slot: found.kinds[q] for slot, q in enumerate(quantities) if q in found.kinds}
+            visit = reader.visit(now)
+            if visit.breach is not None:
+                found.breaches[index] = visit.breach
+                left_out.add(index)
+                continue
+            news.extend((quantities[slot], kind, index, why) for slot, kind, why in visit.solved)
+        for quantity, kind, index, why in news:
+            if quantity not in found.kinds:
+                found.kinds[quantity] = kind
+                found.reasons[quantity] = (index, why)
+                touched.update(users[quantity])
+            elif found.kinds[quantity] != kind:
+                touched.add(index)
+        queue = sorted(touched - left_out)
+    return found
+
+
+def _culprit(
+    readers: dict[int, KindReader],
+    users: dict[int, list[int]],
+    found: _Pass,
+    set_aside: set[int],
+    minor: frozenset[int],
+) -> int:
+    """The formula in breach, or a line that fixed one of its kinds where that explains more.
+
+    At par, a sum of readings is the fault of the sum. In any other breach a known given as a reading may be
+    meant as a difference; where several could be, it is the smallest, as differences are smaller than readings.
+    """
+    index, breach = min(found.breaches.items())
+    reader = readers[index]
+    causes = {q: found.reasons[q][0] for q in reader.formula.quantities if q in found.reasons}
+    odd, smallest = index, math.inf
+    for quantity, cause in causes.items():
+        written = readings_written(readers[cause].formula)
+        if written and max(written) < smallest and _would_fit_as_difference(reader, breach, found, quantity):
+            odd, smallest = cause, max(written)
+
+    def rank(candidate: int) -> tuple[int, ...]:
+        without = _spread(readers, users, {*set_aside, candidate})
+        return (
+            len(without.breaches),
+            candidate not in minor,
+            candidate != odd,
+            candidate != index,
+            candidate,
+        )
+
+    return min({index, *causes.values()}, key=rank)
+
+
+def readings_written(formula: Formula) -> list[float]:
+    """SI values of the readings in a formula of a single quantity; empty for any other."""
+    if len(formula.quantities) > 1:
+        return []
+    return [literal.value for literal in formula.literals if literal.kind == "reading"]
+
+
+def _would_fit_as_difference(reader: KindReader, breach: Breach, found: _Pass, quantity: int) -> bool:
+    """Whether the agreement in breach would hold if the quantity were a difference."""
+    agreement = breach.agreement
+    sides = (agreement.left, agreement.right)
+    bare = all(side >= 0 and reader.instructions[side][0] == "quantity" for side in sides)
+    if bare or any(_is_no_kind(weight) for weight in (breach.left, breach.right)):
+        return False
+    quantities = reader.formula.quantities
+    now = {slot: found.kinds[q] for slot, q in enumerate(quantities) if q in found.kinds}
+    now[quantities.index(quantity)] = DIFFERENCE
+    again = reader.visit(now).breach
+    return again is None or again.agreement != agreement
+
+
+def _is_no_kind(weight: Weight) -> bool:
+    """Whether it is of itself neither reading nor difference: the sum of two readings, or minus a reading."""
+    return weight.certain is not None and weight.certain not in (READING, DIFFERENCE)
+
+
+def _witness(formula: Formula, agreement: Agreement, quantity: int) -> Place:
+    """Place of what the quantity agreed with, where it stands alone on one side; else the whole."""
+    sides = (agreement.left, agreement.right)
+    for side, other in (sides, sides[::-1]):
+        if side < 0 or other < 0:
+            continue
+        operation, *operands = formula.tape.instructions[side]
+        slot = operands[0]
+        if operation == "quantity" and isinstance(slot, int) and formula.quantities[slot] == quantity:
+            return formula.places[other]
+    return formula.places[agreement.owner] if agreement.owner >= 0 else extent(formula)
+
+
+def _misuse(
+    reader: KindReader,
+    index: int,
+    found: _Pass,
+    origins: Sequence[Origin | None],
+    dimensions: Sequence[Dimension | None],
+) -> Misuse | None:
+    """What is wrong in formula `index`, in the light of all the others."""
+    formula = reader.formula
+    now = {slot: found.kinds[q] for slot, q in enumerate(formula.quantities) if q in found.kinds}
+    visit = reader.visit(now)
+    if visit.breach is None:
+        return None
+    now.update({slot: kind for slot, kind, _ in visit.solved})
+    weights = reader.weights(now)
+    what, guilty, other = _guilty(reader, visit.breach, weights)
+    against = formula.places[other] if other >= 0 else None
+    roots = {other} if what == "sum" else {visit.breach.agreement.left, visit.breach.agreement.right}
+    apart = [(slot, q) for slot, q in enumerate(formula.quantities) if dimensions[q] in KEPT_APART]
+    involved = _slots_in(reader, roots)
+    parts = tuple((q, now[slot], origins[q]) for slot, q in apart if slot in now and slot in involved)
+    operation, *operands = reader.instructions[guilty]
+    literal = operands[0] if operation == "literal" and isinstance(operands[0], int) else -1
+    place = formula.places[guilty]
+    return Misuse(what, index, place, against, parts, literal, reader.dimensions[guilty])
+
+
+def _slots_in(reader: KindReader, roots: set[int]) -> set[int]:
+    """Slots of the quantities that stand in the sums at `roots`."""
+    slots: set[int] = set()
+    stack = [root for root in roots if root >= 0]
+    while stack:
+        operation, *operands = reader.instructions[stack.pop()]
+        if operation == "quantity" and isinstance(operands[0], int):
+            slots.add(operands[0])
+        elif operation not in ("literal", "const"):
+            stack.extend(o for o in operands if isinstance(o, int))
+    return slots
+
+
+def _guilty(reader: KindReader, breach: Breach, weights: Sequence[Weight | None]) -> tuple[str, int, int]:
+    """What is wrong, the instruction to point at, and the one it is in conflict with or -1."""
+    agreement = breach.agreement
+    for side, weight in ((agreement.right, breach.right), (agreement.left, breach.left)):
+        if side >= 0 and _is_no_kind(weight):
+            return "sum", _reading_too_many(reader, side, weights), side
+    if agreement.right < 0:
+        what = "reading" if agreement.needed == DIFFERENCE else "difference"
+        return what, agreement.left, -1
+    left, right = agreement.left, agreement.right
+    # The side with more in it speaks for itself; a bare literal or quantity is what does not fit it.
+    guilty, other = (right, left) if _size(reader, right) <= _size(reader, left) else (left, right)
+    if reader.instructions[left][0] == "quantity" and reader.instructions[right][0] == "literal":
+        guilty, other = right, left
+    return ("reading" if _is_reading(weights[guilty]) else "difference"), guilty, other
+
+
+def _is_reading(weight: Weight | None) -> bool:
+    return weight is not None and weight.certain == READING
+
+
+def _size(reader: KindReader, index: int) -> int:
+    start, end = reader.formula.places[index]
+    return end - start
+
+
+def _reading_too_many(reader: KindReader, side: int, weights: Sequence[Weight | None]) -> int:
+    """The term of the sum to point at: a reading written out in it, else all of it."""
+    terms = _terms(reader, side)
+    readings = [term for term in terms if _is_reading(weights[term])]
+    written = [term for term in readings if reader.instructions[term][0] == "literal"]
+    if written and len(readings) > 1:
+        return written[-1]
+    return side
+
+
+def _terms(reader: KindReader, index: int) -> list[int]:
+    operation, *operands = reader.instructions[index]
+    if operation in ("add", "sub", "neg"):
+        return [term for o in operands if isinstance(o, int) for term in _terms(reader, o)]
+    return [index]
+
+
+def _doubled_offsets(
+    readers: dict[int, KindReader], found: _Pass, origins: Sequence[Origin | None], set_aside: set[int]
+) -> list[Misuse]:
+    """Sums such as ``T + 273.15 K`` with T a reading, which is kept in kelvin already."""
+    misuses: list[Misuse] = []
+    for index, reader in readers.items():
+        if index in set_aside:
+            continue
+        formula = reader.formula
+        now = {slot: found.kinds[q] for slot, q in enumerate(formula.quantities) if q in found.kinds}
+        weights = reader.weights(now)
+        for operation, *operands in reader.instructions:
+            if operation != "add":
+                continue
+            for literal_at, other in (operands, operands[::-1]):
+                assert isinstance(literal_at, int) and isinstance(other, int)
+                leaf, *slots = reader.instructions[literal_at]
+                if leaf != "literal" or not isinstance(slots[0], int):
+                    continue
+                literal = formula.literals[slots[0]]
+                if literal.kind == "reading" or not _is_reading(weights[other]):
+                    continue
+                if not _is_offset(literal.value, literal.dimension):
+                    continue
+                parts = tuple(
+                    (formula.quantities[slot], now[slot], origins[formula.quantities[slot]])
+                    for slot in sorted(_slots_in(reader, {other}))
+                    if slot in now
+                )
+                place = formula.places[literal_at]
+                misuses.append(
+                    Misuse("offset", index, place, formula.places[other], parts, slots[0], literal.dimension)
+                )
+    return misuses
+
+
+def _is_offset(value: float, dimension: Dimension) -> bool:
+    offsets = TEMPERATURE_OFFSETS if dimension == TEMPERATURE else PRESSURE_OFFSETS
+    return any(low <= value <= high for low, high in offsets)

@@ -1,0 +1,327 @@
+"""Readings and differences within one formula: weights of its instructions and what they must satisfy.
+
+A reading has an origin (20 degC, 3 barg), a difference has none. Give a reading the weight 1 and a difference
+the weight 0: weights add where values are added, so ``T_2 - T_1`` has 0, ``T_1 + dT`` has 1, a mean
+``(T_1 + T_2)/2`` has 1, and ``T_1 + 2 degC``, a slip, has 2. Sides of an equation have one weight.
+
+Only certain misuse may be refused, so wherever a weight is in doubt there is none: products with quantities,
+functions, and multiples such as ``0.53*p_1``, which is sound on absolute values. A value in K, Pa or bar can
+be either.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from fractions import Fraction
+
+from eqsheet.model.dimension_propagation import evaluate
+from eqsheet.model.dimension_rules import rules_of
+from eqsheet.model.tape import Formula
+from eqsheet.units.dimension import DIMENSIONLESS, Dimension
+from eqsheet.units.unit import Unit
+
+TEMPERATURE = Dimension.of({"K": 1})
+PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
+KEPT_APART = (TEMPERATURE, PRESSURE)
+
+READING, DIFFERENCE = 1, 0
+
+#: Weights typed by hand (0.33 for a third) are off by less than this.
+ROUNDED = Fraction(1, 20)
+
+
+@dataclass(frozen=True, slots=True)
+class Weight:
+    """``constant + sum of factor * weight of a variable``.
+
+    Variables are slots of quantities (from 0) and, as ``-1 - i``, instructions i that may be either kind.
+    ``scaled`` is true after multiplication by a number other than 1 and -1.
+    """
+
+    constant: Fraction
+    terms: tuple[tuple[int, int], ...] = ()
+    scaled: bool = False
+
+    @property
+    def certain(self) -> Fraction | None:
+        """Its value where no variable is left in it."""
+        return None if self.terms else self.constant
+
+    @property
+    def sound(self) -> bool:
+        """Whether it is a kind at all: a multiple of a reading is neither reading nor difference."""
+        return not self.scaled or self.constant in (READING, DIFFERENCE)
+
+
+@dataclass(frozen=True, slots=True)
+class Agreement:
+    """Two instructions that must be of one kind; ``right`` -1: ``left`` must have the weight `needed`."""
+
+    left: int
+    right: int
+    owner: int
+    needed: int = READING
+
+
+@dataclass(frozen=True, slots=True)
+class Breach:
+    """An agreement that cannot hold, with the two weights."""
+
+    agreement: Agreement
+    left: Weight
+    right: Weight
+
+
+@dataclass(frozen=True, slots=True)
+class KindVisit:
+    """What a formula alone gives: kinds by slot, with the agreement that fixed each, and a breach if any."""
+
+    solved: tuple[tuple[int, int, Agreement], ...]
+    breach: Breach | None
+
+
+def _sum(a: Weight, b: Weight, sign: int) -> Weight:
+    terms = dict(a.terms)
+    for variable, factor in b.terms:
+        total = terms.get(variable, 0) + sign * factor
+        if total:
+            terms[variable] = total
+        else:
+            terms.pop(variable, None)
+    return Weight(a.constant + sign * b.constant, tuple(sorted(terms.items())), a.scaled or b.scaled)
+
+
+def _scaled(weight: Weight, factor: Fraction) -> Weight | None:
+    if factor == 1:
+        return weight
+    if factor == -1:
+        return _sum(Weight(Fraction(0)), weight, -1)
+    return None if weight.terms else Weight(weight.constant * factor, (), True)
+
+
+ZERO = Weight(Fraction(DIFFERENCE))
+ONE = Weight(Fraction(READING))
+
+
+class KindReader:
+    """One formula with its dimensions known, to be read again as kinds of its quantities become known."""
+
+    def __init__(self, formula: Formula, dimensions: Sequence[Dimension | None]) -> None:
+        self.formula = formula
+        self.instructions = formula.tape.instructions
+        forms = rules_of(formula.tape, formula.alike).forms
+        known = [dimensions[q] for q in formula.quantities]
+        literals = [literal.dimension for literal in formula.literals]
+        self.dimensions: list[Dimension] = []
+        self.apart: list[bool] = []
+        for form in forms:
+            value, unknown = (DIMENSIONLESS, []) if form is None else evaluate(form, literals, known)
+            self.dimensions.append(value)
+            self.apart.append(not unknown and value in KEPT_APART)
+        self.fits_any = [form is None for form in forms]
+        self.numbers = self._numbers()
+        self.agreements = self._agreements()
+        self.free_sums = self._free_sums()
+
+    @property
+    def concerned(self) -> bool:
+        """Whether temperatures or pressures occur at all."""
+        return any(self.apart)
+
+    # --- what does not depend on kinds -----------------------------------------------------------------
+
+    def _numbers(self) -> list[Fraction | None]:
+        """Values of the instructions that are numbers without quantities, exactly as typed."""
+        numbers: list[Fraction | None] = []
+        for operation, *operands in self.instructions:
+            value: Fraction | None = None
+            if operation == "const":
+                value = Fraction(str(operands[0]))
+            elif operation == "literal" and isinstance(operands[0], int):
+                literal = self.formula.literals[operands[0]]
+                value = Fraction(repr(literal.value)) if literal.dimension == DIMENSIONLESS else None
+            elif operation in ("neg", "add", "sub", "mul", "div"):
+                parts = [numbers[o] for o in operands if isinstance(o, int)]
+                known = [part for part in parts if part is not None]
+                value = _arithmetic(operation, known) if len(known) == len(parts) else None
+            numbers.append(value)
+        return numbers
+
+    def _agreements(self) -> tuple[Agreement, ...]:
+        found: list[Agreement] = []
+        for owner, (operation, *operands) in enumerate(self.instructions):
+            match operation, operands:
+                case (("lt" | "le" | "eq" | "min" | "max"), [int(a), int(b)]):
+                    found.append(Agreement(a, b, owner))
+                case "if", [_, int(a), int(b)]:
+                    found.append(Agreement(a, b, owner))
+                case "strip", [int(a), Unit() as unit] if unit.reading:
+                    found.append(Agreement(a, -1, owner, READING))
+                case "strip", [int(a), Unit() as unit] if unit.difference:
+                    found.append(Agreement(a, -1, owner, DIFFERENCE))
+        apart = set(self.formula.differences)
+        found.extend(Agreement(i, -1, -1, DIFFERENCE) for i in self.formula.differences)
+        found.extend(Agreement(a, b, -1) for a, b in self.formula.alike if a not in apart and b not in apart)
+        return tuple(found)
+
+    def _free_sums(self) -> tuple[int, ...]:
+        """Sums with a reading written in them, in a product or a function, where nothing else judges them."""
+        judged = {a.left for a in self.agreements} | {a.right for a in self.agreements}
+        for operation, *operands in self.instructions:
+            inner = [o for o in operands if isinstance(o, int)]
+            summed = operation in ("add", "sub", "neg", "min", "max", "if")
+            scaled = operation in ("mul", "div") and any(self.numbers[o] is not None for o in inner)
+            if summed or scaled:
+                judged.update(inner)
+        return tuple(
+            i
+            for i, instruction in enumerate(self.instructions)
+            if instruction[0] in ("add", "sub") and i not in judged and self._reading_in(i)
+        )
+
+    def _reading_in(self, index: int) -> bool:
+        operation, *operands = self.instructions[index]
+        if operation == "literal" and isinstance(operands[0], int):
+            return self.formula.literals[operands[0]].kind == "reading"
+        return operation in ("add", "sub", "neg") and any(
+            self._reading_in(o) for o in operands if isinstance(o, int)
+        )
+
+    # --- what does --------------------------------------------------------------------------------------
+
+    def weights(self, kinds: Mapping[int, int]) -> list[Weight | None]:
+        """Weight of each instruction, None where there is none; `kinds` by slot."""
+        weights: list[Weight | None] = []
+        for index in range(len(self.instructions)):
+            weights.append(self._weight(index, weights, kinds) if self.apart[index] else None)
+        return weights
+
+    def _weight(self, index: int, weights: list[Weight | None], kinds: Mapping[int, int]) -> Weight | None:
+        operation, *operands = self.instructions[index]
+        either = Weight(Fraction(0), ((-1 - index, 1),))
+        match operation, operands:
+            case "quantity", [int(slot)]:
+                if slot in kinds:
+                    return Weight(Fraction(kinds[slot]))
+                return Weight(Fraction(0), ((slot, 1),))
+            case "literal", [int(slot)]:
+                kind = self.formula.literals[slot].kind
+                return ONE if kind == "reading" else ZERO if kind == "difference" else either
+            case "attach", [_, Unit() as unit]:
+                return ONE if unit.reading else ZERO if unit.difference else either
+            case (("add" | "sub"), [int(a), int(b)]):
+                return self._added(a, b, 1 if operation == "add" else -1, weights)
+            case "neg", [int(a)]:
+                inner = weights[a]
+                return None if inner is None else _scaled(inner, Fraction(-1))
+            case (("mul" | "div"), [int(a), int(b)]):
+                return self._multiplied(a, b, operation == "div", weights)
+            case "power", [int(a), Fraction() as power] if power == 1:
+                return weights[a]
+            case "abs", [int(a)]:
+                return ZERO if _is_difference(weights[a]) else None
+            case (("min" | "max"), [int(a), int(b)]):
+                return weights[a] if weights[a] is not None else weights[b]
+            case "if", [_, int(a), int(b)]:
+                return weights[a] if weights[a] is not None else weights[b]
+            case (("hypot" | "logmean"), [int(a), int(b)]):
+                return ZERO if _is_difference(weights[a]) and _is_difference(weights[b]) else None
+        return None
+
+    def _added(self, a: int, b: int, sign: int, weights: list[Weight | None]) -> Weight | None:
+        left, right = weights[a], weights[b]
+        if self.fits_any[b]:
+            return left
+        if self.fits_any[a]:
+            return None if right is None else _scaled(right, Fraction(sign))
+        return None if left is None or right is None else _sum(left, right, sign)
+
+    def _multiplied(self, a: int, b: int, divided: bool, weights: list[Weight | None]) -> Weight | None:
+        left, right = weights[a], weights[b]
+        factor = self.numbers[b]
+        if left is not None:
+            if factor is not None:
+                return _scaled(left, 1 / factor if divided else factor) if factor else None
+            return ZERO if _is_difference(left) else None
+        if right is None or divided:
+            return None
+        factor = self.numbers[a]
+        if factor is not None:
+            return _scaled(right, factor) if factor else None
+        return ZERO if _is_difference(right) else None
+
+    def visit(self, kinds: Mapping[int, int]) -> KindVisit:
+        """What follows from the kinds known so far."""
+        now = dict(kinds)
+        solved: list[tuple[int, int, Agreement]] = []
+        either: dict[int, int] = {}
+        progress = True
+        while progress:
+            progress = False
+            weights = self.weights(now)
+            for agreement in self.agreements:
+                left = weights[agreement.left]
+                right = (
+                    weights[agreement.right] if agreement.right >= 0 else Weight(Fraction(agreement.needed))
+                )
+                if left is None or right is None or not (left.sound and right.sound):
+                    continue
+                gap = _known_put_in(_sum(left, right, -1), now, either)
+                forced = _forced(gap)
+                if forced is None:
+                    return KindVisit(tuple(solved), Breach(agreement, left, right))
+                for variable, kind in forced:
+                    progress = True
+                    if variable < 0:
+                        either[variable] = kind
+                    else:
+                        now[variable] = kind
+                        solved.append((variable, kind, agreement))
+        for index in self.free_sums:
+            weight = weights[index]
+            if weight is not None and not weight.terms and weight.constant not in (READING, DIFFERENCE):
+                return KindVisit(tuple(solved), Breach(Agreement(index, -1, index, READING), weight, ONE))
+        return KindVisit(tuple(solved), None)
+
+
+def _known_put_in(gap: Weight, now: Mapping[int, int], either: Mapping[int, int]) -> Weight:
+    constant = gap.constant
+    terms: list[tuple[int, int]] = []
+    for variable, factor in gap.terms:
+        kind = now.get(variable) if variable >= 0 else either.get(variable)
+        if kind is None:
+            terms.append((variable, factor))
+        else:
+            constant += factor * kind
+    return Weight(constant, tuple(terms), gap.scaled)
+
+
+def _forced(gap: Weight) -> list[tuple[int, int]] | None:
+    """Kinds that follow from ``gap = 0``, every variable being 0 or 1; None where it cannot hold."""
+    lowest = gap.constant + sum(min(factor, 0) for _, factor in gap.terms)
+    highest = gap.constant + sum(max(factor, 0) for _, factor in gap.terms)
+    if lowest > ROUNDED or highest < -ROUNDED:
+        return None
+    if abs(lowest) <= ROUNDED and abs(highest) > ROUNDED:
+        return [(variable, READING if factor < 0 else DIFFERENCE) for variable, factor in gap.terms]
+    if abs(highest) <= ROUNDED and abs(lowest) > ROUNDED:
+        return [(variable, READING if factor > 0 else DIFFERENCE) for variable, factor in gap.terms]
+    return []
+
+
+def _is_difference(weight: Weight | None) -> bool:
+    return weight is not None and weight.certain == DIFFERENCE
+
+
+def _arithmetic(operation: object, values: list[Fraction]) -> Fraction | None:
+    a, b = values[0], values[-1]
+    if operation == "neg":
+        return -a
+    if operation == "add":
+        return a + b
+    if operation == "sub":
+        return a - b
+    if operation == "mul":
+        return a * b
+    return a / b if b else None
