@@ -54,6 +54,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         tuple(diagnostics),
         MappingProxyType(best),
         MappingProxyType(dict(timing)),
+        prepared.statements,
     )
 
 

@@ -30,6 +30,8 @@ class Prepared:
 
     Attributes
     ----------
+    statements : tuple of Statement
+        All of them, those switched off included.
     system : EquationSystem
     formulas : tuple of Formula
         Of each equation of the system, conditions on knowns alone settled.
@@ -48,6 +50,7 @@ class Prepared:
         No error in text, names, units or dimensions, so that numbers may be computed.
     """
 
+    statements: tuple[Statement, ...]
     system: EquationSystem
     formulas: tuple[Formula, ...]
     rows: tuple[int, ...]
@@ -103,12 +106,13 @@ def prepare(
     done = clock()
     timing = {"model": modelled - begin, "structure": done - modelled}
     return Prepared(
+        tuple(statements),
         system,
         settled,
         checked.rows,
         structure,
         dimensions,
-        kinds.kinds,
+        tuple(["plain" if kind == "unknown" else kind for kind in kinds.kinds]),
         known_values,
         setters,
         tuple(diagnostics),

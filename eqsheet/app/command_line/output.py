@@ -1,0 +1,34 @@
+"""Where words go: results to standard output, messages to standard error, colour only on a terminal."""
+
+from __future__ import annotations
+
+import os
+import shutil
+import sys
+from collections.abc import Iterable
+from typing import TextIO
+
+from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.diagnostics.terminal import COLOURED, PLAIN, Palette, render
+
+
+def palette_for(stream: TextIO) -> Palette:
+    """Colours where the stream is a terminal that wants them (``NO_COLOR``, ``TERM=dumb``)."""
+    if os.environ.get("NO_COLOR") or os.environ.get("TERM") == "dumb" or not stream.isatty():
+        return PLAIN
+    return COLOURED
+
+
+def print_diagnostics(diagnostics: Iterable[Diagnostic]) -> None:
+    """Each on several lines to standard error, an empty line after each."""
+    palette = palette_for(sys.stderr)
+    width = shutil.get_terminal_size().columns
+    for diagnostic in diagnostics:
+        print(render(diagnostic, palette, width) + "\n", file=sys.stderr)
+
+
+def print_lines(lines: Iterable[str]) -> None:
+    """Lines to standard output."""
+    text = "\n".join(lines)
+    if text:
+        print(text)

@@ -1,0 +1,48 @@
+"""``eqsheet solve``: results to standard output, messages to standard error."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from eqsheet.app.command_line.output import print_diagnostics, print_lines
+from eqsheet.app.command_line.solved import solve_each
+from eqsheet.app.exit_status import OF_SOLUTION
+from eqsheet.worksheet.solution import Solution
+
+
+def run_solve(files: Sequence[str], changes: Sequence[str], free: Sequence[str], as_json: bool) -> int:
+    """Solve each file and print what was found; the exit status."""
+    if as_json:
+        return solve_each(files, changes, free, print_json)
+    several = len(files) > 1
+    printed = 0
+
+    def report(solution: Solution) -> int:
+        nonlocal printed
+        if several and printed:
+            print()
+        printed += 1
+        return _print_solution(solution)
+
+    return solve_each(files, changes, free, report)
+
+
+def _print_solution(solution: Solution) -> int:
+    from eqsheet.review.table import solution_lines, verdict_line
+
+    print_lines([verdict_line(solution)])
+    lines = solution_lines(solution)
+    if lines:
+        print_lines(["", *lines])
+    if solution.diagnostics:
+        print(flush=True)
+    print_diagnostics(solution.diagnostics)
+    return OF_SOLUTION[solution.status]
+
+
+def print_json(solution: Solution) -> int:
+    """The solution as one JSON object on one line."""
+    from eqsheet.review.json_form import solution_text
+
+    print(solution_text(solution))
+    return OF_SOLUTION[solution.status]

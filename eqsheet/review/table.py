@@ -1,0 +1,109 @@
+"""A solution as text: quantities by section, limits with their margins, and a line of verdict."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+
+from eqsheet.diagnostics.diagnostic import Severity
+from eqsheet.review.columns import in_columns
+from eqsheet.units.display import format_value
+from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, Solution
+
+MOST_LINES_NAMED = 4
+
+
+def solution_lines(solution: Solution) -> list[str]:
+    """The whole table; empty where there is nothing to show."""
+    lines: list[str] = []
+    for title, values in _sections(solution):
+        if lines:
+            lines.append("")
+        if title:
+            lines.append(title)
+        lines += in_columns(
+            [_row(value, solution.blocks) for value in values], numeric=1, indent="  " if title else ""
+        )
+    if solution.limits:
+        lines += ["", "Limits", *limit_lines(solution.limits)]
+    return lines
+
+
+def _sections(solution: Solution) -> list[tuple[str, list[QuantityValue]]]:
+    """Quantities in order of showing, grouped by the section of their line."""
+    order: dict[str, list[QuantityValue]] = {}
+    for value in solution.values():
+        title = "" if value.statement is None else value.statement.section
+        order.setdefault(title, []).append(value)
+    titles = [s.section for s in solution.statements]
+    rank = {title: i for i, title in reversed(list(enumerate(titles)))}
+    return sorted(order.items(), key=lambda pair: rank.get(pair[0], -1))
+
+
+def _row(value: QuantityValue, blocks: Sequence[BlockReport]) -> tuple[str, ...]:
+    description = value.statement.description if value.statement is not None and _is_alone(value, blocks) else ""
+    unit = "" if value.unit == "1" else value.unit
+    return value.name, format_value(value.value, value.digits), unit, origin_words(value, blocks), description
+
+
+def _is_alone(value: QuantityValue, blocks: Sequence[BlockReport]) -> bool:
+    """Whether the quantity's line speaks of it alone: a known, or a block of one equation."""
+    return value.block is None or len(blocks[value.block - 1].statements) == 1
+
+
+def origin_words(value: QuantityValue, blocks: Sequence[BlockReport]) -> str:
+    """Where a value comes from: the line that sets it or the lines it is solved from."""
+    if value.block is None:
+        return "given" if value.line is None else f"given, line {value.line}"
+    lines = blocks[value.block - 1].lines
+    if not lines:
+        return "solved"
+    named = ", ".join(map(str, lines[:MOST_LINES_NAMED]))
+    if len(lines) > MOST_LINES_NAMED:
+        named += f" and {len(lines) - MOST_LINES_NAMED} more"
+    return f"line {named}" if len(lines) == 1 else f"lines {named}"
+
+
+def limit_lines(limits: Iterable[LimitReport]) -> list[str]:
+    """One line for each limit: what it says, whether it holds, and by how much."""
+    return in_columns(
+        [
+            (
+                limit.text,
+                "holds" if limit.holds else "FAILS",
+                _margin_words(limit),
+                "" if limit.line is None else f"line {limit.line}",
+                limit.statement.description,
+            )
+            for limit in limits
+        ],
+        indent="  ",
+    )
+
+
+def _margin_words(limit: LimitReport) -> str:
+    slack = format_value(abs(limit.slack), 3)
+    unit = "" if limit.unit == "1" else f" {limit.unit}"
+    word = "to spare" if limit.slack >= 0 else "too far"
+    if limit.margin is None:
+        return f"{slack}{unit} {word}"
+    return f"{slack}{unit} ({abs(limit.margin) * 100:.3g}%) {word}"
+
+
+def verdict_line(solution: Solution) -> str:
+    """One line: the file, and how it stands."""
+    failing = sum(not limit.holds for limit in solution.limits)
+    count = len(solution.limits)
+    match solution.status:
+        case "solved":
+            limits = "" if not count else ", the limit holds" if count == 1 else f", all {count} limits hold"
+            words = f"solved{limits}"
+        case "outside-limits":
+            words = f"solved, but {failing} of {count} limit{'s' * (count != 1)} {'fails' if failing == 1 else 'fail'}"
+        case "unsolved":
+            words = "no solution found"
+        case _:
+            words = "not valid"
+    warnings = sum(d.severity is Severity.WARNING for d in solution.diagnostics)
+    if warnings:
+        words += f", {warnings} warning{'s' * (warnings != 1)}"
+    return f"{solution.worksheet}: {words}"
