@@ -46,6 +46,11 @@ class Factor:
         """Whether A has no full numerical rank."""
         return self.condition > SINGULAR_CONDITION
 
+    @property
+    def dense(self) -> Vector:
+        """A as an array, for singular vectors."""
+        return np.asarray(self.matrix.toarray() if hasattr(self.matrix, "toarray") else self.matrix)
+
     def solve(self, residual: Vector) -> Vector:
         """u (n,) with ``A u = residual/rows`` (of least norm where A is singular): a step in units of w."""
         return np.asarray(self.inverse @ (residual / self.rows))
@@ -75,14 +80,25 @@ def factorise(jacobian: Matrix, weights: Vector) -> Factor:
     rows = np.maximum(np.dot(np.abs(jacobian), weights), TINY)
     matrix = jacobian * weights
     matrix /= rows[:, None]
+    inverse, condition = _inverse(matrix)
+    if condition > SINGULAR_CONDITION:
+        # The sizes of the unknowns may be far off: scale the columns by what stands in them before giving up.
+        columns = np.maximum(np.abs(matrix).max(axis=0), TINY)
+        inverse, condition = _inverse(matrix / columns)
+        inverse = inverse / columns[:, None]
+    if condition > SINGULAR_CONDITION:
+        return Factor(matrix, weights, rows, pseudo_inverse(matrix), np.inf)
+    return Factor(matrix, weights, rows, inverse, condition)
+
+
+def _inverse(matrix: Matrix) -> tuple[Matrix, float]:
+    """Inverse and condition estimate; zeros and inf where there is none."""
     try:
         inverse = np.linalg.inv(matrix)
     except np.linalg.LinAlgError:
-        return Factor(matrix, weights, rows, pseudo_inverse(matrix), np.inf)
+        return np.zeros_like(matrix), np.inf
     condition = sqrt(float(np.vdot(inverse, inverse)))
-    if not condition <= SINGULAR_CONDITION:
-        return Factor(matrix, weights, rows, pseudo_inverse(matrix), np.inf)
-    return Factor(matrix, weights, rows, inverse, condition)
+    return (inverse, condition) if condition < np.inf else (np.zeros_like(matrix), np.inf)
 
 
 def pseudo_inverse(matrix: Matrix) -> Matrix:

@@ -42,7 +42,7 @@ def linear_step(problem: Problem, start: Vector, trail: Trail) -> Outcome:
     scaled = scaled_norm(residual, sizes)
     trail.note(x, scaled, 1.0, -1)
     if factor.singular:
-        _, left, right = smallest_singular_vectors(_dense(factor.matrix))
+        _, left, right = smallest_singular_vectors(factor.dense)
         status = Status.CONTINUUM if scaled <= ACCEPTABLE else Status.SINGULAR
         return trail.close(status, x, scaled, (), tuple(left.tolist()), tuple(right.tolist()))
     if not scaled <= ACCEPTABLE:
@@ -53,8 +53,3 @@ def linear_step(problem: Problem, start: Vector, trail: Trail) -> Outcome:
         return trail.close(Status.HELD, x, scaled, tuple(int(i) for i in np.flatnonzero(outside)))
     x = np.minimum(np.maximum(x, problem.lower), problem.upper)
     return trail.close(Status.CONVERGED, x, scaled, interior.resting(x))
-
-
-def _dense(matrix: object) -> Vector:
-    """The matrix as an array."""
-    return np.asarray(matrix.toarray() if hasattr(matrix, "toarray") else matrix)

@@ -16,22 +16,12 @@ from typing import NamedTuple
 
 import numpy as np
 
-from eqsheet.solve.factor import Factor, factorise, smallest_singular_vectors
+from eqsheet.solve.factor import Factor, factorise
+from eqsheet.solve.finish import finish, give_up
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
-from eqsheet.solve.termination import (
-    ACCEPTABLE,
-    AT_REST,
-    ROUNDING,
-    SLOW,
-    confirmed,
-    equation_sizes,
-    floored,
-    kind_of_root,
-    residual_at,
-    scaled_norm,
-)
+from eqsheet.solve.termination import AT_REST, MULTIPLE, ROUNDING, SLOW, floored, residual_at
 from eqsheet.solve.trail import Trail
 
 # Smallest damping tried: below it a step changes no more than the rounding of the residuals does.
@@ -41,8 +31,6 @@ WEIGHT_FLOOR = 0.1
 # Contraction of the corrections by a full step that needs no further look at the damping.
 SURE_CONTRACTION = 0.25
 # Ratio of two steps near the root from which on it is multiple: 1/2 at a double root, nearly 0 at a single
-# one.
-MULTIPLE = 0.4
 # Norm of the step below which it is looked at unknown by unknown.
 NEAR = 1e-6
 
@@ -94,29 +82,31 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
         return trail.close(Status.DOMAIN, x, np.inf)
     damping, limiting = 0.0, -1
     last: Accepted | None = None
-    last_rest, ratio = np.inf, 0.0
+    last_rest, slow_steps = np.inf, 0
     factor: Factor | None = None
     while True:
         scaled = residual_at(problem, x, residual, jacobian)
         trail.note(x, scaled, damping, limiting)
+        if scaled > ROUNDING or factor is None:
+            weights = np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude)
+            factor = factorise(jacobian, weights)
         if scaled <= ROUNDING:
-            return _finish(problem, interior, trail, x, residual, jacobian, factor, ratio)
+            return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
         if trail.spent:
             return trail.close(Status.BUDGET)
-        weights = np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude)
-        factor = factorise(jacobian, weights)
         step = -factor.solve(residual)
         norm = _norm(step)
         rest = float((np.abs(step * weights) / floored(x, problem)).max()) if norm < NEAR else np.inf
-        ratio = rest / last_rest if last_rest < np.inf else 0.0
-        if rest <= ROUNDING or (rest <= AT_REST and ratio > SLOW):
-            return _finish(problem, interior, trail, x, residual, jacobian, factor, ratio)
+        slow_steps = slow_steps + 1 if MULTIPLE < rest / last_rest < SLOW else 0
+        trail.contracting = last is not None and last.contraction < 0.5
+        if rest <= ROUNDING or (rest <= AT_REST and rest > SLOW * last_rest):
+            return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
         first = 1.0 if last is None else _predicted_damping(last, step, weights)
         accepted = _first_accepted(problem, interior, x, factor, step, norm, first)
         if accepted is None:
             if rest <= AT_REST:
-                return _finish(problem, interior, trail, x, residual, jacobian, factor, ratio)
-            return _give_up(interior, trail, x, step * weights, factor)
+                return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
+            return give_up(problem, interior, trail, step * weights, factor)
         last, last_rest = accepted, rest
         x, residual, jacobian, damping, limiting = accepted[:5]
 
@@ -174,58 +164,6 @@ def _first_accepted(
             limiting = int(np.abs(step).argmax())
         return Accepted(trial, residual, jacobian, damping, limiting, contraction, correction * weights, full)
     return None
-
-
-def _finish(
-    problem: Problem,
-    interior: Interior,
-    trail: Trail,
-    x: Vector,
-    residual: Vector,
-    jacobian: Matrix,
-    factor: Factor | None,
-    ratio: float,
-) -> Outcome:
-    """One more correction if it improves the residuals, then the judgement of the point.
-
-    `factor` may be that of the point before: so near a root it serves as well. `ratio` is that of the last
-    two steps close to the root: far from 0, it betrays a multiple root that row scaling hides from the
-    condition number.
-    """
-    if factor is None:  # the start itself is a root
-        factor = factorise(jacobian, np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude))
-    sizes = equation_sizes(problem, x, jacobian)
-    scaled = scaled_norm(residual, sizes)
-    step = -factor.weights * factor.solve(residual)
-    polished, cut = interior.cut(x, step, 0.0)
-    if cut < 0:
-        improved = problem.residual(polished)
-        again = scaled_norm(improved, sizes)
-        if again <= scaled:
-            x, residual, scaled = polished, improved, again
-    if not (scaled <= ACCEPTABLE and confirmed(problem, x, residual, jacobian)):
-        return _give_up(interior, trail, x, step, factor)
-    kind = kind_of_root(problem, x, sizes, factor)
-    if kind is Status.CONVERGED and MULTIPLE < ratio < SLOW:
-        kind = Status.DOUBLE
-    if kind is Status.CONVERGED:
-        return trail.close(kind, x, scaled, interior.resting(x))
-    _, left, right = smallest_singular_vectors(factor.matrix)
-    return trail.close(kind, x, scaled, interior.resting(x), tuple(left.tolist()), tuple(right.tolist()))
-
-
-def _give_up(interior: Interior, trail: Trail, x: Vector, step: Vector, factor: Factor) -> Outcome:
-    """The outcome where no damped step helps: held by bounds, singular, or stalled."""
-    pressed = interior.pressed(x, step)
-    if factor.singular:
-        _, left, right = smallest_singular_vectors(factor.matrix)
-        return trail.close(
-            Status.SINGULAR,
-            on_bound=pressed,
-            null_equations=tuple(left.tolist()),
-            null_unknowns=tuple(right.tolist()),
-        )
-    return trail.close(Status.HELD if pressed else Status.STALLED, on_bound=pressed)
 
 
 def _norm(vector: Vector) -> float:

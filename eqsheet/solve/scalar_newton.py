@@ -19,6 +19,7 @@ from eqsheet.solve.termination import (
     ACCEPTABLE,
     AT_REST,
     BESIDE,
+    NEARLY_ZERO,
     PROBE,
     ROUNDING,
     SLOW,
@@ -106,7 +107,10 @@ def scaled_residual(problem: ScalarProblem, x: float, value: float, slope: float
     """|value| relative to the size of the equation, as `termination` defines it; inf where that is zero."""
     if value == 0.0:
         return 0.0
-    size = max(problem.size(x), abs(slope) * max(abs(x), ZERO_FLOOR * problem.magnitude))
+    size = abs(slope) * max(abs(x), ZERO_FLOOR * problem.magnitude)
+    # Far from a root, and at rounding level, the slope alone says enough; the size of the terms is dear.
+    if ROUNDING * size < abs(value) < NEARLY_ZERO * size or size == 0.0:
+        size = max(problem.size(x), size)
     return abs(value) / size if size > 0.0 else inf
 
 

@@ -31,6 +31,10 @@ NEARLY_ZERO = 1e-6
 # Ratio of successive steps, at rest, above which they are noise: at an m-fold root Newton's steps shrink by
 # 1 - 1/m.
 SLOW = 0.9
+# Ratio of two steps near a root from which on it may be multiple (1/2 at a double root, nearly 0 at a
+# single one), and after how many of them in a row it is.
+MULTIPLE = 0.4
+MULTIPLE_AFTER = 3
 # Relative displacement at which a residual must have grown for a root to be believed.
 BESIDE = 2.0**-20
 # An unknown is never judged against less than this part of its typical size: a root at zero has no relative
@@ -48,9 +52,14 @@ def floored(x: Vector, problem: Problem) -> Vector:
     return np.maximum(np.abs(x), ZERO_FLOOR * problem.magnitude)
 
 
+def jacobian_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
+    """``sum_j |J_ij| |x_j|`` (n,): what the residuals are judged against as long as that is enough."""
+    return np.asarray(abs(jacobian) @ floored(x, problem))
+
+
 def equation_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
-    """What each residual is judged against (n,), >= 0."""
-    return np.asarray(np.fmax(problem.sizes(x), abs(jacobian) @ floored(x, problem)))
+    """What each residual is judged against (n,), >= 0; asks for the sizes of the terms, which is dear."""
+    return np.asarray(np.fmax(problem.sizes(x), jacobian_sizes(problem, x, jacobian)))
 
 
 def scaled_norm(residual: Vector, sizes: Vector) -> float:
@@ -62,8 +71,8 @@ def scaled_norm(residual: Vector, sizes: Vector) -> float:
 def residual_at(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> float:
     """Largest scaled residual at x; far from a root it is measured by the Jacobian alone, which costs
     less."""
-    scaled = scaled_norm(residual, abs(jacobian) @ floored(x, problem))
-    if ROUNDING < scaled < NEARLY_ZERO or scaled > 1.0:
+    scaled = scaled_norm(residual, jacobian_sizes(problem, x, jacobian))
+    if ROUNDING < scaled < NEARLY_ZERO:
         return scaled_norm(residual, equation_sizes(problem, x, jacobian))
     return scaled
 
@@ -115,8 +124,7 @@ def kind_of_root(problem: Problem, x: Vector, sizes: Vector, factor: Factor) -> 
     )
     if not factor.singular and np.max(np.abs(sensitivity)) < SUSPECT_CONDITION:
         return Status.CONVERGED
-    dense = factor.matrix.toarray() if hasattr(factor.matrix, "toarray") else factor.matrix
-    _, _, direction = smallest_singular_vectors(dense * (factor.rows / sizes)[:, None])
+    _, _, direction = smallest_singular_vectors(factor.dense * (factor.rows / sizes)[:, None])
     left_over = [
         _least_residual(problem, x, factor.weights, sizes, direction, t) for t in (PROBE, 2.0 * PROBE)
     ]

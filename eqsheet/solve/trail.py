@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from math import inf
 from time import perf_counter
+from typing import Any
 
 import numpy as np
 
@@ -38,14 +39,17 @@ class Trail:
         The point to fall back on: the last one accepted. By the test of its method it is better than all
         before, which scaled residuals do not show when the scale itself falls.
     best_residual : float
+    contracting : bool
+        Whether the last steps have shrunk, so that the point is being approached; false at the start.
     """
 
-    __slots__ = ("best", "best_residual", "budget", "deadline", "method", "steps")
+    __slots__ = ("best", "best_residual", "budget", "contracting", "deadline", "method", "steps")
 
     def __init__(self, method: str, start: Vector | float, budget: Budget, deadline: float = inf) -> None:
         self.method = method
-        self.best = start
+        self.best: Any = start
         self.best_residual = inf
+        self.contracting = False
         self.budget = budget
         self.deadline = min(deadline, perf_counter() + budget.seconds)
         self.steps: list[Iteration] = []

@@ -1,0 +1,75 @@
+"""The end of an iteration: the last correction, and the judgement of the point."""
+
+from __future__ import annotations
+
+from eqsheet.solve.factor import Factor, smallest_singular_vectors
+from eqsheet.solve.interior import Interior
+from eqsheet.solve.outcome import Outcome, Status
+from eqsheet.solve.problem import Matrix, Problem, Vector
+from eqsheet.solve.termination import (
+    ACCEPTABLE,
+    MULTIPLE_AFTER,
+    confirmed,
+    equation_sizes,
+    jacobian_sizes,
+    kind_of_root,
+    scaled_norm,
+)
+from eqsheet.solve.trail import Trail
+
+
+def finish(
+    problem: Problem,
+    interior: Interior,
+    trail: Trail,
+    x: Vector,
+    residual: Vector,
+    jacobian: Matrix,
+    factor: Factor,
+    slow_steps: int,
+) -> Outcome:
+    """One more correction if it improves the residuals, then the judgement of the point.
+
+    Parameters
+    ----------
+    x, residual, jacobian : ndarray
+        The point where the iteration has come to rest, residuals (n,) and Jacobian (n, n) there.
+    factor : Factor
+        Of that Jacobian, or of the one before: so near a root it serves as well.
+    slow_steps : int
+        How many of the last steps near the root were not much shorter than the one before, which betrays a
+        multiple root that row scaling hides from the condition number.
+    """
+    sizes = jacobian_sizes(problem, x, jacobian)
+    scaled = scaled_norm(residual, sizes)
+    if scaled > ACCEPTABLE or not trail.contracting:
+        sizes = equation_sizes(problem, x, jacobian)
+        scaled = scaled_norm(residual, sizes)
+    step = -factor.weights * factor.solve(residual)
+    polished, cut = interior.cut(x, step, 0.0)
+    if cut < 0 and scaled > 0.0:
+        improved = problem.residual(polished)
+        again = scaled_norm(improved, sizes)
+        if again <= scaled:
+            x, residual, scaled = polished, improved, again
+    if not (scaled <= ACCEPTABLE and (trail.contracting or confirmed(problem, x, residual, jacobian))):
+        return give_up(problem, interior, trail, step, factor)
+    kind = kind_of_root(problem, x, sizes, factor)
+    if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:
+        kind = Status.DOUBLE
+    if kind is Status.CONVERGED:
+        return trail.close(kind, x, scaled, interior.resting(x))
+    _, left, right = smallest_singular_vectors(factor.dense)
+    return trail.close(kind, x, scaled, interior.resting(x), tuple(left.tolist()), tuple(right.tolist()))
+
+
+def give_up(problem: Problem, interior: Interior, trail: Trail, step: Vector, factor: Factor) -> Outcome:
+    """The outcome where no step helps, at the last point accepted: held by bounds, singular, or stalled."""
+    x = trail.best
+    residual, jacobian = problem.linearise(x)
+    scaled = scaled_norm(residual, equation_sizes(problem, x, jacobian))
+    pressed = interior.pressed(x, step)
+    if factor.singular:
+        _, left, right = smallest_singular_vectors(factor.dense)
+        return trail.close(Status.SINGULAR, x, scaled, pressed, tuple(left.tolist()), tuple(right.tolist()))
+    return trail.close(Status.HELD if pressed else Status.STALLED, x, scaled, pressed)
