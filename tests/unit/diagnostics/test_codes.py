@@ -20,52 +20,68 @@ def trees() -> Iterator[ast.Module]:
         yield ast.parse(path.read_text(encoding="utf-8"), str(path))
 
 
-def takes_a_code(definition: ast.AST) -> bool:
-    """Whether the first thing a function takes, or the first field of a class, is called `code`."""
+def first_taken(definition: ast.AST) -> str:
+    """Name of the first thing a function or a class takes when called; empty if none."""
     if isinstance(definition, ast.FunctionDef):
         names = [argument.arg for argument in definition.args.args if argument.arg not in ("self", "cls")]
-        return names[:1] == ["code"] and definition.name not in ("page", "explain")
+        return names[0] if names else ""
     if isinstance(definition, ast.ClassDef):
-        fields = [
-            s.target.id
-            for s in definition.body
-            if isinstance(s, ast.AnnAssign) and isinstance(s.target, ast.Name)
-        ]
-        return fields[:1] == ["code"]
-    return False
+        for part in definition.body:
+            if isinstance(part, ast.FunctionDef) and part.name == "__init__":
+                return first_taken(part)
+            if isinstance(part, ast.AnnAssign) and isinstance(part.target, ast.Name):
+                return part.target.id
+    return ""
 
 
-def literal_codes() -> set[str]:
-    """Every text that stands as first argument where a code is taken."""
+def texts_in(expression: ast.AST, constants: dict[str, str]) -> Iterator[str]:
+    """The texts an expression may come to: literals and constants of a module, not parts of an f-string."""
+    if isinstance(expression, ast.Constant) and isinstance(expression.value, str):
+        yield expression.value
+    elif isinstance(expression, ast.Name) and expression.id in constants:
+        yield constants[expression.id]
+    elif isinstance(expression, ast.IfExp):
+        yield from texts_in(expression.body, constants)
+        yield from texts_in(expression.orelse, constants)
+
+
+def codes_in_the_source() -> set[str]:
+    """Every code that is given where a function or class takes a `code` first."""
     parsed = list(trees())
+    nodes = [node for tree in parsed for node in ast.walk(tree)]
     makers = {
         node.name
+        for node in nodes
+        if isinstance(node, ast.FunctionDef | ast.ClassDef)
+        and first_taken(node) == "code"
+        and node.name != "page"
+    }
+    constants = {
+        statement.targets[0].id: statement.value.value
         for tree in parsed
-        for node in ast.walk(tree)
-        if isinstance(node, ast.FunctionDef | ast.ClassDef) and takes_a_code(node)
+        for statement in tree.body
+        if isinstance(statement, ast.Assign)
+        and isinstance(statement.targets[0], ast.Name)
+        and isinstance(statement.value, ast.Constant)
+        and isinstance(statement.value.value, str)
     }
     found: set[str] = set()
-    for tree in parsed:
-        for node in ast.walk(tree):
-            if not isinstance(node, ast.Call):
-                continue
+    for node in nodes:
+        if isinstance(node, ast.Call):
             called = node.func.attr if isinstance(node.func, ast.Attribute) else getattr(node.func, "id", "")
-            named = [keyword.value for keyword in node.keywords if keyword.arg == "code"]
-            for argument in (node.args[:1] or named) if called in makers else ():
-                found |= {
-                    part.value
-                    for part in ast.walk(argument)
-                    if isinstance(part, ast.Constant) and isinstance(part.value, str)
-                }
+            if called in makers:
+                named = [keyword.value for keyword in node.keywords if keyword.arg == "code"]
+                for argument in node.args[:1] or named:
+                    found |= set(texts_in(argument, constants))
     return found
 
 
 def test_codes_are_found_in_the_source() -> None:
-    assert {"unknown-unit", "ambiguous-unit"} <= literal_codes()
+    assert {"unknown-unit", "ambiguous-unit"} <= codes_in_the_source()
 
 
 def test_every_code_has_a_page() -> None:
-    assert sorted(literal_codes() - set(codes())) == []
+    assert sorted(codes_in_the_source() - set(codes())) == []
 
 
 def test_every_page_is_of_a_code_in_use() -> None:
