@@ -2,7 +2,8 @@
 
 A page ``pages/<code>.md`` holds: a first line ``# code: what it is``, why it is so, a block fenced as
 ``eqsheet-wrong`` with a worksheet that gives the code, the cure, and a block fenced as ``eqsheet`` with the
-same worksheet mended. Tests run both.
+same worksheet mended. Tests run both. Where no worksheet of readable length can give the code, the page has no
+blocks, and its last paragraph is the cure.
 
 ``python -m eqsheet.diagnostics.codes`` prints the reference of all codes.
 """
@@ -30,7 +31,7 @@ class CodePage:
     why, cure : str
         Markdown.
     wrong, mended : str
-        Worksheets: one that gives the code, and the same without the fault.
+        Worksheets: one that gives the code, and the same without the fault; both empty where none can.
     """
 
     code: str
@@ -53,8 +54,12 @@ def read_page(text: str) -> CodePage:
     code, colon, summary = title.removeprefix("# ").partition(": ")
     if not title.startswith("# ") or not colon:
         raise ValueError("the first line must read '# code: what it is'")
-    why, wrong, rest = _split_at_block(rest, _WRONG)
-    cure, mended, rest = _split_at_block(rest, _MENDED)
+    if "```" in rest:
+        why, wrong, rest = _split_at_block(rest, _WRONG)
+        cure, mended, rest = _split_at_block(rest, _MENDED)
+    else:
+        why, _, cure = rest.strip().rpartition("\n\n")
+        wrong = mended = rest = ""
     if not why or not cure or rest.strip():
         raise ValueError("a page is: title, why, wrong worksheet, cure, mended worksheet, and no more")
     return CodePage(code, summary.strip(), why, wrong, cure, mended)
@@ -106,14 +111,11 @@ def reference() -> str:
     for code in codes():
         about = page(code)
         assert about is not None
-        parts += [
-            f"## {about.code}",
-            f"{about.summary[:1].upper()}{about.summary[1:]}.",
-            about.why,
-            f"```\n{about.wrong}```",
-            about.cure,
-            f"```\n{about.mended}```",
-        ]
+        parts += [f"## {about.code}", f"{about.summary[:1].upper()}{about.summary[1:]}.", about.why]
+        if about.wrong:
+            parts += [f"```\n{about.wrong}```", about.cure, f"```\n{about.mended}```"]
+        else:
+            parts.append(about.cure)
     return "\n\n".join(parts) + "\n"
 
 
