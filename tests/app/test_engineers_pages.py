@@ -32,7 +32,7 @@ def test_sprinkler_main_in_customary_units() -> None:
         """
         # Fire main, US units throughout
         ambient = 14.2 psi
-        define hazen(Q in gpm, d in in, C) in psi/ft = 4.52*Q^1.85/(C^1.85*d^4.87) valid Q >= 20 gpm
+        define hazen(Q in gpm, d in in, C in 1) in psi/ft = 4.52*Q^1.85/(C^1.85*d^4.87) valid Q >= 20 gpm
         show Q in gpm, p_pump in psig, p_2 in psig, v in ft/s, dp_pipe in psi
         p_1 = 30 psig              # city main
         d = 4.026 in
@@ -115,7 +115,7 @@ def test_eccentrically_loaded_column() -> None:
         L = 15 ft
         yield: sigma_y = P/A*(1 + e*c/r^2/cos(L/(2*r)*sqrt(P/(E*A))))
         euler: P_cr = pi^2*E*A*r^2/L^2
-        P near P_cr/4 within 0 kip .. 0.99*P_cr
+        P near 100 kip within 0 kip .. 900 kip
         reserve = P_cr/P
         show P in kip, P_cr in kip
         """
@@ -254,7 +254,7 @@ def test_two_stage_compressor_with_intercooling_between() -> None:
         T_2o - T_2 = head(T_2, p_2/p_1)/cp
         p_1 near sqrt(p_0*p_2) within p_0 .. p_2
         cost = (P_1 + P_2)*6000 h/yr*0.18 EUR/kWh
-        require T_2o <= 200 degC
+        require T_2o <= 250 degC
         show p_1 in barg, P_1 in kW, T_1o in degC, T_2o in degC, cost in EUR/yr
         """
     )
@@ -283,7 +283,7 @@ def test_belt_drive_with_open_belt_length() -> None:
         L = 2240 mm                # stock length
         open_belt: L = 2*a*cos(phi) + pi*(d_1 + d_2)/2 + phi*(d_2 - d_1)
         sin(phi) = (d_2 - d_1)/(2*a)
-        a near 2*d_2 within d_2/2 + d_1/2 .. 2 m
+        a near 5*d_1 within d_1 .. 2 m
         phi near 10 deg within 0 deg .. 60 deg
         wrap = 180 deg - 2*phi
         v = d_1/2*n_1

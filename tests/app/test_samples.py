@@ -116,7 +116,7 @@ def snowmelt_at(supply: float) -> Numbers:
         reynolds = v * bore / viscosity
         f = 64 / reynolds if reynolds < 2300 else 0.3164 / reynolds**0.25
         flow = loops * v * section
-        head = 8.0 - 0.063 * (flow * 3600) ** 2
+        head = 8.0 * (1 - (flow * 3600 / 11.3) ** 2)
         heat = loops * length * (mean - ground) / 0.5
         lost = (f * length / bore + 12) * v**2 / (2 * G_N)
         numbers = {

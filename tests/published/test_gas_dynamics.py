@@ -39,8 +39,8 @@ def test_normal_shock_from_the_three_balances(solved: Solve) -> None:
         M2 = u2/sqrt(kappa*R*T2)
 
         # Without a shock the balances hold too: the bounds ask for the slower flow.
-        u2 near u1/3 within 0 m/s .. 0.9*u1
-        rho2 near 3*rho1 within rho1 ..
+        u2 near 200 m/s within 0 m/s .. 500 m/s
+        rho2 near 1.5 kg/m^3 within 0.6 kg/m^3 ..
         p2 near 4*p1 within p1 ..
         T2 near 1.5*T1 within T1 ..
 
@@ -52,7 +52,7 @@ def test_normal_shock_from_the_three_balances(solved: Solve) -> None:
     )
     printed = {"M2": 0.5774, "ratio_p": 4.500, "ratio_rho": 2.667, "ratio_T": 1.688, "ratio_pt": 0.7209}
     for name, value in printed.items():
-        assert solution[name].value == pytest.approx(value, abs=0.5e-4 if value < 1 else 0.5e-3), name
+        assert solution[name].value == pytest.approx(value, abs=0.501e-4 if value < 1 else 0.501e-3), name
     assert solution["ratio_p"].value == pytest.approx(4.5, rel=1e-12)
     assert solution["ratio_rho"].value == pytest.approx(8 / 3, rel=1e-12)
     assert solution["M2"].value == pytest.approx(1 / sqrt(3), rel=1e-12)

@@ -41,7 +41,7 @@ def test_normal_boiling_point(solved: Solve, name: str, boiling_point: float) ->
 
 
 def test_isothermal_flash(solved: Solve) -> None:
-    """Equimolar benzene and toluene at 95 degC and 900 mmHg, Raoult's law; six unknowns.
+    """Equimolar benzene and toluene at 95 degC and 800 mmHg, Raoult's law; six unknowns.
 
     Two components make the compositions explicit, x = (p - p_T)/(p_B - p_T), which is the second calculation.
     """
@@ -49,7 +49,7 @@ def test_isothermal_flash(solved: Solve) -> None:
         f"""
         {ANTOINE.strip().replace(chr(10), chr(10) + "        ")}
         T = 95 degC
-        p = 900 mmHg
+        p = 800 mmHg
         F = 100 mol/s
         z_B = 50 %
         z_T = 1 - z_B
@@ -58,15 +58,15 @@ def test_isothermal_flash(solved: Solve) -> None:
         toluene: z_T*F = y_T*V + x_T*L
         y_B*p = x_B*p_B(T)
         y_T*p = x_T*p_T(T)
-        sum: x_B + x_T = 1
+        sum: x_B + x_T = y_B + y_T
         V near F/2 within 0 mol/s .. F
         x_* near 0.5 within 0 .. 1
         y_* near 0.5 within 0 .. 1
         show V in mol/s, x_B in %, y_B in %
         """
     )
-    x = (900 - toluene(95)) / (benzene(95) - toluene(95))
-    y = x * benzene(95) / 900
+    x = (800 - toluene(95)) / (benzene(95) - toluene(95))
+    y = x * benzene(95) / 800
     assert solution["x_B"].si == pytest.approx(x, rel=1e-11)
     assert solution["y_B"].to("%") == pytest.approx(100 * y, rel=1e-11)
     assert solution["V"].value == pytest.approx(100 * (0.5 - x) / (y - x), rel=1e-10)
@@ -82,7 +82,7 @@ def test_bubble_and_dew_point(solved: Solve) -> None:
         bubble: p = z*p_B(T_b) + (1 - z)*p_T(T_b)
         dew: 1/p = z/p_B(T_d) + (1 - z)/p_T(T_d)
         T_b near 90 degC within 80 degC .. 111 degC
-        T_d near 375 K within T_b .. 111 degC
+        T_d near 375 K within 80 degC .. 111 degC
         show T_b in degC, T_d in degF
         """
     )
@@ -109,7 +109,7 @@ def test_critical_point_of_a_van_der_waals_gas(solved: Solve) -> None:
         curvature: 0 = 2*const.R*T/(V - b)^3 - 6*a/V^4
         p = const.R*T/(V - b) - a/V^2
         Z = p*V/(const.R*T)
-        V near 5*b within 1.1*b .. 100*b
+        V near 2.5*b within 1.1*b .. 100*b
         T near 250 K within 10 K .. 2000 K
         show T in degC, p in bar, V in mL/mol
         """

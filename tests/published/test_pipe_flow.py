@@ -88,7 +88,7 @@ C near 0.6
 TAPPINGS = [
     ("corner", "0", "0", 0.6000085121444034),
     ("D and D/2", "1", "0.47", 0.5988219225153976),
-    ("flange", "25.4 mm/D", "25.4 mm/D", 0.5990042535666878),
+    ("flange", "25.4 mm / D", "25.4 mm / D", 0.5990042535666878),
 ]
 
 
@@ -125,7 +125,7 @@ def test_orifice_flow_from_the_pressure_difference(
         taps=taps, L_up=l_up, L_down=l_down, given="dp = 250 mbar\nq_m near 1 g/s within 0 g/s .."
     )
     solution = solved(text)
-    ends = {"0": 0.0, "1": 1.0, "0.47": 0.47, "25.4 mm/D": 0.0254 / 0.07391}
+    ends = {"0": 0.0, "1": 1.0, "0.47": 0.47, "25.4 mm / D": 0.0254 / 0.07391}
     beta, bore = 0.0222 / 0.07391, 0.0222
     ideal = pi / 4 * bore**2 * sqrt(2 * 25e3 * 1.1645909036 / (1 - beta**4))
     flow = brentq(

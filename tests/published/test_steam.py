@@ -41,7 +41,7 @@ def region_1(given: str) -> str:
     return f"""
         R = 0.461526 kJ/(kg*K)
         x = 7.1 - p/(16.53 MPa)
-        y = 1386 K/T - 1.222
+        y = 1386 K / T - 1.222
         v = R*T/(16.53 MPa)*gamma_pi
         h = R*(1386 K)*gamma_tau
         gamma_pi = {by_pressure}
