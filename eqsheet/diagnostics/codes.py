@@ -2,8 +2,8 @@
 
 A page ``pages/<code>.md`` holds: a first line ``# code: what it is``, why it is so, a block fenced as
 ``eqsheet-wrong`` with a worksheet that gives the code, the cure, and a block fenced as ``eqsheet`` with the
-same worksheet mended. Tests run both. Where no worksheet of readable length can give the code, the page has no
-blocks, and its last paragraph is the cure.
+same worksheet mended. Tests run both. Where no worksheet of readable length can give the code, the page has
+no blocks, and its last paragraph is the cure.
 
 ``python -m eqsheet.diagnostics.codes`` prints the reference of all codes.
 """

@@ -7,7 +7,6 @@ import pytest
 import eqsheet
 from eqsheet.diagnostics.codes import codes, page
 
-
 WITH_WORKSHEETS = [code for code in codes() if (about := page(code)) is not None and about.wrong]
 
 

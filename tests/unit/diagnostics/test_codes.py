@@ -16,10 +16,16 @@ REFERENCE = PACKAGE.parent / "grammar" / "DIAGNOSTICS.md"
 
 # What no worksheet of a few lines can show: a file that cannot be read, an argument of the command line, and
 # the limits that keep time and memory bounded.
-WITHOUT_WORKSHEETS = frozenset(
-    "unreadable-file not-a-known no-statement one-statement statement-too-long nested-too-deeply "
-    "formula-too-large too-many-broken".split()
-)
+WITHOUT_WORKSHEETS = {
+    "unreadable-file",
+    "not-a-known",
+    "no-statement",
+    "one-statement",
+    "statement-too-long",
+    "nested-too-deeply",
+    "formula-too-large",
+    "too-many-broken",
+}
 
 
 def trees() -> Iterator[ast.Module]:
