@@ -3,7 +3,8 @@
 A contradiction is a set of formulas that cannot all hold. Each is tried as the culprit: the one whose removal
 leaves the fewest contradictions in the whole worksheet is it, so a known with a slip in its unit is found by
 the several equations that agree against it. Ties go to formulas that state no physics, then to equations
-before knowns (a unit was written on purpose), then to formulas that a usual slip explains.
+before knowns (a unit was written on purpose), then to formulas that a usual slip explains, then to those
+where a plain number is wanted.
 """
 
 from __future__ import annotations
@@ -30,6 +31,11 @@ Place: TypeAlias = tuple[int, int]
 #: Visits of formulas spent on telling culprits apart, for all contradictions of a worksheet together; about
 #: one second. Beyond it the formula in which a contradiction showed is blamed.
 LARGEST_EFFORT = 600_000
+
+GRAVITY = Dimension.of({"m": 1, "s": -2})
+
+#: Powers a quantity may be off by in a slip: forgotten, once too many, or squared where it should not be.
+SLIPS = (1, -1, 2, -2)
 
 
 @dataclass(frozen=True, slots=True)
@@ -114,6 +120,7 @@ def choose_culprit(
             index not in minor,
             len(lines.formulas[index].quantities) <= 1,
             not _slip_explains(lines, without, index),
+            not _wants_a_number(lines, without, index),
             -len(lines.formulas[index].quantities),
             -index,
         )
@@ -122,22 +129,35 @@ def choose_culprit(
     return best
 
 
+def _broken_demands(lines: Worklines, without: Inference, index: int) -> list[tuple[Demand, Dimension]]:
+    """Demands of the formula that fail in the light of all the others, with what is left over in them."""
+    rows = [demand_row(lines, index, n, without.state) for n in range(len(lines.rules[index].demands))]
+    return [
+        (demand, row.constant)
+        for demand, row in zip(lines.rules[index].demands, rows)
+        if row.constant and not row.terms
+    ]
+
+
 def _slip_explains(lines: Worklines, without: Inference, index: int) -> bool:
-    """Whether the formula would fit with one of its quantities to another whole power, or gravity put in."""
-    formula = lines.formulas[index]
-    for number, demand in enumerate(lines.rules[index].demands):
-        row = demand_row(lines, index, number, without.state)
-        if row.terms or not row.constant:
-            continue
-        own = {
-            lines.dimensions[without.state[formula.quantities[slot]]] for slot, _ in demand.form.quantities
-        }
-        own.add(GRAVITY)
-        return any(row.constant in (d, DIMENSIONLESS / d) for d in own)
+    """Whether the formula would fit with one of its quantities to another power, or gravity put in."""
+    for demand, excess in _broken_demands(lines, without, index):
+        if excess in (GRAVITY, DIMENSIONLESS / GRAVITY):
+            return True
+        for slot, power in demand.form.quantities:
+            dimension = lines.dimensions[without.state[lines.formulas[index].quantities[slot]]]
+            if any(power + step and excess * dimension ** Fraction(step) == DIMENSIONLESS for step in SLIPS):
+                return True
     return False
 
 
-GRAVITY = Dimension.of({"m": 1, "s": -2})
+def _wants_a_number(lines: Worklines, without: Inference, index: int) -> bool:
+    """Whether it is a function's argument or a number without unit that does not fit."""
+    operations = [operation for operation, *_ in lines.formulas[index].tape.instructions]
+    return any(
+        demand.right < 0 or "const" in (operations[demand.left], operations[demand.right])
+        for demand, _ in _broken_demands(lines, without, index)
+    )
 
 
 # --- where a dimension comes from ---------------------------------------------------------------------------

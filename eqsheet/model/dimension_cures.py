@@ -6,14 +6,12 @@ import re
 from collections.abc import Sequence
 from fractions import Fraction
 
-from eqsheet.model.dimension_blame import GRAVITY, Clash, Part
+from eqsheet.model.dimension_blame import GRAVITY, SLIPS, Clash, Part
 from eqsheet.model.infer_dimensions import DimensionResult
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.dimension_names import described, dimension_word, suggested_unit
 
-#: Powers a quantity may be off by in a slip: forgotten, once too many, or squared where it should not be.
-SLIPS = (1, -1, 2, -2)
 #: More quantities than this that would fit are no help.
 MOST_NAMED = 3
 

@@ -182,7 +182,7 @@ def _culprit(
     """The formula in breach, or a line that fixed one of its kinds where that explains more.
 
     At par, a sum of readings is the fault of the sum. In any other breach a known given as a reading may be
-    meant as a difference; where several could be, it is the smallest, as differences are smaller than readings.
+    meant as a difference; of several it is the smallest, as differences are smaller than readings.
     """
     index, breach = min(found.breaches.items())
     reader = readers[index]
@@ -290,25 +290,19 @@ def _guilty(reader: KindReader, breach: Breach, weights: Sequence[Weight | None]
     agreement = breach.agreement
     for side, weight in ((agreement.right, breach.right), (agreement.left, breach.left)):
         if side >= 0 and _is_no_kind(weight):
+            if weight.constant < DIFFERENCE:
+                return "reading", _subtracted(reader, side, weights), -1
             return "sum", _reading_too_many(reader, side, weights), side
     if agreement.right < 0:
         what = "reading" if agreement.needed == DIFFERENCE else "difference"
         return what, agreement.left, -1
-    left, right = agreement.left, agreement.right
-    # The side with more in it speaks for itself; a bare literal or quantity is what does not fit it.
-    guilty, other = (right, left) if _size(reader, right) <= _size(reader, left) else (left, right)
-    if reader.instructions[left][0] == "quantity" and reader.instructions[right][0] == "literal":
-        guilty, other = right, left
+    # An expression speaks for itself; a bare literal or quantity is what does not fit it.
+    guilty, other = sorted((agreement.left, agreement.right), key=reader.bareness, reverse=True)
     return ("reading" if _is_reading(weights[guilty]) else "difference"), guilty, other
 
 
 def _is_reading(weight: Weight | None) -> bool:
     return weight is not None and weight.certain == READING
-
-
-def _size(reader: KindReader, index: int) -> int:
-    start, end = reader.formula.places[index]
-    return end - start
 
 
 def _reading_too_many(reader: KindReader, side: int, weights: Sequence[Weight | None]) -> int:
@@ -318,6 +312,15 @@ def _reading_too_many(reader: KindReader, side: int, weights: Sequence[Weight | 
     written = [term for term in readings if reader.instructions[term][0] == "literal"]
     if written and len(readings) > 1:
         return written[-1]
+    return side
+
+
+def _subtracted(reader: KindReader, side: int, weights: Sequence[Weight | None]) -> int:
+    """The last reading subtracted, which makes a difference less a reading; all of it if it is hidden."""
+    operation, *operands = reader.instructions[side]
+    last = operands[-1]
+    if operation in ("sub", "neg") and isinstance(last, int) and _is_reading(weights[last]):
+        return last
     return side
 
 

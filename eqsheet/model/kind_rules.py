@@ -129,6 +129,11 @@ class KindReader:
         """Whether temperatures or pressures occur at all."""
         return any(self.apart)
 
+    def bareness(self, index: int) -> tuple[bool, int]:
+        """Orders operands: single names and literals after expressions, later ones after earlier."""
+        leaf = self.instructions[index][0] in ("quantity", "literal", "const")
+        return leaf, self.formula.places[index][0]
+
     # --- what does not depend on kinds -----------------------------------------------------------------
 
     def _numbers(self) -> list[Fraction | None]:

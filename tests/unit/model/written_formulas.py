@@ -10,7 +10,9 @@ import ast
 from collections.abc import Sequence
 from fractions import Fraction
 
+from eqsheet.diagnostics.source import Source
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Formula, Literal, TapeBuilder
+from eqsheet.syntax.nodes import LogicalLine, Show, Statement
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 
 PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
@@ -87,9 +89,7 @@ class _Writer:
         start, end = self.place(node)
         if text in UNITS:
             dimension, factor, origin, kind = UNITS[text]
-            return self.builder.literal(
-                Literal(value * factor + origin, dimension, kind, start, end, text)
-            )
+            return self.builder.literal(Literal(value * factor + origin, dimension, kind, start, end, text))
         return self.builder.literal(Literal(value, unit_dimension(unit), "plain", start, end, text))
 
 
@@ -146,3 +146,13 @@ def formulas(texts: Sequence[str]) -> tuple[list[Formula], list[str]]:
     """The formulas of `texts` and the names of their quantities, in order of first sight."""
     names: list[str] = []
     return [formula(text, names, number) for number, text in enumerate(texts)], names
+
+
+def statements(texts: Sequence[str]) -> list[Statement]:
+    """Statements that give the texts their places, one a line; their nodes are of no matter."""
+    source = Source("test.eqsheet", "\n".join(texts))
+    node = Show(0, 0, ())
+    return [
+        Statement(node, LogicalLine(text, source.line_starts[i], i + 1, 0), source)
+        for i, text in enumerate(texts)
+    ]
