@@ -91,6 +91,7 @@ class _Gradient:
     def __init__(self, writer: Simplifier, leaves: tuple[int, ...]) -> None:
         self.writer = writer
         self.leaves = leaves
+        self._wanted = frozenset(leaves)
         self.depends: list[bool] = []
         self.adjoint: dict[int, int] = {}
         self._known: dict[int, tuple[int, ...]] = {}
@@ -116,7 +117,7 @@ class _Gradient:
         instructions, depends = self.writer.instructions, self.depends
         for i in range(len(depends), root + 1):
             instruction = instructions[i]
-            depends.append(i in self.leaves or any(depends[j] for j in operands_of(instruction)))
+            depends.append(i in self._wanted or any(depends[j] for j in operands_of(instruction)))
 
     def _hand_on(self, v: int) -> None:
         instruction = self.writer.instructions[v]
@@ -146,6 +147,8 @@ class _Gradient:
         """
         writer = self.writer
         for leaf, x, y in zip(self.leaves, self.of(a), self.of(b)):
+            if x == y == writer.zero:
+                continue
             self.give(leaf, writer.mul(adjoint, writer.select(condition, x, y)))
 
 

@@ -235,11 +235,12 @@ def evaluate_with_evidence(
     2002, chapter 3): each operation hands on the errors of its operands to first order and adds its own
     rounding.
 
-    The size of a sum is that of its largest term, so size/|value| tells how much was cancelled. Further on
-    that ratio is carried along: product and quotient multiply the ratios of their operands, a power raises it
-    to the power's magnitude. The size of f(a) is the larger of |f(a)| and |f'(a)|*size(a), what f makes of a
-    change of a by its size. ``min``, ``max`` and ``if`` have the size of the one chosen; ``hypot`` and
-    ``logmean`` the larger one of their operands'. Sizes of dimensioned values scale with their units.
+    The size of a sum is that of its largest term or of itself, so size/|value| tells how much was
+    cancelled. Further on that ratio is carried along: product and quotient multiply the ratios of their
+    operands, a power raises it to the power's magnitude. The size of f(a) is the larger of |f(a)| and
+    |f'(a)|*size(a), what f makes of a change of a by its size. ``min``, ``max`` and ``if`` have the size of
+    the one chosen; ``hypot`` and ``logmean`` the larger one of their operands'. Sizes of dimensioned values
+    scale with their units.
     """
     values = evaluate(tape, quantities, literals)
     sizes: list[float] = []
@@ -328,20 +329,22 @@ def _of_power(v: float, a: float, size: float, error: float, exponent: Fraction)
 
 
 def _of_strip(v: float, a: float, size: float, error: float, unit: Any) -> tuple[float, float]:
-    rounding = _rounding(a - unit.origin) / unit.factor if unit.origin else 0.0
-    return max(size, abs(unit.origin)) / abs(unit.factor), error / abs(unit.factor) + rounding + _rounding(v)
+    factor = abs(unit.factor)
+    rounding = _rounding(a - unit.origin) / factor if unit.origin else 0.0
+    own_size = max(size, abs(unit.origin)) / factor
+    return max(own_size, abs(v)), error / factor + rounding + _rounding(v)
 
 
 def _of_attach(v: float, a: float, size: float, error: float, unit: Any) -> tuple[float, float]:
     factor = abs(unit.factor)
     rounding = _rounding(a * factor) if unit.origin else 0.0
-    return max(size * factor, abs(unit.origin)), error * factor + rounding + _rounding(v)
+    return max(size * factor, abs(unit.origin), abs(v)), error * factor + rounding + _rounding(v)
 
 
 def _of_sum(
     v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
 ) -> tuple[float, float]:
-    return max(a_size, b_size), a_error + b_error + _rounding(v)
+    return max(a_size, b_size, abs(v)), a_error + b_error + _rounding(v)
 
 
 def _of_product(

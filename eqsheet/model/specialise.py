@@ -141,15 +141,20 @@ def _specialise(tape: Tape, branches: tuple[tuple[int, bool], ...]) -> Specialis
     quantities, literals = _leaves(changed, wanted, "quantity"), _leaves(changed, wanted, "literal")
     slots = {("quantity", k): slot for slot, k in enumerate(quantities)}
     slots |= {("literal", k): slot for slot, k in enumerate(literals)}
-    index: dict[tuple[Any, ...], int] = {}
+    index: dict[tuple[tuple[Any, ...], type], int] = {}
     new: dict[int, int] = {}
     for i, instruction in enumerate(changed):
         if wanted[i]:
             leaf = instruction[0] in ("quantity", "literal")
             written = (instruction[0], slots[instruction]) if leaf else renumbered(instruction, new)
-            # Two instructions may have become the same.
-            new[i] = index.setdefault(written, len(index))
-    held = Tape(tuple(index), tuple(new[stands_for[i]] for i in tape.outputs), len(quantities), len(literals))
+            # Two instructions may have become the same; the exact 0 and the float 0.0 are not.
+            new[i] = index.setdefault((written, type(written[-1])), len(index))
+    held = Tape(
+        tuple(written for written, _ in index),
+        tuple(new[stands_for[i]] for i in tape.outputs),
+        len(quantities),
+        len(literals),
+    )
     numbers = tuple(new.get(j) for j in stands_for)
     return Specialised(interned(held), quantities, literals, numbers)
 

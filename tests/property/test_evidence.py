@@ -1,0 +1,78 @@
+"""The running error bound against fifty digits, and sizes under a change of units."""
+
+from __future__ import annotations
+
+import math
+from random import Random
+
+import mpmath
+import pytest
+from hypothesis import assume, given, settings
+from hypothesis import strategies as st
+from tape_reference import NoValue, reference
+from tape_strategies import PLACE, POWERS, QUANTITIES, UNITS, tapes, values
+
+from eqsheet.model.evaluate import evaluate_with_evidence
+from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Tape, TapeBuilder
+
+
+@given(
+    tapes(branching=False), values(), st.tuples(*[st.floats(-1, 1)] * QUANTITIES), st.sampled_from([0, 1e-13])
+)
+@settings(max_examples=500, deadline=None)
+def test_error_bound_holds(tape: Tape, at: tuple[float, ...], shift: tuple[float, ...], scale: float) -> None:
+    quantities, literals = at[:QUANTITIES], at[QUANTITIES:]
+    errors = [scale * abs(q) for q in quantities]
+    evidence = evaluate_with_evidence(tape, quantities, literals, errors)
+    i = tape.outputs[0]
+    # The bound is of first order: where the error is no longer small beside the value it promises nothing.
+    assume(math.isfinite(evidence.values[i]) and evidence.errors[i] < 1e-6 * (1e-3 + abs(evidence.values[i])))
+    with mpmath.workdps(50):
+        true = [mpmath.mpf(q) + mpmath.mpf(s) * e for q, s, e in zip(quantities, shift, errors)]
+        try:
+            exact = reference(tape, 0, true, literals)
+        except NoValue:
+            assume(False)
+        distance = float(abs(exact - mpmath.mpf(evidence.values[i])))
+    assert distance <= evidence.errors[i] * (1 + 1e-5) + 1e-300
+
+
+OPERATIONS = [
+    *((name, "ab") for name in ("add", "sub", "mul", "div", "pow", *BINARY_FUNCTIONS)),
+    *((name, "a") for name in ("neg", *UNARY_FUNCTIONS)),
+    *(("power", "a", r) for r in POWERS),
+    *((name, "a", unit) for name in ("strip", "attach") for unit in UNITS),
+]
+
+
+@pytest.mark.parametrize("operation", OPERATIONS, ids=str)
+def test_error_bound_of_each_operation_holds(operation: tuple[object, ...]) -> None:
+    name, operands, *rest = operation
+    b = TapeBuilder()
+    leaves = [b.quantity(k, PLACE) for k in range(len(str(operands)))]
+    tape = b.tape((b.apply(str(name), *leaves, *rest),))
+    random = Random(20)
+    judged = 0
+    for _ in range(300):
+        point = [random.uniform(0.0, 1.2) * 10 ** random.choice([0, 0, 0, -3, 1]) for _ in leaves]
+        errors = [random.choice([0.0, 1e-13]) * x for x in point]
+        evidence = evaluate_with_evidence(tape, point, [], errors)
+        value, bound = evidence.values[-1], evidence.errors[-1]
+        if not (math.isfinite(value) and bound < 1e-6 * abs(value)):
+            continue
+        judged += 1
+        with mpmath.workdps(50):
+            # Zero and both ends of the error put in.
+            for part in (-1, 0, 1):
+                exact = reference(tape, 0, [mpmath.mpf(x) + part * mpmath.mpf(e) for x, e in zip(point, errors)], [])
+                assert float(abs(exact - mpmath.mpf(value))) <= bound * (1 + 1e-5)
+    assert judged > 50
+
+
+@given(tapes(), values())
+@settings(max_examples=200, deadline=None)
+def test_no_value_is_larger_than_its_size(tape: Tape, at: tuple[float, ...]) -> None:
+    evidence = evaluate_with_evidence(tape, at[:QUANTITIES], at[QUANTITIES:])
+    for instruction, value, size in zip(tape.instructions, evidence.values, evidence.sizes):
+        if instruction[0] not in ("lt", "le", "eq", "and", "or", "not") and math.isfinite(value):
+            assert abs(value) <= size * (1 + 1e-12)
