@@ -437,8 +437,8 @@ class Lowering:
         symbol = unit.factors[problem.index].symbol if unit.factors else ""
         if problem.code != "unknown-unit" or not symbol.isidentifier():
             return problem.help
-        cure = f"put spaces around the operator before it" if problem.index else f"write `*` before it"
-        return f"{problem.help}; if `{symbol}` is a quantity, {cure}"
+        cure = "put spaces around the operator before it" if problem.index else "write `*` before it"
+        return f"if `{symbol}` is a quantity, {cure}; if it is meant as a unit, {problem.help}"
 
 
 def kind_of(unit: Unit) -> str:

@@ -79,7 +79,7 @@ def solve_regimes(
             if back is not None and back[0].solved and _same(outcome.x, back[0].x, magnitude):
                 # Each is in the other's branch by rounding: the solution lies on the switching point.
                 return Held(outcome, branches, tuple(tried))
-        if outcome.status in (Status.INTERRUPTED, Status.BUDGET):
+        if outcome.status is Status.INTERRUPTED:
             return Held(outcome, branches, tuple(tried))
         if chosen not in tried:
             # Go on from where this branch led to, which is already in the next one's region.

@@ -12,6 +12,7 @@ from eqsheet.syntax.nodes import Statement
 from eqsheet.units.display import format_value
 from eqsheet.worksheet.failure_messages import digits_of
 from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds
+from eqsheet.worksheet.own_line import own_line
 from eqsheet.worksheet.places import span_of
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import BlockRun, Run
@@ -112,7 +113,8 @@ def _statement_of(prepared: Prepared, run: Run, quantity: int) -> Statement | No
     system = prepared.system
     block = run.block_of.get(quantity)
     if block is not None:
-        return system.statements[system.equations[run.blocks[block - 1].equations[0]].place.statement]
+        own = [system.statements[system.equations[e].place.statement] for e in run.blocks[block - 1].equations]
+        return own_line(system.names[quantity], own) or own[0]
     setter = prepared.setters.get(quantity)
     return None if setter is None else system.statements[system.equations[setter].place.statement]
 

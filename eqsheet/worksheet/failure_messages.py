@@ -157,7 +157,8 @@ class _Writer:
             totals = " against ".join(units[o](results[o]) for o in formula.tape.outputs)
             note_text = f"{place}: {totals}"
             if any(len(_terms(formula, o)) > 1 for o in formula.tape.outputs):
-                note_text += f"; terms: {sides[0]} = {sides[1]}"
+                left, right = (side.removeprefix("+ ") for side in sides)
+                note_text += f"; term by term: {left} = {right}"
             notes.append(note_text)
         return notes
 

@@ -96,7 +96,7 @@ def prepare(
             setters.setdefault(item.known, number)
     settled = tuple(settle(item.formula, known_values.get) for item in system.equations)
     modelled = clock()
-    checked: Checked = check_without_unknowns(system, settled, known_values)
+    checked: Checked = check_without_unknowns(system, settled, known_values, clashing)
     diagnostics += checked.diagnostics
     structure = analyse([settled[i].quantities for i in checked.rows], len(system.names))
     valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found)) 

@@ -31,7 +31,7 @@ class QuantityValue:
     block : int or None
         Number of the block that gave it, from 1; None for a known.
     statement : Statement or None
-        The line that sets it, or the first line of its block.
+        The line that sets it; of a block, the line that has it alone on a side, else the first line.
     error : float
         Estimated error in SI, from rounding and the conditioning of the equations alone.
     digits : int

@@ -7,8 +7,9 @@ solve layer; conditions that depend on the block's own unknowns are held, checke
 from __future__ import annotations
 
 import math
+import time
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -29,7 +30,10 @@ from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.block_equations import block_problem, scalar_problem
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.starting_values import Start, starting_values
+from eqsheet.worksheet.torn import TornBlock, torn_block
 
+# For a first try that is given up early.
+_SHORT = Budget(iterations=30, seconds=1.0)
 # Rounding of a closed form may put its value this far past a bound, relative to the bound.
 PAST_BOUND = 1e-12
 
@@ -197,7 +201,62 @@ def _solve_plain(
     own = set(unknowns)
     if all(is_linear_in(f.tape, {s for s, q in enumerate(f.quantities) if q in own}) for f in formulas):
         return linear_step(problem, problem.start, Trail("linear", problem.start, budget)), problem
-    return solve_block(problem, budget), problem
+    torn = torn_block(formulas, unknowns, known.values, start)
+    if torn is not None and start.assumed:
+        begin = _consistent(torn, start)
+        problem = replace(problem, start=np.array(begin.values), magnitude=np.array(begin.magnitude))
+        if len(torn.tears) == 1:
+            # One unknown in plain floats costs little, and a start that is no more than typical needs the help.
+            outcome = _solve_torn(torn, problem, None, _SHORT)
+            if outcome is not None:
+                return outcome, problem
+    outcome = solve_block(problem, budget)
+    if outcome.solved or torn is None or outcome.status is Status.INTERRUPTED:
+        return outcome, problem
+    return _solve_torn(torn, problem, outcome, budget) or outcome, problem
+
+
+def _consistent(torn: TornBlock, start: Start) -> Start:
+    """The start with the unknowns that had no guess told by the closed forms, where these have a value."""
+    told, _ = torn.expand([start.values[p] for p in torn.tears])
+    assumed = set(start.assumed)
+    values = tuple(
+        t if i in assumed and math.isfinite(t) and t != 0.0 else v
+        for i, (t, v) in enumerate(zip(told, start.values))
+    )
+    magnitude = tuple(
+        abs(v) if v != s and v != 0.0 else m for v, s, m in zip(values, start.values, start.magnitude)
+    )
+    return Start(values, start.lower, start.upper, magnitude, start.assumed)
+
+
+def _solve_torn(torn: TornBlock, problem: Problem, failed: Outcome | None, budget: Budget) -> Outcome | None:
+    """The block solved through its torn unknowns and then untorn from there, None where that fails.
+
+    Parameters
+    ----------
+    failed : Outcome or None
+        What was tried before, for the record.
+    """
+    outcome = solve_block(torn.problem(), budget)
+    if outcome.status is Status.INTERRUPTED:
+        return outcome if failed is None else replace(failed, status=Status.INTERRUPTED)
+    values, _ = torn.expand(np.asarray(outcome.x).tolist())
+    if not all(map(math.isfinite, values)):
+        return None
+    point = np.array(values)
+    magnitude = np.where(point != 0.0, np.abs(point), problem.magnitude)
+    polished = solve_block(replace(problem, start=point, magnitude=magnitude), budget)
+    if not polished.solved:
+        return None
+    before = () if failed is None else (*failed.attempts, replace(failed, attempts=()))
+    attempts = (*before, outcome)
+    return replace(
+        polished,
+        method=f"torn {outcome.method}",
+        iterations=polished.iterations + sum(a.iterations for a in attempts),
+        attempts=attempts,
+    )
 
 
 def _iterate(
@@ -217,6 +276,7 @@ def _by_regimes(
 ) -> BlockResult:
     """Hold the branches, solve, check, switch."""
     found = switches(formulas)
+    deadline = time.perf_counter() + budget.seconds
     position = {q: i for i, q in enumerate(unknowns)}
 
     def choose(x: Vector) -> tuple[int, ...]:
@@ -232,7 +292,8 @@ def _by_regimes(
                 status = Status.CONVERGED if closed.solved else Status.HELD
                 return Outcome(status, np.array(closed.values), closed.residual, 0, "closed form")
         begin = start if at is None else _started_at(start, at)
-        return _solve_plain(held, unknowns, known, begin, budget)[0]
+        left = Budget(budget.iterations, max(deadline - time.perf_counter(), 0.0))
+        return _solve_plain(held, unknowns, known, begin, left)[0]
 
     first = choose(np.array(start.values))
     held: Held = solve_regimes(first, (2,) * len(found), solve_held, choose, np.array(start.magnitude))

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note
@@ -26,7 +26,10 @@ class Checked:
 
 
 def check_without_unknowns(
-    system: EquationSystem, formulas: Sequence[Formula], known_values: Mapping[int, float]
+    system: EquationSystem,
+    formulas: Sequence[Formula],
+    known_values: Mapping[int, float],
+    clashing: Collection[int] = (),
 ) -> Checked:
     """Set aside the equations that hold knowns only, and say whether they are true.
 
@@ -35,6 +38,8 @@ def check_without_unknowns(
     formulas : sequence of Formula
         Of each equation, conditions on knowns settled.
     known_values : mapping of quantity number to SI value
+    clashing : collection of int
+        Equations whose dimensions do not fit; whether they are true has no meaning.
     """
     rows: list[int] = []
     diagnostics: list[Diagnostic] = []
@@ -48,7 +53,7 @@ def check_without_unknowns(
                 diagnostics.append(_set_twice(system, first, number))
         elif any(q not in known_values for q in formula.quantities):
             rows.append(number)
-        else:
+        elif number not in clashing:
             diagnostics.append(_check(system, number, formula, known_values, setter))
     return Checked(tuple(rows), tuple(diagnostics))
 
