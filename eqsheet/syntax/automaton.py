@@ -138,7 +138,7 @@ class Automaton:
         position = 0
         set_clause = False
         while True:
-            state = arrival = states[-1]
+            state = states[-1]
             found = match(text, position)
             if found is not None:
                 terminal: str = found.lastgroup  # type: ignore[assignment]  # every alternative is a named group
@@ -147,7 +147,7 @@ class Automaton:
                 terminal, start, end = "$END", length, length
             else:
                 blank = re.compile(_BLANK).match(text, position)
-                raise Unexpected(blank.end() if blank else position, self._terminals(arrival), tuple(read))
+                raise self._unexpected(blank.end() if blank else position, read)
             while True:
                 move = moves[state].get(terminal)
                 if move.__class__ is tuple:
@@ -164,7 +164,7 @@ class Automaton:
                     if state == self._last:
                         return values[-1]
                 elif move is None:
-                    raise Unexpected(start, self._terminals(arrival), tuple(read))
+                    raise self._unexpected(start, read)
                 else:
                     break
             states.append(move)
@@ -193,8 +193,29 @@ class Automaton:
         self._jumps[(below, origin, terminal)] = state
         return state
 
-    def _terminals(self, state: int) -> tuple[str, ...]:
-        return tuple(sorted(symbol for symbol in self._moves[state] if symbol.isupper() or symbol == "$END"))
+    def _unexpected(self, position: int, read: list[tuple[str, int, int]]) -> Unexpected:
+        states = [self._first]
+        for terminal, _, _ in read:
+            self._feed(states, terminal)
+        # LALR merges states, so the table of one also lists terminals that fit only elsewhere: try each.
+        listed = sorted(symbol for symbol in self._moves[states[-1]] if symbol.isupper())
+        expected = tuple(terminal for terminal in listed if self._feed(list(states), terminal))
+        return Unexpected(position, expected, tuple(read))
+
+    def _feed(self, states: list[int], terminal: str) -> bool:
+        """Whether `terminal` fits after `states`, which are moved on by it, without any value."""
+        while True:
+            move = self._moves[states[-1]].get(terminal)
+            if move is None:
+                return False
+            if move.__class__ is not tuple:
+                states.append(move)
+                return True
+            size, _, origin = move
+            del states[-size:]
+            states.append(self._moves[states[-1]][origin])
+            if states[-1] == self._last:
+                return True
 
 
 @cache

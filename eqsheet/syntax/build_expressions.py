@@ -76,7 +76,15 @@ def binary(v: Parts) -> Binary:
 
 @_action
 def power(v: Parts) -> Binary:
-    base, operator, _ = v
+    base, operator, exponent = v
+    if type(exponent) is Number and exponent.unit is not None and exponent.unit.end == exponent.end:
+        raise Slip(
+            "unit-in-exponent",
+            f"{exponent.unit.text} stands in the exponent here",
+            exponent.unit.start,
+            exponent.unit.end,
+            f"write 1e3 {exponent.unit.text} for a thousand; put brackets round an exponent with a unit",
+        )
     if type(base) is Number and base.unit is not None and base.unit.end == base.end:
         raise Slip(
             "power-after-unit",

@@ -6,6 +6,7 @@ Each takes the values of all parts of its production, punctuation included, and 
 from __future__ import annotations
 
 from collections.abc import Callable
+from itertools import pairwise
 from typing import Any, NamedTuple, TypeVar
 
 from eqsheet.syntax import build_expressions
@@ -147,7 +148,17 @@ def tolerance_coverage(v: Parts) -> Tolerance:
 
 @_action
 def valid(v: Parts) -> Parts:
-    return [as_condition(condition) for condition in v[1]]
+    conditions: Parts = v[1]
+    for written, following in pairwise(conditions):
+        if type(written) is Number and following.start == written.end + 1:
+            raise Slip(
+                "decimal-comma",
+                "a number has a comma for a decimal point",
+                written.start,
+                written.end + 1,
+                "write a point in numbers; conditions stand apart by a comma and a space",
+            )
+    return [as_condition(condition) for condition in conditions]
 
 
 @_action
