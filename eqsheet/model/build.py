@@ -40,7 +40,8 @@ _ELSEWHERE = (syntax.Definition, syntax.NewUnit)
 class LoweredCache:
     """Lowered statements by their text, kept while a worksheet is edited.
 
-    Places in them are relative to the statement, so they serve wherever it now stands. The whole cache is dropped when units or definitions change, since every statement may depend on them.
+    Places in them are relative to the statement, so they serve wherever it now stands. The whole cache is
+    dropped when units or definitions change, since every statement may depend on them.
     """
 
     names: NameTable = field(default_factory=NameTable)
@@ -209,7 +210,7 @@ class _Binder:
 
     def knows(self, one: LoweredStatement, statement: int) -> bool:
         """Whether all names of a statement occur in equations; those that do not are reported."""
-        return all([self.knows_one(q, statement, start, end) for q, start, end in one.named])
+        return not [n for n in one.named if not self.knows_one(n[0], statement, n[1], n[2])]
 
     def knows_one(self, quantity: int, statement: int, start: int, end: int) -> bool:
         """Whether a provisional quantity occurs in an equation; reported if not."""
@@ -234,7 +235,7 @@ class _Binder:
             place = Place(statement, meant.start, meant.end)
             stand_in = self._provisional.numbers[meant.target]
             others = [n for n in one.named if n[0] != stand_in]
-            if not all([self.knows_one(q, statement, start, end) for q, start, end in others]):
+            if [n for n in others if not self.knows_one(n[0], statement, n[1], n[2])]:
                 continue
             if not meant.pattern:
                 start, end = next((s, e) for q, s, e in one.named if q == stand_in)

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from fractions import Fraction
-from typing import Any
 
-from eqsheet.model.tape import Formula
+from eqsheet.model.tape import Formula, Instruction
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
+from eqsheet.units.unit import Unit
 
 _OF_FIRST = frozenset(("neg", "add", "sub", "abs", "min", "max", "hypot", "logmean"))
 
@@ -27,7 +27,7 @@ def dimensions_of(formula: Formula, dimensions: Sequence[Dimension | None]) -> t
 
 
 def _of(
-    instruction: tuple[Any, ...],
+    instruction: Instruction,
     found: Sequence[Dimension | None],
     formula: Formula,
     dimensions: Sequence[Dimension | None],
@@ -55,6 +55,6 @@ def _of(
         base = found[rest[0]]
         return None if base is None else base ** Fraction(1, 2)
     if operation == "attach":
-        dimension = rest[1].dimension
-        return dimension if isinstance(dimension, Dimension) else None
+        unit: Unit = rest[1]
+        return unit.dimension
     return DIMENSIONLESS

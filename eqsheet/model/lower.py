@@ -235,7 +235,7 @@ class Lowering:
                 )
             literal = Literal(found.value, found.dimension, "plain", *place)
             return self.builder.literal(literal)
-        self._refuse(
+        return self._refuse(
             "unknown-instance",
             f"there is no instance `{owner.dotted if owner else ''}` to hold `{node.name}`",
             node,

@@ -11,6 +11,7 @@ import math
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Severity
+from eqsheet.model.branches import literal_values
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.findings import Finding
 from eqsheet.model.lower import Context, Lowering, NameTable, Poisoned, kind_of
@@ -95,12 +96,13 @@ def lower_equation(statement: syntax.Statement, context: Context, names: NameTab
     )
     if valid:
         formula = extract(formula, (left, right))
-    known, value, hints = -1, math.nan, ()
+    known, value = -1, math.nan
+    hints: tuple[tuple[int, Unit], ...] = ()
     if target is not None and len(formula.quantities) == 1:
         known = formula.quantities[0]
         side = formula.tape.outputs[0 if value_node is node.right else 1]
         other = formula.tape.outputs[1 if side == formula.tape.outputs[0] else 0]
-        value = evaluate(formula.tape, (math.nan,), [l.value for l in formula.literals])[other]
+        value = evaluate(formula.tape, (math.nan,), literal_values(formula))[other]
         if not math.isfinite(value):
             work.findings.append(
                 Finding(
@@ -255,7 +257,7 @@ def is_gauge(unit: Unit) -> bool:
 
 def uses_gauge(work: Lowering) -> bool:
     """Whether a literal of the formula is a gauge pressure."""
-    return any(l.kind == "reading" and l.dimension == _PRESSURE for l in work.builder.literals)
+    return any(x.kind == "reading" and x.dimension == _PRESSURE for x in work.builder.literals)
 
 
 def _is_plain_reference(node: syntax.Expression) -> bool:
@@ -376,7 +378,7 @@ def _unit_words(unit: Unit | None) -> str:
 
 def _named(formula: Formula) -> tuple[tuple[int, int, int], ...]:
     return tuple(
-        (formula.quantities[instruction[1]], *place)  # type: ignore[index]  # operand of a leaf: its slot
+        (formula.quantities[instruction[1]], *place)
         for instruction, place in zip(formula.tape.instructions, formula.places)
         if instruction[0] == "quantity"
     )

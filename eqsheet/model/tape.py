@@ -35,14 +35,14 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 from fractions import Fraction
 from functools import lru_cache
-from typing import TypeAlias
+from typing import Any, TypeAlias
 
 from eqsheet.units.dimension import Dimension
 
-Instruction: TypeAlias = tuple[object, ...]
+Instruction: TypeAlias = tuple[Any, ...]
 
-UNARY_FUNCTIONS = "sqrt exp ln log10 sin cos tan asin acos atan sinh cosh tanh abs sign erf gamma".split()
-BINARY_FUNCTIONS = "atan2 min max hypot logmean".split()
+UNARY_FUNCTIONS = ["sqrt", "exp", "ln", "log10", "sin", "cos", "tan", "asin", "acos", "atan", "sinh", "cosh", "tanh", "abs", "sign", "erf", "gamma"]
+BINARY_FUNCTIONS = ["atan2", "min", "max", "hypot", "logmean"]
 COMPARISONS = ("lt", "le", "eq")
 
 
@@ -164,7 +164,7 @@ def extract(formula: Formula, outputs: tuple[int, ...]) -> Formula:
         operation = instruction[0]
         if operation in ("quantity", "literal"):
             own = slots[operation == "literal"]
-            own.append(instruction[1])  # type: ignore[arg-type]  # a leaf's operand is its slot number
+            own.append(instruction[1])
             kept.append((operation, len(own) - 1))
         elif operation == "const":
             kept.append(instruction)
@@ -197,8 +197,8 @@ def operands_of(instruction: Instruction) -> tuple[int, ...]:
     if operation in _LEAVES:
         return ()
     if operation in _ONE_OPERAND:
-        return (instruction[1],)  # type: ignore[return-value]  # the rest is a Fraction or a Unit
-    return instruction[1:]  # type: ignore[return-value]  # all operands are indices
+        return (instruction[1],)
+    return instruction[1:]
 
 
 class TapeBuilder:

@@ -8,6 +8,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.registry import UnitProblem, UnitTable
+from eqsheet.units.unit import Unit
 
 _PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
 
@@ -36,7 +37,7 @@ def collect_units(statements: Sequence[syntax.Statement], diagnostics: list[Diag
 def _with_new_unit(table: UnitTable, statement: syntax.Statement) -> UnitTable | Diagnostic:
     node = statement.node
     assert isinstance(node, syntax.NewUnit)
-    base = None
+    base: Unit | UnitProblem | None = None
     count = 1.0
     if node.value is not None:
         text = node.value.unit
@@ -45,12 +46,13 @@ def _with_new_unit(table: UnitTable, statement: syntax.Statement) -> UnitTable |
         if isinstance(base, UnitProblem):
             place = text.factors[base.index] if text is not None and text.factors else node
             return error(
-                f"unit-{base.kind}",
+                base.code,
                 base.message,
                 Label(statement.span(place.start, place.end)),
                 help=base.help,
             )
         count = -float(node.value.text) if node.value.negated else float(node.value.text)
+    assert not isinstance(base, UnitProblem)  # returned above
     outcome = table.with_unit(node.symbol, base, count)
     if isinstance(outcome, UnitProblem):
         return error(outcome.code, outcome.message, Label(statement.whole), help=outcome.help)

@@ -12,17 +12,16 @@ MOST_NAMED = 6
 
 def block_lines(solution: Solution) -> list[str]:
     """A line for each block, in order of solution."""
-    rows = []
-    for block in solution.blocks:
-        rows.append(
-            (
-                f"{block.number}",
-                _folded(block.unknowns),
-                ("line " if len(block.lines) == 1 else "lines ") + _folded(tuple(map(str, block.lines))),
-                _method(block),
-                f"from {_folded(block.depends)}" if block.depends else "",
-            )
+    rows = [
+        (
+            f"{block.number}",
+            _folded(block.unknowns),
+            ("line " if len(block.lines) == 1 else "lines ") + _folded(tuple(map(str, block.lines))),
+            _method(block),
+            f"from {_folded(block.depends)}" if block.depends else "",
         )
+        for block in solution.blocks
+    ]
     return in_columns(rows, numeric=0)
 
 

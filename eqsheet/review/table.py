@@ -7,9 +7,10 @@ from collections.abc import Iterable, Sequence
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.review.columns import in_columns
 from eqsheet.units.display import format_value
+from eqsheet.worksheet.own_line import own_line
 from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, Solution
 
-MOST_LINES_NAMED = 4
+MOST_LINES_NAMED = 3
 
 
 def solution_lines(solution: Solution) -> list[str]:
@@ -40,27 +41,33 @@ def _sections(solution: Solution) -> list[tuple[str, list[QuantityValue]]]:
 
 
 def _row(value: QuantityValue, blocks: Sequence[BlockReport]) -> tuple[str, ...]:
-    description = value.statement.description if value.statement is not None and _is_alone(value, blocks) else ""
+    statement = value.statement
+    description = statement.description if statement is not None and _is_own(value, blocks) else ""
     unit = "" if value.unit == "1" else value.unit
     return value.name, format_value(value.value, value.digits), unit, origin_words(value, blocks), description
 
 
-def _is_alone(value: QuantityValue, blocks: Sequence[BlockReport]) -> bool:
-    """Whether the quantity's line speaks of it alone: a known, or a block of one equation."""
-    return value.block is None or len(blocks[value.block - 1].statements) == 1
+def _is_own(value: QuantityValue, blocks: Sequence[BlockReport]) -> bool:
+    """Whether the quantity's line speaks of it: a known, a block of one equation, or alone on a side."""
+    if value.block is None or len(blocks[value.block - 1].statements) == 1:
+        return True
+    return value.statement is not None and own_line(value.name, (value.statement,)) is not None
 
 
 def origin_words(value: QuantityValue, blocks: Sequence[BlockReport]) -> str:
-    """Where a value comes from: the line that sets it or the lines it is solved from."""
+    """Where a value comes from: the line that sets it or the lines it is solved from, its own one first."""
     if value.block is None:
         return "given" if value.line is None else f"given, line {value.line}"
     lines = blocks[value.block - 1].lines
     if not lines:
         return "solved"
-    named = ", ".join(map(str, lines[:MOST_LINES_NAMED]))
-    if len(lines) > MOST_LINES_NAMED:
-        named += f" and {len(lines) - MOST_LINES_NAMED} more"
-    return f"line {named}" if len(lines) == 1 else f"lines {named}"
+    if len(lines) == 1:
+        return f"line {lines[0]}"
+    if len(lines) <= MOST_LINES_NAMED:
+        return f"lines {', '.join(map(str, lines))}"
+    if value.line is not None and _is_own(value, blocks):
+        return f"line {value.line} with {len(lines) - 1} more"
+    return f"{len(lines)} lines, {lines[0]} to {lines[-1]}"
 
 
 def limit_lines(limits: Iterable[LimitReport]) -> list[str]:

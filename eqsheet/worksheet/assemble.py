@@ -113,8 +113,9 @@ def _statement_of(prepared: Prepared, run: Run, quantity: int) -> Statement | No
     system = prepared.system
     block = run.block_of.get(quantity)
     if block is not None:
-        own = [system.statements[system.equations[e].place.statement] for e in run.blocks[block - 1].equations]
-        return own_line(system.names[quantity], own) or own[0]
+        places = [system.equations[e].place for e in run.blocks[block - 1].equations]
+        statements = [system.statements[place.statement] for place in places]
+        return own_line(system.names[quantity], statements) or statements[0]
     setter = prepared.setters.get(quantity)
     return None if setter is None else system.statements[system.equations[setter].place.statement]
 
@@ -148,7 +149,7 @@ def _ambient_note(system: EquationSystem) -> Diagnostic:
     text = format_value(system.ambient / 1000.0)
     given = system.number("ambient")
     if given is None:
-        place = ()
+        place: tuple[Label, ...] = ()
         said = f"gauge pressures stand on the standard atmosphere, {text} kPa"
         help = "write `ambient = 84 kPa` or the like for another place"
     else:

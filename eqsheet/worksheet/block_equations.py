@@ -86,9 +86,7 @@ def block_problem(
 class _OneByOne:
     """Equation by equation, for points where the fast function of the whole block has no value."""
 
-    def __init__(
-        self, formulas: Sequence[Formula], unknowns: Sequence[int], values: Sequence[float]
-    ) -> None:
+    def __init__(self, formulas: Sequence[Formula], unknowns: Sequence[int], values: Sequence[float]) -> None:
         self._formulas = formulas
         self._unknowns = unknowns
         self._values = values

@@ -67,7 +67,9 @@ def failure_diagnostic(
     status = result.outcome.status if result.outcome is not None else Status.STALLED
     if status.solved:
         status = Status.STALLED
-    facts = None if result.problem is None or result.outcome is None else explain(result.problem, result.outcome)
+    facts = (
+        None if result.problem is None or result.outcome is None else explain(result.problem, result.outcome)
+    )
     worst = 0 if facts is None or not facts.worst else facts.worst[0][0]
     headline = _HEADLINES.get(status, "no solution found")
     if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
@@ -86,7 +88,9 @@ def failure_diagnostic(
         notes += writer.not_finite(0) or writer.terms([0])
         notes += writer.range_tried()
     notes += writer.jump()
-    help = _CURES.get(status, "give a start value near the solution (`near`), or check sign and size of the terms")
+    help = _CURES.get(
+        status, "give a start value near the solution (`near`), or check sign and size of the terms"
+    )
     return error("no-solution", message, *labels, notes=tuple(notes), help=help)
 
 
@@ -249,11 +253,11 @@ def _terms(formula: Formula, output: int) -> list[tuple[int, int]]:
         sign, i = stack.pop()
         operation, *rest = formula.tape.instructions[i]
         if operation == "add":
-            stack += [(sign, rest[1]), (sign, rest[0])]  # type: ignore[list-item]  # operands are indices
+            stack += [(sign, rest[1]), (sign, rest[0])]
         elif operation == "sub":
-            stack += [(-sign, rest[1]), (sign, rest[0])]  # type: ignore[list-item]  # operands are indices
+            stack += [(-sign, rest[1]), (sign, rest[0])]
         elif operation == "neg":
-            stack.append((-sign, rest[0]))  # type: ignore[arg-type]  # operands are indices
+            stack.append((-sign, rest[0]))
         else:
             found.append((sign, i))
     return found[:MOST_TERMS]

@@ -42,7 +42,11 @@ def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitRep
     outputs = item.formula.tape.outputs
     operands = outputs[:-1] if item.within else outputs
     dimension = next(
-        (d for d in (dimensions_of(item.formula, prepared.dimensions.dimensions)[o] for o in operands) if d is not None),
+        (
+            d
+            for d in (dimensions_of(item.formula, prepared.dimensions.dimensions)[o] for o in operands)
+            if d is not None
+        ),
         Dimension(()),
     )
     unit = item.unit
@@ -66,9 +70,7 @@ def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitRep
     )
 
 
-def _link(
-    item: LimitItem, operator: str, a: int, b: int, evidence: Evidence
-) -> tuple[float, float, float]:
+def _link(item: LimitItem, operator: str, a: int, b: int, evidence: Evidence) -> tuple[float, float, float]:
     """Slack of one comparison, the limit it is relative to, and the forward error of its sides."""
     values, errors = evidence.values, evidence.errors
     left, right = values[a], values[b]
@@ -93,38 +95,38 @@ def _compares_readings(prepared: Prepared, item: LimitItem, operands: Sequence[i
     formula = item.formula
     for operand in operands:
         operation, *rest = formula.tape.instructions[operand]
-        if operation == "literal" and formula.literals[rest[0]].kind == "reading":  # type: ignore[index]  # a slot
+        if operation == "literal" and formula.literals[rest[0]].kind == "reading":
             return True
-        if operation == "quantity" and prepared.kinds[formula.quantities[rest[0]]] == "reading":  # type: ignore[index]  # a slot
+        if operation == "quantity" and prepared.kinds[formula.quantities[rest[0]]] == "reading":
             return True
     return False
 
 
 def _difference_text(text: str, prepared: Prepared) -> str:
-    """The unit of a slack: a distance between readings is a difference."""
+    """The unit of a slack: a distance between readings is a difference, between degC one in K."""
     unit = prepared.system.unit_table.lookup(text) if text else None
     if unit is None or not unit.reading:
         return text or "1"
     if unit.dimension == Dimension.of({"K": 1}):
-        return f"delta_{text}"
+        return "K" if text == "degC" else f"delta_{text}"
     return text.removesuffix("g")
 
 
 def judge_validity(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
     """A warning for each validity range that the solution leaves, where its formula is in use."""
     system = prepared.system
-    diagnostics = []
+    diagnostics: list[Diagnostic] = []
     used = _quantities_used(prepared, run)
-    produced = {
-        equation: block.unknowns for block in run.blocks for equation in block.equations
-    }
+    produced = {equation: block.unknowns for block in run.blocks for equation in block.equations}
     for number, item in enumerate(system.equations):
         unknowns = produced.get(number, ())
         if unknowns and not any(q in used for q in unknowns) and len(unknowns) == 1:
             continue
-        for validity in item.valid:
-            if _applies(validity, run) and not _truth(validity.formula, run):
-                diagnostics.append(_left(prepared, run, validity))
+        diagnostics += [
+            _left(prepared, run, validity)
+            for validity in item.valid
+            if _applies(validity, run) and not _truth(validity.formula, run)
+        ]
     return tuple(diagnostics)
 
 

@@ -10,11 +10,10 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
-from eqsheet.model.build import LoweredCache, build_system
-from eqsheet.model.dimension_messages import dimension_diagnostics
-from eqsheet.model.infer_dimensions import DimensionResult, infer_dimensions
-from eqsheet.model.infer_kinds import infer_kinds
 from eqsheet.model.branches import settle
+from eqsheet.model.build import LoweredCache, build_system
+from eqsheet.model.check_units import check_units
+from eqsheet.model.infer_dimensions import DimensionResult
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.analyse import analyse
@@ -84,10 +83,9 @@ def prepare(
     system, found = build_system(statements, cache)
     diagnostics = [*earlier, *found]
     formulas, minor = all_formulas(system)
-    dimensions = infer_dimensions(formulas, len(system.names), minor=minor)
-    clashing = [clash.formula for clash in dimensions.clashes]
-    kinds = infer_kinds(formulas, dimensions.dimensions, minor, clashing)
-    diagnostics += dimension_diagnostics(dimensions, formulas, system.statements, system.names)
+    units = check_units(formulas, system.statements, system.names, minor)
+    diagnostics += units.diagnostics
+    clashing = {clash.formula for clash in units.dimensions.clashes}
     known_values: dict[int, float] = {}
     setters: dict[int, int] = {}
     for number, item in enumerate(system.equations):
@@ -99,8 +97,7 @@ def prepare(
     checked: Checked = check_without_unknowns(system, settled, known_values, clashing)
     diagnostics += checked.diagnostics
     structure = analyse([settled[i].quantities for i in checked.rows], len(system.names))
-    valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found)) 
-    valid_text = valid_text and not dimensions.clashes and not kinds.misuses
+    valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found, *units.diagnostics))
     if valid_text:
         diagnostics += structure_diagnostics(system, settled, checked.rows, structure)
     done = clock()
@@ -111,8 +108,8 @@ def prepare(
         settled,
         checked.rows,
         structure,
-        dimensions,
-        tuple(["plain" if kind == "unknown" else kind for kind in kinds.kinds]),
+        units.dimensions,
+        tuple(["plain" if kind == "unknown" else kind for kind in units.kinds.kinds]),
         known_values,
         setters,
         tuple(diagnostics),

@@ -12,6 +12,7 @@ from eqsheet.model.evaluate import evaluate_with_evidence
 from eqsheet.model.tape import Formula
 from eqsheet.solve.trail import Budget
 from eqsheet.structure.verdict import Conflict
+from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
 from eqsheet.worksheet.guesses import Guesses, work_out_guesses
 from eqsheet.worksheet.prepare import Prepared
@@ -65,8 +66,12 @@ class Run:
         return any(b.result is not None and not b.result.solved for b in self.blocks)
 
 
-def run_blocks(prepared: Prepared, budget: Budget) -> Run:
-    """Solve block after block; what depends on a failed block is left out."""
+def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = None) -> Run:
+    """Solve block after block; what depends on a failed block is left out.
+
+    With a `memory`, blocks it has met before are not solved again.
+    """
+    solve = solve_equations if memory is None else memory.solve
     system = prepared.system
     guesses, found = work_out_guesses(system, prepared.known_values)
     diagnostics = list(found)
@@ -95,7 +100,7 @@ def run_blocks(prepared: Prepared, budget: Budget) -> Run:
         if any(a in failed for a in after):
             failed.add(number)
         else:
-            result = solve_equations(
+            result = solve(
                 [formulas[e] for e in equations], block.columns, known, guesses, dimensions, budget
             )
             for equation, formula in zip(equations, result.formulas):

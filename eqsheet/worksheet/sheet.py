@@ -14,6 +14,7 @@ from eqsheet.solve.trail import Budget
 from eqsheet.syntax.nodes import Document
 from eqsheet.syntax.parse import parse_document
 from eqsheet.worksheet.assemble import assemble
+from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.changes import apply_changes
 from eqsheet.worksheet.prepare import Prepared, prepare
 from eqsheet.worksheet.run import run_blocks
@@ -37,6 +38,7 @@ class Worksheet:
     diagnostics: tuple[Diagnostic, ...]
     timing: float = 0.0
     cache: LoweredCache = field(default_factory=LoweredCache, repr=False, compare=False)
+    memory: BlockMemory | None = field(default=None, repr=False, compare=False)
 
     @property
     def name(self) -> str:
@@ -79,7 +81,7 @@ class Worksheet:
         """
         prepared = self.prepare(changes, free)
         begin = time.perf_counter()
-        run = run_blocks(prepared, budget) if prepared.valid_text else None
+        run = run_blocks(prepared, budget, self.memory) if prepared.valid_text else None
         solved_in = time.perf_counter() - begin
         timing = {"parse": self.timing, **prepared.timing, "solve": solved_in}
         return assemble(self.name, prepared, run, timing)
@@ -100,9 +102,20 @@ def parse(text: str, name: str = "<text>") -> Worksheet:
     return read(Source(name, text.replace("\r\n", "\n").removeprefix("\ufeff")))
 
 
-def read(source: Source, cache: LoweredCache | None = None) -> Worksheet:
-    """The worksheet of a source; `cache` as in `build_system`."""
+def read(
+    source: Source, cache: LoweredCache | None = None, memory: BlockMemory | None = None
+) -> Worksheet:
+    """The worksheet of a source.
+
+    Parameters
+    ----------
+    source : Source
+    cache : LoweredCache, optional
+        See `build_system`.
+    memory : BlockMemory, optional
+        Blocks solved in an earlier state of the worksheet.
+    """
     begin = time.perf_counter()
     document, diagnostics = parse_document(source)
     taken = time.perf_counter() - begin
-    return Worksheet(source, document, diagnostics, taken, cache or LoweredCache())
+    return Worksheet(source, document, diagnostics, taken, cache or LoweredCache(), memory)

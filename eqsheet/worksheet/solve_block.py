@@ -287,7 +287,11 @@ def _by_regimes(
     def solve_held(branches: tuple[int, ...], at: Vector | None) -> Outcome:
         held = hold(formulas, found, branches)
         if len(unknowns) == 1:
-            closed = _closed_form(held[0], unknowns[0], known, guesses) if unknowns[0] in held[0].quantities else None
+            closed = (
+                _closed_form(held[0], unknowns[0], known, guesses)
+                if unknowns[0] in held[0].quantities
+                else None
+            )
             if closed is not None:
                 status = Status.CONVERGED if closed.solved else Status.HELD
                 return Outcome(status, np.array(closed.values), closed.residual, 0, "closed form")

@@ -95,7 +95,7 @@ def _between(low: float, high: float, position: int) -> float | None:
         return None
     part = 0.35 + 0.3 * ((position + 1) * _SPREAD % 1.0)
     if low > 0.0 and high / low > _WIDE:
-        return low * (high / low) ** part
+        return float(low * (high / low) ** part)
     return low + part * (high - low)
 
 

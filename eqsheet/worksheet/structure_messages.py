@@ -50,9 +50,7 @@ def shortfall_diagnostic(
     if items:
         where = line_words(system, [i.place for i in items])
         number = len(items)
-        message = (
-            f"{where} {'does' if number == 1 else 'do'} not determine {quoted(names)}: {count} needed"
-        )
+        message = f"{where} {'does' if number == 1 else 'do'} not determine {quoted(names)}: {count} needed"
     else:
         message = f"nothing determines {quoted(names)}"
     labels = [label_of(system, system.first_places[shortfall.columns[0]])]
@@ -76,9 +74,7 @@ def shortfall_diagnostic(
     return error("under-determined", message, *labels, notes=tuple(notes), help=help)
 
 
-def _spelling_notes(
-    system: EquationSystem, formulas: Sequence[Formula], shortfall: Shortfall
-) -> list[str]:
+def _spelling_notes(system: EquationSystem, formulas: Sequence[Formula], shortfall: Shortfall) -> list[str]:
     """A name that stands in one equation only and is close to another name is likely a slip."""
     uses: dict[int, int] = {}
     for formula in formulas:

@@ -77,9 +77,7 @@ class TornBlock:
             if q in self._position and s != slot
         )
         slots = tuple(s for s, _ in inputs)
-        functions = tuple(
-            safe_function(partials(c.tape, 0, slots)) for c in isolation.candidates
-        )
+        functions = tuple(safe_function(partials(c.tape, 0, slots)) for c in isolation.candidates)
         return Step(position, formula.quantities, tuple(literal_values(formula)), functions, inputs)
 
     def expand(self, x: Sequence[float]) -> tuple[list[float], Vector]:
@@ -185,7 +183,8 @@ def torn_block(
 
 def _given(formula: Formula, position: dict[int, int]) -> list[int]:
     """Block unknowns that the equation gives in closed form, those that stand alone on a side first."""
-    alone, turned = [], []
+    alone: list[int] = []
+    turned: list[int] = []
     instructions = formula.tape.instructions
     sides = {instructions[o] for o in formula.tape.outputs}
     for slot, quantity in enumerate(formula.quantities):

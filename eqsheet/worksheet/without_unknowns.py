@@ -99,9 +99,7 @@ def _check(
         )
     knowns = [system.equations[setter[q]] for q in formula.quantities if q in setter]
     names = ", ".join(f"`{system.names[k.known]}`" for k in knowns)
-    sides = (
-        f"left side {written(evidence.values[left])}, right side {written(evidence.values[right])}, in SI units"
-    )
+    sides = f"left side {written(evidence.values[left])}, right side {written(evidence.values[right])}, in SI units"
     return error(
         "equation-always-false",
         f"`{text}` holds no unknown, and is false",

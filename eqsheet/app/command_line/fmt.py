@@ -7,8 +7,8 @@ from collections.abc import Sequence
 
 from eqsheet.app import exit_status
 from eqsheet.app.command_line.output import print_diagnostics
-from eqsheet.app.files import write_atomically
 from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.live.files import write_atomically
 from eqsheet.syntax.format import format_document
 from eqsheet.syntax.parse import parse_document
 from eqsheet.syntax.read import TextFile, read_source
