@@ -1,0 +1,7 @@
+"""``python -m eqsheet``."""
+
+import sys
+
+from eqsheet.app.main import main
+
+sys.exit(main())
