@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.review.columns import in_columns
+from eqsheet.syntax.nodes import Guess, Reference
 from eqsheet.units.display import format_value
 from eqsheet.worksheet.own_line import own_line
 from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, Solution
@@ -16,17 +17,32 @@ MOST_LINES_NAMED = 3
 def solution_lines(solution: Solution) -> list[str]:
     """The whole table; empty where there is nothing to show."""
     lines: list[str] = []
+    said = _said_of_guesses(solution)
     for title, values in _sections(solution):
         if lines:
             lines.append("")
         if title:
             lines.append(title)
-        lines += in_columns(
-            [_row(value, solution.blocks) for value in values], numeric=1, indent="  " if title else ""
-        )
+        rows = [_row(value, solution.blocks, said) for value in values]
+        lines += in_columns(rows, numeric=1, indent="  " if title else "")
     if solution.limits:
         lines += ["", "Limits", *limit_lines(solution.limits)]
+    off = off_lines(solution)
+    if off:
+        lines += ["", "Switched off", *off]
     return lines
+
+
+def off_lines(solution: Solution) -> list[str]:
+    """The statements that are kept but not used."""
+    return in_columns(
+        [
+            (" ".join(s.line.text.removeprefix("off ").split()), f"line {s.line.line}", s.description)
+            for s in solution.statements
+            if s.off and s.source.numbered
+        ],
+        indent="  ",
+    )
 
 
 def _sections(solution: Solution) -> list[tuple[str, list[QuantityValue]]]:
@@ -40,10 +56,22 @@ def _sections(solution: Solution) -> list[tuple[str, list[QuantityValue]]]:
     return sorted(order.items(), key=lambda pair: rank.get(pair[0], -1))
 
 
-def _row(value: QuantityValue, blocks: Sequence[BlockReport]) -> tuple[str, ...]:
+def _said_of_guesses(solution: Solution) -> dict[str, str]:
+    """Descriptions that stand behind guesses: words for unknowns that no line has alone on a side."""
+    return {
+        s.node.target.dotted: s.description
+        for s in solution.statements
+        if isinstance(s.node, Guess) and isinstance(s.node.target, Reference) and s.description and not s.off
+    }
+
+
+def _row(value: QuantityValue, blocks: Sequence[BlockReport], said: Mapping[str, str]) -> tuple[str, ...]:
     statement = value.statement
     description = statement.description if statement is not None and _is_own(value, blocks) else ""
+    description = description or said.get(value.name, "")
     unit = "" if value.unit == "1" else value.unit
+    if value.tolerance:
+        unit = f"{unit} {value.tolerance}".strip()
     return value.name, format_value(value.value, value.digits), unit, origin_words(value, blocks), description
 
 

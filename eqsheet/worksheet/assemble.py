@@ -106,7 +106,14 @@ def _value(prepared: Prepared, run: Run, quantity: int, si: float, error_bound: 
         digits_of(si, error_bound),
         shown_unit(system, prepared.dimensions.dimensions, prepared.kinds, quantity),
         system.unit_table,
+        _tolerance_of(prepared, quantity) if block is None else "",
     )
+
+
+def _tolerance_of(prepared: Prepared, quantity: int) -> str:
+    setter = prepared.setters.get(quantity)
+    tolerance = None if setter is None else prepared.system.equations[setter].tolerance
+    return "" if tolerance is None else " ".join(tolerance.text.split())
 
 
 def _statement_of(prepared: Prepared, run: Run, quantity: int) -> Statement | None:

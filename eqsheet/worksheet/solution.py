@@ -36,6 +36,8 @@ class QuantityValue:
         Estimated error in SI, from rounding and the conditioning of the equations alone.
     digits : int
         Decimal digits that can be trusted on that ground, 0 to 15.
+    tolerance : str
+        The tolerance of a known as written, ``± 0.1 mm``; empty if there is none.
     """
 
     name: str
@@ -48,6 +50,7 @@ class QuantityValue:
     digits: int
     shown_in: Unit
     unit_table: UnitTable
+    tolerance: str = ""
 
     @property
     def unit(self) -> str:
