@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import ast
+import re
 from collections.abc import Iterator
 from pathlib import Path
 
@@ -58,6 +59,16 @@ def texts_in(expression: ast.AST, constants: dict[str, str]) -> Iterator[str]:
         yield from texts_in(expression.orelse, constants)
 
 
+def code_of_a_row(node: ast.AST) -> str:
+    """The code of a row (code, message, help) of a table of messages; empty if `node` is none."""
+    if not isinstance(node, ast.Tuple) or len(node.elts) != 3:
+        return ""
+    texts = [
+        part.value for part in node.elts if isinstance(part, ast.Constant) and isinstance(part.value, str)
+    ]
+    return texts[0] if len(texts) == 3 and re.fullmatch("[a-z]+(-[a-z]+)+", texts[0]) else ""
+
+
 def codes_in_the_source() -> set[str]:
     """Every code that is given where a function or class takes a `code` first."""
     parsed = list(trees())
@@ -78,7 +89,7 @@ def codes_in_the_source() -> set[str]:
         and isinstance(statement.value, ast.Constant)
         and isinstance(statement.value.value, str)
     }
-    found: set[str] = set()
+    found = {code for node in nodes if (code := code_of_a_row(node))}
     for node in nodes:
         if isinstance(node, ast.Call):
             called = node.func.attr if isinstance(node.func, ast.Attribute) else getattr(node.func, "id", "")
