@@ -98,13 +98,16 @@ def build_system(
         one = cache.lowered(statement)
         diagnostics.extend(f.at(statement) for f in one.findings)
         lowered.append((number, statement, one))
-    system = _assemble(used, lowered, cache.names, context, diagnostics)
+    # A known switched off still tells in which unit its quantity is thought of.
+    idle = [cache.lowered(s) for s in statements if s.off and isinstance(s.node, syntax.Equation)]
+    system = _assemble(used, lowered, idle, cache.names, context, diagnostics)
     return system, tuple(diagnostics)
 
 
 def _assemble(
     used: tuple[syntax.Statement, ...],
     lowered: list[tuple[int, syntax.Statement, LoweredStatement]],
+    idle: Sequence[LoweredStatement],
     provisional: NameTable,
     context: Context,
     diagnostics: list[Diagnostic],
@@ -149,7 +152,7 @@ def _assemble(
         tuple(_by_precedence(guesses, used, names, diagnostics)),
         tuple(limits),
         shown,
-        _preferred_units(lowered, final, shown),
+        _preferred_units([one for _, _, one in lowered], idle, final, shown),
         context.unit_table,
         context.unit_table.ambient,
         any(one.uses_gauge for _, _, one in lowered),
@@ -315,23 +318,24 @@ def _by_precedence(
 
 
 def _preferred_units(
-    lowered: list[tuple[int, syntax.Statement, LoweredStatement]],
+    lowered: Sequence[LoweredStatement],
+    idle: Sequence[LoweredStatement],
     final: dict[int, int],
     shown: dict[int, Unit | None],
 ) -> dict[int, Unit]:
-    """Unit for each quantity by precedence: `show`, known, guess, limit."""
+    """Unit for each quantity by precedence: `show`, known, known switched off, guess, limit."""
     units: dict[int, Unit] = {q: unit for q, unit in shown.items() if unit is not None}
-    kinds: tuple[Callable[[LoweredStatement], bool], ...] = (
-        lambda one: one.equation is not None,
-        lambda one: bool(one.guesses),
-        lambda one: one.limit is not None,
+    groups = (
+        [one for one in lowered if one.equation is not None],
+        idle,
+        [one for one in lowered if one.guesses],
+        [one for one in lowered if one.limit is not None],
     )
-    for of_kind in kinds:
-        for _, _, one in lowered:
-            if one.unit_hints and of_kind(one):
-                for quantity, unit in one.unit_hints:
-                    if quantity in final:
-                        units.setdefault(final[quantity], unit)
+    for group in groups:
+        for one in group:
+            for quantity, unit in one.unit_hints:
+                if quantity in final:
+                    units.setdefault(final[quantity], unit)
     return units
 
 

@@ -41,7 +41,10 @@ from eqsheet.units.dimension import Dimension
 
 Instruction: TypeAlias = tuple[Any, ...]
 
-UNARY_FUNCTIONS = ["sqrt", "exp", "ln", "log10", "sin", "cos", "tan", "asin", "acos", "atan", "sinh", "cosh", "tanh", "abs", "sign", "erf", "gamma"]
+UNARY_FUNCTIONS = (
+    *("sqrt", "exp", "ln", "log10", "sin", "cos", "tan", "asin", "acos", "atan"),
+    *("sinh", "cosh", "tanh", "abs", "sign", "erf", "gamma"),
+)
 BINARY_FUNCTIONS = ["atan2", "min", "max", "hypot", "logmean"]
 COMPARISONS = ("lt", "le", "eq")
 

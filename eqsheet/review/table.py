@@ -30,7 +30,7 @@ def solution_lines(solution: Solution) -> list[str]:
     off = off_lines(solution)
     if off:
         lines += ["", "Switched off", *off]
-    return lines
+    return lines[1:] if lines and not lines[0] else lines
 
 
 def off_lines(solution: Solution) -> list[str]:
@@ -85,7 +85,7 @@ def _is_own(value: QuantityValue, blocks: Sequence[BlockReport]) -> bool:
 def origin_words(value: QuantityValue, blocks: Sequence[BlockReport]) -> str:
     """Where a value comes from: the line that sets it or the lines it is solved from, its own one first."""
     if value.block is None:
-        return "given" if value.line is None else f"given, line {value.line}"
+        return "given for this run" if value.line is None else f"given, line {value.line}"
     lines = blocks[value.block - 1].lines
     if not lines:
         return "solved"
