@@ -1,0 +1,121 @@
+"""Where a typed statement goes, and what it looks like there."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from eqsheet.diagnostics.source import Source
+from eqsheet.live.identity import replaced_by
+from eqsheet.live.lines import Edit
+from eqsheet.syntax.lines import split_comment
+from eqsheet.syntax.nodes import Document, Prose, Statement
+from eqsheet.syntax.parse import parse_statement
+
+_INDENT = "    "
+
+
+def placed(text: str, lines: Sequence[str], document: Document, section: str | None) -> Edit:
+    """The edit that brings `text` into the worksheet.
+
+    Parameters
+    ----------
+    text : str
+        What was typed: one statement, or prose, or something broken, which is taken in as it is.
+    lines : sequence of str
+    document : Document
+        Of `lines`.
+    section : str or None
+        Title of the section last touched; what replaces nothing goes to its end. None for the end of all.
+    """
+    statement, found = parse_statement(Source("typed", text))
+    if statement is not None and not found:
+        old = replaced_by(statement, document.statements)
+        if old is not None:
+            first, last = span_of_lines(old, lines)
+            new = _in_place_of(text, statement, lines[first : last + 1], old)
+            return Edit(first, tuple(lines[first : last + 1]), new)
+    at = len(lines) if text.startswith("##") else end_of_section(lines, document, section)
+    new = tuple(text.split("\n"))
+    if text.startswith("##") and at > 0 and lines[at - 1].strip():
+        new = ("", *new)
+    return Edit(at, (), new)
+
+
+def span_of_lines(statement: Statement, lines: Sequence[str]) -> tuple[int, int]:
+    """First and last line index (from 0) of a statement, without its group."""
+    first = statement.line.line - 1
+    return first, min(first + statement.line.text.count("\n"), len(lines) - 1)
+
+
+def statement_at(document: Document, index: int) -> Statement | None:
+    """The statement, inside a group or not, that the line of that index (from 0) is part of, or None."""
+    stack = list(document.statements)
+    while stack:
+        statement = stack.pop()
+        first = statement.line.line - 1
+        if first <= index <= first + statement.line.text.count("\n"):
+            return statement
+        stack.extend(statement.body)
+    return None
+
+
+def section_at(document: Document, index: int) -> str:
+    """Title of the section the line of that index stands in; empty before the first."""
+    title = ""
+    for prose in document.prose:
+        if prose.title and prose.line - 1 <= index:
+            title = prose.title
+    return title
+
+
+def end_of_section(lines: Sequence[str], document: Document, section: str | None) -> int:
+    """Index of the line before which something is added to the section: after its last line that is not blank."""
+    end = len(lines)
+    start = 0
+    if section is not None:
+        headings = [p for p in document.prose if p.title]
+        start, end = _bounds(headings, section, len(lines))
+    while end > start and not lines[end - 1].strip():
+        end -= 1
+    return end
+
+
+def _bounds(headings: Sequence[Prose], section: str, count: int) -> tuple[int, int]:
+    """First line index and end of a section; of the last of that title."""
+    if not section:
+        return 0, headings[0].line - 1 if headings else count
+    for i in range(len(headings) - 1, -1, -1):
+        if headings[i].title == section:
+            return headings[i].line, headings[i + 1].line - 1 if i + 1 < len(headings) else count
+    return 0, count
+
+
+def _in_place_of(
+    text: str, typed: Statement, taken: Sequence[str], old: Statement
+) -> tuple[str, ...]:
+    """The typed lines with label, comment and indentation of the old statement, unless given anew."""
+    indent = taken[0][: len(taken[0]) - len(taken[0].lstrip())]
+    new = text.split("\n")
+    new[0] = new[0].lstrip()
+    if old.label and not typed.label:
+        new[0] = _labelled(new[0], old.label, typed.off)
+    new[0] = indent + new[0]
+    if not typed.line.comment and old.line.comment:
+        code, comment = split_comment(taken[-1])
+        new[-1] = _commented(new[-1].rstrip(), code, comment or "")
+    return tuple(new)
+
+
+def _labelled(line: str, label: str, off: bool) -> str:
+    if off:
+        rest = line.removeprefix("off").lstrip()
+        return f"off {label}: {rest}"
+    return f"{label}: {line}"
+
+
+def _commented(line: str, code: str, comment: str) -> str:
+    """The line with the comment in the column where it stood, if there is room."""
+    column = len(code)
+    line, own = split_comment(line) if "#" in line else (line, None)
+    gap = max(column - len(line.rstrip()), 1 if code != code.rstrip() else 0)
+    return f"{line.rstrip()}{' ' * gap}#{comment}"
