@@ -106,6 +106,6 @@ def _unit_that_is_a_name(clash: Clash, formula: Formula, names: Sequence[str]) -
         if split and split[3] in names:
             return (
                 f"`{literal.unit}` was read as a unit; if `{split[3]}` is meant as the quantity, "
-                f"write `{split[1]} {split[2]} {split[3]}`"
+                f"put spaces: `{split[1]} {split[2]} {split[3]}`"
             )
     return ""

@@ -85,7 +85,7 @@ class _Writer:
         return self.builder.apply(operation, *operands, place=self.place(node))
 
     def literal(self, node: ast.expr, value: float, unit: ast.expr) -> int:
-        text = ast.unparse(unit)
+        text = ast.unparse(unit).replace(" ", "")
         start, end = self.place(node)
         if text in UNITS:
             dimension, factor, origin, kind = UNITS[text]
