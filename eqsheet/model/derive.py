@@ -17,8 +17,8 @@ from collections.abc import Callable
 from fractions import Fraction
 from functools import lru_cache
 
-from eqsheet.model.simplify import Simplifier
-from eqsheet.model.tape import Tape, operands_of
+from eqsheet.model.simplify import ARITY, Simplifier
+from eqsheet.model.tape import Tape
 
 MEMORY = 1 << 14
 
@@ -117,7 +117,12 @@ class _Gradient:
         instructions, depends = self.writer.instructions, self.depends
         for i in range(len(depends), root + 1):
             instruction = instructions[i]
-            depends.append(i in self._wanted or any(depends[j] for j in operands_of(instruction)))
+            hit = i in self._wanted
+            for j in instruction[1 : 1 + ARITY[instruction[0]]]:
+                if depends[j]:
+                    hit = True
+                    break
+            depends.append(hit)
 
     def _hand_on(self, v: int) -> None:
         instruction = self.writer.instructions[v]

@@ -20,7 +20,7 @@ from typing import Any
 from eqsheet.model.derive import gradient
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.functions import ALL_BINARY_FUNCTIONS, ALL_UNARY_FUNCTIONS, BINARY, UNARY, as_float
-from eqsheet.model.simplify import Simplifier, needed
+from eqsheet.model.simplify import Simplifier, uses
 from eqsheet.model.tape import Tape, operands_of
 
 Function = Callable[..., Any]
@@ -180,44 +180,50 @@ def _array_names() -> dict[str, Any]:
     return {**ARRAY_FUNCTIONS, "inf": math.inf, "nan": math.nan, "__builtins__": {}}
 
 
-_COMMON = {
-    "add": "({}+{})",
-    "sub": "({}-{})",
-    "mul": "({}*{})",
-    "div": "({}/{})",
-    "neg": "(-{})",
-    "lt": "({}<{})",
-    "le": "({}<={})",
-    "eq": "({}=={})",
-    "pow": "pow({},{})",
-    **{name: f"{name}({{}})" for name in ALL_UNARY_FUNCTIONS},
-    **{name: f"{name}({{}},{{}})" for name in ALL_BINARY_FUNCTIONS},
+# How tightly a text holds together. Brackets stand only where they must: each costs the compiler time.
+_LOGIC, _SUM, _PRODUCT, _SIGN, _ATOM = range(5)
+
+# For each operation its pattern, how tightly the text holds together, and how tightly its operands must.
+_Pattern = tuple[str, int, int, int]
+_COMMON: dict[str, _Pattern] = {
+    "add": ("%s+%s", _SUM, _SUM, _PRODUCT),
+    "sub": ("%s-%s", _SUM, _SUM, _PRODUCT),
+    "mul": ("%s*%s", _PRODUCT, _PRODUCT, _SIGN),
+    "div": ("%s/%s", _PRODUCT, _PRODUCT, _SIGN),
+    "neg": ("-%s", _SIGN, _SIGN, _SIGN),
+    "lt": ("%s<%s", _LOGIC, _SUM, _SUM),
+    "le": ("%s<=%s", _LOGIC, _SUM, _SUM),
+    "eq": ("%s==%s", _LOGIC, _SUM, _SUM),
+    "pow": ("pow(%s,%s)", _ATOM, _LOGIC, _LOGIC),
+    **{name: (f"{name}(%s)", _ATOM, _LOGIC, _LOGIC) for name in ALL_UNARY_FUNCTIONS},
+    **{name: (f"{name}(%s,%s)", _ATOM, _LOGIC, _LOGIC) for name in ALL_BINARY_FUNCTIONS},
 }
-_SCALAR = {
+_SCALAR: dict[str, _Pattern] = {
     **_COMMON,
-    "and": "({} and {})",
-    "or": "({} or {})",
-    "not": "(not {})",
-    "if": "({1} if {0} else {2})",
+    "and": ("%s and %s", _LOGIC, _SUM, _SUM),
+    "or": ("%s or %s", _LOGIC, _SUM, _SUM),
+    "not": ("not %s", _LOGIC, _SUM, _SUM),
 }
-_ARRAY = {
+_ARRAY: dict[str, _Pattern] = {
     **_COMMON,
-    "div": "divide({},{})",
-    "and": "both({},{})",
-    "or": "either({},{})",
-    "not": "negate({})",
-    "if": "where({},{},{})",
+    "div": ("divide(%s,%s)", _ATOM, _LOGIC, _LOGIC),
+    "and": ("both(%s,%s)", _ATOM, _LOGIC, _LOGIC),
+    "or": ("either(%s,%s)", _ATOM, _LOGIC, _LOGIC),
+    "not": ("negate(%s)", _ATOM, _LOGIC, _LOGIC),
 }
 
-# Powers written with products and roots. In array code a plain float may reach 1/a too, so it is a call
-# there.
-_POWERS = {Fraction(2): "({0}*{0})", Fraction(3): "({0}*{0}*{0})", Fraction(1, 2): "sqrt({0})"}
+# Powers written with products and roots. In array code a plain float may reach 1/a too, so it is a call there.
+_POWERS = {
+    Fraction(2): ("{0}*{0}", _PRODUCT),
+    Fraction(3): ("{0}*{0}*{0}", _PRODUCT),
+    Fraction(1, 2): ("sqrt({0})", _ATOM),
+}
 _SCALAR_POWERS = {
     **_POWERS,
-    Fraction(-1): "(1.0/{0})",
-    Fraction(-2): "(1.0/({0}*{0}))",
-    Fraction(-1, 2): "(1.0/sqrt({0}))",
-    Fraction(3, 2): "({0}*sqrt({0}))",
+    Fraction(-1): ("1.0/{0}", _PRODUCT),
+    Fraction(-2): ("1.0/({0}*{0})", _PRODUCT),
+    Fraction(-1, 2): ("1.0/sqrt({0})", _PRODUCT),
+    Fraction(3, 2): ("{0}*sqrt({0})", _PRODUCT),
 }
 _REPEATING = frozenset({Fraction(2), Fraction(3), Fraction(-2), Fraction(3, 2)})
 
@@ -227,96 +233,120 @@ def _number(constant: object) -> str:
     return repr(value) if value >= 0 else f"({value!r})"
 
 
+_LEAVES = frozenset({"quantity", "literal", "const"})
+
+
+def _leaf(operation: object, value: object) -> str:
+    if operation == "quantity":
+        return f"q{value}"
+    return f"l{value}" if operation == "literal" else _number(value)
+
+
 class _Code:
     """The statements that compute the outputs of one tape."""
 
-    def __init__(self, tape: Tape, patterns: dict[str, str]) -> None:
+    def __init__(self, tape: Tape, patterns: dict[str, _Pattern]) -> None:
         self.tape = tape
         self.patterns = patterns
         self.powers = _SCALAR_POWERS if patterns is _SCALAR else _POWERS
         self.instructions: tuple[tuple[Any, ...], ...] = tape.instructions
         self.text: list[str] = [""] * len(self.instructions)
         self.depth = [0] * len(self.instructions)
+        self.tightness = [_ATOM] * len(self.instructions)
 
     def lines(self, result: Callable[[list[str]], str]) -> list[str]:
         """The statements, the last of them returning ``result(texts of the outputs)``."""
-        uses, order, guards = self._plan()
+        counts, order, guards = self._plan()
+        instructions, patterns = self.instructions, self.patterns
+        texts, depth, tightness = self.text, self.depth, self.tightness
         body: list[str] = []
         open_guards: tuple[tuple[int, bool], ...] = ()
         for i in order:
-            text = self._expression(i)
-            if self.depth[i] and (uses[i] > 1 or self.depth[i] > _DEEPEST):
-                name = f"t{i}"
+            instruction = instructions[i]
+            operation = instruction[0]
+            pattern = patterns.get(operation)
+            # The common cases come first and are written out: this loop is most of the time of generating.
+            if pattern is not None:
+                form, tight, first, second = pattern
+                a = instruction[1]
+                text = texts[a] if tightness[a] >= first else f"({texts[a]})"
+                deep = depth[a]
+                if len(instruction) == 3:
+                    b = instruction[2]
+                    text = form % (text, texts[b] if tightness[b] >= second else f"({texts[b]})")
+                    deep = depth[b] if depth[b] > deep else deep
+                else:
+                    text = form % text
+            elif operation in _LEAVES:
+                texts[i] = _leaf(operation, instruction[1])
+                continue
+            else:
+                text, tight = self._special(instruction)
+                deep = max([depth[j] for j in operands_of(instruction)])
+            if counts[i] > 1 or deep > _DEEPEST:
                 guard = guards.get(i, ())
                 if guard != open_guards:
                     body.extend(self._opening(open_guards, guard))
                     open_guards = guard
-                body.append(f"{' ' * len(guard)}{name}={text}")
-                text = name
-                self.depth[i] = 0
-            self.text[i] = text
-        body.append(f"return {result([self.text[i] for i in self.tape.outputs])}")
+                texts[i] = f"t{i}"
+                body.append(f"{' ' * len(guard)}t{i}={text}")
+            else:
+                texts[i] = text
+                depth[i] = deep + 1
+                tightness[i] = tight
+        body.append(f"return {result([texts[i] for i in self.tape.outputs])}")
         return body
 
-    def _expression(self, i: int) -> str:
-        instruction = self.instructions[i]
+    def _special(self, instruction: tuple[Any, ...]) -> tuple[str, int]:
+        """Text of a power, a unit's conversion or an ``if``, and how tightly it holds together."""
         operation = instruction[0]
-        text = self.text
-        if operation == "quantity":
-            return f"q{instruction[1]}"
-        if operation == "literal":
-            return f"l{instruction[1]}"
-        if operation == "const":
-            return _number(instruction[1])
+        a = self._bracketed(instruction[1])
         if operation == "power":
-            a, r = instruction[1:]
-            self.depth[i] = self.depth[a] + 1
-            pattern = self.powers.get(r)
-            return pattern.format(text[a]) if pattern else f"pow({text[a]},{_number(r)})"
+            r = instruction[2]
+            pattern, tight = self.powers.get(r, ("", _ATOM))
+            return (pattern.format(a) if pattern else f"pow({a},{_number(r)})"), tight
         if operation == "strip":
-            a, unit = instruction[1:]
-            self.depth[i] = self.depth[a] + 1
-            shifted = f"({text[a]}-{_number(unit.origin)})" if unit.origin else text[a]
-            return f"({shifted}/{_number(unit.factor)})"
+            unit = instruction[2]
+            shifted = f"({a}-{_number(unit.origin)})" if unit.origin else a
+            return f"{shifted}/{_number(unit.factor)}", _PRODUCT
         if operation == "attach":
-            a, unit = instruction[1:]
-            self.depth[i] = self.depth[a] + 1
-            scaled = f"({text[a]}*{_number(unit.factor)})"
-            return f"({scaled}+{_number(unit.origin)})" if unit.origin else scaled
-        used = operands_of(instruction)
-        self.depth[i] = 1 + max([self.depth[j] for j in used])
-        return self.patterns[operation].format(*[text[j] for j in used])
+            unit = instruction[2]
+            scaled = f"{a}*{_number(unit.factor)}"
+            return (f"{scaled}+{_number(unit.origin)}", _SUM) if unit.origin else (scaled, _PRODUCT)
+        first, second = self._bracketed(instruction[2]), self._bracketed(instruction[3])
+        if self.patterns is _SCALAR:
+            return f"{first} if {a} else {second}", _LOGIC
+        return f"where({a},{first},{second})", _ATOM
+
+    def _bracketed(self, i: int) -> str:
+        return self.text[i] if self.tightness[i] == _ATOM else f"({self.text[i]})"
 
     # --- what becomes a local variable, in which order, and under which conditions ------------------------
 
     def _plan(self) -> tuple[list[int], Sequence[int], dict[int, tuple[tuple[int, bool], ...]]]:
         instructions = self.instructions
-        wanted = needed(instructions, self.tape.outputs)
-        uses = [0] * len(instructions)
+        counts = uses(instructions, self.tape.outputs)
+        order = [i for i, count in enumerate(counts) if count]
         branching = False
-        for i in self.tape.outputs:
-            uses[i] += 1
-        for i, instruction in enumerate(instructions):
-            if not wanted[i]:
-                continue
-            operation = instruction[0]
-            branching = branching or operation in _BRANCHING
-            for j in operands_of(instruction):
-                uses[j] += 1
-            if operation == "power" and instruction[2] in _REPEATING:
-                uses[instruction[1]] += 1
+        for i in order:
+            operation = instructions[i][0]
+            if operation == "power":
+                if instructions[i][2] in _REPEATING:
+                    counts[instructions[i][1]] += 1
+            elif operation in _BRANCHING:
+                branching = True
         if not (branching and self.patterns is _SCALAR):
-            return uses, [i for i, needs in enumerate(wanted) if needs], {}
-        guards = _guards(instructions, self.tape.outputs, wanted)
+            return counts, order, {}
+        guards = _guards(instructions, self.tape.outputs, counts)
         for guard in guards.values():
             for condition, _ in guard:
-                uses[condition] += 1
+                counts[condition] += 1
         order = _order(instructions, self.tape.outputs, guards)
         rank = {i: n for n, i in enumerate(order)}
         nested = {
             i: tuple(sorted(guard, key=lambda pair: (rank[pair[0]], pair[1]))) for i, guard in guards.items()
         }
-        return uses, order, nested
+        return counts, order, nested
 
     def _opening(self, old: tuple[tuple[int, bool], ...], new: tuple[tuple[int, bool], ...]) -> list[str]:
         """The ``if`` lines that lead from the guards now open to those wanted."""
@@ -345,12 +375,12 @@ def _branches(instruction: tuple[Any, ...]) -> list[tuple[int, tuple[int, bool] 
 
 
 def _guards(
-    instructions: Sequence[tuple[Any, ...]], outputs: Sequence[int], wanted: list[bool]
+    instructions: Sequence[tuple[Any, ...]], outputs: Sequence[int], counts: list[int]
 ) -> dict[int, frozenset[tuple[int, bool]]]:
     """For each instruction needed, the conditions that hold whenever it is: common to all its uses."""
     guards: dict[int, frozenset[tuple[int, bool]]] = {i: frozenset() for i in outputs}
     for i in range(len(instructions) - 1, -1, -1):
-        if not wanted[i]:
+        if not counts[i]:
             continue
         own = guards[i]
         for j, branch in _branches(instructions[i]):

@@ -15,7 +15,7 @@ from fractions import Fraction
 from functools import lru_cache
 from typing import Any
 
-from eqsheet.model.simplify import Simplifier, needed
+from eqsheet.model.simplify import Simplifier, uses
 from eqsheet.model.tape import Tape, operands_of
 
 MEMORY = 1 << 14
@@ -111,7 +111,7 @@ def _path(tape: Tape, k: int) -> tuple[int, list[tuple[int, int]]] | None:
     if ("quantity", k) not in instructions or tape.outputs[0] == tape.outputs[1]:
         return None
     leaf = instructions.index(("quantity", k))
-    wanted = needed(instructions, tape.outputs)
+    wanted = uses(instructions, tape.outputs)
     steps: list[tuple[int, int]] = []
     at = leaf
     for i in range(leaf + 1, len(instructions)):

@@ -13,7 +13,7 @@ from operator import add, mul, sub, truediv
 from typing import Any
 
 from eqsheet.model.functions import ALL_BINARY_FUNCTIONS, ALL_UNARY_FUNCTIONS, UNARY, as_float
-from eqsheet.model.tape import Tape, operands_of
+from eqsheet.model.tape import Tape
 
 ZERO = Fraction(0)
 ONE = Fraction(1)
@@ -21,35 +21,39 @@ ONE = Fraction(1)
 # bound.
 _LARGEST_FOLDED_POWER = 16
 
-_NO_OPERANDS = frozenset({"quantity", "literal", "const"})
-_FIRST_OPERAND = frozenset({"neg", "power", "strip", "attach", "not", *ALL_UNARY_FUNCTIONS})
-_FIRST_TWO_OPERANDS = frozenset(
-    {"add", "sub", "mul", "div", "pow", "lt", "le", "eq", "and", "or", *ALL_BINARY_FUNCTIONS}
-)
+# Number of operands of each operation that are instructions; what follows them (a power, a unit) is not.
+ARITY: dict[Any, int] = {
+    **dict.fromkeys(("quantity", "literal", "const"), 0),
+    **dict.fromkeys(("neg", "power", "strip", "attach", "not", *ALL_UNARY_FUNCTIONS), 1),
+    **dict.fromkeys(("add", "sub", "mul", "div", "pow", "lt", "le", "eq", "and", "or"), 2),
+    **dict.fromkeys(ALL_BINARY_FUNCTIONS, 2),
+    "if": 3,
+}
 
 
 def renumbered(instruction: tuple[Any, ...], new: Sequence[int] | dict[int, int]) -> tuple[Any, ...]:
     """`instruction` with each operand i replaced by ``new[i]``; leaves are left alone."""
-    operation = instruction[0]
-    if operation in _FIRST_TWO_OPERANDS:
-        return (operation, new[instruction[1]], new[instruction[2]])
-    if operation in _FIRST_OPERAND:
-        return (operation, new[instruction[1]], *instruction[2:])
-    if operation in _NO_OPERANDS:
+    count = ARITY[instruction[0]]
+    if count == 2:
+        return (instruction[0], new[instruction[1]], new[instruction[2]])
+    if count == 1:
+        return (instruction[0], new[instruction[1]], *instruction[2:])
+    if count == 0:
         return instruction
-    return (operation, *(new[i] for i in instruction[1:]))
+    return (instruction[0], *[new[i] for i in instruction[1:]])
 
 
-def needed(instructions: Sequence[tuple[Any, ...]], outputs: Sequence[int]) -> list[bool]:
-    """For each instruction, whether one of `outputs` uses it, directly or not."""
-    wanted = [False] * len(instructions)
+def uses(instructions: Sequence[tuple[Any, ...]], outputs: Sequence[int]) -> list[int]:
+    """For each instruction, how often it is used by `outputs` and by what they need; 0 where it is not needed."""
+    counts = [0] * len(instructions)
     for i in outputs:
-        wanted[i] = True
+        counts[i] += 1
     for i in range(len(instructions) - 1, -1, -1):
-        if wanted[i]:
-            for j in operands_of(instructions[i]):
-                wanted[j] = True
-    return wanted
+        if counts[i]:
+            instruction = instructions[i]
+            for j in instruction[1 : 1 + ARITY[instruction[0]]]:
+                counts[j] += 1
+    return counts
 
 
 def prune(tape: Tape) -> tuple[Tape, tuple[int | None, ...]]:
@@ -68,8 +72,8 @@ def _kept(
 ) -> tuple[tuple[tuple[Any, ...], ...], dict[int, int]]:
     kept: list[tuple[Any, ...]] = []
     new: dict[int, int] = {}
-    for i, wanted in enumerate(needed(instructions, outputs)):
-        if wanted:
+    for i, count in enumerate(uses(instructions, outputs)):
+        if count:
             new[i] = len(kept)
             kept.append(renumbered(instructions[i], new))
     return tuple(kept), new
@@ -110,8 +114,14 @@ class Simplifier:
 
     def constant(self, value: Fraction | float) -> int:
         """Index of an exact constant."""
-        index = self.put("const", value)
-        self.constants[index] = value
+        # Hashing a fraction takes as long as all the rest here, so its parts are the key.
+        exact = isinstance(value, Fraction)
+        key = ("const", value.numerator, value.denominator) if exact else ("const", value)
+        index = self._index.get(key)
+        if index is None:
+            index = self._index[key] = len(self.instructions)
+            self.instructions.append(("const", value))
+            self.constants[index] = value
         return index
 
     def copy(
@@ -275,7 +285,12 @@ class Simplifier:
         if inner[0] == "neg" and r.denominator == 1:
             positive = self.power(inner[1], r)
             return positive if r.numerator % 2 == 0 else self.neg(positive)
-        return self.put("power", a, r)
+        key = ("power", a, r.numerator, r.denominator)
+        index = self._index.get(key)
+        if index is None:
+            index = self._index[key] = len(self.instructions)
+            self.instructions.append(("power", a, r))
+        return index
 
     def pow(self, a: int, b: int) -> int:
         """a to the power b"""

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from functools import lru_cache
 from typing import Any
 
-from eqsheet.model.simplify import Simplifier, needed, renumbered
+from eqsheet.model.simplify import Simplifier, renumbered, uses
 from eqsheet.model.tape import COMPARISONS, Formula, Tape, interned, operands_of
 
 MEMORY = 1 << 14
@@ -60,7 +60,7 @@ def conditions(tape: Tape) -> tuple[Condition, ...]:
     """All ``if`` instructions the outputs depend on, inner ones before outer ones."""
     found = []
     instructions: tuple[tuple[Any, ...], ...] = tape.instructions
-    wanted = needed(instructions, tape.outputs)
+    wanted = uses(instructions, tape.outputs)
     for i, instruction in enumerate(instructions):
         if wanted[i] and instruction[0] == "if":
             condition = instruction[1]
@@ -137,7 +137,7 @@ def _specialise(tape: Tape, branches: tuple[tuple[int, bool], ...]) -> Specialis
     for i in range(len(instructions)):
         stands_for[i] = stands_for[stands_for[i]]
     changed = [renumbered(instruction, stands_for) for instruction in instructions]
-    wanted = needed(changed, [stands_for[i] for i in tape.outputs])
+    wanted = uses(changed, [stands_for[i] for i in tape.outputs])
     quantities, literals = _leaves(changed, wanted, "quantity"), _leaves(changed, wanted, "literal")
     slots = {("quantity", k): slot for slot, k in enumerate(quantities)}
     slots |= {("literal", k): slot for slot, k in enumerate(literals)}
@@ -159,7 +159,7 @@ def _specialise(tape: Tape, branches: tuple[tuple[int, bool], ...]) -> Specialis
     return Specialised(interned(held), quantities, literals, numbers)
 
 
-def _leaves(instructions: list[tuple[Any, ...]], wanted: list[bool], kind: str) -> tuple[int, ...]:
+def _leaves(instructions: list[tuple[Any, ...]], wanted: list[int], kind: str) -> tuple[int, ...]:
     return tuple(sorted({x[1] for i, x in enumerate(instructions) if wanted[i] and x[0] == kind}))
 
 
