@@ -268,11 +268,14 @@ def _signed(text: str, sign: int) -> str:
 
 
 def start_note(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
-    """A note that names the unknowns started without a guess, where a start matters."""
+    """A note that names the unknowns started without a guess, where a start matters.
+
+    An unknown between bounds, or told by an equation from the starts of others, needs none and is not named.
+    """
     result = run.result
     if result is None or result.start is None or result.method in ("closed form", "linear"):
         return []
-    names = [system.names[run.unknowns[i]] for i in result.start.assumed]
+    names = [system.names[run.unknowns[i]] for i in result.start.blind]
     if not names:
         return []
     place = system.equations[run.equations[0]].place

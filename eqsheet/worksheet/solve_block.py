@@ -227,7 +227,7 @@ def _consistent(torn: TornBlock, start: Start) -> Start:
     magnitude = tuple(
         abs(v) if v != s and v != 0.0 else m for v, s, m in zip(values, start.values, start.magnitude)
     )
-    return Start(values, start.lower, start.upper, magnitude, start.assumed)
+    return Start(values, start.lower, start.upper, magnitude, start.assumed, start.blind)
 
 
 def _solve_torn(torn: TornBlock, problem: Problem, failed: Outcome | None, budget: Budget) -> Outcome | None:
@@ -313,7 +313,7 @@ def _started_at(start: Start, x: Vector) -> Start:
     """The same start at another point, kept inside the bounds."""
     inside = [min(max(v, low), high) for v, low, high in zip(x.tolist(), start.lower, start.upper)]
     values = tuple(v if math.isfinite(v) else s for v, s in zip(inside, start.values))
-    return Start(values, start.lower, start.upper, start.magnitude, start.assumed)
+    return Start(values, start.lower, start.upper, start.magnitude, start.assumed, start.blind)
 
 
 def _judged(

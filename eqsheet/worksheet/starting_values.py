@@ -35,7 +35,8 @@ _WIDE = 10.0
 class Start:
     """Start of one block, in SI, by position of its unknowns.
 
-    ``assumed`` holds the positions of unknowns without a guess of their own.
+    ``assumed`` holds the positions of unknowns without a guess of their own; ``blind`` those among them that
+    neither bounds on both sides nor an equation placed, so that they were started at a typical value.
     """
 
     values: tuple[float, ...]
@@ -43,6 +44,7 @@ class Start:
     upper: tuple[float, ...]
     magnitude: tuple[float, ...]
     assumed: tuple[int, ...]
+    blind: tuple[int, ...] = ()
 
 
 def starting_values(
@@ -65,6 +67,7 @@ def starting_values(
     """
     found: dict[int, float] = {}
     assumed = []
+    blind = []
     for position, quantity in enumerate(unknowns):
         if quantity in guesses.near:
             found[quantity] = guesses.near[quantity]
@@ -76,6 +79,7 @@ def starting_values(
     _propagate(unknowns, formulas, values, guesses, found)
     for position, quantity in enumerate(unknowns):
         if quantity not in found:
+            blind.append(position)
             found[quantity] = _inside(_typical(dimensions[quantity], position), guesses, quantity)
             # One seed may let the equations tell the others.
             _propagate(unknowns, formulas, values, guesses, found)
@@ -86,6 +90,7 @@ def starting_values(
         tuple(high for _, high in bounds),
         tuple(_magnitude(found[q], guesses, q, dimensions[q]) for q in unknowns),
         tuple(assumed),
+        tuple(blind),
     )
 
 
