@@ -53,9 +53,9 @@ def replaced_by(typed: Statement, statements: Iterable[Statement]) -> Statement 
         shared = [mine.index(identity) for identity in theirs if identity in mine]
         if not shared:
             continue
-        if isinstance(statement.node, Guess) and isinstance(typed.node, Guess):
-            if not set(theirs) <= set(mine):
-                continue
+        guesses = isinstance(statement.node, Guess) and isinstance(typed.node, Guess)
+        if guesses and not set(theirs) <= set(mine):
+            continue
         rank = (statement.off, min(shared))
         if best is None or rank < best[0]:
             best = (rank, statement)

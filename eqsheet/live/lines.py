@@ -36,6 +36,22 @@ class Edit:
         return Edit(self.start, self.new, self.old)
 
 
+def between(old: Sequence[str], new: Sequence[str]) -> Edit:
+    """The smallest single edit that makes `old` into `new`.
+
+    >>> between(("a", "b", "c"), ("a", "x", "y", "c"))
+    Edit(start=1, old=('b',), new=('x', 'y'))
+    """
+    shorter = min(len(old), len(new))
+    head = 0
+    while head < shorter and old[head] == new[head]:
+        head += 1
+    tail = 0
+    while tail < shorter - head and old[-1 - tail] == new[-1 - tail]:
+        tail += 1
+    return Edit(head, tuple(old[head : len(old) - tail]), tuple(new[head : len(new) - tail]))
+
+
 @dataclass(frozen=True, slots=True)
 class History:
     """Edits done and edits taken back, newest last."""

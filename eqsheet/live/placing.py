@@ -3,15 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from itertools import pairwise
 
 from eqsheet.diagnostics.source import Source
 from eqsheet.live.identity import replaced_by
 from eqsheet.live.lines import Edit
-from eqsheet.syntax.lines import split_comment
+from eqsheet.syntax.lines import logical_lines, split_comment
 from eqsheet.syntax.nodes import Document, Prose, Statement
 from eqsheet.syntax.parse import parse_statement
-
-_INDENT = "    "
 
 
 def placed(text: str, lines: Sequence[str], document: Document, section: str | None) -> Edit:
@@ -39,6 +38,24 @@ def placed(text: str, lines: Sequence[str], document: Document, section: str | N
     if text.startswith("##") and at > 0 and lines[at - 1].strip():
         new = ("", *new)
     return Edit(at, (), new)
+
+
+def pieces(text: str) -> list[str]:
+    """The statements and lines of prose in `text`, each by itself, groups with their heads.
+
+    >>> pieces("D = 5 mm  # bore\\n# a note\\nL = 2 m +\\n  3 m")
+    ['D = 5 mm  # bore', '# a note', 'L = 2 m +\\n  3 m']
+    """
+    lines = text.split("\n")
+    cut = logical_lines(Source("typed", text))
+    outermost = min((line.indent for line in cut.logical), default=0)
+    starts = {line.line - 1 for line in cut.logical if line.indent <= outermost}
+    inside = {line.line - 1 + k for line in cut.logical for k in range(1 + line.text.count("\n"))} - starts
+    starts.update(prose.line - 1 for prose in cut.prose if prose.line - 1 not in inside)
+    starts.discard(0)
+    edges = [0, *sorted(starts), len(lines)]
+    found = ["\n".join(lines[a:b]).rstrip() for a, b in pairwise(edges)]
+    return [piece for piece in found if piece.strip()]
 
 
 def span_of_lines(statement: Statement, lines: Sequence[str]) -> tuple[int, int]:
@@ -90,9 +107,7 @@ def _bounds(headings: Sequence[Prose], section: str, count: int) -> tuple[int, i
     return 0, count
 
 
-def _in_place_of(
-    text: str, typed: Statement, taken: Sequence[str], old: Statement
-) -> tuple[str, ...]:
+def _in_place_of(text: str, typed: Statement, taken: Sequence[str], old: Statement) -> tuple[str, ...]:
     """The typed lines with label, comment and indentation of the old statement, unless given anew."""
     indent = taken[0][: len(taken[0]) - len(taken[0].lstrip())]
     new = text.split("\n")
@@ -115,7 +130,6 @@ def _labelled(line: str, label: str, off: bool) -> str:
 
 def _commented(line: str, code: str, comment: str) -> str:
     """The line with the comment in the column where it stood, if there is room."""
-    column = len(code)
-    line, own = split_comment(line) if "#" in line else (line, None)
-    gap = max(column - len(line.rstrip()), 1 if code != code.rstrip() else 0)
-    return f"{line.rstrip()}{' ' * gap}#{comment}"
+    new = split_comment(line)[0].rstrip()
+    gap = max(len(code) - len(new), 1 if code != code.rstrip() else 0)
+    return f"{new}{' ' * gap}#{comment}"
