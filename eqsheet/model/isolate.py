@@ -266,12 +266,14 @@ def _of_hypot(w: Simplifier, b: _Branch, other: int) -> list[_Branch]:
 def _of_angle_height(w: Simplifier, b: _Branch, y: int, x: int) -> list[_Branch]:
     # Genuine where the angle lies on the side of the y axis that x is on.
     same_side = w.put("lt", w.zero, w.mul(w.function("cos", b.target), x))
-    return [b.to(w.mul(x, w.function("tan", b.target)), same_side)]
+    angle = _within(w, -math.pi, b.target, math.pi)
+    return [b.to(w.mul(x, w.function("tan", b.target)), angle, same_side)]
 
 
 def _of_angle_width(w: Simplifier, b: _Branch, y: int, x: int) -> list[_Branch]:
     same_side = w.put("lt", w.zero, w.mul(w.function("sin", b.target), y))
-    return [b.to(w.div(y, w.function("tan", b.target)), same_side)]
+    angle = _within(w, -math.pi, b.target, math.pi)
+    return [b.to(w.div(y, w.function("tan", b.target)), angle, same_side)]
 
 
 _INVERSES: dict[tuple[str, int], _Inverse] = {
