@@ -187,7 +187,8 @@ def _culprit(
     index, breach = min(found.breaches.items())
     reader = readers[index]
     causes = {q: found.reasons[q][0] for q in reader.formula.quantities if q in found.reasons}
-    odd, smallest = index, math.inf
+    own = [literal.value for literal in reader.formula.literals if literal.kind == "reading"]
+    odd, smallest = index, min(own, default=math.inf)
     for quantity, cause in causes.items():
         written = readings_written(readers[cause].formula)
         if written and max(written) < smallest and _would_fit_as_difference(reader, breach, found, quantity):

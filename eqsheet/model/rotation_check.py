@@ -43,7 +43,7 @@ def rotation_diagnostics(
     found: list[Diagnostic] = []
     for formula in formulas:
         flavours = {slot: written[q][0] for slot, q in enumerate(formula.quantities) if q in written}
-        for left, right in _meetings(formula, flavours, dimensions):
+        for left, right, turning_first in _meetings(formula, flavours, dimensions):
             statement = statements[formula.statement]
             labels = [Label(statement.span(*formula.places[i])) for i in (right, left)]
             for quantity in formula.quantities:
@@ -51,11 +51,12 @@ def rotation_diagnostics(
                     flavour, index, place = written[quantity]
                     said = f"`{names[quantity]}` is given in {flavour} here"
                     labels.append(Label(statements[formulas[index].statement].span(*place), said))
+            units = (TURNS, CYCLES) if turning_first else (CYCLES, TURNS)
             texts = [statement.line.text[slice(*formula.places[i])] for i in (left, right)]
             found.append(
                 warning(
                     CODE,
-                    f"`{texts[0]}` and `{texts[1]}` meet, one in rpm and the other in Hz",
+                    f"`{texts[0]}` is in {units[0]}, but `{texts[1]}` in {units[1]}",
                     *labels,
                     notes=("1 rpm is 2*pi/60 rad/s and 1 Hz is 1/s: both are 1/s, but a turn counts 2*pi",),
                     help="multiply the frequency by 2*pi, or give both in the same unit",
@@ -72,8 +73,8 @@ def _unit_flavour(unit: str) -> str:
 
 def _meetings(
     formula: Formula, flavours: dict[int, str], dimensions: Sequence[Dimension | None]
-) -> list[tuple[int, int]]:
-    """Pairs of instructions that must be alike, one in rpm and one in Hz."""
+) -> list[tuple[int, int, bool]]:
+    """Pairs of instructions that must be alike, one in rpm and one in Hz; true where the first is in rpm."""
     if not flavours and not any(_unit_flavour(literal.unit) for literal in formula.literals):
         return []
     forms = rules_of(formula.tape, formula.alike).forms
@@ -112,4 +113,4 @@ def _meetings(
         taste.append(here)
         turned.append(pi)
         assert len(taste) == index + 1
-    return [(a, b) for a, b in pairs if {taste[a], taste[b]} == {TURNS, CYCLES}]
+    return [(a, b, taste[a] == TURNS) for a, b in pairs if {taste[a], taste[b]} == {TURNS, CYCLES}]
