@@ -39,12 +39,23 @@ class Unit:
 
     def to_si(self, value: float) -> float:
         """SI value of `value` read in this unit, origin included."""
-        return value * self.factor + self.origin
+        share = self._share
+        return (value / share if share else value * self.factor) + self.origin
 
     def from_si(self, value: float) -> float:
         """Value in this unit of the SI value of a reading."""
-        return (value - self.origin) / self.factor
+        return self.difference_from_si(value - self.origin)
 
     def difference_from_si(self, value: float) -> float:
         """Value in this unit of the SI value of a difference."""
-        return value / self.factor
+        share = self._share
+        return value * share if share else value / self.factor
+
+    @property
+    def _share(self) -> float:
+        """How many of it make the SI unit, where that is a whole number above 1; else 0.
+
+        57 % is the double nearest to 0.57 when divided by 100, and not when multiplied by 0.01.
+        """
+        whole = float(round(1.0 / self.factor)) if self.factor < 1.0 else 0.0
+        return whole if whole and 1.0 / whole == self.factor else 0.0
