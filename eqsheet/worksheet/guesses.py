@@ -37,7 +37,7 @@ def work_out_guesses(
     Parameters
     ----------
     known_values : mapping of quantity number to SI value
-        All a guess may use.
+        All a guess may use: knowns, and what follows from them line by line.
     """
     by_role: dict[str, dict[int, float]] = {"near": {}, "lower": {}, "upper": {}}
     places: dict[tuple[int, str], Place] = {}
@@ -71,7 +71,7 @@ def _values(
                 "guess-not-known",
                 f"the guess uses {quoted(sorted(set(unknown)))}, which {'is' if len(unknown) == 1 else 'are'} not known",
                 here,
-                help="a guess may use knowns only",
+                help="a guess may use knowns, and what follows from them line by line",
             )
         )
         return ()

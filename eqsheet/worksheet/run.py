@@ -14,6 +14,7 @@ from eqsheet.solve.trail import Budget
 from eqsheet.structure.verdict import Conflict
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
+from eqsheet.worksheet.follow_from_knowns import follow_from_knowns
 from eqsheet.worksheet.guesses import Guesses, work_out_guesses
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
@@ -73,7 +74,7 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
     """
     solve = solve_equations if memory is None else memory.solve
     system = prepared.system
-    guesses, found = work_out_guesses(system, prepared.known_values)
+    guesses, found = work_out_guesses(system, follow_from_knowns(prepared))
     diagnostics = list(found)
     count = len(system.names)
     values = [math.nan] * count
