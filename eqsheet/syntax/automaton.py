@@ -48,6 +48,14 @@ _ENDS_OF_OPERANDS = _words("NAME NUMBER SIGNED_NUMBER TEXT UNIT PATTERN RPAR RSQ
 _BLANK = r"\s*(?:#[^\n]*\s*)*"
 
 
+_blank_match = re.compile(_BLANK).match
+
+
+def _end_of_blank(text: str, position: int) -> int:
+    blank = _blank_match(text, position)
+    return blank.end() if blank else position
+
+
 class _Scanner(NamedTuple):
     start: re.Pattern[str]
     operand: re.Pattern[str]
@@ -119,7 +127,11 @@ class Automaton:
         self._jumps: dict[tuple[int, str, str], int] = {}
 
     def run(self, text: str) -> Any:
-        """The value of the statement `text`.
+        """The value of the statement `text`; see `read`."""
+        return self.read(text)[0]
+
+    def read(self, text: str) -> tuple[Any, list[tuple[str, int, int]]]:
+        """The value of the statement `text`, and its tokens (terminal, start, end).
 
         Raises
         ------
@@ -143,11 +155,11 @@ class Automaton:
             if found is not None:
                 terminal: str = found.lastgroup  # type: ignore[assignment]  # every alternative is a named group
                 start, end = found.span(terminal)
-            elif position == length:
-                terminal, start, end = "$END", length, length
             else:
-                blank = re.compile(_BLANK).match(text, position)
-                raise self._unexpected(blank.end() if blank else position, read)
+                terminal = "$END"
+                start = end = _end_of_blank(text, position)
+                if end != length:
+                    raise self._unexpected(end, read)
             while True:
                 move = moves[state].get(terminal)
                 if move.__class__ is tuple:
@@ -162,7 +174,7 @@ class Automaton:
                     state = jump
                     states.append(state)
                     if state == self._last:
-                        return values[-1]
+                        return values[-1], read
                 elif move is None:
                     raise self._unexpected(start, read)
                 else:

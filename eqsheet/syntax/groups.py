@@ -84,7 +84,7 @@ class _Grouping:
             self._next += 1
             section = self._section_at(line.line)
             if parsed is None:
-                may_hold_group = self._skip_group_of_broken(line, off, depth)
+                may_hold_group = self._skip_group_of_broken(line)
                 continue
             may_hold_group = False
             body = self._body(line, parsed, off or parsed.off, depth)
@@ -141,6 +141,7 @@ class _Grouping:
                     help="write the inner groups as templates",
                 )
             )
+            self._skip_group(line)
             return ()
         return self._table(line, off) if table else self.group(below, off, depth + 1)
 
@@ -166,14 +167,17 @@ class _Grouping:
                 )
         return tuple(rows)
 
-    def _skip_group_of_broken(self, line: LogicalLine, off: bool, depth: int) -> bool:
+    def _skip_group_of_broken(self, line: LogicalLine) -> bool:
         """Passes over the group of a broken head; whether the broken line might be one."""
         below = self._indent_below(line)
         if below is None or not (line.text.endswith(":") or _BROKEN_HEAD.match(line.text)):
             return True
-        while self._next < len(self._lines) and self._lines[self._next].line.indent > line.indent:
-            self._next += 1
+        self._skip_group(line)
         return False
+
+    def _skip_group(self, head: LogicalLine) -> None:
+        while self._next < len(self._lines) and self._lines[self._next].line.indent > head.indent:
+            self._next += 1
 
     def _place(self, line: LogicalLine, start: int, end: int) -> Span:
         return Span(self._source, line.offset + start, line.offset + end)

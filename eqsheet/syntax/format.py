@@ -1,0 +1,124 @@
+"""Worksheets in canonical layout: same meaning, same comments, even spacing."""
+
+from __future__ import annotations
+
+from eqsheet.diagnostics.source import Source
+from eqsheet.syntax.lines import Lines, indentation, logical_lines
+from eqsheet.syntax.meaning import same_meaning
+from eqsheet.syntax.nodes import LogicalLine
+from eqsheet.syntax.parse import parse_document
+from eqsheet.syntax.slip import Slip, Unexpected
+from eqsheet.syntax.spacing import spaced
+
+INDENT = 4
+_MOST_BLANK_LINES = 2
+
+# Where these are found, the indentation does not say what is meant, and is left alone.
+_UNSURE = frozenset(("stray-indentation", "mixed-indentation", "nested-too-deeply"))
+
+
+def format_document(source: Source) -> str:
+    """The text of `source` in canonical layout, line ends as ``\\n``.
+
+    One blank round ``=``, comparisons, ``+`` and ``-``; none round ``^``; round ``*`` and ``/`` as the author
+    chose, both sides alike; four spaces for each level; at most two blank lines together; two spaces before an
+    end comment. Line breaks, prose, the columns of tables and broken statements stay as they are.
+
+    The result is parsed and compared; should it differ in meaning, the text is given back unchanged.
+
+    >>> format_document(Source("a", "x=2*y   #twice\\n\\n\\n\\n\\ny  = 3mm"))
+    'x = 2*y  # twice\\n\\n\\ny = 3 mm\\n'
+    """
+    document, diagnostics = parse_document(source)
+    keep = any(diagnostic.code in _UNSURE for diagnostic in diagnostics)
+    text = laid_out(source.text, logical_lines(source), keep)
+    again, found = parse_document(Source(source.name, text))
+    if len(found) != len(diagnostics) or not same_meaning(document, again):
+        return source.text
+    return text
+
+
+def laid_out(text: str, lines: Lines, keep_indentation: bool) -> str:
+    """`text`, cut up as `lines`, in canonical layout, without the check that its meaning is kept."""
+    physical = text.split("\n")
+    indents = _indents(lines, keep_indentation)
+    result: list[str] = []
+    at = 0
+    for number, line in enumerate(lines.logical):
+        result += _prose(physical[at : line.line - 1], indents, lines, number)
+        height = line.text.count("\n") + 1
+        at = line.line - 1 + height
+        taken = physical[line.line - 1 : at]
+        result += _statement(line, taken, indents[number], number in lines.table_rows)
+    result += _prose(physical[at:], indents, lines, len(lines.logical))
+    return _few_blank_lines(result)
+
+
+def _statement(line: LogicalLine, taken: list[str], indent: int, row: bool) -> list[str]:
+    blank = " " * indent
+    comment = f"  # {line.comment}" if line.comment else ""
+    if row:
+        return [(blank + line.text + comment).rstrip()]
+    try:
+        text = spaced(line.text, blank + " " * INDENT)
+    except (Slip, Unexpected):
+        return [blank + taken[0].lstrip(), *taken[1:]]
+    return [part.rstrip() for part in (blank + text + comment).split("\n")]
+
+
+def _indents(lines: Lines, keep: bool) -> list[int]:
+    """Indentation of each logical line: four for each level, rows of a table as they stand to one another."""
+    if keep:
+        return [line.indent for line in lines.logical]
+    indents: list[int] = []
+    levels: list[int] = []
+    for number, line in enumerate(lines.logical):
+        if number in lines.table_rows:
+            indents.append(line.indent)
+            continue
+        while levels and line.indent < levels[-1]:
+            levels.pop()
+        if not levels or line.indent > levels[-1]:
+            levels.append(line.indent)
+        indents.append(INDENT * (len(levels) - 1))
+    _move_tables(lines, indents)
+    return indents
+
+
+def _move_tables(lines: Lines, indents: list[int]) -> None:
+    rows = sorted(lines.table_rows)
+    while rows:
+        first = last = rows[0]
+        while last + 1 in lines.table_rows:
+            last += 1
+        leftmost = min(indents[first : last + 1])
+        head = indents[first - 1]
+        for row in range(first, last + 1):
+            indents[row] += head + INDENT - leftmost
+        rows = [row for row in rows if row > last]
+
+
+def _prose(block: list[str], indents: list[int], lines: Lines, following: int) -> list[str]:
+    """Comments and blank lines before the logical line `following`, indented like the line they go with."""
+    neighbours = [number for number in (following, following - 1) if 0 <= number < len(indents)]
+    result = []
+    for line in block:
+        stripped = line.strip()
+        if not stripped:
+            result.append("")
+            continue
+        written = indentation(line)
+        alike = [indents[n] for n in neighbours if lines.logical[n].indent == written]
+        indent = alike[0] if alike else min((indents[n] for n in neighbours), default=0)
+        result.append(" " * (indent if written or alike else 0) + stripped)
+    return result
+
+
+def _few_blank_lines(lines: list[str]) -> str:
+    kept: list[str] = []
+    for line in lines:
+        if line or (kept and any(kept[-_MOST_BLANK_LINES:])):
+            kept.append(line)
+    while kept and not kept[-1]:
+        kept.pop()
+    return "\n".join(kept) + "\n" if kept else ""
