@@ -14,6 +14,9 @@ from eqsheet.model.rotation_check import rotation_diagnostics
 from eqsheet.model.tape import Formula
 from eqsheet.syntax.nodes import Statement
 
+#: The quantity that gauge pressures stand on, where the worksheet sets it.
+AMBIENT = "ambient"
+
 
 @dataclass(frozen=True, slots=True)
 class UnitCheck:
@@ -45,7 +48,8 @@ def check_units(
     """
     dimensions = infer_dimensions(formulas, len(names), minor=minor)
     clashing = {clash.formula for clash in dimensions.clashes}
-    kinds = infer_kinds(formulas, dimensions.dimensions, minor, clashing)
+    ambient = [number for number, name in enumerate(names) if name == AMBIENT]
+    kinds = infer_kinds(formulas, dimensions.dimensions, minor, clashing, ambient)
     diagnostics = (
         *dimension_diagnostics(dimensions, formulas, statements, names),
         *kind_diagnostics(kinds, formulas, statements, names),

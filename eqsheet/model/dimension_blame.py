@@ -1,8 +1,9 @@
 """Which formula a contradiction of dimensions is blamed on, and where in it the guilty text is.
 
-A contradiction is a set of formulas that cannot all hold. Each is tried as the culprit: the one whose removal
+A contradiction is a set of statements that cannot all hold. Each is tried as the culprit: the one whose removal
 leaves the fewest contradictions in the whole worksheet is it, so a known with a slip in its unit is found by
-the several equations that agree against it. Ties go to formulas that state no physics, then to equations
+the several equations that agree against it. Next, the one is preferred without which the quantities have usual
+dimensions: a stress, not a force times an area. Ties go to formulas that state no physics, then to equations
 before knowns (a unit was written on purpose), then to formulas that a usual slip explains, then to those
 where a plain number is wanted.
 """
@@ -12,6 +13,7 @@ from __future__ import annotations
 from collections.abc import Collection
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import cache
 from typing import TypeAlias
 
 from eqsheet.model.dimension_elimination import Elimination
@@ -25,6 +27,7 @@ from eqsheet.model.dimension_propagation import (
 from eqsheet.model.dimension_rules import KEEPS, LIKE, Demand, Exponent, Form
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
+from eqsheet.units.dimension_names import dimension_word
 
 Place: TypeAlias = tuple[int, int]
 
@@ -33,6 +36,8 @@ Place: TypeAlias = tuple[int, int]
 LARGEST_EFFORT = 600_000
 
 GRAVITY = Dimension.of({"m": 1, "s": -2})
+#: Has a name, but turns up more often where a length was forgotten.
+PER_LENGTH = Dimension.of({"m": -1})
 
 #: Powers a quantity may be off by in a slip: forgotten, once too many, or squared where it should not be.
 SLIPS = (1, -1, 2, -2)
@@ -111,12 +116,14 @@ def choose_culprit(
     """The formula of the first contradiction in `found` that is best set aside."""
     best = found.broken[0][0]
     best_rank: tuple[int, ...] | None = None
+    touched = {q for index in found.conflict for q in lines.formulas[index].quantities}
     for index in found.conflict if len(found.conflict) > 1 else ():
         if lines.visits > LARGEST_EFFORT:
             break
-        without = propagate_without(lines, found, index, set_aside)
+        without = propagate_without(lines, found, lines.siblings(index), set_aside)
         rank = (
             len(without.broken),
+            sum(_oddness(lines.dimensions[n]) for q in touched if (n := without.state[q]) != UNKNOWN),
             index not in minor,
             len(lines.formulas[index].quantities) <= 1,
             not _slip_explains(lines, without, index),
@@ -127,6 +134,16 @@ def choose_culprit(
         if best_rank is None or rank < best_rank:
             best, best_rank = index, rank
     return best
+
+
+@cache
+def _oddness(dimension: Dimension) -> int:
+    """How unlikely a quantity of the dimension is: roots of units more than products without a name."""
+    if any(power.denominator > 1 for _, power in dimension):
+        return 4
+    if dimension == DIMENSIONLESS or dimension_word(dimension):
+        return 1 if dimension == PER_LENGTH else 0
+    return 2
 
 
 def _broken_demands(lines: Worklines, without: Inference, index: int) -> list[tuple[Demand, Dimension]]:

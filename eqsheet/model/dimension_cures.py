@@ -37,7 +37,8 @@ def cure_for(clash: Clash, formula: Formula, result: DimensionResult, names: Seq
         return f"it would fit with {' or with '.join(opposite)} in `{text[slice(*clash.against)]}`"
     if clash.against is None and clash.expected == DIMENSIONLESS:
         return f"divide `{guilty}` by a quantity or value that is {described(clash.excess)} too"
-    return _factor(guilty, missing, result, names)
+    alone = len(clash.guilty) == 1 and clash.guilty[0].power == 1
+    return _factor(guilty, missing, result, names, alone)
 
 
 def _other_power(part: Part, missing: Dimension, names: Sequence[str]) -> str:
@@ -76,10 +77,13 @@ def _unit_for_literal(guilty: str, expected: Dimension, found: Dimension | None)
     if found == DIMENSIONLESS:
         return f"give it a unit: `{guilty} {unit}`"
     word = dimension_word(expected)
-    return f"give it in a unit of {word}, such as {unit}" if word else f"give it in {unit}"
+    return f"give it in a unit of {word}, such as {unit}" if word else ""
 
 
-def _factor(guilty: str, missing: Dimension, result: DimensionResult, names: Sequence[str]) -> str:
+def _factor(
+    guilty: str, missing: Dimension, result: DimensionResult, names: Sequence[str], alone: bool
+) -> str:
+    """Which quantity would make up for what is missing; for a name alone nothing is said if none would."""
     fitting = [names[q] for q, dimension in enumerate(result.dimensions) if dimension == missing]
     inverse = [
         names[q] for q, dimension in enumerate(result.dimensions) if dimension == DIMENSIONLESS / missing
@@ -89,7 +93,7 @@ def _factor(guilty: str, missing: Dimension, result: DimensionResult, names: Seq
         return f"{sentence}, which {_listed(fitting)} would be"
     if 1 <= len(inverse) <= MOST_NAMED:
         return f"{sentence}; division by {_listed(inverse)} would mend that"
-    return sentence
+    return "" if alone else sentence
 
 
 def _listed(names: Sequence[str]) -> str:

@@ -76,6 +76,7 @@ class Worklines:
         self.rules: list[TapeRules] = []
         self.shapes: list[int] = []
         self.users: list[list[int]] = [[] for _ in range(quantities)]
+        self._of_statement: dict[int, list[int]] = {}
         rules_of_tapes: dict[tuple[int, tuple[tuple[int, int], ...]], tuple[int, TapeRules]] = {}
         for index, formula in enumerate(formulas):
             # The tape's identity saves hashing all its instructions again for each formula that shares it.
@@ -88,6 +89,11 @@ class Worklines:
             self.shapes.append(self._shapes.setdefault(shape, len(self._shapes)))
             for quantity in formula.quantities:
                 self.users[quantity].append(index)
+            self._of_statement.setdefault(formula.statement, []).append(index)
+
+    def siblings(self, index: int) -> list[int]:
+        """All formulas of the statement that formula `index` comes from: they stand and fall together."""
+        return self._of_statement[self.formulas[index].statement]
 
     def number(self, dimension: Dimension) -> int:
         """Number of the dimension; comparing numbers is much faster than comparing dimensions."""
@@ -194,27 +200,30 @@ def propagate(lines: Worklines, known: Mapping[int, Dimension], without: Collect
 
 
 def propagate_without(
-    lines: Worklines, found: Inference, index: int, set_aside: Collection[int]
+    lines: Worklines, found: Inference, removed: Collection[int], set_aside: Collection[int]
 ) -> Inference:
-    """`found` as it would be without the formula `index` too; only what hangs on it is worked out again."""
-    lost = _hanging_on(lines, found, index)
+    """`found` as it would be without the formulas `removed` too; only what hangs on them is worked out again."""
+    lost = _hanging_on(lines, found, removed)
     lost.update(found.fixed_together)
     again = Inference(list(found.state))
     for quantity in lost:
         again.state[quantity] = UNKNOWN
     users = {user for quantity in lost for user in lines.users[quantity]}
     broken = {formula for formula, _ in found.broken}
-    again.broken = [pair for pair in found.broken if pair[0] not in users and pair[0] != index]
-    again.open = {formula: demands for formula, demands in found.open.items() if formula not in users}
-    again.open.pop(index, None)
-    left_out = {*set_aside, index, *(broken - users)}
+    again.broken = [pair for pair in found.broken if pair[0] not in users and pair[0] not in removed]
+    again.open = {
+        formula: demands
+        for formula, demands in found.open.items()
+        if formula not in users and formula not in removed
+    }
+    left_out = {*set_aside, *removed, *(broken - users)}
     _finish(lines, again, sorted(users), left_out)
     return again
 
 
-def _hanging_on(lines: Worklines, found: Inference, index: int) -> set[int]:
-    """Quantities whose dimensions were worked out by way of formula `index`."""
-    lost = [q for q in lines.formulas[index].quantities if _reason_is(found, q, index)]
+def _hanging_on(lines: Worklines, found: Inference, removed: Collection[int]) -> set[int]:
+    """Quantities whose dimensions were worked out by way of the formulas `removed`."""
+    lost = [q for index in removed for q in lines.formulas[index].quantities if _reason_is(found, q, index)]
     seen = set(lost)
     for quantity in lost:
         for user in lines.users[quantity]:

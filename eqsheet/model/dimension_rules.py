@@ -176,12 +176,12 @@ class _Reader:
         if rule is not None:
             return rule(self, instruction, owner)
         if operation in LIKE:
-            return self.like(instruction[1], instruction[2], LIKE[operation], owner)  # type: ignore[arg-type]  # operands are indices
+            return self.like(instruction[1], instruction[2], LIKE[operation], owner)
         if operation in LIKE_TO_NONE:
-            self.like(instruction[1], instruction[2], LIKE_TO_NONE[operation], owner)  # type: ignore[arg-type]  # operands are indices
+            self.like(instruction[1], instruction[2], LIKE_TO_NONE[operation], owner)
             return PLAIN
         if operation in OF_NUMBERS:
-            self.has(instruction[1], DIMENSIONLESS, operation, owner)  # type: ignore[arg-type]  # operand is an index
+            self.has(instruction[1], DIMENSIONLESS, operation, owner)
             return PLAIN
         if operation in KEEPS:
             return self.form(instruction[1])
@@ -237,7 +237,7 @@ def _pow(reader: _Reader, instruction: Instruction, owner: int) -> Form:
 
 
 def _if(reader: _Reader, instruction: Instruction, owner: int) -> Form | None:
-    return reader.like(instruction[2], instruction[3], "if", owner)  # type: ignore[arg-type]  # operands are indices
+    return reader.like(instruction[2], instruction[3], "if", owner)
 
 
 def _strip(reader: _Reader, instruction: Instruction, owner: int) -> Form:

@@ -88,16 +88,18 @@ def infer_dimensions(
     """
     given = dict(known or {})
     lines = Worklines(formulas, quantities)
-    set_aside: list[int] = []
+    blamed: list[int] = []
+    set_aside: set[int] = set()
     found = propagate(lines, given)
     while found.broken:
         if lines.visits > LARGEST_EFFORT:
-            set_aside.extend(index for index, _ in found.broken)
+            blamed.extend(index for index, _ in found.broken)
         else:
-            set_aside.append(choose_culprit(lines, found, frozenset(set_aside), frozenset(minor)))
+            blamed.append(choose_culprit(lines, found, frozenset(set_aside), frozenset(minor)))
+        set_aside = {sibling for index in blamed for sibling in lines.siblings(index)}
         found = propagate(lines, given, set_aside)
-    if len(set_aside) > 1 and lines.visits <= LARGEST_EFFORT:
-        found = _take_back(lines, given, set_aside, found)
+    if len(blamed) > 1 and lines.visits <= LARGEST_EFFORT:
+        found = _take_back(lines, given, blamed, found)
     origins = origins_of(lines, given, found)
     _, open_ones = found.elimination.settled()
     links = tuple(
@@ -108,18 +110,18 @@ def infer_dimensions(
         for quantity, parts in sorted(open_ones.items())
     )
     dimensions = tuple(lines.dimensions[n] if n != UNKNOWN else None for n in found.state)
-    clashes = [describe_clash(lines, found, origins, index) for index in sorted(set_aside)]
+    clashes = [describe_clash(lines, found, origins, index) for index in sorted(blamed)]
     return DimensionResult(dimensions, origins, tuple(c for c in clashes if c is not None), links)
 
 
 def _take_back(
-    lines: Worklines, given: Mapping[int, Dimension], set_aside: list[int], found: Inference
+    lines: Worklines, given: Mapping[int, Dimension], blamed: list[int], found: Inference
 ) -> Inference:
-    """Take back formulas that fit after all, now that others are set aside; changes `set_aside`."""
-    for index in sorted(set_aside):
-        rest = [other for other in set_aside if other != index]
-        again = propagate(lines, given, rest)
+    """Take back formulas that fit after all, now that others are set aside; changes `blamed`."""
+    for index in sorted(blamed):
+        rest = [other for other in blamed if other != index]
+        again = propagate(lines, given, {sibling for other in rest for sibling in lines.siblings(other)})
         if not again.broken:
-            set_aside.remove(index)
+            blamed.remove(index)
             found = again
     return found

@@ -95,6 +95,7 @@ def infer_kinds(
     dimensions: Sequence[Dimension | None],
     minor: Collection[int] = (),
     without: Collection[int] = (),
+    origins_of_gauge: Collection[int] = (),
 ) -> KindResult:
     """Which temperatures and pressures are readings and which are differences.
 
@@ -106,6 +107,8 @@ def infer_kinds(
         By quantity, as inferred.
     without
         Formulas to leave out, whose dimensions clash.
+    origins_of_gauge
+        Quantities that hold the pressure gauge readings stand on, which they include already.
     """
     readers: dict[int, KindReader] = {}
     users: dict[int, list[int]] = {}
@@ -130,7 +133,7 @@ def infer_kinds(
     for quantity, (index, agreement) in found.reasons.items():
         origins[quantity] = Origin(index, _witness(formulas[index], agreement, quantity))
     misuses = [_misuse(readers[index], index, found, origins, dimensions) for index in sorted(set_aside)]
-    misuses.extend(_doubled_offsets(readers, found, origins, set_aside))
+    misuses.extend(_doubled_offsets(readers, found, origins, set_aside, frozenset(origins_of_gauge)))
     kinds = tuple(
         PLAIN_KIND if not apart[q] else KIND_WORDS[found.kinds[q]] if q in found.kinds else UNKNOWN_KIND
         for q in range(len(dimensions))
@@ -333,41 +336,42 @@ def _terms(reader: KindReader, index: int) -> list[int]:
 
 
 def _doubled_offsets(
-    readers: dict[int, KindReader], found: _Pass, origins: Sequence[Origin | None], set_aside: set[int]
+    readers: dict[int, KindReader],
+    found: _Pass,
+    origins: Sequence[Origin | None],
+    set_aside: set[int],
+    origins_of_gauge: frozenset[int],
 ) -> list[Misuse]:
     """Sums such as ``T + 273.15 K`` with T a reading, which is kept in kelvin already."""
     misuses: list[Misuse] = []
     for index, reader in readers.items():
-        if index in set_aside:
+        additions = [operands for operation, *operands in reader.instructions if operation == "add"]
+        if index in set_aside or not additions:
             continue
         formula = reader.formula
         now = {slot: found.kinds[q] for slot, q in enumerate(formula.quantities) if q in found.kinds}
         weights = reader.weights(now)
-        for operation, *operands in reader.instructions:
-            if operation != "add":
-                continue
-            for literal_at, other in (operands, operands[::-1]):
-                assert isinstance(literal_at, int) and isinstance(other, int)
-                leaf, *slots = reader.instructions[literal_at]
-                if leaf != "literal" or not isinstance(slots[0], int):
-                    continue
-                literal = formula.literals[slots[0]]
-                if literal.kind == "reading" or not _is_reading(weights[other]):
-                    continue
-                if not _is_offset(literal.value, literal.dimension):
+        for operands in additions:
+            for offset, other in (operands, operands[::-1]):
+                if not _is_reading(weights[other]) or not _is_offset(reader, offset, origins_of_gauge):
                     continue
                 parts = tuple(
                     (formula.quantities[slot], now[slot], origins[formula.quantities[slot]])
                     for slot in sorted(_slots_in(reader, {other}))
                     if slot in now
                 )
-                place = formula.places[literal_at]
-                misuses.append(
-                    Misuse("offset", index, place, formula.places[other], parts, slots[0], literal.dimension)
-                )
+                place, against = formula.places[offset], formula.places[other]
+                misuses.append(Misuse("offset", index, place, against, parts, -1, reader.dimensions[offset]))
     return misuses
 
 
-def _is_offset(value: float, dimension: Dimension) -> bool:
-    offsets = TEMPERATURE_OFFSETS if dimension == TEMPERATURE else PRESSURE_OFFSETS
-    return any(low <= value <= high for low, high in offsets)
+def _is_offset(reader: KindReader, index: int, origins_of_gauge: frozenset[int]) -> bool:
+    """Whether the operand is what makes a reading absolute: 273.15 K, one atmosphere, the ambient pressure."""
+    operation, *(slot, *_) = reader.instructions[index]
+    if operation == "quantity":
+        return reader.formula.quantities[slot] in origins_of_gauge
+    if operation != "literal" or reader.formula.literals[slot].kind == "reading":
+        return False
+    literal = reader.formula.literals[slot]
+    offsets = TEMPERATURE_OFFSETS if literal.dimension == TEMPERATURE else PRESSURE_OFFSETS
+    return any(low <= literal.value <= high for low, high in offsets)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import itertools
+from dataclasses import replace
 
 import pytest
 from written_formulas import formulas
@@ -48,6 +49,36 @@ def test_the_known_that_several_equations_speak_against() -> None:
 def test_a_guess_before_an_equation() -> None:
     lines = ["Q = 2[m**3/s]", "A = 1[m**2]", "Q = A*v", "v = 2[m]"]
     assert blamed(*lines, minor=("v = 2[m]",))[0][:2] == ("v = 2[m]", "2[m]")
+
+
+def test_an_equation_before_a_limit_that_makes_sense() -> None:
+    """F*A is nothing one knows, and the limit says that a pressure is meant."""
+    lines = ["F = 3[kg*m/s**2]", "A = 2[m**2]", "s = F*A", "s < 200[bar]"]
+    assert blamed(*lines, minor=("s < 200[bar]",))[0][:2] == ("s = F*A", "F*A")
+
+
+def test_the_reynolds_number_that_lacks_its_length() -> None:
+    """The slip shows three lines further on, where a fourth root of a metre would come out."""
+    lines = [
+        *PIPE[:2],
+        "D = 2[m]",
+        "L = 8[m]",
+        "mu = 3[Pa*s]",
+        "Re = rho*v/mu",
+        "f = 0.316/Re**(1/4)",
+        "dP = f*L/D*rho*v**2/2",
+        "dP < 3[bar]",
+    ]
+    assert blamed(*lines, minor=("dP < 3[bar]",))[0][:2] == ("Re = rho*v/mu", "rho*v/mu")
+
+
+def test_all_formulas_of_a_statement_stand_and_fall_together() -> None:
+    """A validity condition that comes with an equation is no second witness against a known."""
+    texts = ["L = 4[m]", "p = 3*L/1[K]", "L < 400[K]"]
+    found, names = formulas(texts)
+    found[2] = replace(found[2], statement=1)
+    result = infer_dimensions(found, len(names), minor=[2])
+    assert [c.formula for c in result.clashes] == [2]
 
 
 def test_the_number_without_unit_in_a_sum() -> None:

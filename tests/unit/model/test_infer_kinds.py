@@ -107,6 +107,12 @@ def test_an_absolute_base_plus_a_difference() -> None:
     )
 
 
+def test_a_reading_written_in_the_line_itself_is_blamed_first() -> None:
+    wrong = only("T1 = 20[degC]", "T2 - T1 = 5[degC]")
+    assert wrong.code == "reading-as-difference"
+    assert wrong.labels[0].span.text == "5[degC]"
+
+
 def test_a_product_with_a_difference_stays_one() -> None:
     assert kinds("d = 5[delta_degC]", "w = 2.5", "x = w*d")["x"] == "difference"
 
@@ -187,6 +193,12 @@ def test_an_offset_that_counts_twice_is_warned_of(literal: str) -> None:
 
 def test_one_atmosphere_added_to_a_gauge_pressure_is_warned_of() -> None:
     assert only("p = 2[barg]", "pa = p + 101325[Pa]").code == "reading-made-absolute"
+
+
+def test_the_ambient_pressure_added_to_a_gauge_pressure_is_warned_of() -> None:
+    warned = only("ambient = 0.84[bar]", "p = 2[barg]", "pa = p + ambient")
+    assert warned.code == "reading-made-absolute"
+    assert warned.labels[0].span.text == "ambient"
 
 
 def test_an_offset_added_to_an_absolute_temperature_is_no_slip() -> None:
