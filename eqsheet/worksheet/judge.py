@@ -13,6 +13,7 @@ from eqsheet.model.system import LimitItem, Validity
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.display import default_unit
+from eqsheet.units.unit import Unit
 from eqsheet.worksheet.places import label_of, quoted
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import Run
@@ -51,7 +52,7 @@ def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitRep
     )
     unit = item.unit
     if unit is None or unit.dimension != dimension:
-        unit = default_unit(dimension, "plain", system.unit_table)
+        unit = _unit_of_a_side(prepared, item, operands, dimension)
     links = [
         _link(item, operator, a, b, evidence)
         for operator, a, b in zip(item.operators, operands, operands[1:])
@@ -68,6 +69,17 @@ def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitRep
         unit.difference_from_si(slack),
         _difference_text(unit.text, prepared),
     )
+
+
+def _unit_of_a_side(prepared: Prepared, item: LimitItem, operands: Sequence[int], dimension: Dimension) -> Unit:
+    """Unit of the first quantity that is a side by itself, else the one of the fixed table."""
+    system = prepared.system
+    for operand in operands:
+        operation, *rest = item.formula.tape.instructions[operand]
+        if operation == "quantity":
+            quantity = item.formula.quantities[rest[0]]
+            return shown_unit(system, prepared.dimensions.dimensions, prepared.kinds, quantity)
+    return default_unit(dimension, "plain", system.unit_table)
 
 
 def _link(item: LimitItem, operator: str, a: int, b: int, evidence: Evidence) -> tuple[float, float, float]:
