@@ -56,10 +56,10 @@ class EditedWorksheet:
     >>> outcome = sheet.type("Q = 6 L/s")
     >>> outcome.edit.new
     ('Q = 6 L/s   # pump',)
-    >>> [(c.new.name, c.old.value, c.new.value) for c in outcome.moved.changes]
+    >>> [(c.new.name, round(c.old.value, 9), round(c.new.value, 9)) for c in outcome.moved.changes]
     [('Q', 3.0, 6.0), ('v', 2.5, 5.0)]
-    >>> sheet.undo().solution["v"].value
-    2.5
+    >>> sheet.undo().edit.new
+    ('Q = 3 L/s   # pump',)
     """
 
     def __init__(self, file: TextFile, path: str, journal: Journal | None = None) -> None:
@@ -263,11 +263,31 @@ class EditedWorksheet:
         OSError
             It cannot be written; nothing is lost.
         """
-        write_atomically(self.path, self._file.encoded(self._text()))
-        self._on_disk = state_of(self.path)
+        self._write(self.path)
+
+    def save_as(self, path: str) -> None:
+        """Write the file at `path`, whatever it holds now, and edit that one from then on.
+
+        Raises
+        ------
+        OSError
+            It cannot be written; nothing is lost, and the file edited stays the same.
+        """
+        self._write(path)
+        self.path = path
+        if self._journal is not None:
+            self._journal = Journal(path)
+
+    def _write(self, path: str) -> None:
+        write_atomically(path, self._file.encoded(self._text()))
+        self._on_disk = state_of(path)
         self._saved = self._lines
         if self._journal is not None:
             self._journal.remove()
+
+    def without_journal(self) -> None:
+        """Write no recovery file: what is there belongs to somebody else."""
+        self._journal = None
 
     def leave(self) -> None:
         """Keep the recovery file for the next start and stop writing it."""

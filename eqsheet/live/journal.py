@@ -72,6 +72,12 @@ def is_in_use(path: str) -> bool:
         return False
 
 
+def discard_recovery(path: str) -> None:
+    """Take the recovery file of the worksheet at `path` away, if there is one."""
+    with suppress(OSError):
+        os.unlink(recovery_path(path))
+
+
 class Journal:
     """Writes the recovery file of one worksheet."""
 
@@ -95,11 +101,8 @@ class Journal:
     def remove(self) -> None:
         """Take the file away: all it holds is saved, or is to be dropped."""
         if self._stream is not None:
-            with suppress(OSError):
-                self._stream.close()
-            self._stream = None
-        with suppress(OSError):
-            os.unlink(recovery_path(self._path))
+            discard_recovery(self._path)
+            self.leave()
 
     def leave(self) -> None:
         """Close the file and keep it, to be offered on the next start."""

@@ -105,7 +105,7 @@ def limit_lines(limits: Iterable[LimitReport]) -> list[str]:
             (
                 limit.text,
                 "holds" if limit.holds else "FAILS",
-                _margin_words(limit),
+                margin_words(limit),
                 "" if limit.line is None else f"line {limit.line}",
                 limit.statement.description,
             )
@@ -115,7 +115,7 @@ def limit_lines(limits: Iterable[LimitReport]) -> list[str]:
     )
 
 
-def _margin_words(limit: LimitReport) -> str:
+def margin_words(limit: LimitReport) -> str:
     slack = format_value(abs(limit.slack), 3)
     unit = "" if limit.unit == "1" else f" {limit.unit}"
     word = "to spare" if limit.slack >= 0 else "too far"

@@ -2,21 +2,13 @@
 
 from __future__ import annotations
 
-import os
 import shutil
 import sys
 from collections.abc import Iterable
-from typing import TextIO
 
+from eqsheet.app.colours import palette_for
 from eqsheet.diagnostics.diagnostic import Diagnostic
-from eqsheet.diagnostics.terminal import COLOURED, PLAIN, Palette, render
-
-
-def palette_for(stream: TextIO) -> Palette:
-    """Colours where the stream is a terminal that wants them (``NO_COLOR``, ``TERM=dumb``)."""
-    if os.environ.get("NO_COLOR") or os.environ.get("TERM") == "dumb" or not stream.isatty():
-        return PLAIN
-    return COLOURED
+from eqsheet.diagnostics.terminal import render
 
 
 def print_diagnostics(diagnostics: Iterable[Diagnostic]) -> None:
