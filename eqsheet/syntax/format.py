@@ -14,7 +14,7 @@ INDENT = 4
 _MOST_BLANK_LINES = 2
 
 # Where these are found, the indentation does not say what is meant, and is left alone.
-_UNSURE = frozenset(("stray-indentation", "mixed-indentation", "nested-too-deeply"))
+_UNSURE = frozenset(("stray-indentation", "nested-too-deeply"))
 
 
 def format_document(source: Source) -> str:
@@ -22,7 +22,7 @@ def format_document(source: Source) -> str:
 
     One blank round ``=``, comparisons, ``+`` and ``-``; none round ``^``; round ``*`` and ``/`` as the author
     chose, both sides alike; four spaces for each level; at most two blank lines together; two spaces before an
-    end comment. Line breaks, prose, the columns of tables and broken statements stay as they are.
+    end comment, or more where the author has set it apart: it keeps its column. Line breaks, prose, the columns of tables and broken statements stay as they are.
 
     The result is parsed and compared; should it differ in meaning, the text is given back unchanged.
 
@@ -33,7 +33,7 @@ def format_document(source: Source) -> str:
     keep = any(diagnostic.code in _UNSURE for diagnostic in diagnostics)
     text = laid_out(source.text, logical_lines(source), keep)
     again, found = parse_document(Source(source.name, text))
-    if len(found) != len(diagnostics) or not same_meaning(document, again):
+    if len(found) > len(diagnostics) or not same_meaning(document, again):
         return source.text
     return text
 
@@ -56,14 +56,26 @@ def laid_out(text: str, lines: Lines, keep_indentation: bool) -> str:
 
 def _statement(line: LogicalLine, taken: list[str], indent: int, row: bool) -> list[str]:
     blank = " " * indent
-    comment = f"  # {line.comment}" if line.comment else ""
     if row:
-        return [(blank + line.text + comment).rstrip()]
-    try:
-        text = spaced(line.text, blank + " " * INDENT)
-    except (Slip, Unexpected):
-        return [blank + taken[0].lstrip(), *taken[1:]]
-    return [part.rstrip() for part in (blank + text + comment).split("\n")]
+        text = line.text
+    else:
+        try:
+            text = spaced(line.text, blank + " " * INDENT)
+        except (Slip, Unexpected):
+            return [blank + taken[0].lstrip(), *taken[1:]]
+    parts = [part.rstrip() for part in (blank + text).split("\n")]
+    if line.comment:
+        parts[-1] = f"{parts[-1]}  ".ljust(_column_of_comment(line, taken[-1])) + f"# {line.comment}"
+    return parts
+
+
+def _column_of_comment(line: LogicalLine, written: str) -> int:
+    """The column an author has put an end comment in; 0 where it only follows the statement."""
+    last = line.text.split("\n")[-1]
+    end = written.index(last) + len(last)
+    column = written.index("#", end)
+    gap = written[end:column]
+    return column if len(gap) > 1 and "\t" not in written[:column] else 0
 
 
 def _indents(lines: Lines, keep: bool) -> list[int]:

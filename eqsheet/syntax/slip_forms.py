@@ -106,6 +106,12 @@ def reserved_words(misfit: Misfit) -> Slip | None:
     if not misfit.before and word in _MISPLACED and misfit.rest[len(word) :].lstrip()[:1] != "=":
         return misfit.here("misplaced-word", f"{word} cannot start a statement", _MISPLACED[word])
     taken = misfit.last_text
+    if word == "if" and misfit.last in OPERATORS | COMPARISONS:
+        return misfit.here(
+            "if-without-brackets",
+            "an if inside an expression needs brackets",
+            "write a + (if condition then b else c)",
+        )
     if misfit.last not in ENDS_OF_OPERANDS and word in RESERVED and "NAME" in misfit.expected:
         return misfit.here(
             "reserved-word",
