@@ -7,12 +7,14 @@ the way, and findings. Quantities keep provisional numbers from a `NameTable`.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Mapping
-from dataclasses import dataclass, field
+from collections.abc import Callable, Iterable, Mapping
+from dataclasses import dataclass, field, replace
 from fractions import Fraction
-from typing import Any, Never
+from typing import Any, Never, TypeAlias
 
+from eqsheet.model.families import FamilyReference, with_fixed
 from eqsheet.model.findings import Finding
+from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
 from eqsheet.syntax import nodes as syntax
@@ -39,14 +41,24 @@ _TEMPERATURE = Dimension.of({"K": 1})
 _PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
 
 
+@dataclass(frozen=True, slots=True)
+class OfInstance:
+    """A quantity of the instance whose group a line stands in, as against one of the worksheet around it."""
+
+    key: str | FamilyReference
+
+
+QuantityKey: TypeAlias = str | FamilyReference | OfInstance
+
+
 class NameTable:
-    """Provisional numbers for names, in order of first sight."""
+    """Provisional numbers for quantities as referred to, in order of first sight."""
 
     def __init__(self) -> None:
-        self.numbers: dict[str, int] = {}
-        self.names: list[str] = []
+        self.numbers: dict[QuantityKey, int] = {}
+        self.names: list[QuantityKey] = []
 
-    def number(self, name: str) -> int:
+    def number(self, name: QuantityKey) -> int:
         """The number of `name`, given now if it has none."""
         number = self.numbers.get(name)
         if number is None:
@@ -57,10 +69,34 @@ class NameTable:
 
 @dataclass(frozen=True)
 class Context:
-    """What expressions are read against: units in force and definitions by name."""
+    """What expressions are read against: units in force, definitions by name, and what subscripts refer to."""
 
     unit_table: UnitTable
     definitions: Mapping[str, syntax.Statement] = field(default_factory=dict)
+    indexing: Indexing = field(default_factory=Indexing)
+
+
+@dataclass(frozen=True)
+class IndexScope:
+    """The indices in force at a statement.
+
+    Attributes
+    ----------
+    free : mapping of str to str
+        Indices that run over a domain, with their sets (empty: whole numbers); one formula serves all members.
+    fixed : mapping of str to (int, str)
+        Indices that have one member here: code and set.
+    """
+
+    free: Mapping[str, str] = field(default_factory=dict)
+    fixed: Mapping[str, tuple[int, str]] = field(default_factory=dict)
+
+
+NO_INDICES = IndexScope()
+
+
+class NeedsMembers(Exception):
+    """The shape of the formula depends on the member, so that each member must be lowered by itself."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -87,7 +123,9 @@ class Lowering:
     conditions : list of ConditionMet
     """
 
-    def __init__(self, context: Context, names: NameTable, text: str) -> None:
+    def __init__(
+        self, context: Context, names: NameTable, text: str, indices: IndexScope = NO_INDICES
+    ) -> None:
         self.builder = TapeBuilder()
         self.findings: list[Finding] = []
         self.conditions: list[ConditionMet] = []
@@ -100,7 +138,15 @@ class Lowering:
         self._calls: tuple[str, ...] = ()
         self._empirical = ""
         self._fixed_place: Place2 | None = None
+        self._free = indices.free
+        self._fixed = dict(indices.fixed)
+        self.of_instance = False
         self._written_out: dict[tuple[str, tuple[int, ...]], int] = {}
+
+    @property
+    def index_names(self) -> frozenset[str]:
+        """The indices in force."""
+        return frozenset((*self._free, *self._fixed))
 
     # --- entry points ---------------------------------------------------------------------------------
 
@@ -202,15 +248,21 @@ class Lowering:
 
     def _reference(self, node: syntax.Reference) -> int:
         place = self._place(node)
-        if node.owner is not None:
-            return self._owned(node, place)
-        if node.subscripts is not None:
-            self._refuse("not-a-family", f"`{node.name}` is not a family, so it takes no subscript", node)
+        if node.owner is not None and node.owner.owner is None and node.owner.name == "const":
+            return self._constant(node, place)
+        if node.owner is not None or node.subscripts is not None:
+            return self._quantity(self.reference(node), node)
         parameter = self._parameters.get(node.name)
         if parameter is not None:
             return parameter
+        if node.name in self._fixed or node.name in self._free:
+            return self._index(node, place)
         if node.name == "pi":
             return self.builder.constant(math.pi, place)
+        return self._quantity(node.name, node)
+
+    def _quantity(self, key: str | FamilyReference, node: syntax.Reference) -> int:
+        """The leaf for a quantity of the worksheet."""
         if self._empirical:
             self._refuse(
                 "quantity-in-empirical-formula",
@@ -219,28 +271,52 @@ class Lowering:
                 node,
                 help=f"make it a parameter with a unit: `{self._empirical}(..., {node.name} in UNIT)`",
             )
-        return self.builder.quantity(self._names.number(node.name), place)
+        return self.builder.quantity(self.number_of(key), self._place(node))
 
-    def _owned(self, node: syntax.Reference, place: Place2) -> int:
-        owner = node.owner
-        if owner is not None and owner.owner is None and owner.name == "const":
-            found = constant(node.name)
-            if found is None:
-                self._refuse(
-                    "unknown-constant",
-                    f"there is no constant `const.{node.name}`",
-                    node,
-                    help=did_you_mean(node.name, constant_names())
-                    or "the constants are " + ", ".join(sorted(constant_names())),
-                )
-            literal = Literal(found.value, found.dimension, "plain", *place)
-            return self.builder.literal(literal)
-        return self._refuse(
-            "unknown-instance",
-            f"there is no instance `{owner.dotted if owner else ''}` to hold `{node.name}`",
-            node,
-            help="a dot leads into an instance of a template, or into `const`",
-        )
+    def number_of(self, key: str | FamilyReference) -> int:
+        """Provisional number of a quantity, of the instance's where the line is read in an instance's name."""
+        return self._names.number(OfInstance(key) if self.of_instance else key)
+
+    def reference(self, node: syntax.Reference) -> FamilyReference:
+        """A reference with subscripts or owners, its subscripts still to be worked out."""
+        path: list[tuple[str, int]] = []
+        subscripts: list[syntax.Expression] = []
+        step: syntax.Reference | None = node
+        chain: list[syntax.Reference] = []
+        while step is not None:
+            chain.append(step)
+            step = step.owner
+        for part in reversed(chain):
+            own = part.subscripts or ()
+            path.append((part.name, len(own)))
+            subscripts.extend(own)
+        written = tuple(canonical(s, self._fixed) for s in subscripts)
+        return FamilyReference(tuple(path), written, tuple(subscripts), dict(self._fixed))
+
+    def _index(self, node: syntax.Reference, place: Place2) -> int:
+        """An index as a number."""
+        code, set_name = self._fixed.get(node.name, (0, self._free.get(node.name, "")))
+        if set_name:
+            self._refuse(
+                "member-as-number", f"`{node.name}` is a member of `{set_name}`, not a number", node,
+                help="members may be compared, and stand in brackets",
+            )
+        if node.name in self._fixed:
+            return self.builder.constant(Fraction(code), place)
+        return self.builder.literal(Literal(math.nan, DIMENSIONLESS, "plain", *place, index=node.name))
+
+    def _constant(self, node: syntax.Reference, place: Place2) -> int:
+        found = constant(node.name)
+        if found is None:
+            self._refuse(
+                "unknown-constant",
+                f"there is no constant `const.{node.name}`",
+                node,
+                help=did_you_mean(node.name, constant_names())
+                or "the constants are " + ", ".join(sorted(constant_names())),
+            )
+        literal = Literal(found.value, found.dimension, "plain", *place)
+        return self.builder.literal(literal)
 
     def _text_node(self, node: syntax.Text) -> int:
         self._refuse("text-as-number", "a quoted name stands where a number is needed", node)
@@ -274,6 +350,8 @@ class Lowering:
 
     def _comparison(self, node: syntax.Comparison) -> int:
         place = self._place(node)
+        if any(self._names_member(operand) for operand in node.operands):
+            return self._membership(node, place)
         operands = [self.value(operand) for operand in node.operands]
         links = []
         for operator, a, b in zip(node.operators, operands, operands[1:]):
@@ -303,9 +381,68 @@ class Lowering:
         return self.builder.apply("if", condition, then, otherwise, place=self._place(node))
 
     def _aggregate(self, node: syntax.Aggregate) -> int:
-        self._refuse(
-            "unsupported-statement", f"`{node.function}(... for ...)` is not understood by this version", node
+        """A sum, product, minimum or maximum written out over its members."""
+        used = names_in((*node.clauses, node.filter))
+        if used & set(self._free):
+            raise NeedsMembers
+        outer = self._fixed
+        try:
+            domain = with_fixed(Domain(), outer)
+            for clause in node.clauses:
+                domain = grown(domain, clause, self._context.indexing)
+            domain = filtered(domain, node.filter, self._context.indexing)
+        except IndexSlip as slip:
+            self._note_finding(slip.finding)
+            raise Poisoned from None
+        place = self._place(node)
+        parts: list[int] = []
+        inner = [clause.index for clause in node.clauses]
+        for entry in range(domain.size):
+            members = {n: (int(domain.arrays[n][entry]), domain.sets[n]) for n in inner}
+            self._fixed = {**outer, **members}
+            parts.append(self.value(node.body))
+            if len(self.builder.instructions) > LARGEST_FORMULA:
+                self._refuse(
+                    "formula-too-large",
+                    f"written out, this formula has over {LARGEST_FORMULA} operations",
+                    node,
+                )
+        self._fixed = outer
+        if parts:
+            return self._join(_JOINED[node.function], parts, place)
+        if node.function in _EMPTY:
+            return self.builder.constant(_EMPTY[node.function], place)
+        return self._refuse(
+            "empty-aggregate", f"`{node.function}` over no members has no value", node,
+            help="the index set or the filter leaves nothing",
         )
+
+    def _names_member(self, node: syntax.Expression) -> bool:
+        """Whether a side of a comparison stands for a member of a named set."""
+        if isinstance(node, syntax.Text):
+            return True
+        if not isinstance(node, syntax.Reference):
+            return False
+        if node.subscripts is not None:
+            return node.dotted in self._context.indexing.columns
+        return bool(self._free.get(node.name) or self._fixed.get(node.name, (0, ""))[1])
+
+    def _membership(self, node: syntax.Comparison, place: Place2) -> int:
+        """A comparison of members: decided here, since members are not numbers."""
+        if names_in((node,)) & set(self._free):
+            raise NeedsMembers
+        try:
+            holds = filtered(with_fixed(Domain(), self._fixed), node, self._context.indexing).size > 0
+        except IndexSlip as slip:
+            self._note_finding(slip.finding)
+            raise Poisoned from None
+        zero = self.builder.constant(Fraction(0), place)
+        return self.builder.apply("le" if holds else "lt", zero, zero, place=place)
+
+    def _note_finding(self, finding: Finding) -> None:
+        if self._fixed_place is not None:
+            finding = replace(finding, start=self._fixed_place[0], end=self._fixed_place[1])
+        self.findings.append(finding)
 
     def _call(self, node: syntax.Call) -> int:
         definition = self._context.definitions.get(node.name)
@@ -441,6 +578,41 @@ class Lowering:
         return f"if `{symbol}` is a quantity, {cure}; if it is meant as a unit, {problem.help}"
 
 
+def canonical(node: syntax.Expression, fixed: Mapping[str, tuple[int, str]]) -> str:
+    """A subscript as text that is the same for the same meaning in one place: fixed indices by their members."""
+    match node:
+        case syntax.Number():
+            return f"-{node.text}" if node.negated else node.text
+        case syntax.Text():
+            return f'"{node.value}"'
+        case syntax.Reference():
+            if node.dotted in fixed:
+                code, set_name = fixed[node.dotted]
+                return f"{set_name}#{code}"
+            inner = "" if node.subscripts is None else ",".join(canonical(s, fixed) for s in node.subscripts)
+            return f"{node.dotted}[{inner}]" if inner else node.dotted
+        case syntax.Unary():
+            return f"{node.operator}({canonical(node.operand, fixed)})"
+        case syntax.Binary():
+            return f"({canonical(node.left, fixed)}{node.operator}{canonical(node.right, fixed)})"
+    return f"{node.start}:{node.end}"
+
+
+def names_in(nodes: Iterable[object]) -> set[str]:
+    """All plain names that occur in some nodes of the tree."""
+    found: set[str] = set()
+    stack = list(nodes)
+    while stack:
+        node = stack.pop()
+        if isinstance(node, syntax.Reference) and node.owner is None:
+            found.add(node.name)
+        if isinstance(node, tuple):
+            stack.extend(node)
+        elif hasattr(node, "__dataclass_fields__"):
+            stack.extend(getattr(node, name) for name in node.__dataclass_fields__)
+    return found
+
+
 def kind_of(unit: Unit) -> str:
     """The kind of a literal in `unit`: see `Literal.kind`."""
     if unit.reading:
@@ -490,6 +662,8 @@ def _short(text: str) -> str:
     return text if len(text) <= 24 else f"{text[:12]}...{text[-6:]}"
 
 
+_JOINED = {"sum": "add", "prod": "mul", "min": "min", "max": "max"}
+_EMPTY = {"sum": Fraction(0), "prod": Fraction(1)}
 _ARITHMETIC = {"+": "add", "-": "sub", "*": "mul", "/": "div"}
 # operator -> (operation, operands swapped)
 _COMPARISON = {

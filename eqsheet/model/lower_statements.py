@@ -8,13 +8,25 @@ result can be kept while a worksheet is edited.
 from __future__ import annotations
 
 import math
+from collections.abc import Container
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.model.branches import literal_values
 from eqsheet.model.evaluate import evaluate
+from eqsheet.model.families import FamilyReference
 from eqsheet.model.findings import Finding
-from eqsheet.model.lower import Context, Lowering, NameTable, Poisoned, kind_of
+from eqsheet.model.lower import (
+    FUNCTION_NAMES,
+    NO_INDICES,
+    Context,
+    IndexScope,
+    Lowering,
+    NameTable,
+    Poisoned,
+    canonical,
+    kind_of,
+)
 from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
 from eqsheet.model.tape import Formula, Literal, extract
 from eqsheet.syntax import nodes as syntax
@@ -26,9 +38,9 @@ _PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
 
 @dataclass(frozen=True, slots=True)
 class GuessMeant:
-    """A guess before its target is looked up: a name, or a pattern over names."""
+    """A guess before its target is looked up: a quantity's provisional number, or that of a pattern over names."""
 
-    target: str
+    target: int
     pattern: bool
     formula: Formula
     roles: tuple[str, ...]
@@ -71,16 +83,24 @@ class LoweredStatement:
     findings: tuple[Finding, ...] = ()
 
 
-def lower_equation(statement: syntax.Statement, context: Context, names: NameTable) -> LoweredStatement:
+def lower_equation(
+    statement: syntax.Statement,
+    context: Context,
+    names: NameTable,
+    indices: IndexScope = NO_INDICES,
+    in_instance: bool = False,
+) -> LoweredStatement:
     """An equation, and whether it is a known: one name against an expression without names."""
     node = statement.node
     assert isinstance(node, syntax.Equation)
-    work = Lowering(context, names, statement.line.text)
+    work = Lowering(context, names, statement.line.text, indices)
     try:
+        work.of_instance = in_instance
         left = work.value(node.left)
+        work.of_instance = False
         right = work.value(node.right)
         work.valid(node.valid)
-        target, value_node = _known_parts(node)
+        target, value_node = _known_parts(node, indices)
         tolerance = _tolerance(node, value_node, work) if node.tolerance else None
     except Poisoned:
         return _broken(work, names, node)
@@ -103,11 +123,12 @@ def lower_equation(statement: syntax.Statement, context: Context, names: NameTab
         side = formula.tape.outputs[0 if value_node is node.right else 1]
         other = formula.tape.outputs[1 if side == formula.tape.outputs[0] else 0]
         value = evaluate(formula.tape, (math.nan,), literal_values(formula))[other]
-        if not math.isfinite(value):
+        by_member = any(literal.index for literal in formula.literals)
+        if not math.isfinite(value) and not by_member:
             work.findings.append(
                 Finding(
                     "value-not-finite",
-                    f"the value of `{target}` is not a finite number",
+                    f"the value of `{work.text[target.start : target.end]}` is not a finite number",
                     node.start,
                     node.end,
                 )
@@ -125,11 +146,17 @@ def lower_equation(statement: syntax.Statement, context: Context, names: NameTab
     )
 
 
-def lower_guess(statement: syntax.Statement, context: Context, names: NameTable) -> LoweredStatement:
+def lower_guess(
+    statement: syntax.Statement,
+    context: Context,
+    names: NameTable,
+    indices: IndexScope = NO_INDICES,
+    in_instance: bool = False,
+) -> LoweredStatement:
     """A guess: one formula that holds the start value and the bounds like its target."""
     node = statement.node
     assert isinstance(node, syntax.Guess)
-    work = Lowering(context, names, statement.line.text)
+    work = Lowering(context, names, statement.line.text, indices)
     pattern = isinstance(node.target, syntax.NamePattern)
     try:
         parts = [
@@ -137,22 +164,20 @@ def lower_guess(statement: syntax.Statement, context: Context, names: NameTable)
             for role, part in (("near", node.near), ("lower", node.lower), ("upper", node.upper))
             if part is not None
         ]
-        target_name = (
-            node.target.pattern
-            if isinstance(node.target, syntax.NamePattern)
-            else _plain_name(node.target, work)
-        )
+        key = node.target.pattern if isinstance(node.target, syntax.NamePattern) else _key(node.target, work)
         # A pattern stands for many quantities; each gets its own formula when the names are known, and until
         # then a provisional quantity of the pattern's name holds the place.
-        target = work.builder.quantity(names.number(target_name), (node.target.start, node.target.end))
+        work.of_instance = in_instance
+        number = work.number_of(key)
+        work.of_instance = False
+        target = work.builder.quantity(number, (node.target.start, node.target.end))
     except Poisoned:
         return _broken(work, names, node)
     outputs = tuple(index for _, index in parts)
     formula = work.builder.formula(outputs, 0, tuple((target, index) for index in outputs))
-    number = names.number(target_name)
     literals = [p for p in (node.near, node.lower, node.upper) if isinstance(p, syntax.Number) and p.unit]
     hints = ((number, work.resolve(literals[0].unit)),) if literals and literals[0].unit else ()
-    meant = GuessMeant(target_name, pattern, formula, tuple(role for role, _ in parts), node.start, node.end)
+    meant = GuessMeant(number, pattern, formula, tuple(role for role, _ in parts), node.start, node.end)
     return LoweredStatement(
         guesses=(meant,),
         named=_named(formula),
@@ -162,11 +187,17 @@ def lower_guess(statement: syntax.Statement, context: Context, names: NameTable)
     )
 
 
-def lower_limit(statement: syntax.Statement, context: Context, names: NameTable) -> LoweredStatement:
+def lower_limit(
+    statement: syntax.Statement,
+    context: Context,
+    names: NameTable,
+    indices: IndexScope = NO_INDICES,
+    in_instance: bool = False,
+) -> LoweredStatement:
     """A limit: its operands as outputs of one formula, all alike."""
     node = statement.node
     assert isinstance(node, syntax.Limit)
-    work = Lowering(context, names, statement.line.text)
+    work = Lowering(context, names, statement.line.text, indices)
     condition = node.condition
     if not isinstance(condition, syntax.Comparison):
         work.findings.append(
@@ -191,12 +222,14 @@ def lower_limit(statement: syntax.Statement, context: Context, names: NameTable)
         differences = (within,)
     outputs = (*operands, *(() if within is None else (within,)))
     formula = work.builder.formula(outputs, 0, tuple(alike), differences)
-    references = [o for o in condition.operands if _is_plain_reference(o)]
+    references = [
+        o for o in condition.operands if isinstance(o, syntax.Reference) and not _is_constant(o)
+    ]
     hints = []
     if work.first_unit is not None:
         for reference in references:
-            assert isinstance(reference, syntax.Reference)
-            hints.append((names.number(reference.name), work.first_unit))
+            if reference.name not in work.index_names:
+                hints.append((names.number(_key(reference, work)), work.first_unit))
     text = statement.line.text[condition.start : node.end].strip()
     item = LimitItem(
         formula,
@@ -216,18 +249,23 @@ def lower_limit(statement: syntax.Statement, context: Context, names: NameTable)
     )
 
 
-def lower_show(statement: syntax.Statement, context: Context, names: NameTable) -> LoweredStatement:
+def lower_show(
+    statement: syntax.Statement,
+    context: Context,
+    names: NameTable,
+    indices: IndexScope = NO_INDICES,
+    in_instance: bool = False,
+) -> LoweredStatement:
     """Shown units, each tied to its quantity by a formula so that their dimensions must agree."""
     node = statement.node
     assert isinstance(node, syntax.Show)
-    work = Lowering(context, names, statement.line.text)
+    work = Lowering(context, names, statement.line.text, indices)
     shows: list[ShowMeant] = []
     gauge = False
     for item in node.items:
-        one = Lowering(context, names, statement.line.text)
+        one = Lowering(context, names, statement.line.text, indices)
         try:
-            name = _plain_name(item.target, one)
-            number = names.number(name)
+            number = names.number(_key(item.target, one))
             unit = None if item.unit is None else one.resolve(item.unit)
         except Poisoned:
             work.findings.extend(one.findings)
@@ -269,46 +307,61 @@ def _is_plain_reference(node: syntax.Expression) -> bool:
     )
 
 
-def _plain_name(node: syntax.Reference, work: Lowering) -> str:
-    """Name of a plain reference; goes through `value` for the findings of any other."""
-    if not _is_plain_reference(node):
+def _key(node: syntax.Reference, work: Lowering) -> str | FamilyReference:
+    """What a reference names; goes through `value` for the findings of what is no quantity."""
+    if _is_constant(node) or node.name in work.index_names:
         work.value(node)
         work.findings.append(
             Finding("name-needed", "the name of a quantity is needed here", node.start, node.end)
         )
         raise Poisoned
-    return node.name
+    return node.name if _is_plain_reference(node) else work.reference(node)
 
 
 def known_name(statement: syntax.Statement) -> str | None:
     """Name of the quantity that a statement sets if it is a known, else None."""
     node = statement.node
-    return _known_parts(node)[0] if isinstance(node, syntax.Equation) else None
+    if not isinstance(node, syntax.Equation):
+        return None
+    target, _ = _known_parts(node, NO_INDICES)
+    return None if target is None else canonical(target, {})
 
 
-def _known_parts(node: syntax.Equation) -> tuple[str | None, syntax.Expression | None]:
-    """Name and value expression of a known; (None, None) for an equation."""
+def _known_parts(
+    node: syntax.Equation, indices: IndexScope
+) -> tuple[syntax.Reference | None, syntax.Expression | None]:
+    """The quantity set and its value expression; (None, None) for an equation."""
+    known_indices = {*indices.free, *indices.fixed}
     for target, value in ((node.left, node.right), (node.right, node.left)):
-        if _is_plain_reference(target) and not _has_names(value):
-            assert isinstance(target, syntax.Reference)
-            return target.name, value
+        if not isinstance(target, syntax.Reference) or _is_constant(target) or target.name in known_indices:
+            continue
+        if not _has_names(value, known_indices):
+            return target, value
     return None, None
 
 
-def _has_names(node: syntax.Expression) -> bool:
-    """Whether a quantity or a definition occurs (pi, const.* and built-in functions apart)."""
+def _is_constant(node: syntax.Reference) -> bool:
+    """Whether a reference is to ``pi`` or ``const.*``."""
+    if node.owner is not None:
+        return node.owner.dotted == "const"
+    return node.name == "pi"
+
+
+def _has_names(node: syntax.Expression, indices: Container[str]) -> bool:
+    """Whether a quantity or a definition occurs (pi, const.*, indices and built-in functions apart)."""
     match node:
         case syntax.Number():
             return False
         case syntax.Reference():
-            in_const = node.owner is not None and node.owner.dotted == "const"
-            return not (in_const or (node.name == "pi" and node.owner is None))
+            is_index = node.owner is None and node.subscripts is None and node.name in indices
+            return not (_is_constant(node) or is_index)
         case syntax.Unary():
-            return _has_names(node.operand)
+            return _has_names(node.operand, indices)
         case syntax.Binary():
-            return _has_names(node.left) or _has_names(node.right)
+            return _has_names(node.left, indices) or _has_names(node.right, indices)
         case syntax.Call():
-            return any(_has_names(a) for a in node.arguments)
+            in_names = node.name not in FUNCTION_NAMES
+            return in_names or any(_has_names(a, indices) for a in node.arguments)
         case _:
             return True
 

@@ -65,6 +65,8 @@ class Literal:
         Place in the logical line.
     unit : str
         The unit as written, for messages; empty if none.
+    index : str
+        Name of the index it stands for in a family's formula, whose members give it values; else empty.
     """
 
     value: float
@@ -73,6 +75,7 @@ class Literal:
     start: int
     end: int
     unit: str = ""
+    index: str = ""
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,0 +1,317 @@
+"""Index sets, domains of indices, and subscripts evaluated over them.
+
+Members are numbered: whole numbers stand for themselves, the member names of a set for their positions in it.
+A domain holds one array of numbers for each index, all equally long: one entry for each member of a family.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import TypeAlias
+
+import numpy as np
+from numpy.typing import NDArray
+
+from eqsheet.model.findings import Finding
+from eqsheet.model.spelling import did_you_mean
+from eqsheet.syntax import nodes as syntax
+
+Codes: TypeAlias = NDArray[np.int64]
+
+# A family of more members is refused at once: it is a slip (a value meant for something else), and would not
+# fit into memory.
+MOST_MEMBERS = 20_000_000
+
+
+@dataclass(frozen=True)
+class IndexSet:
+    """Named members in order."""
+
+    name: str
+    members: tuple[str, ...]
+    positions: Mapping[str, int] = field(repr=False)
+
+    @staticmethod
+    def of(name: str, members: tuple[str, ...]) -> IndexSet:
+        """The set with its look-up by name."""
+        return IndexSet(name, members, {m: i for i, m in enumerate(members)})
+
+
+@dataclass(frozen=True)
+class MemberColumn:
+    """A column of rows whose cells name members of a set: `codes` by position of the row, -1 for none."""
+
+    name: str
+    rows: str
+    of: str
+    codes: Codes
+
+
+@dataclass(frozen=True)
+class Indexing:
+    """Everything that subscripts may refer to.
+
+    Attributes
+    ----------
+    sets : mapping of str to IndexSet
+    whole : mapping of str to int
+        Knowns that are plain whole numbers.
+    columns : mapping of str to MemberColumn
+    """
+
+    sets: Mapping[str, IndexSet] = field(default_factory=dict)
+    whole: Mapping[str, int] = field(default_factory=dict)
+    columns: Mapping[str, MemberColumn] = field(default_factory=dict)
+
+
+@dataclass(frozen=True)
+class Indices:
+    """Codes over some domain: an array, or one number for all; `set` names their set, empty for whole numbers.
+
+    ``name`` is filled instead for a bare member name whose set the slot decides.
+    """
+
+    codes: Codes | int
+    set: str = ""
+    name: str = ""
+
+
+@dataclass(frozen=True)
+class Domain:
+    """One entry for each member of a family.
+
+    Attributes
+    ----------
+    size : int
+    arrays : mapping of str to Codes
+        By index.
+    sets : mapping of str to str
+        Set of each index, empty for whole numbers.
+    """
+
+    size: int = 1
+    arrays: Mapping[str, Codes] = field(default_factory=dict)
+    sets: Mapping[str, str] = field(default_factory=dict)
+
+    def where(self, mask: NDArray[np.bool_]) -> Domain:
+        """The entries for which `mask` holds."""
+        return Domain(int(mask.sum()), {n: a[mask] for n, a in self.arrays.items()}, self.sets)
+
+    def at(self, entry: int) -> Domain:
+        """One entry alone."""
+        return Domain(1, {n: a[entry : entry + 1] for n, a in self.arrays.items()}, self.sets)
+
+
+class IndexSlip(Exception):
+    """A subscript or index clause that means nothing; `finding` says why."""
+
+    def __init__(self, code: str, message: str, node: object, help: str = "") -> None:
+        super().__init__(message)
+        start, end = getattr(node, "start", 0), getattr(node, "end", 0)
+        self.finding = Finding(code, message, start, end, help)
+
+
+def grown(domain: Domain, clause: syntax.IndexClause, indexing: Indexing) -> Domain:
+    """The domain with one more index.
+
+    Raises
+    ------
+    IndexSlip
+    """
+    if clause.index in domain.arrays:
+        raise IndexSlip("index-twice", f"the index `{clause.index}` is already in use here", clause)
+    if isinstance(clause.over, syntax.Range):
+        first = _whole(clause.over.first, domain, indexing)
+        last = _whole(clause.over.last, domain, indexing)
+        lengths = np.maximum(np.broadcast_to(np.asarray(last) - np.asarray(first) + 1, (domain.size,)), 0)
+        starts = np.broadcast_to(np.asarray(first), (domain.size,))
+        set_name = ""
+    else:
+        name = clause.over.dotted
+        found = indexing.sets.get(name)
+        if found is None or clause.over.subscripts is not None:
+            raise IndexSlip(
+                "unknown-index-set",
+                f"there is no index set `{name}`",
+                clause.over,
+                did_you_mean(name, indexing.sets) or "a set is made by `rows`, or write a range `1..N`",
+            )
+        lengths = np.full(domain.size, len(found.members))
+        starts = np.zeros(domain.size, dtype=np.int64)
+        set_name = name
+    total = int(lengths.sum())
+    if total > MOST_MEMBERS:
+        raise IndexSlip(
+            "family-too-large",
+            f"this family would have {total:,} members; the most is {MOST_MEMBERS:,}",
+            clause,
+        )
+    repeats = {n: np.repeat(a, lengths) for n, a in domain.arrays.items()}
+    offsets = np.cumsum(lengths) - lengths
+    ramp = np.arange(total, dtype=np.int64) - np.repeat(offsets, lengths) + np.repeat(starts, lengths)
+    return Domain(
+        total, {**repeats, clause.index: ramp.astype(np.int64)}, {**domain.sets, clause.index: set_name}
+    )
+
+
+def filtered(domain: Domain, condition: syntax.Expression | None, indexing: Indexing) -> Domain:
+    """The part of the domain for which a condition on indices holds."""
+    if condition is None:
+        return domain
+    return domain.where(np.broadcast_to(_holds(condition, domain, indexing), (domain.size,)))
+
+
+def subscript(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Indices:
+    """What a subscript stands for at every entry of the domain.
+
+    Raises
+    ------
+    IndexSlip
+    """
+    match node:
+        case syntax.Text():
+            return Indices(0, name=node.value)
+        case syntax.Number():
+            return Indices(_whole_literal(node))
+        case syntax.Reference() if node.subscripts is not None:
+            return _through_column(node, domain, indexing)
+        case syntax.Reference():
+            name = node.dotted
+            if name in domain.arrays:
+                return Indices(domain.arrays[name], domain.sets[name])
+            if name in indexing.whole:
+                return Indices(indexing.whole[name])
+            return Indices(0, name=name)
+        case syntax.Unary() if node.operator in "+-":
+            inner = _numbers(node.operand, domain, indexing)
+            return Indices(inner if node.operator == "+" else -inner)
+        case syntax.Binary() if node.operator in "+-*":
+            left = _numbers(node.left, domain, indexing)
+            right = _numbers(node.right, domain, indexing)
+            return Indices(left + right if node.operator == "+" else left - right if node.operator == "-" else left * right)
+    raise IndexSlip(
+        "subscript-form",
+        "in brackets stand indices, members, whole-number knowns, and sums of them",
+        node,
+    )
+
+
+def _through_column(node: syntax.Reference, domain: Domain, indexing: Indexing) -> Indices:
+    column = indexing.columns.get(node.dotted)
+    if column is None or node.subscripts is None or len(node.subscripts) != 1:
+        raise IndexSlip(
+            "subscript-form",
+            f"`{node.dotted}` is no column that names members, so it cannot stand in brackets",
+            node,
+            f"write `{node.name} of SET` in the heading of its rows",
+        )
+    inner = placed(subscript(node.subscripts[0], domain, indexing), column.rows, node.subscripts[0], indexing)
+    codes = column.codes[np.asarray(inner)]
+    if (codes < 0).any():
+        raise IndexSlip("cell-left-unknown", f"`{node.dotted}` has a cell left unknown here", node)
+    return Indices(codes, column.of)
+
+
+def placed(indices: Indices, set_name: str, node: syntax.Expression, indexing: Indexing) -> Codes | int:
+    """The codes for a slot over `set_name` (empty: whole numbers).
+
+    Raises
+    ------
+    IndexSlip
+        If the subscript is of another set, or names no member.
+    """
+    if indices.name:
+        if not set_name:
+            raise IndexSlip(
+                "no-such-member",
+                f"`{indices.name}` is no index, no whole-number known and no member here",
+                node,
+                did_you_mean(indices.name, indexing.whole),
+            )
+        found = indexing.sets[set_name]
+        if indices.name not in found.positions:
+            raise IndexSlip(
+                "no-such-member",
+                f"`{indices.name}` is not a member of `{set_name}`",
+                node,
+                did_you_mean(indices.name, found.members)
+                or f"its members are {', '.join(found.members[:8])}{' ...' if len(found.members) > 8 else ''}",
+            )
+        return found.positions[indices.name]
+    if indices.set != set_name:
+        here = f"a member of `{indices.set}`" if indices.set else "a whole number"
+        there = f"members of `{set_name}`" if set_name else "whole numbers"
+        raise IndexSlip("index-mixed", f"{here} stands where {there} are used elsewhere", node)
+    return indices.codes
+
+
+def member_text(set_name: str, code: int, indexing: Indexing) -> str:
+    """A member as written in brackets: quoted where it is not a name."""
+    if not set_name:
+        return str(code)
+    name = indexing.sets[set_name].members[code]
+    return name if name.isidentifier() else f'"{name}"'
+
+
+def _numbers(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Codes | int:
+    found = subscript(node, domain, indexing)
+    if found.set or found.name:
+        what = found.name or getattr(node, "name", "this")
+        raise IndexSlip("subscript-form", f"`{what}` is no whole number, so it cannot be reckoned with", node)
+    return found.codes
+
+
+def _whole(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Codes | int:
+    try:
+        return _numbers(node, domain, indexing)
+    except IndexSlip as slip:
+        if isinstance(node, syntax.Reference) and slip.finding.code == "subscript-form":
+            raise IndexSlip(
+                "range-not-whole",
+                f"`{node.dotted}` is not a known whole number",
+                node,
+                f"set it by a line of its own: `{node.dotted} = 10`",
+            ) from None
+        raise
+
+
+def _whole_literal(node: syntax.Number) -> int:
+    value = float(node.text)
+    if node.unit is not None or not value.is_integer() or abs(value) > 2**53:
+        raise IndexSlip("subscript-form", f"`{node.text}` is not a whole number", node)
+    return -int(value) if node.negated else int(value)
+
+
+def _holds(node: syntax.Expression, domain: Domain, indexing: Indexing) -> NDArray[np.bool_]:
+    match node:
+        case syntax.Logical():
+            parts = [_holds(operand, domain, indexing) for operand in node.operands]
+            combine = np.logical_and if node.operator == "and" else np.logical_or
+            result = parts[0]
+            for part in parts[1:]:
+                result = combine(result, part)
+            return result
+        case syntax.Unary() if node.operator == "not":
+            return np.logical_not(_holds(node.operand, domain, indexing))
+        case syntax.Comparison():
+            operands = [subscript(operand, domain, indexing) for operand in node.operands]
+            result = np.asarray(True)
+            for operator, a, b, node_a, node_b in zip(
+                node.operators, operands, operands[1:], node.operands, node.operands[1:]
+            ):
+                set_name = a.set or b.set
+                left, right = placed(a, set_name, node_a, indexing), placed(b, set_name, node_b, indexing)
+                result = np.logical_and(result, _COMPARE[operator](left, right))
+            return result
+    raise IndexSlip("filter-form", "a filter compares indices, members and whole-number knowns", node)
+
+
+_COMPARE = {
+    "<": np.less,
+    "<=": np.less_equal,
+    ">": np.greater,
+    ">=": np.greater_equal,
+    "=": np.equal,
+    "!=": np.not_equal,
+}
