@@ -45,11 +45,22 @@ def call_times(calls: Sequence[Callable[[], object]], runs: int) -> list[float]:
     return [median(found) for found in times]
 
 
+def one_line_times(size: int, runs: int) -> tuple[float, float]:
+    """Median times in s to read and to solve `size` one-line equations, other ones and a new process each run."""
+    found = []
+    for seed in range(runs):
+        command = [sys.executable, str(HERE / "time_one_line.py"), str(size), str(seed)]
+        done = subprocess.run(command, check=True, capture_output=True, text=True)
+        found.append([float(number) for number in done.stdout.split()])
+    reading, solving = zip(*found)
+    return median(reading), median(solving)
+
+
 def packages_imported_by_solve() -> set[str]:
     """Top-level packages loaded when `eqsheet solve` has run on the loop."""
     code = (
         "import contextlib, io, sys\n"
-        "from eqsheet.app.command_line import main\n"
+        "from eqsheet.app.main import main\n"
         "with contextlib.redirect_stdout(io.StringIO()), contextlib.suppress(SystemExit):\n"
         f"    main(['solve', {str(LOOP)!r}])\n"
         "print(*{name.partition('.')[0] for name in sys.modules})\n"

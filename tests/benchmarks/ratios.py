@@ -6,7 +6,6 @@ One run, one command: ``python tests/benchmarks/ratios.py``.
 from __future__ import annotations
 
 import sys
-import time
 
 import script_20
 from measure import (
@@ -15,10 +14,10 @@ from measure import (
     SCRIPT_COMMAND,
     SOLVE_COMMAND,
     call_times,
+    one_line_times,
     packages_imported_by_solve,
     wall_times,
 )
-from one_line import one_line_worksheet
 
 import eqsheet
 
@@ -37,17 +36,12 @@ def main() -> None:
         f"  warm   script {root * 1e3:7.3f} ms   sheet.solve() {warm * 1e3:7.3f} ms  ratio {warm / root:5.2f}"
     )
 
-    print("explicit one-line equations of varied shapes, text to answer")
+    print("explicit one-line equations of varied shapes, text to answer, median of 3 runs")
     for size in (2_500, 5_000, 10_000):
-        text, _ = one_line_worksheet(size)
-        start = time.perf_counter()
-        sheet = eqsheet.parse(text)
-        parsed = time.perf_counter()
-        sheet.solve()
-        solved = time.perf_counter()
+        reading, solving = one_line_times(size, runs=3)
         print(
-            f"  {size:6}  {solved - start:6.2f} s   {(solved - start) / size * 1e3:6.3f} ms an equation"
-            f"   (parse {parsed - start:.2f} s, solve {solved - parsed:.2f} s)"
+            f"  {size:6}  {reading + solving:6.2f} s   {(reading + solving) / size * 1e3:6.3f} ms an equation"
+            f"   (parse {reading:.2f} s, solve {solving:.2f} s)"
         )
 
     unwanted = sorted(packages_imported_by_solve() & set(NOT_FOR_SOLVE))
