@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from eqsheet.solve.factor import factorise, smallest_singular_vectors
-from eqsheet.solve.outcome import Outcome
+from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, Vector
 from eqsheet.solve.termination import equation_sizes, floored
 
@@ -77,7 +77,8 @@ def explain(problem: Problem, outcome: Outcome) -> Facts:
         pressed,
         _participants(left) if dependent else (),
         _participants(right) if dependent else (),
-        _at_minimum(problem, x, residual / np.where(sizes > 0.0, sizes, 1.0), jacobian, weights, sizes),
+        outcome.status is Status.MINIMUM
+        or _at_minimum(problem, x, residual / np.where(sizes > 0.0, sizes, 1.0), jacobian, weights, sizes),
     )
 
 

@@ -9,11 +9,13 @@ from eqsheet.solve.problem import Matrix, Problem, Vector
 from eqsheet.solve.termination import (
     ACCEPTABLE,
     MULTIPLE_AFTER,
+    at_rest,
     confirmed,
     equation_sizes,
     jacobian_sizes,
     kind_of_root,
     scaled_norm,
+    term_sizes,
 )
 from eqsheet.solve.trail import Trail
 
@@ -52,7 +54,11 @@ def finish(
         again = scaled_norm(improved, sizes)
         if again <= scaled:
             x, residual, scaled = polished, improved, again
-    if not (scaled <= ACCEPTABLE and (trail.contracting or confirmed(problem, x, residual, jacobian))):
+    believed = scaled <= ACCEPTABLE and (trail.contracting or confirmed(problem, x, residual, jacobian))
+    if believed and (factor.singular or not at_rest(problem, x, factor, residual)):
+        # No small step explains the residuals, so they must be small against terms that are really there.
+        believed = scaled_norm(residual, term_sizes(problem, x, jacobian)) <= ACCEPTABLE
+    if not believed:
         return give_up(problem, interior, trail, step, factor)
     kind = kind_of_root(problem, x, sizes, factor)
     if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:

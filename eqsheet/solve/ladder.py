@@ -5,21 +5,23 @@ from __future__ import annotations
 from collections.abc import Callable
 from dataclasses import replace
 from time import perf_counter
-from typing import TypeAlias
+from typing import TypeVar
+
+import numpy as np
 
 from eqsheet.solve.bracketing import bracketing
 from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, ScalarProblem, Vector, as_scalar
 from eqsheet.solve.scalar_newton import scalar_newton
+from eqsheet.solve.termination import equation_sizes, scaled_norm
 from eqsheet.solve.trail import Budget, Trail
 
-Rung: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
-ScalarRung: TypeAlias = Callable[[ScalarProblem, float, Trail], Outcome]
+P = TypeVar("P", Problem, ScalarProblem)
+S = TypeVar("S", Vector, float)
 
-# In the order of cost: a rung is only reached where those before it have failed.
-RUNGS: tuple[tuple[str, Rung], ...] = (("newton", newton),)
-SCALAR_RUNGS: tuple[tuple[str, ScalarRung], ...] = (("newton", scalar_newton), ("bracketing", bracketing))
+# How telling a failure is, most telling first; all others come after these.
+_TELLING = {Status.CONTINUUM: 0, Status.MINIMUM: 1, Status.SINGULAR: 1, Status.POLE: 1}
 
 DEFAULT_BUDGET = Budget()
 
@@ -27,55 +29,85 @@ DEFAULT_BUDGET = Budget()
 def solve_block(problem: Problem, budget: Budget = DEFAULT_BUDGET) -> Outcome:
     """The solution of a block, or the most telling of the failed attempts with all others in its `attempts`.
 
-    Never raises for numerical reasons; KeyboardInterrupt ends with status INTERRUPTED and the best point so
-    far.
+    Damped Newton first; the rungs of `fallbacks` only where it fails. Never raises for numerical reasons;
+    KeyboardInterrupt ends with status INTERRUPTED and the best point so far.
     """
     if problem.n == 1:
         return solve_scalar(as_scalar(problem), budget)
-    attempts: list[Outcome] = []
     deadline = perf_counter() + budget.seconds
-    for name, rung in RUNGS:
-        trail = Trail(name, problem.start, budget, deadline)
-        try:
-            outcome = rung(problem, problem.start, trail)
-        except KeyboardInterrupt:
-            outcome = trail.close(Status.INTERRUPTED)
-        attempts.append(outcome)
-        if _final(outcome, deadline):
-            break
-    return concluded(attempts)
+    # Overflow and invalid operations are ordinary events here: they shorten the step.
+    with np.errstate(all="ignore"):
+        attempts = [_attempt("newton", newton, problem, problem.start, budget, deadline)]
+        if not _final(attempts[0], deadline):
+            from eqsheet.solve.fallbacks import fallbacks
+            from eqsheet.solve.moved_start import moved_start
+
+            start = moved_start(problem)
+            for name, rung in fallbacks(problem):
+                attempts.append(_attempt(name, rung, problem, start, budget, deadline))
+                if _final(attempts[-1], deadline):
+                    break
+        return _concluded(attempts, lambda: _distance_from_zero(problem))
 
 
 def solve_scalar(problem: ScalarProblem, budget: Budget = DEFAULT_BUDGET) -> Outcome:
     """As `solve_block` for one equation in plain floats: safeguarded Newton, then bracketing."""
-    attempts: list[Outcome] = []
     deadline = perf_counter() + budget.seconds
-    for name, rung in SCALAR_RUNGS:
-        trail = Trail(name, problem.start, budget, deadline)
-        try:
-            outcome = rung(problem, problem.start, trail)
-        except KeyboardInterrupt:
-            outcome = trail.close(Status.INTERRUPTED)
-        attempts.append(outcome)
-        if _final(outcome, deadline):
-            break
-    return concluded(attempts)
+    attempts = [_attempt("newton", scalar_newton, problem, problem.start, budget, deadline)]
+    if not _final(attempts[0], deadline):
+        attempts.append(_attempt("bracketing", bracketing, problem, problem.start, budget, deadline))
+    return _concluded(attempts, lambda: lambda outcome: abs(problem.residual(float(outcome.x[0]))))
 
 
-def concluded(attempts: list[Outcome]) -> Outcome:
-    """The outcome that stands for all: the last if solved or interrupted, else that of the least residual."""
+def _attempt(
+    name: str, rung: Callable[[P, S, Trail], Outcome], problem: P, start: S, budget: Budget, deadline: float
+) -> Outcome:
+    """The outcome of one rung; an interrupt keeps the point it had reached."""
+    trail = Trail(name, start, budget, deadline)
+    try:
+        return rung(problem, start, trail)
+    except KeyboardInterrupt:
+        return trail.close(Status.INTERRUPTED)
+
+
+def _concluded(attempts: list[Outcome], measure: Callable[[], Callable[[Outcome], float]]) -> Outcome:
+    """The outcome that stands for all: the last if solved or interrupted, else that of the best point.
+
+    A continuum of roots tells more than any point that is no root, and a minimum more than a point on the
+    way.
+    """
     last = attempts[-1]
     if len(attempts) == 1:
         return last
     if last.solved or last.status is Status.INTERRUPTED:
         chosen = last
     else:
-        chosen = min(attempts, key=lambda attempt: attempt.residual)
+        distance = measure()
+        chosen = min(attempts, key=lambda a: (_TELLING.get(a.status, 2), _or_infinity(distance(a))))
     return replace(
         chosen,
-        iterations=sum(attempt.iterations for attempt in attempts),
         attempts=tuple(attempt for attempt in attempts if attempt is not chosen),
     )
+
+
+def _distance_from_zero(problem: Problem) -> Callable[[Outcome], float]:
+    """A measure by which points of different attempts can be compared: the residuals in units of one point.
+
+    Scaled residuals will not do: far out, where the terms are large, they are small everywhere.
+    """
+    _, jacobian = problem.linearise(problem.start)
+    sizes = equation_sizes(problem, problem.start, jacobian)
+    units = np.where(np.isfinite(sizes) & (sizes > 0.0), sizes, 1.0)
+
+    def distance(outcome: Outcome) -> float:
+        return scaled_norm(problem.residual(outcome.x), units)
+
+    return distance
+
+
+def _or_infinity(value: float) -> float:
+    """The value, inf for nan."""
+    return value if value == value else np.inf
 
 
 def _final(outcome: Outcome, deadline: float) -> bool:

@@ -21,7 +21,7 @@ from eqsheet.solve.finish import finish, give_up
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
-from eqsheet.solve.termination import AT_REST, MULTIPLE, ROUNDING, SLOW, floored, residual_at
+from eqsheet.solve.termination import AT_REST, MULTIPLE, ROUNDING, SLOW, floored, last_step_due, residual_at
 from eqsheet.solve.trail import Trail
 
 # Smallest damping tried: below it a step changes no more than the rounding of the residuals does.
@@ -82,7 +82,7 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
         return trail.close(Status.DOMAIN, x, np.inf)
     damping, limiting = 0.0, -1
     last: Accepted | None = None
-    last_rest, slow_steps = np.inf, 0
+    last_rest, last_norm, slow_steps = np.inf, np.inf, 0
     factor: Factor | None = None
     while True:
         scaled = residual_at(problem, x, residual, jacobian)
@@ -99,7 +99,7 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
         rest = float((np.abs(step * weights) / floored(x, problem)).max()) if norm < NEAR else np.inf
         slow_steps = slow_steps + 1 if MULTIPLE < rest / last_rest < SLOW else 0
         trail.contracting = last is not None and last.contraction < 0.5
-        if rest <= ROUNDING or (rest <= AT_REST and rest > SLOW * last_rest):
+        if rest <= AT_REST and (last_step_due(rest, norm / last_norm) or rest > SLOW * last_rest):
             return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
         first = 1.0 if last is None else _predicted_damping(last, step, weights)
         accepted = _first_accepted(problem, interior, x, factor, step, norm, first)
@@ -107,7 +107,7 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
             if rest <= AT_REST:
                 return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
             return give_up(problem, interior, trail, step * weights, factor)
-        last, last_rest = accepted, rest
+        last, last_rest, last_norm = accepted, rest, norm
         x, residual, jacobian, damping, limiting = accepted[:5]
 
 

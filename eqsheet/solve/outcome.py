@@ -22,6 +22,9 @@ class Status(Enum):
         leave a combination of unknowns free. Not a solution to rely on.
     STALLED
         No damping of the step reduces the residuals any more; the point is the best found.
+    MINIMUM
+        The point is a local minimum of the residuals, and no root: to first order no step within the bounds
+        makes them smaller.
     HELD
         As STALLED, and unknowns are pressed against their bounds by the step.
     SINGULAR
@@ -45,6 +48,7 @@ class Status(Enum):
     DOUBLE = "double root"
     CONTINUUM = "continuum of roots"
     STALLED = "stalled"
+    MINIMUM = "minimum without a root"
     HELD = "held by bounds"
     SINGULAR = "singular"
     DOMAIN = "outside the domain"
@@ -92,7 +96,7 @@ class Outcome:
     residual : float
         Largest residual at x relative to the size of its equation; inf where none is finite.
     iterations : int
-        Accepted steps, over all attempts.
+        Accepted steps of that method; those of the others stand in `attempts`.
     method : str
         The method that gave x.
     history : tuple of Iteration

@@ -25,6 +25,7 @@ from eqsheet.solve.termination import (
     SLOW,
     SUSPECT_CONDITION,
     ZERO_FLOOR,
+    last_step_due,
 )
 from eqsheet.solve.trail import Trail
 
@@ -54,7 +55,8 @@ def scalar_newton(problem: ScalarProblem, start: float, trail: Trail) -> Outcome
         trail.note(x, scaled, damping, limiting)
         step = -value / slope if slope != 0.0 else (0.0 if value == 0.0 else inf)
         rest = abs(step) / floor
-        if scaled <= ROUNDING or rest <= ROUNDING or (rest <= AT_REST and rest > SLOW * last_rest):
+        near = rest <= AT_REST and (last_step_due(rest, rest / last_rest) or rest > SLOW * last_rest)
+        if scaled <= ROUNDING or near:
             return finish(problem, x, value, slope, trail)
         if trail.spent:
             return trail.close(Status.BUDGET)

@@ -62,9 +62,31 @@ def equation_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
     return np.asarray(np.fmax(problem.sizes(x), jacobian_sizes(problem, x, jacobian)))
 
 
+def term_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
+    """As `equation_sizes`, but with the unknowns as they are: nothing stands in for one that is nearly
+    zero."""
+    return np.asarray(np.fmax(problem.sizes(x), abs(jacobian) @ np.abs(x)))
+
+
+def last_step_due(rest: float, shrinkage: float) -> bool:
+    """Whether after one more step of scaled size `rest` nothing is left to gain in double precision.
+
+    `shrinkage` is the size of the step relative to the one before. Newton's steps shrink quadratically, so
+    the step after the next one has the size ``rest * shrinkage**2``.
+    """
+    return rest <= ROUNDING or (shrinkage < 0.1 and rest * shrinkage * shrinkage <= ROUNDING)
+
+
+def at_rest(problem: Problem, x: Vector, factor: Factor, residual: Vector) -> bool:
+    """Whether the Newton step from x is negligible in every unknown."""
+    step = np.abs(factor.solve(residual)) * factor.weights
+    return bool((step <= AT_REST * floored(x, problem)).all())
+
+
 def scaled_norm(residual: Vector, sizes: Vector) -> float:
     """Largest residual relative to its size; inf where one is not finite, or not zero while its size is."""
     largest = float((np.abs(residual) / np.maximum(sizes, TINY)).max())
+    # Written so that nan counts as inf.
     return largest if largest < inf else inf
 
 
@@ -75,6 +97,12 @@ def residual_at(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix)
     if ROUNDING < scaled < NEARLY_ZERO:
         return scaled_norm(residual, equation_sizes(problem, x, jacobian))
     return scaled
+
+
+def measured(problem: Problem, x: Vector) -> float:
+    """Largest scaled residual at any point x, evaluated afresh; inf outside the domain."""
+    residual, jacobian = problem.linearise(x)
+    return scaled_norm(residual, equation_sizes(problem, x, jacobian))
 
 
 def confirmed(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> bool:

@@ -43,13 +43,14 @@ class Trail:
         Whether the last steps have shrunk, so that the point is being approached; false at the start.
     """
 
-    __slots__ = ("best", "best_residual", "budget", "contracting", "deadline", "method", "steps")
+    __slots__ = ("begun", "best", "best_residual", "budget", "contracting", "deadline", "method", "steps")
 
     def __init__(self, method: str, start: Vector | float, budget: Budget, deadline: float = inf) -> None:
         self.method = method
         self.best: Any = start
         self.best_residual = inf
         self.contracting = False
+        self.begun = 0
         self.budget = budget
         self.deadline = min(deadline, perf_counter() + budget.seconds)
         self.steps: list[Iteration] = []
@@ -60,10 +61,16 @@ class Trail:
         self.best = x
         self.best_residual = residual
 
+    def renew(self) -> Trail:
+        """The same trail with its iterations to spend again, for a method called by another; time goes on."""
+        self.begun = len(self.steps)
+        self.contracting = False
+        return self
+
     @property
     def spent(self) -> bool:
         """Whether the iterations or the time are used up."""
-        return len(self.steps) > self.budget.iterations or perf_counter() > self.deadline
+        return len(self.steps) - self.begun > self.budget.iterations or perf_counter() > self.deadline
 
     def close(
         self,

@@ -6,7 +6,6 @@ from __future__ import annotations
 import cmath
 import math
 
-import mpmath
 import numpy as np
 from sized_numbers import SizedMath, sized
 
@@ -85,34 +84,3 @@ def plain_problem(formulas, start, lower=None, upper=None, magnitude=None, seen=
         np.full(n, np.inf) if upper is None else np.asarray(upper, dtype=float),
         np.maximum(np.abs(start), 1e-3) if magnitude is None else np.asarray(magnitude, dtype=float),
     )
-
-
-def exact_newton_distance(formulas, x) -> float:
-    """How far the true root is from x by 50-digit Newton steps, relative to max(|x|, 1); inf where they do
-    not converge."""
-    with mpmath.workdps(50):
-        point = mpmath.matrix([mpmath.mpf(float(v)) for v in x])
-        begin = point.copy()
-        n = len(x)
-        for _ in range(200):
-            values = mpmath.matrix(formulas(list(point), mpmath))
-            jacobian = mpmath.matrix(n, n)
-            step = mpmath.mpf(10) ** -25
-            for j in range(n):
-                moved = list(point)
-                moved[j] += step * max(1, abs(moved[j]))
-                column = formulas(moved, mpmath)
-                for i in range(n):
-                    jacobian[i, j] = (column[i] - values[i]) / (step * max(1, abs(point[j])))
-            try:
-                correction = mpmath.lu_solve(jacobian, values)
-            except ZeroDivisionError:
-                break
-            point -= correction
-            if mpmath.norm(correction, mpmath.inf) <= mpmath.mpf(10) ** -22 * max(
-                1, mpmath.norm(point, mpmath.inf)
-            ):
-                break
-        else:
-            return math.inf
-        return float(max(abs(a - b) / max(1, abs(b)) for a, b in zip(begin, point)))
