@@ -22,7 +22,8 @@ def format_document(source: Source) -> str:
 
     One blank round ``=``, comparisons, ``+`` and ``-``; none round ``^``; round ``*`` and ``/`` as the author
     chose, both sides alike; four spaces for each level; at most two blank lines together; two spaces before an
-    end comment, or more where the author has set it apart: it keeps its column. Line breaks, prose, the columns of tables and broken statements stay as they are.
+    end comment, or more where the author has set it apart: then it keeps its column. Line breaks, prose, the
+    columns of tables and broken statements stay as they are.
 
     The result is parsed and compared; should it differ in meaning, the text is given back unchanged.
 
