@@ -212,6 +212,7 @@ def lower_limit(
         return _broken(work, names, node)
     try:
         operands = [work.value(operand) for operand in condition.operands]
+        unit = work.first_unit
         within = None if node.within is None else work.value(node.within)
     except Poisoned:
         return _broken(work, names, node)
@@ -225,11 +226,13 @@ def lower_limit(
     references = [
         o for o in condition.operands if isinstance(o, syntax.Reference) and not _is_constant(o)
     ]
+    # The percent sign of `within 1 %` is no unit of the quantity.
+    unit = unit if node.relative else work.first_unit
     hints = []
-    if work.first_unit is not None:
+    if unit is not None:
         for reference in references:
             if reference.name not in work.index_names:
-                hints.append((names.number(_key(reference, work)), work.first_unit))
+                hints.append((names.number(_key(reference, work)), unit))
     text = statement.line.text[condition.start : node.end].strip()
     item = LimitItem(
         formula,
@@ -238,7 +241,7 @@ def lower_limit(
         node.relative,
         text,
         Place(0, node.start, node.end),
-        work.first_unit,
+        unit,
     )
     return LoweredStatement(
         limit=item,

@@ -24,3 +24,16 @@ def test_unit_of_the_slack(limit: str, slack: float, unit: str) -> None:
     assert report.holds
     assert report.unit == unit
     assert report.slack == pytest.approx(slack)
+
+
+def test_a_relative_tolerance_gives_no_unit() -> None:
+    solution = eqsheet.parse("x = 2.99\nrequire x = 3 within 1 %").solve()
+    assert solution["x"].unit == "1"
+    (report,) = solution.limits
+    assert (report.holds, report.unit) == (True, "1")
+    assert report.slack == pytest.approx(0.02)
+
+
+def test_an_absolute_tolerance_gives_its_unit() -> None:
+    solution = eqsheet.parse("x = y\ny = 2.5 m\nrequire x = y within 3 mm").solve()
+    assert solution["x"].unit == "mm"
