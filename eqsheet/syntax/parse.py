@@ -7,7 +7,7 @@ from functools import lru_cache
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.diagnostics.source import Source, Span
 from eqsheet.syntax.automaton import statement_automaton
-from eqsheet.syntax.bounds import LONGEST_STATEMENT, MOST_BROKEN_STATEMENTS
+from eqsheet.syntax.bounds import LONGEST_STATEMENT, MOST_BROKEN_STATEMENTS, MOST_STATEMENTS
 from eqsheet.syntax.build_statements import Parsed
 from eqsheet.syntax.characters import refuse_foreign_characters
 from eqsheet.syntax.depth import refuse_deep_brackets, refuse_deep_expression
@@ -30,6 +30,8 @@ def parse_document(source: Source) -> tuple[Document, tuple[Diagnostic, ...]]:
     (['Equation'], ['bracket-not-closed'])
     """
     cut = logical_lines(source)
+    if len(cut.logical) - len(cut.table_rows) > MOST_STATEMENTS:
+        return Document(source, (), cut.prose), (_too_large(source, cut.logical[MOST_STATEMENTS]),)
     diagnostics: list[Diagnostic] = []
     lines = []
     for number, line in enumerate(cut.logical):
@@ -127,6 +129,15 @@ def parsed_text(text: str) -> Parsed:
 def _diagnostic(slip: Slip, source: Source, line: LogicalLine) -> Diagnostic:
     span = Span(source, line.offset + slip.start, line.offset + slip.end)
     return error(slip.code, slip.message, Label(span), notes=slip.notes, help=slip.help)
+
+
+def _too_large(source: Source, line: LogicalLine) -> Diagnostic:
+    return error(
+        "too-many-statements",
+        f"the worksheet has more than {MOST_STATEMENTS:,} statements",
+        Label(Span(source, line.offset, line.offset + len(line.text))),
+        help="write equations that differ only in an index as a family: `for i in 1..N:`",
+    )
 
 
 def _too_many(source: Source, line: LogicalLine) -> Diagnostic:
