@@ -43,7 +43,7 @@ _SlotDimensions: TypeAlias = list[Dimension | None]
 
 
 def evaluate(
-    form: Form, literals: Sequence[Dimension], known: _SlotDimensions
+    form: Form, literals: Sequence[Dimension], known: Sequence[Dimension | None]
 ) -> tuple[Dimension, list[tuple[int, Exponent]]]:
     """The form's value as far as known, and the powers of the slots that are not."""
     value = form.constant

@@ -12,15 +12,15 @@ from dataclasses import dataclass, field
 
 from eqsheet.model.dimension_blame import Origin, Place, extent
 from eqsheet.model.kind_rules import (
-    DIFFERENCE,
     KEPT_APART,
-    READING,
     TEMPERATURE,
     Agreement,
     Breach,
     KindReader,
-    Weight,
+    KindShapes,
+    PresumingShape,
 )
+from eqsheet.model.kind_weights import DIFFERENCE, READING, Weight
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
 
@@ -110,6 +110,7 @@ def infer_kinds(
     origins_of_gauge
         Quantities that hold the pressure gauge readings stand on, which they include already.
     """
+    shapes = KindShapes(dimensions)
     readers: dict[int, KindReader] = {}
     users: dict[int, list[int]] = {}
     apart = [dimension in KEPT_APART for dimension in dimensions]
@@ -119,8 +120,8 @@ def infer_kinds(
         )
         if index in without or not kinds_matter:
             continue
-        reader = KindReader(formula, dimensions)
-        if reader.concerned:
+        reader = shapes.reader(formula)
+        if reader.shape.concerned:
             readers[index] = reader
             for quantity in formula.quantities:
                 users.setdefault(quantity, []).append(index)
@@ -129,6 +130,7 @@ def infer_kinds(
     while found.breaches:
         set_aside.add(_culprit(readers, users, found, set_aside, frozenset(minor)))
         found = _spread(readers, users, set_aside)
+    _presume(readers, users, dimensions, set_aside, found)
     origins: list[Origin | None] = [None] * len(dimensions)
     for quantity, (index, agreement) in found.reasons.items():
         origins[quantity] = Origin(index, _witness(formulas[index], agreement, quantity))
@@ -141,38 +143,76 @@ def infer_kinds(
     return KindResult(kinds, tuple(origins), tuple(m for m in misuses if m is not None))
 
 
+def _presume(
+    readers: dict[int, KindReader],
+    users: dict[int, list[int]],
+    dimensions: Sequence[Dimension | None],
+    set_aside: Collection[int],
+    found: _Pass,
+) -> None:
+    """Add kinds that are likely, though not certain, to those found; changes `found`."""
+    if all(q in found.kinds for q in users if dimensions[q] in KEPT_APART):
+        return
+    shapes = KindShapes(dimensions, PresumingShape)
+    presuming = {index: shapes.reader(reader.formula) for index, reader in readers.items()}
+    likely = _Pass(dict(found.kinds), dict(found.reasons))
+    _visit_all(presuming, users, likely, sorted(presuming), set(set_aside))
+    found.kinds, found.reasons = likely.kinds, likely.reasons
+
+
 def _spread(readers: dict[int, KindReader], users: dict[int, list[int]], without: Collection[int]) -> _Pass:
-    """Kinds spread in rounds, knowns first, so that each is put down to the shortest chain of lines."""
+    """Kinds spread from nothing, knowns first."""
     found = _Pass()
     left_out = set(without)
     singles = [index for index, reader in readers.items() if len(reader.formula.quantities) <= 1]
-    queue = singles
-    first = True
-    while queue or first:
-        touched = set(readers) - set(singles) if first else set()
-        first = False
-        news: list[tuple[int, int, int, Agreement]] = []
-        for index in queue:
-            if index in left_out:
-                continue
-            reader = readers[index]
-            quantities = reader.formula.quantities
-            now = {slot: found.kinds[q] for slot, q in enumerate(quantities) if q in found.kinds}
-            visit = reader.visit(now)
-            if visit.breach is not None:
-                found.breaches[index] = visit.breach
-                left_out.add(index)
-                continue
-            news.extend((quantities[slot], kind, index, why) for slot, kind, why in visit.solved)
-        for quantity, kind, index, why in news:
-            if quantity not in found.kinds:
-                found.kinds[quantity] = kind
-                found.reasons[quantity] = (index, why)
-                touched.update(users[quantity])
-            elif found.kinds[quantity] != kind:
-                touched.add(index)
-        queue = sorted(touched - left_out)
+    touched = _visit_round(readers, users, found, singles, left_out)
+    others = set(readers).difference(singles)
+    _visit_all(readers, users, found, sorted(others | touched), left_out)
     return found
+
+
+def _visit_all(
+    readers: dict[int, KindReader],
+    users: dict[int, list[int]],
+    found: _Pass,
+    queue: list[int],
+    left_out: set[int],
+) -> None:
+    """Visit round by round, so that each kind is put down to the shortest chain of lines."""
+    while queue:
+        queue = sorted(_visit_round(readers, users, found, queue, left_out))
+
+
+def _visit_round(
+    readers: dict[int, KindReader],
+    users: dict[int, list[int]],
+    found: _Pass,
+    queue: list[int],
+    left_out: set[int],
+) -> set[int]:
+    """Visit all formulas in the light of the same knowledge; gives those to visit in the next round."""
+    touched: set[int] = set()
+    news: list[tuple[int, int, int, Agreement]] = []
+    for index in queue:
+        if index in left_out:
+            continue
+        reader = readers[index]
+        quantities = reader.formula.quantities
+        now = {slot: found.kinds[q] for slot, q in enumerate(quantities) if q in found.kinds}
+        visit = reader.visit(now)
+        if visit.breach is not None:
+            found.breaches[index] = visit.breach
+            left_out.add(index)
+            continue
+        news.extend((quantities[slot], kind, index, why) for slot, kind, why in visit.solved)
+    for quantity, kind, index, why in news:
+        if quantity not in found.kinds:
+            found.kinds[quantity] = kind
+            found.reasons[quantity] = (index, why)
+            touched.update(users[quantity])
+        elif found.kinds[quantity] != kind:
+            touched.add(index)
+    return touched - left_out
 
 
 def _culprit(
@@ -273,7 +313,7 @@ def _misuse(
     operation, *operands = reader.instructions[guilty]
     literal = operands[0] if operation == "literal" and isinstance(operands[0], int) else -1
     place = formula.places[guilty]
-    return Misuse(what, index, place, against, parts, literal, reader.dimensions[guilty])
+    return Misuse(what, index, place, against, parts, literal, reader.dimension(guilty))
 
 
 def _slots_in(reader: KindReader, roots: set[int]) -> set[int]:
@@ -361,7 +401,7 @@ def _doubled_offsets(
                     if slot in now
                 )
                 place, against = formula.places[offset], formula.places[other]
-                misuses.append(Misuse("offset", index, place, against, parts, -1, reader.dimensions[offset]))
+                misuses.append(Misuse("offset", index, place, against, parts, -1, reader.dimension(offset)))
     return misuses
 
 

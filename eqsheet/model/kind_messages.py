@@ -6,7 +6,8 @@ from collections.abc import Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
 from eqsheet.model.infer_kinds import KIND_WORDS, KindResult, Misuse
-from eqsheet.model.kind_rules import READING, TEMPERATURE
+from eqsheet.model.kind_rules import TEMPERATURE
+from eqsheet.model.kind_weights import READING
 from eqsheet.model.tape import Formula, Literal
 from eqsheet.syntax.nodes import Statement
 

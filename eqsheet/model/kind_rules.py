@@ -17,41 +17,25 @@ from fractions import Fraction
 
 from eqsheet.model.dimension_propagation import evaluate
 from eqsheet.model.dimension_rules import rules_of
-from eqsheet.model.tape import Formula
+from eqsheet.model.kind_weights import (
+    DIFFERENCE,
+    ONE,
+    READING,
+    ZERO,
+    Weight,
+    added,
+    forced_kinds,
+    is_difference,
+    scaled,
+    with_known,
+)
+from eqsheet.model.tape import Formula, Instruction, Tape
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.unit import Unit
 
 TEMPERATURE = Dimension.of({"K": 1})
 PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
 KEPT_APART = (TEMPERATURE, PRESSURE)
-
-READING, DIFFERENCE = 1, 0
-
-#: Weights typed by hand (0.33 for a third) are off by less than this.
-ROUNDED = Fraction(1, 20)
-
-
-@dataclass(frozen=True, slots=True)
-class Weight:
-    """``constant + sum of factor * weight of a variable``.
-
-    Variables are slots of quantities (from 0) and, as ``-1 - i``, instructions i that may be either kind.
-    ``scaled`` is true after multiplication by a number other than 1 and -1.
-    """
-
-    constant: Fraction
-    terms: tuple[tuple[int, int], ...] = ()
-    scaled: bool = False
-
-    @property
-    def certain(self) -> Fraction | None:
-        """Its value where no variable is left in it."""
-        return None if self.terms else self.constant
-
-    @property
-    def sound(self) -> bool:
-        """Whether it is a kind at all: a multiple of a reading is neither reading nor difference."""
-        return not self.scaled or self.constant in (READING, DIFFERENCE)
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,37 +65,18 @@ class KindVisit:
     breach: Breach | None
 
 
-def _sum(a: Weight, b: Weight, sign: int) -> Weight:
-    terms = dict(a.terms)
-    for variable, factor in b.terms:
-        total = terms.get(variable, 0) + sign * factor
-        if total:
-            terms[variable] = total
-        else:
-            terms.pop(variable, None)
-    return Weight(a.constant + sign * b.constant, tuple(sorted(terms.items())), a.scaled or b.scaled)
+class KindShape:
+    """What all formulas of one tape, with literals and quantities of the same sorts, say about kinds.
 
+    What follows from given kinds is remembered: a thousand lines of one shape are worked out once.
+    """
 
-def _scaled(weight: Weight, factor: Fraction) -> Weight | None:
-    if factor == 1:
-        return weight
-    if factor == -1:
-        return _sum(Weight(Fraction(0)), weight, -1)
-    return None if weight.terms else Weight(weight.constant * factor, (), True)
-
-
-ZERO = Weight(Fraction(DIFFERENCE))
-ONE = Weight(Fraction(READING))
-
-
-class KindReader:
-    """One formula with its dimensions known, to be read again as kinds of its quantities become known."""
-
-    def __init__(self, formula: Formula, dimensions: Sequence[Dimension | None]) -> None:
+    def __init__(self, formula: Formula, known: Sequence[Dimension | None]) -> None:
         self.formula = formula
         self.instructions = formula.tape.instructions
+        self._weights: dict[tuple[int | None, ...], list[Weight | None]] = {}
+        self._visits: dict[tuple[int | None, ...], KindVisit] = {}
         forms = rules_of(formula.tape, formula.alike).forms
-        known = [dimensions[q] for q in formula.quantities]
         literals = [literal.dimension for literal in formula.literals]
         self.dimensions: list[Dimension] = []
         self.apart: list[bool] = []
@@ -128,11 +93,6 @@ class KindReader:
     def concerned(self) -> bool:
         """Whether temperatures or pressures occur at all."""
         return any(self.apart)
-
-    def bareness(self, index: int) -> tuple[bool, int]:
-        """Orders operands: single names and literals after expressions, later ones after earlier."""
-        leaf = self.instructions[index][0] in ("quantity", "literal", "const")
-        return leaf, self.formula.places[index][0]
 
     # --- what does not depend on kinds -----------------------------------------------------------------
 
@@ -195,8 +155,26 @@ class KindReader:
 
     # --- what does --------------------------------------------------------------------------------------
 
+    def _key(self, kinds: Mapping[int, int]) -> tuple[int | None, ...]:
+        return tuple([kinds.get(slot) for slot in range(len(self.formula.quantities))])
+
     def weights(self, kinds: Mapping[int, int]) -> list[Weight | None]:
         """Weight of each instruction, None where there is none; `kinds` by slot."""
+        key = self._key(kinds)
+        found = self._weights.get(key)
+        if found is None:
+            found = self._weights[key] = self._weigh(kinds)
+        return found
+
+    def visit(self, kinds: Mapping[int, int]) -> KindVisit:
+        """What follows from the kinds known so far."""
+        key = self._key(kinds)
+        found = self._visits.get(key)
+        if found is None:
+            found = self._visits[key] = self._visit(kinds)
+        return found
+
+    def _weigh(self, kinds: Mapping[int, int]) -> list[Weight | None]:
         weights: list[Weight | None] = []
         for index in range(len(self.instructions)):
             weights.append(self._weight(index, weights, kinds) if self.apart[index] else None)
@@ -219,19 +197,19 @@ class KindReader:
                 return self._added(a, b, 1 if operation == "add" else -1, weights)
             case "neg", [int(a)]:
                 inner = weights[a]
-                return None if inner is None else _scaled(inner, Fraction(-1))
+                return None if inner is None else scaled(inner, Fraction(-1))
             case (("mul" | "div"), [int(a), int(b)]):
                 return self._multiplied(a, b, operation == "div", weights)
             case "power", [int(a), Fraction() as power] if power == 1:
                 return weights[a]
             case "abs", [int(a)]:
-                return ZERO if _is_difference(weights[a]) else None
+                return ZERO if is_difference(weights[a]) else None
             case (("min" | "max"), [int(a), int(b)]):
                 return weights[a] if weights[a] is not None else weights[b]
             case "if", [_, int(a), int(b)]:
                 return weights[a] if weights[a] is not None else weights[b]
             case (("hypot" | "logmean"), [int(a), int(b)]):
-                return ZERO if _is_difference(weights[a]) and _is_difference(weights[b]) else None
+                return ZERO if is_difference(weights[a]) and is_difference(weights[b]) else None
         return None
 
     def _added(self, a: int, b: int, sign: int, weights: list[Weight | None]) -> Weight | None:
@@ -239,25 +217,30 @@ class KindReader:
         if self.fits_any[b]:
             return left
         if self.fits_any[a]:
-            return None if right is None else _scaled(right, Fraction(sign))
-        return None if left is None or right is None else _sum(left, right, sign)
+            return None if right is None else scaled(right, Fraction(sign))
+        if left is None or right is None:
+            return self.sum_in_doubt(left, right, sign)
+        return added(left, right, sign)
+
+    def sum_in_doubt(self, left: Weight | None, right: Weight | None, sign: int) -> Weight | None:
+        """Weight of a sum with a term that has none: none, as only what is certain may be refused."""
+        return None
 
     def _multiplied(self, a: int, b: int, divided: bool, weights: list[Weight | None]) -> Weight | None:
         left, right = weights[a], weights[b]
         factor = self.numbers[b]
         if left is not None:
             if factor is not None:
-                return _scaled(left, 1 / factor if divided else factor) if factor else None
-            return ZERO if _is_difference(left) else None
+                return scaled(left, 1 / factor if divided else factor) if factor else None
+            return ZERO if is_difference(left) else None
         if right is None or divided:
             return None
         factor = self.numbers[a]
         if factor is not None:
-            return _scaled(right, factor) if factor else None
-        return ZERO if _is_difference(right) else None
+            return scaled(right, factor) if factor else None
+        return ZERO if is_difference(right) else None
 
-    def visit(self, kinds: Mapping[int, int]) -> KindVisit:
-        """What follows from the kinds known so far."""
+    def _visit(self, kinds: Mapping[int, int]) -> KindVisit:
         now = dict(kinds)
         solved: list[tuple[int, int, Agreement]] = []
         either: dict[int, int] = {}
@@ -272,8 +255,8 @@ class KindReader:
                 )
                 if left is None or right is None or not (left.sound and right.sound):
                     continue
-                gap = _known_put_in(_sum(left, right, -1), now, either)
-                forced = _forced(gap)
+                gap = with_known(added(left, right, -1), now, either)
+                forced = forced_kinds(gap)
                 if forced is None:
                     return KindVisit(tuple(solved), Breach(agreement, left, right))
                 for variable, kind in forced:
@@ -290,33 +273,77 @@ class KindReader:
         return KindVisit(tuple(solved), None)
 
 
-def _known_put_in(gap: Weight, now: Mapping[int, int], either: Mapping[int, int]) -> Weight:
-    constant = gap.constant
-    terms: list[tuple[int, int]] = []
-    for variable, factor in gap.terms:
-        kind = now.get(variable) if variable >= 0 else either.get(variable)
-        if kind is None:
-            terms.append((variable, factor))
-        else:
-            constant += factor * kind
-    return Weight(constant, tuple(terms), gap.scaled)
+class PresumingShape(KindShape):
+    """A shape that takes terms without weight for differences, as in ``T_1 + Q/(m*cp)`` or ``p_1 - rho*v^2/2``.
+
+    Good enough to say in what kind a result is shown, not to refuse a line.
+    """
+
+    def sum_in_doubt(self, left: Weight | None, right: Weight | None, sign: int) -> Weight | None:
+        """Weight of the other term."""
+        if right is None:
+            return left
+        return scaled(right, Fraction(sign))
 
 
-def _forced(gap: Weight) -> list[tuple[int, int]] | None:
-    """Kinds that follow from ``gap = 0``, every variable being 0 or 1; None where it cannot hold."""
-    lowest = gap.constant + sum(min(factor, 0) for _, factor in gap.terms)
-    highest = gap.constant + sum(max(factor, 0) for _, factor in gap.terms)
-    if lowest > ROUNDED or highest < -ROUNDED:
-        return None
-    if abs(lowest) <= ROUNDED and abs(highest) > ROUNDED:
-        return [(variable, READING if factor < 0 else DIFFERENCE) for variable, factor in gap.terms]
-    if abs(highest) <= ROUNDED and abs(lowest) > ROUNDED:
-        return [(variable, READING if factor > 0 else DIFFERENCE) for variable, factor in gap.terms]
-    return []
+@dataclass(frozen=True, slots=True)
+class KindReader:
+    """A formula and its shape."""
+
+    formula: Formula
+    shape: KindShape
+
+    @property
+    def instructions(self) -> tuple[Instruction, ...]:
+        """Of the tape."""
+        return self.shape.instructions
+
+    def weights(self, kinds: Mapping[int, int]) -> list[Weight | None]:
+        """As `KindShape.weights`."""
+        return self.shape.weights(kinds)
+
+    def visit(self, kinds: Mapping[int, int]) -> KindVisit:
+        """As `KindShape.visit`."""
+        return self.shape.visit(kinds)
+
+    def dimension(self, index: int) -> Dimension:
+        """Of an instruction."""
+        return self.shape.dimensions[index]
+
+    def bareness(self, index: int) -> tuple[bool, int]:
+        """Orders operands: single names and literals after expressions, later ones after earlier."""
+        leaf = self.instructions[index][0] in ("quantity", "literal", "const")
+        return leaf, self.formula.places[index][0]
 
 
-def _is_difference(weight: Weight | None) -> bool:
-    return weight is not None and weight.certain == DIFFERENCE
+class KindShapes:
+    """The shapes of a worksheet's formulas, each made once, as `KindShape` or `PresumingShape`."""
+
+    def __init__(self, dimensions: Sequence[Dimension | None], make: type[KindShape] = KindShape) -> None:
+        self._make = make
+        self._dimensions = dimensions
+        numbers: dict[Dimension | None, int] = {}
+        self._numbers = [numbers.setdefault(dimension, len(numbers)) for dimension in dimensions]
+        self._shapes: dict[tuple[object, ...], KindShape] = {}
+        self._tapes: dict[int, Tape] = {}
+
+    def reader(self, formula: Formula) -> KindReader:
+        """The formula with its shape."""
+        # The tape is kept so that its identity stays its own; hashing all its instructions would be slow.
+        self._tapes[id(formula.tape)] = formula.tape
+        key = (
+            id(formula.tape),
+            formula.alike,
+            formula.differences,
+            # Values matter where they are plain numbers, which weigh what they multiply.
+            *[(x.kind, id(x.dimension) if x.dimension else x.value) for x in formula.literals],
+            *[self._numbers[q] for q in formula.quantities],
+        )
+        shape = self._shapes.get(key)
+        if shape is None:
+            known = [self._dimensions[q] for q in formula.quantities]
+            shape = self._shapes[key] = self._make(formula, known)
+        return KindReader(formula, shape)
 
 
 def _arithmetic(operation: object, values: list[Fraction]) -> Fraction | None:

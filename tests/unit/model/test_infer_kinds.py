@@ -91,6 +91,21 @@ def test_pressure_drops() -> None:
     assert found["dp"] == "difference"
 
 
+HEATER = ["T1 = 20[degC]", "Q = 3[W]", "C = 2[W/K]"]
+
+
+def test_a_term_of_other_quantities_is_presumed_a_difference() -> None:
+    assert kinds(*HEATER, "T2 = T1 + Q/C")["T2"] == "reading"
+    assert kinds(*HEATER, "T1 = T2 - Q/C")["T2"] == "reading"
+    assert kinds("p1 = 3[barg]", "h = 2[m]", "g = 3[kg/m**2/s**2]", "p2 = p1 - g*h")["p2"] == "reading"
+
+
+def test_what_is_presumed_is_never_refused() -> None:
+    """Q/C could be less a reading, for all one can tell, and d the difference it is used as."""
+    found = kinds(*HEATER, "d = T1 + Q/C", "T3 = 9[degC]", "T1 = T3 + d")
+    assert found["d"] == "difference"
+
+
 def test_absolute_values_can_be_either() -> None:
     assert kinds("T1 = 300[K]", "dT = 5[K]", "T2 = T1 + dT") == {
         "T1": "unknown",
