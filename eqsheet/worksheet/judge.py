@@ -71,7 +71,9 @@ def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitRep
     )
 
 
-def _unit_of_a_side(prepared: Prepared, item: LimitItem, operands: Sequence[int], dimension: Dimension) -> Unit:
+def _unit_of_a_side(
+    prepared: Prepared, item: LimitItem, operands: Sequence[int], dimension: Dimension
+) -> Unit:
     """Unit of the first quantity that is a side by itself, else the one of the fixed table."""
     system = prepared.system
     for operand in operands:

@@ -10,6 +10,8 @@ from eqsheet.model.system import EquationSystem, Place
 
 # Longer lists are folded: a reader acts on the first few and searches for the rest.
 MOST_LISTED = 8
+# A diagnostic with more places than this does not fit a screen.
+MOST_LABELS = 6
 
 
 def span_of(system: EquationSystem, place: Place) -> Span:

@@ -47,6 +47,8 @@ class Prepared:
     diagnostics : tuple of Diagnostic
     valid_text : bool
         No error in text, names, units or dimensions, so that numbers may be computed.
+    contested : frozenset of int
+        Quantities set to several values, so that nothing can be computed from them.
     """
 
     statements: tuple[Statement, ...]
@@ -61,6 +63,7 @@ class Prepared:
     diagnostics: tuple[Diagnostic, ...]
     valid_text: bool
     timing: Mapping[str, float] = field(default_factory=dict)
+    contested: frozenset[int] = frozenset()
 
 
 def prepare(
@@ -115,6 +118,7 @@ def prepare(
         tuple(diagnostics),
         valid_text,
         timing,
+        checked.contested,
     )
 
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass, field
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
@@ -80,7 +80,8 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
     values = [math.nan] * count
     errors = [0.0] * count
     for quantity, value in prepared.known_values.items():
-        values[quantity] = value
+        if quantity not in prepared.contested:
+            values[quantity] = value
     formulas = list(prepared.formulas)
     dimensions = prepared.dimensions.dimensions
     known = Known(values, errors)
@@ -98,7 +99,7 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
         equations.sort(key=lambda e: system.equations[e].place.statement)
         after = tuple(numbers[d] for d in block.depends if d in numbers)
         result = None
-        if any(a in failed for a in after):
+        if any(a in failed for a in after) or _uses(formulas, equations, prepared.contested):
             failed.add(number)
         else:
             result = solve(
@@ -136,6 +137,11 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
         tuple(diagnostics),
         best,
     )
+
+
+def _uses(formulas: Sequence[Formula], equations: Sequence[int], quantities: Collection[int]) -> bool:
+    """Whether one of the equations holds one of the quantities."""
+    return bool(quantities) and any(q in quantities for e in equations for q in formulas[e].quantities)
 
 
 def _conflicts(
@@ -194,7 +200,7 @@ def _withhold(
     columns = {column for conflict in contradicted for column in conflict.columns}
     tainted: set[int] = set()
     for run in runs:
-        if columns.intersection(run.unknowns) or tainted.intersection(run.after):
+        if _uses(prepared.formulas, run.equations, columns) or tainted.intersection(run.after):
             tainted.add(run.number)
             for quantity in run.unknowns:
                 values[quantity] = math.nan

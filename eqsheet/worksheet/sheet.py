@@ -102,9 +102,7 @@ def parse(text: str, name: str = "<text>") -> Worksheet:
     return read(Source(name, text.replace("\r\n", "\n").removeprefix("\ufeff")))
 
 
-def read(
-    source: Source, cache: LoweredCache | None = None, memory: BlockMemory | None = None
-) -> Worksheet:
+def read(source: Source, cache: LoweredCache | None = None, memory: BlockMemory | None = None) -> Worksheet:
     """The worksheet of a source.
 
     Parameters

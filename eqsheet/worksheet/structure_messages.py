@@ -9,9 +9,7 @@ from eqsheet.model.spelling import close_names
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.verdict import Conflict, Shortfall, Structure
-from eqsheet.worksheet.places import label_of, line_words, listed, quoted
-
-MOST_LABELS = 6
+from eqsheet.worksheet.places import MOST_LABELS, label_of, line_words, listed, quoted
 
 
 def structure_diagnostics(

@@ -7,9 +7,9 @@ from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note
 from eqsheet.model.evaluate import evaluate_with_evidence
-from eqsheet.model.system import EquationSystem
+from eqsheet.model.system import EquationItem, EquationSystem
 from eqsheet.model.tape import Formula
-from eqsheet.worksheet.places import label_of, line_words, span_of
+from eqsheet.worksheet.places import MOST_LABELS, label_of, line_words, span_of
 from eqsheet.worksheet.written_values import written
 
 # Knowns are typed with few digits, so an equation among knowns alone holds if it holds to this part of the size
@@ -19,10 +19,14 @@ EQUAL_TO = 1e-9
 
 @dataclass(frozen=True, slots=True)
 class Checked:
-    """Equations left for the structure (by number), and what was found about the others."""
+    """Equations left for the structure (by number), and what was found about the others.
+
+    ``contested`` holds the quantities that are set to several values, so that none can be relied on.
+    """
 
     rows: tuple[int, ...]
     diagnostics: tuple[Diagnostic, ...]
+    contested: frozenset[int] = frozenset()
 
 
 def check_without_unknowns(
@@ -43,33 +47,47 @@ def check_without_unknowns(
     """
     rows: list[int] = []
     diagnostics: list[Diagnostic] = []
-    setter: dict[int, int] = {}
+    setters: dict[int, list[EquationItem]] = {}
+    for item in system.equations:
+        if item.known >= 0:
+            setters.setdefault(item.known, []).append(item)
+    repeated = {quantity: items for quantity, items in setters.items() if len(items) > 1}
+    contested = frozenset(quantity for quantity, items in repeated.items() if not _one_value(items))
+    seen: set[int] = set()
     for number, (item, formula) in enumerate(zip(system.equations, formulas)):
         if item.known >= 0:
-            first = setter.setdefault(item.known, number)
-            if first == number:
+            if item.known not in seen:
                 rows.append(number)
-            else:
-                diagnostics.append(_set_twice(system, first, number))
+                seen.add(item.known)
         elif any(q not in known_values for q in formula.quantities):
             rows.append(number)
-        elif number not in clashing:
-            diagnostics.append(_check(system, number, formula, known_values, setter))
-    return Checked(tuple(rows), tuple(diagnostics))
+        elif number not in clashing and contested.isdisjoint(formula.quantities):
+            diagnostics.append(_check(system, number, formula, known_values, setters))
+    diagnostics += [_set_twice(system, items) for items in repeated.values()]
+    return Checked(tuple(rows), tuple(diagnostics), contested)
 
 
-def _set_twice(system: EquationSystem, first: int, second: int) -> Diagnostic:
-    a, b = system.equations[first], system.equations[second]
-    if a.place.statement > b.place.statement:
-        a, b = b, a
-    name = system.names[a.known]
-    same = "to the same value " if a.value == b.value else ""
+def _one_value(items: Sequence[EquationItem]) -> bool:
+    first = items[0].value
+    return all(abs(item.value - first) <= EQUAL_TO * abs(first) for item in items)
+
+
+def _set_twice(system: EquationSystem, items: Sequence[EquationItem]) -> Diagnostic:
+    """One diagnostic for a quantity however often it is set."""
+    items = sorted(items, key=lambda item: item.place.statement)
+    first, again, *more = items
+    name = system.names[first.known]
+    count = "twice" if not more else f"{len(items)} times"
+    same = " to the same value" if _one_value(items) else ""
     return error(
         "set-twice",
-        f"`{name}` is set twice {same}on {line_words(system, (a.place, b.place))}".replace("  ", " "),
-        label_of(system, b.place, "again here"),
-        label_of(system, a.place, "first here"),
-        help="keep one of the two lines, or switch one `off`",
+        f"`{name}` is set {count}{same} on {line_words(system, [item.place for item in items])}",
+        label_of(system, again.place, "again here"),
+        label_of(system, first.place, "first here"),
+        *[label_of(system, item.place, "and here") for item in more[: MOST_LABELS - 2]],
+        help="keep one of the lines, or switch the others `off`"
+        if more
+        else "keep one of the two lines, or switch one `off`",
     )
 
 
@@ -78,7 +96,7 @@ def _check(
     number: int,
     formula: Formula,
     known_values: Mapping[int, float],
-    setter: Mapping[int, int],
+    setters: Mapping[int, Sequence[EquationItem]],
 ) -> Diagnostic:
     item = system.equations[number]
     evidence = evaluate_with_evidence(
@@ -97,7 +115,7 @@ def _check(
             f"`{text}` holds no unknown, and is true",
             here,
         )
-    knowns = [system.equations[setter[q]] for q in formula.quantities if q in setter]
+    knowns = [setters[q][0] for q in formula.quantities if q in setters]
     names = ", ".join(f"`{system.names[k.known]}`" for k in knowns)
     sides = f"left side {written(evidence.values[left])}, right side {written(evidence.values[right])}, in SI units"
     return error(
