@@ -6,7 +6,8 @@ import re
 from collections.abc import Sequence
 from fractions import Fraction
 
-from eqsheet.model.dimension_blame import GRAVITY, SLIPS, Clash, Part
+from eqsheet.model.dimension_blame import Clash, Part
+from eqsheet.model.dimension_culprit import GRAVITY, SLIPS
 from eqsheet.model.infer_dimensions import DimensionResult
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension

@@ -2,7 +2,7 @@
 
 Nothing is declared: the dimensions are the most general solution of all demands of all formulas, a linear
 system over the rationals. Whether there is a solution does not depend on the order of the lines; where there
-is none, one formula after another is set aside until there is (`dimension_blame` says which), and each is
+is none, one formula after another is set aside until there is (`dimension_culprit` says which), and each is
 reported as a `Clash`.
 """
 
@@ -11,14 +11,8 @@ from __future__ import annotations
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 
-from eqsheet.model.dimension_blame import (
-    LARGEST_EFFORT,
-    Clash,
-    Origin,
-    choose_culprit,
-    describe_clash,
-    origins_of,
-)
+from eqsheet.model.dimension_blame import Clash, Origin, describe_clash, origins_of
+from eqsheet.model.dimension_culprit import LARGEST_EFFORT, choose_culprit
 from eqsheet.model.dimension_propagation import UNKNOWN, Inference, Worklines, propagate
 from eqsheet.model.dimension_rules import Exponent
 from eqsheet.model.tape import Formula

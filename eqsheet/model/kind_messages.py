@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
-from eqsheet.model.infer_kinds import KIND_WORDS, KindResult, Misuse
+from eqsheet.model.infer_kinds import KIND_WORDS, KindResult
+from eqsheet.model.kind_misuse import Misuse
 from eqsheet.model.kind_rules import TEMPERATURE
 from eqsheet.model.kind_weights import READING
 from eqsheet.model.tape import Formula, Literal
