@@ -228,11 +228,11 @@ def lower_limit(
     ]
     # The percent sign of `within 1 %` is no unit of the quantity.
     unit = unit if node.relative else work.first_unit
-    hints = []
-    if unit is not None:
-        for reference in references:
-            if reference.name not in work.index_names:
-                hints.append((names.number(_key(reference, work)), unit))
+    hints = [
+        (names.number(_key(reference, work)), unit)
+        for reference in references
+        if unit is not None and reference.name not in work.index_names
+    ]
     text = statement.line.text[condition.start : node.end].strip()
     item = LimitItem(
         formula,

@@ -18,6 +18,9 @@ from scipy import constants
 from scipy.optimize import brentq
 
 import eqsheet
+from eqsheet.app.main import main
+from eqsheet.diagnostics.source import Source
+from eqsheet.syntax.format import format_document
 
 SAMPLES = Path(__file__).parents[2] / "samples"
 G_N = constants.g
@@ -468,3 +471,20 @@ def test_sample_carries_the_caution_and_says_its_data_are_invented(name: str) ->
 def test_sample_has_a_block_of_four_or_more_simultaneous_unknowns(name: str) -> None:
     solution = eqsheet.load(SAMPLES / f"{name}.eqsheet").solve()
     assert max(len(block.unknowns) for block in solution.blocks) >= 4
+
+
+@pytest.mark.parametrize("name", AS_WRITTEN)
+def test_sample_passes_the_check_from_another_directory(
+    name: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    assert main(["check", str(SAMPLES / f"{name}.eqsheet")]) == 0
+    said = capsys.readouterr()
+    assert "solved" in said.out
+    assert said.err == "" or all(word not in said.err for word in ("error:", "warning:"))
+
+
+@pytest.mark.parametrize("name", AS_WRITTEN)
+def test_sample_is_tidy(name: str) -> None:
+    text = (SAMPLES / f"{name}.eqsheet").read_text(encoding="utf-8")
+    assert format_document(Source(name, text)) == text
