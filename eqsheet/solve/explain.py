@@ -6,9 +6,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from eqsheet.solve.factor import factorise, smallest_singular_vectors
+from eqsheet.solve.factor import Factor, factorise, smallest_singular_vectors
 from eqsheet.solve.outcome import Outcome, Status
-from eqsheet.solve.problem import Problem, Vector
+from eqsheet.solve.problem import Matrix, Problem, Vector
 from eqsheet.solve.termination import equation_sizes, floored
 
 # Equations named as worst.
@@ -55,11 +55,9 @@ def explain(problem: Problem, outcome: Outcome) -> Facts:
     """The facts at ``outcome.x``."""
     x = outcome.x
     residual, jacobian = problem.linearise(x)
-    jacobian = np.asarray(jacobian.toarray() if hasattr(jacobian, "toarray") else jacobian)
-    bad = np.flatnonzero(~np.isfinite(residual))
-    if bad.size or not np.isfinite(jacobian).all():
-        first = int(bad[0]) if bad.size else int(np.flatnonzero(~np.isfinite(jacobian).all(axis=1))[0])
-        return Facts((), first, (), (), (), False)
+    bad = np.flatnonzero(~np.isfinite(residual + jacobian @ np.ones(problem.n)))
+    if bad.size:
+        return Facts((), int(bad[0]), (), (), (), False)
     sizes = equation_sizes(problem, x, jacobian)
     scaled = np.abs(residual) / np.where(sizes > 0.0, sizes, 1.0)
     order = np.argsort(-scaled, kind="stable")[:MOST_NAMED]
@@ -68,7 +66,7 @@ def explain(problem: Problem, outcome: Outcome) -> Facts:
     weights = floored(x, problem)
     factor = factorise(jacobian, weights)
     step = -factor.solve(residual) * weights
-    pressed = _pressed(problem, x, step, residual, factor.inverse / factor.rows)
+    pressed = _pressed(problem, x, step, residual, factor)
     relative, left, right = smallest_singular_vectors(factor.matrix)
     dependent = relative < NEAR_DEPENDENT
     return Facts(
@@ -83,13 +81,13 @@ def explain(problem: Problem, outcome: Outcome) -> Facts:
 
 
 def _pressed(
-    problem: Problem, x: Vector, step: Vector, residual: Vector, inverse: Vector
+    problem: Problem, x: Vector, step: Vector, residual: Vector, factor: Factor
 ) -> tuple[tuple[int, int, int], ...]:
     """Unknowns that the step carries to or past a bound, with the equation that contributes most to that."""
     found = []
     for side, bound in ((-1, problem.lower), (1, problem.upper)):
         for unknown in np.flatnonzero(side * (x + step - bound) >= 0.0):
-            pushes = -inverse[unknown] * residual * side
+            pushes = -factor.inverse_row(int(unknown)) * residual * side
             found.append((int(unknown), side, int(pushes.argmax())))
     return tuple(sorted(found))
 
@@ -102,18 +100,23 @@ def _participants(vector: Vector) -> tuple[tuple[int, float], ...]:
 
 
 def _at_minimum(
-    problem: Problem, x: Vector, scaled: Vector, jacobian: Vector, weights: Vector, sizes: Vector
+    problem: Problem, x: Vector, scaled: Vector, jacobian: Matrix, weights: Vector, sizes: Vector
 ) -> bool:
     """Whether the gradient of the squared scaled residuals vanishes, bounds that hold it back allowed for."""
     norm = float(np.linalg.norm(scaled))
     if norm <= 1e-10:
         return False
-    matrix = jacobian * weights / np.where(sizes > 0.0, sizes, 1.0)[:, None]
-    gradient = scaled @ matrix
+    units = np.where(sizes > 0.0, sizes, 1.0)[:, None]
+    if hasattr(jacobian, "multiply"):
+        matrix = jacobian.multiply(weights).multiply(1.0 / units)
+        columns = np.sqrt(np.asarray(matrix.multiply(matrix).sum(axis=0)).ravel())
+    else:
+        matrix = jacobian * weights / units
+        columns = np.linalg.norm(matrix, axis=0)
+    gradient = matrix.T @ scaled
     near_lower = x - problem.lower <= 1e-6 * problem.magnitude
     near_upper = problem.upper - x <= 1e-6 * problem.magnitude
     gradient = np.where(near_lower, np.minimum(gradient, 0.0), gradient)
     gradient = np.where(near_upper, np.maximum(gradient, 0.0), gradient)
-    columns = np.linalg.norm(matrix, axis=0)
     steepest = np.abs(gradient) / np.where(columns > 0.0, columns, 1.0)
     return bool(steepest.max() <= STATIONARY * norm)

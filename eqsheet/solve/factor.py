@@ -46,14 +46,15 @@ class Factor:
         """Whether A has no full numerical rank."""
         return self.condition > SINGULAR_CONDITION
 
-    @property
-    def dense(self) -> Vector:
-        """A as an array, for singular vectors."""
-        return np.asarray(self.matrix.toarray() if hasattr(self.matrix, "toarray") else self.matrix)
-
     def solve(self, residual: Vector) -> Vector:
         """u (n,) with ``A u = residual/rows`` (of least norm where A is singular): a step in units of w."""
         return np.asarray(self.inverse @ (residual / self.rows))
+
+    def inverse_row(self, unknown: int) -> Vector:
+        """How one unknown, in units of w, answers to each equation (n,): a row of the inverse Jacobian."""
+        if isinstance(self.inverse, np.ndarray):
+            return np.asarray(self.inverse[unknown] / self.rows)
+        return np.asarray(self.inverse.row(unknown) / self.rows)
 
 
 def factorise(jacobian: Matrix, weights: Vector) -> Factor:
@@ -112,6 +113,10 @@ def pseudo_inverse(matrix: Matrix) -> Matrix:
 
 def smallest_singular_vectors(matrix: Matrix) -> tuple[float, Vector, Vector]:
     """Smallest singular value relative to the largest, with its left (n,) and right (n,) singular vectors."""
+    if hasattr(matrix, "tocsc"):
+        from eqsheet.solve.sparse_factor import smallest_by_inverse_iteration
+
+        return smallest_by_inverse_iteration(matrix)
     left, values, right = np.linalg.svd(matrix)
     largest = values[0]
     return (float(values[-1] / largest) if largest > 0.0 else 0.0), left[:, -1], right[-1]

@@ -37,9 +37,17 @@ WITH_BOUNDS: tuple[tuple[str, Rung], ...] = (
     ("fixed-point homotopy", fixed_point_homotopy),
     ("spread starts", spread),
 )
+# The other methods work on dense matrices, which a block of more unknowns than this has no room for.
+LARGEST_DENSE = 500
+FOR_LARGE: tuple[tuple[str, Rung], ...] = (
+    ("newton, start moved", newton),
+    ("logarithmic newton", logarithmic_newton),
+)
 
 
 def fallbacks(problem: Problem) -> tuple[tuple[str, Rung], ...]:
     """The rungs for a problem, with their names."""
+    if problem.n > LARGEST_DENSE:
+        return FOR_LARGE
     bounded = bool((problem.lower > -float("inf")).any() or (problem.upper < float("inf")).any())
     return WITH_BOUNDS if bounded else WITHOUT_BOUNDS

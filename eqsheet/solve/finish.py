@@ -65,7 +65,7 @@ def finish(
         kind = Status.DOUBLE
     if kind is Status.CONVERGED:
         return trail.close(kind, x, scaled, interior.resting(x))
-    _, left, right = smallest_singular_vectors(factor.dense)
+    _, left, right = smallest_singular_vectors(factor.matrix)
     return trail.close(kind, x, scaled, interior.resting(x), tuple(left.tolist()), tuple(right.tolist()))
 
 
@@ -76,6 +76,6 @@ def give_up(problem: Problem, interior: Interior, trail: Trail, step: Vector, fa
     scaled = scaled_norm(residual, equation_sizes(problem, x, jacobian))
     pressed = interior.pressed(x, step)
     if factor.singular:
-        _, left, right = smallest_singular_vectors(factor.dense)
+        _, left, right = smallest_singular_vectors(factor.matrix)
         return trail.close(Status.SINGULAR, x, scaled, pressed, tuple(left.tolist()), tuple(right.tolist()))
     return trail.close(Status.HELD if pressed else Status.STALLED, x, scaled, pressed)

@@ -42,7 +42,7 @@ def linear_step(problem: Problem, start: Vector, trail: Trail) -> Outcome:
     scaled = scaled_norm(residual, sizes)
     trail.note(x, scaled, 1.0, -1)
     if factor.singular:
-        _, left, right = smallest_singular_vectors(factor.dense)
+        _, left, right = smallest_singular_vectors(factor.matrix)
         status = Status.CONTINUUM if scaled <= ACCEPTABLE else Status.SINGULAR
         return trail.close(status, x, scaled, (), tuple(left.tolist()), tuple(right.tolist()))
     if not scaled <= ACCEPTABLE:

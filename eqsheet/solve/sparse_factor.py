@@ -22,6 +22,12 @@ class SparseInverse:
     def __matmul__(self, right: Vector) -> Vector:
         return np.asarray(self.lu.solve(right))
 
+    def row(self, number: int) -> Vector:
+        """One row (n,) of the inverse."""
+        unit = np.zeros(self.lu.shape[0])
+        unit[number] = 1.0
+        return np.asarray(self.lu.solve(unit, trans="T"))
+
 
 @dataclass(frozen=True, slots=True)
 class SparseLeastSquares:
@@ -31,6 +37,12 @@ class SparseLeastSquares:
 
     def __matmul__(self, right: Vector) -> Vector:
         return np.asarray(lsqr(self.matrix, right, atol=1e-14, btol=1e-14, iter_lim=500)[0])
+
+    def row(self, number: int) -> Vector:
+        """One row (n,) of the pseudo-inverse."""
+        unit = np.zeros(self.matrix.shape[0])
+        unit[number] = 1.0
+        return np.asarray(lsqr(self.matrix.T, unit, atol=1e-14, btol=1e-14, iter_lim=500)[0])
 
 
 def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
@@ -48,3 +60,26 @@ def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
     smallest = float(pivots.min())
     condition = float(pivots.max()) / smallest if smallest > 0.0 else np.inf
     return Factor(scaled, weights, rows, SparseInverse(lu), condition)
+
+
+# Shift that keeps a singular matrix factorisable, relative to its rows of sum 1, and the iterations it
+# takes: each reduces all other directions by the ratio of the singular values.
+SHIFT = 1e-11
+ITERATIONS = 6
+
+
+def smallest_by_inverse_iteration(matrix: Matrix) -> tuple[float, Vector, Vector]:
+    """As `factor.smallest_singular_vectors` for a sparse matrix with rows of absolute sum 1.
+
+    Inverse iteration on ``A^T A`` from a fixed start (Golub and Van Loan, Matrix Computations, section 7.6).
+    """
+    n = matrix.shape[0]
+    lu = splu(sp.csc_matrix(matrix + SHIFT * sp.identity(n)))
+    # Any fixed vector without symmetry will do.
+    right = np.cos(np.arange(1.0, n + 1.0))
+    for _ in range(ITERATIONS):
+        left = lu.solve(right / np.linalg.norm(right), trans="T")
+        left /= np.linalg.norm(left)
+        right = lu.solve(left)
+    value = 1.0 / float(np.linalg.norm(right))
+    return max(value - SHIFT, 0.0), left, right / np.linalg.norm(right)

@@ -43,6 +43,9 @@ ZERO_FLOOR = 2.0**-20
 # Condition from which a root is examined for being double or not isolated: 1/sqrt(eps) is where a double
 # root stops.
 SUSPECT_CONDITION = 1e7
+# Order of the largest block that is examined so: it takes dense matrices. A larger one is not believed
+# where it is singular.
+LARGEST_EXAMINED = 300
 # How far from the root that examination looks, relative to the size of the unknowns.
 PROBE = 2.0**-6
 
@@ -152,7 +155,10 @@ def kind_of_root(problem: Problem, x: Vector, sizes: Vector, factor: Factor) -> 
     )
     if not factor.singular and np.max(np.abs(sensitivity)) < SUSPECT_CONDITION:
         return Status.CONVERGED
-    _, _, direction = smallest_singular_vectors(factor.dense * (factor.rows / sizes)[:, None])
+    if problem.n > LARGEST_EXAMINED:
+        return Status.CONTINUUM if factor.singular else Status.CONVERGED
+    matrix = factor.matrix.toarray() if hasattr(factor.matrix, "toarray") else factor.matrix
+    _, _, direction = smallest_singular_vectors(matrix * (factor.rows / sizes)[:, None])
     left_over = [
         _least_residual(problem, x, factor.weights, sizes, direction, t) for t in (PROBE, 2.0 * PROBE)
     ]

@@ -1,0 +1,109 @@
+"""Further roots of a block: changes of sign for one unknown, deflation from many starts for several."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import replace
+from time import perf_counter
+
+import numpy as np
+
+from eqsheet.solve.bracketing import sign_changes
+from eqsheet.solve.chandrupatla import chandrupatla
+from eqsheet.solve.deflation import deflated
+from eqsheet.solve.interior import Interior
+from eqsheet.solve.interior_coordinates import interior_coordinates
+from eqsheet.solve.moved_start import moved_start
+from eqsheet.solve.newton import newton
+from eqsheet.solve.outcome import Outcome
+from eqsheet.solve.problem import Problem, ScalarProblem, Vector, as_scalar
+from eqsheet.solve.scalar_newton import scalar_newton
+from eqsheet.solve.spread_starts import spread_starts
+from eqsheet.solve.trail import Budget, Trail
+
+# Spread starts tried besides the start itself.
+STARTS = 64
+# Steps from one start.
+SHORT = 60
+# Two roots closer than this, relative to their size, are one.
+SAME = 1e-6
+DEFAULT_BUDGET = Budget(SHORT, 5.0)
+
+
+def other_roots(
+    problem: Problem, known: Sequence[Vector], most: int = 8, budget: Budget = DEFAULT_BUDGET
+) -> tuple[Outcome, ...]:
+    """Up to `most` roots that are none of `known`, in the order they are found; deterministic.
+
+    An empty answer is no proof that there are none.
+
+    Parameters
+    ----------
+    known : sequence of ndarray (n,)
+    budget : Budget
+        Iterations from one start, seconds for all.
+    """
+    if problem.n == 1:
+        return scalar_roots(as_scalar(problem), [float(x[0]) for x in known], most, budget)
+    found: list[Outcome] = []
+    deadline = perf_counter() + budget.seconds
+    with np.errstate(all="ignore"):
+        for start in _starts(problem, known):
+            if len(found) >= most or perf_counter() > deadline:
+                break
+            roots = [*known, *(outcome.x for outcome in found)]
+            outcome = _another(problem, roots, start, budget, deadline)
+            if outcome is not None:
+                found.append(outcome)
+    return tuple(found)
+
+
+def scalar_roots(
+    problem: ScalarProblem, known: Sequence[float], most: int = 8, budget: Budget = DEFAULT_BUDGET
+) -> tuple[Outcome, ...]:
+    """As `other_roots` for one unknown: the roots behind the changes of sign, nearest to the start first."""
+    found: list[Outcome] = []
+    trail = Trail("bracketing", problem.start, budget)
+    for bracket in sign_changes(problem, problem.start, trail):
+        if len(found) >= most or trail.spent:
+            break
+        x, _ = chandrupatla(problem.residual, bracket).better
+        outcome = scalar_newton(problem, x, Trail("bracketing", x, budget, trail.deadline))
+        roots = [*known, *(float(other.x[0]) for other in found)]
+        if outcome.solved and all(_differ(outcome.x, np.array([root]), problem.magnitude) for root in roots):
+            found.append(outcome)
+    return tuple(found)
+
+
+def _starts(problem: Problem, known: Sequence[Vector]) -> Iterator[Vector]:
+    """The start, the neighbourhood of the known roots, and starts spread over the bounds."""
+    yield moved_start(problem)
+    for root in known:
+        yield moved_start(replace(problem, start=root))
+    yield from spread_starts(problem, STARTS)
+
+
+def _another(
+    problem: Problem, roots: Sequence[Vector], start: Vector, budget: Budget, deadline: float
+) -> Outcome | None:
+    """A root that is none of `roots`, from one start: in the unknowns, else in logarithms."""
+    interior = Interior(problem)
+    point = interior.enter(start)
+    rest = deflated(problem, roots)
+    candidates = [newton(rest, point, Trail("deflation", point, budget, deadline)).x]
+    if interior.bounded:
+        coordinates = interior_coordinates(rest)
+        y = coordinates.there(point)
+        inner = newton(coordinates.problem, y, Trail("deflation", y, budget, deadline))
+        candidates.append(coordinates.back(inner.x))
+    for candidate in candidates:
+        outcome = newton(problem, interior.enter(candidate), Trail("deflation", candidate, budget, deadline))
+        if outcome.solved and all(_differ(outcome.x, root, problem.magnitude) for root in roots):
+            return outcome
+    return None
+
+
+def _differ(a: Vector, b: Vector, magnitude: Vector | float) -> bool:
+    """Whether two points are different roots."""
+    size = np.maximum(np.maximum(np.abs(a), np.abs(b)), magnitude)
+    return bool((np.abs(a - b) > SAME * size).any())
