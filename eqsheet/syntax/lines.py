@@ -33,7 +33,7 @@ _STARTS = re.compile(
     r"(?!\w)(?![ \t]*[=*/+\-^])"
     r"|off[ \t]+[^\W\d]"
     r"|for[ \t].*:[ \t]*(?:#|$)"
-    rf"|{_NAME}(?:\[[^\]=]*\]|\.{_NAME})*[ \t]*(?:=(?!=)|:(?!=)|(?:near|within)(?!\w))"
+    rf"|{_NAME}(?:\[[^\]=]*\]|\.{_NAME})*[ \t]*(?:=|:|(?:near|within)(?!\w))"
     r")"
 )
 _HEADING = re.compile(r"(#{2,6})[ \t]+(.*\S)[ \t]*$")
@@ -179,13 +179,18 @@ class _Splitter:
             if wanted:
                 if _STARTS.match(line) and indentation(line) <= indent:
                     break
-            elif number != last + 1 or not _CARRIES_ON.match(line):
+            elif number != last + 1 or not _CARRIES_ON.match(line) or _opens_group(stripped):
                 break
             depth += _depth(code)
             stripped = code.rstrip()
             last = number
             number += 1
         return last, depth
+
+
+def _opens_group(code: str) -> bool:
+    """Whether lines below `code` are a group of their own, where a row may begin with a sign."""
+    return code.endswith(":") or _TABLE_HEAD.match(code.lstrip()) is not None
 
 
 def _depth(code: str) -> int:

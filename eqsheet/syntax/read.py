@@ -75,6 +75,8 @@ def decoded(name: str, content: bytes) -> TextFile | Diagnostic:
 
 def _content(path: str) -> bytes:
     if path == "-":
+        if sys.stdin is None:
+            raise OSError("standard input is closed")
         return sys.stdin.buffer.read(LARGEST_FILE + 1)
     with open(path, "rb") as file:
         if stat.S_ISDIR(os.fstat(file.fileno()).st_mode):
@@ -89,7 +91,7 @@ def _reason(failure: OSError) -> str:
         return "it is a directory"
     if isinstance(failure, PermissionError):
         return "there is no permission to read it"
-    return (failure.strerror or type(failure).__name__).lower()
+    return (failure.strerror or str(failure) or type(failure).__name__).lower()
 
 
 def _unreadable(name: str, reason: str, help: str = "") -> Diagnostic:

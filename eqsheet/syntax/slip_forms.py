@@ -12,6 +12,7 @@ _STATEMENT_WORDS = (
     *("require", "show", "define", "off", "new", "for", "rows", "curve", "surface"),
     *("template", "shared", "use", "include"),
 )
+_ELSE_IFS = ("elif", "elseif", "elsif")
 _HEADS = ("FOR", "ROWS", "CURVE", "TEMPLATE")
 _MISPLACED = {
     "valid": "it ends an equation or a definition: Nu = 0.023*Re^0.8 valid Re > 1e4",
@@ -70,8 +71,11 @@ def conditionals(misfit: Misfit) -> Slip | None:
         return misfit.here(
             "if-order", "the condition stands before what it chooses", "write if condition then a else b"
         )
-    if word in ("elif", "elseif", "elsif"):
+    if word in _ELSE_IFS:
         return misfit.here("else-if", f"{word} is no word of the language", "write else if")
+    if misfit.last == "NUMBER" and misfit.last_text.endswith(_ELSE_IFS):
+        # It was taken for the unit of the number before it.
+        return misfit.at_last("else-if", "there is no such word in the language", "write else if")
     if word in ("then", "else") and word.upper() not in misfit.expected:
         if word == "then" and not misfit.has("IF"):
             return misfit.here("stray-then", "then stands without an if", "write if condition then a else b")

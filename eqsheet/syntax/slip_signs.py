@@ -101,7 +101,7 @@ def numbers(misfit: Misfit) -> Slip | None:
     after_digits = misfit.last == "NUMBER" and before[-1:].isdigit()
     if rest[:1] == "," and misfit.touches and after_digits and rest[1:2].isdigit():
         return _comma(misfit, before)
-    if rest[:1] == "." and misfit.touches and after_digits:
+    if rest[:1] == "." and rest[:2] != ".." and misfit.touches and after_digits:
         return misfit.with_last(
             "number-form",
             "a number has digits on both sides of its point",
