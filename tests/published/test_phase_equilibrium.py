@@ -109,7 +109,7 @@ def test_critical_point_of_a_van_der_waals_gas(solved: Solve) -> None:
         curvature: 0 = 2*const.R*T/(V - b)^3 - 6*a/V^4
         p = const.R*T/(V - b) - a/V^2
         Z = p*V/(const.R*T)
-        V near 2.5*b within 1.1*b .. 100*b
+        V near 5*b within 1.1*b .. 100*b
         T near 250 K within 10 K .. 2000 K
         show T in degC, p in bar, V in mL/mol
         """
