@@ -58,6 +58,41 @@ def _logmean_slope(a: Any, b: Any) -> Any:
     return np.where((b == 0.0) & (a != 0.0), 0.0, slope)
 
 
+# Truth values are 0.0, 1.0 or, where something was compared with nan, nan: an `if` must not hide it.
+
+
+def _truth_of(holds: Any, a: Any, b: Any) -> Any:
+    return np.where(np.isnan(a) | np.isnan(b), np.nan, holds)
+
+
+def _less(a: Any, b: Any) -> Any:
+    return _truth_of(np.less(a, b), a, b)
+
+
+def _less_equal(a: Any, b: Any) -> Any:
+    return _truth_of(np.less_equal(a, b), a, b)
+
+
+def _equal(a: Any, b: Any) -> Any:
+    return _truth_of(np.equal(a, b), a, b)
+
+
+def _both(a: Any, b: Any) -> Any:
+    return np.where(np.equal(a, 1.0), b, a)
+
+
+def _either(a: Any, b: Any) -> Any:
+    return np.where(np.equal(a, 0.0), b, a)
+
+
+def _negate(a: Any) -> Any:
+    return 1.0 - a
+
+
+def _choose(condition: Any, a: Any, b: Any) -> Any:
+    return np.where(np.isnan(condition), np.nan, np.where(np.equal(condition, 1.0), a, b))
+
+
 ARRAY_FUNCTIONS: dict[str, Callable[..., Any]] = {
     "sqrt": np.sqrt,
     "exp": np.exp,
@@ -89,10 +124,13 @@ ARRAY_FUNCTIONS: dict[str, Callable[..., Any]] = {
     # `float_power` never takes the detour over whole numbers that `power` takes for integer arrays.
     "pow": np.float_power,
     "divide": np.divide,
-    "where": np.where,
-    "both": np.logical_and,
-    "either": np.logical_or,
-    "negate": np.logical_not,
+    "less": _less,
+    "less_equal": _less_equal,
+    "equal": _equal,
+    "both": _both,
+    "either": _either,
+    "negate": _negate,
+    "choose": _choose,
     "errstate": np.errstate,
 }
 
@@ -104,11 +142,11 @@ ARRAY_OPERATIONS: dict[str, Callable[..., Any]] = {
     "sub": np.subtract,
     "mul": np.multiply,
     "div": np.divide,
-    "lt": np.less,
-    "le": np.less_equal,
-    "eq": np.equal,
-    "and": np.logical_and,
-    "or": np.logical_or,
-    "not": np.logical_not,
-    "if": np.where,
+    "lt": _less,
+    "le": _less_equal,
+    "eq": _equal,
+    "and": _both,
+    "or": _either,
+    "not": _negate,
+    "if": _choose,
 }

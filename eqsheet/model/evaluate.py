@@ -25,6 +25,8 @@ _UNDERFLOW = 5e-324
 def evaluate(tape: Tape, quantities: Sequence[float], literals: Sequence[float]) -> list[Any]:
     """Value of each instruction: a float, or a truth value for comparisons and what is made of them.
 
+    A comparison with nan, and an ``if`` that depends on it, is nan.
+
     Parameters
     ----------
     tape : Tape
@@ -169,13 +171,14 @@ _STEPS: dict[str, Callable[..., Any]] = {
     "mul": lambda a, b: a * b,
     "div": divide,
     "pow": raised,
-    "lt": lambda a, b: a < b,
-    "le": lambda a, b: a <= b,
-    "eq": lambda a, b: a == b,
-    "and": lambda a, b: a and b,
-    "or": lambda a, b: a or b,
-    "not": lambda a: not a,
-    "if": lambda c, a, b: a if c else b,
+    # What is compared with nan is neither true nor false but nan, lest an `if` hide it.
+    "lt": lambda a, b: a < b if a == a and b == b else math.nan,
+    "le": lambda a, b: a <= b if a == a and b == b else math.nan,
+    "eq": lambda a, b: a == b if a == a and b == b else math.nan,
+    "and": lambda a, b: b if a and a == a else a,
+    "or": lambda a, b: a if a else b,
+    "not": lambda a: not a if a == a else a,
+    "if": lambda c, a, b: (a if c else b) if c == c else math.nan,
     **{name: _guarded(function.value) for name, function in UNARY.items()},
     **{name: _guarded(function) for name, function in BINARY.items()},
     "ln": _guarded(_ln),

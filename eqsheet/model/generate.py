@@ -207,6 +207,9 @@ _SCALAR: dict[str, _Pattern] = {
 _ARRAY: dict[str, _Pattern] = {
     **_COMMON,
     "div": ("divide(%s,%s)", _ATOM, _LOGIC, _LOGIC),
+    "lt": ("less(%s,%s)", _ATOM, _LOGIC, _LOGIC),
+    "le": ("less_equal(%s,%s)", _ATOM, _LOGIC, _LOGIC),
+    "eq": ("equal(%s,%s)", _ATOM, _LOGIC, _LOGIC),
     "and": ("both(%s,%s)", _ATOM, _LOGIC, _LOGIC),
     "or": ("either(%s,%s)", _ATOM, _LOGIC, _LOGIC),
     "not": ("negate(%s)", _ATOM, _LOGIC, _LOGIC),
@@ -316,7 +319,7 @@ class _Code:
         first, second = self._bracketed(instruction[2]), self._bracketed(instruction[3])
         if self.patterns is _SCALAR:
             return f"{first} if {a} else {second}", _LOGIC
-        return f"where({a},{first},{second})", _ATOM
+        return f"choose({a},{first},{second})", _ATOM
 
     def _bracketed(self, i: int) -> str:
         return self.text[i] if self.tightness[i] == _ATOM else f"({self.text[i]})"

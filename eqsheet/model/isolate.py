@@ -33,7 +33,8 @@ class Candidate:
         One output, the quantity's value; it takes the same quantities and literals as the equation's tape,
         but does not use the quantity itself.
     condition : Tape or None
-        One output, a truth value: whether the candidate solves the equation. None where it always does.
+        One output, a truth value: whether the candidate solves the equation; nan counts as no. None where it
+        always does.
     """
 
     tape: Tape
@@ -185,14 +186,12 @@ def _of_power(w: Simplifier, b: _Branch, a: int, r: Fraction) -> list[_Branch]:
 
 
 def _of_base(w: Simplifier, b: _Branch, base: int, exponent: int) -> list[_Branch]:
-    # Whether the exponent is even, odd or neither shows only in its value; the equation itself decides.
-    inverse = w.div(w.one, exponent)
-    root = w.pow(b.target, inverse)
-    negative = w.neg(w.pow(w.function("abs", b.target), inverse))
-    return [
-        b.to(root, _not_negative(w, b.target)),
-        b.to(negative, w.put("eq", w.pow(negative, exponent), b.target)),
-    ]
+    # Whether the exponent is even, odd or no whole number shows only in its value: (-1)^exponent is 1, -1 or nan.
+    t, inverse = b.target, w.div(w.one, exponent)
+    negative = w.neg(w.pow(w.function("abs", t), inverse))
+    parity = w.pow(w.constant(Fraction(-1)), exponent)
+    same_sign = w.put("eq", parity, w.function("sign", t))
+    return [b.to(w.pow(t, inverse), _not_negative(w, t)), b.to(negative, same_sign)]
 
 
 def _of_exponent(w: Simplifier, b: _Branch, base: int, exponent: int) -> list[_Branch]:

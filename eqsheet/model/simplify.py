@@ -115,8 +115,9 @@ class Simplifier:
     def constant(self, value: Fraction | float) -> int:
         """Index of an exact constant."""
         # Hashing a fraction takes as long as all the rest here, so its parts are the key.
-        exact = isinstance(value, Fraction)
-        key = ("const", value.numerator, value.denominator) if exact else ("const", value)
+        key: tuple[Any, ...] = ("const", value)
+        if isinstance(value, Fraction):
+            key = ("const", value.numerator, value.denominator)
         index = self._index.get(key)
         if index is None:
             index = self._index[key] = len(self.instructions)

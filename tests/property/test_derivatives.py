@@ -5,6 +5,7 @@ from __future__ import annotations
 import cmath
 import math
 from fractions import Fraction
+from typing import Any
 
 import mpmath
 import numpy as np
@@ -68,6 +69,17 @@ def test_functions_agree_with_the_complex_step(operation: str) -> None:
     assert got == pytest.approx((x * f(x / 3 + 0.3)).imag / step, rel=1e-14)
 
 
+def far_from_kinks(tape: Tape, steps: list[Any]) -> bool:
+    """Whether no comparison, ``min``, ``max``, ``abs`` or ``sign`` is within rounding of its switch."""
+    gaps = []
+    for operation, *rest in tape.instructions:
+        if operation in ("min", "max", "lt", "le", "eq"):
+            gaps.append(steps[rest[0]] - steps[rest[1]])
+        elif operation in ("abs", "sign"):
+            gaps.append(steps[rest[0]])
+    return all(gap != 0 and not abs(gap) < 1e-9 for gap in gaps)
+
+
 @given(tapes(), values())
 @settings(max_examples=300, deadline=None)
 def test_random_tapes_agree_with_differences_at_sixty_digits(tape: Tape, at: tuple[float, ...]) -> None:
@@ -76,6 +88,7 @@ def test_random_tapes_agree_with_differences_at_sixty_digits(tape: Tape, at: tup
     evidence = evaluate_with_evidence(derived, quantities, literals)
     steps = evaluate(derived, quantities, literals)
     assume(all(math.isfinite(steps[i]) and abs(steps[i]) < 1e6 for i in derived.outputs))
+    assume(far_from_kinks(derived, steps))
     # Cancellation inside arguments is judged by the evidence tests; here the derivative must be readable.
     assume(
         all(
@@ -109,7 +122,8 @@ def test_code_of_derivatives_agrees_with_the_interpreter(tape: Tape, at: tuple[f
     derived = equation_partials(tape, ALL)
     evidence = evaluate_with_evidence(derived, at[:QUANTITIES], at[QUANTITIES:])
     expected = [evidence.values[i] for i in derived.outputs]
-    assume(all(math.isfinite(v) for v in expected))
+    if not all(math.isfinite(v) for v in expected):
+        return
     slack = [1e-12 * evidence.sizes[i] + 4 * min(evidence.errors[i], 1.0) for i in derived.outputs]
     for got in (float_function(derived)(*at), array_function(derived)(*[np.array([v, v]) for v in at])):
         for value, wanted, room in zip(got, expected, slack):
