@@ -1,39 +1,53 @@
-"""Builds the equation system of a document: one pass a kind of statement, in the order of `build_system`.
+"""Builds the equation system of a document: one pass after the other, in the order of `build_system`.
 
-Takes: the statements in use. Gives: an `EquationSystem` and diagnostics. A statement with a finding is left
-out of the system; the others are unaffected.
+Takes: the statements of a worksheet. Gives: an `EquationSystem` and diagnostics. A statement with a finding is
+left out of the system; the others are unaffected.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from fnmatch import fnmatchcase
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
-from eqsheet.model.lower import Context, NameTable
+from eqsheet.model.bind import Binder, Bound, Unbound, entry_text, member_formulas, resolved_key
+from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
+from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown
+from eqsheet.model.lower import Context, IndexScope, NameTable, NeedsMembers, OfInstance, names_in
 from eqsheet.model.lower_definitions import check_definition, collect_definitions
 from eqsheet.model.lower_statements import (
+    GuessMeant,
     LoweredStatement,
     lower_equation,
     lower_guess,
     lower_limit,
     lower_show,
 )
-from eqsheet.model.spelling import did_you_mean
-from eqsheet.model.system import EquationItem, EquationSystem, GuessItem, LimitItem, Place, Validity
-from eqsheet.model.tape import Formula
+from eqsheet.model.placed import Placed, place_statements
+from eqsheet.model.system import (
+    EquationItem,
+    EquationSystem,
+    Guard,
+    GuessItem,
+    LimitItem,
+    Place,
+    Validity,
+)
+from eqsheet.model.tables import CellKnown, TableColumn, Tables, collect_tables
+from eqsheet.model.tape import Formula, TapeBuilder
 from eqsheet.model.unit_statements import collect_units
+from eqsheet.model.value_of_known import known_value
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.unit import Unit
 
-_LOWER: dict[type, Callable[[syntax.Statement, Context, NameTable], LoweredStatement]] = {
+_LOWER: dict[type, Callable[..., LoweredStatement]] = {
     syntax.Equation: lower_equation,
     syntax.Guess: lower_guess,
     syntax.Limit: lower_limit,
     syntax.Show: lower_show,
 }
-_ELSEWHERE = (syntax.Definition, syntax.NewUnit)
+_ONE = Domain()
 
 
 @dataclass
@@ -41,12 +55,12 @@ class LoweredCache:
     """Lowered statements by their text, kept while a worksheet is edited.
 
     Places in them are relative to the statement, so they serve wherever it now stands. The whole cache is
-    dropped when units or definitions change, since every statement may depend on them.
+    dropped when units, definitions or index sets change, since every statement may depend on them.
     """
 
     names: NameTable = field(default_factory=NameTable)
     context: Context | None = None
-    entries: dict[str, LoweredStatement] = field(default_factory=dict)
+    entries: dict[object, LoweredStatement | None] = field(default_factory=dict)
 
     def enter(self, context: Context) -> None:
         """Use the cache under `context`."""
@@ -55,19 +69,43 @@ class LoweredCache:
             self.names = NameTable()
         self.context = context
 
-    def lowered(self, statement: syntax.Statement) -> LoweredStatement:
-        """The lowered statement, worked out now if it is new."""
-        key = statement.line.text
-        found = self.entries.get(key)
-        if found is None:
-            assert self.context is not None
-            found = _LOWER[type(statement.node)](statement, self.context, self.names)
-            self.entries[key] = found
+    def lowered(
+        self, statement: syntax.Statement, indices: IndexScope, in_instance: bool
+    ) -> LoweredStatement | None:
+        """The lowered statement, worked out now if it is new; None where each member needs one of its own."""
+        text = statement.line.text
+        plain = not indices.free and not indices.fixed and not in_instance
+        key: object = text if plain else (text, _signature(indices), in_instance)
+        if key in self.entries:
+            return self.entries[key]
+        assert self.context is not None
+        found: LoweredStatement | None
+        try:
+            found = _LOWER[type(statement.node)](statement, self.context, self.names, indices, in_instance)
+        except NeedsMembers:
+            found = None
+        self.entries[key] = found
         return found
 
 
+def _signature(indices: IndexScope) -> tuple[object, ...]:
+    return tuple(sorted(indices.free.items())), tuple(sorted(indices.fixed.items()))
+
+
+@dataclass(frozen=True, slots=True)
+class _Work:
+    """A statement in its place, lowered, with the domain of its indices."""
+
+    place: Placed
+    number: int
+    domain: Domain
+    lowered: LoweredStatement
+
+
 def build_system(
-    statements: Sequence[syntax.Statement], cache: LoweredCache | None = None
+    statements: Sequence[syntax.Statement],
+    cache: LoweredCache | None = None,
+    freed: Collection[str] = (),
 ) -> tuple[EquationSystem, tuple[Diagnostic, ...]]:
     """The equation system of the statements in use (those that are not off).
 
@@ -77,191 +115,507 @@ def build_system(
         In the order of the text; statements switched off are ignored.
     cache : LoweredCache, optional
         Lowered statements of an earlier state of the worksheet; updated.
+    freed : collection of str
+        Full names of members whose knowns do not count (``D[P12]``).
     """
-    used = tuple(s for s in statements if not s.off)
+    used = [s for s in statements if not s.off]
     diagnostics: list[Diagnostic] = []
     cache = cache or LoweredCache()
-    _check_labels(used, diagnostics)
+    _check_labels(_all(used), diagnostics)
     unit_table = collect_units(used, diagnostics)
     definitions = collect_definitions(used, diagnostics)
-    context = Context(unit_table, definitions)
+    tables = collect_tables(used, unit_table, diagnostics)
+    placed = place_statements(used, diagnostics)
+    indexing = Indexing(tables.sets, _whole_knowns(used), tables.members)
+    context = Context(unit_table, definitions, indexing)
     cache.enter(context)
     for statement in definitions.values():
         diagnostics.extend(f.at(statement) for f in check_definition(statement, context))
-    lowered: list[tuple[int, syntax.Statement, LoweredStatement]] = []
-    for number, statement in enumerate(used):
-        if isinstance(statement.node, _ELSEWHERE):
-            continue
-        if type(statement.node) not in _LOWER:
-            diagnostics.append(_unsupported(statement))
-            continue
-        one = cache.lowered(statement)
-        diagnostics.extend(f.at(statement) for f in one.findings)
-        lowered.append((number, statement, one))
+    numbered = _numbered(placed, tables)
+    work = _lower_all(placed, numbered, cache, indexing, diagnostics)
     # A known switched off still tells in which unit its quantity is thought of.
-    idle = [cache.lowered(s) for s in statements if s.off and isinstance(s.node, syntax.Equation)]
-    system = _assemble(used, lowered, idle, cache.names, context, diagnostics)
-    return system, tuple(diagnostics)
-
-
-def _assemble(
-    used: tuple[syntax.Statement, ...],
-    lowered: list[tuple[int, syntax.Statement, LoweredStatement]],
-    idle: Sequence[LoweredStatement],
-    provisional: NameTable,
-    context: Context,
-    diagnostics: list[Diagnostic],
-) -> EquationSystem:
-    """Give the quantities their final numbers and bind all items to them."""
-    first_places: dict[int, Place] = {}
-    broken_names: set[int] = set()
-    for number, _, one in lowered:
-        if one.equation is not None:
-            for quantity, start, end in one.named:
-                first_places.setdefault(quantity, Place(number, start, end))
-        elif one.findings:
-            broken_names.update(quantity for quantity, _, _ in one.named)
-    order = sorted(first_places, key=provisional.names.__getitem__)
-    names = tuple(provisional.names[p] for p in order)
-    final = {p: i for i, p in enumerate(order)}
-    binder = _Binder(used, final, provisional, names, broken_names, diagnostics)
-    equations: list[EquationItem] = []
-    limits: list[LimitItem] = []
-    guesses: list[GuessItem] = []
-    shown: dict[int, Unit | None] = {}
-    shows: list[Formula] = []
-    for number, _, one in lowered:
-        if one.equation is not None:
-            equations.append(binder.equation(one.equation, number))
-        elif one.limit is not None:
-            if binder.knows(one, number):
-                limits.append(replace_limit(one.limit, binder.formula(one.limit.formula, number), number))
-        elif one.guesses:
-            guesses.extend(binder.guesses(one, number))
-        for item in one.shows:
-            if binder.knows_one(item.quantity, number, item.start, item.end):
-                shown.setdefault(final[item.quantity], item.unit)
-                if item.formula is not None:
-                    shows.append(binder.formula(item.formula, number))
-    equations.sort(key=_equation_key(names, used))
-    return EquationSystem(
-        used,
-        names,
-        tuple(first_places[p] for p in order),
-        tuple(equations),
-        tuple(_by_precedence(guesses, used, names, diagnostics)),
-        tuple(limits),
-        shown,
-        _preferred_units([one for _, _, one in lowered], idle, final, shown),
-        context.unit_table,
-        context.unit_table.ambient,
-        any(one.uses_gauge for _, _, one in lowered),
-        tuple(shows),
+    idle = [
+        one
+        for s in statements
+        if s.off and isinstance(s.node, syntax.Equation)
+        if (one := cache.lowered(s, IndexScope(), False)) is not None
+    ]
+    return _assemble(work, tables, idle, numbered, cache.names, context, freed, diagnostics), tuple(
+        diagnostics
     )
 
 
-class _Binder:
-    """Puts final quantity numbers and statement numbers into lowered items."""
+def _all(statements: Iterable[syntax.Statement]) -> Iterable[syntax.Statement]:
+    for statement in statements:
+        yield statement
+        yield from _all(statement.body)
 
-    def __init__(
-        self,
-        used: tuple[syntax.Statement, ...],
-        final: dict[int, int],
-        provisional: NameTable,
-        names: tuple[str, ...],
-        broken_names: set[int],
-        diagnostics: list[Diagnostic],
-    ) -> None:
-        self._used = used
-        self._final = final
-        self._provisional = provisional
-        self._names = names
-        self._broken_names = broken_names
-        self._diagnostics = diagnostics
 
-    def formula(self, formula: Formula, statement: int) -> Formula:
-        """The formula with final numbers."""
-        return Formula(
-            formula.tape,
-            tuple([self._final[q] for q in formula.quantities]),
-            formula.literals,
-            formula.places,
-            statement,
-            formula.alike,
-            formula.differences,
+def _whole_knowns(statements: Sequence[syntax.Statement]) -> Mapping[str, int]:
+    """Knowns that are plain whole numbers, of those that subscripts and ranges mention."""
+    mentioned = names_in(
+        [s.node.clauses, s.node.filter] if isinstance(s.node, syntax.Family) else s.node
+        for s in _all(statements)
+        if isinstance(s.node, syntax.Family | syntax.Use) or "[" in s.line.text or " for " in s.line.text
+    )
+    if not mentioned:
+        return {}
+    whole: dict[str, int] = {}
+    for statement in statements:
+        node = statement.node
+        if not isinstance(node, syntax.Equation):
+            continue
+        for target, value in ((node.left, node.right), (node.right, node.left)):
+            if (
+                isinstance(target, syntax.Reference)
+                and isinstance(value, syntax.Number)
+                and target.dotted in mentioned
+                and value.unit is None
+                and float(value.text).is_integer()
+            ):
+                whole[target.dotted] = int(float(value.text))
+    return whole
+
+
+def _numbered(placed: Sequence[Placed], tables: Tables) -> dict[int, tuple[int, syntax.Statement]]:
+    """Statements of the system with their numbers, by identity."""
+    numbered: dict[int, tuple[int, syntax.Statement]] = {}
+    rows = (known.row for column in tables.columns for known in column.knowns)
+    for statement in (*(p.statement for p in placed), *rows):
+        numbered.setdefault(id(statement), (len(numbered), statement))
+    return numbered
+
+
+def _lower_all(
+    placed: Sequence[Placed],
+    numbered: Mapping[int, tuple[int, syntax.Statement]],
+    cache: LoweredCache,
+    indexing: Indexing,
+    diagnostics: list[Diagnostic],
+) -> list[_Work]:
+    work: list[_Work] = []
+    domains: dict[tuple[int, ...], Domain | None] = {}
+    no_indices = IndexScope()
+    said: set[int] = set()
+    for place in placed:
+        statement = place.statement
+        number = numbered[id(statement)][0]
+        in_instance = place.instance is not None
+        domain, indices = _ONE, no_indices
+        if place.heads:
+            over = _domain(place.heads, indexing, domains, diagnostics)
+            if over is None:
+                continue
+            domain, indices = over, IndexScope(free=over.sets)
+        one = cache.lowered(statement, indices, in_instance)
+        if one is not None:
+            if one.findings and id(statement) not in said:
+                said.add(id(statement))
+                diagnostics.extend(f.at(statement) for f in one.findings)
+            work.append(_Work(place, number, domain, one))
+            continue
+        for entry in range(domain.size):
+            fixed = {n: (int(a[entry]), domain.sets[n]) for n, a in domain.arrays.items()}
+            one = cache.lowered(statement, IndexScope(fixed=fixed), in_instance)
+            assert one is not None
+            if one.findings and id(statement) not in said:
+                said.add(id(statement))
+                diagnostics.extend(f.at(statement) for f in one.findings)
+            work.append(_Work(place, number, domain.at(entry), one))
+    return work
+
+
+def _domain(
+    heads: Sequence[syntax.Statement],
+    indexing: Indexing,
+    known: dict[tuple[int, ...], Domain | None],
+    diagnostics: list[Diagnostic],
+) -> Domain | None:
+    """The domain of some `for` lines, None where one of them is wrong (which is said once)."""
+    key = tuple(map(id, heads))
+    if key in known:
+        return known[key]
+    outer = _domain(heads[:-1], indexing, known, diagnostics) if len(heads) > 1 else _ONE
+    head = heads[-1].node
+    assert isinstance(head, syntax.Family)
+    result = None
+    if outer is not None:
+        try:
+            result = outer
+            for clause in head.clauses:
+                result = grown(result, clause, indexing)
+            result = filtered(result, head.filter, indexing)
+        except IndexSlip as slip:
+            diagnostics.append(slip.finding.at(heads[-1]))
+            result = None
+    known[key] = result
+    return result
+
+
+def _assemble(
+    work: list[_Work],
+    tables: Tables,
+    idle: Sequence[LoweredStatement],
+    numbered: Mapping[int, tuple[int, syntax.Statement]],
+    provisional: NameTable,
+    context: Context,
+    freed: Collection[str],
+    diagnostics: list[Diagnostic],
+) -> EquationSystem:
+    """Give the quantities their final numbers and bind all items to them."""
+    indexing = context.indexing
+    statements = tuple(statement for _, statement in numbered.values())
+    numbering, broken = _number(work, tables, provisional, indexing, diagnostics)
+    binder = Binder(
+        numbering, indexing, provisional, {i: n for i, (n, _) in numbered.items()}, broken, diagnostics
+    )
+    names = numbering.names(indexing)
+    gathered = _Gathered(names, statements)
+    for column in tables.columns:
+        _put_column(gathered, column, numbering, binder)
+    for one in work:
+        _put(gathered, one, binder, indexing)
+    _apply_overrides(gathered, freed, diagnostics)
+    gathered.equations.sort(key=_equation_key(statements))
+    return EquationSystem(
+        statements,
+        names,
+        tuple(gathered.first_places),
+        tuple(gathered.equations),
+        tuple(_by_precedence(gathered.guesses, statements, names, diagnostics)),
+        tuple(gathered.limits),
+        gathered.shown,
+        gathered.preferred_units(idle, binder),
+        context.unit_table,
+        context.unit_table.ambient,
+        any(one.lowered.uses_gauge for one in work),
+        tuple(gathered.shows),
+        _families_by_quantity(numbering),
+    )
+
+
+def _families_by_quantity(numbering: Numbering) -> tuple[int, ...]:
+    """For each quantity the number of its family's first member; empty where there are no families."""
+    if not numbering.families:
+        return ()
+    first = list(range(numbering.total))
+    for family in numbering.families.values():
+        first[family.first : family.first + family.size] = [family.first] * family.size
+    return tuple(first)
+
+
+def _number(
+    work: Sequence[_Work],
+    tables: Tables,
+    provisional: NameTable,
+    indexing: Indexing,
+    diagnostics: list[Diagnostic],
+) -> tuple[Numbering, set[object]]:
+    """Numbers of all quantities that equations name, and the keys that broken statements name."""
+    collector = FamilyCollector(indexing)
+    for column in tables.columns:
+        collector.declare(((column.name, 1),), (column.set,), column.codes)
+    plain: set[str] = set()
+    broken: set[object] = set()
+    keys = provisional.names
+    for one in work:
+        if one.lowered.findings:
+            broken.update(resolved_key(keys[n], one.place) for n, _, _ in one.lowered.named)
+        if one.lowered.equation is None:
+            continue
+        for number, _, _ in one.lowered.named:
+            key = keys[number]
+            resolved = key if one.place.plain and isinstance(key, str) else resolved_key(key, one.place)
+            if isinstance(resolved, str):
+                plain.add(resolved)
+                continue
+            written_key = key.key if isinstance(key, OfInstance) else key
+            # A path written out, `supply.dP`, refers to what the template makes; so does a line of an
+            # instance's group.
+            makes = not isinstance(key, OfInstance) and (
+                isinstance(written_key, str)
+                or (isinstance(written_key, FamilyReference) and len(written_key.path) == 1)
+            )
+            try:
+                collector.see(resolved, one.domain, makes)
+            except IndexSlip as slip:
+                found = slip.finding.at(one.place.statement)
+                if found not in diagnostics:
+                    diagnostics.append(found)
+    # What is wrong with a reference that makes no member is said again, and better, when it is bound.
+    collector.finish()
+    families = {path[0][0] for path in collector.sets if len(path) == 1 and path[0][1]}
+    return collector.numbering(plain - families), broken
+
+
+@dataclass
+class _Gathered:
+    """Items bound so far."""
+
+    names: tuple[str, ...]
+    statements: tuple[syntax.Statement, ...]
+    equations: list[EquationItem] = field(default_factory=list)
+    limits: list[LimitItem] = field(default_factory=list)
+    guesses: list[GuessItem] = field(default_factory=list)
+    shown: dict[int, Unit | None] = field(default_factory=dict)
+    shows: list[Formula] = field(default_factory=list)
+    hints: tuple[dict[int, Unit], dict[int, Unit], dict[int, Unit]] = field(
+        default_factory=lambda: ({}, {}, {})
+    )
+
+    def __post_init__(self) -> None:
+        nowhere = Place(0, 0, 0)
+        self.first_places = [nowhere] * len(self.names)
+        self._placed = [False] * len(self.names)
+
+    def see(self, quantity: int, place: Place) -> None:
+        """Note where a quantity is named, the first time."""
+        if not self._placed[quantity]:
+            self._placed[quantity] = True
+            self.first_places[quantity] = place
+
+    def preferred_units(self, idle: Sequence[LoweredStatement], binder: Binder) -> dict[int, Unit]:
+        """Unit for each quantity by precedence: `show`, known, known switched off, guess, limit."""
+        units: dict[int, Unit] = {q: unit for q, unit in self.shown.items() if unit is not None}
+        knowns, guesses, limits = self.hints
+        off: dict[int, Unit] = {}
+        for one in idle:
+            for provisional, unit in one.unit_hints:
+                number = binder.plain_number(provisional)
+                if number is not None:
+                    off.setdefault(number, unit)
+        groups: tuple[Mapping[int, Unit | None], ...] = (self.shown, knowns, off, guesses, limits)
+        for group in groups:
+            for quantity, unit in group.items():
+                if unit is not None:
+                    units.setdefault(quantity, unit)
+            for family in binder.numbering.families.values():
+                # A member without a unit of its own is shown like the first that has one.
+                members = range(family.first, family.first + family.size)
+                common = next((group[q] for q in members if group.get(q) is not None), None)
+                if common is not None:
+                    for quantity in members:
+                        units.setdefault(quantity, common)
+        return units
+
+
+def _put(gathered: _Gathered, one: _Work, binder: Binder, indexing: Indexing) -> None:
+    """Bind one statement's items."""
+    lowered = one.lowered
+    try:
+        if lowered.equation is not None:
+            bound = binder.bind(lowered.named, one.place, one.domain)
+            _put_equations(gathered, one, lowered.equation, bound, indexing)
+            _put_hints(gathered.hints[0], lowered, bound)
+        elif lowered.limit is not None:
+            bound = binder.bind(lowered.named, one.place, one.domain)
+            _put_limits(gathered, one, lowered.limit, bound, indexing)
+            _put_hints(gathered.hints[2], lowered, bound)
+        for meant in lowered.guesses:
+            _put_guesses(gathered, one, meant, binder)
+    except Unbound:
+        return
+    for item in lowered.shows:
+        _put_show(gathered, one, item.quantity, item.unit, item.formula, (item.start, item.end), binder)
+
+
+def _put_hints(hints: dict[int, Unit], lowered: LoweredStatement, bound: Bound) -> None:
+    for provisional, unit in lowered.unit_hints:
+        for entry in range(bound.domain.size):
+            (quantity,) = bound.numbers((provisional,), entry)
+            hints.setdefault(quantity, unit)
+
+
+def _member(one: _Work, entry: int, indexing: Indexing) -> str:
+    """What tells one member of a statement from the others, for messages."""
+    parts = []
+    instance = one.place.instance or one.place.scope
+    if instance.path:
+        parts.append(instance.text)
+    if one.domain.arrays:
+        parts.append(entry_text(one.domain, entry, indexing))
+    return ", ".join(parts)
+
+
+def _put_equations(
+    gathered: _Gathered, one: _Work, item: EquationItem, bound: Bound, indexing: Indexing
+) -> None:
+    place = Place(one.number, item.place.start, item.place.end)
+    valid = [
+        list(
+            zip(
+                member_formulas(v.formula, bound, one.number),
+                zip(*(member_formulas(g.formula, bound, one.number) for g in v.guards))
+                if v.guards
+                else ((),) * bound.domain.size,
+            )
         )
-
-    def equation(self, item: EquationItem, statement: int) -> EquationItem:
-        """The equation with final numbers."""
-        valid = tuple(
+        for v in item.valid
+    ]
+    for entry, formula in enumerate(member_formulas(item.formula, bound, one.number)):
+        known = -1 if item.known < 0 else bound.numbers((item.known,), entry)[0]
+        value = item.value
+        if known >= 0 and value != value:
+            value = known_value(formula)
+        conditions = tuple(
             Validity(
-                self.formula(v.formula, statement),
+                own[entry][0],
                 v.text,
-                replace(v.place, statement=statement),
-                tuple(replace(g, formula=self.formula(g.formula, statement)) for g in v.guards),
+                replace(v.place, statement=one.number),
+                tuple(Guard(f, g.branch) for f, g in zip(own[entry][1], v.guards)),
             )
-            for v in item.valid
+            for v, own in zip(item.valid, valid)
         )
-        return EquationItem(
-            self.formula(item.formula, statement),
-            Place(statement, item.place.start, item.place.end),
-            -1 if item.known < 0 else self._final[item.known],
-            item.value,
-            item.tolerance,
-            valid,
+        member = "" if one.place.plain else _member(one, entry, indexing)
+        gathered.equations.append(
+            EquationItem(formula, place, known, value, item.tolerance, conditions, member)
         )
+    for provisional, start, end in one.lowered.named:
+        where = Place(one.number, start, end)
+        column = bound.columns[provisional]
+        for quantity in (column,) if isinstance(column, int) else set(column.tolist()):
+            gathered.see(quantity, where)
 
-    def knows(self, one: LoweredStatement, statement: int) -> bool:
-        """Whether all names of a statement occur in equations; those that do not are reported."""
-        return not [n for n in one.named if not self.knows_one(n[0], statement, n[1], n[2])]
 
-    def knows_one(self, quantity: int, statement: int, start: int, end: int) -> bool:
-        """Whether a provisional quantity occurs in an equation; reported if not."""
-        if quantity in self._final:
-            return True
-        if quantity not in self._broken_names:
-            name = self._provisional.names[quantity]
-            self._diagnostics.append(
-                error(
-                    "unknown-name",
-                    f"no equation mentions `{name}`",
-                    Label(self._used[statement].span(start, end)),
-                    help=did_you_mean(name, self._names),
-                )
+def _put_limits(gathered: _Gathered, one: _Work, item: LimitItem, bound: Bound, indexing: Indexing) -> None:
+    for entry, formula in enumerate(member_formulas(item.formula, bound, one.number)):
+        member = "" if one.place.plain else _member(one, entry, indexing)
+        gathered.limits.append(
+            replace(
+                item,
+                formula=formula,
+                place=replace(item.place, statement=one.number),
+                text=f"{item.text} ({member})" if member else item.text,
             )
-        return False
+        )
 
-    def guesses(self, one: LoweredStatement, statement: int) -> list[GuessItem]:
-        """One guess for each quantity meant."""
-        items: list[GuessItem] = []
-        for meant in one.guesses:
-            place = Place(statement, meant.start, meant.end)
-            stand_in = self._provisional.numbers[meant.target]
-            others = [n for n in one.named if n[0] != stand_in]
-            if [n for n in others if not self.knows_one(n[0], statement, n[1], n[2])]:
+
+def _put_guesses(gathered: _Gathered, one: _Work, meant: GuessMeant, binder: Binder) -> None:
+    place = Place(one.number, meant.start, meant.end)
+    lowered = one.lowered
+    targets: list[int] | None = None
+    exact = True
+    if meant.pattern:
+        key = binder.resolved(meant.target, one.place)
+        pattern = key if isinstance(key, str) else key.text
+        matching = [name for name in binder.family_texts if fnmatchcase(name, _glob(pattern))]
+        targets = binder.matching(matching)
+        exact = False
+        if not targets:
+            gathered_diagnostic = warning(
+                "pattern-without-match",
+                f"no quantity matches `{pattern}`",
+                Label(one.place.statement.span(meant.start, meant.end)),
+            )
+            binder.note(gathered_diagnostic)
+            return
+    else:
+        members = binder.all_members(meant.target, one.place)
+        if members is not None:
+            targets = members.tolist()
+            exact = False
+    bound = binder.bind(lowered.named, one.place, one.domain, meant.target if targets is not None else -1)
+    if targets is None:
+        for entry, formula in enumerate(member_formulas(meant.formula, bound, one.number)):
+            (quantity,) = bound.numbers((meant.target,), entry)
+            gathered.guesses.append(GuessItem(quantity, place, exact, formula, meant.roles))
+            for _, unit in lowered.unit_hints:
+                gathered.hints[1].setdefault(quantity, unit)
+        return
+    for quantity in targets:
+        own = Bound(bound.domain, {**bound.columns, meant.target: quantity})
+        for formula in member_formulas(meant.formula, own, one.number):
+            gathered.guesses.append(GuessItem(quantity, place, exact, formula, meant.roles))
+        for _, unit in lowered.unit_hints:
+            gathered.hints[1].setdefault(quantity, unit)
+
+
+def _put_show(
+    gathered: _Gathered,
+    one: _Work,
+    provisional: int,
+    unit: Unit | None,
+    formula: Formula | None,
+    span: tuple[int, int],
+    binder: Binder,
+) -> None:
+    members = binder.all_members(provisional, one.place)
+    try:
+        if members is None:
+            bound = binder.bind(((provisional, *span),), one.place, one.domain)
+        else:
+            domain = Domain(len(members))
+            bound = Bound(domain, {provisional: members})
+    except Unbound:
+        return
+    for entry in range(bound.domain.size):
+        gathered.shown.setdefault(bound.numbers((provisional,), entry)[0], unit)
+    if formula is not None:
+        gathered.shows.extend(member_formulas(formula, bound, one.number))
+
+
+def _put_column(gathered: _Gathered, column: TableColumn, numbering: Numbering, binder: Binder) -> None:
+    """The knowns of a column of a table."""
+    family = numbering.families.get(((column.name, 1),))
+    if family is None:
+        return
+    numbers = family.numbers([column.codes], len(column.codes))
+    for known in column.knowns:
+        quantity = int(numbers[known.code])
+        item = _cell_item(quantity, known, binder.statement_number(known.row))
+        gathered.equations.append(item)
+        gathered.see(quantity, item.place)
+        if column.unit is not None:
+            gathered.hints[0].setdefault(quantity, column.unit)
+
+
+def _cell_item(quantity: int, known: CellKnown, statement: int) -> EquationItem:
+    builder = TapeBuilder()
+    literal = known.literal
+    left = builder.quantity(quantity, (literal.start, literal.end))
+    right = builder.literal(literal)
+    formula = builder.formula((left, right), statement, ((left, right),))
+    place = Place(statement, literal.start, literal.end)
+    return EquationItem(formula, place, quantity, literal.value)
+
+
+def _apply_overrides(gathered: _Gathered, freed: Collection[str], diagnostics: list[Diagnostic]) -> None:
+    """Knowns given for one run replace those of the worksheet; freed members lose theirs."""
+    for_this_run = {
+        item.known
+        for item in gathered.equations
+        if item.known >= 0 and not gathered.statements[item.place.statement].source.numbered
+    }
+    gone = dict.fromkeys(freed, False)
+    kept = []
+    for item in gathered.equations:
+        if item.known >= 0:
+            name = gathered.names[item.known]
+            own = not gathered.statements[item.place.statement].source.numbered
+            if item.known in for_this_run and not own:
                 continue
-            if not meant.pattern:
-                start, end = next((s, e) for q, s, e in one.named if q == stand_in)
-                if self.knows_one(stand_in, statement, start, end):
-                    formula = self.formula(meant.formula, statement)
-                    items.append(GuessItem(self._final[stand_in], place, True, formula, meant.roles))
+            if name in gone and not own:
+                gone[name] = True
                 continue
-            matching = [i for i, name in enumerate(self._names) if fnmatchcase(name, _glob(meant.target))]
-            if not matching:
-                self._diagnostics.append(
-                    warning(
-                        "pattern-without-match",
-                        f"no quantity matches `{meant.target}`",
-                        Label(self._used[statement].span(meant.start, meant.end)),
-                    )
-                )
-            for quantity in matching:
-                quantities = tuple(
-                    quantity if q == stand_in else self._final[q] for q in meant.formula.quantities
-                )
-                formula = replace(meant.formula, quantities=quantities, statement=statement)
-                items.append(GuessItem(quantity, place, False, formula, meant.roles))
-        return items
+        kept.append(item)
+    gathered.equations = kept
+    for name, done in gone.items():
+        if not done:
+            diagnostics.append(not_a_known(name, gathered.names, name in gathered.names))
+
+
+def not_a_known(name: str, knowns: Iterable[str], mentioned: bool) -> Diagnostic:
+    """What to say where a name to be freed is set by no line."""
+    from eqsheet.diagnostics.source import Source, Span
+    from eqsheet.model.spelling import did_you_mean
+
+    source = Source("--free", name, numbered=False)
+    return error(
+        "not-a-known",
+        f"`{name}` is not set by a line of its own, so it cannot be freed",
+        Label(Span(source, 0, len(name))),
+        help=did_you_mean(name, knowns) or ("it is already an unknown" if mentioned else ""),
+    )
 
 
 def _glob(pattern: str) -> str:
@@ -269,18 +623,13 @@ def _glob(pattern: str) -> str:
     return pattern.replace("[", "[[]").replace("?", "[?]")
 
 
-def replace_limit(item: LimitItem, formula: Formula, statement: int) -> LimitItem:
-    """The limit bound to `formula` in `statement`."""
-    return replace(item, formula=formula, place=replace(item.place, statement=statement))
-
-
 def _equation_key(
-    names: tuple[str, ...], used: tuple[syntax.Statement, ...]
+    statements: tuple[syntax.Statement, ...],
 ) -> Callable[[EquationItem], tuple[bool, list[int], str]]:
     """Order of equations that does not depend on the order of lines: knowns, then by names, then by text."""
 
     def key(item: EquationItem) -> tuple[bool, list[int], str]:
-        text = used[item.place.statement].line.text[item.place.start : item.place.end]
+        text = statements[item.place.statement].line.text[item.place.start : item.place.end]
         return item.known < 0, sorted(item.formula.quantities), text
 
     return key
@@ -317,29 +666,7 @@ def _by_precedence(
     return sorted(guesses, key=lambda g: not g.exact)
 
 
-def _preferred_units(
-    lowered: Sequence[LoweredStatement],
-    idle: Sequence[LoweredStatement],
-    final: dict[int, int],
-    shown: dict[int, Unit | None],
-) -> dict[int, Unit]:
-    """Unit for each quantity by precedence: `show`, known, known switched off, guess, limit."""
-    units: dict[int, Unit] = {q: unit for q, unit in shown.items() if unit is not None}
-    groups = (
-        [one for one in lowered if one.equation is not None],
-        idle,
-        [one for one in lowered if one.guesses],
-        [one for one in lowered if one.limit is not None],
-    )
-    for group in groups:
-        for one in group:
-            for quantity, unit in one.unit_hints:
-                if quantity in final:
-                    units.setdefault(final[quantity], unit)
-    return units
-
-
-def _check_labels(used: tuple[syntax.Statement, ...], diagnostics: list[Diagnostic]) -> None:
+def _check_labels(used: Iterable[syntax.Statement], diagnostics: list[Diagnostic]) -> None:
     first: dict[str, syntax.Statement] = {}
     for statement in used:
         if not statement.label:
@@ -357,22 +684,23 @@ def _check_labels(used: tuple[syntax.Statement, ...], diagnostics: list[Diagnost
             )
 
 
-def _unsupported(statement: syntax.Statement) -> Diagnostic:
-    word = statement.line.text.split(None, 1)[0].rstrip(":")
-    return error(
-        "unsupported-statement",
-        f"`{word}` is not understood by this version",
-        Label(statement.span(0, len(word))),
-    )
-
-
 def _same_context(a: Context, b: Context) -> bool:
     mine, other = a.unit_table, b.unit_table
     if mine is not other and (mine.ambient, mine.added) != (other.ambient, other.added):
         return False
-    if a.definitions.keys() != b.definitions.keys():
+    if a.definitions.keys() != b.definitions.keys() or not _same_indexing(a.indexing, b.indexing):
         return False
     return all(
         x.node == b.definitions[name].node and x.line.text == b.definitions[name].line.text
         for name, x in a.definitions.items()
+    )
+
+
+def _same_indexing(a: Indexing, b: Indexing) -> bool:
+    if a.whole != b.whole or a.sets.keys() != b.sets.keys() or a.columns.keys() != b.columns.keys():
+        return False
+    return all(s.members == b.sets[n].members for n, s in a.sets.items()) and all(
+        (c.rows, c.of, c.codes.tolist()) == (d.rows, d.of, d.codes.tolist())
+        for n, c in a.columns.items()
+        if (d := b.columns[n]) is not None
     )

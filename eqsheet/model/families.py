@@ -91,7 +91,9 @@ class Family:
             outside |= (position < 0) | (position >= len(self.keys))
         else:
             position = np.searchsorted(self.keys, key)
-            outside |= (position >= len(self.keys)) | (self.keys[np.minimum(position, len(self.keys) - 1)] != key)
+            outside |= (position >= len(self.keys)) | (
+                self.keys[np.minimum(position, len(self.keys) - 1)] != key
+            )
         return np.where(outside, -1, self.first + position)
 
     def name(self, member: int, indexing: Indexing) -> str:
@@ -190,7 +192,9 @@ class FamilyCollector:
         slots = self.sets[reference.path]
         columns = [
             np.broadcast_to(
-                np.asarray(placed(subscript(node, full, self._indexing), slots[k] or "", node, self._indexing)),
+                np.asarray(
+                    placed(subscript(node, full, self._indexing), slots[k] or "", node, self._indexing)
+                ),
                 (domain.size,),
             )
             for k, node in enumerate(reference.nodes)
@@ -234,7 +238,9 @@ def with_fixed(domain: Domain, fixed: Mapping[str, tuple[int, str]]) -> Domain:
     if not fixed:
         return domain
     arrays = {n: np.full(domain.size, code) for n, (code, _) in fixed.items()}
-    return Domain(domain.size, {**domain.arrays, **arrays}, {**domain.sets, **{n: s for n, (_, s) in fixed.items()}})
+    return Domain(
+        domain.size, {**domain.arrays, **arrays}, {**domain.sets, **{n: s for n, (_, s) in fixed.items()}}
+    )
 
 
 def makes_members(node: syntax.Expression, indices: Container[str]) -> bool:

@@ -298,7 +298,9 @@ class Lowering:
         code, set_name = self._fixed.get(node.name, (0, self._free.get(node.name, "")))
         if set_name:
             self._refuse(
-                "member-as-number", f"`{node.name}` is a member of `{set_name}`, not a number", node,
+                "member-as-number",
+                f"`{node.name}` is a member of `{set_name}`, not a number",
+                node,
                 help="members may be compared, and stand in brackets",
             )
         if node.name in self._fixed:
@@ -413,7 +415,9 @@ class Lowering:
         if node.function in _EMPTY:
             return self.builder.constant(_EMPTY[node.function], place)
         return self._refuse(
-            "empty-aggregate", f"`{node.function}` over no members has no value", node,
+            "empty-aggregate",
+            f"`{node.function}` over no members has no value",
+            node,
             help="the index set or the filter leaves nothing",
         )
 

@@ -223,9 +223,7 @@ def lower_limit(
         differences = (within,)
     outputs = (*operands, *(() if within is None else (within,)))
     formula = work.builder.formula(outputs, 0, tuple(alike), differences)
-    references = [
-        o for o in condition.operands if isinstance(o, syntax.Reference) and not _is_constant(o)
-    ]
+    references = [o for o in condition.operands if isinstance(o, syntax.Reference) and not _is_constant(o)]
     # The percent sign of `within 1 %` is no unit of the quantity.
     unit = unit if node.relative else work.first_unit
     hints = [

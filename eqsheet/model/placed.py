@@ -175,7 +175,8 @@ def _unfold(
                 "unknown-template",
                 f"there is no template `{node.template}`",
                 here,
-                help=did_you_mean(node.template, work.templates) or f"write `template {node.template}:` and its lines",
+                help=did_you_mean(node.template, work.templates)
+                or f"write `template {node.template}:` and its lines",
             )
         )
         return

@@ -6,7 +6,6 @@ on the order of the lines.
 
 from __future__ import annotations
 
-from bisect import bisect_left
 from collections.abc import Mapping
 from dataclasses import dataclass
 
@@ -80,6 +79,8 @@ class EquationItem:
         SI value of the known; nan for other equations.
     tolerance : ToleranceOfKnown or None
     valid : tuple of Validity
+    member : str
+        In a family or an instance, what tells it from the others of its statement: ``supply, i = 3``.
     """
 
     formula: Formula
@@ -88,6 +89,7 @@ class EquationItem:
     value: float = float("nan")
     tolerance: ToleranceOfKnown | None = None
     valid: tuple[Validity, ...] = ()
+    member: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -167,6 +169,8 @@ class EquationSystem:
         Whether a gauge unit occurs, so that the ambient pressure must be stated.
     shows : tuple of Formula
         ``show ... in`` as formulas that hold the quantity and its unit alike, for the dimensions.
+    families : tuple of int
+        For each quantity the number of the first member of its family; empty where there are no families.
     """
 
     statements: tuple[Statement, ...]
@@ -181,8 +185,11 @@ class EquationSystem:
     ambient: float
     uses_gauge: bool
     shows: tuple[Formula, ...] = ()
+    families: tuple[int, ...] = ()
 
     def number(self, name: str) -> int | None:
         """Number of the quantity of that name, or None."""
-        i = bisect_left(self.names, name)
-        return i if i < len(self.names) and self.names[i] == name else None
+        try:
+            return self.names.index(name)
+        except ValueError:
+            return None

@@ -84,6 +84,13 @@ def _quantities(prepared: Prepared, run: Run) -> dict[str, QuantityValue]:
     """Values in order of showing: those of `show` first, then in the order of the text."""
     system = prepared.system
     places = [(p.statement, p.start, q) for q, p in enumerate(system.first_places)]
+    if system.families:
+        # The members of a family stand together, in their own order, where the first of them is named.
+        earliest: dict[int, tuple[int, int]] = {}
+        for statement, start, q in places:
+            family = system.families[q]
+            earliest[family] = min(earliest.get(family, (statement, start)), (statement, start))
+        places = [(*earliest[system.families[q]], q) for _, _, q in places]
     order = [*system.shown, *(q for _, _, q in sorted(places) if q not in system.shown)]
     return {
         system.names[q]: _value(prepared, run, q, run.values[q], run.errors[q])
@@ -104,7 +111,7 @@ def _value(prepared: Prepared, run: Run, quantity: int, si: float, error_bound: 
         _statement_of(prepared, run, quantity),
         error_bound,
         digits_of(si, error_bound),
-        shown_unit(system, prepared.dimensions.dimensions, prepared.kinds, quantity),
+        shown_unit(system, prepared.dimensions, prepared.kinds, quantity),
         system.unit_table,
         _tolerance_of(prepared, quantity) if block is None else "",
     )

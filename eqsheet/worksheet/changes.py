@@ -5,18 +5,18 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import replace
 
-from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
-from eqsheet.diagnostics.source import Source, Span
+from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.diagnostics.source import Source
+from eqsheet.model.build import not_a_known
 from eqsheet.model.lower_statements import known_name
-from eqsheet.model.spelling import did_you_mean
 from eqsheet.syntax.nodes import Equation, Statement
 from eqsheet.syntax.parse import parse_statement
 
 
 def apply_changes(
     statements: Sequence[Statement], changes: Sequence[str], free: Sequence[str]
-) -> tuple[tuple[Statement, ...], tuple[Diagnostic, ...]]:
-    """The statements with changes applied.
+) -> tuple[tuple[Statement, ...], tuple[str, ...], tuple[Diagnostic, ...]]:
+    """The statements with changes applied, and the names still to be freed (members of families).
 
     Parameters
     ----------
@@ -26,18 +26,20 @@ def apply_changes(
         Names of knowns to switch off.
     """
     if not changes and not free:
-        return tuple(statements), ()
+        return tuple(statements), (), ()
     result = list(statements)
     diagnostics: list[Diagnostic] = []
+    members = tuple(name for name in free if "[" in name or "." in name)
     for name in free:
-        _switch_off(result, name, diagnostics)
+        if name not in members:
+            _switch_off(result, name, diagnostics)
     for text in changes:
         source = Source("--with", text, numbered=False)
         statement, found = parse_statement(source)
         diagnostics.extend(found)
         if statement is not None and not found:
             _put(result, statement)
-    return tuple(result), tuple(diagnostics)
+    return tuple(result), members, tuple(diagnostics)
 
 
 def _put(result: list[Statement], statement: Statement) -> None:
@@ -62,13 +64,5 @@ def _switch_off(result: list[Statement], name: str, diagnostics: list[Diagnostic
     if found:
         return
     knowns = [n for n in map(known_name, result) if n is not None]
-    source = Source("--free", name, numbered=False)
     mentioned = any(isinstance(s.node, Equation) and name in s.line.text for s in result)
-    diagnostics.append(
-        error(
-            "not-a-known",
-            f"`{name}` is not set by a line of its own, so it cannot be freed",
-            Label(Span(source, 0, len(name))),
-            help=did_you_mean(name, knowns) or ("it is already an unknown" if mentioned else ""),
-        )
-    )
+    diagnostics.append(not_a_known(name, knowns, mentioned))

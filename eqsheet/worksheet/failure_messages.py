@@ -107,7 +107,7 @@ class _Writer:
         guesses: Guesses,
     ) -> None:
         self.system = system
-        self.dimensions = prepared.dimensions.dimensions
+        self.dimensions = prepared.dimensions
         self.kinds = prepared.kinds
         self.run = run
         self.result = result

@@ -43,11 +43,7 @@ def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitRep
     outputs = item.formula.tape.outputs
     operands = outputs[:-1] if item.within else outputs
     dimension = next(
-        (
-            d
-            for d in (dimensions_of(item.formula, prepared.dimensions.dimensions)[o] for o in operands)
-            if d is not None
-        ),
+        (d for d in (dimensions_of(item.formula, prepared.dimensions)[o] for o in operands) if d is not None),
         Dimension(()),
     )
     unit = item.unit
@@ -80,7 +76,7 @@ def _unit_of_a_side(
         operation, *rest = item.formula.tape.instructions[operand]
         if operation == "quantity":
             quantity = item.formula.quantities[rest[0]]
-            return shown_unit(system, prepared.dimensions.dimensions, prepared.kinds, quantity)
+            return shown_unit(system, prepared.dimensions, prepared.kinds, quantity)
     return default_unit(dimension, "plain", system.unit_table)
 
 
@@ -177,7 +173,7 @@ def _truth(formula: Formula, run: Run) -> bool:
 
 def _left(prepared: Prepared, run: Run, validity: Validity) -> Diagnostic:
     system = prepared.system
-    dimensions, kinds = prepared.dimensions.dimensions, prepared.kinds
+    dimensions, kinds = prepared.dimensions, prepared.kinds
     values = [
         f"`{system.names[q]}` is "
         + written_quantity(shown_unit(system, dimensions, kinds, q), kinds[q], run.values[q])
@@ -201,7 +197,7 @@ def known_bounds(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
         if low <= value <= high:
             continue
         role, bound = ("lower", low) if value < low else ("upper", high)
-        unit = shown_unit(system, prepared.dimensions.dimensions, prepared.kinds, quantity)
+        unit = shown_unit(system, prepared.dimensions, prepared.kinds, quantity)
         kind = prepared.kinds[quantity]
         item = next(i for i in system.equations if i.known == quantity)
         found.append(

@@ -12,13 +12,13 @@ from dataclasses import dataclass, field
 from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
 from eqsheet.model.branches import settle
 from eqsheet.model.build import LoweredCache, build_system
-from eqsheet.model.check_units import check_units
-from eqsheet.model.infer_dimensions import DimensionResult
+from eqsheet.model.family_units import check_units_by_family
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.analyse import analyse
 from eqsheet.structure.verdict import Structure
 from eqsheet.syntax.nodes import Statement
+from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.structure_messages import structure_diagnostics
 from eqsheet.worksheet.without_unknowns import Checked, check_without_unknowns
 
@@ -38,7 +38,8 @@ class Prepared:
         Equation numbers that take part in the structure: all but those without unknowns and repeated knowns.
     structure : Structure
         Its rows are positions in `rows`, its columns are quantity numbers.
-    dimensions : DimensionResult
+    dimensions : tuple of (Dimension or None)
+        By quantity.
     kinds : tuple of str
         ``reading``, ``difference`` or ``plain`` for each quantity.
     known_values : mapping of int to float
@@ -56,7 +57,7 @@ class Prepared:
     formulas: tuple[Formula, ...]
     rows: tuple[int, ...]
     structure: Structure
-    dimensions: DimensionResult
+    dimensions: tuple[Dimension | None, ...]
     kinds: tuple[str, ...]
     known_values: Mapping[int, float]
     setters: Mapping[int, int]
@@ -70,6 +71,7 @@ def prepare(
     statements: Sequence[Statement],
     earlier: Sequence[Diagnostic],
     cache: LoweredCache | None = None,
+    freed: Sequence[str] = (),
 ) -> Prepared:
     """Build, infer dimensions, settle, and find the order of solution.
 
@@ -78,17 +80,15 @@ def prepare(
     statements : sequence of Statement
     earlier : sequence of Diagnostic
         What reading the text has found; errors among them keep numbers from being computed.
-    cache : LoweredCache, optional
+    cache, freed
         See `build_system`.
     """
     clock = time.perf_counter
     begin = clock()
-    system, found = build_system(statements, cache)
+    system, found = build_system(statements, cache, freed)
     diagnostics = [*earlier, *found]
-    formulas, minor = all_formulas(system)
-    units = check_units(formulas, system.statements, system.names, minor)
+    units = check_units_by_family(system)
     diagnostics += units.diagnostics
-    clashing = {clash.formula for clash in units.dimensions.clashes}
     known_values: dict[int, float] = {}
     setters: dict[int, int] = {}
     for number, item in enumerate(system.equations):
@@ -97,7 +97,7 @@ def prepare(
             setters.setdefault(item.known, number)
     settled = tuple(settle(item.formula, known_values.get) for item in system.equations)
     modelled = clock()
-    checked: Checked = check_without_unknowns(system, settled, known_values, clashing)
+    checked: Checked = check_without_unknowns(system, settled, known_values, units.clashing)
     diagnostics += checked.diagnostics
     structure = analyse([settled[i].quantities for i in checked.rows], len(system.names))
     valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found, *units.diagnostics))
@@ -112,7 +112,7 @@ def prepare(
         checked.rows,
         structure,
         units.dimensions,
-        tuple(["plain" if kind == "unknown" else kind for kind in units.kinds.kinds]),
+        units.kinds,
         known_values,
         setters,
         tuple(diagnostics),
@@ -120,15 +120,3 @@ def prepare(
         timing,
         checked.contested,
     )
-
-
-def all_formulas(system: EquationSystem) -> tuple[tuple[Formula, ...], range]:
-    """Every formula whose dimensions must fit, and which of them state no physics (guesses, limits, ...)."""
-    formulas = [item.formula for item in system.equations]
-    for item in system.equations:
-        formulas.extend(v.formula for v in item.valid)
-    physical = len(formulas)
-    formulas.extend(guess.formula for guess in system.guesses)
-    formulas.extend(limit.formula for limit in system.limits)
-    formulas.extend(system.shows)
-    return tuple(formulas), range(physical, len(formulas))

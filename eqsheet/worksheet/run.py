@@ -83,7 +83,7 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
         if quantity not in prepared.contested:
             values[quantity] = value
     formulas = list(prepared.formulas)
-    dimensions = prepared.dimensions.dimensions
+    dimensions = prepared.dimensions
     known = Known(values, errors)
     runs: list[BlockRun] = []
     block_of: dict[int, int] = {}

@@ -47,8 +47,8 @@ class Worksheet:
 
     def prepare(self, changes: Sequence[str] = (), free: Sequence[str] = ()) -> Prepared:
         """Everything up to the order of solution, before any number is computed; parameters as in `solve`."""
-        statements, found = apply_changes(self.document.statements, changes, free)
-        return prepare(statements, (*self.diagnostics, *found), self.cache)
+        statements, freed, found = apply_changes(self.document.statements, changes, free)
+        return prepare(statements, (*self.diagnostics, *found), self.cache, freed)
 
     def solve(
         self,

@@ -140,7 +140,7 @@ class BlockReport:
     @property
     def lines(self) -> tuple[int, ...]:
         """Line numbers of its equations."""
-        return tuple(s.line.line for s in self.statements if s.source.numbered)
+        return tuple(dict.fromkeys(s.line.line for s in self.statements if s.source.numbered))
 
 
 @dataclass(frozen=True, slots=True)
