@@ -392,7 +392,8 @@ class _Gathered:
             for family in binder.numbering.families.values():
                 # A member without a unit of its own is shown like the first that has one.
                 members = range(family.first, family.first + family.size)
-                common = next((group[q] for q in members if group.get(q) is not None), None)
+                units_of = (group.get(q) for q in members)
+                common = next((unit for unit in units_of if unit is not None), None)
                 if common is not None:
                     for quantity in members:
                         units.setdefault(quantity, common)
