@@ -3,16 +3,15 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Sequence
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.diagnostics.source import Source
 from eqsheet.live.files import FileState, state_of, write_atomically
-from eqsheet.live.journal import Journal
+from eqsheet.live.journal import Journal, Recovered
 from eqsheet.live.lines import Edit, History, between
 from eqsheet.live.moved import Moved, moved
-from eqsheet.live.placing import pieces, placed, section_at, span_of_lines, statement_at
+from eqsheet.live.placing import pieces, placed, realigned, section_at, span_of_lines, statement_at
 from eqsheet.model.build import LoweredCache
 from eqsheet.syntax.read import TextFile, read_source
 from eqsheet.worksheet.block_memory import BlockMemory
@@ -152,7 +151,9 @@ class EditedWorksheet:
         """
         self._check(first)
         self._check(last)
-        return self._do(Edit(first - 1, self._lines[first - 1 : last], tuple(text.split("\n"))))
+        new = text.split("\n")
+        new[-1] = realigned(new[-1], self._lines[last - 1])
+        return self._do(Edit(first - 1, self._lines[first - 1 : last], tuple(new)))
 
     def insert(self, number: int, text: str) -> Outcome:
         """Put `text` before line `number`; a number one past the last line puts it at the end."""
@@ -175,9 +176,14 @@ class EditedWorksheet:
         self._sheet = self._read()
         return self.type(text)
 
-    def recover(self, lines: Sequence[str]) -> Outcome:
-        """Put in the lines a recovery file holds, as one edit that can be undone."""
-        return self._do(Edit(0, self._lines, tuple(lines)))
+    def recover(self, found: Recovered) -> Outcome:
+        """Take up what a recovery file holds, edit by edit; as one edit where the file has been changed since."""
+        if found.base == self._lines and found.edits:
+            for edit in found.edits[:-1]:
+                self._history = self._history.after(edit)
+                self._change(edit)
+            return self._do(found.edits[-1])
+        return self._do(between(self._lines, found.lines))
 
     def undo(self) -> Outcome | None:
         """Take the last edit back; None where there is none."""

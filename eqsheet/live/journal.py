@@ -21,10 +21,22 @@ FORMAT = 1
 
 @dataclass(frozen=True, slots=True)
 class Recovered:
-    """What a recovery file holds: the lines with all edits done, how many edits, and when it was last written."""
+    """What a recovery file holds.
 
+    Attributes
+    ----------
+    base : tuple of str
+        The lines the edits start from.
+    edits : tuple of Edit
+    lines : tuple of str
+        The lines with all edits done.
+    written : float
+        When it was last written, in seconds since the epoch.
+    """
+
+    base: tuple[str, ...]
+    edits: tuple[Edit, ...]
     lines: tuple[str, ...]
-    edits: int
     written: float
 
 
@@ -48,10 +60,11 @@ def read_recovery(path: str) -> Recovered | None:
         head = json.loads(records[0])
         if head["format"] != FORMAT:
             return None
-        lines = tuple(map(str, head["lines"]))
+        base = tuple(map(str, head["lines"]))
     except (OSError, ValueError, KeyError, TypeError):
         return None
-    edits = 0
+    lines = base
+    edits = []
     for record in records[1:]:
         try:
             found = json.loads(record)
@@ -59,8 +72,8 @@ def read_recovery(path: str) -> Recovered | None:
             lines = edit.applied(lines)
         except (ValueError, KeyError, TypeError):
             break
-        edits += 1
-    return Recovered(lines, edits, written)
+        edits.append(edit)
+    return Recovered(base, tuple(edits), lines, written)
 
 
 def is_in_use(path: str) -> bool:

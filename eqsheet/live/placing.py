@@ -118,7 +118,22 @@ def _in_place_of(text: str, typed: Statement, taken: Sequence[str], old: Stateme
     if not typed.line.comment and old.line.comment:
         code, comment = split_comment(taken[-1])
         new[-1] = _commented(new[-1].rstrip(), code, comment or "")
+    else:
+        new[-1] = realigned(new[-1], taken[-1])
     return tuple(new)
+
+
+def realigned(new: str, old: str) -> str:
+    """The new line with its comment in the column of the old one's, where the comment is the same.
+
+    >>> realigned("D = 5 mm  # bore", "D = 52.5 mm  # bore")
+    'D = 5 mm     # bore'
+    """
+    code, comment = split_comment(new)
+    before, same = split_comment(old)
+    if comment is None or comment != same or code.strip() == before.strip():
+        return new
+    return _commented(new, before, comment)
 
 
 def _labelled(line: str, label: str, off: bool) -> str:

@@ -14,10 +14,12 @@ from eqsheet.app.editor.prompter import Prompter
 from eqsheet.app.editor.telling import edit_lines, moved_lines
 from eqsheet.app.editor.words import WORDS, Understood
 from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
+from eqsheet.diagnostics.source import Span
 from eqsheet.live.document import EditedWorksheet, Outcome
 from eqsheet.model.lower_statements import known_name
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.review.table import origin_words, solution_lines, verdict_line
+from eqsheet.syntax.lines import split_comment
 from eqsheet.syntax.nodes import Statement
 
 MOST_MESSAGES = 4
@@ -48,11 +50,14 @@ class Draft:
     taken : str
         What becomes of it: ``replace`` the lines, ``insert`` before the line, or ``retype``: it was typed and is
         taken in afresh.
+    cursor : int
+        Where in the text the cursor stands.
     """
 
     text: str
     line: int | None
     taken: str
+    cursor: int = 0
 
 
 class Actions:
@@ -119,7 +124,7 @@ class Actions:
         errors = [d for d in document.solution.diagnostics if d.severity is Severity.ERROR]
         self._left_out(self._printer.diagnostics(errors, MOST_MESSAGES))
         if document.lines:
-            self._printer.say(verdict_line(document.solution))
+            self._printer.say(self._verdict())
         else:
             self._printer.say(f"{document.path}: a new worksheet; type its first line")
         self._printer.say("`help` shows what can be typed.")
@@ -150,7 +155,7 @@ class Actions:
         text = "\n".join(self._document.lines[first - 1 : last])
         if not self._prompter.brings_up:
             self._printer.lines(numbered(first + i, line) for i, line in enumerate(text.split("\n")))
-        self.draft = Draft(text, first, "replace")
+        self.draft = Draft(text, first, "replace", _end_of_code(text))
 
     def _replace(self, meant: Understood) -> None:
         assert meant.first is not None
@@ -173,13 +178,13 @@ class Actions:
         statement = self._statement(meant, off=False)
         if statement is not None:
             first = statement.line.line
-            self._put(first, re.sub(r"^(\s*)", r"\1off ", self._document.lines[first - 1], count=1))
+            self._put(first, switched_off(self._document.lines[first - 1]))
 
     def _on(self, meant: Understood) -> None:
         statement = self._statement(meant, off=True)
         if statement is not None:
             first = statement.line.line
-            self._put(first, re.sub(r"\boff\s+", "", self._document.lines[first - 1], count=1))
+            self._put(first, switched_on(self._document.lines[first - 1]))
 
     def _put(self, number: int, line: str) -> None:
         self._tell(self._document.replace(number, number, line), "")
@@ -216,7 +221,7 @@ class Actions:
         """Say what an edit did, and bring its line back where it cannot be read."""
         edit, solution = outcome.edit, outcome.solution
         self._printer.lines(edit_lines(edit.start, edit.old, edit.new))
-        self._printer.say(verdict_line(solution))
+        self._printer.say(self._verdict())
         self._printer.lines(moved_lines(outcome.moved))
         if not outcome.moved and solution.solved:
             self._printer.say("  no value changed")
@@ -232,15 +237,25 @@ class Actions:
             self._journal_told = True
             self._printer.say(f"there is no recovery file: {self._document.journal_trouble}")
         lines = range(edit.start + 1, edit.start + 1 + len(edit.new))
-        if comes_back and self._prompter.brings_up and self._has_slip(lines):
-            self.draft = Draft("\n".join(edit.new), edit.start + 1, comes_back)
+        slip = self._slip(lines)
+        if comes_back and self._prompter.brings_up and slip is not None:
+            text = "\n".join(edit.new)
+            start = slip.source.line_starts[edit.start]
+            self.draft = Draft(text, edit.start + 1, comes_back, min(slip.end - start, len(text)))
 
-    def _has_slip(self, lines: range) -> bool:
-        """Whether there is a mistake in the words of one of those lines."""
+    def _verdict(self) -> str:
+        """How the worksheet stands; its name is known to whoever edits it."""
+        return verdict_line(self._document.solution).removeprefix(f"{self._document.solution.worksheet}: ")
+
+    def _slip(self, lines: range) -> Span | None:
+        """Where the first mistake in the words of one of those lines is."""
         read = self._document.sheet.diagnostics
         found = [d for d in self._document.solution.diagnostics if d.code in _IN_THE_LINE]
-        errors = [d for d in (*read, *found) if d.severity is Severity.ERROR]
-        return any(d.span is not None and d.span.line in lines for d in errors)
+        for diagnostic in (*read, *found):
+            span = diagnostic.span
+            if diagnostic.severity is Severity.ERROR and span is not None and span.line in lines:
+                return span
+        return None
 
     def _left_out(self, count: int) -> None:
         if count:
@@ -297,7 +312,7 @@ class Actions:
 
     def _results(self, _: Understood) -> None:
         solution = self._document.solution
-        self._printer.lines([verdict_line(solution), "", *solution_lines(solution)])
+        self._printer.lines([self._verdict(), "", *solution_lines(solution)])
 
     def _changes(self, _: Understood) -> None:
         self._printer.lines(moved_lines(self._document.last, most=1_000_000) or ["  nothing has moved"])
@@ -343,12 +358,46 @@ class Actions:
         short = meant.text if len(meant.text) < 60 else meant.text[:57] + "..."
         self._printer.say(f"`{short}` is no statement, no command and no quantity")
         self._suggest(meant.text, [*self._document.solution, *(w.name for w in WORDS)])
-        self.draft = Draft(meant.text, None, "")
+        self.draft = Draft(meant.text, None, "", len(meant.text))
 
     def _suggest(self, name: str, candidates: Iterable[str]) -> None:
         help = did_you_mean(name, candidates)
         if help:
             self._printer.say(f"  {help}")
+
+
+_OFF = "off "
+
+
+def switched_off(line: str) -> str:
+    """The line with ``off`` before its statement; its comment keeps its column where there is room.
+
+    >>> switched_off("D = 5 mm       # bore"), switched_off("D = 5 mm")
+    ('off D = 5 mm   # bore', 'off D = 5 mm')
+    """
+    code, comment = split_comment(line)
+    indent = line[: len(line) - len(line.lstrip())]
+    rest = code[len(indent) :]
+    room = len(rest) - len(rest.rstrip())
+    if comment is None:
+        return f"{indent}{_OFF}{rest}"
+    return f"{indent}{_OFF}{rest.rstrip()}{' ' * max(room - len(_OFF), 1)}#{comment}"
+
+
+def switched_on(line: str) -> str:
+    """The line without the first ``off``.
+
+    >>> switched_on("off D = 5 mm   # bore"), switched_on("bore: off D = 5 mm")
+    ('D = 5 mm       # bore', 'bore: D = 5 mm')
+    """
+    code, comment = split_comment(line)
+    new = re.sub(r"(?<!\w)off[ \t]+", "", code, count=1)
+    return new if comment is None else f"{new}{' ' * (len(code) - len(new))}#{comment}"
+
+
+def _end_of_code(text: str) -> int:
+    """Where the code of the first line ends, which is where most changes are made."""
+    return len(split_comment(text.split("\n", 1)[0])[0].rstrip())
 
 
 def _mentions(line: str, name: str) -> bool:

@@ -97,11 +97,16 @@ class Keeper:
                 f"the changes are not saved; `eqsheet edit {document.path}` at a terminal offers them again"
             )
 
-    def offer(self, found: Recovered) -> bool:
-        """Ask whether to take up what was not saved last time; whether it was."""
+    def offer(self, found: Recovered) -> bool | None:
+        """Ask whether to take up what was not saved last time; None where there is no answer."""
         when = time.strftime("%d %B %Y at %H:%M", time.localtime(found.written))
-        changes = f"{found.edits} change{'s' * (found.edits != 1)}"
-        return self._yes(f"{changes} of {when} were not saved. Take them up again? yes or no:")
+        count = len(found.edits)
+        changes = "1 change" if count == 1 else f"{count} changes"
+        said = f"{changes} of {when} {'was' if count == 1 else 'were'} not saved."
+        try:
+            return self._ask(f"{said} Take up the work again? yes or no:", ()) in _YES
+        except (EOFError, KeyboardInterrupt):
+            return None
 
     def _saved(self) -> bool:
         self.write_failed = False

@@ -54,7 +54,7 @@ def _below(solution: Solution, good: Solution | None) -> dict[int, list[str]]:
         values = [solution[name] for name in block.unknowns if name in solution]
         words = ", ".join(map(value_words, values))
         if len(block.lines) > 1 and words:
-            words += f"  with {_lines_words(block.lines[:-1])}"
+            words += f",  with {_lines_words(block.lines[:-1])}"
         if not values and good is not None:
             words = ", ".join(f"before: {value_words(good[n])}" for n in block.unknowns if n in good)
         if words:
@@ -86,10 +86,21 @@ def _height(text: str) -> int:
 
 
 def _lines_words(lines: Sequence[int]) -> str:
-    most = 6
-    shown = ", ".join(map(str, lines[:most]))
-    more = f" and {len(lines) - most} more" if len(lines) > most else ""
-    return f"line{'s' * (len(lines) > 1)} {shown}{more}"
+    """The lines in words, neighbours together: ``lines 3, 7 to 9``.
+
+    >>> _lines_words((3, 7, 8, 9))
+    'lines 3, 7 to 9'
+    """
+    runs: list[list[int]] = []
+    for line in lines:
+        if runs and line == runs[-1][-1] + 1:
+            runs[-1].append(line)
+        else:
+            runs.append([line])
+    most = 4
+    words = [str(run[0]) if len(run) == 1 else f"{run[0]} to {run[-1]}" for run in runs[:most]]
+    more = " and more" if len(runs) > most else ""
+    return f"line{'s' * (len(lines) > 1)} {', '.join(words)}{more}"
 
 
 def _wrapped(text: str, width: int) -> list[str]:
@@ -98,7 +109,7 @@ def _wrapped(text: str, width: int) -> list[str]:
     lines = [""]
     for part in text.split(", "):
         joined = f"{lines[-1]}, {part}" if lines[-1] else part
-        if width_of(joined) > room and lines[-1]:
+        if width_of(joined) >= room and lines[-1]:
             lines[-1] += ","
             lines.append(part)
         else:

@@ -30,8 +30,8 @@ class Prompter(Protocol):
 
     brings_up: bool
 
-    def ask(self, prompt: str, text: str = "") -> str:
-        """A statement or a command, `text` brought up first.
+    def ask(self, prompt: str, text: str = "", cursor: int = 0) -> str:
+        """A statement or a command, `text` brought up first with the cursor at that place.
 
         Raises
         ------
@@ -75,9 +75,11 @@ class TerminalPrompter:
         )
         self._questions: PromptSession[str] = PromptSession(input=device, output=screen)
 
-    def ask(self, prompt: str, text: str = "") -> str:
+    def ask(self, prompt: str, text: str = "", cursor: int = 0) -> str:
         """See `Prompter`."""
-        return clean(self._session.prompt(prompt, default=text))
+        from prompt_toolkit.document import Document
+
+        return clean(self._session.prompt(prompt, default=Document(text, cursor)))
 
     def choose(self, question: str) -> str:
         """See `Prompter`."""
@@ -94,7 +96,7 @@ class PlainPrompter:
         self._write = write
         self._echo = echo
 
-    def ask(self, prompt: str, text: str = "") -> str:
+    def ask(self, prompt: str, text: str = "", cursor: int = 0) -> str:
         """See `Prompter`."""
         lines = [self._line(prompt)]
         while is_incomplete("\n".join(lines)):

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 from eqsheet.app import exit_status
 from eqsheet.app.colours import palette_for
-from eqsheet.app.editor.actions import Actions
+from eqsheet.app.editor.actions import Actions, Draft
 from eqsheet.app.editor.keeping import Keeper
 from eqsheet.app.editor.printer import Printer
 from eqsheet.app.editor.prompter import Prompter, for_this_terminal
@@ -23,6 +23,7 @@ if TYPE_CHECKING:
     from eqsheet.app.editor.completer import WorksheetCompleter
 
 PROMPT = "> "
+NOTHING = Draft("", None, "")
 
 
 def run_edit(path: str) -> int:
@@ -103,11 +104,11 @@ class Session:
 
     def _one(self) -> bool:
         """Ask once and do what was typed; whether to leave."""
-        draft = self._actions.draft
+        draft = self._actions.draft or NOTHING
         self._actions.draft = None
-        prompt = PROMPT if draft is None or draft.line is None else f"{draft.line}> "
+        prompt = PROMPT if draft.line is None else f"{draft.line}> "
         try:
-            typed = self._prompter.ask(prompt, "" if draft is None else draft.text)
+            typed = self._prompter.ask(prompt, draft.text, draft.cursor)
         except KeyboardInterrupt:
             return False
         except EOFError:
@@ -117,10 +118,11 @@ class Session:
             return self._keeper.may_quit()
         if not typed.strip():
             return False
-        if draft is not None and draft.line is not None:
+        meant = understood(typed, self._document.solution)
+        # A command is obeyed wherever it is typed: no line of a worksheet reads like one.
+        if draft.line is not None and meant.name in ("type", "value", "neither"):
             self._actions.take_draft(draft, typed)
             return False
-        meant = understood(typed, self._document.solution)
         if meant.name == "quit":
             return self._keeper.may_quit()
         self._actions.do(meant)
@@ -132,13 +134,17 @@ class Session:
         if is_in_use(path):
             return
         found = read_recovery(path)
-        if found is None or found.lines == self._document.lines:
+        if found is None:
             return
-        if not self._prompter.brings_up:
-            # A script cannot know of the question; what was left stays for whoever sits at a terminal.
-            self._printer.say("changes that were not saved last time are left as they are")
+        if found.lines == self._document.lines:
+            discard_recovery(path)
+            return
+        # A script cannot know of the question; what was left stays for whoever sits at a terminal.
+        taken = self._keeper.offer(found) if self._prompter.brings_up else None
+        if taken is None:
+            self._printer.say("changes that were not saved last time are left in their recovery file")
             self._document.without_journal()
-        elif self._keeper.offer(found):
-            self._document.recover(found.lines)
+        elif taken:
+            self._document.recover(found)
         else:
             discard_recovery(path)
