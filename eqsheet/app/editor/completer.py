@@ -15,10 +15,9 @@ KEYWORDS = ("require", "show", "define", "off", "new unit")
 _INSIDE = ("if", "then", "else", "and", "or", "not", "near", "within", "valid", "in", "pi", "const.")
 _COMMANDS = tuple(sorted({w.name for w in WORDS} - {"line", "replace"}))
 # A number and a blank, or a unit begun directly after it: what follows is a unit.
-_UNIT = re.compile(
-    r"(?:^|[^\w.])\d[\d.]*(?:[eE][-+]?\d+)? ?(?P<unit>[^\W\d_%]*(?:[*/·(][^\W\d_]*|\^[-\d]+)*)\Z"
-)
-_IN_UNIT = re.compile(r"\bin (?P<unit>[^\W\d]*(?:[*/·(][^\W\d_]*|\^[-\d]+)*)\Z")
+_BEGUN = r"(?P<unit>(?:[^\W\d_]+(?:[*/·(][^\W\d_]*|\^[-\d]+)*)?)\Z"
+_UNIT = re.compile(rf"(?:^|[^\w.])\d[\d.]*(?:[eE][-+]?\d+)? ?{_BEGUN}")
+_IN_UNIT = re.compile(rf"\bin {_BEGUN}")
 _LAST_SYMBOL = re.compile(r"[^\W\d]*\Z")
 _WORD = re.compile(r"[^\W\d][\w.]*\Z")
 _NAMES_AFTER = re.compile(r"\s*(?:off|on|value)\s+[\w.]*\Z")

@@ -62,7 +62,7 @@ def _height() -> int:
     return shutil.get_terminal_size().lines
 
 
-def names_of(document: EditedWorksheet) -> Iterable[str]:
+def names_of(document: EditedWorksheet) -> set[str]:
     """Names of the quantities and definitions in the worksheet as it is now."""
     known = document.good or document.solution
     names = {*document.solution, *known}
@@ -118,7 +118,7 @@ class Session:
             return self._keeper.may_quit()
         if not typed.strip():
             return False
-        meant = understood(typed, self._document.solution)
+        meant = understood(typed, names_of(self._document))
         # A command is obeyed wherever it is typed: no line of a worksheet reads like one.
         if draft.line is not None and meant.name in ("type", "value", "neither"):
             self._actions.take_draft(draft, typed)
