@@ -13,7 +13,7 @@ branch taken for ``if``. The derivative of ``sqrt`` at 0 is infinite.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from fractions import Fraction
 from functools import lru_cache
 
@@ -81,8 +81,13 @@ def equation_partials(tape: Tape, wanted: tuple[int, ...]) -> Tape:
 
 def gradient(writer: Simplifier, root: int, wanted: tuple[int, ...]) -> tuple[int, ...]:
     """Indices of the derivatives of instruction `root` with respect to the quantities `wanted`."""
-    leaves = tuple(writer.put("quantity", k) for k in wanted)
-    return _Gradient(writer, leaves).of(root)
+    return jacobian(writer, (root,), wanted)
+
+
+def jacobian(writer: Simplifier, roots: Sequence[int], wanted: Sequence[int]) -> tuple[int, ...]:
+    """Indices of the derivatives of each of `roots` with respect to each quantity of `wanted`, row by row."""
+    rows = _Gradient(writer, tuple(writer.put("quantity", k) for k in wanted))
+    return tuple(slope for root in roots for slope in rows.of(root))
 
 
 class _Gradient:

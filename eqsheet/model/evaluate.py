@@ -149,6 +149,28 @@ def raised(a: float, b: float) -> float:
         return -math.inf if a < 0.0 and b % 2.0 == 1.0 else math.inf
 
 
+def _root(a: float) -> float:
+    return math.sqrt(a) if a >= 0.0 else math.nan
+
+
+# The same products and roots that generated code writes, so that both give the same float.
+_POWERS: dict[Fraction, Callable[[float], float]] = {
+    Fraction(2): lambda a: a * a,
+    Fraction(3): lambda a: a * a * a,
+    Fraction(-1): lambda a: divide(1.0, a),
+    Fraction(-2): lambda a: divide(1.0, a * a),
+    Fraction(1, 2): _root,
+    Fraction(-1, 2): lambda a: divide(1.0, _root(a)),
+    Fraction(3, 2): lambda a: a * _root(a),
+}
+
+
+def exact_power(a: float, r: Fraction) -> float:
+    """a to an exact power, by products and roots where generated code uses them; see `raised`."""
+    short = _POWERS.get(r)
+    return short(a) if short else raised(a, as_float(r))
+
+
 def _ln(a: float) -> float:
     return -math.inf if a == 0.0 else UNARY["ln"].value(a)
 
@@ -186,7 +208,7 @@ _STEPS: dict[str, Callable[..., Any]] = {
     "sinh": _sinh,
 }
 _OF_ATTRIBUTE: dict[str, Callable[[float, Any], float]] = {
-    "power": lambda a, r: raised(a, as_float(r)),
+    "power": exact_power,
     "strip": lambda a, unit: (a - unit.origin) / unit.factor,
     "attach": lambda a, unit: a * unit.factor + unit.origin,
 }

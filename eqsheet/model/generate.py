@@ -17,7 +17,7 @@ from fractions import Fraction
 from functools import lru_cache
 from typing import Any
 
-from eqsheet.model.derive import gradient
+from eqsheet.model.derive import jacobian
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.functions import ALL_BINARY_FUNCTIONS, ALL_UNARY_FUNCTIONS, BINARY, UNARY, as_float
 from eqsheet.model.simplify import Simplifier, uses
@@ -28,6 +28,8 @@ Function = Callable[..., Any]
 MEMORY = 1 << 14
 # Deepest expression written in one piece; the compiler's own stack allows about 200 brackets.
 _DEEPEST = 24
+# Compiling takes as long as interpreting about fifteen times (measured: 60 against 4 microseconds).
+_CALLS_WORTH_COMPILING = 12
 
 DOMAIN_ERRORS = (ValueError, ZeroDivisionError, OverflowError)
 
@@ -56,11 +58,37 @@ def safe_function(tape: Tape) -> Function:
         try:
             return fast(*values)
         except DOMAIN_ERRORS:
-            steps = evaluate(tape, values[:count], values[count:])
-            results = tuple(steps[i] for i in tape.outputs)
-            return results[0] if len(results) == 1 else results
+            return _outputs(tape, evaluate(tape, values[:count], values[count:]))
 
     return safe
+
+
+@lru_cache(maxsize=MEMORY)
+def value_function(tape: Tape) -> Function:
+    """`safe_function` that compiles only once it has been called often enough to pay for it.
+
+    Until then it interprets; both give the same floats.
+    """
+    count = tape.quantities
+    calls = 0
+    compiled: Function | None = None
+
+    def value(*values: float) -> Any:
+        nonlocal calls, compiled
+        if compiled is not None:
+            return compiled(*values)
+        calls += 1
+        if calls >= _CALLS_WORTH_COMPILING:
+            compiled = safe_function(tape)
+        return _outputs(tape, evaluate(tape, values[:count], values[count:]))
+
+    return value
+
+
+def _outputs(tape: Tape, steps: list[Any]) -> Any:
+    if len(tape.outputs) == 1:
+        return steps[tape.outputs[0]]
+    return tuple([steps[i] for i in tape.outputs])
 
 
 @lru_cache(maxsize=MEMORY)
@@ -81,7 +109,11 @@ def array_function(tape: Tape) -> Function:
 def block_functions(
     equations: Sequence[tuple[Tape, tuple[int, ...]]], unknowns: Sequence[int]
 ) -> tuple[Function, tuple[int, ...]]:
-    """All residuals of a block and its dense Jacobian as one function.
+    """All residuals of a small block and its dense Jacobian as one function.
+
+    A call takes a third of the time of one call for each equation (tests/benchmarks/test_codegen_speed.py),
+    but the Jacobian has an entry for each equation and unknown: meant for blocks of up to some tens of
+    unknowns.
 
     Parameters
     ----------
@@ -127,8 +159,7 @@ def _block_function(shapes: tuple[tuple[Tape, tuple[int, ...]], ...], unknowns: 
         )
         literals += tape.literals
         roots.append(writer.sub(new[tape.outputs[0]], new[tape.outputs[1]]))
-    wanted = tuple(range(unknowns))
-    slopes = [slope for root in roots for slope in gradient(writer, root, wanted)]
+    slopes = jacobian(writer, roots, range(unknowns))
     tape = writer.tape((*roots, *slopes), unknowns + known, literals)
 
     def pair(texts: list[str]) -> str:
@@ -215,7 +246,8 @@ _ARRAY: dict[str, _Pattern] = {
     "not": ("negate(%s)", _ATOM, _LOGIC, _LOGIC),
 }
 
-# Powers written with products and roots. In array code a plain float may reach 1/a too, so it is a call there.
+# Powers written with products and roots. In array code a plain float may reach 1/a too, so it is a call
+# there.
 _POWERS = {
     Fraction(2): ("{0}*{0}", _PRODUCT),
     Fraction(3): ("{0}*{0}*{0}", _PRODUCT),

@@ -79,7 +79,8 @@ def test_arrays_of_two_arguments_give_what_floats_give(name: str) -> None:
         (a, b) for a in (-1.5, 0.3, 2.0) for b in (-0.7, 0.3, 4.0) if name[:7] != "logmean" or a * b > 0
     ]
     first, second = np.array(points).T
-    got = ARRAY_FUNCTIONS[name](first, second)
+    with np.errstate(all="ignore"):
+        got = ARRAY_FUNCTIONS[name](first, second)
     assert got == pytest.approx([BINARY[name](a, b) for a, b in points], rel=1e-14)
 
 
