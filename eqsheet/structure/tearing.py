@@ -7,8 +7,9 @@ column that sets the most others free, and the smaller number on a tie.
 
 from __future__ import annotations
 
-from collections.abc import Collection, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
+from heapq import heappop, heappush
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,58 +52,77 @@ def tear(
     >>> tear([(0, 1), (1, 2), (0, 2)], [(1,), (2,), (0,)], [0, 1, 2], 1)
     Tearing(tears=(0,), steps=((0, 1), (1, 2)), rest=(2,))
     """
+    column_rows: dict[int, list[int]] = {column: [] for column in preferred}
+    for row, columns in enumerate(rows):
+        for column in columns:
+            column_rows[column].append(row)
+    unravelling = _Unravelling(rows, gives, column_rows, set(), [len(columns) for columns in rows])
     tears: list[int] = []
     steps: list[tuple[int, int]] = []
-    found: set[int] = set()
-    used: set[int] = set()
-    while len(found) < len(preferred):
+    while len(unravelling.found) < len(preferred):
         if len(tears) == most:
             return None
-        best: tuple[int, list[tuple[int, int]]] | None = None
+        best: _Unravelling | None = None
         for column in preferred:
-            if column in found:
+            if column in unravelling.found:
                 continue
-            freed = _freed(rows, gives, {*found, column}, used)
-            if best is None or len(freed) > len(best[1]):
-                best = column, freed
+            tried = unravelling.with_given(column)
+            if best is None or len(tried.steps) > len(best.steps):
+                best, best_column = tried, column
         assert best is not None
-        column, freed = best
-        tears.append(column)
-        found.add(column)
-        for row, given in freed:
-            steps.append((row, given))
-            found.add(given)
-            used.add(row)
-    rest = tuple(r for r in range(len(rows)) if r not in used)
-    return Tearing(tuple(tears), tuple(steps), rest)
+        tears.append(best_column)
+        steps += best.steps
+        unravelling = best
+    used = {row for row, _ in steps}
+    return Tearing(tuple(tears), tuple(steps), tuple(r for r in range(len(rows)) if r not in used))
 
 
-def _freed(
-    rows: Sequence[Collection[int]],
-    gives: Sequence[Sequence[int]],
-    found: set[int],
-    used: set[int],
-) -> list[tuple[int, int]]:
-    """The steps possible once the columns `found` are there, in order."""
-    found = set(found)
-    steps: list[tuple[int, int]] = []
-    taken = set(used)
-    again = True
-    while again:
-        again = False
-        candidates = []
-        for row, columns in enumerate(rows):
-            if row in taken:
-                continue
-            missing = [c for c in columns if c not in found]
-            if len(missing) == 1 and missing[0] in gives[row]:
-                candidates.append((gives[row].index(missing[0]), row, missing[0]))
-        # A row that gives its best column goes first: `f = g(Re)` before any equation turned round to f.
-        for _, row, column in sorted(candidates):
-            if column not in found:
-                steps.append((row, column))
-                found.add(column)
-                taken.add(row)
-                again = True
-                break
-    return steps
+class _Unravelling:
+    """What is found of a block so far; `steps` are those that the column given last set free, in order."""
+
+    def __init__(
+        self,
+        rows: Sequence[Collection[int]],
+        gives: Sequence[Sequence[int]],
+        column_rows: Mapping[int, Sequence[int]],
+        found: set[int],
+        missing: list[int],
+    ) -> None:
+        self.rows = rows
+        self.gives = gives
+        self.column_rows = column_rows
+        self.found = found
+        self.missing = missing  # how many columns of each row are not found
+        self.steps: list[tuple[int, int]] = []
+
+    def with_given(self, column: int) -> _Unravelling:
+        """A copy with one more column given and all steps taken that this makes possible."""
+        copy = _Unravelling(self.rows, self.gives, self.column_rows, set(self.found), list(self.missing))
+        # Rows that can give their last column, the best first: `f = g(Re)` goes before an equation that would
+        # have to be turned round to f. A row may be in it twice; its column is found by then.
+        ready: list[tuple[int, int, int]] = []
+        if not self.found:
+            for row, count in enumerate(copy.missing):
+                if count == 1:
+                    copy._offer(row, ready)
+        copy._add(column, ready)
+        while ready:
+            _, row, given = heappop(ready)
+            if given not in copy.found:
+                copy.steps.append((row, given))
+                copy._add(given, ready)
+        return copy
+
+    def _add(self, column: int, ready: list[tuple[int, int, int]]) -> None:
+        self.found.add(column)
+        for row in self.column_rows[column]:
+            self.missing[row] -= 1
+            if self.missing[row] == 1:
+                self._offer(row, ready)
+
+    def _offer(self, row: int, ready: list[tuple[int, int, int]]) -> None:
+        for last in self.rows[row]:
+            if last not in self.found:
+                if last in self.gives[row]:
+                    heappush(ready, (self.gives[row].index(last), row, last))
+                return
