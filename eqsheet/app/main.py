@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 import argparse
+import io
 import os
 import sys
 from collections.abc import Sequence
+from contextlib import suppress
 
 from eqsheet.app import exit_status
 
@@ -130,10 +132,14 @@ def main(arguments: Sequence[str] | None = None) -> int:
         Without the program's name; ``sys.argv`` by default.
     """
     parser = build_parser()
+    _prepare_streams()
     try:
         options = parser.parse_args(arguments)
     except SystemExit as stop:
         return int(stop.code or 0)
+    if sys.stdout is None:
+        print("eqsheet: output cannot be written: standard output is closed", file=sys.stderr)
+        return exit_status.UNWRITABLE
     try:
         status = _run(parser, options)
         sys.stdout.flush()
@@ -142,15 +148,30 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print("eqsheet: interrupted", file=sys.stderr)
         return exit_status.INTERRUPTED
     except BrokenPipeError:
-        # Whoever read our output has left; keep the interpreter from complaining when it closes the stream.
-        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        _let_go_of_output()
         print("eqsheet: output cannot be written: its reader has gone", file=sys.stderr)
         return exit_status.UNWRITABLE
     except OSError as trouble:
+        _let_go_of_output()
         print(f"eqsheet: output cannot be written: {trouble.strerror or trouble}", file=sys.stderr)
         return exit_status.UNWRITABLE
     except Exception as mistake:
         return _own_mistake(mistake)
+
+
+def _prepare_streams() -> None:
+    """Make any text printable whatever the encoding, and messages harmless where standard error is closed."""
+    if sys.stderr is None:
+        sys.stderr = open(os.devnull, "w")  # noqa: SIM115 - stays open as long as the program runs
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(stream, io.TextIOWrapper):
+            stream.reconfigure(errors="backslashreplace")
+
+
+def _let_go_of_output() -> None:
+    """Keep the interpreter from complaining when it closes a standard output that takes nothing."""
+    with suppress(OSError, ValueError):
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 def _run(parser: argparse.ArgumentParser, options: argparse.Namespace) -> int:
@@ -181,13 +202,20 @@ def _run(parser: argparse.ArgumentParser, options: argparse.Namespace) -> int:
             return run_fmt(options.files)
         case _:
             if options.version:
-                from importlib.metadata import version
-
-                print(f"eqsheet {version('eqsheet')}")
+                print(f"eqsheet {_version()}")
                 return exit_status.SOLVED
             parser.print_usage(sys.stderr)
             print("eqsheet: name a command; `eqsheet --help` shows them with examples", file=sys.stderr)
             return exit_status.WRONG_USAGE
+
+
+def _version() -> str:
+    from importlib.metadata import PackageNotFoundError, version
+
+    try:
+        return version("eqsheet")
+    except PackageNotFoundError:
+        return "from a checkout, not installed"
 
 
 def _own_mistake(mistake: Exception) -> int:

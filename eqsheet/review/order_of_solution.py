@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
+from eqsheet.diagnostics.json import as_data
 from eqsheet.review.columns import in_columns
 from eqsheet.worksheet.solution import BlockReport, Solution
 
@@ -43,6 +44,7 @@ def blocks_data(solution: Solution) -> dict[str, Any]:
             }
             for block in solution.blocks
         ],
+        "diagnostics": [as_data(diagnostic) for diagnostic in solution.diagnostics],
     }
 
 

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections import Counter
+from collections.abc import Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, error
 from eqsheet.model.spelling import close_names
@@ -10,6 +11,9 @@ from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.verdict import Conflict, Shortfall, Structure
 from eqsheet.worksheet.places import MOST_LABELS, label_of, line_words, listed, quoted
+
+# Each name is compared with all others; where very many quantities are free, a slip is not the reason.
+MOST_SPELLED = 20
 
 
 def structure_diagnostics(
@@ -21,18 +25,19 @@ def structure_diagnostics(
     told once the rest is solved, see `conflict_diagnostic`.
     """
     square = len(structure.unmatched_rows) == len(structure.unmatched_columns)
+    singular = bool(structure.conflicts) and square
+    slips = _likely_slips(system, formulas, structure.shortfalls)
     return [
-        shortfall_diagnostic(system, formulas, rows, shortfall, bool(structure.conflicts) and square)
-        for shortfall in structure.shortfalls
+        shortfall_diagnostic(system, rows, shortfall, singular, slips) for shortfall in structure.shortfalls
     ]
 
 
 def shortfall_diagnostic(
     system: EquationSystem,
-    formulas: Sequence[Formula],
     rows: Sequence[int],
     shortfall: Shortfall,
     singular: bool,
+    slips: Mapping[int, str],
 ) -> Diagnostic:
     """What is free in an under-determined piece, and what could be added.
 
@@ -40,6 +45,8 @@ def shortfall_diagnostic(
     ----------
     singular : bool
         The worksheet as a whole has as many equations as unknowns, so that elsewhere there is one too many.
+    slips : mapping of int to str
+        What is to be said of quantities whose names are likely slips.
     """
     names = [system.names[c] for c in shortfall.columns]
     items = [system.equations[rows[r]] for r in shortfall.rows]
@@ -62,7 +69,7 @@ def shortfall_diagnostic(
         notes.append(
             "the worksheet has as many equations as unknowns, but too many of them elsewhere: it is structurally singular"
         )
-    notes += _spelling_notes(system, formulas, shortfall)
+    notes += [slips[column] for column in shortfall.columns if column in slips]
     wanted = "one of" if missing == 1 else f"{missing} of"
     help = (
         f"set {names[0]!r}".replace("'", "`") + " by a line of its own, or add an equation for it"
@@ -72,23 +79,23 @@ def shortfall_diagnostic(
     return error("under-determined", message, *labels, notes=tuple(notes), help=help)
 
 
-def _spelling_notes(system: EquationSystem, formulas: Sequence[Formula], shortfall: Shortfall) -> list[str]:
-    """A name that stands in one equation only and is close to another name is likely a slip."""
-    uses: dict[int, int] = {}
-    for formula in formulas:
-        for quantity in formula.quantities:
-            uses[quantity] = uses.get(quantity, 0) + 1
-    notes = []
-    for column in shortfall.columns:
-        if uses.get(column, 0) != 1:
-            continue
+def _likely_slips(
+    system: EquationSystem, formulas: Sequence[Formula], shortfalls: Sequence[Shortfall]
+) -> dict[int, str]:
+    """Free quantities that stand in one equation only and have a name close to another: likely slips."""
+    if not shortfalls:
+        return {}
+    uses = Counter(quantity for formula in formulas for quantity in formula.quantities)
+    once = [c for shortfall in shortfalls for c in shortfall.columns if uses[c] == 1]
+    found: dict[int, str] = {}
+    for column in once[:MOST_SPELLED]:
         close = close_names(system.names[column], system.names)
         if close:
             place = line_words(system, (system.first_places[column],))
-            notes.append(
+            found[column] = (
                 f"`{system.names[column]}` occurs only on {place}: did you mean {quoted(close, 'or')}?"
             )
-    return notes
+    return found
 
 
 def conflict_diagnostic(

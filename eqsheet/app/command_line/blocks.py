@@ -10,12 +10,15 @@ from eqsheet.app.command_line.solved import solve_each
 from eqsheet.app.exit_status import OF_SOLUTION
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.review.order_of_solution import block_lines, blocks_data
+from eqsheet.worksheet.load import UnreadableFile
 from eqsheet.worksheet.solution import Solution
 
 
 def run_blocks(file: str, changes: Sequence[str], free: Sequence[str], as_json: bool) -> int:
     """Print the blocks of one file; the exit status is that of solving it."""
-    return solve_each([file], changes, free, _print_json if as_json else _print)
+    if as_json:
+        return solve_each([file], changes, free, _print_json, _print_unreadable_json)
+    return solve_each([file], changes, free, _print)
 
 
 def _print(solution: Solution) -> int:
@@ -27,3 +30,7 @@ def _print(solution: Solution) -> int:
 def _print_json(solution: Solution) -> int:
     print(json.dumps(blocks_data(solution), ensure_ascii=False))
     return OF_SOLUTION[solution.status]
+
+
+def _print_unreadable_json(failure: UnreadableFile) -> None:
+    _print_json(Solution(failure.diagnostic.file, "invalid", {}, diagnostics=(failure.diagnostic,)))

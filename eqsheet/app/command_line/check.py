@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from eqsheet.app.command_line.output import print_diagnostics, print_lines
-from eqsheet.app.command_line.solve import print_json
+from eqsheet.app.command_line.solve import print_json, print_unreadable_json
 from eqsheet.app.command_line.solved import solve_each
 from eqsheet.app.exit_status import OF_SOLUTION, OUTSIDE_LIMITS, SOLVED
 from eqsheet.diagnostics.diagnostic import Severity
@@ -14,7 +14,9 @@ from eqsheet.worksheet.solution import Solution
 
 def run_check(files: Sequence[str], changes: Sequence[str], free: Sequence[str], as_json: bool) -> int:
     """Solve each file and print its verdict; the exit status."""
-    return solve_each(files, changes, free, _check_json if as_json else _check)
+    if as_json:
+        return solve_each(files, changes, free, _check_json, print_unreadable_json)
+    return solve_each(files, changes, free, _check)
 
 
 def status_of_check(solution: Solution) -> int:

@@ -10,13 +10,19 @@ from eqsheet.app.colours import palette_for
 from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.diagnostics.terminal import render
 
+# Nobody reads further before mending the first; `--json` gives all.
+MOST_PRINTED = 100
+
 
 def print_diagnostics(diagnostics: Iterable[Diagnostic]) -> None:
-    """Each on several lines to standard error, an empty line after each."""
+    """Each on several lines to standard error, an empty line after each; very many are cut short."""
     palette = palette_for(sys.stderr)
     width = shutil.get_terminal_size().columns
-    for diagnostic in diagnostics:
+    found = list(diagnostics)
+    for diagnostic in found[:MOST_PRINTED]:
         print(render(diagnostic, palette, width) + "\n", file=sys.stderr)
+    if len(found) > MOST_PRINTED:
+        print(f"eqsheet: {len(found) - MOST_PRINTED} more messages; --json gives all", file=sys.stderr)
 
 
 def print_lines(lines: Iterable[str]) -> None:

@@ -7,13 +7,14 @@ from collections.abc import Sequence
 from eqsheet.app.command_line.output import print_diagnostics, print_lines
 from eqsheet.app.command_line.solved import solve_each
 from eqsheet.app.exit_status import OF_SOLUTION
+from eqsheet.worksheet.load import UnreadableFile
 from eqsheet.worksheet.solution import Solution
 
 
 def run_solve(files: Sequence[str], changes: Sequence[str], free: Sequence[str], as_json: bool) -> int:
     """Solve each file and print what was found; the exit status."""
     if as_json:
-        return solve_each(files, changes, free, print_json)
+        return solve_each(files, changes, free, print_json, print_unreadable_json)
     several = len(files) > 1
     printed = 0
 
@@ -46,3 +47,8 @@ def print_json(solution: Solution) -> int:
 
     print(solution_text(solution))
     return OF_SOLUTION[solution.status]
+
+
+def print_unreadable_json(failure: UnreadableFile) -> None:
+    """An object for a file that cannot be read: an invalid worksheet with nothing in it but the reason."""
+    print_json(Solution(failure.diagnostic.file, "invalid", {}, diagnostics=(failure.diagnostic,)))
