@@ -250,6 +250,11 @@ class _Judge:
 _TRANSPARENT = LIKE.keys() | KEEPS
 
 
+def fits(lines: Worklines, found: Inference, index: int) -> bool:
+    """Whether formula `index` agrees with what the formulas behind `found` say."""
+    return not _Judge(lines, found, index).failed
+
+
 def describe_clash(
     lines: Worklines, found: Inference, origins: tuple[Origin | None, ...], index: int
 ) -> Clash | None:

@@ -3,15 +3,14 @@
 A contradiction is a set of statements that cannot all hold. Each is tried as the culprit: the one whose removal
 leaves the fewest contradictions in the whole worksheet is it, so a known with a slip in its unit is found by
 the several equations that agree against it. Next, the one is preferred without which the quantities have usual
-dimensions: a stress, not a force times an area. Ties go to formulas that state no physics, then to equations
-before knowns (a unit was written on purpose), then to formulas that a usual slip explains, then to those
-where a plain number is wanted.
+dimensions: a stress, not a force times an area. Ties go to units written in lines that state no physics (a guess),
+then to equations before knowns, then to formulas that a usual slip explains, then to those where a plain
+number is wanted.
 """
 
 from __future__ import annotations
 
 from fractions import Fraction
-from functools import cache
 
 from eqsheet.model.dimension_propagation import UNKNOWN, Inference, Worklines, demand_row, propagate_without
 from eqsheet.model.dimension_rules import Demand
@@ -29,6 +28,8 @@ PER_LENGTH = Dimension.of({"m": -1})
 #: Powers a quantity may be off by in a slip: forgotten, once too many, or squared where it should not be.
 SLIPS = (1, -1, 2, -2)
 
+NONE = -1
+
 
 def choose_culprit(
     lines: Worklines, found: Inference, set_aside: frozenset[int], minor: frozenset[int]
@@ -37,17 +38,23 @@ def choose_culprit(
     best = found.broken[0][0]
     best_rank: tuple[int, ...] | None = None
     touched = {q for index in found.conflict for q in lines.formulas[index].quantities}
+    knowns = {quantity: _known_of(lines, found, quantity, minor) for quantity in touched}
     for index in found.conflict if len(found.conflict) > 1 else ():
         if lines.visits > LARGEST_EFFORT:
             break
         without = propagate_without(lines, found, lines.siblings(index), set_aside)
+        written = len(lines.formulas[index].quantities) <= 1
+        oddness = {q: _oddness(lines, without.state[q]) for q in knowns}
         rank = (
             len(without.broken),
-            sum(_oddness(lines.dimensions[n]) for q in touched if (n := without.state[q]) != UNKNOWN),
-            index not in minor,
-            len(lines.formulas[index].quantities) <= 1,
-            not _slip_explains(lines, without, index),
+            # A unit written on purpose says little against itself, however odd it is.
+            sum(oddness[q] for q, known in knowns.items() if known in (index, NONE)),
+            not (written and index in minor),
+            written or not _slip_explains(lines, without, index),
+            sum(oddness.values()),
+            written,
             not _wants_a_number(lines, without, index),
+            index not in minor,
             -len(lines.formulas[index].quantities),
             -index,
         )
@@ -56,9 +63,17 @@ def choose_culprit(
     return best
 
 
-@cache
-def _oddness(dimension: Dimension) -> int:
+def _known_of(lines: Worklines, found: Inference, quantity: int, minor: frozenset[int]) -> int:
+    """The known whose unit is the quantity's dimension in `found`, or -1."""
+    reason = found.reasons.get(quantity)
+    if reason is None or reason.formula in minor or len(lines.formulas[reason.formula].quantities) > 1:
+        return NONE
+    return reason.formula
+
+
+def _oddness(lines: Worklines, number: int) -> int:
     """How unlikely a quantity of the dimension is: roots of units more than products without a name."""
+    dimension = DIMENSIONLESS if number == UNKNOWN else lines.dimensions[number]
     if any(power.denominator > 1 for _, power in dimension):
         return 4
     if dimension == DIMENSIONLESS or dimension_word(dimension):

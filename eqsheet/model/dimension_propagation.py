@@ -202,7 +202,10 @@ def propagate(lines: Worklines, known: Mapping[int, Dimension], without: Collect
 def propagate_without(
     lines: Worklines, found: Inference, removed: Collection[int], set_aside: Collection[int]
 ) -> Inference:
-    """`found` as it would be without the formulas `removed` too; only what hangs on them is worked out again."""
+    """`found` as it would be without the formulas `removed` too; only what hangs on them is worked out again.
+
+    Reasons hold only what is new. Open demands that neither fixed nor contradicted anything are left alone.
+    """
     lost = _hanging_on(lines, found, removed)
     lost.update(found.fixed_together)
     again = Inference(list(found.state))
@@ -211,11 +214,12 @@ def propagate_without(
     users = {user for quantity in lost for user in lines.users[quantity]}
     broken = {formula for formula, _ in found.broken}
     again.broken = [pair for pair in found.broken if pair[0] not in users and pair[0] not in removed]
-    again.open = {
-        formula: demands
-        for formula, demands in found.open.items()
-        if formula not in users and formula not in removed
-    }
+    if found.fixed_together or any(demand == UNKNOWN for _, demand in found.broken):
+        again.open = {
+            formula: demands
+            for formula, demands in found.open.items()
+            if formula not in users and formula not in removed
+        }
     left_out = {*set_aside, *removed, *(broken - users)}
     _finish(lines, again, sorted(users), left_out)
     return again

@@ -11,7 +11,7 @@ from __future__ import annotations
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 
-from eqsheet.model.dimension_blame import Clash, Origin, describe_clash, origins_of
+from eqsheet.model.dimension_blame import Clash, Origin, describe_clash, fits, origins_of
 from eqsheet.model.dimension_culprit import LARGEST_EFFORT, choose_culprit
 from eqsheet.model.dimension_propagation import UNKNOWN, Inference, Worklines, propagate
 from eqsheet.model.dimension_rules import Exponent
@@ -113,6 +113,8 @@ def _take_back(
 ) -> Inference:
     """Take back formulas that fit after all, now that others are set aside; changes `blamed`."""
     for index in sorted(blamed):
+        if not fits(lines, found, index):
+            continue
         rest = [other for other in blamed if other != index]
         again = propagate(lines, given, {sibling for other in rest for sibling in lines.siblings(other)})
         if not again.broken:

@@ -6,7 +6,6 @@ that cannot hold is set aside, or the known that brought it about, and reported 
 
 from __future__ import annotations
 
-import math
 from collections.abc import Collection, Sequence
 from dataclasses import dataclass, field
 
@@ -197,18 +196,21 @@ def _culprit(
     reader = readers[index]
     causes = {q: found.reasons[q][0] for q in reader.formula.quantities if q in found.reasons}
     own = [literal.value for literal in reader.formula.literals if literal.kind == "reading"]
-    odd, smallest = index, min(own, default=math.inf)
-    for quantity, cause in causes.items():
-        written = readings_written(readers[cause].formula)
-        if written and max(written) < smallest and _would_fit_as_difference(reader, breach, found, quantity):
-            odd, smallest = cause, max(written)
+    likely = [(index not in minor, value, index) for value in own]
+    likely += [
+        (cause not in minor, value, cause)
+        for quantity, cause in causes.items()
+        for value in readings_written(readers[cause].formula)
+        if _would_fit_as_difference(reader, breach, found, quantity)
+    ]
+    odd = min(likely)[2] if likely else index
 
     def rank(candidate: int) -> tuple[int, ...]:
         without = _spread(readers, users, {*set_aside, candidate})
         return (
             len(without.breaches),
-            candidate not in minor,
             candidate != odd,
+            candidate not in minor,
             candidate != index,
             candidate,
         )

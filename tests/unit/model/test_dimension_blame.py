@@ -57,6 +57,12 @@ def test_an_equation_before_a_limit_that_makes_sense() -> None:
     assert blamed(*lines, minor=("s < 200[bar]",))[0][:2] == ("s = F*A", "F*A")
 
 
+def test_an_equation_that_a_slip_explains_before_a_limit() -> None:
+    """A deflection with L^3 in place of L^4 comes out as a plain number."""
+    lines = ["EI = 9[kg*m**3/s**2]", "L = 2[m]", "q = 5[kg/s**2]", "w = 5*q*L**3/EI", "w < L/300"]
+    assert blamed(*lines, minor=("w < L/300",))[0][:2] == ("w = 5*q*L**3/EI", "5*q*L**3/EI")
+
+
 def test_the_reynolds_number_that_lacks_its_length() -> None:
     """The slip shows three lines further on, where a fourth root of a metre would come out."""
     lines = [

@@ -182,6 +182,14 @@ def test_the_known_that_two_lines_speak_against() -> None:
     assert wrong.labels[0].span.text == "5[degC]"
 
 
+def test_a_limit_on_a_difference_given_as_a_reading() -> None:
+    texts = [*READINGS, "dT_min = 5[degC]", "T2 - T1 > dT_min"]
+    found, names = formulas(texts)
+    (wrong,) = check_units(found, statements(texts), names, minor=[3]).diagnostics
+    assert wrong.code == "reading-as-difference"
+    assert wrong.labels[0].span.text == "5[degC]"
+
+
 def test_a_difference_compared_with_a_reading() -> None:
     wrong = only("T = 20[degC]", "d = 5[delta_degC]", "T < d")
     assert wrong.code == "difference-as-reading"
