@@ -133,6 +133,13 @@ class _Writer:
         if bound_place is not None:
             labels.append(label_of(self.system, bound_place, "the bound"))
         side = "below" if role == "lower" else "above"
+        if bound_place is None:
+            return error(
+                "outside-bounds",
+                f"{where} gives `{names[0]}` = {self.value(quantity, value)}, below absolute zero",
+                *labels,
+                help="check the equation and the values it uses",
+            )
         return error(
             "outside-bounds",
             f"{where} gives `{names[0]}` = {self.value(quantity, value)}, {side} its bound {self.value(quantity, bound)}",

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
@@ -30,14 +30,18 @@ class Guesses:
 
 
 def work_out_guesses(
-    system: EquationSystem, known_values: Mapping[int, float]
+    system: EquationSystem, known_values: Mapping[int, float], kinds: Sequence[str] = ()
 ) -> tuple[Guesses, tuple[Diagnostic, ...]]:
     """Evaluate all guesses; those by name go before those by pattern.
+
+    Readings (of temperature, of pressure) are kept above absolute zero besides.
 
     Parameters
     ----------
     known_values : mapping of quantity number to SI value
         All a guess may use: knowns, and what follows from them line by line.
+    kinds : sequence of str
+        Of each quantity, ``reading``, ``difference`` or ``plain``.
     """
     by_role: dict[str, dict[int, float]] = {"near": {}, "lower": {}, "upper": {}}
     places: dict[tuple[int, str], Place] = {}
@@ -48,6 +52,10 @@ def work_out_guesses(
             if item.quantity not in by_role[role]:
                 by_role[role][item.quantity] = value
                 places[item.quantity, role] = item.place
+    for quantity, kind in enumerate(kinds):
+        if kind == "reading" and by_role["lower"].get(quantity, -1.0) < 0.0:
+            by_role["lower"][quantity] = 0.0
+            places.pop((quantity, "lower"), None)
     _check_ranges(system, by_role, places, known_values, diagnostics)
     return Guesses(by_role["near"], by_role["lower"], by_role["upper"], places), tuple(diagnostics)
 
@@ -112,7 +120,7 @@ def _check_ranges(
                 error(
                     "bounds-empty",
                     f"the bounds of `{system.names[quantity]}` leave no room: the lower one is not below the upper",
-                    Label(span_of(system, places[quantity, "lower"])),
+                    Label(span_of(system, places[quantity, "upper"])),
                 )
             )
             del lower[quantity], upper[quantity]

@@ -199,14 +199,20 @@ def known_bounds(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
         role, bound = ("lower", low) if value < low else ("upper", high)
         unit = shown_unit(system, prepared.dimensions, prepared.kinds, quantity)
         kind = prepared.kinds[quantity]
-        item = next(i for i in system.equations if i.known == quantity)
+        item = system.equations[prepared.setters[quantity]]
+        here = Label(label_of(system, item.place).span)
+        said = f"{quoted([system.names[quantity]])} = {written_quantity(unit, kind, value)} is"
+        place = run.guesses.places.get((quantity, role))
+        if place is None:
+            found.append(error("outside-bounds", f"{said} below absolute zero", here))
+            continue
+        side = "below" if role == "lower" else "above"
         found.append(
             error(
                 "outside-bounds",
-                f"{quoted([system.names[quantity]])} = {written_quantity(unit, kind, value)} is "
-                f"{'below' if role == 'lower' else 'above'} its bound {written_quantity(unit, kind, bound)}",
-                Label(label_of(system, item.place).span),
-                Label(label_of(system, run.guesses.places[quantity, role]).span, "the bound"),
+                f"{said} {side} its bound {written_quantity(unit, kind, bound)}",
+                here,
+                Label(label_of(system, place).span, "the bound"),
             )
         )
     return tuple(found)

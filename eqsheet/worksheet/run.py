@@ -16,7 +16,9 @@ from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
 from eqsheet.worksheet.follow_from_knowns import follow_from_knowns
 from eqsheet.worksheet.guesses import Guesses, work_out_guesses
+from eqsheet.worksheet.places import line_words, span_of
 from eqsheet.worksheet.prepare import Prepared
+from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
 from eqsheet.worksheet.structure_messages import conflict_diagnostic
 from eqsheet.worksheet.without_unknowns import EQUAL_TO
@@ -74,7 +76,7 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
     """
     solve = solve_equations if memory is None else memory.solve
     system = prepared.system
-    guesses, found = work_out_guesses(system, follow_from_knowns(prepared))
+    guesses, found = work_out_guesses(system, follow_from_knowns(prepared), prepared.kinds)
     diagnostics = list(found)
     count = len(system.names)
     values = [math.nan] * count
@@ -185,12 +187,24 @@ def left_out_hold(
         gap = abs(evidence.values[left] - evidence.values[right])
         size = max(evidence.sizes[left], evidence.sizes[right])
         if not gap <= EQUAL_TO * size + evidence.errors[left] + evidence.errors[right]:
-            statement = prepared.system.statements[formula.statement]
-            return False, (
-                f"with the others, `{statement.line.text}` reads {written(evidence.values[left])} = "
-                f"{written(evidence.values[right])} in SI units"
-            )
+            return False, _gap_words(prepared, number, evidence.values[left], evidence.values[right], values)
     return True, ""
+
+
+def _gap_words(prepared: Prepared, number: int, left: float, right: float, values: Sequence[float]) -> str:
+    """What the other statements make of an equation that does not hold with them."""
+    system = prepared.system
+    item = system.equations[number]
+    quantity = item.known
+    if quantity < 0:
+        text = span_of(system, item.place).text
+        return f"with the others, `{text}` reads {written(left)} = {written(right)} in SI units"
+    kind = prepared.kinds[quantity]
+    unit = shown_unit(system, prepared.dimensions, prepared.kinds, quantity)
+    return (
+        f"the others make `{system.names[quantity]}` {written_quantity(unit, kind, values[quantity])}, "
+        f"{line_words(system, (item.place,))} sets it to {written_quantity(unit, kind, item.value)}"
+    )
 
 
 def _withhold(

@@ -6,8 +6,8 @@ import time
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 
-from eqsheet.diagnostics.diagnostic import Diagnostic
-from eqsheet.diagnostics.source import Source
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.diagnostics.source import Source, Span
 from eqsheet.model.build import LoweredCache
 from eqsheet.solve.ladder import DEFAULT_BUDGET
 from eqsheet.solve.trail import Budget
@@ -48,6 +48,8 @@ class Worksheet:
     def prepare(self, changes: Sequence[str] = (), free: Sequence[str] = ()) -> Prepared:
         """Everything up to the order of solution, before any number is computed; parameters as in `solve`."""
         statements, freed, found = apply_changes(self.document.statements, changes, free)
+        if not statements and not self.diagnostics:
+            found = (*found, _empty(self.source))
         return prepare(statements, (*self.diagnostics, *found), self.cache, freed)
 
     def solve(
@@ -85,6 +87,15 @@ class Worksheet:
         solved_in = time.perf_counter() - begin
         timing = {"parse": self.timing, **prepared.timing, "solve": solved_in}
         return assemble(self.name, prepared, run, timing)
+
+
+def _empty(source: Source) -> Diagnostic:
+    return error(
+        "empty-worksheet",
+        f"there is no statement in {source.name}",
+        Label(Span(source, 0, 0)),
+        help="a worksheet holds equations and knowns, one a line: `v = Q/A`",
+    )
 
 
 def parse(text: str, name: str = "<text>") -> Worksheet:
