@@ -119,6 +119,23 @@ def digamma(a: float) -> float:
     return math.log(a) - 0.5 / a - series - shift
 
 
+def trigamma(a: float) -> float:
+    """Derivative of digamma; Abramowitz and Stegun 6.4.6, 6.4.12 and 6.4.7. Raises ValueError at its poles."""
+    if a <= 0.0:
+        if a == math.floor(a):
+            raise ValueError("trigamma has a pole here")
+        return (math.pi / math.sin(math.pi * (a - math.floor(a)))) ** 2 - trigamma(1.0 - a)
+    shift = 0.0
+    while a < _DIGAMMA_LARGE:
+        shift += 1.0 / (a * a)
+        a += 1.0
+    square = 1.0 / (a * a)
+    series = 0.0
+    for n, coefficient in reversed(list(enumerate(_DIGAMMA_SERIES, start=1))):
+        series = (series + 2 * n * coefficient) * square
+    return 1.0 / a + 0.5 * square + series / a + shift
+
+
 @dataclass(frozen=True, slots=True)
 class UnaryFunction:
     """A function of one argument.
@@ -158,7 +175,7 @@ UNARY: dict[str, UnaryFunction] = {
     "erf": UnaryFunction(math.erf, lambda a, v: 2.0 / math.sqrt(math.pi) * math.exp(-a * a)),
     # CPython documents its gamma as good to about ten units in the last place.
     "gamma": UnaryFunction(math.gamma, lambda a, v: v * digamma(a), 24.0),
-    "digamma": UnaryFunction(digamma, lambda a, v: math.nan, 64.0),
+    "digamma": UnaryFunction(digamma, lambda a, v: trigamma(a), 64.0),
     "asinh": UnaryFunction(math.asinh, lambda a, v: 1.0 / math.sqrt(1.0 + a * a)),
     "acosh": UnaryFunction(math.acosh, lambda a, v: 1.0 / math.sqrt((a - 1.0) * (a + 1.0))),
     "atanh": UnaryFunction(math.atanh, lambda a, v: 1.0 / ((1.0 - a) * (1.0 + a))),

@@ -196,7 +196,8 @@ def _of_base(w: Simplifier, b: _Branch, base: int, exponent: int) -> list[_Branc
 
 def _of_exponent(w: Simplifier, b: _Branch, base: int, exponent: int) -> list[_Branch]:
     logarithms = w.div(w.function("ln", b.target), w.function("ln", base))
-    return [b.to(logarithms, _positive(w, b.target))]
+    not_one = w.put("not", w.put("eq", base, w.one))
+    return [b.to(logarithms, _positive(w, b.target), not_one)]
 
 
 def _of_sqrt(w: Simplifier, b: _Branch, a: int) -> list[_Branch]:
