@@ -32,11 +32,13 @@ _STARTS = re.compile(
     r"(?:require|show|define|new[ \t]+unit|rows|curve|surface|template|shared|use|include)"
     r"(?!\w)(?![ \t]*[=*/+\-^])"
     r"|off[ \t]+[^\W\d]"
+    rf"|{_NAME}[\w.*]*\*[\w.*]*[ \t]+(?:near|within)(?!\w)"
     r"|for[ \t].*:[ \t]*(?:#|$)"
     rf"|{_NAME}(?:\[[^\]=]*\]|\.{_NAME})*[ \t]*(?:=|:|(?:near|within)(?!\w))"
     r")"
 )
 _HEADING = re.compile(r"(#{2,6})[ \t]+(.*\S)[ \t]*$")
+_EQUALS_OR_BRACKET = re.compile(r'"[^"\n]*"|[<>!]=|=|[()\[\]]')
 _TEXT_OR_COMMENT = re.compile(r'"[^"\n]*"|#')
 
 
@@ -177,7 +179,7 @@ class _Splitter:
                 number += 1
                 continue
             if wanted:
-                if _STARTS.match(line) and indentation(line) <= indent:
+                if indentation(line) <= indent and _starts_statement(line, code):
                     break
             elif number != last + 1 or not _CARRIES_ON.match(line) or _opens_group(stripped):
                 break
@@ -186,6 +188,23 @@ class _Splitter:
             last = number
             number += 1
         return last, depth
+
+
+def _starts_statement(line: str, code: str) -> bool:
+    """Whether the physical line looks like the start of a statement."""
+    if _STARTS.match(line):
+        return True
+    if "=" not in code or _CARRIES_ON.match(line):
+        return False
+    depth = 0
+    for found in _EQUALS_OR_BRACKET.finditer(code):
+        mark = found.group()
+        depth += (mark in "([") - (mark in ")]")
+        if depth < 0:
+            return False
+        if depth == 0 and mark == "=":
+            return True
+    return False
 
 
 def _opens_group(code: str) -> bool:

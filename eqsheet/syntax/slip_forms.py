@@ -77,7 +77,7 @@ def conditionals(misfit: Misfit) -> Slip | None:
         # It was taken for the unit of the number before it.
         return misfit.at_last("else-if", "there is no such word in the language", "write else if")
     if word in ("then", "else") and word.upper() not in misfit.expected:
-        if word == "then" and not misfit.has("IF"):
+        if word == "then" and not misfit.has("IF") and misfit.last in ENDS_OF_OPERANDS:
             return misfit.here("stray-then", "then stands without an if", "write if condition then a else b")
         if word == "else" and "THEN" in misfit.expected:
             return _then_missing(misfit)

@@ -59,7 +59,8 @@ def _token(terminal: str, text: str) -> str:
 def _broken_gap(gap: str, indent: str) -> str:
     """The gap between two tokens on different lines: its comments and blank lines, then the indentation."""
     first, *inner, _ = gap.split("\n")
-    lines = [f"  {first.strip()}" if first.strip() else ""]
+    apart = max(2, len(first) - len(first.lstrip(" ")))
+    lines = [" " * apart + first.strip() if first.strip() else ""]
     lines += [indent + line.strip() if line.strip() else "" for line in inner]
     return "\n".join(lines) + "\n" + indent
 
