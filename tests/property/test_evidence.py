@@ -64,7 +64,9 @@ def test_error_bound_of_each_operation_holds(operation: tuple[object, ...]) -> N
         with mpmath.workdps(50):
             # Zero and both ends of the error put in.
             for part in (-1, 0, 1):
-                exact = reference(tape, 0, [mpmath.mpf(x) + part * mpmath.mpf(e) for x, e in zip(point, errors)], [])
+                exact = reference(
+                    tape, 0, [mpmath.mpf(x) + part * mpmath.mpf(e) for x, e in zip(point, errors)], []
+                )
                 assert float(abs(exact - mpmath.mpf(value))) <= bound * (1 + 1e-5)
     assert judged > 50
 
