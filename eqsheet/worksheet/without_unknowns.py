@@ -21,6 +21,7 @@ EQUAL_TO = 1e-9
 class Checked:
     """Equations left for the structure (by number), and what was found about the others.
 
+    The order of ``rows`` says which goes first where there are too many: see `_doubtful_last`.
     ``contested`` holds the quantities that are set to several values, so that none can be relied on.
     """
 
@@ -64,7 +65,30 @@ def check_without_unknowns(
         elif number not in clashing and contested.isdisjoint(formula.quantities):
             diagnostics.append(_check(system, number, formula, known_values, setters))
     diagnostics += [_set_twice(system, items) for items in repeated.values()]
-    return Checked(tuple(rows), tuple(diagnostics), contested)
+    return Checked(_doubtful_last(system, rows), tuple(diagnostics), contested)
+
+
+def _doubtful_last(system: EquationSystem, rows: Sequence[int]) -> tuple[int, ...]:
+    """The equations with the knowns last whose quantity another equation has alone on a side.
+
+    Where statements compete, such a known is the likely one too many: ``Q = 20 L/min`` beside ``Q = v*A``.
+    """
+    explicit = {q for number in rows for q in _alone_on_a_side(system.equations[number])}
+    doubtful = [number for number in rows if system.equations[number].known in explicit]
+    return (
+        (*(n for n in rows if system.equations[n].known not in explicit), *doubtful)
+        if doubtful
+        else tuple(rows)
+    )
+
+
+def _alone_on_a_side(item: EquationItem) -> list[int]:
+    """Quantities that an equation which is no known has alone on its left or right side."""
+    if item.known >= 0:
+        return []
+    tape = item.formula.tape
+    sides = [tape.instructions[output] for output in tape.outputs]
+    return [item.formula.quantities[entry[1]] for entry in sides if entry[0] == "quantity"]
 
 
 def _one_value(items: Sequence[EquationItem]) -> bool:
