@@ -108,6 +108,9 @@ def pseudo_inverse(matrix: Matrix) -> Matrix:
     The cut stands two digits above `SINGULAR_CONDITION`, so that what is left out is never noise divided by
     noise.
     """
+    if not np.isfinite(matrix).all():
+        # Overflow in the scaling: no direction to be had here.
+        return np.zeros_like(matrix).T
     return np.linalg.pinv(matrix, rcond=1e-12)
 
 
@@ -117,6 +120,8 @@ def smallest_singular_vectors(matrix: Matrix) -> tuple[float, Vector, Vector]:
         from eqsheet.solve.sparse_factor import smallest_by_inverse_iteration
 
         return smallest_by_inverse_iteration(matrix)
+    if not np.isfinite(matrix).all():
+        return 0.0, np.zeros(matrix.shape[0]), np.zeros(matrix.shape[0])
     left, values, right = np.linalg.svd(matrix)
     largest = values[0]
     return (float(values[-1] / largest) if largest > 0.0 else 0.0), left[:, -1], right[-1]

@@ -68,6 +68,9 @@ def _attempt(
         return rung(problem, start, trail)
     except KeyboardInterrupt:
         return trail.close(Status.INTERRUPTED)
+    except np.linalg.LinAlgError:
+        # A singular value iteration of the library that did not converge: no more can be had from this rung.
+        return trail.close(Status.STALLED)
 
 
 def _concluded(attempts: list[Outcome], measure: Callable[[], Callable[[Outcome], float]]) -> Outcome:

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+import itertools
+from collections.abc import Sequence
 from dataclasses import replace
 from time import perf_counter
 
@@ -18,7 +19,7 @@ from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome
 from eqsheet.solve.problem import Problem, ScalarProblem, Vector, as_scalar
 from eqsheet.solve.scalar_newton import scalar_newton
-from eqsheet.solve.spread_starts import spread_starts
+from eqsheet.solve.spread_starts import scaled_starts, spread_starts
 from eqsheet.solve.trail import Budget, Trail
 
 # Spread starts tried besides the start itself.
@@ -47,14 +48,19 @@ def other_roots(
         return scalar_roots(as_scalar(problem), [float(x[0]) for x in known], most, budget)
     found: list[Outcome] = []
     deadline = perf_counter() + budget.seconds
+    # Roots often lie near each other, so the neighbourhood of each comes before the spread starts.
+    near = [problem.start, *known]
+    spread = itertools.chain(scaled_starts(problem), spread_starts(problem, STARTS))
     with np.errstate(all="ignore"):
-        for start in _starts(problem, known):
-            if len(found) >= most or perf_counter() > deadline:
+        while len(found) < most and perf_counter() < deadline:
+            start = moved_start(replace(problem, start=near.pop(0))) if near else next(spread, None)
+            if start is None:
                 break
             roots = [*known, *(outcome.x for outcome in found)]
             outcome = _another(problem, roots, start, budget, deadline)
             if outcome is not None:
                 found.append(outcome)
+                near.append(outcome.x)
     return tuple(found)
 
 
@@ -73,14 +79,6 @@ def scalar_roots(
         if outcome.solved and all(_differ(outcome.x, np.array([root]), problem.magnitude) for root in roots):
             found.append(outcome)
     return tuple(found)
-
-
-def _starts(problem: Problem, known: Sequence[Vector]) -> Iterator[Vector]:
-    """The start, the neighbourhood of the known roots, and starts spread over the bounds."""
-    yield moved_start(problem)
-    for root in known:
-        yield moved_start(replace(problem, start=root))
-    yield from spread_starts(problem, STARTS)
 
 
 def _another(

@@ -1,55 +1,54 @@
-"""Newton's method from starts spread over the bounds, the most promising of them followed by descent."""
+"""Newton's method and dogleg descent from starts spread over the bounds."""
 
 from __future__ import annotations
 
+from collections.abc import Callable, Iterator
+from typing import TypeAlias
+
 import numpy as np
 
+from eqsheet.solve.dogleg import dogleg
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.levenberg_marquardt import levenberg_marquardt
 from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, Vector
-from eqsheet.solve.spread_starts import spread_starts
+from eqsheet.solve.spread_starts import scaled_starts, spread_starts
 from eqsheet.solve.trail import Budget, Trail
 
-# Starts tried, and how many of the best of them by descent; enough for the published problems, and a
-# fraction of a second.
-STARTS = 128
-DESCENTS = 16
-# Steps for one start: where Newton's method works from a start, it does so within these.
+Rung: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
+
+# Starts tried; enough for the published problems, and a fraction of a second.
+STARTS = 64
+# Steps from one start: where a start is any good, these suffice.
 SHORT = 60
 
 
 def spread(problem: Problem, start: Vector, trail: Trail) -> Outcome:
-    """The first root found from the spread starts, else the best point of all."""
+    """The first root found from the spread starts, else what the best point of all descends to."""
     interior = Interior(problem)
     best: Outcome | None = None
-    promising: list[tuple[float, int, Vector]] = []
-    for number, point in enumerate(spread_starts(problem, STARTS)):
-        if trail.spent:
-            break
-        outcome = newton(problem, interior.enter(point), _short(trail, point))
-        trail.note(outcome.x, outcome.residual, 1.0, -1)
-        if outcome.solved:
-            return trail.close(outcome.status, outcome.x, outcome.residual, outcome.on_bound)
-        if outcome.status is not Status.DOMAIN:
-            promising.append((outcome.residual, number, outcome.x))
-    promising.sort(key=lambda entry: entry[:2])
-    for _, _, point in promising[:DESCENTS]:
-        if trail.spent:
-            break
-        outcome = levenberg_marquardt(problem, point, _short(trail, point))
-        trail.note(outcome.x, outcome.residual, 1.0, -1)
-        if outcome.solved:
-            return trail.close(outcome.status, outcome.x, outcome.residual, outcome.on_bound)
-        if best is None or outcome.residual < best.residual:
-            best = outcome
+    for point, methods in _attempts(problem):
+        for method in methods:
+            if trail.spent:
+                break
+            inner = Trail(trail.method, point, Budget(SHORT, trail.budget.seconds), trail.deadline)
+            outcome = method(problem, interior.enter(point), inner)
+            if outcome.solved:
+                return outcome
+            if outcome.status is Status.DOMAIN:
+                break
+            if best is None or outcome.residual < best.residual:
+                best = outcome
     if best is None:
-        return trail.close(Status.DOMAIN if trail.best_residual == np.inf else Status.STALLED)
+        return trail.close(Status.DOMAIN, residual=np.inf)
     # Followed to its end, to say what the best point is.
-    return levenberg_marquardt(problem, best.x, Trail(trail.method, best.x, trail.budget, trail.deadline))
+    return levenberg_marquardt(problem, best.x, trail.renew())
 
 
-def _short(trail: Trail, start: Vector) -> Trail:
-    """A trail of its own for one start, within the same deadline."""
-    return Trail(trail.method, start, Budget(SHORT, trail.budget.seconds), trail.deadline)
+def _attempts(problem: Problem) -> Iterator[tuple[Vector, tuple[Rung, ...]]]:
+    """Starts, the most likely ones first, with the methods to try from each."""
+    for point in scaled_starts(problem):
+        yield point, (newton, dogleg, levenberg_marquardt)
+    for number, point in enumerate(spread_starts(problem, STARTS)):
+        yield point, (newton, dogleg if number % 4 < 2 else levenberg_marquardt)

@@ -14,8 +14,11 @@ from eqsheet.solve.explain import explain
 from eqsheet.solve.ladder import solve_block
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem
+from eqsheet.solve.trail import Budget
 
 FACTORS = (1, 10, 100)
+# The formulas are written for any kind of number and slow; a verdict must not hang on the load of the machine.
+PATIENT = Budget(seconds=120.0)
 # A root in 50 digits must lie this near to the solution, relative to max(|x|, 1); a double root is known to
 # half the digits.
 SINGLE, MULTIPLE = 1e-9, 1e-4
@@ -73,7 +76,7 @@ def run(published: Published, factor: int) -> Run:
     # The paper gives no typical sizes: one, or that of the start.
     problem = plain_problem(published.formulas, start, magnitude=np.maximum(np.abs(start), 1.0))
     begin = time.perf_counter()
-    outcome = solve_block(problem)
+    outcome = solve_block(problem, PATIENT)
     seconds = time.perf_counter() - begin
     residual, distance = np.inf, np.inf
     if outcome.solved:
