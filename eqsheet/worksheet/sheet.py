@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import time
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.diagnostics.source import Source, Span
@@ -14,6 +14,7 @@ from eqsheet.solve.trail import Budget
 from eqsheet.syntax.nodes import Document
 from eqsheet.syntax.parse import parse_document
 from eqsheet.worksheet.assemble import assemble
+from eqsheet.worksheet.attached_files import attach_files
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.changes import apply_changes
 from eqsheet.worksheet.prepare import Prepared, prepare
@@ -126,5 +127,9 @@ def read(source: Source, cache: LoweredCache | None = None, memory: BlockMemory 
     """
     begin = time.perf_counter()
     document, diagnostics = parse_document(source)
+    statements, found = attach_files(document.statements, source.name)
+    if found or statements != document.statements:
+        document = replace(document, statements=statements)
+        diagnostics = (*diagnostics, *found)
     taken = time.perf_counter() - begin
     return Worksheet(source, document, diagnostics, taken, cache or LoweredCache(), memory)

@@ -1,0 +1,170 @@
+"""Files that a worksheet names: other worksheets it includes, and tables in CSV.
+
+Paths are relative and stay inside the worksheet's folder, so that a worksheet is data to be trusted no further
+than its own folder.
+"""
+
+from __future__ import annotations
+
+import os
+from collections.abc import Sequence
+from dataclasses import dataclass, field, replace
+
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.syntax.csv_table import table_rows
+from eqsheet.syntax.nodes import Curve, Include, Rows, Statement
+from eqsheet.syntax.nodes import Text as TextNode
+from eqsheet.syntax.parse import parse_document
+from eqsheet.syntax.read import read_source
+
+# A worksheet that includes more files than this has gone wrong.
+MOST_FILES = 1000
+
+
+@dataclass
+class _Attaching:
+    folder: str
+    diagnostics: list[Diagnostic] = field(default_factory=list)
+    done: set[str] = field(default_factory=set)
+    chain: tuple[str, ...] = ()
+
+
+def attach_files(
+    statements: Sequence[Statement], name: str
+) -> tuple[tuple[Statement, ...], tuple[Diagnostic, ...]]:
+    """The statements with included ones in their places, and tables filled from their files.
+
+    Parameters
+    ----------
+    statements : sequence of Statement
+    name : str
+        Name of the worksheet's file, whose folder all paths are relative to.
+    """
+    if not any(_names_file(s) for s in statements):
+        return tuple(statements), ()
+    work = _Attaching(os.path.dirname(os.path.abspath(name)))
+    work.chain = (os.path.realpath(name),)
+    work.done.add(work.chain[0])
+    return tuple(_attached(statements, work)), tuple(work.diagnostics)
+
+
+def _names_file(statement: Statement) -> bool:
+    node = statement.node
+    return isinstance(node, Include) or (isinstance(node, Rows | Curve) and node.path is not None)
+
+
+def _attached(statements: Sequence[Statement], work: _Attaching) -> list[Statement]:
+    result: list[Statement] = []
+    for statement in statements:
+        node = statement.node
+        if statement.off:
+            result.append(statement)
+        elif isinstance(node, Include):
+            result.extend(_included(statement, node, work))
+        elif isinstance(node, Rows | Curve) and node.path is not None:
+            filled = _filled(statement, node, node.path, work)
+            if filled is not None:
+                result.append(filled)
+        else:
+            result.append(statement)
+    return result
+
+
+def _included(statement: Statement, node: Include, work: _Attaching) -> list[Statement]:
+    path = _inside(statement, node.path, work)
+    if path is None:
+        return []
+    if path in work.chain:
+        names = " includes ".join(os.path.basename(p) for p in (*work.chain[work.chain.index(path) :], path))
+        work.diagnostics.append(
+            error(
+                "include-cycle",
+                f"files include each other in a circle: {names}",
+                Label(statement.whole),
+                help="put what both need into a file of its own",
+            )
+        )
+        return []
+    if path in work.done:
+        return []
+    work.done.add(path)
+    if len(work.done) > MOST_FILES:
+        work.diagnostics.append(
+            error("worksheet-too-large", f"more than {MOST_FILES} files are included", Label(statement.whole))
+        )
+        return []
+    source = read_source(path)
+    if isinstance(source, Diagnostic):
+        work.diagnostics.append(_unreadable(statement, node.path, source))
+        return []
+    source = replace(source, name=_shown_name(statement, node.path))
+    document, found = parse_document(source)
+    work.diagnostics.extend(found)
+    outer = work.chain
+    work.chain = (*outer, path)
+    result = _attached(document.statements, work)
+    work.chain = outer
+    return result
+
+
+def _filled(
+    statement: Statement, node: Rows | Curve, written: TextNode, work: _Attaching
+) -> Statement | None:
+    path = _inside(statement, written, work)
+    if path is None:
+        return None
+    source = read_source(path)
+    if isinstance(source, Diagnostic):
+        work.diagnostics.append(_unreadable(statement, written, source))
+        return None
+    source = replace(source, name=_shown_name(statement, written))
+    columns, rows, found = table_rows(source, statement)
+    work.diagnostics.extend(found)
+    if columns is None:
+        return None
+    if isinstance(node, Rows):
+        return replace(statement, node=replace(node, columns=columns[1:]), body=rows)
+    return replace(statement, body=rows)
+
+
+def _shown_name(statement: Statement, written: TextNode) -> str:
+    """The file's name as messages give it: beside the worksheet's own."""
+    return os.path.join(os.path.dirname(statement.source.name), written.value)
+
+
+def _inside(statement: Statement, written: TextNode, work: _Attaching) -> str | None:
+    """The real path of a file named in a worksheet; None (after a diagnostic) where it leads outside."""
+    here = Label(statement.span(written.start, written.end))
+    name = written.value
+    if not name or "\0" in name or os.path.isabs(name) or name.startswith("~") or "\\" in name:
+        work.diagnostics.append(
+            error(
+                "path-not-inside",
+                "the path of a file is relative, with / between folders",
+                here,
+                help="keep the file in the worksheet's folder or one below it",
+            )
+        )
+        return None
+    path = os.path.realpath(os.path.join(work.folder, name))
+    if os.path.commonpath((path, os.path.realpath(work.folder))) != os.path.realpath(work.folder):
+        work.diagnostics.append(
+            error(
+                "path-not-inside",
+                f"`{name}` leads out of the worksheet's folder",
+                here,
+                help="keep the file in the worksheet's folder or one below it",
+            )
+        )
+        return None
+    return path
+
+
+def _unreadable(statement: Statement, written: TextNode, why: Diagnostic) -> Diagnostic:
+    reason = why.message.rpartition(": ")[2]
+    return error(
+        "unreadable-attachment",
+        f"`{written.value}` cannot be read: {reason}",
+        Label(statement.span(written.start, written.end)),
+        help=why.help,
+    )
