@@ -35,7 +35,7 @@ def settle(formula: Formula, known: Callable[[int], float | None]) -> Formula:
             if results is None:
                 numbers = [float("nan") if v is None else v for v in values]
                 results = evaluate(tape, numbers, literal_values(formula))
-            branches[condition.instruction] = bool(results[condition.condition])
+            branches[condition.instruction] = results[condition.condition] is True
     return specialise_formula(formula, branches) if branches else formula
 
 
@@ -105,7 +105,7 @@ def _reached(tape: Tape, results: Sequence[Any]) -> Mapping[int, bool]:
         entry: tuple[Any, ...] = tape.instructions[i]
         if entry[0] == "if":
             _, condition, a, b = entry
-            reached[i] = bool(results[condition])
+            reached[i] = results[condition] is True
             stack += [condition, a if reached[i] else b]
         else:
             stack.extend(operands_of(entry))

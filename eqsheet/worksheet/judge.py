@@ -168,7 +168,7 @@ def _finite(formula: Formula, run: Run) -> bool:
 
 def _truth(formula: Formula, run: Run) -> bool:
     values = evaluate(formula.tape, [run.values[q] for q in formula.quantities], literal_values(formula))
-    return bool(values[formula.tape.outputs[0]])
+    return values[formula.tape.outputs[0]] is True
 
 
 def _left(prepared: Prepared, run: Run, validity: Validity) -> Diagnostic:

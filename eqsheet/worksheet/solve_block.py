@@ -139,7 +139,7 @@ def _closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses)
                 continue
             if candidate.condition is not None:
                 truth = evaluate(candidate.condition, inputs, literals)[candidate.condition.outputs[0]]
-                if not truth:
+                if truth is not True:
                     continue
             candidates.append((value, candidate.tape))
     else:
