@@ -13,7 +13,7 @@ from fnmatch import fnmatchcase
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
 from eqsheet.model.bind import Binder, Bound, Unbound, entry_text, member_formulas, resolved_key
 from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
-from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown
+from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, whole_number
 from eqsheet.model.lower import Context, IndexScope, NameTable, NeedsMembers, OfInstance, names_in
 from eqsheet.model.lower_definitions import check_definition, collect_definitions
 from eqsheet.model.lower_statements import (
@@ -154,7 +154,7 @@ def _all(statements: Iterable[syntax.Statement]) -> Iterable[syntax.Statement]:
 def _whole_knowns(statements: Sequence[syntax.Statement]) -> Mapping[str, int]:
     """Knowns that are plain whole numbers, of those that subscripts and ranges mention."""
     mentioned = names_in(
-        [s.node.clauses, s.node.filter] if isinstance(s.node, syntax.Family) else s.node
+        (s.node.clauses, s.node.filter) if isinstance(s.node, syntax.Family) else s.node
         for s in _all(statements)
         if isinstance(s.node, syntax.Family | syntax.Use) or "[" in s.line.text or " for " in s.line.text
     )
@@ -171,9 +171,9 @@ def _whole_knowns(statements: Sequence[syntax.Statement]) -> Mapping[str, int]:
                 and isinstance(value, syntax.Number)
                 and target.dotted in mentioned
                 and value.unit is None
-                and float(value.text).is_integer()
+                and (number := whole_number(value)) is not None
             ):
-                whole[target.dotted] = int(float(value.text))
+                whole[target.dotted] = number
     return whole
 
 

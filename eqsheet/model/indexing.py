@@ -189,7 +189,13 @@ def subscript(node: syntax.Expression, domain: Domain, indexing: Indexing) -> In
         case syntax.Binary() if node.operator in "+-*":
             left = _numbers(node.left, domain, indexing)
             right = _numbers(node.right, domain, indexing)
-            return Indices(left + right if node.operator == "+" else left - right if node.operator == "-" else left * right)
+            return Indices(
+                left + right
+                if node.operator == "+"
+                else left - right
+                if node.operator == "-"
+                else left * right
+            )
     raise IndexSlip(
         "subscript-form",
         "in brackets stand indices, members, whole-number knowns, and sums of them",
@@ -276,11 +282,19 @@ def _whole(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Codes
         raise
 
 
-def _whole_literal(node: syntax.Number) -> int:
+def whole_number(node: syntax.Number) -> int | None:
+    """The value of a literal that is a plain whole number; None for any other, or one beyond exact floats."""
     value = float(node.text)
     if node.unit is not None or not value.is_integer() or abs(value) > 2**53:
-        raise IndexSlip("subscript-form", f"`{node.text}` is not a whole number", node)
+        return None
     return -int(value) if node.negated else int(value)
+
+
+def _whole_literal(node: syntax.Number) -> int:
+    value = whole_number(node)
+    if value is None:
+        raise IndexSlip("subscript-form", f"`{node.text}` is not a whole number", node)
+    return value
 
 
 def _holds(node: syntax.Expression, domain: Domain, indexing: Indexing) -> NDArray[np.bool_]:

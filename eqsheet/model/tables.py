@@ -95,7 +95,9 @@ def collect_tables(
                 if found is not None:
                     member_columns[column.name] = found
             else:
-                columns.append(_number_column(statement, node, column, position, rows, unit_table, diagnostics))
+                columns.append(
+                    _number_column(statement, node, column, position, rows, unit_table, diagnostics)
+                )
     return Tables(sets, member_columns, tuple(columns))
 
 
