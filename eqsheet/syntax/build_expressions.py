@@ -80,19 +80,19 @@ def power(v: Parts) -> Binary:
     if type(exponent) is Number and exponent.unit is not None and exponent.unit.end == exponent.end:
         raise Slip(
             "unit-in-exponent",
-            f"{exponent.unit.text} stands in the exponent here",
+            f"`{exponent.unit.text}` stands in the exponent here",
             exponent.unit.start,
             exponent.unit.end,
-            f"write 1e3 {exponent.unit.text} for a thousand; put brackets round an exponent with a unit",
+            f"write `1e3 {exponent.unit.text}` for a thousand; put brackets round an exponent with a unit",
         )
     if type(base) is Number and base.unit is not None and base.unit.end == base.end:
         raise Slip(
             "power-after-unit",
-            f"it is not clear whether the power belongs to {base.unit.text} or to the whole number",
+            f"it is not clear whether the power belongs to `{base.unit.text}` or to the whole number",
             operator.start,
             operator.end,
-            "put brackets round the number to raise it, (5 m)^2; a power of the unit is a whole number or a "
-            "bracketed fraction without a space, 5 m^2 or 5 m^(1/2)",
+            "put brackets round the number to raise it, `(5 m)^2`; a power of the unit is a whole number or a "
+            "bracketed fraction without a space, `5 m^2` or `5 m^(1/2)`",
         )
     return binary(v)
 
@@ -157,10 +157,10 @@ def _aggregate(v: Parts, condition: Expression | None) -> Aggregate:
     if name.text not in AGGREGATES:
         raise Slip(
             "not-an-aggregate",
-            f"{name.text} cannot be taken over a set",
+            f"`{name.text}` cannot be taken over a set",
             name.start,
             name.end,
-            "over a set there are sum, prod, min and max",
+            "over a set there are `sum`, `prod`, `min` and `max`",
         )
     return Aggregate(name.start, v[-1].end, name.text, as_number(v[2]), tuple(v[4]), condition)
 
@@ -184,7 +184,7 @@ def clause_over(v: Parts) -> IndexClause:
             "an index runs over a range or over a set of rows",
             over.start,
             over.end,
-            "write for i in 1..N or for s in species",
+            "write `for i in 1..N` or `for s in species`",
         )
     return IndexClause(v[0].start, over.end, plain_name(v[0].text), over)
 
@@ -198,7 +198,7 @@ def clause_range(v: Parts) -> IndexClause:
                 "a range runs over whole numbers",
                 bound.start,
                 bound.end,
-                "write whole numbers without units, as in 1..10",
+                "write whole numbers without units, as in `1..10`",
             )
     limits = Range(v[2].start, v[4].end, as_number(v[2]), as_number(v[4]))
     return IndexClause(v[0].start, v[4].end, plain_name(v[0].text), limits)
@@ -238,10 +238,10 @@ def comparison_more(v: Parts) -> Comparison:
     if type(chain) is not Comparison or operator.text == "!=":
         raise Slip(
             "unequal-in-chain",
-            "!= cannot stand in a chain of comparisons",
+            "`!=` cannot stand in a chain of comparisons",
             operator.start,
             operator.end,
-            "join two comparisons with and",
+            "join two comparisons with `and`",
         )
     operators = (*chain.operators, operator.text)
     return Comparison(chain.start, right.end, operators, (*chain.operands, _member_oras_number(right)))

@@ -116,7 +116,7 @@ def equation_tolerance(v: Parts) -> Equation:
             "a tolerance needs a name on the left and one number on the right",
             given.start,
             given.end,
-            "write it as D = 52.5 mm ± 0.1 mm, with the number worked out",
+            "write it as `D = 52.5 mm ± 0.1 mm`, with the number worked out",
         )
     return Equation(left.start, given.end, left, right, given)
 
@@ -138,10 +138,10 @@ def tolerance_coverage(v: Parts) -> Tolerance:
     if name.text != "k":
         raise Slip(
             "coverage-factor",
-            f"{name.text} is not known after a tolerance",
+            f"`{name.text}` is not known after a tolerance",
             name.start,
             name.end,
-            "an expanded uncertainty is written with its coverage factor: (k=2)",
+            "an expanded uncertainty is written with its coverage factor: `(k=2)`",
         )
     return Tolerance(v[0].start, v[6].end, v[1], v[5])
 
@@ -214,10 +214,10 @@ def limit(v: Parts) -> Limit:
     if _has_equality(condition):
         raise Slip(
             "limit-equality",
-            "a limit with = needs to say how close is close enough",
+            "a limit with `=` needs to say how close is close enough",
             condition.start,
             condition.end,
-            "add within and a margin (require a = b within 1 %), or use <= or >=",
+            "add `within` and a margin (`require a = b within 1 %`), or use `<=` or `>=`",
         )
     return Limit(v[0].start, condition.end, condition)
 
@@ -228,10 +228,10 @@ def limit_within(v: Parts) -> Limit:
     if type(condition) is not Comparison or condition.operators != ("=",):
         raise Slip(
             "limit-within",
-            "within in a limit belongs to one = of two sides",
+            "`within` in a limit belongs to one `=` of two sides",
             v[2].start,
             within.end,
-            "write require a = b within 1 %, or leave within out",
+            "write `require a = b within 1 %`, or leave `within` out",
         )
     relative = type(within) is Number and within.unit is not None and within.unit.text == "%"
     return Limit(v[0].start, within.end, condition, within, relative)
@@ -360,10 +360,10 @@ def _curve(head: _Head, by: Token | None, path: Token | None, end: int) -> Curve
     if by is not None and by.text not in _INTERPOLATIONS:
         raise Slip(
             "interpolation",
-            f"a curve cannot be read by {by.text}",
+            f"a curve cannot be read `by {by.text}`",
             by.start,
             by.end,
-            "write by line (straight between points), by step (next value up), or nothing for a smooth curve",
+            "write `by line` (straight between points), `by step` (next value up), or nothing (smooth)",
         )
     wanted = 1 if head.keyword == "curve" else 2
     if len(head.parameters) != wanted:

@@ -74,7 +74,9 @@ def _columns(
 ) -> tuple[Column, ...] | None:
     columns = []
     for cell in _cells(source, line, offset, delimiter, diagnostics) or ():
-        statement, found = parse_statement(Source(source.name, f"rows x: {cell.text}\n    a 1", numbered=False))
+        statement, found = parse_statement(
+            Source(source.name, f"rows x: {cell.text}\n    a 1", numbered=False)
+        )
         node = None if statement is None else statement.node
         if found or not isinstance(node, Rows) or len(node.columns) != 1:
             diagnostics.append(

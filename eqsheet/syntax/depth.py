@@ -49,5 +49,5 @@ def refuse_deep_expression(text: str, statement: StatementNode) -> None:
                 f"the expression has more than {DEEPEST_EXPRESSION} operations one inside the other",
                 0,
                 min(len(text), 40),
-                _CURE + "; a long sum over alike terms is written sum(... for i in 1..N)",
+                _CURE + "; a long sum over alike terms is written `sum(... for i in 1..N)`",
             )

@@ -11,34 +11,34 @@ _COMPARISONS = frozenset(("LESS", "LESS_EQUAL", "GREATER", "GREATER_EQUAL"))
 _WORDS = {
     "NUMBER": "a number",
     "NAME": "a name",
-    "TEXT": 'a name in quotes, "..."',
+    "TEXT": 'a name in quotes, `"..."`',
     "UNIT": "a unit",
     "LABEL": "a label",
-    "PLUS_MINUS": "a tolerance (±)",
-    "EQUALS": "=",
-    "DOTS": "..",
-    "DOT": ".",
+    "PLUS_MINUS": "a tolerance (`±`)",
+    "EQUALS": "`=`",
+    "DOTS": "`..`",
+    "DOT": "`.`",
     "COMMA": "a comma",
     "COLON": "a colon",
-    "LPAR": "(",
-    "RPAR": ")",
-    "LSQB": "[",
-    "RSQB": "]",
-    "THEN": "then",
-    "ELSE": "else",
-    "AND": "and",
-    "OR": "or",
-    "NOT": "not",
-    "IF": "if",
-    "IN": "in",
-    "FOR": "for",
-    "NEAR": "near",
-    "WITHIN": "within",
-    "VALID": "valid",
-    "FROM": "from",
-    "OF": "of",
-    "BY": "by",
-    "AS": "as",
+    "LPAR": "`(`",
+    "RPAR": "`)`",
+    "LSQB": "`[`",
+    "RSQB": "`]`",
+    "THEN": "`then`",
+    "ELSE": "`else`",
+    "AND": "`and`",
+    "OR": "`or`",
+    "NOT": "`not`",
+    "IF": "`if`",
+    "IN": "`in`",
+    "FOR": "`for`",
+    "NEAR": "`near`",
+    "WITHIN": "`within`",
+    "VALID": "`valid`",
+    "FROM": "`from`",
+    "OF": "`of`",
+    "BY": "`by`",
+    "AS": "`as`",
     "$END": "the end of the statement",
 }
 
@@ -49,7 +49,7 @@ def in_words(expected: Collection[str]) -> str:
     >>> in_words({"NUMBER", "NAME", "LPAR", "MINUS", "NOT", "IF", "SIGNED_NUMBER", "PLUS"})
     'a number, a name or an expression'
     >>> in_words({"$END", "COMMA", "IN"})
-    'a comma, in or the end of the statement'
+    'a comma, `in` or the end of the statement'
     """
     if "REQUIRE" in expected:
         return "a statement"

@@ -113,18 +113,24 @@ def _move_tables(lines: Lines, indents: list[int]) -> None:
 
 def _prose(block: list[str], indents: list[int], lines: Lines, following: int) -> list[str]:
     """Comments and blank lines before the logical line `following`, indented like the line they go with."""
-    neighbours = [number for number in (following, following - 1) if 0 <= number < len(indents)]
     result = []
     for line in block:
         stripped = line.strip()
         if not stripped:
             result.append("")
             continue
-        written = indentation(line)
-        alike = [indents[n] for n in neighbours if lines.logical[n].indent == written]
-        indent = alike[0] if alike else min((indents[n] for n in neighbours), default=0)
-        result.append(" " * (indent if written or alike else 0) + stripped)
+        result.append(" " * _prose_indent(indentation(line), indents, lines, following) + stripped)
     return result
+
+
+def _prose_indent(written: int, indents: list[int], lines: Lines, following: int) -> int:
+    """Indentation for a comment that stands at `written`: that of the line it goes with, after it or before."""
+    if following < len(indents) and lines.logical[following].indent == written:
+        return indents[following]
+    for number in range(following - 1, -1, -1):
+        if number not in lines.table_rows and lines.logical[number].indent <= written:
+            return indents[number] if lines.logical[number].indent == written else 0
+    return 0
 
 
 def _few_blank_lines(lines: list[str]) -> str:

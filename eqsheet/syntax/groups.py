@@ -188,8 +188,8 @@ class _Grouping:
                 "stray-indentation",
                 "this line is indented, but the line above it opens no group",
                 Label(self._place(line, 0, min(len(line.text), 40))),
-                help="start it where the lines above start; only for, rows, curve, surface, template and use "
-                "have indented lines below; to go on with a statement, end its line with an operator",
+                help="start it where the lines above start; only `for`, `rows`, `curve`, `surface`, `template` and "
+                "`use` have indented lines below; to go on with a statement, end its line with an operator",
             )
         )
 

@@ -123,12 +123,12 @@ def _power(written: str, start: int, end: int) -> Fraction:
     if "." in digits:
         raise Slip(
             "unit-power",
-            f"a unit cannot have the power {digits}",
+            f"a unit cannot have the power `{digits}`",
             start,
             end,
-            f"write it as a bracketed fraction, ^({Fraction(digits)})"
+            f"write it as a bracketed fraction, `^({Fraction(digits)})`"
             if len(digits) < 8
-            else "write it as a bracketed fraction, ^(1/2)",
+            else "write it as a bracketed fraction, `^(1/2)`",
         )
     above, _, below = digits.partition("/")
     if len(digits) > 12 or (below and int(below) == 0) or abs(int(above)) > LARGEST_UNIT_POWER:

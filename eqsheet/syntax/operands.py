@@ -21,7 +21,7 @@ def as_number(node: Expression) -> Expression:
                 "a condition stands where a number is wanted",
                 node.start,
                 node.end,
-                "choose a number by a condition: if condition then a else b",
+                "choose a number by a condition: `if condition then a else b`",
             )
         if type(node) is Text:
             raise Slip(
@@ -29,7 +29,7 @@ def as_number(node: Expression) -> Expression:
                 "a quoted name stands where a number is wanted",
                 node.start,
                 node.end,
-                'quoted names are members of a set: use them as subscripts, x["NH4+"]',
+                'quoted names are members of a set: use them as subscripts, `x["NH4+"]`',
             )
     return node
 
@@ -45,6 +45,6 @@ def as_condition(node: Expression) -> Expression:
             "a number stands where a condition is wanted",
             node.start,
             node.end,
-            "compare it with something, as in x > 0",
+            "compare it with something, as in `x > 0`",
         )
     return node

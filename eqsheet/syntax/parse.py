@@ -85,10 +85,10 @@ def _parsed(cut: Lines, number: int, line: LogicalLine) -> Parsed:
         refuse_deep_brackets(text)
         raise Slip(
             "bracket-not-closed",
-            f"the bracket {text[offset]} is never closed",
+            f"the bracket `{text[offset]}` is never closed",
             offset,
             offset + 1,
-            "write " + (")" if text[offset] == "(" else "]") + " where it ends",
+            "write " + ("`)`" if text[offset] == "(" else "`]`") + " where it ends",
         )
     if len(text) > _REMEMBERED_LENGTH:
         return parsed_text(text)

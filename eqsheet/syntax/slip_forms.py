@@ -12,16 +12,17 @@ _STATEMENT_WORDS = (
     *("require", "show", "define", "off", "new", "for", "rows", "curve", "surface"),
     *("template", "shared", "use", "include"),
 )
+_IF_FORM = "write `if condition then a else b`"
 _ELSE_IFS = ("elif", "elseif", "elsif")
 _HEADS = ("FOR", "ROWS", "CURVE", "TEMPLATE")
 _MISPLACED = {
-    "valid": "it ends an equation or a definition: Nu = 0.023*Re^0.8 valid Re > 1e4",
-    "within": "it follows the name it bounds: x within 0 m .. 3 m",
-    "then": "it belongs to an if: x = if a < b then 3 else 4",
-    "else": "it belongs to an if: x = if a < b then 3 else 4",
+    "valid": "it ends an equation or a definition: `Nu = 0.023*Re^0.8 valid Re > 1e4`",
+    "within": "it follows the name it bounds: `x within 0 m .. 3 m`",
+    "then": "it belongs to an `if`: `x = if a < b then 3 else 4`",
+    "else": "it belongs to an `if`: `x = if a < b then 3 else 4`",
     "and": "it joins two conditions",
     "or": "it joins two conditions",
-    "in": "it follows a name: show V in L/min",
+    "in": "it follows a name: `show V in L/min`",
     "not": "it stands before a condition",
 }
 _FUNCTIONS = frozenset(
@@ -35,24 +36,24 @@ _ENDS = frozenset("*/^=<>)],:")
 
 # Words people put before a statement, and what to write instead.
 _NEEDLESS = {
-    "let": "leave the word out: x = 5 m",
-    "set": "leave the word out: x = 5 m",
+    "let": "leave the word out: `x = 5 m`",
+    "set": "leave the word out: `x = 5 m`",
     "var": "leave the word out; a quantity is unknown until something fixes it",
-    "const": "leave the word out: x = 5 m",
-    "given": "leave the word out: x = 5 m",
-    "known": "leave the word out: x = 5 m",
+    "const": "leave the word out: `x = 5 m`",
+    "given": "leave the word out: `x = 5 m`",
+    "known": "leave the word out: `x = 5 m`",
     "unknown": "leave the line out; a quantity is unknown until something fixes it",
-    "find": "leave the line out, or write show x in m",
+    "find": "leave the line out, or write `show x in m`",
     "solve": "leave the line out; all unknowns are solved for",
-    "print": "write show x in m",
-    "guess": "write x near 5 m",
-    "limit": "write require x <= 5 m",
-    "assert": "write require x <= 5 m",
-    "def": "write define f(x) = ...",
-    "function": "write define f(x) = ...",
-    "import": 'write include "file.eqsheet"',
-    "unit": "write new unit EUR",
-    "comment": "a comment starts with #",
+    "print": "write `show x in m`",
+    "guess": "write `x near 5 m`",
+    "limit": "write `require x <= 5 m`",
+    "assert": "write `require x <= 5 m`",
+    "def": "write `define f(x) = ...`",
+    "function": "write `define f(x) = ...`",
+    "import": 'write `include "file.eqsheet"`',
+    "unit": "write `new unit EUR`",
+    "comment": "a comment starts with `#`",
 }
 
 
@@ -64,25 +65,23 @@ def conditionals(misfit: Misfit) -> Slip | None:
     ):
         return misfit.here(
             "if-statement",
-            "if chooses between expressions, not between statements",
-            "write x = if a < b then 3 else 4",
+            "`if` chooses between expressions, not between statements",
+            "write `x = if a < b then 3 else 4`",
         )
     if word == "if" and misfit.has("EQUALS") and misfit.last in ENDS_OF_OPERANDS:
-        return misfit.here(
-            "if-order", "the condition stands before what it chooses", "write if condition then a else b"
-        )
+        return misfit.here("if-order", "the condition stands before what it chooses", _IF_FORM)
     if word in _ELSE_IFS:
-        return misfit.here("else-if", f"{word} is no word of the language", "write else if")
+        return misfit.here("else-if", f"`{word}` is no word of the language", "write `else if`")
     if misfit.last == "NUMBER" and misfit.last_text.endswith(_ELSE_IFS):
         # It was taken for the unit of the number before it.
-        return misfit.at_last("else-if", "there is no such word in the language", "write else if")
+        return misfit.at_last("else-if", "there is no such word in the language", "write `else if`")
     if word in ("then", "else") and word.upper() not in misfit.expected:
         if word == "then" and not misfit.has("IF") and misfit.last in ENDS_OF_OPERANDS:
-            return misfit.here("stray-then", "then stands without an if", "write if condition then a else b")
+            return misfit.here("stray-then", "`then` stands without an `if`", _IF_FORM)
         if word == "else" and "THEN" in misfit.expected:
             return _then_missing(misfit)
         if word == "else" and misfit.last in ENDS_OF_OPERANDS:
-            return misfit.here("stray-else", "else stands without an if", "write if condition then a else b")
+            return misfit.here("stray-else", "`else` stands without an `if`", _IF_FORM)
     if (
         "THEN" in misfit.expected
         and not re.search(r"(?<!\w)then(?!\w)", misfit.rest)
@@ -90,37 +89,43 @@ def conditionals(misfit: Misfit) -> Slip | None:
     ):
         return _then_missing(misfit)
     if "ELSE" in misfit.expected and (misfit.at_end or misfit.rest[:1] in (")", ",") or word in RESERVED):
-        return misfit.here(
+        return _at_if(
+            misfit,
             "else-missing",
-            "an if needs its else: what holds where the condition does not?",
-            "write if condition then a else b",
+            "this `if` needs its `else`: what holds where the condition does not?",
         )
     return None
 
 
 def _then_missing(misfit: Misfit) -> Slip:
-    return misfit.here(
-        "then-missing", "an if needs its then", "write if condition then a else b", len(misfit.thing)
-    )
+    return _at_if(misfit, "then-missing", "this `if` needs its `then`")
+
+
+def _at_if(misfit: Misfit, code: str, message: str) -> Slip:
+    """A slip of the last ``if``; at the misfit where none was read."""
+    for terminal, start, end in reversed(misfit.before):
+        if terminal == "IF":
+            return Slip(code, message, start, end, _IF_FORM)
+    return misfit.here(code, message, _IF_FORM)
 
 
 def reserved_words(misfit: Misfit) -> Slip | None:
     """Words of the language used as names, or where they do not belong."""
     word = misfit.word
     if not misfit.before and word in _MISPLACED and misfit.rest[len(word) :].lstrip()[:1] != "=":
-        return misfit.here("misplaced-word", f"{word} cannot start a statement", _MISPLACED[word])
+        return misfit.here("misplaced-word", f"`{word}` cannot start a statement", _MISPLACED[word])
     taken = misfit.last_text
     if word == "if" and misfit.last in OPERATORS | COMPARISONS:
         return misfit.here(
             "if-without-brackets",
-            "an if inside an expression needs brackets",
-            "write a + (if condition then b else c)",
+            "an `if` inside an expression needs brackets",
+            "write `a + (if condition then b else c)`",
         )
     if misfit.last not in ENDS_OF_OPERANDS and word in RESERVED and "NAME" in misfit.expected:
         return misfit.here(
             "reserved-word",
-            f"{word} is a word of the language and cannot be a name",
-            f"choose another name, such as {word}_1",
+            f"`{word}` is a word of the language and cannot be a name",
+            f"choose another name, such as `{word}_1`",
         )
     if (
         taken in RESERVED
@@ -129,8 +134,8 @@ def reserved_words(misfit: Misfit) -> Slip | None:
     ):
         return misfit.at_last(
             "reserved-word",
-            f"{taken} is a word of the language and cannot be a name",
-            f"choose another name, such as {taken}_1",
+            f"`{taken}` is a word of the language and cannot be a name",
+            f"choose another name, such as `{taken}_1`",
         )
     return None
 
@@ -143,26 +148,26 @@ def comparisons(misfit: Misfit) -> Slip | None:
         return misfit.here(
             "comparison-in-equation",
             "a comparison is no equation",
-            "a limit is written require x < 3 m; bounds on an unknown, x within 0 m .. 3 m",
+            "a limit is written `require x < 3 m`; bounds on an unknown, `x within 0 m .. 3 m`",
         )
     if misfit.word in ("and", "or"):
         return misfit.here(
             "condition-as-number",
-            f"{misfit.word} joins conditions, and no condition stands here",
-            "choose a number by a condition: if a < b and b < c then 1 else 2",
+            f"`{misfit.word}` joins conditions, and no condition stands here",
+            "choose a number by a condition: `if a < b and b < c then 1 else 2`",
         )
     if misfit.rest.startswith(".."):
         return misfit.here(
             "stray-range",
             "a range cannot stand here",
-            "bounds are written x within a .. b, indices for i in 1..N",
+            "bounds are written `x within a .. b`, indices `for i in 1..N`",
             2,
         )
     if misfit.at_end and "DOTS" in misfit.expected and misfit.has("WITHIN"):
         return misfit.here(
             "bounds-form",
-            "bounds need .. between or beside them",
-            "write within 0 .. 3, within 0 .. or within .. 3",
+            "bounds need `..` between or beside them",
+            "write `within 0 .. 3`, `within 0 ..` or `within .. 3`",
         )
     return None
 
@@ -171,13 +176,13 @@ def equations(misfit: Misfit) -> Slip | None:
     """Equations with a side missing, without ``=``, or with two of them."""
     if misfit.rest[:1] == "=":
         if not misfit.before or misfit.last in ("LABEL", "OFF"):
-            return misfit.here("side-missing", "nothing stands on the left of =", "write both sides")
+            return misfit.here("side-missing", "nothing stands on the left of `=`", "write both sides")
         if misfit.first not in ("REQUIRE", "SHOW", "FOR", "IF") and misfit.has("EQUALS"):
             return _two_equals(misfit)
     if misfit.at_end and misfit.last == "EQUALS":
         return misfit.at_last(
             "side-missing",
-            "nothing stands on the right of =",
+            "nothing stands on the right of `=`",
             "write what it equals; leave the line out if the quantity is unknown",
         )
     if (
@@ -189,27 +194,27 @@ def equations(misfit: Misfit) -> Slip | None:
         start = next((s for t, s, _ in misfit.before if t not in ("LABEL", "OFF")), 0)
         return Slip(
             "equals-missing",
-            "this expression alone says nothing: an equation needs ="
+            "this expression alone says nothing: an equation needs `=`"
             if misfit.first != "DEFINE"
-            else "a definition needs = and what the function gives",
+            else "a definition needs `=` and what the function gives",
             start,
             len(misfit.text),
-            "write what it equals, or a guess (x near 5), or show x"
+            "write what it equals, or a guess (`x near 5`), or `show x`"
             if misfit.first != "DEFINE"
-            else "write define area(d) = pi*d^2/4",
+            else "write `define area(d) = pi*d^2/4`",
         )
     return None
 
 
 def _two_equals(misfit: Misfit) -> Slip:
     slip = misfit.here(
-        "two-equals", "an equation has one =", "write two equations, a = b and b = c, a line each", 1
+        "two-equals", "an equation has one `=`", "write two equations, `a = b` and `b = c`, a line each", 1
     )
     line_start = misfit.text.rfind("\n", 0, misfit.position) + 1
     beginning = misfit.text[line_start:].lstrip()[:1]
     if line_start and beginning in "+-*/^":
         slip.notes = (
-            f"the line that begins with {beginning} goes on with the statement above it; "
+            f"the line that begins with `{beginning}` goes on with the statement above it; "
             "to make it one of its own, start it with a name, a number or a bracket",
         )
     return slip
@@ -221,7 +226,7 @@ def colons(misfit: Misfit) -> Slip | None:
         return misfit.at_last(
             "label-alone",
             "a label needs its statement on the same line",
-            "write energy: Q = m*cp*(T2 - T1)",
+            "write `energy: Q = m*cp*(T2 - T1)`",
         )
     if misfit.at_end and "COLON" in misfit.expected and misfit.first in _HEADS:
         return misfit.here(
@@ -239,11 +244,11 @@ def colons(misfit: Misfit) -> Slip | None:
         return misfit.here(
             "stray-colon",
             "this line opens no group",
-            "leave the colon out; it stands only after for, rows, curve, surface, template and use",
+            "leave the colon out; it stands only after `for`, `rows`, `curve`, `surface`, `template` and `use`",
         )
     if "=" in misfit.rest and not misfit.has("EQUALS"):
-        return misfit.here("label-form", "a label is one plain name", "write energy: Q = m*cp*(T2 - T1)", 1)
-    return misfit.here("stray-colon", "a colon cannot stand here", "a range is written 1..N", 1)
+        return misfit.here("label-form", "a label is one plain name", "write `energy: Q = m*cp*(T2 - T1)`", 1)
+    return misfit.here("stray-colon", "a colon cannot stand here", "a range is written `1..N`", 1)
 
 
 def file_names(misfit: Misfit) -> Slip | None:
@@ -254,7 +259,7 @@ def file_names(misfit: Misfit) -> Slip | None:
             return misfit.here(
                 "file-name-quotes",
                 "the name of a file stands in quotes",
-                f'write "{name.group()}"',
+                f'write `"{name.group()}"`',
                 len(name.group()),
             )
     return None
@@ -266,13 +271,13 @@ def misspelt_words(misfit: Misfit) -> Slip | None:
         first = misfit.last_text
         help = _NEEDLESS.get(first.lower())
         if help is not None:
-            return misfit.at_last("needless-word", f"{first} is no word of the language", help)
+            return misfit.at_last("needless-word", f"`{first}` is no word of the language", help)
         close = get_close_matches(first, _STATEMENT_WORDS, 1, 0.8)
         if first not in _STATEMENT_WORDS and (first.lower() in _STATEMENT_WORDS or close):
             return misfit.at_last(
                 "misspelt-word",
-                f"{first} is no word of the language",
-                f"did you mean {first.lower() if first.lower() in _STATEMENT_WORDS else close[0]}?",
+                f"`{first}` is no word of the language",
+                f"did you mean `{first.lower() if first.lower() in _STATEMENT_WORDS else close[0]}`?",
             )
     if misfit.last in ENDS_OF_OPERANDS and len(misfit.word) > 1:
         wanted = [t.lower() for t in misfit.expected & _WORDS_AFTER_OPERANDS]
@@ -280,7 +285,7 @@ def misspelt_words(misfit: Misfit) -> Slip | None:
         close = [lower] if lower in wanted else get_close_matches(misfit.word, wanted, 1, 0.75)
         if close and close[0] != misfit.word:
             return misfit.here(
-                "misspelt-word", f"{misfit.word} is no word of the language", f"did you mean {close[0]}?"
+                "misspelt-word", f"`{misfit.word}` is no word of the language", f"did you mean `{close[0]}`?"
             )
     return None
 
@@ -301,15 +306,15 @@ def products(misfit: Misfit) -> Slip | None:
         return None
     start = _start_of_operand(misfit)
     left, right = misfit.text[start : misfit.before[-1][2]], _operand_at(misfit)
-    help = f"write {left}({right})" if left in _FUNCTIONS else f"write {left}*{right}"
+    help = f"write `{left}({right})`" if left in _FUNCTIONS else f"write `{left}*{right}`"
     if misfit.last == "NUMBER" and misfit.word and right == misfit.word and not misfit.touches:
         if left[-1].isdigit():
-            help += f" for a product; a unit follows its number after one space, {left} {right}"
+            help += f" for a product; a unit follows its number after one space, `{left} {right}`"
         else:
             digits, _, symbol = left.partition(" ")
-            help = f"write {digits}*{symbol}*{right}, or {left}*{right} where {symbol} is a unit"
+            help = f"write `{digits}*{symbol}*{right}`, or `{left}*{right}` where `{symbol}` is a unit"
     elif misfit.last == "NAME" and len(misfit.before) == 1 and misfit.word:
-        help += f" for a product, {left}_{right} for one name"
+        help += f" for a product, `{left}_{right}` for one name"
     return Slip(
         "implied-product",
         "two things side by side do not multiply",
@@ -353,9 +358,9 @@ def operands(misfit: Misfit) -> Slip | None:
         return None
     sign = misfit.last_text
     if last in OPERATORS or last in COMPARISONS or last == "COMMA":
-        message = f"something is missing after {'the comma' if last == 'COMMA' else sign}"
+        message = "something is missing after " + ("the comma" if last == "COMMA" else f"`{sign}`")
     elif last in ("LPAR", "LSQB"):
-        message = f"something is missing after the bracket {sign}"
+        message = f"something is missing after the bracket `{sign}`"
     else:
-        message = f"something is missing after {sign}"
+        message = f"something is missing after `{sign}`"
     return misfit.at_last("operand-missing", message, "write what belongs there")

@@ -11,35 +11,43 @@ _CLOSES = {"(": ")", "[": "]"}
 _BRACKET = re.compile(r'"[^"\n]*"|#[^\n]*|[()\[\]]')
 
 _PAIRS = {
-    "**": ("power-sign", "** is no operator", "write ^ for a power"),
-    "==": ("double-equals", "== is no operator", "write a single ="),
-    "<>": ("comparison-sign", "<> is no comparison", "write !="),
-    "=<": ("comparison-sign", "=< is no comparison", "write <="),
-    "=>": ("comparison-sign", "=> is no comparison", "write >="),
-    "//": ("comment-sign", "// is no operator", "a comment starts with #; a quotient has one /"),
-    "/*": ("comment-sign", "/* starts no comment", "a comment starts with #"),
+    "**": ("power-sign", "`**` is no operator", "write `^` for a power"),
+    "==": ("double-equals", "`==` is no operator", "write a single `=`"),
+    "<>": ("comparison-sign", "`<>` is no comparison", "write `!=`"),
+    "=<": ("comparison-sign", "`=<` is no comparison", "write `<=`"),
+    "=>": ("comparison-sign", "`=>` is no comparison", "write `>=`"),
+    "//": ("comment-sign", "`//` is no operator", "a comment starts with `#`; a quotient has one `/`"),
+    "/*": ("comment-sign", "`/*` starts no comment", "a comment starts with `#`"),
 }
 
 _SIGNS = {
-    ":=": ("colon-equals", ":= is no operator", "write =; every equation holds both ways"),
-    "&&": ("logical-sign", "&& is no operator", "write and"),
-    "&": ("logical-sign", "& is no operator", "write and"),
-    "||": ("logical-sign", "|| is no operator", "write or"),
-    "|": ("logical-sign", "| is no operator", "write abs(x) for a magnitude, or between conditions"),
-    "!=": ("comparison-sign", "!= is no equation", "write =; != stands in conditions only"),
-    "!": ("logical-sign", "! is no operator", "write not before a condition; n! is gamma(n + 1)"),
-    "{": ("bracket-kind", "braces are not used", "write ( and )"),
-    "}": ("bracket-kind", "braces are not used", "write ( and )"),
-    ";": ("two-statements", "; does not end a statement", "write one statement a line"),
-    "~": ("guess-sign", "~ is no operator", "a guess is written x near 5"),
+    ":=": ("colon-equals", "`:=` is no operator", "write `=`; every equation holds both ways"),
+    "&&": ("logical-sign", "`&&` is no operator", "write `and`"),
+    "&": ("logical-sign", "`&` is no operator", "write `and`"),
+    "||": ("logical-sign", "`||` is no operator", "write `or`"),
+    "|": ("logical-sign", "`|` is no operator", "write `abs(x)` for a magnitude, `or` between conditions"),
+    "!=": ("comparison-sign", "`!=` is no equation", "write `=`; `!=` stands in conditions only"),
+    "!": (
+        "logical-sign",
+        "`!` is no operator",
+        "write `not` before a condition; a factorial is `gamma(n + 1)`",
+    ),
+    "{": ("bracket-kind", "braces are not used", "write `(` and `)`"),
+    "}": ("bracket-kind", "braces are not used", "write `(` and `)`"),
+    ";": ("two-statements", "`;` does not end a statement", "write one statement a line"),
+    "~": ("guess-sign", "`~` is no operator", "a guess is written `x near 5`"),
     "\\": ("line-end", "a backslash does not continue a line", "end the line with an operator or a comma"),
-    "·": ("product-sign", "· joins the symbols of a unit only", "write * for a product"),
-    "$": ("foreign-sign", "$ has no meaning here", "currencies are units of your own: new unit USD"),
-    "@": ("foreign-sign", "@ has no meaning here", "leave it out"),
-    "?": ("foreign-sign", "? has no meaning here", "an unknown is a name that nothing fixes; leave it out"),
+    "·": ("product-sign", "`·` joins the symbols of a unit only", "write `*` for a product"),
+    "$": ("foreign-sign", "`$` has no meaning here", "currencies are units of your own: `new unit USD`"),
+    "@": ("foreign-sign", "`@` has no meaning here", "leave it out"),
+    "?": ("foreign-sign", "`?` has no meaning here", "an unknown is a name that nothing fixes; leave it out"),
     "`": ("foreign-sign", "` has no meaning here", "leave it out"),
-    "'": ("foreign-sign", "' has no meaning here", 'a name may end in _prime; members are quoted with "'),
-    "%": ("percent-sign", "% does not follow its number", "write 5 %, with one space or none"),
+    "'": (
+        "foreign-sign",
+        "`'` has no meaning here",
+        'a name may end in `_prime`; members are quoted with `"`',
+    ),
+    "%": ("percent-sign", "`%` does not follow its number", "write `5 %`, with one space or none"),
 }
 
 
@@ -58,15 +66,15 @@ def brackets(misfit: Misfit) -> Slip | None:
     if not opened:
         return misfit.here(
             "bracket-not-opened",
-            f"the bracket {closing} closes nothing",
+            f"the bracket `{closing}` closes nothing",
             "delete it, or open one before",
         )
     opening = misfit.text[opened[-1]]
     if _CLOSES[opening] != closing:
         return misfit.here(
             "bracket-mismatch",
-            f"a bracket opened by {opening} is closed by {closing}",
-            f"write {_CLOSES[opening]}",
+            f"a bracket opened by `{opening}` is closed by `{closing}`",
+            f"write `{_CLOSES[opening]}`",
         )
     if misfit.last in ("LPAR", "LSQB"):
         return misfit.with_last(
@@ -105,19 +113,19 @@ def numbers(misfit: Misfit) -> Slip | None:
         return misfit.with_last(
             "number-form",
             "a number has digits on both sides of its point",
-            f"write {before} or {before}.0" if "." not in before else "write one point in a number",
+            f"write `{before}` or `{before}.0`" if "." not in before else "write one point in a number",
         )
     found = re.match(r"\.([0-9]+)", rest)
     if found and misfit.last not in ENDS_OF_OPERANDS:
         return misfit.here(
             "number-form",
             "a number has digits on both sides of its point",
-            f"write 0.{found[1]}",
+            f"write `0.{found[1]}`",
             len(found.group()),
         )
     if found and misfit.last == "DOTS":
         return misfit.here(
-            "number-form", "a number has digits on both sides of its point", f"write 0.{found[1]}"
+            "number-form", "a number has digits on both sides of its point", f"write `0.{found[1]}`"
         )
     groups = re.match(r"[0-9]{3}(?![0-9.])|_[0-9]+|'[0-9]{3}", rest)
     if groups and after_digits and "." not in before:
@@ -125,7 +133,7 @@ def numbers(misfit: Misfit) -> Slip | None:
         return misfit.with_last(
             "digit-groups",
             "digits of a number stand together, without spaces or other marks",
-            f"write {whole}",
+            f"write `{whole}`",
             len(groups.group()),
         )
     return None
@@ -137,17 +145,17 @@ def _comma(misfit: Misfit, before: str) -> Slip:
     groups = digits.group()
     if groups.count(",") == 1:
         point = f"{before}.{groups[1:]}"
-        thousand = f", or {before}{groups[1:]} without the comma" if len(groups) == 4 else ""
+        thousand = f", or `{before}{groups[1:]}` without the comma" if len(groups) == 4 else ""
         return misfit.with_last(
             "decimal-comma",
-            f"{before}{groups} has a comma for a decimal point",
-            f"write {point}{thousand}",
+            f"`{before}{groups}` has a comma for a decimal point",
+            f"write `{point}`{thousand}",
             len(groups),
         )
     return misfit.with_last(
         "digit-groups",
         "digits of a number stand together, without spaces or other marks",
-        f"write {before}{groups.replace(',', '')}",
+        f"write `{before}{groups.replace(',', '')}`",
         len(groups),
     )
 
@@ -161,21 +169,21 @@ def units(misfit: Misfit) -> Slip | None:
         return misfit.here(
             "unit-in-brackets",
             "a unit stands without brackets",
-            f"write {misfit.last_text if misfit.last == 'NUMBER' else 'in'} {inside}",
+            f"write `{misfit.last_text if misfit.last == 'NUMBER' else 'in'} {inside}`",
             len(found.group()) if found else 1,
         )
     if misfit.last == "UNIT" and rest[:1] in ("*", "/", "^", "·"):
         return misfit.here(
             "unit-form",
             "a unit is written without spaces",
-            "write units together, as in kJ/(kg*K); a power as m^2 or m^(1/2)",
+            "write units together, as in `kJ/(kg*K)`; a power as `m^2` or `m^(1/2)`",
             1,
         )
     if misfit.expected == {"UNIT"}:
         return misfit.here(
             "unit-missing",
-            "a unit must stand after in",
-            "write a unit such as bar, L/min or 1; an expression cannot stand there",
+            "a unit must stand after `in`",
+            "write a unit such as `bar`, `L/min` or `1`; an expression cannot stand there",
         )
     return None
 
@@ -186,12 +194,12 @@ def quotes(misfit: Misfit) -> Slip | None:
         return None
     if misfit.rest.find('"', 1) < 0:
         return misfit.here(
-            "quote-not-closed", "the quoted name is not closed", 'write "name" with both quotes'
+            "quote-not-closed", "the quoted name is not closed", 'write `"name"` with both quotes'
         )
     return misfit.here(
         "text-as-number",
         "a quoted name cannot stand here",
-        'quoted names are members of a set, used as subscripts (x["NH4+"]), or names of files',
+        'quoted names are members of a set, used as subscripts (`x["NH4+"]`), or names of files',
     )
 
 
@@ -201,15 +209,15 @@ def tolerances(misfit: Misfit) -> Slip | None:
         return misfit.here(
             "tolerance-not-on-known",
             "a tolerance cannot stand here",
-            "write it after the number of a known: D = 52.5 mm ± 0.1 mm",
+            "write it after the number of a known: `D = 52.5 mm ± 0.1 mm`",
             1 if misfit.rest[0] == "±" else 2,
         )
     if misfit.last == "PLUS_MINUS" and not misfit.rest.startswith("."):
         return misfit.here(
             "tolerance-form",
             "a tolerance is one positive number",
-            "write the number worked out, with its unit: ± 0.1 mm or ± 2 %",
+            "write the number worked out, with its unit: `± 0.1 mm` or `± 2 %`",
         )
     if misfit.has("PLUS_MINUS") and re.match(r"(?:[^\W\d]\w*)?\(\s*k", misfit.rest):
-        return misfit.here("tolerance-form", "a space must stand before (k=2)", "write ± 0.1 mm (k=2)")
+        return misfit.here("tolerance-form", "a space must stand before `(k=2)`", "write `± 0.1 mm (k=2)`")
     return None

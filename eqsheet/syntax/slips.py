@@ -47,6 +47,10 @@ _FORMS = {
 }
 
 
+def _quoted(form: str) -> str:
+    return " or ".join(f"`{one}`" for one in form.split(" or "))
+
+
 def slip_of(text: str, unexpected: Unexpected) -> Slip:
     """The slip behind `unexpected` in the logical line `text`."""
     misfit = Misfit(text, unexpected.position, frozenset(unexpected.expected), unexpected.before)
@@ -58,9 +62,9 @@ def slip_of(text: str, unexpected: Unexpected) -> Slip:
     form = _FORMS.get(misfit.first) or _FORMS.get(misfit.text.split(None, 1)[0].upper(), "")
     help = f"here can stand {words}" if words else ""
     if form:
-        help += ("; " if help else "") + f"the statement reads {form}"
+        help += ("; " if help else "") + f"the statement reads {_quoted(form)}"
     return misfit.here(
         "cannot-be-read",
-        "the statement ends too early" if misfit.at_end else f"{misfit.thing} cannot stand here",
+        "the statement ends too early" if misfit.at_end else f"`{misfit.thing}` cannot stand here",
         help,
     )

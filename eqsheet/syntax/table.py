@@ -43,7 +43,7 @@ def table_row(text: str) -> TableRow:
             "the quoted name is not closed",
             start,
             len(text),
-            'write "name" with both quotes',
+            'write `"name"` with both quotes',
         )
     return TableRow(0, len(text), tuple(cells))
 
@@ -52,10 +52,10 @@ def _refuse_comma(cell: str, start: int, end: int) -> None:
     if _DECIMAL_COMMA.match(cell):
         raise Slip(
             "decimal-comma",
-            f"{cell} has a comma for a decimal point",
+            f"`{cell}` has a comma for a decimal point",
             start,
             end,
-            f"write {cell.replace(',', '.')}",
+            f"write `{cell.replace(',', '.')}`",
         )
     comma = start + cell.index(",")
     raise Slip(
