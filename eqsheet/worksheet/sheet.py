@@ -17,6 +17,7 @@ from eqsheet.worksheet.assemble import assemble
 from eqsheet.worksheet.attached_files import attach_files
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.changes import apply_changes
+from eqsheet.worksheet.collection import collection_put_off
 from eqsheet.worksheet.prepare import Prepared, prepare
 from eqsheet.worksheet.run import run_blocks
 from eqsheet.worksheet.solution import Solution
@@ -82,12 +83,13 @@ class Worksheet:
         >>> sheet.solve(changes=["Q = 6 L/s"])["v"].to("m/s")
         5.0
         """
-        prepared = self.prepare(changes, free)
-        begin = time.perf_counter()
-        run = run_blocks(prepared, budget, self.memory) if prepared.valid_text else None
-        solved_in = time.perf_counter() - begin
-        timing = {"parse": self.timing, **prepared.timing, "solve": solved_in}
-        return assemble(self.name, prepared, run, timing)
+        with collection_put_off():
+            prepared = self.prepare(changes, free)
+            begin = time.perf_counter()
+            run = run_blocks(prepared, budget, self.memory) if prepared.valid_text else None
+            solved_in = time.perf_counter() - begin
+            timing = {"parse": self.timing, **prepared.timing, "solve": solved_in}
+            return assemble(self.name, prepared, run, timing)
 
 
 def _empty(source: Source) -> Diagnostic:

@@ -1,0 +1,35 @@
+"""Putting off garbage collection."""
+
+from __future__ import annotations
+
+import gc
+
+import pytest
+
+import eqsheet
+from eqsheet.worksheet.collection import collection_put_off
+
+
+def test_is_off_inside_and_on_again_afterwards() -> None:
+    assert gc.isenabled()
+    with collection_put_off():
+        assert not gc.isenabled()
+        with collection_put_off():
+            assert not gc.isenabled()
+        assert not gc.isenabled()
+    assert gc.isenabled()
+
+
+def test_is_on_again_after_an_exception() -> None:
+    with pytest.raises(ZeroDivisionError), collection_put_off():
+        _ = 1 / 0
+    assert gc.isenabled()
+
+
+def test_stays_off_where_the_caller_has_switched_it_off() -> None:
+    gc.disable()
+    try:
+        eqsheet.parse("x = 2 m\ny = 3*x").solve()
+        assert not gc.isenabled()
+    finally:
+        gc.enable()
