@@ -10,9 +10,9 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Label, Severity, note
 from eqsheet.model.system import EquationSystem
 from eqsheet.syntax.nodes import Statement
 from eqsheet.units.display import format_value
+from eqsheet.worksheet.alike import fold_alike
 from eqsheet.worksheet.failure_messages import digits_of
 from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds
-from eqsheet.worksheet.own_line import own_line
 from eqsheet.worksheet.places import span_of
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import BlockRun, Run
@@ -37,9 +37,10 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         diagnostics += judge_validity(prepared, run)
         limits = judge_limits(prepared, run)
         blocks = tuple(_block(prepared, block) for block in run.blocks)
-        quantities = _quantities(prepared, run)
+        own = own_statements(prepared, run)
+        quantities = _quantities(prepared, run, own)
         best = {
-            prepared.system.names[q]: _value(prepared, run, q, si, math.inf)
+            prepared.system.names[q]: _value(prepared, run, own, q, si, math.inf)
             for q, si in run.best.items()
             if math.isfinite(si)
         }
@@ -70,7 +71,7 @@ def _status(diagnostics: list[Diagnostic], limits: tuple[LimitReport, ...]) -> s
 
 def _distinct(diagnostics: list[Diagnostic]) -> list[Diagnostic]:
     """Each diagnostic once, errors first, then by place."""
-    unique = list(dict.fromkeys(diagnostics))
+    unique = fold_alike(list(dict.fromkeys(diagnostics)))
 
     def key(diagnostic: Diagnostic) -> tuple[int, bool, int]:
         span = diagnostic.span
@@ -80,7 +81,7 @@ def _distinct(diagnostics: list[Diagnostic]) -> list[Diagnostic]:
     return sorted(unique, key=key)
 
 
-def _quantities(prepared: Prepared, run: Run) -> dict[str, QuantityValue]:
+def _quantities(prepared: Prepared, run: Run, own: Mapping[int, int]) -> dict[str, QuantityValue]:
     """Values in order of showing: those of `show` first, then in the order of the text."""
     system = prepared.system
     places = [(p.statement, p.start, q) for q, p in enumerate(system.first_places)]
@@ -93,13 +94,44 @@ def _quantities(prepared: Prepared, run: Run) -> dict[str, QuantityValue]:
         places = [(*earliest[system.families[q]], q) for _, _, q in places]
     order = [*system.shown, *(q for _, _, q in sorted(places) if q not in system.shown)]
     return {
-        system.names[q]: _value(prepared, run, q, run.values[q], run.errors[q])
+        system.names[q]: _value(prepared, run, own, q, run.values[q], run.errors[q])
         for q in order
         if math.isfinite(run.values[q])
     }
 
 
-def _value(prepared: Prepared, run: Run, quantity: int, si: float, error_bound: float) -> QuantityValue:
+def own_statements(prepared: Prepared, run: Run) -> dict[int, int]:
+    """The line that is a solved quantity's own, as a statement number: the equation of its block with it alone.
+
+    A quantity alone on a left side goes before one alone on a right side, and the first line before others;
+    where there is none the block's first line stands for it.
+    """
+    equations = prepared.system.equations
+    own: dict[int, int] = {}
+    for side in (0, 1):
+        for block in run.blocks:
+            for e in block.equations:
+                formula = equations[e].formula
+                operation, *rest = formula.tape.instructions[formula.tape.outputs[side]]
+                if operation == "quantity":
+                    quantity = formula.quantities[rest[0]]
+                    if run.block_of.get(quantity) == block.number:
+                        own.setdefault(quantity, formula.statement)
+    for block in run.blocks:
+        first = equations[block.equations[0]].place.statement
+        for quantity in block.unknowns:
+            own.setdefault(quantity, first)
+    return own
+
+
+def _value(
+    prepared: Prepared,
+    run: Run,
+    own: Mapping[int, int],
+    quantity: int,
+    si: float,
+    error_bound: float,
+) -> QuantityValue:
     system = prepared.system
     block = run.block_of.get(quantity)
     return QuantityValue(
@@ -108,7 +140,7 @@ def _value(prepared: Prepared, run: Run, quantity: int, si: float, error_bound: 
         prepared.kinds[quantity],
         block is None,
         block,
-        _statement_of(prepared, run, quantity),
+        _statement_of(prepared, own, quantity),
         error_bound,
         digits_of(si, error_bound),
         shown_unit(system, prepared.dimensions, prepared.kinds, quantity),
@@ -123,13 +155,10 @@ def _tolerance_of(prepared: Prepared, quantity: int) -> str:
     return "" if tolerance is None else " ".join(tolerance.text.split())
 
 
-def _statement_of(prepared: Prepared, run: Run, quantity: int) -> Statement | None:
+def _statement_of(prepared: Prepared, own: Mapping[int, int], quantity: int) -> Statement | None:
     system = prepared.system
-    block = run.block_of.get(quantity)
-    if block is not None:
-        places = [system.equations[e].place for e in run.blocks[block - 1].equations]
-        statements = [system.statements[place.statement] for place in places]
-        return own_line(system.names[quantity], statements) or statements[0]
+    if quantity in own:
+        return system.statements[own[quantity]]
     setter = prepared.setters.get(quantity)
     return None if setter is None else system.statements[system.equations[setter].place.statement]
 

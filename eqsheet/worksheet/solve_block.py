@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import math
 import time
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -27,6 +27,7 @@ from eqsheet.solve.termination import ACCEPTABLE
 from eqsheet.solve.trail import Budget, Trail
 from eqsheet.solve.verdict import judge
 from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.array_equations import LARGE_BLOCK, ArrayBlock, ArrayProblem, shapes_of
 from eqsheet.worksheet.block_equations import block_problem, scalar_problem
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.starting_values import Start, starting_values
@@ -197,12 +198,12 @@ def _solve_plain(
             point = np.array(start.values)
             return Outcome(Status.SINGULAR, point, math.inf, 0, "newton"), None
         return solve_scalar(scalar_problem(formulas[0], unknowns[0], known.values, start), budget), None
-    problem = block_problem(formulas, unknowns, known.values, start)
+    problem = _problem(formulas, unknowns, known, start)
     own = set(unknowns)
     if all(is_linear_in(f.tape, {s for s, q in enumerate(f.quantities) if q in own}) for f in formulas):
         return linear_step(problem, problem.start, Trail("linear", problem.start, budget)), problem
     torn = torn_block(formulas, unknowns, known.values, start)
-    if torn is not None and start.assumed:
+    if torn is not None and start.blind:
         begin = _consistent(torn, start)
         problem = replace(problem, start=np.array(begin.values), magnitude=np.array(begin.magnitude))
         if len(torn.tears) == 1:
@@ -216,12 +217,27 @@ def _solve_plain(
     return _solve_torn(torn, problem, outcome, budget) or outcome, problem
 
 
+def _problem(
+    formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start
+) -> Problem:
+    """The block for the solver: as arrays where it is large, else as one generated function."""
+    if len(unknowns) < LARGE_BLOCK:
+        return block_problem(formulas, unknowns, known.values, start)
+    numbers = np.array(unknowns, dtype=np.int64)
+    block = ArrayBlock(shapes_of(formulas), numbers, np.array(known.values), np.array(known.errors))
+    return block.problem(start)
+
+
 def _consistent(torn: TornBlock, start: Start) -> Start:
-    """The start with the unknowns that had no guess told by the closed forms, where these have a value."""
+    """The start with the unknowns that nothing has placed told by the closed forms, where these have a value.
+
+    The others are left alone: what a guess, bounds or known values tell is better than what follows from a
+    blind start.
+    """
     told, _ = torn.expand([start.values[p] for p in torn.tears])
-    assumed = set(start.assumed)
+    blind = set(start.blind)
     values = tuple(
-        t if i in assumed and math.isfinite(t) and t != 0.0 else v
+        t if i in blind and math.isfinite(t) and t != 0.0 else v
         for i, (t, v) in enumerate(zip(told, start.values))
     )
     magnitude = tuple(
@@ -304,7 +320,7 @@ def _by_regimes(
     taken = hold(formulas, found, held.branches)
     problem = None
     if len(unknowns) > 1:
-        problem = block_problem(taken, unknowns, known.values, start)
+        problem = _problem(taken, unknowns, known, start)
     gap = () if held.gap is None else tuple(held.gap.tolist())
     return _judged(taken, unknowns, known, start, held.outcome, problem, gap)
 
@@ -314,6 +330,27 @@ def _started_at(start: Start, x: Vector) -> Start:
     inside = [min(max(v, low), high) for v, low, high in zip(x.tolist(), start.lower, start.upper)]
     values = tuple(v if math.isfinite(v) else s for v, s in zip(inside, start.values))
     return Start(values, start.lower, start.upper, start.magnitude, start.assumed, start.blind)
+
+
+def _evidence(
+    formulas: Sequence[Formula], own: Mapping[int, float], known: Known
+) -> tuple[Vector, Vector, Vector]:
+    """Residuals, sizes and error bounds of the equations, evaluated afresh one by one."""
+    found = np.empty((3, len(formulas)))
+    for row, formula in enumerate(formulas):
+        evidence = evaluate_with_evidence(
+            formula.tape,
+            [own[q] if q in own else known.values[q] for q in formula.quantities],
+            literal_values(formula),
+            [0.0 if q in own else known.errors[q] for q in formula.quantities],
+        )
+        left, right = formula.tape.outputs
+        found[:, row] = (
+            evidence.values[left] - evidence.values[right],
+            max(evidence.sizes[left], evidence.sizes[right]),
+            evidence.errors[left] + evidence.errors[right],
+        )
+    return found[0], found[1], found[2]
 
 
 def _judged(
@@ -344,28 +381,17 @@ def _judged(
     )
     if not outcome.solved:
         return failed
-    own = dict(zip(unknowns, values))
-    residuals, sizes, bounds = [], [], []
-    for formula in formulas:
-        evidence = evaluate_with_evidence(
-            formula.tape,
-            [own[q] if q in own else known.values[q] for q in formula.quantities],
-            literal_values(formula),
-            [0.0 if q in own else known.errors[q] for q in formula.quantities],
-        )
-        left, right = formula.tape.outputs
-        residuals.append(evidence.values[left] - evidence.values[right])
-        sizes.append(max(evidence.sizes[left], evidence.sizes[right]))
-        bounds.append(evidence.errors[left] + evidence.errors[right])
+    if isinstance(problem, ArrayProblem):
+        residuals, sizes, bounds = problem.evidence(x)
+    else:
+        residuals, sizes, bounds = _evidence(formulas, dict(zip(unknowns, values)), known)
     if len(unknowns) == 1:
         _, slope = scalar_problem(formulas[0], unknowns[0], known.values, start).linearise(values[0])
         jacobian = np.array([[slope]])
     else:
         assert problem is not None
         jacobian = problem.linearise(x)[1]
-    verdict = judge(
-        np.array(residuals), np.array(sizes), np.array(bounds), jacobian, x, np.array(start.magnitude)
-    )
+    verdict = judge(residuals, sizes, bounds, jacobian, x, np.array(start.magnitude))
     if not verdict.solved:
         return failed
     return BlockResult(
