@@ -19,6 +19,7 @@ from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import Run
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solution import LimitReport
+from eqsheet.worksheet.written_values import as_typed
 
 _WITH_READINGS = frozenset((Dimension.of({"K": 1}), Dimension.of({"kg": 1, "m": -1, "s": -2})))
 
@@ -55,6 +56,9 @@ def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitRep
     ]
     holds = all(slack >= -room for slack, _, room in links)
     slack, scale, _ = min(links, key=lambda link: link[0])
+    if holds:
+        # Past the limit by rounding alone is at the limit.
+        slack = max(slack, 0.0)
     reading = dimension in _WITH_READINGS and _compares_readings(prepared, item, operands)
     margin = None if scale == 0.0 or reading else slack / abs(scale)
     return LimitReport(
@@ -84,7 +88,7 @@ def _link(item: LimitItem, operator: str, a: int, b: int, evidence: Evidence) ->
     """Slack of one comparison, the limit it is relative to, and the forward error of its sides."""
     values, errors = evidence.values, evidence.errors
     left, right = values[a], values[b]
-    room = errors[a] + errors[b]
+    room = errors[a] + errors[b] + as_typed(left) + as_typed(right)
     if operator == "=":
         allowed = abs(values[item.formula.tape.outputs[-1]])
         if item.relative:
@@ -126,6 +130,8 @@ def judge_validity(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
     """A warning for each validity range that the solution leaves, where its formula is in use."""
     system = prepared.system
     diagnostics: list[Diagnostic] = []
+    if not any(item.valid for item in system.equations):
+        return ()
     used = _quantities_used(prepared, run)
     produced = {equation: block.unknowns for block in run.blocks for equation in block.equations}
     for number, item in enumerate(system.equations):

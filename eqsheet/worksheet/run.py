@@ -22,7 +22,7 @@ from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
 from eqsheet.worksheet.structure_messages import conflict_diagnostic
 from eqsheet.worksheet.without_unknowns import EQUAL_TO
-from eqsheet.worksheet.written_values import written
+from eqsheet.worksheet.written_values import as_typed, written
 
 
 @dataclass(frozen=True, slots=True)
@@ -84,6 +84,7 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
     for quantity, value in prepared.known_values.items():
         if quantity not in prepared.contested:
             values[quantity] = value
+            errors[quantity] = as_typed(value)
     formulas = list(prepared.formulas)
     dimensions = prepared.dimensions
     known = Known(values, errors)
