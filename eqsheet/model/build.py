@@ -15,7 +15,7 @@ from eqsheet.model.bind import Binder, Bound, Unbound, entry_text, member_formul
 from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
 from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, whole_number
 from eqsheet.model.lower import Context, IndexScope, NameTable, NeedsMembers, OfInstance, names_in
-from eqsheet.model.lower_definitions import check_definition, collect_definitions
+from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
 from eqsheet.model.lower_statements import (
     GuessMeant,
     LoweredStatement,
@@ -129,8 +129,8 @@ def build_system(
     indexing = Indexing(tables.sets, _whole_knowns(used), tables.members)
     context = Context(unit_table, definitions, indexing)
     cache.enter(context)
-    for statement in definitions.values():
-        diagnostics.extend(f.at(statement) for f in check_definition(statement, context))
+    told = [f.at(s) for s in definitions.values() for f in check_definition(s, context)]
+    diagnostics += told
     numbered = _numbered(placed, tables)
     work = _lower_all(placed, numbered, cache, indexing, diagnostics)
     # A known switched off still tells in which unit its quantity is thought of.
@@ -140,9 +140,8 @@ def build_system(
         if s.off and isinstance(s.node, syntax.Equation)
         if (one := cache.lowered(s, IndexScope(), False)) is not None
     ]
-    return _assemble(work, tables, idle, numbered, cache.names, context, freed, diagnostics), tuple(
-        diagnostics
-    )
+    system = _assemble(work, tables, idle, numbered, cache.names, context, freed, diagnostics)
+    return system, without_echoes(diagnostics, told, used, definitions)
 
 
 def _all(statements: Iterable[syntax.Statement]) -> Iterable[syntax.Statement]:

@@ -89,3 +89,27 @@ def check_definition(statement: syntax.Statement, context: Context) -> tuple[Fin
     except Poisoned:
         return tuple(work.findings)
     return ()
+
+
+def without_echoes(
+    diagnostics: Sequence[Diagnostic],
+    told: Sequence[Diagnostic],
+    statements: Sequence[syntax.Statement],
+    definitions: Mapping[str, syntax.Statement],
+) -> tuple[Diagnostic, ...]:
+    """The diagnostics without those at uses of a broken definition, which its own line has told already.
+
+    Parameters
+    ----------
+    told : sequence of Diagnostic
+        What is wrong with definitions, said in their own lines; among `diagnostics`.
+    definitions : mapping
+        Those that were kept; a use of any other is an unknown function only because its line is broken.
+    """
+    lost = {s.node.name for s in statements if isinstance(s.node, syntax.Definition)} - definitions.keys()
+    if not told and not lost:
+        return tuple(diagnostics)
+    own = {id(diagnostic) for diagnostic in told}
+    echoes = {(diagnostic.code, diagnostic.message) for diagnostic in told}
+    echoes |= {("unknown-function", f"there is no function `{name}`") for name in lost}
+    return tuple([d for d in diagnostics if id(d) in own or (d.code, d.message) not in echoes])
