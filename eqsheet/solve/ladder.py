@@ -47,7 +47,12 @@ def solve_block(problem: Problem, budget: Budget = DEFAULT_BUDGET) -> Outcome:
                 attempts.append(_attempt(name, rung, problem, start, budget, deadline))
                 if _final(attempts[-1], deadline):
                     break
-        return _concluded(attempts, lambda: _distance_from_zero(problem))
+        found = _concluded(attempts, lambda: _distance_from_zero(problem))
+        if _came_to_bound(found):
+            from eqsheet.solve.other_roots import other_roots
+
+            return _inner_if_any(found, lambda: other_roots(problem, [found.x], 2, budget, starts=0))
+    return found
 
 
 def solve_scalar(problem: ScalarProblem, budget: Budget = DEFAULT_BUDGET) -> Outcome:
@@ -56,7 +61,30 @@ def solve_scalar(problem: ScalarProblem, budget: Budget = DEFAULT_BUDGET) -> Out
     attempts = [_attempt("newton", scalar_newton, problem, problem.start, budget, deadline)]
     if not _final(attempts[0], deadline):
         attempts.append(_attempt("bracketing", bracketing, problem, problem.start, budget, deadline))
-    return _concluded(attempts, lambda: lambda outcome: abs(problem.residual(float(outcome.x[0]))))
+    found = _concluded(attempts, lambda: lambda outcome: abs(problem.residual(float(outcome.x[0]))))
+    if _came_to_bound(found):
+        from eqsheet.solve.other_roots import scalar_roots
+
+        return _inner_if_any(found, lambda: scalar_roots(problem, [float(found.x[0])], 2, budget))
+    return found
+
+
+def _came_to_bound(outcome: Outcome) -> bool:
+    """Whether the root rests on a bound and the start did not: a start on it is a solution found before."""
+    return outcome.solved and bool(outcome.on_bound) and outcome.iterations > 0
+
+
+def _inner_if_any(on_bound: Outcome, others: Callable[[], tuple[Outcome, ...]]) -> Outcome:
+    """The first of the other roots that lies between the bounds, else the one that rests on a bound.
+
+    Many equations have a root at zero that nobody asks for: no flow, no concentration.
+    """
+    try:
+        found = others()
+    except KeyboardInterrupt:
+        return on_bound
+    inner = next((o for o in found if o.status is Status.CONVERGED and not o.on_bound), None)
+    return on_bound if inner is None else replace(inner, attempts=(*on_bound.attempts, on_bound))
 
 
 def _attempt(

@@ -32,7 +32,11 @@ DEFAULT_BUDGET = Budget(SHORT, 5.0)
 
 
 def other_roots(
-    problem: Problem, known: Sequence[Vector], most: int = 8, budget: Budget = DEFAULT_BUDGET
+    problem: Problem,
+    known: Sequence[Vector],
+    most: int = 8,
+    budget: Budget = DEFAULT_BUDGET,
+    starts: int = STARTS,
 ) -> tuple[Outcome, ...]:
     """Up to `most` roots that are none of `known`, in the order they are found; deterministic.
 
@@ -43,6 +47,8 @@ def other_roots(
     known : sequence of ndarray (n,)
     budget : Budget
         Iterations from one start, seconds for all.
+    starts : int
+        Spread starts, a power of two or 0, besides the guess and its multiples.
     """
     if problem.n == 1:
         return scalar_roots(as_scalar(problem), [float(x[0]) for x in known], most, budget)
@@ -50,7 +56,7 @@ def other_roots(
     deadline = perf_counter() + budget.seconds
     # Roots often lie near each other, so the neighbourhood of each comes before the spread starts.
     near = [problem.start, *known]
-    spread = itertools.chain(scaled_starts(problem), spread_starts(problem, STARTS))
+    spread = itertools.chain(scaled_starts(problem), spread_starts(problem, starts))
     with np.errstate(all="ignore"):
         while len(found) < most and perf_counter() < deadline:
             start = moved_start(replace(problem, start=near.pop(0))) if near else next(spread, None)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 from collections.abc import Callable, Iterator
 from typing import TypeAlias
 
@@ -20,6 +21,9 @@ Rung: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
 
 # Starts tried; enough for the published problems, and a fraction of a second.
 STARTS = 64
+# Points looked at for starts inside the domain: where equations have no value over most of the range, the
+# few points where they have one are worth finding.
+CANDIDATES = 1024
 # Steps from one start: where a start is any good, these suffice.
 SHORT = 60
 
@@ -50,5 +54,6 @@ def _attempts(problem: Problem) -> Iterator[tuple[Vector, tuple[Rung, ...]]]:
     """Starts, the most likely ones first, with the methods to try from each."""
     for point in scaled_starts(problem):
         yield point, (newton, dogleg, levenberg_marquardt)
-    for number, point in enumerate(spread_starts(problem, STARTS)):
+    within_domain = (p for p in spread_starts(problem, CANDIDATES) if np.isfinite(problem.residual(p)).all())
+    for number, point in enumerate(itertools.islice(within_domain, STARTS)):
         yield point, (newton, dogleg if number % 4 < 2 else levenberg_marquardt)

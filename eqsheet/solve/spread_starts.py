@@ -38,10 +38,12 @@ def scaled_starts(problem: Problem) -> Iterator[Vector]:
 
 
 def spread_starts(problem: Problem, count: int) -> Iterator[Vector]:
-    """`count` points (n,), a power of two, strictly inside the bounds.
+    """`count` points (n,), a power of two or none, strictly inside the bounds.
 
     Unknowns without bounds keep the sign of their guess in every second point.
     """
+    if count == 0:
+        return
     from scipy.stats import qmc
 
     sequence = qmc.Sobol(problem.n, scramble=True, rng=np.random.default_rng(SEED))

@@ -120,3 +120,29 @@ def test_an_interrupt_keeps_the_best_point():
     outcome = solve_block(p)
     assert outcome.status is Status.INTERRUPTED
     assert 20.7 < outcome.x[0] < 29.0
+
+
+def test_a_root_between_the_bounds_is_preferred_to_one_on_a_bound():
+    # No flow at all solves q = 4 sqrt(q) h and h = 1 - q / 8 as well; wanted is q = 16 h^2.
+    p = problem(
+        lambda x: [x[0] - 4 * np.sqrt(x[0]) * x[1], x[1] - 1 + x[0] / 8],
+        lambda x: [[1 - 2 * x[1] / np.sqrt(x[0]), -4 * np.sqrt(x[0])], [1 / 8, 1]],
+        [1e-4, 1.0],
+        [0.0, 0.0],
+    )
+    outcome = solve_block(p)
+    assert outcome.status is Status.CONVERGED
+    # By hand: q = 16 (1 - q/8)^2, or q^2 - 20 q + 64 = 0, so q = 4.
+    assert outcome.x == pytest.approx([4.0, 0.5], rel=1e-13)
+
+
+def test_a_root_on_a_bound_is_kept_where_there_is_no_other():
+    p = problem(
+        lambda x: [x[0] * (1 + x[1]), x[1] - 2 - x[0]],
+        lambda x: [[1 + x[1], x[0]], [-1, 1]],
+        [0.7, 1.0],
+        [0.0, 0.0],
+    )
+    outcome = solve_block(p)
+    assert outcome.status is Status.CONVERGED
+    assert outcome.on_bound == (0,)
