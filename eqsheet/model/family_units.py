@@ -47,11 +47,12 @@ def check_units_by_family(system: EquationSystem) -> FamilyUnits:
     family_of = tuple([compact[first] for first in system.families])
     for number, formula, is_physical in _everything(system):
         if system.families:
-            formula = _of_families(formula, family_of)
-            key = (formula.statement, formula.tape, formula.quantities, _literal_dimensions(formula))
+            numbers = tuple([family_of[q] for q in formula.quantities])
+            key = (formula.statement, formula.tape, numbers)
             if key in seen:
                 continue
             seen.add(key)
+            formula = merged(replace(formula, quantities=numbers))
         formulas.append(formula)
         stands_for.append(number)
         physical += is_physical
@@ -81,11 +82,3 @@ def _everything(system: EquationSystem) -> Iterator[tuple[int, Formula, bool]]:
         yield -1, limit.formula, False
     for formula in system.shows:
         yield -1, formula, False
-
-
-def _of_families(formula: Formula, families: tuple[int, ...]) -> Formula:
-    return merged(replace(formula, quantities=tuple([families[q] for q in formula.quantities])))
-
-
-def _literal_dimensions(formula: Formula) -> tuple[object, ...]:
-    return tuple([(literal.dimension, literal.kind) for literal in formula.literals])

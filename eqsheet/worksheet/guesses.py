@@ -5,10 +5,13 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
+from functools import lru_cache
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
+from eqsheet.model.branches import quantities_under
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.system import EquationSystem, GuessItem, Place
+from eqsheet.model.tape import Tape
 from eqsheet.worksheet.places import quoted, span_of
 
 
@@ -67,10 +70,11 @@ def _values(
     diagnostics: list[Diagnostic],
 ) -> tuple[float, ...]:
     formula = item.formula
+    used = _slots_used(formula.tape)
     unknown = [
         system.names[q]
         for slot, q in enumerate(formula.quantities)
-        if q not in known_values and not _is_only_target(item, slot)
+        if q not in known_values and (q != item.quantity or slot in used)
     ]
     here = Label(span_of(system, item.place))
     if unknown:
@@ -95,15 +99,10 @@ def _values(
     return found
 
 
-def _is_only_target(item: GuessItem, slot: int) -> bool:
-    """Whether the slot is the guess's own quantity and no output needs it."""
-    formula = item.formula
-    if formula.quantities[slot] != item.quantity:
-        return False
-    from eqsheet.model.tape import extract
-
-    needed = extract(formula, formula.tape.outputs)
-    return item.quantity not in needed.quantities
+@lru_cache(maxsize=4096)
+def _slots_used(tape: Tape) -> frozenset[int]:
+    """Quantities of the tape that its outputs depend on, by slot."""
+    return frozenset().union(*(quantities_under(tape, o) for o in tape.outputs))
 
 
 def _check_ranges(
