@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
@@ -112,4 +113,16 @@ def without_echoes(
     own = {id(diagnostic) for diagnostic in told}
     echoes = {(diagnostic.code, diagnostic.message) for diagnostic in told}
     echoes |= {("unknown-function", f"there is no function `{name}`") for name in lost}
-    return tuple([d for d in diagnostics if id(d) in own or (d.code, d.message) not in echoes])
+    # The same slip in a line without such a use is a slip of its own.
+    named = [s.node.name for s in statements if isinstance(s.node, syntax.Definition)]
+    uses = re.compile(rf"({'|'.join(map(re.escape, named))})\s*(\(|$)")
+    return tuple(
+        [
+            d
+            for d in diagnostics
+            if id(d) in own
+            or (d.code, d.message) not in echoes
+            or d.span is None
+            or not uses.match(d.span.text)
+        ]
+    )
