@@ -148,7 +148,7 @@ def _power(instruction: Any, v: Array, values: Any, sizes: Any, bounds: Any) -> 
     ratio = np.where(base > 0.0, sizes[a] / base, 1.0)
     own = np.abs(v) * np.power(ratio, abs(r))
     size = np.where(v == 0.0, np.power(sizes[a], r) if r > 0 else 0.0, own)
-    inexact = 0.0
+    inexact: Any = 0.0
     if r != exponent:
         inexact = np.where(base > 0.0, np.abs(r * v * np.log(base)) * ROUNDING, 0.0)
     return size, _product(slope, bounds[a]) + _rounding(v, 4.0) + inexact

@@ -14,8 +14,8 @@ import numpy as np
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.families import Family, FamilyReference, Numbering, with_fixed, written_name
 from eqsheet.model.indexing import Codes, Domain, Indexing, IndexSlip, member_text, placed, subscript
-from eqsheet.model.lower import NameTable, OfInstance
 from eqsheet.model.placed import Placed
+from eqsheet.model.scope import NameTable, OfInstance
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import Formula, Instruction, Tape, TapeBuilder, interned, operands_of
 from eqsheet.syntax import nodes as syntax

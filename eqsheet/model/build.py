@@ -14,7 +14,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
 from eqsheet.model.bind import Binder, Bound, Unbound, entry_text, member_formulas, resolved_key
 from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
 from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, whole_number
-from eqsheet.model.lower import Context, IndexScope, NameTable, NeedsMembers, OfInstance, names_in
+from eqsheet.model.lower import NeedsMembers
 from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
 from eqsheet.model.lower_statements import (
     GuessMeant,
@@ -25,6 +25,7 @@ from eqsheet.model.lower_statements import (
     lower_show,
 )
 from eqsheet.model.placed import Placed, place_statements
+from eqsheet.model.scope import Context, IndexScope, NameTable, OfInstance
 from eqsheet.model.system import (
     EquationItem,
     EquationSystem,
@@ -38,6 +39,7 @@ from eqsheet.model.tables import CellKnown, TableColumn, Tables, collect_tables
 from eqsheet.model.tape import Formula, TapeBuilder
 from eqsheet.model.unit_statements import collect_units
 from eqsheet.model.value_of_known import known_value
+from eqsheet.model.written_nodes import names_in
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.unit import Unit
 

@@ -7,20 +7,23 @@ the way, and findings. Quantities keep provisional numbers from a `NameTable`.
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterable, Mapping
-from dataclasses import dataclass, field, replace
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, replace
 from fractions import Fraction
-from typing import Any, Never, TypeAlias
+from typing import Any, Never
 
+from eqsheet.model.exact import exact_value
 from eqsheet.model.families import FamilyReference, with_fixed
 from eqsheet.model.findings import Finding
-from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown
+from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown
+from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
+from eqsheet.model.written_nodes import canonical, names_in
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.constants import constant, constant_names
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
-from eqsheet.units.registry import UnitProblem, UnitTable
+from eqsheet.units.registry import UnitProblem
 from eqsheet.units.unit import Unit
 
 Place2 = tuple[int, int]
@@ -28,9 +31,6 @@ Place2 = tuple[int, int]
 # Whole numbers up to this size are part of a formula's shape (the 2 in x^2/2, the 4 in 4*pi); larger ones and
 # decimals are data, so that formulas that differ only in data share one tape.
 LARGEST_STRUCTURAL_INTEGER = 12
-# Exponents beyond this size or denominator are not physics; they are computed in floats, which keeps exact
-# arithmetic on the worksheet's numbers bounded.
-LARGEST_EXACT_EXPONENT = 1000
 # A definition that calls definitions can write out to exponential size; this many instructions are refused.
 LARGEST_FORMULA = 20_000
 
@@ -39,60 +39,6 @@ AGGREGATE_NAMES = frozenset(("sum", "prod"))
 TRUTH_OPERATIONS = frozenset(("lt", "le", "eq", "and", "or", "not"))
 _TEMPERATURE = Dimension.of({"K": 1})
 _PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
-
-
-@dataclass(frozen=True, slots=True)
-class OfInstance:
-    """A quantity of the instance whose group a line stands in, as against one of the worksheet around it."""
-
-    key: str | FamilyReference
-
-
-QuantityKey: TypeAlias = str | FamilyReference | OfInstance
-
-
-class NameTable:
-    """Provisional numbers for quantities as referred to, in order of first sight."""
-
-    def __init__(self) -> None:
-        self.numbers: dict[QuantityKey, int] = {}
-        self.names: list[QuantityKey] = []
-
-    def number(self, name: QuantityKey) -> int:
-        """The number of `name`, given now if it has none."""
-        number = self.numbers.get(name)
-        if number is None:
-            number = self.numbers[name] = len(self.names)
-            self.names.append(name)
-        return number
-
-
-@dataclass(frozen=True)
-class Context:
-    """What expressions are read against: units in force, definitions by name, and what subscripts refer to."""
-
-    unit_table: UnitTable
-    definitions: Mapping[str, syntax.Statement] = field(default_factory=dict)
-    indexing: Indexing = field(default_factory=Indexing)
-
-
-@dataclass(frozen=True)
-class IndexScope:
-    """The indices in force at a statement.
-
-    Attributes
-    ----------
-    free : mapping of str to str
-        Indices that run over a domain, with their sets (empty: whole numbers); one formula serves all members.
-    fixed : mapping of str to (int, str)
-        Indices that have one member here: code and set.
-    """
-
-    free: Mapping[str, str] = field(default_factory=dict)
-    fixed: Mapping[str, tuple[int, str]] = field(default_factory=dict)
-
-
-NO_INDICES = IndexScope()
 
 
 class NeedsMembers(Exception):
@@ -582,41 +528,6 @@ class Lowering:
         return f"if `{symbol}` is a quantity, {cure}; if it is meant as a unit, {problem.help}"
 
 
-def canonical(node: syntax.Expression, fixed: Mapping[str, tuple[int, str]]) -> str:
-    """A subscript as text that is the same for the same meaning in one place: fixed indices by their members."""
-    match node:
-        case syntax.Number():
-            return f"-{node.text}" if node.negated else node.text
-        case syntax.Text():
-            return f'"{node.value}"'
-        case syntax.Reference():
-            if node.dotted in fixed:
-                code, set_name = fixed[node.dotted]
-                return f"{set_name}#{code}"
-            inner = "" if node.subscripts is None else ",".join(canonical(s, fixed) for s in node.subscripts)
-            return f"{node.dotted}[{inner}]" if inner else node.dotted
-        case syntax.Unary():
-            return f"{node.operator}({canonical(node.operand, fixed)})"
-        case syntax.Binary():
-            return f"({canonical(node.left, fixed)}{node.operator}{canonical(node.right, fixed)})"
-    return f"{node.start}:{node.end}"
-
-
-def names_in(nodes: Iterable[object]) -> set[str]:
-    """All plain names that occur in some nodes of the tree."""
-    found: set[str] = set()
-    stack = list(nodes)
-    while stack:
-        node = stack.pop()
-        if isinstance(node, syntax.Reference) and node.owner is None:
-            found.add(node.name)
-        if isinstance(node, tuple):
-            stack.extend(node)
-        elif hasattr(node, "__dataclass_fields__"):
-            stack.extend(getattr(node, name) for name in node.__dataclass_fields__)
-    return found
-
-
 def kind_of(unit: Unit) -> str:
     """The kind of a literal in `unit`: see `Literal.kind`."""
     if unit.reading:
@@ -624,42 +535,6 @@ def kind_of(unit: Unit) -> str:
     if unit.difference:
         return "difference"
     return "absolute" if unit.dimension in (_TEMPERATURE, _PRESSURE) else "plain"
-
-
-def exact_value(node: syntax.Expression) -> Fraction | None:
-    """Exact value of an expression of plain numbers, None if it is anything else or beyond physics.
-
-    Constant arithmetic in exponents is exact, so that ``x^(2/3)`` has an exact dimension.
-    """
-    value = _exact(node)
-    if value is None or abs(value) > LARGEST_EXACT_EXPONENT or value.denominator > LARGEST_EXACT_EXPONENT:
-        return None
-    return value
-
-
-def _exact(node: syntax.Expression) -> Fraction | None:
-    if isinstance(node, syntax.Number):
-        if node.unit is not None or abs(_decimal_exponent(node.text)) > 9 or len(node.text) > 30:
-            return None
-        return Fraction(node.text)
-    if isinstance(node, syntax.Unary) and node.operator in "+-":
-        operand = exact_value(node.operand)
-        return operand if operand is None or node.operator == "+" else -operand
-    if isinstance(node, syntax.Binary):
-        a, b = exact_value(node.left), exact_value(node.right)
-        if a is None or b is None:
-            return None
-        if node.operator == "/":
-            return None if b == 0 else a / b
-        if node.operator == "^":
-            return None
-        return {"+": a + b, "-": a - b, "*": a * b}[node.operator]
-    return None
-
-
-def _decimal_exponent(text: str) -> int:
-    _, _, exponent = text.lower().partition("e")
-    return int(exponent[:8]) if exponent else 0
 
 
 def _short(text: str) -> str:

@@ -7,7 +7,8 @@ from collections.abc import Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.findings import Finding
-from eqsheet.model.lower import AGGREGATE_NAMES, FUNCTION_NAMES, Context, Lowering, NameTable, Poisoned
+from eqsheet.model.lower import AGGREGATE_NAMES, FUNCTION_NAMES, Lowering, Poisoned
+from eqsheet.model.scope import Context, NameTable
 from eqsheet.syntax import nodes as syntax
 
 

@@ -16,19 +16,11 @@ from eqsheet.model.branches import literal_values
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.families import FamilyReference
 from eqsheet.model.findings import Finding
-from eqsheet.model.lower import (
-    FUNCTION_NAMES,
-    NO_INDICES,
-    Context,
-    IndexScope,
-    Lowering,
-    NameTable,
-    Poisoned,
-    canonical,
-    kind_of,
-)
+from eqsheet.model.lower import FUNCTION_NAMES, Lowering, Poisoned, kind_of
+from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable
 from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
 from eqsheet.model.tape import Formula, Literal, extract
+from eqsheet.model.written_nodes import canonical
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.unit import Unit

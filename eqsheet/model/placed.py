@@ -11,9 +11,9 @@ from dataclasses import dataclass, field
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.families import FamilyReference, Path
-from eqsheet.model.lower import canonical
 from eqsheet.model.lower_statements import known_name
 from eqsheet.model.spelling import did_you_mean
+from eqsheet.model.written_nodes import canonical
 from eqsheet.syntax import nodes as syntax
 
 # Templates inside templates multiply; more statements than this are a slip.

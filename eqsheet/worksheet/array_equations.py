@@ -129,7 +129,7 @@ class ArrayBlock:
         for shape, _, _ in self._parts:
             numbers = shape.quantities.T
             found = evaluate_arrays_with_evidence(
-                shape.tape, values[numbers], shape.literals, errors[numbers], len(shape.rows)
+                shape.tape, tuple(values[numbers]), shape.literals, tuple(errors[numbers]), len(shape.rows)
             )
             residuals[shape.rows] = found.values[0] - found.values[1]
             sizes[shape.rows] = np.maximum(found.sizes[0], found.sizes[1])

@@ -1,0 +1,66 @@
+"""What names mean while statements are lowered: units, definitions, indices, and numbers for quantities."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from typing import TypeAlias
+
+from eqsheet.model.families import FamilyReference
+from eqsheet.model.indexing import Indexing
+from eqsheet.syntax import nodes as syntax
+from eqsheet.units.registry import UnitTable
+
+
+@dataclass(frozen=True, slots=True)
+class OfInstance:
+    """A quantity of the instance whose group a line stands in, as against one of the worksheet around it."""
+
+    key: str | FamilyReference
+
+
+QuantityKey: TypeAlias = str | FamilyReference | OfInstance
+
+
+class NameTable:
+    """Provisional numbers for quantities as referred to, in order of first sight."""
+
+    def __init__(self) -> None:
+        self.numbers: dict[QuantityKey, int] = {}
+        self.names: list[QuantityKey] = []
+
+    def number(self, name: QuantityKey) -> int:
+        """The number of `name`, given now if it has none."""
+        number = self.numbers.get(name)
+        if number is None:
+            number = self.numbers[name] = len(self.names)
+            self.names.append(name)
+        return number
+
+
+@dataclass(frozen=True)
+class Context:
+    """What expressions are read against: units in force, definitions by name, and what subscripts refer to."""
+
+    unit_table: UnitTable
+    definitions: Mapping[str, syntax.Statement] = field(default_factory=dict)
+    indexing: Indexing = field(default_factory=Indexing)
+
+
+@dataclass(frozen=True)
+class IndexScope:
+    """The indices in force at a statement.
+
+    Attributes
+    ----------
+    free : mapping of str to str
+        Indices that run over a domain, with their sets (empty: whole numbers); one formula serves all members.
+    fixed : mapping of str to (int, str)
+        Indices that have one member here: code and set.
+    """
+
+    free: Mapping[str, str] = field(default_factory=dict)
+    fixed: Mapping[str, tuple[int, str]] = field(default_factory=dict)
+
+
+NO_INDICES = IndexScope()

@@ -1,0 +1,42 @@
+"""Syntax nodes as they are written: names they hold, and subscripts as text that tells them apart."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping
+
+from eqsheet.syntax import nodes as syntax
+
+
+def canonical(node: syntax.Expression, fixed: Mapping[str, tuple[int, str]]) -> str:
+    """A subscript as text that is the same for the same meaning in one place: fixed indices by their members."""
+    match node:
+        case syntax.Number():
+            return f"-{node.text}" if node.negated else node.text
+        case syntax.Text():
+            return f'"{node.value}"'
+        case syntax.Reference():
+            if node.dotted in fixed:
+                code, set_name = fixed[node.dotted]
+                return f"{set_name}#{code}"
+            inner = "" if node.subscripts is None else ",".join(canonical(s, fixed) for s in node.subscripts)
+            return f"{node.dotted}[{inner}]" if inner else node.dotted
+        case syntax.Unary():
+            return f"{node.operator}({canonical(node.operand, fixed)})"
+        case syntax.Binary():
+            return f"({canonical(node.left, fixed)}{node.operator}{canonical(node.right, fixed)})"
+    return f"{node.start}:{node.end}"
+
+
+def names_in(nodes: Iterable[object]) -> set[str]:
+    """All plain names that occur in some nodes of the tree."""
+    found: set[str] = set()
+    stack = list(nodes)
+    while stack:
+        node = stack.pop()
+        if isinstance(node, syntax.Reference) and node.owner is None:
+            found.add(node.name)
+        if isinstance(node, tuple):
+            stack.extend(node)
+        elif hasattr(node, "__dataclass_fields__"):
+            stack.extend(getattr(node, name) for name in node.__dataclass_fields__)
+    return found
