@@ -221,7 +221,9 @@ class FamilyCollector:
         return Numbering(numbers, families, first)
 
     def _family(self, path: Path, first: int) -> Family | None:
-        codes = _unique(np.concatenate(self._members[path]))
+        gathered = self._members[path]
+        # A path stands here without members where all its references are wrong, which is said where they stand.
+        codes = _unique(np.concatenate(gathered)) if gathered else np.zeros((0, 0), dtype=np.int64)
         if not len(codes):
             return None
         sets = tuple(s or "" for s in self.sets.get(path, []))

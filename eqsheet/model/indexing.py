@@ -309,7 +309,7 @@ def _holds(node: syntax.Expression, domain: Domain, indexing: Indexing) -> NDArr
         case syntax.Unary() if node.operator == "not":
             return np.logical_not(_holds(node.operand, domain, indexing))
         case syntax.Comparison():
-            operands = [subscript(operand, domain, indexing) for operand in node.operands]
+            operands = [_compared(operand, domain, indexing) for operand in node.operands]
             result = np.asarray(True)
             for operator, a, b, node_a, node_b in zip(
                 node.operators, operands, operands[1:], node.operands, node.operands[1:]
@@ -319,6 +319,21 @@ def _holds(node: syntax.Expression, domain: Domain, indexing: Indexing) -> NDArr
                 result = np.logical_and(result, _COMPARE[operator](left, right))
             return result
     raise IndexSlip("filter-form", "a filter compares indices, members and whole-number knowns", node)
+
+
+def _compared(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Indices:
+    if (
+        isinstance(node, syntax.Reference)
+        and node.subscripts is not None
+        and node.dotted not in indexing.columns
+    ):
+        raise IndexSlip(
+            "filter-form",
+            f"`{node.dotted}` is a quantity, and which members there are cannot depend on its value",
+            node,
+            "a filter compares indices, members and whole-number knowns",
+        )
+    return subscript(node, domain, indexing)
 
 
 _COMPARE = {

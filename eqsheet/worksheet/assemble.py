@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from types import MappingProxyType
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, Severity, note
@@ -46,7 +46,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         }
     if prepared.system.uses_gauge:
         diagnostics.append(_ambient_note(prepared.system))
-    diagnostics = _distinct(diagnostics)
+    diagnostics = _distinct(diagnostics, prepared.system.names)
     return Solution(
         name,
         _status(diagnostics, limits),
@@ -69,9 +69,9 @@ def _status(diagnostics: list[Diagnostic], limits: tuple[LimitReport, ...]) -> s
     return "solved" if all(limit.holds for limit in limits) else "outside-limits"
 
 
-def _distinct(diagnostics: list[Diagnostic]) -> list[Diagnostic]:
+def _distinct(diagnostics: list[Diagnostic], names: Sequence[str]) -> list[Diagnostic]:
     """Each diagnostic once, errors first, then by place."""
-    unique = fold_alike(list(dict.fromkeys(diagnostics)))
+    unique = fold_alike(list(dict.fromkeys(diagnostics)), names)
 
     def key(diagnostic: Diagnostic) -> tuple[int, bool, int]:
         span = diagnostic.span

@@ -12,6 +12,7 @@ from dataclasses import dataclass, field
 from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
 from eqsheet.model.branches import settle
 from eqsheet.model.build import LoweredCache, build_system
+from eqsheet.model.dimension_messages import OPEN
 from eqsheet.model.family_units import check_units_by_family
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
@@ -88,7 +89,7 @@ def prepare(
     system, found = build_system(statements, cache, freed)
     diagnostics = [*earlier, *found]
     units = check_units_by_family(system)
-    diagnostics += units.diagnostics
+    diagnostics += _of_a_whole(units.diagnostics, diagnostics)
     known_values: dict[int, float] = {}
     setters: dict[int, int] = {}
     for number, item in enumerate(system.equations):
@@ -120,3 +121,9 @@ def prepare(
         timing,
         checked.contested,
     )
+
+
+def _of_a_whole(found: Sequence[Diagnostic], earlier: Sequence[Diagnostic]) -> list[Diagnostic]:
+    """The findings on units, without those on open dimensions where a broken statement may have fixed them."""
+    broken = any(d.severity is Severity.ERROR for d in (*earlier, *found))
+    return [d for d in found if not broken or d.code != OPEN]

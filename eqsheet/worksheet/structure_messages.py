@@ -59,11 +59,12 @@ def shortfall_diagnostic(
     else:
         message = f"nothing determines {quoted(names)}"
     labels = [label_of(system, system.first_places[shortfall.columns[0]])]
-    labels += [
+    others = dict.fromkeys(
         label_of(system, i.place)
-        for i in items[:MOST_LABELS]
+        for i in items
         if i.place.statement != system.first_places[shortfall.columns[0]].statement
-    ]
+    )
+    labels += list(others)[:MOST_LABELS]
     notes = []
     if singular:
         notes.append(
@@ -89,7 +90,8 @@ def _likely_slips(
     once = [c for shortfall in shortfalls for c in shortfall.columns if uses[c] == 1]
     found: dict[int, str] = {}
     for column in once[:MOST_SPELLED]:
-        close = close_names(system.names[column], system.names)
+        # Members of one family are alike by design, and an index is no slip.
+        close = close_names(system.names[column], system.names) if "[" not in system.names[column] else ()
         if close:
             place = line_words(system, (system.first_places[column],))
             found[column] = (
@@ -118,7 +120,8 @@ def conflict_diagnostic(
     many = f"{len(items)} statements for {len(names)} quantit{'y' if len(names) == 1 else 'ies'}"
     left_out = [system.equations[rows[r]] for r in conflict.left_out]
     labels = [label_of(system, left_out[0].place, "this is one too many" if satisfied is not True else "")]
-    labels += [label_of(system, i.place) for i in items if i is not left_out[0]][:MOST_LABELS]
+    others = dict.fromkeys(label_of(system, i.place) for i in items if i.place != left_out[0].place)
+    labels += list(others)[:MOST_LABELS]
     notes = [f"they compete for {quoted(names)}"]
     if gap:
         notes.append(gap)
