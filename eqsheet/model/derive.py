@@ -7,7 +7,8 @@ is written by a `Simplifier`, which shares what value and derivatives have in co
 
 Where the derivative does not exist, one is chosen that keeps Newton's method alive: 0 for ``abs``, ``sign``
 and ``hypot`` at their kink; that of the first argument for ``min`` and ``max`` of equal numbers; that of the
-branch taken for ``if``. The derivative of ``sqrt`` at 0 is infinite.
+branch taken for ``if``; that to the right at a corner of a curve; 0 for a curve by steps. The derivative of
+``sqrt`` at 0 is infinite.
 """
 
 from __future__ import annotations
@@ -16,6 +17,7 @@ import math
 from collections.abc import Callable, Sequence
 from fractions import Fraction
 from functools import lru_cache
+from typing import Any
 
 from eqsheet.model.simplify import ARITY, Simplifier
 from eqsheet.model.tape import Tape
@@ -254,6 +256,16 @@ def _attach(g: _Gradient, v: int, adjoint: int, a: int, unit: object) -> None:
     g.give(a, g.writer.mul(adjoint, g.writer.constant(_factor(unit))))
 
 
+def _interpolated(g: _Gradient, v: int, adjoint: int, *operands: Any) -> None:
+    *arguments, interpolant = operands
+    if interpolant.is_stepped:
+        return
+    operation = g.writer.instructions[v][0]
+    for a, slope in zip(arguments, interpolant.partials):
+        if g.depends[a]:
+            g.give(a, g.writer.mul(adjoint, g.writer.put(operation, *arguments, slope)))
+
+
 def _factor(unit: object) -> float:
     factor: float = unit.factor  # type: ignore[attr-defined]  # a Unit, by the contract of a tape
     return factor
@@ -275,6 +287,8 @@ _RULES: dict[str, Callable[..., None]] = {
     "logmean": _logmean,
     "strip": _strip,
     "attach": _attach,
+    "curve": _interpolated,
+    "surface": _interpolated,
 }
 
 

@@ -57,4 +57,7 @@ def _of(
     if operation == "attach":
         unit: Unit = rest[1]
         return unit.dimension
+    if operation in ("curve", "surface"):
+        dimension: Dimension = rest[-1].heading.dimension
+        return dimension
     return DIMENSIONLESS

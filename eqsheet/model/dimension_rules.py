@@ -12,6 +12,7 @@ from fractions import Fraction
 from functools import lru_cache
 from typing import TypeAlias
 
+from eqsheet.model.interpolant import Heading
 from eqsheet.model.tape import Instruction, Tape
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.unit import Unit
@@ -254,6 +255,14 @@ def _attach(reader: _Reader, instruction: Instruction, owner: int) -> Form:
     return fixed(unit.dimension)
 
 
+def _interpolated(reader: _Reader, instruction: Instruction, owner: int) -> Form:
+    _, *arguments, interpolant = instruction
+    heading: Heading = interpolant.heading
+    for argument, dimension in zip(arguments, heading.dimensions):
+        reader.has(argument, dimension, heading.name, owner)
+    return fixed(heading.dimension)
+
+
 def _plain(reader: _Reader, instruction: Instruction, owner: int) -> Form:
     return PLAIN
 
@@ -270,6 +279,8 @@ _RULES: dict[str, _Rule] = {
     "if": _if,
     "strip": _strip,
     "attach": _attach,
+    "curve": _interpolated,
+    "surface": _interpolated,
     "sign": _plain,
     "and": _plain,
     "or": _plain,

@@ -14,8 +14,11 @@ from fractions import Fraction
 from typing import Any
 
 from eqsheet.model.functions import BINARY, UNARY, as_float
+from eqsheet.model.interpolant import INVERSE_SLOPE, Interpolant
+from eqsheet.model.interpolation import rounding_scale, value_or_nan
 from eqsheet.model.tape import Tape, operands_of
 
+_INTERPOLATED = frozenset(("curve", "surface"))
 # Half the spacing of floats around 1: the largest relative error of one rounding.
 ROUNDING = 2.0**-53
 # Below the normal range a rounding is bounded by this instead.
@@ -45,6 +48,8 @@ def evaluate(tape: Tape, quantities: Sequence[float], literals: Sequence[float])
             values.append(as_float(instruction[1]))
         elif operation in _OF_ATTRIBUTE:
             values.append(_OF_ATTRIBUTE[operation](values[instruction[1]], instruction[2]))
+        elif operation in _INTERPOLATED:
+            values.append(value_or_nan(instruction[-1], *[values[i] for i in instruction[1:-1]]))
         else:
             values.append(_STEPS[operation](*[values[i] for i in instruction[1:]]))
     return values
@@ -73,6 +78,8 @@ def evaluate_arrays(tape: Tape, quantities: Sequence[Any], literals: Sequence[An
                 values.append((values[instruction[1]] - instruction[2].origin) / instruction[2].factor)
             elif operation == "attach":
                 values.append(values[instruction[1]] * instruction[2].factor + instruction[2].origin)
+            elif operation in _INTERPOLATED:
+                values.append(instruction[-1].array_function(*[values[i] for i in instruction[1:-1]]))
             else:
                 values.append(steps[operation](*[values[i] for i in instruction[1:]]))
     return values
@@ -288,6 +295,11 @@ def evaluate_with_evidence(
         elif operation in ("power", "strip", "attach"):
             a = instruction[1]
             size, error = _EVIDENCE[operation](v, values[a], sizes[a], bounds[a], instruction[2])
+        elif operation in _INTERPOLATED:
+            operands = instruction[1:-1]
+            size, error = _interpolated_evidence(
+                v, instruction[-1], *([part[a] for a in operands] for part in (values, sizes, bounds))
+            )
         elif operation == "if":
             _, c, a, b = instruction
             chosen = a if values[c] else b
@@ -305,6 +317,9 @@ def evaluate_with_evidence(
 
 
 _TRUTH = frozenset({"lt", "le", "eq", "and", "or", "not"})
+# Roundings of a curve in units of 2^-53 of the sizes of its terms: four products and sums, and the distance
+# from the point before.
+_CURVE_UNITS = 16.0
 
 
 def _is_exact(constant: Any, value: float) -> bool:
@@ -335,6 +350,22 @@ def _unary_evidence(operation: str, v: float, a: float, size: float, error: floa
     except (ValueError, ZeroDivisionError, OverflowError):
         slope = math.inf
     return max(abs(v), _product(slope, size)), _product(slope, error) + _rounding(v, function.units)
+
+
+def _interpolated_evidence(
+    v: float, interpolant: Interpolant, arguments: list[float], sizes: list[float], errors: list[float]
+) -> tuple[float, float]:
+    size, error = abs(v), _rounding(rounding_scale(interpolant, *arguments), _CURVE_UNITS)
+    if interpolant.is_stepped:
+        return size, error
+    if interpolant.shape == INVERSE_SLOPE:
+        # Written on derivative tapes only, as `_of_logmean_slope`.
+        return size, math.inf if any(errors) else error
+    for slope, own_size, own_error in zip(interpolant.partials, sizes, errors):
+        steepness = abs(value_or_nan(slope, *arguments))
+        size = max(size, _product(steepness, own_size))
+        error += _product(steepness, own_error)
+    return size, error
 
 
 def _safe_power(v: float, ratio: float, r: float, size: float) -> float:

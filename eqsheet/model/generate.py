@@ -20,6 +20,7 @@ from typing import Any
 from eqsheet.model.derive import jacobian
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.functions import ALL_BINARY_FUNCTIONS, ALL_UNARY_FUNCTIONS, BINARY, UNARY, as_float
+from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.simplify import Simplifier, uses
 from eqsheet.model.tape import Tape, operands_of
 
@@ -45,7 +46,8 @@ def float_function(tape: Tape) -> Function:
         the outputs, or the output itself where there is only one. It raises one of `DOMAIN_ERRORS` where an
         instruction needed has no value.
     """
-    return _compiled(_head(tape), _Code(tape, _SCALAR).lines(_packed), _scalar_names())
+    code = _Code(tape, _SCALAR)
+    return _compiled(_head(tape), code.lines(_packed), code.names(_scalar_names()))
 
 
 @lru_cache(maxsize=MEMORY)
@@ -102,8 +104,9 @@ def array_function(tape: Tape) -> Function:
         An output that depends on no argument is a float. nan and infinities where there is no value; never
         raises.
     """
-    lines = ["with errstate(all='ignore'):", *(" " + line for line in _Code(tape, _ARRAY).lines(_packed))]
-    return _compiled(_head(tape), lines, _array_names())
+    code = _Code(tape, _ARRAY)
+    lines = ["with errstate(all='ignore'):", *(" " + line for line in code.lines(_packed))]
+    return _compiled(_head(tape), lines, code.names(_array_names()))
 
 
 def block_functions(
@@ -171,7 +174,8 @@ def _block_function(shapes: tuple[tuple[Tape, tuple[int, ...]], ...], unknowns: 
     rest = [f"q{k}" for k in range(unknowns, unknowns + known)] + [f"l{k}" for k in range(literals)]
     if rest:
         lines.append(f"{_tuple(rest)}=p")
-    return _compiled("x,p", lines + _Code(tape, _SCALAR).lines(pair), _scalar_names())
+    code = _Code(tape, _SCALAR)
+    return _compiled("x,p", lines + code.lines(pair), code.names(_scalar_names()))
 
 
 # --- writing ----------------------------------------------------------------------------------------------
@@ -288,6 +292,17 @@ class _Code:
         self.text: list[str] = [""] * len(self.instructions)
         self.depth = [0] * len(self.instructions)
         self.tightness = [_ATOM] * len(self.instructions)
+        self.interpolants: dict[Interpolant, str] = {}
+
+    def names(self, common: dict[str, Any]) -> dict[str, Any]:
+        """What the statements refer to: the functions common to all, and the curves of this tape."""
+        if not self.interpolants:
+            return common
+        own = {
+            name: f.function if self.patterns is _SCALAR else f.array_function
+            for f, name in self.interpolants.items()
+        }
+        return {**common, **own}
 
     def lines(self, result: Callable[[list[str]], str]) -> list[str]:
         """The statements, the last of them returning ``result(texts of the outputs)``."""
@@ -333,8 +348,11 @@ class _Code:
         return body
 
     def _special(self, instruction: tuple[Any, ...]) -> tuple[str, int]:
-        """Text of a power, a unit's conversion or an ``if``, and how tightly it holds together."""
+        """Text of a power, a unit's conversion, a curve or an ``if``, and how tightly it holds together."""
         operation = instruction[0]
+        if operation in ("curve", "surface"):
+            name = self.interpolants.setdefault(instruction[-1], f"c{len(self.interpolants)}")
+            return f"{name}({','.join([self.text[a] for a in instruction[1:-1]])})", _ATOM
         a = self._bracketed(instruction[1])
         if operation == "power":
             r = instruction[2]

@@ -15,6 +15,8 @@ from fractions import Fraction
 from functools import lru_cache
 from typing import Any
 
+from eqsheet.model.interpolant import Interpolant
+from eqsheet.model.interpolation import slack
 from eqsheet.model.simplify import Simplifier, uses
 from eqsheet.model.tape import Tape, operands_of
 
@@ -53,7 +55,8 @@ def isolate(tape: Tape, k: int) -> Isolation | None:
     """Closed forms of quantity `k` from a tape with the outputs (left, right).
 
     None where the quantity does not occur exactly once, stands inside ``if``, ``min``, ``max``, ``sign``,
-    ``erf``, ``gamma`` or ``logmean``, or there would be too many candidates.
+    ``erf``, ``gamma`` or ``logmean``, in a surface or in a curve that is level somewhere, or there would be too
+    many candidates. A curve that turns has one inverse for each monotone run.
 
     >>> from eqsheet.model.tape import TapeBuilder
     >>> b = TapeBuilder()
@@ -76,7 +79,7 @@ def isolate(tape: Tape, k: int) -> Isolation | None:
             return None
         others = [new[j] if isinstance(j, int) and p != position else j for p, j in enumerate(rest)]
         branches = [inner for branch in branches for inner in inverse(writer, branch, *others)]
-        if len(branches) > _MOST_CANDIDATES:
+        if not 0 < len(branches) <= _MOST_CANDIDATES:
             return None
     return Isolation(tuple(_candidate(writer, branch, tape) for branch in branches))
 
@@ -263,6 +266,16 @@ def _of_hypot(w: Simplifier, b: _Branch, other: int) -> list[_Branch]:
     return [b.to(root, condition), b.to(w.neg(root), condition)]
 
 
+def _of_curve(w: Simplifier, b: _Branch, a: int, curve: Interpolant) -> list[_Branch]:
+    found = []
+    for inverse in curve.inverses:
+        (values,) = inverse.axes
+        room = slack(values)
+        condition = _within(w, values[0] - room, b.target, values[-1] + room)
+        found.append(b.to(w.put("curve", b.target, inverse), condition))
+    return found
+
+
 def _of_angle_height(w: Simplifier, b: _Branch, y: int, x: int) -> list[_Branch]:
     # Genuine where the angle lies on the side of the y axis that x is on.
     same_side = w.put("lt", w.zero, w.mul(w.function("cos", b.target), x))
@@ -310,4 +323,5 @@ _INVERSES: dict[tuple[str, int], _Inverse] = {
     ("hypot", 1): lambda w, b, x, y: _of_hypot(w, b, x),
     ("atan2", 0): _of_angle_height,
     ("atan2", 1): _of_angle_width,
+    ("curve", 0): _of_curve,
 }

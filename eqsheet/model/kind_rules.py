@@ -17,6 +17,7 @@ from fractions import Fraction
 
 from eqsheet.model.dimension_propagation import evaluate
 from eqsheet.model.dimension_rules import rules_of
+from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.kind_weights import (
     DIFFERENCE,
     ONE,
@@ -125,6 +126,12 @@ class KindShape:
                     found.append(Agreement(a, -1, owner, READING))
                 case "strip", [int(a), Unit() as unit] if unit.difference:
                     found.append(Agreement(a, -1, owner, DIFFERENCE))
+                case (("curve" | "surface"), [*arguments, Interpolant() as interpolant]):
+                    found += [
+                        Agreement(a, -1, owner, READING if unit.reading else DIFFERENCE)
+                        for a, unit in zip(arguments, interpolant.heading.units)
+                        if unit is not None and (unit.reading or unit.difference)
+                    ]
         apart = set(self.formula.differences)
         found.extend(Agreement(i, -1, -1, DIFFERENCE) for i in self.formula.differences)
         found.extend(Agreement(a, b, -1) for a, b in self.formula.alike if a not in apart and b not in apart)
@@ -193,6 +200,11 @@ class KindShape:
                 return ONE if kind == "reading" else ZERO if kind == "difference" else either
             case "attach", [_, Unit() as unit]:
                 return ONE if unit.reading else ZERO if unit.difference else either
+            case (("curve" | "surface"), [*_, Interpolant() as interpolant]):
+                result = interpolant.heading.unit
+                if result is None:
+                    return None
+                return ONE if result.reading else ZERO if result.difference else either
             case (("add" | "sub"), [int(a), int(b)]):
                 return self._added(a, b, 1 if operation == "add" else -1, weights)
             case "neg", [int(a)]:

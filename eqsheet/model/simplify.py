@@ -21,12 +21,13 @@ ONE = Fraction(1)
 # bound.
 _LARGEST_FOLDED_POWER = 16
 
-# Number of operands of each operation that are instructions; what follows them (a power, a unit) is not.
+# Number of operands of each operation that are instructions; what follows them (a power, a unit, an
+# interpolant) is not.
 ARITY: dict[Any, int] = {
     **dict.fromkeys(("quantity", "literal", "const"), 0),
-    **dict.fromkeys(("neg", "power", "strip", "attach", "not", *ALL_UNARY_FUNCTIONS), 1),
+    **dict.fromkeys(("neg", "power", "strip", "attach", "curve", "not", *ALL_UNARY_FUNCTIONS), 1),
     **dict.fromkeys(("add", "sub", "mul", "div", "pow", "lt", "le", "eq", "and", "or"), 2),
-    **dict.fromkeys(ALL_BINARY_FUNCTIONS, 2),
+    **dict.fromkeys(("surface", *ALL_BINARY_FUNCTIONS), 2),
     "if": 3,
 }
 
@@ -35,7 +36,7 @@ def renumbered(instruction: tuple[Any, ...], new: Sequence[int] | dict[int, int]
     """`instruction` with each operand i replaced by ``new[i]``; leaves are left alone."""
     count = ARITY[instruction[0]]
     if count == 2:
-        return (instruction[0], new[instruction[1]], new[instruction[2]])
+        return (instruction[0], new[instruction[1]], new[instruction[2]], *instruction[3:])
     if count == 1:
         return (instruction[0], new[instruction[1]], *instruction[2:])
     if count == 0:

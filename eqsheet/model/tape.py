@@ -22,6 +22,8 @@ Operations
                                         ``max`` of more arguments are nested
 ``("strip", a, unit)``                  plain number of a in `unit` (a `Unit`, not an index)
 ``("attach", a, unit)``                 quantity of the plain number a in `unit`
+``("curve", a, f)``                     value of a curve at a (f an `Interpolant`, not an index)
+``("surface", a, b, f)``                value of a surface at a and b (likewise)
 ``("lt", a, b)``, ``("le", a, b)``,     comparisons (a > b is written with swapped operands)
 ``("eq", a, b)``
 ``("and", a, b)``, ``("or", a, b)``,    on truth values
@@ -190,7 +192,7 @@ def extract(formula: Formula, outputs: tuple[int, ...]) -> Formula:
 
 
 _LEAVES = frozenset(("quantity", "literal", "const"))
-_ONE_OPERAND = frozenset(("power", "strip", "attach"))
+_ONE_OPERAND = frozenset(("power", "strip", "attach", "curve"))
 
 
 def operands_of(instruction: Instruction) -> tuple[int, ...]:
@@ -204,6 +206,8 @@ def operands_of(instruction: Instruction) -> tuple[int, ...]:
         return ()
     if operation in _ONE_OPERAND:
         return (instruction[1],)
+    if operation == "surface":
+        return instruction[1:3]
     return instruction[1:]
 
 
