@@ -11,8 +11,17 @@ from dataclasses import dataclass, field, replace
 from fnmatch import fnmatchcase
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
-from eqsheet.model.bind import Binder, Bound, Unbound, entry_text, member_formulas, resolved_key
+from eqsheet.model.bind import (
+    Binder,
+    Bound,
+    Unbound,
+    entry_text,
+    instance_name,
+    member_formulas,
+    resolved_key,
+)
 from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
+from eqsheet.model.findings import Finding
 from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, whole_number
 from eqsheet.model.lower import NeedsMembers
 from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
@@ -36,11 +45,13 @@ from eqsheet.model.system import (
     Validity,
 )
 from eqsheet.model.tables import CellKnown, TableColumn, Tables, collect_tables
-from eqsheet.model.tape import Formula, TapeBuilder
+from eqsheet.model.tape import Formula, Literal, TapeBuilder
 from eqsheet.model.unit_statements import collect_units
 from eqsheet.model.value_of_known import known_value
 from eqsheet.model.written_nodes import names_in
 from eqsheet.syntax import nodes as syntax
+from eqsheet.syntax.walk import walk
+from eqsheet.units.dimension import DIMENSIONLESS
 from eqsheet.units.unit import Unit
 
 _LOWER: dict[type, Callable[..., LoweredStatement]] = {
@@ -134,7 +145,8 @@ def build_system(
     told = [f.at(s) for s in definitions.values() for f in check_definition(s, context)]
     diagnostics += told
     numbered = _numbered(placed, tables)
-    work = _lower_all(placed, numbered, cache, indexing, diagnostics)
+    slips: list[tuple[Finding, syntax.Statement]] = []
+    work = _lower_all(placed, numbered, cache, indexing, slips, diagnostics)
     # A known switched off still tells in which unit its quantity is thought of.
     idle = [
         one
@@ -143,6 +155,9 @@ def build_system(
         if (one := cache.lowered(s, IndexScope(), False)) is not None
     ]
     system = _assemble(work, tables, idle, numbered, cache.names, context, freed, diagnostics)
+    if slips:
+        quantities = {name.partition("[")[0] for name in system.names}
+        diagnostics.extend(finding.at(statement, quantities) for finding, statement in slips)
     return system, without_echoes(diagnostics, told, used, definitions)
 
 
@@ -192,6 +207,7 @@ def _lower_all(
     numbered: Mapping[int, tuple[int, syntax.Statement]],
     cache: LoweredCache,
     indexing: Indexing,
+    slips: list[tuple[Finding, syntax.Statement]],
     diagnostics: list[Diagnostic],
 ) -> list[_Work]:
     work: list[_Work] = []
@@ -212,7 +228,7 @@ def _lower_all(
         if one is not None:
             if one.findings and id(statement) not in said:
                 said.add(id(statement))
-                diagnostics.extend(f.at(statement) for f in one.findings)
+                slips.extend((finding, statement) for finding in one.findings)
             work.append(_Work(place, number, domain, one))
             continue
         for entry in range(domain.size):
@@ -221,7 +237,7 @@ def _lower_all(
             assert one is not None
             if one.findings and id(statement) not in said:
                 said.add(id(statement))
-                diagnostics.extend(f.at(statement) for f in one.findings)
+                slips.extend((finding, statement) for finding in one.findings)
             work.append(_Work(place, number, domain.at(entry), one))
     return work
 
@@ -246,11 +262,22 @@ def _domain(
             for clause in head.clauses:
                 result = grown(result, clause, indexing)
             result = filtered(result, head.filter, indexing)
+            if not result.size and outer.size:
+                diagnostics.append(_empty_family(heads[-1]))
         except IndexSlip as slip:
             diagnostics.append(slip.finding.at(heads[-1]))
             result = None
     known[key] = result
     return result
+
+
+def _empty_family(head: syntax.Statement) -> Diagnostic:
+    return warning(
+        "empty-family",
+        "this family has no members",
+        Label(head.whole),
+        help="its lines are not used; check the range or the filter",
+    )
 
 
 def _assemble(
@@ -271,11 +298,13 @@ def _assemble(
         numbering, indexing, provisional, {i: n for i, (n, _) in numbered.items()}, broken, diagnostics
     )
     names = numbering.names(indexing)
+    _refuse_indices_like_quantities(work, numbering, diagnostics)
     gathered = _Gathered(names, statements)
     for column in tables.columns:
         _put_column(gathered, column, numbering, binder)
     for one in work:
         _put(gathered, one, binder, indexing)
+    _count_plainly(gathered, indexing, numbering)
     _apply_overrides(gathered, freed, diagnostics)
     gathered.equations.sort(key=_equation_key(statements))
     return EquationSystem(
@@ -293,6 +322,42 @@ def _assemble(
         tuple(gathered.shows),
         _families_by_quantity(numbering),
     )
+
+
+def _refuse_indices_like_quantities(
+    work: Sequence[_Work], numbering: Numbering, diagnostics: list[Diagnostic]
+) -> None:
+    """An index that bears the name of a quantity would make one name mean two things in its body."""
+    paths = {tuple(name for name, _ in path) for path in numbering.families}
+    if not paths:
+        return
+    checked: set[tuple[int, int]] = set()
+    for one in work:
+        statement = one.place.statement
+        scope = one.place.scope
+        for part in (*one.place.heads, statement):
+            if (id(part), id(scope)) in checked or (part is statement and " for " not in statement.line.text):
+                continue
+            checked.add((id(part), id(scope)))
+            for clause in _clauses(part):
+                key = scope.resolve(clause.index)
+                path = (key,) if isinstance(key, str) else tuple(name for name, _ in key.path)
+                if key in numbering.plain or path in paths:
+                    slip = error(
+                        "index-is-quantity",
+                        f"`{clause.index}` is an index here and a quantity elsewhere",
+                        Label(part.span(clause.start, clause.end)),
+                        help="give the index another name",
+                    )
+                    if slip not in diagnostics:
+                        diagnostics.append(slip)
+
+
+def _clauses(statement: syntax.Statement) -> list[syntax.IndexClause]:
+    """The index clauses of a `for` line, or of the aggregates in a statement."""
+    if isinstance(statement.node, syntax.Family):
+        return list(statement.node.clauses)
+    return [node for node in walk(statement.node) if isinstance(node, syntax.IndexClause)]
 
 
 def _families_by_quantity(numbering: Numbering) -> tuple[int, ...]:
@@ -387,14 +452,14 @@ class _Gathered:
                     off.setdefault(number, unit)
         groups: tuple[Mapping[int, Unit | None], ...] = (self.shown, knowns, off, guesses, limits)
         for group in groups:
-            for quantity, unit in group.items():
-                if unit is not None:
-                    units.setdefault(quantity, unit)
+            for quantity, found in group.items():
+                if found is not None:
+                    units.setdefault(quantity, found)
             for family in binder.numbering.families.values():
                 # A member without a unit of its own is shown like the first that has one.
                 members = range(family.first, family.first + family.size)
                 units_of = (group.get(q) for q in members)
-                common = next((unit for unit in units_of if unit is not None), None)
+                common = next((found for found in units_of if found is not None), None)
                 if common is not None:
                     for quantity in members:
                         units.setdefault(quantity, common)
@@ -430,13 +495,12 @@ def _put_hints(hints: dict[int, Unit], lowered: LoweredStatement, bound: Bound) 
 
 def _member(one: _Work, entry: int, indexing: Indexing) -> str:
     """What tells one member of a statement from the others, for messages."""
-    parts = []
-    instance = one.place.instance or one.place.scope
-    if instance.path:
-        parts.append(instance.text)
-    if one.domain.arrays:
-        parts.append(entry_text(one.domain, entry, indexing))
-    return ", ".join(parts)
+    scope = one.place.instance or one.place.scope
+    name = instance_name(scope, one.domain, entry, indexing)
+    told = {node.name for node in scope.nodes if isinstance(node, syntax.Reference)}
+    indices = {n: a for n, a in one.domain.arrays.items() if n not in told}
+    rest = entry_text(replace(one.domain, arrays=indices), entry, indexing)
+    return ", ".join(part for part in (name, rest) if part)
 
 
 def _put_equations(
@@ -571,6 +635,18 @@ def _put_column(gathered: _Gathered, column: TableColumn, numbering: Numbering, 
             gathered.hints[0].setdefault(quantity, column.unit)
 
 
+def _count_plainly(gathered: _Gathered, indexing: Indexing, numbering: Numbering) -> None:
+    """A known that counts members is a plain number, even where it is 0, which fits any dimension."""
+    for name, value in indexing.whole.items():
+        quantity = numbering.plain.get(name)
+        if value == 0 and quantity is not None:
+            place = gathered.first_places[quantity]
+            builder = TapeBuilder()
+            left = builder.quantity(quantity, (place.start, place.end))
+            right = builder.literal(Literal(1.0, DIMENSIONLESS, "plain", place.start, place.end, ""))
+            gathered.shows.append(builder.formula((left, right), place.statement, ((left, right),)))
+
+
 def _cell_item(quantity: int, known: CellKnown, statement: int) -> EquationItem:
     builder = TapeBuilder()
     literal = known.literal
@@ -651,11 +727,11 @@ def _by_precedence(
         for role in item.roles:
             first = seen.setdefault((item.quantity, role), item)
             if first is not item:
-                what = "start value" if role == "near" else f"{role} bound"
+                what = {"near": "a start value", "lower": "a lower bound", "upper": "an upper bound"}[role]
                 diagnostics.append(
                     error(
                         "guess-twice",
-                        f"`{names[item.quantity]}` has two guesses with a {what}",
+                        f"`{names[item.quantity]}` has two guesses with {what}",
                         Label(
                             used[item.place.statement].span(item.place.start, item.place.end), "again here"
                         ),
