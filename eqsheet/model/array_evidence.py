@@ -61,6 +61,8 @@ def evaluate_arrays_with_evidence(
         for i, instruction in enumerate(instructions):
             operation = instruction[0]
             v = values[i]
+            size: Any
+            bound: Any
             if operation in _TRUTH:
                 size, bound = 0.0, 0.0
             elif operation == "quantity":

@@ -157,7 +157,7 @@ class Lowering:
         resolved = self._context.unit_table.resolve(unit.text, factors)
         if isinstance(resolved, UnitProblem):
             factor = unit.factors[resolved.index] if unit.factors else unit
-            self._note(resolved.code, resolved.message, factor, self._unit_help(resolved, unit))
+            self._note_unit(resolved, unit, factor)
             raise Poisoned
         return resolved
 
@@ -520,12 +520,18 @@ class Lowering:
             or f"write `define {node.name}(...) = ...`, or `{node.name}*(...)` to multiply",
         )
 
-    def _unit_help(self, problem: UnitProblem, unit: syntax.UnitText) -> str:
+    def _note_unit(
+        self, problem: UnitProblem, unit: syntax.UnitText, place: syntax.UnitText | syntax.UnitFactor
+    ) -> None:
         symbol = unit.factors[problem.index].symbol if unit.factors else ""
-        if problem.code != "unknown-unit" or not symbol.isidentifier():
-            return problem.help
-        cure = "put spaces around the operator before it" if problem.index else "write `*` before it"
-        return f"if `{symbol}` is a quantity, {cure}; if it is meant as a unit, {problem.help}"
+        start, end = self._fixed_place or (place.start, place.end)
+        help, cure = problem.help, ""
+        if problem.code == "unknown-unit" and symbol.isidentifier():
+            cure = "put spaces around the operator before it" if problem.index else "write `*` before it"
+            help = f"{help}; if `{symbol}` is to be a quantity, {cure}"
+        self.findings.append(
+            Finding(problem.code, problem.message, start, end, help, symbol=symbol, cure_if_quantity=cure)
+        )
 
 
 def kind_of(unit: Unit) -> str:
