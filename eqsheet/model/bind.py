@@ -14,7 +14,7 @@ import numpy as np
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.families import Family, FamilyReference, Numbering, with_fixed, written_name
 from eqsheet.model.indexing import Codes, Domain, Indexing, IndexSlip, member_text, placed, subscript
-from eqsheet.model.placed import Placed
+from eqsheet.model.placed import Placed, Scope
 from eqsheet.model.scope import NameTable, OfInstance
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import Formula, Instruction, Tape, TapeBuilder, interned, operands_of
@@ -278,6 +278,16 @@ def resolved_key(key: object, place: Placed) -> str | FamilyReference:
         return place.instance.resolve(key.key)
     assert isinstance(key, str | FamilyReference)
     return place.scope.resolve(key)
+
+
+def instance_name(scope: Scope, domain: Domain, entry: int, indexing: Indexing) -> str:
+    """The name of an instance at one entry, ``p[P12]``; empty for the worksheet itself."""
+    texts = []
+    for node in scope.nodes:
+        found = subscript(node, domain, indexing)
+        code = int(np.broadcast_to(np.asarray(found.codes), (domain.size,))[entry])
+        texts.append(found.name or member_text(found.set, code, indexing))
+    return written_name(scope.path, texts)
 
 
 def entry_text(domain: Domain, entry: int, indexing: Indexing) -> str:
