@@ -52,6 +52,7 @@ def build_parser() -> argparse.ArgumentParser:
     _add_files(solve, many=True)
     _add_changes(solve)
     solve.add_argument("--json", action="store_true", help="print one JSON object a file")
+    solve.add_argument("--trace", action="store_true", help="print the course of the iterations too")
 
     check = commands.add_parser(
         "check",
@@ -177,8 +178,10 @@ def _let_go_of_output() -> None:
 def _run(parser: argparse.ArgumentParser, options: argparse.Namespace) -> int:
     match options.command:
         case "solve":
-            from eqsheet.app.command_line.solve import run_solve
+            from eqsheet.app.command_line.solve import run_solve, run_solve_with_trace
 
+            if options.trace and not options.json:
+                return run_solve_with_trace(options.files, options.changes, options.free)
             return run_solve(options.files, options.changes, options.free, options.json)
         case "check":
             from eqsheet.app.command_line.check import run_check

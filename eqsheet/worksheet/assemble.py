@@ -184,7 +184,7 @@ def _block(prepared: Prepared, block: BlockRun) -> BlockReport:
         result.residual,
         result.condition,
         result.solved,
-        "" if result.outcome is None else result.outcome.full,
+        result.outcome,
     )
 
 

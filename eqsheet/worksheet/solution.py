@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.solve.outcome import Outcome
 from eqsheet.syntax.nodes import Statement
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.registry import UnitTable
@@ -123,6 +124,8 @@ class BlockReport:
     condition : float
         Condition estimate of the scaled Jacobian; 1 for a closed form.
     solved : bool
+    outcome : Outcome or None
+        The solver's own account, attempt by attempt; None for closed forms.
     """
 
     number: int
@@ -135,7 +138,7 @@ class BlockReport:
     residual: float = 0.0
     condition: float = 1.0
     solved: bool = False
-    trace: str = ""
+    outcome: Outcome | None = field(default=None, repr=False, compare=False)
 
     @property
     def lines(self) -> tuple[int, ...]:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 
 from eqsheet.app.command_line.output import print_diagnostics, print_lines
 from eqsheet.app.command_line.solved import solve_each
@@ -15,17 +15,34 @@ def run_solve(files: Sequence[str], changes: Sequence[str], free: Sequence[str],
     """Solve each file and print what was found; the exit status."""
     if as_json:
         return solve_each(files, changes, free, print_json, print_unreadable_json)
-    several = len(files) > 1
-    printed = 0
+    return solve_each(files, changes, free, _spaced(_print_solution))
+
+
+def run_solve_with_trace(files: Sequence[str], changes: Sequence[str], free: Sequence[str]) -> int:
+    """As `run_solve` in a table, followed by the course of the iterations."""
 
     def report(solution: Solution) -> int:
+        from eqsheet.review.trace import trace_lines
+
+        status = _print_solution(solution)
+        print_lines(["", *trace_lines(solution)])
+        return status
+
+    return solve_each(files, changes, free, _spaced(report))
+
+
+def _spaced(report: Callable[[Solution], int]) -> Callable[[Solution], int]:
+    """The report with an empty line before all but the first."""
+    printed = 0
+
+    def spaced(solution: Solution) -> int:
         nonlocal printed
-        if several and printed:
+        if printed:
             print()
         printed += 1
-        return _print_solution(solution)
+        return report(solution)
 
-    return solve_each(files, changes, free, report)
+    return spaced
 
 
 def _print_solution(solution: Solution) -> int:
