@@ -19,6 +19,7 @@ from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.changes import apply_changes
 from eqsheet.worksheet.collection import collection_put_off
 from eqsheet.worksheet.prepare import Prepared, prepare
+from eqsheet.worksheet.prepare_changed import Unchanged, prepare_changed, unchanged
 from eqsheet.worksheet.run import run_blocks
 from eqsheet.worksheet.solution import Solution
 
@@ -41,6 +42,7 @@ class Worksheet:
     timing: float = 0.0
     cache: LoweredCache = field(default_factory=LoweredCache, repr=False, compare=False)
     memory: BlockMemory | None = field(default=None, repr=False, compare=False)
+    _unchanged: list[Unchanged] = field(default_factory=list, init=False, repr=False, compare=False)
 
     @property
     def name(self) -> str:
@@ -49,10 +51,18 @@ class Worksheet:
 
     def prepare(self, changes: Sequence[str] = (), free: Sequence[str] = ()) -> Prepared:
         """Everything up to the order of solution, before any number is computed; parameters as in `solve`."""
+        if self._unchanged and not free:
+            begin = time.perf_counter()
+            again = prepare_changed(self._unchanged[0], changes, self.cache)
+            if again is not None:
+                return replace(again, timing={"model": time.perf_counter() - begin, "structure": 0.0})
         statements, freed, found = apply_changes(self.document.statements, changes, free)
         if not statements and not self.diagnostics:
             found = (*found, _empty(self.source))
-        return prepare(statements, (*self.diagnostics, *found), self.cache, freed)
+        prepared = prepare(statements, (*self.diagnostics, *found), self.cache, freed)
+        if not changes and not free:
+            self._unchanged[:] = [unchanged(prepared)]
+        return prepared
 
     def solve(
         self,
