@@ -20,6 +20,7 @@ from eqsheet.model.bind import (
     member_formulas,
     resolved_key,
 )
+from eqsheet.model.curves import collect_curves
 from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
 from eqsheet.model.findings import Finding
 from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, whole_number
@@ -140,7 +141,8 @@ def build_system(
     tables = collect_tables(used, unit_table, diagnostics)
     placed = place_statements(used, diagnostics)
     indexing = Indexing(tables.sets, _whole_knowns(used), tables.members)
-    context = Context(unit_table, definitions, indexing)
+    curves = collect_curves(used, definitions, unit_table, diagnostics)
+    context = Context(unit_table, definitions, indexing, curves)
     cache.enter(context)
     told = [f.at(s) for s in definitions.values() for f in check_definition(s, context)]
     diagnostics += told
@@ -158,7 +160,7 @@ def build_system(
     if slips:
         quantities = {name.partition("[")[0] for name in system.names}
         diagnostics.extend(finding.at(statement, quantities) for finding, statement in slips)
-    return system, without_echoes(diagnostics, told, used, definitions)
+    return system, without_echoes(diagnostics, told, used, {*definitions, *curves})
 
 
 def _all(statements: Iterable[syntax.Statement]) -> Iterable[syntax.Statement]:
@@ -767,6 +769,8 @@ def _same_context(a: Context, b: Context) -> bool:
     if mine is not other and (mine.ambient, mine.added) != (other.ambient, other.added):
         return False
     if a.definitions.keys() != b.definitions.keys() or not _same_indexing(a.indexing, b.indexing):
+        return False
+    if a.curves != b.curves:
         return False
     return all(
         x.node == b.definitions[name].node and x.line.text == b.definitions[name].line.text

@@ -16,6 +16,7 @@ from eqsheet.model.exact import exact_value
 from eqsheet.model.families import FamilyReference, with_fixed
 from eqsheet.model.findings import Finding
 from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown
+from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
@@ -398,6 +399,9 @@ class Lowering:
         definition = self._context.definitions.get(node.name)
         if definition is not None:
             return self._use(node, definition)
+        curve = self._context.curves.get(node.name)
+        if curve is not None:
+            return self._interpolated(node, curve)
         if node.name not in FUNCTION_NAMES:
             self._refuse_call(node)
         arguments = [self.value(argument) for argument in node.arguments]
@@ -408,6 +412,15 @@ class Lowering:
         if len(arguments) != needed:
             self._refuse_count(node, needed)
         return self.builder.apply(node.name, *arguments, place=place)
+
+    def _interpolated(self, node: syntax.Call, interpolant: Interpolant) -> int:
+        """A curve or surface read at its arguments."""
+        wanted = len(interpolant.axes)
+        if len(node.arguments) != wanted:
+            self._refuse_count(node, wanted)
+        arguments = [self.value(argument) for argument in node.arguments]
+        operation = "curve" if wanted == 1 else "surface"
+        return self.builder.apply(operation, *arguments, interpolant, place=self._place(node))
 
     def _use(self, node: syntax.Call, statement: syntax.Statement) -> int:
         definition = statement.node
@@ -511,7 +524,7 @@ class Lowering:
                 name,
                 help=f"to multiply, write `{node.name}*{argument}`",
             )
-        known = (*FUNCTION_NAMES, *self._context.definitions)
+        known = (*FUNCTION_NAMES, *self._context.definitions, *self._context.curves)
         self._refuse(
             "unknown-function",
             f"there is no function `{node.name}`",

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.findings import Finding
@@ -97,25 +97,26 @@ def without_echoes(
     diagnostics: Sequence[Diagnostic],
     told: Sequence[Diagnostic],
     statements: Sequence[syntax.Statement],
-    definitions: Mapping[str, syntax.Statement],
+    kept: Collection[str],
 ) -> tuple[Diagnostic, ...]:
-    """The diagnostics without those at uses of a broken definition, which its own line has told already.
+    """The diagnostics without those at uses of a broken definition or curve, which its own line has told already.
 
     Parameters
     ----------
     told : sequence of Diagnostic
         What is wrong with definitions, said in their own lines; among `diagnostics`.
-    definitions : mapping
-        Those that were kept; a use of any other is an unknown function only because its line is broken.
+    kept : collection of str
+        Names of definitions and curves that can be used; a use of any other is an unknown function only because
+        its line is broken.
     """
-    lost = {s.node.name for s in statements if isinstance(s.node, syntax.Definition)} - definitions.keys()
+    named = {s.node.name for s in statements if isinstance(s.node, syntax.Definition | syntax.Curve)}
+    lost = named.difference(kept)
     if not told and not lost:
         return tuple(diagnostics)
     own = {id(diagnostic) for diagnostic in told}
     echoes = {(diagnostic.code, diagnostic.message) for diagnostic in told}
     echoes |= {("unknown-function", f"there is no function `{name}`") for name in lost}
     # The same slip in a line without such a use is a slip of its own.
-    named = [s.node.name for s in statements if isinstance(s.node, syntax.Definition)]
     uses = re.compile(rf"({'|'.join(map(re.escape, named))})\s*(\(|$)")
     return tuple(
         [

@@ -8,6 +8,7 @@ from typing import TypeAlias
 
 from eqsheet.model.families import FamilyReference
 from eqsheet.model.indexing import Indexing
+from eqsheet.model.interpolant import Interpolant
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.registry import UnitTable
 
@@ -40,11 +41,15 @@ class NameTable:
 
 @dataclass(frozen=True)
 class Context:
-    """What expressions are read against: units in force, definitions by name, and what subscripts refer to."""
+    """What expressions are read against: units in force, definitions by name, and what subscripts refer to.
+
+    Curves and surfaces stand by name too, those that can be used.
+    """
 
     unit_table: UnitTable
     definitions: Mapping[str, syntax.Statement] = field(default_factory=dict)
     indexing: Indexing = field(default_factory=Indexing)
+    curves: Mapping[str, Interpolant] = field(default_factory=dict)
 
 
 @dataclass(frozen=True)
