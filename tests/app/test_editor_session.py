@@ -70,13 +70,19 @@ def test_saved_and_left(path):
         (["quit", "stay", "save", "quit"], True),
         (["quit", CTRL_C, "quit", "no"], False),
         (["quit", "perhaps", "n"], False),
-        ([CTRL_D, CTRL_D, "quit", "y"], True),
     ],
 )
 def test_quitting_asks_when_something_is_unsaved(path, answers, saved):
     Driven(path, ["D = 60 mm", *answers])
     assert text_of(path) == (PIPE.replace("50 mm", "60 mm") if saved else PIPE)
     assert not os.path.exists(recovery_path(path))
+
+
+def test_second_ctrl_d_leaves_and_keeps_the_work_for_the_next_start(path):
+    driven = Driven(path, ["D = 60 mm", CTRL_D, CTRL_D])
+    assert "offers them again" in driven.said
+    assert os.path.exists(recovery_path(path))
+    assert text_of(path) == PIPE
 
 
 @pytest.mark.parametrize("leave", ["quit", CTRL_D])

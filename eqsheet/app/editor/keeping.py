@@ -71,8 +71,12 @@ class Keeper:
             return True
         try:
             answer = self._ask("There are unsaved changes. Save them? yes, no, or stay:", ("stay", "s"))
-        except (EOFError, KeyboardInterrupt):
+        except KeyboardInterrupt:
             answer = "stay"
+        except EOFError:
+            # A second Ctrl-D, or a terminal that has gone: leave, and lose nothing.
+            self.input_ended()
+            return True
         if answer in _YES:
             if not self.save():
                 return False

@@ -112,7 +112,11 @@ class PlainPrompter:
 
     def _line(self, prompt: str) -> str:
         self._write(prompt)
-        line = self._stream.readline()
+        try:
+            line = self._stream.readline()
+        except KeyboardInterrupt:
+            self._write("\n")
+            raise
         if self._echo:
             # A script's input is not on the screen; with it the output reads like a session.
             self._write(line if line.endswith("\n") else line + "\n")
