@@ -19,11 +19,14 @@ class Source:
         The whole text, line ends normalised to ``\\n``, without byte order mark.
     numbered : bool
         False where line numbers mean nothing to the user (a `--with` argument).
+    attached : bool
+        A file that a worksheet names; its lines are told from the worksheet's own by its name.
     """
 
     name: str
     text: str = field(repr=False)
     numbered: bool = True
+    attached: bool = False
 
     @cached_property
     def line_starts(self) -> tuple[int, ...]:

@@ -9,7 +9,7 @@ from __future__ import annotations
 import math
 import re
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -24,6 +24,8 @@ from eqsheet.units.registry import UnitProblem, UnitTable
 from eqsheet.units.unit import Unit
 
 LEFT_UNKNOWN = "-"
+# Of one kind of slip in one table a reader wants a few examples and the count.
+MOST_SAID = 5
 _NUMBER = re.compile(r"[+-]?\d+(\.\d+)?([eE][+-]?\d+)?")
 
 
@@ -72,33 +74,67 @@ def collect_tables(
     tables = [s for s in statements if isinstance(s.node, syntax.Rows) and not s.off]
     sets: dict[str, IndexSet] = {}
     rows_of: dict[str, tuple[syntax.Statement, list[syntax.Statement]]] = {}
+    first: dict[str, syntax.Statement] = {}
+    slips: dict[str, list[Diagnostic]] = {}
     for statement in tables:
         node = statement.node
         assert isinstance(node, syntax.Rows)
-        if node.name in sets:
+        if first.setdefault(node.name, statement) is not statement:
             diagnostics.append(
-                error("index-set-twice", f"there are two index sets `{node.name}`", Label(statement.whole))
+                error(
+                    "index-set-twice",
+                    f"there are two index sets `{node.name}`",
+                    Label(statement.whole, "again here"),
+                    Label(first[node.name].whole, "first here"),
+                )
             )
             continue
-        rows = _sound_rows(statement, node, diagnostics)
+        rows = _distinct_rows(statement, node, slips.setdefault(node.name, []))
         members = tuple(_cells(row)[0].text for row in rows)
         sets[node.name] = IndexSet.of(node.name, members)
         rows_of[node.name] = statement, rows
     member_columns: dict[str, MemberColumn] = {}
     columns: list[TableColumn] = []
-    for statement, rows in rows_of.values():
+    headed: dict[str, Label] = {}
+    for name, (statement, rows) in rows_of.items():
         node = statement.node
         assert isinstance(node, syntax.Rows)
+        found = slips[name]
         for position, column in enumerate(node.columns):
+            here = Label(_heading(statement, node).span(column.start, column.end), "again here")
+            other = headed.setdefault(column.name, here)
+            if other is not here:
+                message = f"there are two columns `{column.name}`"
+                found.append(error("column-twice", message, here, Label(other.span, "first here")))
+                continue
             if column.of is not None:
-                found = _member_column(statement, node, column, position, rows, sets, diagnostics)
-                if found is not None:
-                    member_columns[column.name] = found
+                members_of = _member_column(statement, node, column, position, rows, sets, found)
+                if members_of is not None:
+                    member_columns[column.name] = members_of
             else:
-                columns.append(
-                    _number_column(statement, node, column, position, rows, unit_table, diagnostics)
-                )
+                columns.append(_number_column(statement, node, column, position, rows, unit_table, found))
+        diagnostics += _first_of_each_code(found, name)
     return Tables(sets, member_columns, tuple(columns))
+
+
+def _heading(statement: syntax.Statement, node: syntax.Rows) -> syntax.Statement:
+    """The statement in which the columns stand: a line of the worksheet, or of the file."""
+    return node.heading or statement
+
+
+def _first_of_each_code(found: Sequence[Diagnostic], name: str) -> list[Diagnostic]:
+    """The findings of one table, of each code the first few; the last of them tells how many follow."""
+    by_code: dict[str, list[Diagnostic]] = {}
+    for one in found:
+        by_code.setdefault(one.code, []).append(one)
+    kept: list[Diagnostic] = []
+    for group in by_code.values():
+        kept += group[:MOST_SAID]
+        more = len(group) - MOST_SAID
+        if more > 0:
+            note = f"there {'is' if more == 1 else 'are'} {more:,} more of this kind in `{name}`"
+            kept[-1] = replace(kept[-1], notes=(*kept[-1].notes, note))
+    return kept
 
 
 def _cells(row: syntax.Statement) -> tuple[syntax.Cell, ...]:
@@ -106,10 +142,19 @@ def _cells(row: syntax.Statement) -> tuple[syntax.Cell, ...]:
     return row.node.cells
 
 
-def _sound_rows(
+def _cell(row: syntax.Statement, position: int) -> syntax.Cell | None:
+    """The cell of a column by its position; None where it is left unknown, or the row too short."""
+    cells = _cells(row)
+    if position + 1 >= len(cells):
+        return None
+    cell = cells[position + 1]
+    return None if cell.text == LEFT_UNKNOWN and not cell.quoted else cell
+
+
+def _distinct_rows(
     statement: syntax.Statement, node: syntax.Rows, diagnostics: list[Diagnostic]
 ) -> list[syntax.Statement]:
-    """Rows with as many cells as the heading asks for, and names of their own."""
+    """Rows with names of their own; one of the wrong length still makes its member."""
     rows = []
     seen: dict[str, syntax.Statement] = {}
     wanted = len(node.columns) + 1
@@ -124,17 +169,20 @@ def _sound_rows(
         cells = row.node.cells
         if len(cells) != wanted:
             names = ", ".join(("name", *(c.name for c in node.columns)))
+            count = f"{len(cells)} cell{'s' * (len(cells) != 1)}"
             diagnostics.append(
                 error(
                     "row-length",
-                    f"this row has {len(cells)} cells, and `{node.name}` has {wanted}",
+                    f"this row has {count}, and the heading of `{node.name}` has {wanted}",
                     Label(row.whole),
-                    Label(statement.whole, "the heading"),
+                    Label(_heading(statement, node).whole, "the heading"),
                     help=f"a row is {names}; write `-` for a member left unknown",
                 )
             )
-            continue
         first = cells[0]
+        if not first.text:
+            diagnostics.append(error("member-name", "this row has no name", Label(row.whole)))
+            continue
         other = seen.setdefault(first.text, row)
         if other is not row:
             diagnostics.append(
@@ -165,15 +213,15 @@ def _member_column(
             error(
                 "unknown-index-set",
                 f"there is no index set `{column.of}`",
-                Label(statement.span(column.start, column.end)),
+                Label(_heading(statement, node).span(column.start, column.end)),
                 help=did_you_mean(column.of or "", sets),
             )
         )
         return None
     codes = np.full(len(rows), -1, dtype=np.int64)
     for i, row in enumerate(rows):
-        cell = _cells(row)[position + 1]
-        if cell.text == LEFT_UNKNOWN and not cell.quoted:
+        cell = _cell(row, position)
+        if cell is None:
             continue
         code = target.positions.get(cell.text)
         if code is None:
@@ -200,11 +248,11 @@ def _number_column(
     unit_table: UnitTable,
     diagnostics: list[Diagnostic],
 ) -> TableColumn:
-    unit = _unit(statement, column.unit, unit_table, diagnostics)
+    unit = _unit(_heading(statement, node), column.unit, unit_table, diagnostics)
     knowns = []
     for code, row in enumerate(rows):
-        cell = _cells(row)[position + 1]
-        if cell.text == LEFT_UNKNOWN and not cell.quoted:
+        cell = _cell(row, position)
+        if cell is None:
             continue
         value = _value(cell, row, column, diagnostics)
         if value is None:
@@ -238,7 +286,7 @@ def _unit(
 def _value(
     cell: syntax.Cell, row: syntax.Statement, column: syntax.Column, diagnostics: list[Diagnostic]
 ) -> float | None:
-    if _NUMBER.fullmatch(cell.text) and not cell.quoted:
+    if _NUMBER.fullmatch(cell.text):
         value = float(cell.text)
         if math.isfinite(value):
             return value

@@ -339,13 +339,17 @@ class TableRow:
 
 @dataclass(frozen=True, slots=True)
 class Rows:
-    """Head of ``rows species: z, M in g/mol`` or ``rows bus from "bus.csv"``."""
+    """Head of ``rows species: z, M in g/mol`` or ``rows bus from "bus.csv"``.
+
+    Once a file is read, ``heading`` is its first line as a statement, and places in ``columns`` count in it.
+    """
 
     start: int
     end: int
     name: str
     columns: tuple[Column, ...]
     path: Text | None = None
+    heading: Statement | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -11,7 +11,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
-from eqsheet.syntax.csv_table import table_rows
+from eqsheet.syntax.csv_table import read_table
 from eqsheet.syntax.nodes import Curve, Include, Rows, Statement
 from eqsheet.syntax.nodes import Text as TextNode
 from eqsheet.syntax.parse import parse_document
@@ -23,7 +23,10 @@ MOST_FILES = 1000
 
 @dataclass
 class _Attaching:
+    """What is known while files are read: the real folder, and how the worksheet's own path names it."""
+
     folder: str
+    shown: str
     diagnostics: list[Diagnostic] = field(default_factory=list)
     done: set[str] = field(default_factory=set)
     chain: tuple[str, ...] = ()
@@ -42,7 +45,7 @@ def attach_files(
     """
     if not any(_names_file(s) for s in statements):
         return tuple(statements), ()
-    work = _Attaching(os.path.dirname(os.path.abspath(name)))
+    work = _Attaching(os.path.realpath(os.path.dirname(os.path.abspath(name))), os.path.dirname(name))
     work.chain = (os.path.realpath(name),)
     work.done.add(work.chain[0])
     return tuple(_attached(statements, work)), tuple(work.diagnostics)
@@ -97,7 +100,7 @@ def _included(statement: Statement, node: Include, work: _Attaching) -> list[Sta
     if isinstance(source, Diagnostic):
         work.diagnostics.append(_unreadable(statement, node.path, source))
         return []
-    source = replace(source, name=_shown_name(statement, node.path))
+    source = replace(source, name=os.path.join(work.shown, node.path.value), attached=True)
     document, found = parse_document(source)
     work.diagnostics.extend(found)
     outer = work.chain
@@ -115,21 +118,28 @@ def _filled(
         return None
     source = read_source(path)
     if isinstance(source, Diagnostic):
-        work.diagnostics.append(_unreadable(statement, written, source))
+        work.diagnostics.append(_unreadable(statement, written, replace(source, help="")))
         return None
-    source = replace(source, name=_shown_name(statement, written))
-    columns, rows, found = table_rows(source, statement)
+    source = replace(source, name=os.path.join(work.shown, written.value), attached=True)
+    table, found = read_table(source, statement.section)
     work.diagnostics.extend(found)
-    if columns is None:
+    if table is None:
         return None
     if isinstance(node, Rows):
-        return replace(statement, node=replace(node, columns=columns[1:]), body=rows)
-    return replace(statement, body=rows)
-
-
-def _shown_name(statement: Statement, written: TextNode) -> str:
-    """The file's name as messages give it: beside the worksheet's own."""
-    return os.path.join(os.path.dirname(statement.source.name), written.value)
+        first = table.columns[0]
+        if first.unit is not None or first.of is not None:
+            work.diagnostics.append(
+                error(
+                    "csv-heading",
+                    "the first column holds the names of the members",
+                    Label(table.heading.span(first.start, first.end)),
+                    help=f"write `{first.name}` alone",
+                )
+            )
+            return None
+        named = replace(node, columns=table.columns[1:], heading=table.heading)
+        return replace(statement, node=named, body=table.rows)
+    return replace(statement, body=table.rows)
 
 
 def _inside(statement: Statement, written: TextNode, work: _Attaching) -> str | None:
@@ -147,7 +157,7 @@ def _inside(statement: Statement, written: TextNode, work: _Attaching) -> str | 
         )
         return None
     path = os.path.realpath(os.path.join(work.folder, name))
-    if os.path.commonpath((path, os.path.realpath(work.folder))) != os.path.realpath(work.folder):
+    if os.path.commonpath((path, work.folder)) != work.folder:
         work.diagnostics.append(
             error(
                 "path-not-inside",

@@ -25,21 +25,25 @@ def label_of(system: EquationSystem, place: Place, text: str = "") -> Label:
 
 
 def line_words(system: EquationSystem, places: Iterable[Place]) -> str:
-    """``line 3``, ``lines 3, 5 and 9``; the name of the source where lines mean nothing.
+    """``line 3``, ``lines 3, 5 and 9``, ``line 3 of bus.csv``; the source's name where lines mean nothing.
 
-    Lines are in ascending order, each once.
+    Lines are in ascending order, each once; those of the worksheet itself come first.
     """
-    numbers: set[int] = set()
+    numbers: dict[str, set[int]] = {"": set()}
     others: set[str] = set()
     for place in places:
         statement = system.statements[place.statement]
         if statement.source.numbered:
-            numbers.add(statement.line.line)
+            file = statement.source.name if statement.source.attached else ""
+            numbers.setdefault(file, set()).add(statement.line.line)
         else:
             others.add(statement.source.name)
-    lines = listed([str(n) for n in sorted(numbers)])
-    words = ([f"line{'s' * (len(numbers) > 1)} {lines}"] if numbers else []) + sorted(others)
-    return " and ".join(words)
+    words = []
+    for file in sorted(numbers):
+        if numbers[file]:
+            lines = listed([str(n) for n in sorted(numbers[file])])
+            words.append(f"line{'s' * (len(numbers[file]) > 1)} {lines}" + (f" of {file}" if file else ""))
+    return " and ".join([*words, *sorted(others)])
 
 
 def listed(words: list[str], joint: str = "and") -> str:
