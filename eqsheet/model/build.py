@@ -473,7 +473,7 @@ def _put(gathered: _Gathered, one: _Work, binder: Binder, indexing: Indexing) ->
     lowered = one.lowered
     try:
         if lowered.equation is not None:
-            bound = binder.bind(lowered.named, one.place, one.domain)
+            bound = binder.bind((*lowered.named, *lowered.conditions_name), one.place, one.domain)
             _put_equations(gathered, one, lowered.equation, bound, indexing)
             _put_hints(gathered.hints[0], lowered, bound)
         elif lowered.limit is not None:

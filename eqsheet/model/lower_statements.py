@@ -59,6 +59,8 @@ class LoweredStatement:
     ----------
     named : tuple of (int, int, int)
         Provisional numbers of the quantities it names, with start and end of the first place.
+    conditions_name : tuple of (int, int, int)
+        The same for quantities that only its validity conditions name.
     unit_hints : tuple of (int, Unit)
         Units in which it writes a quantity.
     uses_gauge : bool
@@ -70,6 +72,7 @@ class LoweredStatement:
     limit: LimitItem | None = None
     shows: tuple[ShowMeant, ...] = ()
     named: tuple[tuple[int, int, int], ...] = ()
+    conditions_name: tuple[tuple[int, int, int], ...] = ()
     unit_hints: tuple[tuple[int, Unit], ...] = ()
     uses_gauge: bool = False
     findings: tuple[Finding, ...] = ()
@@ -106,8 +109,12 @@ def lower_equation(
         )
         for met in work.conditions
     )
+    conditions_name: tuple[tuple[int, int, int], ...] = ()
     if valid:
+        everything = _named(formula)
         formula = extract(formula, (left, right))
+        own = set(formula.quantities)
+        conditions_name = tuple(n for n in everything if n[0] not in own)
     known, value = -1, math.nan
     hints: tuple[tuple[int, Unit], ...] = ()
     if target is not None and len(formula.quantities) == 1:
@@ -132,6 +139,7 @@ def lower_equation(
     return LoweredStatement(
         equation=item,
         named=_named(formula),
+        conditions_name=conditions_name,
         unit_hints=hints,
         uses_gauge=uses_gauge(work),
         findings=tuple(work.findings),
