@@ -70,6 +70,8 @@ def failure_diagnostic(
     facts = (
         None if result.problem is None or result.outcome is None else explain(result.problem, result.outcome)
     )
+    if facts is not None and facts.pressed and status in (Status.STALLED, Status.SINGULAR, Status.BUDGET):
+        status = Status.HELD
     worst = 0 if facts is None or not facts.worst else facts.worst[0][0]
     headline = _HEADLINES.get(status, "no solution found")
     if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
