@@ -9,12 +9,12 @@ scanner looks only for what can stand where it is.
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterator, Mapping
-from functools import cache
+from collections.abc import Callable, Mapping, Sequence
+from functools import cache, cached_property
 from typing import Any, NamedTuple, TypeAlias
 
-from eqsheet.syntax.grammar_files import grammar_text
 from eqsheet.syntax.slip import Unexpected
+from eqsheet.syntax.tables import Tables, tables
 
 
 class Token(NamedTuple):
@@ -34,9 +34,7 @@ def _words(text: str) -> list[str]:
     return text.split()
 
 
-_WORDS_OF_STATEMENTS = _words(
-    "LABEL PATTERN OFF REQUIRE SHOW DEFINE NEW_UNIT FOR ROWS CURVE TEMPLATE SHARED USE INCLUDE"
-)
+_STARTS = _words("LABEL PATTERN OFF REQUIRE SHOW DEFINE NEW_UNIT FOR ROWS CURVE TEMPLATE SHARED USE INCLUDE")
 _OPERANDS = _words("SIGNED_NUMBER NUMBER IF NOT NAME LPAR MINUS PLUS TEXT DOTS")
 _AFTER_OPERAND = _words(
     "PLUS_MINUS STAR SLASH PLUS MINUS CARET LPAR RPAR COMMA EQUALS LESS_EQUAL GREATER_EQUAL UNEQUAL LESS "
@@ -48,6 +46,8 @@ _ENDS_OF_OPERANDS = _words("NAME NUMBER SIGNED_NUMBER TEXT UNIT PATTERN RPAR RSQ
 _BLANK = r"\s*(?:#[^\n]*\s*)*"
 
 
+_Match: TypeAlias = Callable[[str, int], "re.Match[str] | None"]
+
 _blank_match = re.compile(_BLANK).match
 
 
@@ -56,20 +56,12 @@ def _end_of_blank(text: str, position: int) -> int:
     return blank.end() if blank else position
 
 
-class _Scanner(NamedTuple):
-    start: re.Pattern[str]
-    operand: re.Pattern[str]
-    after: re.Pattern[str]
-    unit: re.Pattern[str]
-
-
 class Automaton:
     """Tables and scanners of a grammar, with the actions that make its nodes.
 
     Parameters
     ----------
-    grammar : str
-        In lark's notation; every production of more than one part has an alias.
+    tables : Tables
     actions : mapping of str to Action
         By alias.
     terminals : mapping of str to (terminal, start, end, text) -> value
@@ -78,53 +70,31 @@ class Automaton:
 
     def __init__(
         self,
-        grammar: str,
+        tables: Tables,
         actions: Mapping[str, Action],
         terminals: Mapping[str, Callable[[int, int, str], Any]],
     ) -> None:
-        # Imported here: a worksheet taken from a record or a test of nodes needs no parser.
-        import lark
-        from lark.lexer import Lexer
-        from lark.parsers.lalr_analysis import Shift
-
-        class Unused(Lexer):
-            """Stands in for lark's lexer, whose scanners would be compiled for nothing."""
-
-            def __init__(self, configuration: Any) -> None:
-                pass
-
-            def lex(self, lexer_state: Any, parser_state: Any) -> Iterator[Any]:
-                return iter(())
-
-        engine = lark.Lark(grammar, parser="lalr", lexer=Unused, maybe_placeholders=False)
-        configuration = engine.parse_interactive("").parser_state.parse_conf
-        number = {state: i for i, state in enumerate(configuration.states)}
-        self._first = number[configuration.start_state]
-        self._last = number[configuration.end_state]
-        self._moves: list[dict[str, Any]] = []
-        for table in configuration.states.values():
-            moves: dict[str, Any] = {}
-            for symbol, (kind, target) in table.items():
-                if kind is Shift:
-                    moves[symbol] = number[target]
-                else:
-                    size = len(target.expansion)
-                    action = actions[target.alias] if target.alias else None
-                    if action is None and size != 1:
-                        raise ValueError(f"a production of {target.origin.name} needs an alias")
-                    moves[symbol] = (size, action, target.origin.name)
-            self._moves.append(moves)
-        patterns = {t.name: t.pattern.to_regexp() for t in engine.terminals}
-        self._scanner = _Scanner(
-            *(
-                re.compile(_BLANK + "(?:" + "|".join(f"(?P<{name}>{patterns[name]})" for name in names) + ")")
-                for names in (_WORDS_OF_STATEMENTS + _OPERANDS, _OPERANDS, _AFTER_OPERAND, ["UNIT"])
-            )
-        )
-        self._following = dict.fromkeys(_ENDS_OF_OPERANDS, self._scanner.after.match)
-        self._following |= {"LABEL": self._scanner.start.match, "OFF": self._scanner.start.match}
+        self._first, self._last = tables.first, tables.last
+        reductions = [(p.size, actions[p.alias] if p.alias else None, p.origin) for p in tables.productions]
+        moves: dict[int, dict[str, Any]] = {}
+        for row in tables.states:
+            if id(row) not in moves:
+                moves[id(row)] = {s: m if m >= 0 else reductions[-1 - m] for s, m in row.items()}
+        self._moves = [moves[id(row)] for row in tables.states]
+        self._patterns = tables.patterns
+        self._start, self._operand, self._after = map(self._scanner, (_STARTS, _OPERANDS, _AFTER_OPERAND))
+        self._following = dict.fromkeys(_ENDS_OF_OPERANDS, self._after)
+        self._following |= {"LABEL": self._start, "OFF": self._start}
         self._makers = dict(terminals)
         self._jumps: dict[tuple[int, str, str], int] = {}
+
+    def _scanner(self, names: Sequence[str]) -> _Match:
+        alternatives = "|".join(f"(?P<{name}>{self._patterns[name]})" for name in names)
+        return re.compile(f"{_BLANK}(?:{alternatives})").match
+
+    @cached_property
+    def _unit(self) -> _Match:
+        return self._scanner(["UNIT"])
 
     def run(self, text: str) -> Any:
         """The value of the statement `text`; see `read`."""
@@ -141,8 +111,7 @@ class Automaton:
             From an action that refuses what it is given.
         """
         moves, jumps, makers = self._moves, self._jumps, self._makers
-        following, operand, unit = self._following, self._scanner.operand.match, self._scanner.unit.match
-        match = self._scanner.start.match
+        following, operand, match = self._following, self._operand, self._start
         states: list[int] = [self._first]
         values: list[Any] = []
         read: list[tuple[str, int, int]] = []
@@ -152,6 +121,8 @@ class Automaton:
         while True:
             state = states[-1]
             found = match(text, position)
+            if found is None and match is self._start:
+                found = operand(text, position)
             if found is not None:
                 terminal: str = found.lastgroup  # type: ignore[assignment]  # every alternative is a named group
                 start, end = found.span(terminal)
@@ -189,7 +160,7 @@ class Automaton:
             position = end
             if terminal == "IN":
                 # `T in degC` names a unit, `for i in 1..N` a set; after a `for` no unit can follow `in`.
-                match = operand if set_clause else unit
+                match = operand if set_clause else self._unit
             else:
                 match = following.get(terminal, operand)
                 set_clause = set_clause or terminal == "FOR"
@@ -235,4 +206,4 @@ def statement_automaton() -> Automaton:
     """The one automaton for statements, made when first wanted."""
     from eqsheet.syntax.build_statements import ACTIONS, TERMINALS
 
-    return Automaton(grammar_text(), ACTIONS, TERMINALS)
+    return Automaton(tables(), ACTIONS, TERMINALS)

@@ -46,7 +46,16 @@ def number(start: int, end: int, text: str) -> Number:
     _check_range(start, written)
     if text[stop] == " ":
         stop += 1
-    return Number(start, end, written, unit(start + stop, end, text[stop:]))
+    symbols = text[stop:]
+    if symbols == "1":  # what looked like 1/K is no unit
+        raise Slip(
+            "implied-product",
+            "two things side by side do not multiply",
+            start,
+            end,
+            f"write `{written}*1`",
+        )
+    return Number(start, end, written, unit(start + stop, end, symbols))
 
 
 def signed_number(start: int, end: int, text: str) -> Number:

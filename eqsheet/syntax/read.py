@@ -70,7 +70,7 @@ def decoded(name: str, content: bytes) -> TextFile | Diagnostic:
         return _unreadable(name, f"it is not UTF-8 text (line {line})", "save it with the encoding UTF-8")
     carriage_returns = "\r\n" in text
     text = text.replace("\r\n", "\n").replace("\r", "\n")
-    return TextFile(name, text, True, carriage_returns, marked)
+    return TextFile(name, text, carriage_returns=carriage_returns, byte_order_mark=marked)
 
 
 def _content(path: str) -> bytes:
