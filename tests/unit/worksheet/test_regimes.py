@@ -1,0 +1,133 @@
+"""Conditions that depend on what is solved for, and the order and units a worksheet is written in."""
+
+from __future__ import annotations
+
+import random
+
+import pytest
+from solving import errors, solve, values
+
+FRICTION = """
+Re = rho*v*D/mu
+rho = 998 kg/m^3
+D = 20 mm
+mu = 1 mPa*s
+L = 10 m
+dP = f*L/D*rho*v^2/2
+dP = {dP}
+f = if Re < 2300 then 64/Re else 0.316/Re^0.25
+v near {v} m/s within 0 m/s ..
+"""
+
+
+@pytest.mark.parametrize("start", [0.001, 0.1, 3.0])
+def test_the_regime_is_found_from_either_side(start: float) -> None:
+    """Laminar: Hagen-Poiseuille, v = dP*D^2/(32*mu*L), is 0.025 m/s and Re 499."""
+    solution = solve(FRICTION.format(dP="20 Pa", v=start))
+    assert solution.status == "solved"
+    assert values(solution)["v"] == pytest.approx(20 * 0.02**2 / (32 * 1e-3 * 10), rel=1e-12)
+
+
+@pytest.mark.parametrize("start", [0.001, 0.1, 3.0])
+def test_the_other_regime(start: float) -> None:
+    """Turbulent: 0.158*L/D*rho*v^1.75*(mu/(rho*D))^0.25 = dP, solved for v by hand."""
+    v = (20e3 / (0.158 * 10 / 0.02 * 998 * (1e-3 / (998 * 0.02)) ** 0.25)) ** (1 / 1.75)
+    solution = solve(FRICTION.format(dP="20 kPa", v=start))
+    assert solution.status == "solved"
+    assert values(solution)["v"] == pytest.approx(v, rel=1e-10)
+
+
+def test_a_jump_without_a_solution_is_no_solution() -> None:
+    """The left side jumps over the right one at x = 1."""
+    solution = solve("y = if x < 1 then x else x + 2\ny = 2\nx near 0.5")
+    assert solution.status == "unsolved"
+    assert errors(solution) == ["no-solution"]
+
+
+def test_branches_on_knowns_are_settled() -> None:
+    text = "n = {n}\nx^2 = if n = 1 then 4 else 9\nx near 1"
+    assert values(solve(text.format(n=1)))["x"] == pytest.approx(2.0)
+    assert values(solve(text.format(n=2)))["x"] == pytest.approx(3.0)
+
+
+def test_and_or_not() -> None:
+    text = "a = {a}\nb = {b}\ny = if a > 0 and not (b > 0 or b < -5) then 1 else 2"
+    assert values(solve(text.format(a=1, b=-1)))["y"] == 1.0
+    assert values(solve(text.format(a=1, b=1)))["y"] == 2.0
+    assert values(solve(text.format(a=1, b=-6)))["y"] == 2.0
+    assert values(solve(text.format(a=-1, b=-1)))["y"] == 2.0
+
+
+# --- nothing depends on the order of the lines, nor on the units --------------------------------------------
+
+EXCHANGER = """
+Q = m_h*cp*(T_h1 - T_h2)
+Q = m_c*cp*(T_c2 - T_c1)
+Q = U*A*logmean(T_h1 - T_c2, T_h2 - T_c1)
+m_h = 0.8 kg/s
+m_c = 1.1 kg/s
+cp = 4.19 kJ/(kg*K)
+U = 850 W/(m^2*K)
+A = 6.5 m^2
+T_h1 = 92 degC
+T_c1 = 11 degC
+T_h2 near 45 degC within 11.5 degC .. 91.9 degC
+T_c2 near 50 degC within 11.1 degC .. 91.5 degC
+require Q <= 250 kW
+show T_h2 in degC
+"""
+
+
+def effectiveness() -> tuple[float, float, float]:
+    """Q, T_h2 and T_c2 by the effectiveness relation for counterflow, not by the logarithmic mean."""
+    from math import exp
+
+    c_h, c_c = 0.8 * 4190, 1.1 * 4190
+    ntu, ratio = 850 * 6.5 / c_h, c_h / c_c
+    eps = (1 - exp(-ntu * (1 - ratio))) / (1 - ratio * exp(-ntu * (1 - ratio)))
+    heat = eps * c_h * (92 - 11)
+    return heat, 365.15 - heat / c_h, 284.15 + heat / c_c
+
+
+def test_the_exchanger_is_right() -> None:
+    found = values(solve(EXCHANGER))
+    assert [found[name] for name in ("Q", "T_h2", "T_c2")] == pytest.approx(effectiveness(), rel=1e-10)
+
+
+@pytest.mark.parametrize("seed", range(6))
+def test_the_order_of_lines_changes_no_bit(seed: int) -> None:
+    lines = EXCHANGER.strip().splitlines()
+    random.Random(seed).shuffle(lines)
+    assert values(solve("\n".join(lines))) == values(solve(EXCHANGER))
+
+
+@pytest.mark.parametrize(
+    ("written", "instead"),
+    [
+        ("0.8 kg/s", "2880 kg/h"),
+        ("1.1 kg/s", "1.1e9 ug/s"),
+        ("4.19 kJ/(kg*K)", "4.19e-6 GJ/(kg*K)"),
+        ("850 W/(m^2*K)", "8.5e-4 MW/(m^2*K)"),
+        ("6.5 m^2", "6.5e6 mm^2"),
+        ("92 degC", "365.15 K"),
+        ("show T_h2 in degC", "show T_h2 in degF, Q in mW"),
+        (
+            "T_h2 near 45 degC within 11.5 degC .. 91.9 degC",
+            "T_h2 near 113 degF within 52.7 degF .. 197.42 degF",
+        ),
+    ],
+)
+def test_units_change_no_digit(written: str, instead: str) -> None:
+    assert written in EXCHANGER
+    solution = solve(EXCHANGER.replace(written, instead))
+    assert solution.status == "solved"
+    assert values(solution) == pytest.approx(values(solve(EXCHANGER)), rel=1e-10)
+
+
+def test_a_quantity_rescaled_by_a_million_is_found_the_same() -> None:
+    """The same physics in a unit of its own, a million times larger or smaller."""
+    base = "new unit token\nx = {k} token\ny*z = x^2\ny + z = 3*x\ny near 2*x\n"
+    small, large = solve(base.format(k="1e-6")), solve(base.format(k="1e6"))
+    for name, factor in (("y", (3 + 5**0.5) / 2), ("z", (3 - 5**0.5) / 2)):
+        assert small[name].si == pytest.approx(1e-6 * factor, rel=1e-10)
+        assert large[name].si == pytest.approx(1e6 * factor, rel=1e-10)
