@@ -17,6 +17,8 @@ from eqsheet.model.evaluate import evaluate
 from eqsheet.model.families import FamilyReference
 from eqsheet.model.findings import Finding
 from eqsheet.model.lower import FUNCTION_NAMES, Lowering, Poisoned, kind_of
+from eqsheet.model.outside_curve import HELP as OUTSIDE_CURVE_HELP
+from eqsheet.model.outside_curve import outside_curve
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable
 from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
 from eqsheet.model.tape import Formula, Literal, extract
@@ -121,9 +123,17 @@ def lower_equation(
         known = formula.quantities[0]
         side = formula.tape.outputs[0 if value_node is node.right else 1]
         other = formula.tape.outputs[1 if side == formula.tape.outputs[0] else 0]
-        value = evaluate(formula.tape, (math.nan,), literal_values(formula))[other]
+        values = evaluate(formula.tape, (math.nan,), literal_values(formula))
+        value = values[other]
         by_member = any(literal.index for literal in formula.literals)
         if not math.isfinite(value) and not by_member:
+            outside = outside_curve(formula.tape, values)
+            if outside is not None:
+                place = formula.places[outside.argument]
+                work.findings.append(
+                    Finding("outside-curve", outside.message, *place, help=OUTSIDE_CURVE_HELP)
+                )
+                return _broken(work, names, node)
             work.findings.append(
                 Finding(
                     "value-not-finite",

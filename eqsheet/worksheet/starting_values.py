@@ -1,5 +1,6 @@
 """Starting values where no guess is written: from bounds, else propagated from what is known, else typical.
 
+The range of a curve bounds the start of an unknown that it is read at.
 All rules but the last are independent of the units in use. The outcome does not depend on the order of the
 lines, and no two unknowns are started at the same number, nor any at zero, where equal starts would make a
 Jacobian singular.
@@ -15,6 +16,7 @@ from eqsheet.model.evaluate import evaluate
 from eqsheet.model.isolate import isolate
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.curve_ranges import Range, argument_ranges
 from eqsheet.worksheet.guesses import Guesses
 
 # What a quantity of a dimension is like in engineering, in SI, where nothing in the worksheet tells.
@@ -68,30 +70,56 @@ def starting_values(
     found: dict[int, float] = {}
     assumed = []
     blind = []
+    room = _Room(guesses, argument_ranges(unknowns, formulas, values))
     for position, quantity in enumerate(unknowns):
         if quantity in guesses.near:
-            found[quantity] = guesses.near[quantity]
+            found[quantity] = room.on_curves(guesses.near[quantity], quantity, position)
             continue
         assumed.append(position)
-        between = _between(*guesses.bounds(quantity), position)
+        between = _between(*room.bounds(quantity), position)
         if between is not None:
             found[quantity] = between
-    _propagate(unknowns, formulas, values, guesses, found)
+    _propagate(unknowns, formulas, values, room, found)
     for position, quantity in enumerate(unknowns):
         if quantity not in found:
             blind.append(position)
-            found[quantity] = _inside(_typical(dimensions[quantity], position), guesses, quantity)
+            found[quantity] = _inside(_typical(dimensions[quantity], position), room, quantity)
             # One seed may let the equations tell the others.
-            _propagate(unknowns, formulas, values, guesses, found)
+            _propagate(unknowns, formulas, values, room, found)
     bounds = [guesses.bounds(quantity) for quantity in unknowns]
     return Start(
         tuple(found[q] for q in unknowns),
         tuple(low for low, _ in bounds),
         tuple(high for _, high in bounds),
-        tuple(_magnitude(found[q], guesses, q, dimensions[q]) for q in unknowns),
+        tuple(_magnitude(found[q], room, q, dimensions[q]) for q in unknowns),
         tuple(assumed),
         tuple(blind),
     )
+
+
+@dataclass(frozen=True, slots=True)
+class _Room:
+    """Where the unknowns may start: within their bounds, and where the curves they are read by have values."""
+
+    guesses: Guesses
+    ranges: Mapping[int, Range]
+
+    def bounds(self, quantity: int) -> Range:
+        """Lower and upper bound of a start; the quantity's own where no curve reaches into them."""
+        low, high = self.guesses.bounds(quantity)
+        if quantity not in self.ranges:
+            return low, high
+        first, last = self.ranges[quantity]
+        narrow = max(low, first), min(high, last)
+        return narrow if narrow[0] < narrow[1] else (low, high)
+
+    def on_curves(self, value: float, quantity: int, position: int) -> float:
+        """A start as written, moved into the range of the curves it is outside of."""
+        first, last = self.ranges.get(quantity, (-math.inf, math.inf))
+        if first <= value <= last:
+            return value
+        between = _between(*self.bounds(quantity), position)
+        return value if between is None else between
 
 
 def _between(low: float, high: float, position: int) -> float | None:
@@ -108,7 +136,7 @@ def _propagate(
     unknowns: Sequence[int],
     formulas: Sequence[Formula],
     values: Sequence[float],
-    guesses: Guesses,
+    room: _Room,
     found: MutableMapping[int, float],
 ) -> None:
     """Let each equation with one magnitude missing tell it, until none does."""
@@ -123,7 +151,7 @@ def _propagate(
             quantity = missing[0]
             value = _told(formula, quantity, values, found)
             if value is not None:
-                found[quantity] = _inside(value, guesses, quantity)
+                found[quantity] = _inside(value, room, quantity)
                 wanted.discard(quantity)
                 again = True
 
@@ -149,9 +177,9 @@ def _typical(dimension: Dimension | None, position: int) -> float:
     return TYPICAL.get(text, 1.0) * (1.0 + 0.2 * ((position + 1) * _SPREAD % 1.0))
 
 
-def _inside(value: float, guesses: Guesses, quantity: int) -> float:
+def _inside(value: float, room: _Room, quantity: int) -> float:
     """The value, mirrored or moved to the inner side of a bound it passes."""
-    low, high = guesses.bounds(quantity)
+    low, high = room.bounds(quantity)
     if low < value < high:
         return value
     for candidate in (abs(value), -abs(value)):
@@ -164,10 +192,10 @@ def _inside(value: float, guesses: Guesses, quantity: int) -> float:
     return high - (abs(high) or abs(value) or 1.0) * 0.5
 
 
-def _magnitude(value: float, guesses: Guesses, quantity: int, dimension: Dimension | None) -> float:
+def _magnitude(value: float, room: _Room, quantity: int, dimension: Dimension | None) -> float:
     """Typical size of an unknown, > 0."""
     if value != 0.0:
         return abs(value)
-    low, high = guesses.bounds(quantity)
+    low, high = room.bounds(quantity)
     finite = [abs(b) for b in (low, high) if math.isfinite(b) and b != 0.0]
     return max(finite) if finite else TYPICAL.get("" if dimension is None else dimension.text, 1.0)
