@@ -12,7 +12,7 @@ from eqsheet.syntax.nodes import Statement
 from eqsheet.units.display import format_value
 from eqsheet.worksheet.alike import fold_alike
 from eqsheet.worksheet.failure_messages import digits_of
-from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds
+from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds, limits_outside_curves
 from eqsheet.worksheet.places import span_of
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import BlockRun, Run
@@ -21,7 +21,7 @@ from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, 
 
 _RANK = {Severity.ERROR: 0, Severity.WARNING: 1, Severity.NOTE: 2}
 # Errors that say the worksheet is sound but no solution was found.
-UNSOLVED_CODES = frozenset(("no-solution", "outside-bounds"))
+UNSOLVED_CODES = frozenset(("no-solution", "outside-bounds", "outside-curve", "step-read-backwards"))
 
 
 def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str, float]) -> Solution:
@@ -35,6 +35,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         diagnostics += run.diagnostics
         diagnostics += known_bounds(prepared, run)
         diagnostics += judge_validity(prepared, run)
+        diagnostics += limits_outside_curves(prepared, run)
         limits = judge_limits(prepared, run)
         blocks = tuple(_block(prepared, block) for block in run.blocks)
         own = own_statements(prepared, run)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note, warning
@@ -16,6 +16,7 @@ from eqsheet.solve.explain import Facts, explain
 from eqsheet.solve.outcome import Status
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.display import default_unit
+from eqsheet.worksheet.curve_messages import curve_notes, outside_curve_diagnostic, stepped_diagnostic
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.places import label_of, line_words, quoted
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
@@ -64,6 +65,9 @@ def failure_diagnostic(
     writer = _Writer(system, prepared, run, result, known, guesses)
     if result.outside:
         return writer.outside_bounds(where, names)
+    by_curve = writer.by_curve(names)
+    if by_curve is not None:
+        return by_curve
     status = result.outcome.status if result.outcome is not None else Status.STALLED
     if status.solved:
         status = Status.STALLED
@@ -90,6 +94,7 @@ def failure_diagnostic(
         notes += writer.not_finite(0) or writer.terms([0])
         notes += writer.range_tried()
     notes += writer.jump()
+    notes += curve_notes(result.formulas, writer.point(), run.unknowns)
     help = _CURES.get(
         status, "give a start value near the solution (`near`), or check sign and size of the terms"
     )
@@ -148,6 +153,20 @@ class _Writer:
             *labels,
             help="widen the bound, or check the equation and the values it uses",
         )
+
+    def point(self) -> Mapping[int, float]:
+        """SI values of all quantities of the block's equations at the best point."""
+        quantities = {q for formula in self.result.formulas for q in formula.quantities}
+        return {q: self.own.get(q, self.known.values[q]) for q in quantities}
+
+    def by_curve(self, names: Sequence[str]) -> Diagnostic | None:
+        """A curve makes a solution impossible: read outside its range by what is known, or by steps backwards."""
+        known = {q: math.nan if q in self.own else value for q, value in self.point().items()}
+        for formula in self.result.formulas:
+            outside = outside_curve_diagnostic(self.system, formula, known, names)
+            if outside is not None:
+                return outside
+        return stepped_diagnostic(self.system, self.result.formulas, self.own)
 
     def at_best_point(self) -> list[str]:
         """Values of the unknowns at the best point."""

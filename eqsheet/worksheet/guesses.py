@@ -12,6 +12,7 @@ from eqsheet.model.branches import quantities_under
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.system import EquationSystem, GuessItem, Place
 from eqsheet.model.tape import Tape
+from eqsheet.worksheet.curve_messages import outside_curve_diagnostic
 from eqsheet.worksheet.places import quoted, span_of
 
 
@@ -94,6 +95,12 @@ def _values(
     )
     found = tuple(float(values[o]) for o in formula.tape.outputs)
     if not all(map(math.isfinite, found)):
+        outside = outside_curve_diagnostic(
+            system, formula, {q: known_values.get(q, math.nan) for q in formula.quantities}
+        )
+        if outside is not None:
+            diagnostics.append(outside)
+            return ()
         diagnostics.append(error("value-not-finite", "the guess is not a finite number", here))
         return ()
     return found

@@ -9,11 +9,13 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
 from eqsheet.model.branches import literal_values
 from eqsheet.model.dimension_of import dimensions_of
 from eqsheet.model.evaluate import Evidence, evaluate, evaluate_with_evidence
+from eqsheet.model.outside_curve import outside_curve
 from eqsheet.model.system import LimitItem, Validity
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.display import default_unit
 from eqsheet.units.unit import Unit
+from eqsheet.worksheet.curve_messages import outside_curve_diagnostic
 from eqsheet.worksheet.places import label_of, quoted
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import Run
@@ -35,8 +37,20 @@ def judge_limits(prepared: Prepared, run: Run) -> tuple[LimitReport, ...]:
         evidence = evaluate_with_evidence(
             formula.tape, inputs, literal_values(formula), [run.errors[q] for q in formula.quantities]
         )
-        reports.append(_report(prepared, item, evidence))
+        if outside_curve(formula.tape, evidence.values) is None:
+            reports.append(_report(prepared, item, evidence))
     return tuple(reports)
+
+
+def limits_outside_curves(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
+    """An error for each limit that cannot be judged because it reads a curve outside its range."""
+    found = (
+        outside_curve_diagnostic(
+            prepared.system, item.formula, {q: run.values[q] for q in item.formula.quantities}
+        )
+        for item in prepared.system.limits
+    )
+    return tuple(diagnostic for diagnostic in found if diagnostic is not None)
 
 
 def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitReport:
