@@ -20,6 +20,7 @@ from eqsheet.structure.analyse import analyse
 from eqsheet.structure.verdict import Structure
 from eqsheet.syntax.nodes import Statement
 from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.echoes import without_echoes
 from eqsheet.worksheet.structure_messages import structure_diagnostics
 from eqsheet.worksheet.without_unknowns import Checked, check_without_unknowns
 
@@ -87,7 +88,7 @@ def prepare(
     clock = time.perf_counter
     begin = clock()
     system, found = build_system(statements, cache, freed)
-    diagnostics = [*earlier, *found]
+    diagnostics = [*earlier, *without_echoes(found, earlier)]
     units = check_units_by_family(system)
     diagnostics += _of_a_whole(units.diagnostics, diagnostics)
     known_values: dict[int, float] = {}
