@@ -14,6 +14,7 @@ from pathlib import Path
 import mpmath
 import numpy as np
 import pytest
+from family_samples import FAMILY_SAMPLES
 from scipy import constants
 from scipy.optimize import brentq
 
@@ -414,6 +415,7 @@ AS_WRITTEN: dict[str, Callable[[], Numbers]] = {
     "linkage": linkage,
     "insulation": insulation,
     "feeder": feeder,
+    **FAMILY_SAMPLES,
 }
 
 SWITCHED: list[tuple[str, str, str, Callable[[], Numbers]]] = [
@@ -467,7 +469,9 @@ def test_sample_carries_the_caution_and_says_its_data_are_invented(name: str) ->
     assert "The lodge and its data are invented." in words
 
 
-@pytest.mark.parametrize("name", ["snowmelt", "cableway", "flue", "drying", "exchanger", "feeder"])
+@pytest.mark.parametrize(
+    "name", ["snowmelt", "cableway", "flue", "drying", "exchanger", "feeder", *FAMILY_SAMPLES]
+)
 def test_sample_has_a_block_of_four_or_more_simultaneous_unknowns(name: str) -> None:
     solution = eqsheet.load(SAMPLES / f"{name}.eqsheet").solve()
     assert max(len(block.unknowns) for block in solution.blocks) >= 4
