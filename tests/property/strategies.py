@@ -5,6 +5,8 @@ Trees carry zero for every place; compare with `eqsheet.syntax.meaning.same_mean
 
 from __future__ import annotations
 
+import re
+
 from hypothesis import strategies as st
 from hypothesis.strategies import SearchStrategy
 
@@ -238,3 +240,84 @@ def respaced_texts(draw: st.DrawFn) -> str:
         else:
             text = text[:place] + draw(st.sampled_from((" ", "  ", "\n    ", " # c\n      "))) + text[place:]
     return text
+
+
+# --- worksheets that mean something, and what slips make of them ------------------------------------------------
+
+SENSIBLE = (
+    """v = Q/(pi*D^2/4)
+dP = f*(L/D)*rho*v^2/2
+1/sqrt(f) = -2*log10(eps/(3.7*D) + 2.51/(Re*sqrt(f))) valid Re > 4000
+Re = rho*v*D/mu
+dP = 24 kPa
+L = 120 m
+D = 52.5 mm ± 0.1 mm
+eps = 0.045 mm
+rho = 998 kg/m^3
+mu = 1 mPa*s
+f near 0.02 within 0.005 .. 0.1
+v near 1 m/s within 0 m/s ..
+require 0.5 m/s <= v <= 2.5 m/s
+show Q in L/min""",
+    """Q = m_h*cp*(T_1 - T_2)
+Q = m_c*cp*(T_4 - T_3)
+Q = U*A*logmean(T_1 - T_4, T_2 - T_3)
+m_h = 0.8 kg/s
+m_c = 1.1 kg/s
+cp = 4.19 kJ/(kg*K)
+U = 850 W/(m^2*K)
+A = 6.5 m^2
+T_1 = 92 degC
+T_3 = 11 degC
+T_2 near 45 degC within 11.5 degC .. 91.9 degC
+T_4 near 50 degC within 11.1 degC .. 91.5 degC
+require Q <= 250 kW
+show T_2 in degF""",
+    """ambient = 84 kPa
+define p_sat(T in degC) in mmHg = 10^(8.07 - 1730.6/(233.4 + T)) valid 1 degC <= T <= 100 degC
+define half(x) = x/2
+p = p_sat(T)
+p = half(0.4 barg)
+new unit EUR
+price = 12 EUR/kg
+m = 3 kg
+cost = price*m
+off cost = 40 EUR
+k: y^2 = if m > 2 kg then 4 else x
+x = 3
+y near -1
+c_* within 0 ..
+c_a^2 = 9
+require y = -2 within 1 %""",
+)
+# What stands in for a piece: other names, numbers, units and operators, some of them impossible.
+_STAND_INS = (
+    *("x", "v", "T_1", "D", "p_sat", "y", "0", "1", "-1", "1e308", "1e-300", "0.5", "2^0.5", "1e400"),
+    *(" m", " kg", " degC", " K", " barg", " kPa", " mm", "", " %", " EUR", " 1/s", " kgg"),
+    *("+", "-", "*", "/", "^", "=", "<=", ">", "(", ")", " near ", " within ", "off ", "require ", "show "),
+    *("sqrt(", "ln(", "exp(", "if x > 1 then ", " else ", "logmean(", "abs(", "define f(x) = ", "# ", ": "),
+)
+
+
+@st.composite
+def slipped_worksheets(draw: st.DrawFn) -> str:
+    """Sensible worksheets with lines lost, doubled or moved and pieces exchanged; many are still read."""
+    lines = draw(st.sampled_from(SENSIBLE)).split("\n")
+    for _ in range(draw(st.integers(0, 3))):
+        place = draw(st.integers(0, len(lines) - 1))
+        what = draw(st.sampled_from(("lost", "doubled", "moved", "foreign")))
+        if what == "lost" and len(lines) > 1:
+            del lines[place]
+        elif what == "doubled":
+            lines.insert(draw(st.integers(0, len(lines))), lines[place])
+        elif what == "moved":
+            lines.insert(draw(st.integers(0, len(lines) - 1)), lines.pop(place))
+        else:
+            lines.insert(place, draw(st.sampled_from("\n".join(SENSIBLE).split("\n"))))
+    for _ in range(draw(st.integers(0, 3))):
+        place = draw(st.integers(0, len(lines) - 1))
+        pieces = re.findall(r"[\w.]+| +\S+|\W", lines[place])
+        if pieces:
+            pieces[draw(st.integers(0, len(pieces) - 1))] = draw(st.sampled_from(_STAND_INS))
+        lines[place] = "".join(pieces)
+    return "\n".join(lines)
