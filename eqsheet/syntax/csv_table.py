@@ -2,6 +2,9 @@
 
 The first line is a heading in the same words as in a worksheet: ``bus, V in kV, a of bus``. Fields are parted by
 commas, semicolons or tabs, whichever the heading has; quotes are as in RFC 4180, but a field stays on its line.
+
+The table of a surface is a grid: its first line holds the values of the second argument, after one field that is
+empty or the heading of the first argument.
 """
 
 from __future__ import annotations
@@ -50,25 +53,75 @@ def read_table(source: Source, section: str = "") -> tuple[Table | None, tuple[D
         Section of the worksheet that the rows belong to.
     """
     diagnostics: list[Diagnostic] = []
+    file = _opened(source, section, diagnostics)
+    if file is None:
+        return None, tuple(diagnostics)
+    cells = _cells(source, file.text, file.offset, file.delimiter, diagnostics) or ()
+    columns = _columns(source, cells, file.offset, diagnostics)
+    if columns is None:
+        return None, tuple(diagnostics)
+    heading = _statement(source, file.text, file.offset, file.first, cells, section)
+    return Table(heading, columns, _rows(file, heading, diagnostics)), tuple(diagnostics)
+
+
+def read_grid(source: Source, section: str = "") -> tuple[Table | None, tuple[Diagnostic, ...]]:
+    """The table of a surface in a CSV file; parameters and diagnostics as in `read_table`.
+
+    Its first row is what the first line holds after its first field; `columns` has the column of the first
+    argument, and is empty where that field is.
+    """
+    diagnostics: list[Diagnostic] = []
+    file = _opened(source, section, diagnostics)
+    if file is None:
+        return None, tuple(diagnostics)
+    cells = _cells(source, file.text, file.offset, file.delimiter, diagnostics) or ()
+    corner = cells[:1] if cells and cells[0].text else ()
+    columns = _columns(source, corner, file.offset, diagnostics)
+    if columns is None:
+        return None, tuple(diagnostics)
+    heading = _statement(source, file.text, file.offset, file.first, cells[1:], section)
+    rows = _rows(file, heading, diagnostics)
+    return Table(heading, columns, (heading, *rows)), tuple(diagnostics)
+
+
+@dataclass(frozen=True, slots=True)
+class _File:
+    """A file cut into lines: its heading is line `first`, at `offset` in the text."""
+
+    source: Source
+    section: str
+    lines: list[str]
+    first: int
+    offset: int
+    delimiter: str
+
+    @property
+    def text(self) -> str:
+        """Of the heading."""
+        return self.lines[self.first]
+
+
+def _opened(source: Source, section: str, diagnostics: list[Diagnostic]) -> _File | None:
     lines = source.text.split("\n")
     first = next((n for n, line in enumerate(lines) if line.strip()), None)
     if first is None:
         nowhere = Label(Span(source, 0, 0))
-        return None, (error("csv-empty", f"{source.name} holds no table", nowhere, help=_WANTED),)
-    delimiter = _delimiter(lines[first])
+        diagnostics.append(error("csv-empty", f"{source.name} holds no table", nowhere, help=_WANTED))
+        return None
     offset = sum(len(line) + 1 for line in lines[:first])
-    columns, cells = _columns(source, lines[first], offset, delimiter, diagnostics)
-    if columns is None:
-        return None, tuple(diagnostics)
-    heading = _statement(source, lines[first], offset, first, cells, section)
+    return _File(source, section, lines, first, offset, _delimiter(lines[first]))
+
+
+def _rows(file: _File, heading: Statement, diagnostics: list[Diagnostic]) -> tuple[Statement, ...]:
+    """All rows after the heading."""
     rows: list[Statement] = []
-    offset += len(lines[first]) + 1
-    for number in range(first + 1, len(lines)):
-        line = lines[number]
+    source, offset = file.source, file.offset + len(file.text) + 1
+    for number in range(file.first + 1, len(file.lines)):
+        line = file.lines[number]
         if line.strip():
-            found = _cells(source, line, offset, delimiter, diagnostics)
+            found = _cells(source, line, offset, file.delimiter, diagnostics)
             if found is not None:
-                rows.append(_statement(source, line, offset, number, found, section))
+                rows.append(_statement(source, line, offset, number, found, file.section))
             if len(diagnostics) >= MOST_BROKEN_ROWS or len(rows) > MOST_ROWS:
                 where = Label(Span(source, offset, offset + len(line)))
                 diagnostics.append(
@@ -78,7 +131,7 @@ def read_table(source: Source, section: str = "") -> tuple[Table | None, tuple[D
         offset += len(line) + 1
     if not rows and not diagnostics:
         diagnostics.append(error("csv-empty", "this table has no rows", Label(heading.whole), help=_WANTED))
-    return Table(heading, columns, tuple(rows)), tuple(diagnostics)
+    return tuple(rows)
 
 
 _WANTED = "the first line is the heading, and each further line a row"
@@ -98,10 +151,10 @@ def _delimiter(heading: str) -> str:
 
 
 def _columns(
-    source: Source, line: str, offset: int, delimiter: str, diagnostics: list[Diagnostic]
-) -> tuple[tuple[Column, ...] | None, tuple[Cell, ...]]:
+    source: Source, cells: tuple[Cell, ...], offset: int, diagnostics: list[Diagnostic]
+) -> tuple[Column, ...] | None:
+    """What the fields of a heading mean; None after a diagnostic."""
     columns = []
-    cells = _cells(source, line, offset, delimiter, diagnostics) or ()
     for cell in cells:
         statement, found = parse_statement(
             Source(source.name, f"{_HEAD}{cell.text}\n    a 1", numbered=False)
@@ -120,7 +173,7 @@ def _columns(
         column = node.columns[0]
         unit = None if column.unit is None else _moved(column.unit, cell.start - len(_HEAD))
         columns.append(Column(cell.start, cell.end, column.name, unit, column.of))
-    return None if diagnostics else tuple(columns), cells
+    return None if diagnostics else tuple(columns)
 
 
 def _moved(unit: UnitText, by: int) -> UnitText:

@@ -11,7 +11,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
-from eqsheet.syntax.csv_table import read_table
+from eqsheet.syntax.csv_table import Table, read_grid, read_table
 from eqsheet.syntax.nodes import Curve, Include, Rows, Statement
 from eqsheet.syntax.nodes import Text as TextNode
 from eqsheet.syntax.parse import parse_document
@@ -68,6 +68,9 @@ def _attached(statements: Sequence[Statement], work: _Attaching) -> list[Stateme
             filled = _filled(statement, node, node.path, work)
             if filled is not None:
                 result.append(filled)
+            elif isinstance(node, Curve):
+                # It stays without rows, so that its uses are not taken for slips of their own.
+                result.append(statement)
         else:
             result.append(statement)
     return result
@@ -121,9 +124,10 @@ def _filled(
         work.diagnostics.append(_unreadable(statement, written, replace(source, help="")))
         return None
     source = replace(source, name=os.path.join(work.shown, written.value), attached=True)
-    table, found = read_table(source, statement.section)
+    is_grid = isinstance(node, Curve) and len(node.parameters) == 2
+    table, found = read_grid(source, statement.section) if is_grid else read_table(source, statement.section)
     work.diagnostics.extend(found)
-    if table is None:
+    if table is None or (isinstance(node, Curve) and not _has_units_of(node, table, work)):
         return None
     if isinstance(node, Rows):
         first = table.columns[0]
@@ -140,6 +144,24 @@ def _filled(
         named = replace(node, columns=table.columns[1:], heading=table.heading)
         return replace(statement, node=named, body=table.rows)
     return replace(statement, body=table.rows)
+
+
+def _has_units_of(node: Curve, table: Table, work: _Attaching) -> bool:
+    """Whether the heading of a curve's file names no other units than the curve does."""
+    wanted = (node.parameters[0].unit, node.result_unit)
+    for column, unit in zip(table.columns, wanted):
+        text = "1" if unit is None else unit.text
+        if column.unit is not None and column.unit.text != text:
+            work.diagnostics.append(
+                error(
+                    "csv-heading",
+                    f"this column is in {column.unit.text}, and the curve `{node.name}` takes it in {text}",
+                    Label(table.heading.span(column.start, column.end)),
+                    help="write the unit of the file into the heading of the curve",
+                )
+            )
+            return False
+    return True
 
 
 def _inside(statement: Statement, written: TextNode, work: _Attaching) -> str | None:
