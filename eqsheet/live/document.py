@@ -15,6 +15,7 @@ from eqsheet.live.placing import pieces, placed, realigned, section_at, span_of_
 from eqsheet.model.build import LoweredCache
 from eqsheet.syntax.read import TextFile, read_source
 from eqsheet.worksheet.block_memory import BlockMemory
+from eqsheet.worksheet.prepare_changed import Unchanged
 from eqsheet.worksheet.sheet import Worksheet, read
 from eqsheet.worksheet.solution import Solution
 
@@ -69,6 +70,7 @@ class EditedWorksheet:
         self._history = History()
         self._cache = LoweredCache()
         self._memory = BlockMemory()
+        self._earlier: Unchanged | None = None
         text = file.text
         # A last line without an end is kept so; otherwise the split would show an empty line that is none.
         self._ends = text.endswith("\n") or not text
@@ -229,11 +231,13 @@ class EditedWorksheet:
     # --- solving ------------------------------------------------------------------------------------------
 
     def _read(self) -> Worksheet:
-        return read(Source(self._file.name, self._text()), self._cache, self._memory)
+        return read(Source(self._file.name, self._text()), self._cache, self._memory, self._earlier)
 
     def _solve(self) -> None:
         self._sheet = self._read()
+        self._earlier = None  # an interrupted computation leaves nothing to build upon
         self.solution = self._sheet.solve()
+        self._earlier = self._sheet.unchanged
         if self.solution.solved:
             self.good = self.solution
 

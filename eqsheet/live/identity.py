@@ -47,8 +47,11 @@ def replaced_by(typed: Statement, statements: Iterable[Statement]) -> Statement 
     that it gives, so that bounds are not lost with a new start value.
     """
     mine = identities(typed)
+    named = {name for _, name in mine}
     best: tuple[tuple[bool, int], Statement] | None = None
     for statement in statements:
+        if not any(name in statement.line.text for name in named):
+            continue  # spares most of them the closer look
         theirs = identities(statement)
         shared = [mine.index(identity) for identity in theirs if identity in mine]
         if not shared:

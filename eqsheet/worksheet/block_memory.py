@@ -102,13 +102,15 @@ def _moved(
         return None
     # Formula by formula: two knowns of equal value may be told apart now and may not have been before.
     rebound = []
+    same = True
     for old, new, settled in zip(kept.formulas, formulas, kept.result.formulas):
         if old.places != new.places:
             return None
         if old.statement == new.statement and old.quantities == new.quantities:
             rebound.append(settled)
             continue
+        same = False
         number = dict(zip(old.quantities, new.quantities))
         quantities = tuple([number[q] for q in settled.quantities])
         rebound.append(replace(settled, quantities=quantities, statement=new.statement))
-    return replace(kept.result, formulas=tuple(rebound))
+    return kept.result if same else replace(kept.result, formulas=tuple(rebound))

@@ -15,8 +15,8 @@ from eqsheet.diagnostics.source import Source
 from eqsheet.model.branches import settle
 from eqsheet.model.build import LoweredCache
 from eqsheet.model.check_units import AMBIENT
-from eqsheet.model.lower import IndexScope
 from eqsheet.model.lower_statements import LoweredStatement, known_name
+from eqsheet.model.scope import IndexScope
 from eqsheet.model.system import EquationItem, Place
 from eqsheet.model.tape import Literal
 from eqsheet.syntax.nodes import Statement
@@ -110,7 +110,7 @@ def _with_known(base: Prepared, text: str, cache: LoweredCache) -> Prepared | No
     # The place in the worksheet stays, and with it section and description.
     new = replace(statement, section=old.section, description=statement.description or old.description)
     before, after = cache.lowered(old, IndexScope(), False), cache.lowered(new, IndexScope(), False)
-    if before is None or after is None or not _alike(before, after):
+    if before is None or after is None or not differ_in_numbers_only(before, after):
         return None
     assert after.equation is not None
     changed = replace(
@@ -139,7 +139,7 @@ def _with_known(base: Prepared, text: str, cache: LoweredCache) -> Prepared | No
     )
 
 
-def _alike(before: LoweredStatement, after: LoweredStatement) -> bool:
+def differ_in_numbers_only(before: LoweredStatement, after: LoweredStatement) -> bool:
     """Whether two knowns differ in nothing but their numbers."""
     old, new = before.equation, after.equation
     if old is None or new is None or before.findings or after.findings:

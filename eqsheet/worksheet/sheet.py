@@ -20,6 +20,7 @@ from eqsheet.worksheet.changes import apply_changes
 from eqsheet.worksheet.collection import collection_put_off
 from eqsheet.worksheet.prepare import Prepared, prepare
 from eqsheet.worksheet.prepare_changed import Unchanged, prepare_changed, unchanged
+from eqsheet.worksheet.prepare_edited import prepare_edited
 from eqsheet.worksheet.run import run_blocks
 from eqsheet.worksheet.solution import Solution
 
@@ -42,12 +43,18 @@ class Worksheet:
     timing: float = 0.0
     cache: LoweredCache = field(default_factory=LoweredCache, repr=False, compare=False)
     memory: BlockMemory | None = field(default=None, repr=False, compare=False)
+    earlier: Unchanged | None = field(default=None, repr=False, compare=False)
     _unchanged: list[Unchanged] = field(default_factory=list, init=False, repr=False, compare=False)
 
     @property
     def name(self) -> str:
         """Name of the file."""
         return self.source.name
+
+    @property
+    def unchanged(self) -> Unchanged | None:
+        """What has been prepared of it, for `read` after an edit; None where nothing has."""
+        return self._unchanged[0] if self._unchanged else None
 
     def prepare(self, changes: Sequence[str] = (), free: Sequence[str] = ()) -> Prepared:
         """Everything up to the order of solution, before any number is computed; parameters as in `solve`."""
@@ -56,6 +63,12 @@ class Worksheet:
             again = prepare_changed(self._unchanged[0], changes, self.cache)
             if again is not None:
                 return replace(again, timing={"model": time.perf_counter() - begin, "structure": 0.0})
+        if not changes and not free and not self.diagnostics and self.earlier is not None:
+            begin = time.perf_counter()
+            edited = prepare_edited(self.earlier, self.document.statements, self.cache)
+            if edited is not None:
+                self._unchanged[:] = [replace(self.earlier, prepared=edited)]
+                return replace(edited, timing={"model": time.perf_counter() - begin, "structure": 0.0})
         statements, freed, found = apply_changes(self.document.statements, changes, free)
         if not statements and not self.diagnostics:
             found = (*found, _empty(self.source))
@@ -126,7 +139,12 @@ def parse(text: str, name: str = "<text>") -> Worksheet:
     return read(Source(name, text.replace("\r\n", "\n").removeprefix("\ufeff")))
 
 
-def read(source: Source, cache: LoweredCache | None = None, memory: BlockMemory | None = None) -> Worksheet:
+def read(
+    source: Source,
+    cache: LoweredCache | None = None,
+    memory: BlockMemory | None = None,
+    earlier: Unchanged | None = None,
+) -> Worksheet:
     """The worksheet of a source.
 
     Parameters
@@ -136,6 +154,8 @@ def read(source: Source, cache: LoweredCache | None = None, memory: BlockMemory 
         See `build_system`.
     memory : BlockMemory, optional
         Blocks solved in an earlier state of the worksheet.
+    earlier : Unchanged, optional
+        What was prepared of the state just before, with the same `cache`: see `Worksheet.unchanged`.
     """
     begin = time.perf_counter()
     document, diagnostics = parse_document(source)
@@ -144,4 +164,4 @@ def read(source: Source, cache: LoweredCache | None = None, memory: BlockMemory 
         document = replace(document, statements=statements)
         diagnostics = (*diagnostics, *found)
     taken = time.perf_counter() - begin
-    return Worksheet(source, document, diagnostics, taken, cache or LoweredCache(), memory)
+    return Worksheet(source, document, diagnostics, taken, cache or LoweredCache(), memory, earlier)
