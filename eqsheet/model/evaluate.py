@@ -161,20 +161,21 @@ def _root(a: float) -> float:
 
 
 # The same products and roots that generated code writes, so that both give the same float.
-_POWERS: dict[Fraction, Callable[[float], float]] = {
-    Fraction(2): lambda a: a * a,
-    Fraction(3): lambda a: a * a * a,
-    Fraction(-1): lambda a: divide(1.0, a),
-    Fraction(-2): lambda a: divide(1.0, a * a),
-    Fraction(1, 2): _root,
-    Fraction(-1, 2): lambda a: divide(1.0, _root(a)),
-    Fraction(3, 2): lambda a: a * _root(a),
+# Numerator and denominator are the key, since hashing a fraction takes longer than the power.
+_POWERS: dict[tuple[int, int], Callable[[float], float]] = {
+    (2, 1): lambda a: a * a,
+    (3, 1): lambda a: a * a * a,
+    (-1, 1): lambda a: divide(1.0, a),
+    (-2, 1): lambda a: divide(1.0, a * a),
+    (1, 2): _root,
+    (-1, 2): lambda a: divide(1.0, _root(a)),
+    (3, 2): lambda a: a * _root(a),
 }
 
 
 def exact_power(a: float, r: Fraction) -> float:
     """a to an exact power, by products and roots where generated code uses them; see `raised`."""
-    short = _POWERS.get(r)
+    short = _POWERS.get((r.numerator, r.denominator))
     return short(a) if short else raised(a, as_float(r))
 
 
@@ -274,48 +275,73 @@ def evaluate_with_evidence(
     the one chosen; ``hypot`` and ``logmean`` the larger one of their operands'. Sizes of dimensioned values
     scale with their units.
     """
-    values = evaluate(tape, quantities, literals)
+    values: list[Any] = []
     sizes: list[float] = []
     bounds: list[float] = []
     instructions: tuple[tuple[Any, ...], ...] = tape.instructions
-    for i, instruction in enumerate(instructions):
+    for instruction in instructions:
         operation = instruction[0]
-        v = values[i]
+        # Most instructions are one of the first six, which are written out: this is the inner loop of a judgement.
         if operation == "quantity":
+            v = float(quantities[instruction[1]])
             size, error = abs(v), 0.0 if errors is None else abs(errors[instruction[1]])
+        elif operation == "mul":
+            _, i, j = instruction
+            a, b, a_size, b_size = values[i], values[j], sizes[i], sizes[j]
+            v = a * b
+            size = a_size * b_size if a_size and b_size else 0.0
+            error = _product_error(a, bounds[i], b, bounds[j]) + _product_rounding(v, a, b)
         elif operation == "literal":
+            v = float(literals[instruction[1]])
             size, error = abs(v), 0.0
         elif operation == "const":
+            v = as_float(instruction[1])
             size, error = abs(v), 0.0 if _is_exact(instruction[1], v) else _rounding(v)
+        elif operation == "add" or operation == "sub":
+            _, i, j = instruction
+            a, b = values[i], values[j]
+            v = a + b if operation == "add" else a - b
+            size = max(sizes[i], sizes[j], abs(v))
+            error = bounds[i] + bounds[j] + (ROUNDING * abs(v) + _UNDERFLOW if v else 0.0)
         elif operation in _TRUTH:
+            v = _STEPS[operation](*[values[i] for i in instruction[1:]])
             size, error = 0.0, 0.0
         elif operation in UNARY:
-            a = instruction[1]
-            size, error = _unary_evidence(operation, v, values[a], sizes[a], bounds[a])
-        elif operation in ("power", "strip", "attach"):
-            a = instruction[1]
-            size, error = _EVIDENCE[operation](v, values[a], sizes[a], bounds[a], instruction[2])
+            i = instruction[1]
+            v = _STEPS[operation](values[i])
+            size, error = _unary_evidence(operation, v, values[i], sizes[i], bounds[i])
+        elif operation in _OF_ATTRIBUTE:
+            _, i, attribute = instruction
+            v = _OF_ATTRIBUTE[operation](values[i], attribute)
+            size, error = _EVIDENCE[operation](v, values[i], sizes[i], bounds[i], attribute)
         elif operation in _INTERPOLATED:
             operands = instruction[1:-1]
+            arguments = [values[i] for i in operands]
+            v = value_or_nan(instruction[-1], *arguments)
             size, error = _interpolated_evidence(
-                v, instruction[-1], *([part[a] for a in operands] for part in (values, sizes, bounds))
+                v, instruction[-1], arguments, [sizes[i] for i in operands], [bounds[i] for i in operands]
             )
         elif operation == "if":
-            _, c, a, b = instruction
-            chosen = a if values[c] else b
+            _, c, i, j = instruction
+            v = _STEPS["if"](values[c], values[i], values[j])
+            chosen = i if values[c] else j
             size, error = sizes[chosen], bounds[chosen]
         elif operation == "neg":
-            size, error = sizes[instruction[1]], bounds[instruction[1]]
+            i = instruction[1]
+            v, size, error = -values[i], sizes[i], bounds[i]
         else:
-            _, a, b = instruction
-            size, error = _EVIDENCE[operation](
-                v, values[a], sizes[a], bounds[a], values[b], sizes[b], bounds[b]
-            )
+            _, i, j = instruction
+            a, b = values[i], values[j]
+            v = _STEPS[operation](a, b)
+            size, error = _EVIDENCE[operation](v, a, sizes[i], bounds[i], b, sizes[j], bounds[j])
+        values.append(v)
         sizes.append(size)
         bounds.append(error)
     return Evidence(tuple(values), tuple(sizes), tuple(bounds))
 
 
+# Whole numbers up to here are floats.
+_WHOLE = 2**53
 _TRUTH = frozenset({"lt", "le", "eq", "and", "or", "not"})
 # Roundings of a curve in units of 2^-53 of the sizes of its terms: four products and sums, and the distance
 # from the point before.
@@ -324,7 +350,13 @@ _CURVE_UNITS = 16.0
 
 def _is_exact(constant: Any, value: float) -> bool:
     """Whether `value` stands for the constant exactly."""
-    return not math.isfinite(value) or Fraction(constant) == Fraction(value)
+    if isinstance(constant, float) or not math.isfinite(value):
+        return True
+    above, below = constant.numerator, constant.denominator
+    if below == 1 and -_WHOLE <= above <= _WHOLE:
+        return True
+    # In lowest terms a fraction is a float only if its denominator is a power of two.
+    return not below & (below - 1) and Fraction(constant) == Fraction(value)
 
 
 def _rounding(v: float, units: float = 1.0) -> float:
@@ -379,7 +411,7 @@ def _of_power(v: float, a: float, size: float, error: float, exponent: Fraction)
     r = as_float(exponent)
     slope = abs(r) * abs(raised(a, r - 1.0))
     # The exponent itself is rounded where it is no float; its effect is |ln a| times that.
-    inexact = 0.0 if Fraction(r) == exponent or not a else abs(r * v * math.log(abs(a))) * ROUNDING
+    inexact = 0.0 if _is_exact(exponent, r) or not a else abs(r * v * math.log(abs(a))) * ROUNDING
     bound = _product(slope, error) + _rounding(v, 4.0) + inexact
     return _safe_power(v, divide(size, abs(a)) if a else 1.0, r, size), bound
 
@@ -397,17 +429,11 @@ def _of_attach(v: float, a: float, size: float, error: float, unit: Any) -> tupl
     return max(size * factor, abs(unit.origin), abs(v)), error * factor + rounding + _rounding(v)
 
 
-def _of_sum(
-    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
-) -> tuple[float, float]:
-    return max(a_size, b_size, abs(v)), a_error + b_error + _rounding(v)
-
-
-def _of_product(
-    v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
-) -> tuple[float, float]:
-    error = _product(abs(a), b_error) + _product(abs(b), a_error) + _product(a_error, b_error)
-    return _product(a_size, b_size), error + _product_rounding(v, a, b)
+def _product_error(a: float, a_error: float, b: float, b_error: float) -> float:
+    """What the errors of two factors make of their product."""
+    if not a_error and not b_error:
+        return 0.0
+    return _product(abs(a), b_error) + _product(abs(b), a_error) + _product(a_error, b_error)
 
 
 def _product_rounding(v: float, a: float, b: float) -> float:
@@ -417,10 +443,11 @@ def _product_rounding(v: float, a: float, b: float) -> float:
 def _of_quotient(
     v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
 ) -> tuple[float, float]:
-    room = abs(b) - b_error
+    below = abs(b)
+    room = below - b_error
     spread = a_error + _product(abs(v), b_error)
     error = (spread / room if room > 0.0 else math.inf) if spread else 0.0
-    size = _product(divide(a_size, abs(b)), divide(b_size, abs(b))) if a_size else 0.0
+    size = _product(divide(a_size, below), divide(b_size, below)) if a_size else 0.0
     return size, error + (_rounding(v) if v or not a else _UNDERFLOW)
 
 
@@ -480,9 +507,6 @@ _EVIDENCE: dict[str, Callable[..., tuple[float, float]]] = {
     "power": _of_power,
     "strip": _of_strip,
     "attach": _of_attach,
-    "add": _of_sum,
-    "sub": _of_sum,
-    "mul": _of_product,
     "div": _of_quotient,
     "pow": _of_general_power,
     "min": _of_smaller,
