@@ -14,6 +14,8 @@ from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula, operands_of
 from eqsheet.worksheet.places import quoted
 
+#: Codes that say a curve makes a solution impossible, wherever the search starts.
+OF_CURVES = frozenset(("outside-curve", "step-read-backwards"))
 # How near to an end of a range a search counts as stopped there, relative to the range.
 _AT_THE_END = 1e-6
 _MOST_CURVES = 3

@@ -13,6 +13,7 @@ from eqsheet.model.tape import Formula
 from eqsheet.solve.trail import Budget
 from eqsheet.structure.verdict import Conflict
 from eqsheet.worksheet.block_memory import BlockMemory
+from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
 from eqsheet.worksheet.follow_from_knowns import follow_from_knowns
 from eqsheet.worksheet.guesses import Guesses, work_out_guesses
@@ -122,10 +123,14 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
         run = BlockRun(number, tuple(equations), block.columns, after, result)
         runs.append(run)
         if result is not None:
-            if not result.solved:
-                diagnostics.append(failure_diagnostic(system, prepared, run, known, guesses))
-            else:
+            if result.solved:
                 diagnostics += trust_warnings(system, run)
+            else:
+                failure = failure_diagnostic(system, prepared, run, known, guesses)
+                diagnostics.append(failure)
+                if failure.code in OF_CURVES:
+                    # No start would help.
+                    continue
             diagnostics += start_note(system, run)
     verdicts = _conflicts(prepared, formulas, values, errors)
     diagnostics += [diagnostic for _, _, diagnostic in verdicts]

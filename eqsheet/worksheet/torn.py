@@ -136,8 +136,10 @@ class TornBlock:
                 function = safe_function(equation_partials(formula.tape, slots))
                 result = function(*self._arguments(formula.quantities, values), *literal_values(formula))
                 residuals[row], *parts = result if slots else (result,)
-                for slot, part in zip(slots, parts):
-                    jacobian[row] += part * slopes[self._position[formula.quantities[slot]]]
+                with np.errstate(invalid="ignore"):
+                    # A slope may be infinite, as that of a curve read backwards where it is level.
+                    for slot, part in zip(slots, parts):
+                        jacobian[row] += part * slopes[self._position[formula.quantities[slot]]]
             return residuals, jacobian
 
         def sizes(x: Vector) -> Vector:
