@@ -55,18 +55,19 @@ def moved(old: Solution | None, new: Solution) -> Moved:
     if old is None:
         return Moved(fails=tuple(limit for limit in new.limits if not limit.holds))
     changes = []
-    for name, value in new.items():
-        before = old.get(name)
-        if before is not None and before is not value:
-            change = _change(before, value)
-            if change is not None:
-                changes.append(change)
+    for name, value in new.quantities.items():
+        before = old.quantities.get(name)
+        if before is None or (before.si == value.si and before.shown_in is value.shown_in):
+            continue
+        change = _change(before, value)
+        if change is not None:
+            changes.append(change)
     changes.sort(key=lambda c: (-abs(c.relative), c.new.name))
     held = {limit.text: limit.holds for limit in old.limits}
     return Moved(
         tuple(changes),
-        tuple([value for name, value in new.items() if name not in old]),
-        tuple([value for name, value in old.items() if name not in new]),
+        tuple([value for name, value in new.quantities.items() if name not in old.quantities]),
+        tuple([value for name, value in old.quantities.items() if name not in new.quantities]),
         tuple([limit for limit in new.limits if not limit.holds and held.get(limit.text, True)]),
         tuple([limit for limit in new.limits if limit.holds and held.get(limit.text) is False]),
     )

@@ -11,12 +11,15 @@ from __future__ import annotations
 import re
 from collections.abc import Mapping
 from dataclasses import dataclass
+from functools import lru_cache
 from types import MappingProxyType
+from typing import NamedTuple
 
 from eqsheet.diagnostics.source import Source
 from eqsheet.syntax.nodes import LogicalLine, Prose
 
 TAB_WIDTH = 4
+_REMEMBERED_LENGTH = 300
 
 _NAME = r"[^\W\d][\w\u0300-\u036f]*"
 # Also where the head is broken: its indented lines are then still rows, and not a broken statement each.
@@ -99,6 +102,60 @@ def logical_lines(source: Source) -> Lines:
     return _Splitter(source.text).lines()
 
 
+class _AboutLine(NamedTuple):
+    """What a physical line says for itself, wherever it stands.
+
+    Attributes
+    ----------
+    code, comment
+        As from `split_comment`.
+    stripped : str
+        The code without outer blanks.
+    lead : int
+        Characters before the code.
+    indent : int
+        Columns of indentation; 0 where there is no code.
+    depth : int
+        Brackets opened less brackets closed.
+    goes_on, carries_on : bool
+        The statement goes on below it; it goes on with the statement above.
+    """
+
+    code: str
+    comment: str | None
+    stripped: str
+    lead: int
+    indent: int
+    depth: int
+    goes_on: bool
+    carries_on: bool
+
+
+def _about(line: str) -> _AboutLine:
+    # Most lines are met again after each edit of a worksheet; long ones are rare and not worth the memory.
+    return _remembered_line(line) if len(line) <= _REMEMBERED_LENGTH else _read_line(line)
+
+
+def _read_line(line: str) -> _AboutLine:
+    code, comment = split_comment(line)
+    stripped = code.strip()
+    if not stripped:
+        return _AboutLine(code, comment, "", len(code), 0, 0, False, False)
+    return _AboutLine(
+        code,
+        comment,
+        stripped,
+        len(code) - len(code.lstrip()),
+        indentation(line) if line[0] in " \t" else 0,
+        _depth(code),
+        _GOES_ON.search(stripped) is not None,
+        _CARRIES_ON.match(line) is not None,
+    )
+
+
+_remembered_line = lru_cache(maxsize=1 << 14)(_read_line)
+
+
 class _Splitter:
     def __init__(self, text: str) -> None:
         self._physical = text.split("\n")
@@ -113,16 +170,15 @@ class _Splitter:
         table_indent: int | None = None
         while number < len(physical):
             line = physical[number]
-            code, comment = split_comment(line)
-            stripped = code.strip()
+            here = _about(line)
+            stripped, comment, indent = here.stripped, here.comment, here.indent
             if not stripped:
                 if comment is not None:
                     self._add_prose(number, line.strip())
                 offset += len(line) + 1
                 number += 1
                 continue
-            indent = indentation(line) if line[0] in " \t" else 0
-            start = offset + len(code) - len(code.lstrip())
+            start = offset + here.lead
             if table_indent is not None and indent > table_indent:
                 self._table_rows.add(len(self._logical))
                 self._logical.append(
@@ -131,7 +187,10 @@ class _Splitter:
                 offset += len(line) + 1
                 number += 1
                 continue
-            last, depth = self._last_line(number, code, indent)
+            if self._stands_alone(number, here):
+                last, depth = number, here.depth
+            else:
+                last, depth = self._last_line(number, here.code, indent)
             if last == number:
                 text = stripped
                 offset += len(line) + 1
@@ -160,6 +219,15 @@ class _Splitter:
             self._prose.append(Prose(number + 1, title, title, len(heading[1])))
         else:
             self._prose.append(Prose(number + 1, line[1:].removeprefix(" ")))
+
+    def _stands_alone(self, number: int, here: _AboutLine) -> bool:
+        """Whether the statement plainly ends in its first line; what `_last_line` finds for nearly every line."""
+        if here.depth > 0 or here.goes_on:
+            return False
+        if number + 1 == len(self._physical):
+            return True
+        below = _about(self._physical[number + 1])
+        return not below.stripped or not below.carries_on
 
     def _last_line(self, first: int, code: str, indent: int) -> tuple[int, int]:
         """Number of the last physical line of the statement from `first` on, and brackets left open."""

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import math
 from fractions import Fraction
+from functools import lru_cache
 
 from eqsheet.units.dimension import DIMENSIONLESS, SI_BASES, Dimension
 from eqsheet.units.registry import UnitTable
@@ -93,6 +94,7 @@ PRICED_BY = (("energy", "kWh"), ("power", "kW"), ("time", "h"))
 _PLAIN = Unit("", DIMENSIONLESS, 1.0)
 
 
+@lru_cache(maxsize=512)
 def parse_product(text: str) -> tuple[tuple[str, Fraction], ...]:
     """Factors of a unit text of the simple form of the tables above: ``A*s/(V*m)``.
 

@@ -21,7 +21,10 @@ from eqsheet.syntax.walk import walk
 def loops(count: int) -> str:
     """`count` copies of the loop, each with names of its own: twenty equations each."""
     text = LOOP.read_text(encoding="utf-8")
-    return "\n".join(_renamed(text, f"_{i:02}") for i in range(1, count + 1))
+    # Pipes of different length, so that no loop has the solution of another.
+    return "\n".join(
+        _renamed(text.replace("120 m ", f"{119 + i} m "), f"_{i:02}") for i in range(1, count + 1)
+    )
 
 
 def _renamed(text: str, ending: str) -> str:
