@@ -12,6 +12,8 @@ from eqsheet.solve.problem import Matrix, Vector
 # Condition number of the scaled Jacobian beyond which a Newton step has no digit left (1/eps is 4.5e15,
 # less one digit for the elimination and one for the scaling).
 SINGULAR_CONDITION = 1e14
+# Rounds of rows and columns in turn; a chain of stages needs more than one, and few gain by more than three.
+EQUILIBRATION_ROUNDS = 3
 # Stands in for the size of an empty row.
 TINY = float(np.finfo(float).tiny)
 
@@ -83,13 +85,26 @@ def factorise(jacobian: Matrix, weights: Vector) -> Factor:
     matrix /= rows[:, None]
     inverse, condition = _inverse(matrix)
     if condition > SINGULAR_CONDITION:
-        # The sizes of the unknowns may be far off: scale the columns by what stands in them before giving up.
-        columns = np.maximum(np.abs(matrix).max(axis=0), TINY)
-        inverse, condition = _inverse(matrix / columns)
-        inverse = inverse / columns[:, None]
+        # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up.
+        left, right = _equilibration(matrix)
+        inverse, condition = _inverse(matrix * right / left[:, None])
+        inverse = inverse * right[:, None] / left
     if condition > SINGULAR_CONDITION:
         return Factor(matrix, weights, rows, pseudo_inverse(matrix), np.inf)
     return Factor(matrix, weights, rows, inverse, condition)
+
+
+def _equilibration(matrix: Matrix) -> tuple[Vector, Vector]:
+    """Divisors of the rows and factors of the columns after which both have sizes near 1.
+
+    The rows end with the absolute sum 1, as without this.
+    """
+    rows, columns = np.ones(len(matrix)), np.ones(len(matrix))
+    size = np.abs(matrix)
+    for _ in range(EQUILIBRATION_ROUNDS):
+        columns /= np.maximum((size * columns / rows[:, None]).max(axis=0), TINY)
+        rows *= np.maximum((size * columns / rows[:, None]).sum(axis=1), TINY)
+    return rows, columns
 
 
 def _inverse(matrix: Matrix) -> tuple[Matrix, float]:

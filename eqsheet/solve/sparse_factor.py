@@ -9,7 +9,7 @@ import numpy as np
 import scipy.sparse as sp
 from scipy.sparse.linalg import lsqr, splu
 
-from eqsheet.solve.factor import Factor
+from eqsheet.solve.factor import EQUILIBRATION_ROUNDS, SINGULAR_CONDITION, TINY, Factor
 from eqsheet.solve.problem import Matrix, Vector
 
 
@@ -18,15 +18,17 @@ class SparseInverse:
     """Applies the inverse by ``@``, as a dense inverse does."""
 
     lu: Any
+    left: Vector
+    right: Vector
 
     def __matmul__(self, right: Vector) -> Vector:
-        return np.asarray(self.lu.solve(right))
+        return np.asarray(self.right * self.lu.solve(right / self.left))
 
     def row(self, number: int) -> Vector:
         """One row (n,) of the inverse."""
         unit = np.zeros(self.lu.shape[0])
-        unit[number] = 1.0
-        return np.asarray(self.lu.solve(unit, trans="T"))
+        unit[number] = self.right[number]
+        return np.asarray(self.lu.solve(unit, trans="T") / self.left)
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,15 +53,40 @@ def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
     rows = np.asarray(abs(scaled).sum(axis=1)).ravel()
     rows[rows == 0.0] = 1.0
     scaled = sp.csc_matrix(sp.diags(1.0 / rows) @ scaled)
+    ones = np.ones(scaled.shape[0])
+    inverse, condition = _inverse(scaled, ones, ones)
+    if condition > SINGULAR_CONDITION:
+        # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up.
+        left, right = _equilibration(scaled)
+        inverse, condition = _inverse(scaled, left, right)
+    if inverse is None:
+        return Factor(scaled, weights, rows, SparseLeastSquares(scaled), np.inf)
+    return Factor(scaled, weights, rows, inverse, condition)
+
+
+def _inverse(matrix: Any, left: Vector, right: Vector) -> tuple[SparseInverse | None, float]:
+    """Inverse by way of the matrix with rows divided by `left` and columns times `right`, and its
+    condition."""
     try:
-        lu = splu(scaled)
+        lu = splu(sp.csc_matrix(sp.diags(1.0 / left) @ matrix @ sp.diags(right)))
     except RuntimeError:
         # SuperLU's only way to say "exactly singular".
-        return Factor(scaled, weights, rows, SparseLeastSquares(scaled), np.inf)
+        return None, np.inf
     pivots = np.abs(lu.U.diagonal())
     smallest = float(pivots.min())
-    condition = float(pivots.max()) / smallest if smallest > 0.0 else np.inf
-    return Factor(scaled, weights, rows, SparseInverse(lu), condition)
+    return SparseInverse(lu, left, right), float(pivots.max()) / smallest if smallest > 0.0 else np.inf
+
+
+def _equilibration(matrix: Any) -> tuple[Vector, Vector]:
+    """As in `factor`: divisors of the rows and factors of the columns after which both have sizes near 1."""
+    rows, columns = np.ones(matrix.shape[0]), np.ones(matrix.shape[0])
+    size = abs(matrix)
+    for _ in range(EQUILIBRATION_ROUNDS):
+        now = sp.diags(1.0 / rows) @ size @ sp.diags(columns)
+        columns /= np.maximum(now.max(axis=0).toarray().ravel(), TINY)
+        now = sp.diags(1.0 / rows) @ size @ sp.diags(columns)
+        rows *= np.maximum(np.asarray(now.sum(axis=1)).ravel(), TINY)
+    return rows, columns
 
 
 # Shift that keeps a singular matrix factorisable, relative to its rows of sum 1, and the iterations it
