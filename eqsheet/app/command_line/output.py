@@ -10,8 +10,9 @@ from eqsheet.app.colours import palette_for
 from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.diagnostics.terminal import render
 
-# Nobody reads further before mending the first; `--json` gives all.
-MOST_PRINTED = 100
+# Nobody reads further before mending the first; `--json` gives all. More than the broken statements that are read, so
+# that it is still said where reading stopped.
+MOST_PRINTED = 250
 
 
 def print_diagnostics(diagnostics: Iterable[Diagnostic]) -> None:
