@@ -6,6 +6,8 @@ import math
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass, field
 
+import numpy as np
+
 from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.model.branches import literal_values
 from eqsheet.model.evaluate import evaluate_with_evidence
@@ -70,6 +72,8 @@ class Run:
         return any(b.result is not None and not b.result.solved for b in self.blocks)
 
 
+# Overflow far from the solution is a step to be shortened, not a message to the user.
+@np.errstate(all="ignore")
 def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = None) -> Run:
     """Solve block after block; what depends on a failed block is left out.
 

@@ -321,3 +321,31 @@ def slipped_worksheets(draw: st.DrawFn) -> str:
             pieces[draw(st.integers(0, len(pieces) - 1))] = draw(st.sampled_from(_STAND_INS))
         lines[place] = "".join(pieces)
     return "\n".join(lines)
+
+
+_NUMBERS = (
+    "0",
+    "1",
+    "-1",
+    "2",
+    "0.5",
+    "-3.7",
+    "1e3",
+    "1e-3",
+    "1e9",
+    "1e-9",
+    "1e150",
+    "1e-150",
+    "1e308",
+    "1e-300",
+)
+
+
+@st.composite
+def renumbered_worksheets(draw: st.DrawFn) -> str:
+    """Sensible worksheets with other numbers in a few places: most are valid, and many have no solution."""
+    pieces = re.split(r"((?<![\w.])\d[\d.]*(?![\w.]))", draw(st.sampled_from(SENSIBLE)))
+    places = range(1, len(pieces), 2)
+    for place in draw(st.lists(st.sampled_from(places), min_size=1, max_size=4)):
+        pieces[place] = draw(st.sampled_from(_NUMBERS))
+    return "".join(pieces)
