@@ -25,7 +25,7 @@ def settle(formula: Formula, known: Callable[[int], float | None]) -> Formula:
         Quantity number to its SI value, None where it has none. A `dict.get` will do.
     """
     tape = formula.tape
-    if not any(instruction[0] == "if" for instruction in tape.instructions):
+    if not conditions(tape):
         return formula
     values = [known(q) for q in formula.quantities]
     results: list[Any] | None = None

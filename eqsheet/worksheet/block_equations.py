@@ -90,6 +90,7 @@ class _OneByOne:
         self._formulas = formulas
         self._unknowns = unknowns
         self._values = values
+        self._sized: tuple[Vector, Vector] | None = None
 
     def _inputs(self, x: Vector) -> Callable[[Formula], list[float]]:
         own = dict(zip(self._unknowns, x.tolist()))
@@ -116,10 +117,14 @@ class _OneByOne:
 
     def sizes(self, x: Vector) -> Vector:
         """Size of each equation at x."""
+        # The end of an iteration asks several times about its last point.
+        if self._sized is not None and np.array_equal(self._sized[0], x):
+            return self._sized[1]
         inputs = self._inputs(x)
         sizes = np.empty(len(self._formulas))
         for row, formula in enumerate(self._formulas):
             evidence = evaluate_with_evidence(formula.tape, inputs(formula), literal_values(formula))
             left, right = formula.tape.outputs
             sizes[row] = max(evidence.sizes[left], evidence.sizes[right])
+        self._sized = x.copy(), sizes
         return sizes

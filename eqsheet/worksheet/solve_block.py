@@ -132,33 +132,33 @@ def _closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses)
     isolation = isolate(tape, slot)
     inputs = [known.values[q] for q in formula.quantities]
     literals = literal_values(formula)
-    candidates: list[tuple[float, Tape]] = []
+    errors = [known.errors[q] for q in formula.quantities]
+    found: list[tuple[float, float]] = []
+
+    def consider(form: Tape, condition: Tape | None) -> None:
+        evidence = evaluate_with_evidence(form, inputs, literals, errors)
+        (output,) = form.outputs
+        value = evidence.values[output]
+        if not math.isfinite(value):
+            return
+        if condition is None or evaluate(condition, inputs, literals)[condition.outputs[0]] is True:
+            found.append((value, evidence.errors[output]))
+
     if isolation is not None:
         for candidate in isolation.candidates:
-            value = evaluate(candidate.tape, inputs, literals)[candidate.tape.outputs[0]]
-            if not math.isfinite(value):
-                continue
-            if candidate.condition is not None:
-                truth = evaluate(candidate.condition, inputs, literals)[candidate.condition.outputs[0]]
-                if truth is not True:
-                    continue
-            candidates.append((value, candidate.tape))
+            consider(candidate.tape, candidate.condition)
     else:
         affine = affine_in(tape, slot)
         if affine is None:
             return None
-        value = evaluate(affine.solution, inputs, literals)[affine.solution.outputs[0]]
-        if math.isfinite(value):
-            candidates.append((value, affine.solution))
-    if not candidates:
+        consider(affine.solution, None)
+    if not found:
         return None
     low, high = guesses.bounds(unknown)
-    inside = [c for c in candidates if _within(c[0], low, high)]
+    inside = [c for c in found if _within(c[0], low, high)]
     near = guesses.near.get(unknown)
-    choice = inside or candidates
-    value, closed = choice[0] if near is None else min(choice, key=lambda c: abs(c[0] - near))
-    evidence = evaluate_with_evidence(closed, inputs, literals, [known.errors[q] for q in formula.quantities])
-    error = evidence.errors[closed.outputs[0]]
+    choice = inside or found
+    value, error = choice[0] if near is None else min(choice, key=lambda c: abs(c[0] - near))
     inputs[slot] = value
     afresh = evaluate_with_evidence(tape, inputs, literals)
     left, right = tape.outputs
@@ -202,8 +202,8 @@ def _solve_plain(
     own = set(unknowns)
     if all(is_linear_in(f.tape, {s for s, q in enumerate(f.quantities) if q in own}) for f in formulas):
         return linear_step(problem, problem.start, Trail("linear", problem.start, budget)), problem
-    torn = torn_block(formulas, unknowns, known.values, start)
-    if torn is not None and start.blind:
+    torn = torn_block(formulas, unknowns, known.values, start) if start.blind else None
+    if torn is not None:
         begin = _consistent(torn, start)
         problem = replace(problem, start=np.array(begin.values), magnitude=np.array(begin.magnitude))
         if len(torn.tears) == 1:
@@ -212,14 +212,15 @@ def _solve_plain(
             if outcome is not None:
                 return outcome, problem
     outcome = solve_block(problem, budget)
-    if outcome.solved or torn is None or outcome.status is Status.INTERRUPTED:
+    if outcome.solved or outcome.status is Status.INTERRUPTED:
+        return outcome, problem
+    torn = torn or torn_block(formulas, unknowns, known.values, start)
+    if torn is None:
         return outcome, problem
     return _solve_torn(torn, problem, outcome, budget) or outcome, problem
 
 
-def _problem(
-    formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start
-) -> Problem:
+def _problem(formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start) -> Problem:
     """The block for the solver: as arrays where it is large, else as one generated function."""
     if len(unknowns) < LARGE_BLOCK:
         return block_problem(formulas, unknowns, known.values, start)
