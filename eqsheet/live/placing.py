@@ -8,6 +8,7 @@ from itertools import pairwise
 from eqsheet.diagnostics.source import Source
 from eqsheet.live.identity import replaced_by
 from eqsheet.live.lines import Edit
+from eqsheet.live.parts import Part, part_replaced_by
 from eqsheet.syntax.lines import logical_lines, split_comment
 from eqsheet.syntax.nodes import Document, Prose, Statement
 from eqsheet.syntax.parse import parse_statement
@@ -33,6 +34,9 @@ def placed(text: str, lines: Sequence[str], document: Document, section: str | N
             first, last = span_of_lines(old, lines)
             new = _in_place_of(text, statement, lines[first : last + 1], old)
             return Edit(first, tuple(lines[first : last + 1]), new)
+        part = part_replaced_by(statement, document.statements)
+        if part is not None:
+            return _with_part(lines, *part)
     at = len(lines) if text.startswith("##") else end_of_section(lines, document, section)
     new = tuple(text.split("\n"))
     if text.startswith("##") and at > 0 and lines[at - 1].strip():
@@ -134,6 +138,15 @@ def realigned(new: str, old: str) -> str:
     if comment is None or comment != same or code.strip() == before.strip():
         return new
     return _commented(new, before, comment)
+
+
+def _with_part(lines: Sequence[str], old: Statement, part: Part) -> Edit:
+    """The edit that writes a part of a statement of one line anew."""
+    index = old.line.line - 1
+    line = lines[index]
+    start, end, text = part
+    lead = len(line) - len(line.lstrip())
+    return Edit(index, (line,), (realigned(line[: lead + start] + text + line[lead + end :], line),))
 
 
 def _labelled(line: str, label: str, off: bool) -> str:

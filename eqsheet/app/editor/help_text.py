@@ -6,9 +6,10 @@ from eqsheet.app.editor.words import WORDS
 from eqsheet.review.columns import in_columns
 
 _HEAD = """\
-Type a statement and the worksheet is solved with it: a known takes the place of the known of that
-name, keeping its label and comment; anything else joins the section you changed last. A statement
-goes on in the next line while a bracket is open or the line ends in an operator.
+Type a statement and the worksheet is solved with it. A known takes the place of the known of that
+name and keeps its label and comment; so do a start value (`f near 0.02`), a shown unit, a definition
+and whatever has the same label. Anything else joins the section you changed last. A statement goes on
+in the next line while a bracket is open or the line ends in an operator.
 """
 
 _FOOT = """

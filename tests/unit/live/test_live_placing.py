@@ -73,7 +73,8 @@ def test_statement_takes_the_place_of_the_one_it_is_about(typed, old, new):
     "typed",
     [
         "v = Q/A",  # an equation is no known: there may be any number of them
-        "f near 0.03",  # would lose the bounds of the guess that is there
+        "f within 0.01 .. 0.1",  # would lose the start value of the guess that is there
+        "off f near 0.03",
         "require v <= 2 m/s",
         "D = = 3",  # broken: taken in as it is
         "# a note",
@@ -81,6 +82,27 @@ def test_statement_takes_the_place_of_the_one_it_is_about(typed, old, new):
 )
 def test_anything_else_is_added_at_the_end(typed):
     assert after(typed) == SHEET + typed + "\n"
+
+
+@pytest.mark.parametrize(
+    ("sheet", "typed", "expected"),
+    [
+        (
+            "f near 0.02 within 0.005 .. 0.1 # guess\n",
+            "f near 0.03",
+            "f near 0.03 within 0.005 .. 0.1 # guess\n",
+        ),
+        ("f within 0.005 .. 0.1 near 0.02\n", "f near 2*f_0", "f within 0.005 .. 0.1 near 2*f_0\n"),
+        ("  show V in L/min, T in degC\n", "show V in m^3/h", "  show V in m^3/h, T in degC\n"),
+        ("show V in L/min, T in degC\n", "show T in K", "show V in L/min, T in K\n"),
+        ("show V, T in degC\n", "show V in m^3/h", "show V in m^3/h, T in degC\n"),
+        ("off show V in L/min\n", "show V in m^3/h", "off show V in L/min\nshow V in m^3/h\n"),
+        ("show V in L/min\n", "show T in K", "show V in L/min\nshow T in K\n"),
+        ("f within 0.005 .. 0.1\n", "f near 0.03", "f within 0.005 .. 0.1\nf near 0.03\n"),
+    ],
+)
+def test_part_of_a_statement_is_given_anew(sheet, typed, expected):
+    assert after(typed, sheet) == expected
 
 
 def test_addition_joins_the_section_last_touched():
