@@ -201,7 +201,9 @@ def _function(slope: Callable[[Array, Array], Array]) -> Callable[..., tuple[Any
     def rule(instruction: Any, v: Array, values: Any, sizes: Any, bounds: Any) -> tuple[Any, Any]:
         a = instruction[1]
         steep = np.abs(slope(values[a], v))
-        return np.maximum(np.abs(v), _product(steep, sizes[a])), _product(steep, bounds[a]) + _rounding(v, 4.0)
+        return np.maximum(np.abs(v), _product(steep, sizes[a])), _product(steep, bounds[a]) + _rounding(
+            v, 4.0
+        )
 
     return rule
 

@@ -267,7 +267,7 @@ _SCALAR_POWERS = {
 _REPEATING = frozenset({Fraction(2), Fraction(3), Fraction(-2), Fraction(3, 2)})
 
 
-def _number(constant: object) -> str:
+def _number(constant: Fraction | float) -> str:
     value = as_float(constant)
     return repr(value) if value >= 0 else f"({value!r})"
 
