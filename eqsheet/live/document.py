@@ -12,7 +12,7 @@ from eqsheet.live.journal import Journal, Recovered
 from eqsheet.live.lines import Edit, History, between
 from eqsheet.live.moved import Moved, moved
 from eqsheet.live.placing import pieces, placed, realigned, section_at, span_of_lines, statement_at
-from eqsheet.model.build import LoweredCache
+from eqsheet.model.lowered_cache import LoweredCache
 from eqsheet.syntax.read import TextFile, read_source
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.prepare_changed import Unchanged

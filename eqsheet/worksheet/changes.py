@@ -7,7 +7,7 @@ from dataclasses import replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.diagnostics.source import Source
-from eqsheet.model.build import not_a_known
+from eqsheet.model.gather import not_a_known
 from eqsheet.model.lower_statements import known_name
 from eqsheet.syntax.nodes import Equation, Statement
 from eqsheet.syntax.parse import parse_statement

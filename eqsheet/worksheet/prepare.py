@@ -11,9 +11,10 @@ from dataclasses import dataclass, field
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
 from eqsheet.model.branches import settle
-from eqsheet.model.build import LoweredCache, build_system
+from eqsheet.model.build import build_system
 from eqsheet.model.dimension_messages import OPEN
 from eqsheet.model.family_units import check_units_by_family
+from eqsheet.model.lowered_cache import LoweredCache
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.analyse import analyse

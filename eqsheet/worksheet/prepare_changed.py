@@ -13,9 +13,9 @@ from typing import TypeVar
 
 from eqsheet.diagnostics.source import Source
 from eqsheet.model.branches import settle
-from eqsheet.model.build import LoweredCache
 from eqsheet.model.check_units import AMBIENT
 from eqsheet.model.lower_statements import LoweredStatement, known_name
+from eqsheet.model.lowered_cache import LoweredCache
 from eqsheet.model.scope import IndexScope
 from eqsheet.model.system import EquationItem, Place
 from eqsheet.model.tape import Literal

@@ -10,9 +10,9 @@ from collections.abc import Sequence
 from dataclasses import replace
 
 from eqsheet.model.branches import settle
-from eqsheet.model.build import LoweredCache
 from eqsheet.model.check_units import AMBIENT
 from eqsheet.model.lower_statements import known_name
+from eqsheet.model.lowered_cache import LoweredCache
 from eqsheet.model.scope import IndexScope
 from eqsheet.model.system import EquationItem, Place
 from eqsheet.syntax.nodes import Include, Statement

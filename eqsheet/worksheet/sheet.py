@@ -8,7 +8,7 @@ from dataclasses import dataclass, field, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.diagnostics.source import Source, Span
-from eqsheet.model.build import LoweredCache
+from eqsheet.model.lowered_cache import LoweredCache
 from eqsheet.solve.ladder import DEFAULT_BUDGET
 from eqsheet.solve.trail import Budget
 from eqsheet.syntax.nodes import Document

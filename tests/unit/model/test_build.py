@@ -7,7 +7,8 @@ from textwrap import dedent
 import pytest
 
 from eqsheet.diagnostics.source import Source
-from eqsheet.model.build import LoweredCache, build_system
+from eqsheet.model.build import build_system
+from eqsheet.model.lowered_cache import LoweredCache
 from eqsheet.model.system import EquationSystem
 from eqsheet.syntax.parse import parse_document
 

@@ -4,7 +4,7 @@ import pytest
 
 import eqsheet
 from eqsheet.diagnostics.source import Source
-from eqsheet.model.build import LoweredCache
+from eqsheet.model.lowered_cache import LoweredCache
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.sheet import read
 
