@@ -1,0 +1,240 @@
+"""Curves and surfaces in worksheets: forwards, backwards, in families, and outside their range."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+from scipy.interpolate import PchipInterpolator
+from scipy.optimize import brentq
+from solving import errors, lines, only, solve, values
+
+import eqsheet
+
+HEAD = """
+curve head(Q in m^3/h) in m:
+    0   32
+    10  30.5
+    20  26
+    30  18
+"""
+ETA = """
+surface eta(Q in m^3/h, n in rpm) in %:
+        1450  2900
+    10  52    48
+    20  61    66
+    30  60    70
+"""
+BORE = """
+curve bore(d in mm) in mm by step:
+    20  21.6
+    25  27.2
+    32  35.9
+"""
+PUMP = PchipInterpolator([0, 10, 20, 30], [32, 30.5, 26, 18])
+PER_HOUR = 1 / 3600
+
+
+def test_read_forwards() -> None:
+    found = values(
+        solve(HEAD + ETA + BORE + "H = head(15 m^3/h)\ne = eta(25 m^3/h, 1450 rpm)\nD = bore(23 mm)")
+    )
+    assert found["H"] == pytest.approx(float(PUMP(15)), rel=1e-12)
+    assert found["e"] == pytest.approx(
+        float(PchipInterpolator([10, 20, 30], [0.52, 0.61, 0.60])(25)), rel=1e-12
+    )
+    assert found["D"] == pytest.approx(0.0272, rel=1e-15)
+
+
+@pytest.mark.parametrize("by", ["", " by line"])
+def test_read_backwards_in_closed_form(by: str) -> None:
+    solution = solve(HEAD.replace("in m:", f"in m{by}:") + "H = 28 m\nH = head(Q)")
+    assert solution.status == "solved"
+    assert solution.blocks[0].method == "closed form"
+    expected = 10 + 10 * 2.5 / 4.5 if by else brentq(lambda q: PUMP(q) - 28, 10, 20, xtol=1e-14)
+    assert solution["Q"].to("m^3/h") == pytest.approx(expected, rel=1e-12)
+
+
+def test_operating_point_without_a_guess() -> None:
+    solution = solve(HEAD + "H = head(Q)\nH = 12 m + k*Q^2\nk = 0.04 m*h^2/m^6")
+    q = brentq(lambda q: PUMP(q) - 12 - 0.04 * q * q, 0, 30, xtol=1e-14)
+    assert solution.status == "solved"
+    assert solution["Q"].to("m^3/h") == pytest.approx(q, rel=1e-12)
+    assert solution["H"].to("m") == pytest.approx(float(PUMP(q)), rel=1e-12)
+
+
+def test_a_search_starts_inside_the_range_of_an_argument_that_is_an_expression() -> None:
+    text = HEAD + "H = 2*head(Q/n*s)\nH = 20 m + k*Q^2\nk = 0.01 m*h^2/m^6\nn = 3\ns = 2"
+    q = brentq(lambda q: 2 * PUMP(2 * q / 3) - 20 - 0.01 * q * q, 0, 45, xtol=1e-14)
+    assert solve(text)["Q"].to("m^3/h") == pytest.approx(q, rel=1e-12)
+
+
+def test_bounds_and_guesses_choose_the_side_of_a_peak() -> None:
+    text = "curve eff(Q in L/s) in %:\n    0 0\n    10 50\n    20 65\n    30 40\n60 % = eff(Q)\n"
+    curve = PchipInterpolator([0, 10, 20, 30], [0, 50, 65, 40])
+    left = brentq(lambda q: curve(q) - 60, 0, 20, xtol=1e-14)
+    right = brentq(lambda q: curve(q) - 60, 20, 30, xtol=1e-14)
+    assert solve(text)["Q"].to("L/s") == pytest.approx(left, rel=1e-12)
+    assert solve(text + "Q near 28 L/s")["Q"].to("L/s") == pytest.approx(right, rel=1e-12)
+    assert solve(text + "Q within 20 L/s ..")["Q"].to("L/s") == pytest.approx(right, rel=1e-12)
+
+
+def test_a_surface_is_read_backwards_in_either_argument() -> None:
+    first = solve(ETA + "58 % = eff\neff = eta(Q, 2000 rpm)\nQ within 10 m^3/h .. 20 m^3/h")
+    again = solve(ETA + f"e = eta({first['Q'].to('m^3/h')!r} m^3/h, 2000 rpm)")
+    assert again["e"].si == pytest.approx(0.58, rel=1e-12)
+    second = solve(ETA + "e = eta(25 m^3/h, n)\ne = 65 %")
+    again = solve(ETA + f"e = eta(25 m^3/h, {second['n'].to('rpm')!r} rpm)")
+    assert again["e"].si == pytest.approx(0.65, rel=1e-12)
+
+
+def test_in_definitions_and_families() -> None:
+    text = (
+        HEAD
+        + "define pair(q) = 2*head(q/2)\nfor p in 1..3:\n    H[p] = pair(p*10 m^3/h)\n    H[p] = 2*head(Q[p])"
+    )
+    found = values(solve(text))
+    for p in (1, 2, 3):
+        assert found[f"H[{p}]"] == pytest.approx(2 * float(PUMP(5 * p)), rel=1e-12)
+        assert found[f"Q[{p}]"] == pytest.approx(5 * p * PER_HOUR, rel=1e-11)
+
+
+def test_readings_go_in_and_come_out_as_readings() -> None:
+    text = "curve boiling(p in barg) in degC by line:\n    0 100\n    1 120\nT = boiling(0.5 barg)\n"
+    assert solve(text)["T"].to("degC") == pytest.approx(110.0, rel=1e-12)
+    assert solve(text + "p2 = 0.25 barg\nT2 = boiling(p2)")["T2"].to("degC") == pytest.approx(
+        105.0, rel=1e-12
+    )
+    assert errors(solve(text + "T1 = boiling(0.2 barg)\ndT = T - T1\ndT = boiling(0.1 barg)")) == [
+        "difference-as-reading"
+    ]
+    viscosity = "curve nu(T in degC) in mm^2/s:\n    0 1.8\n    20 1.0\n    40 0.66\n"
+    assert solve(viscosity + "n = nu(20 degC)")["n"].to("mm^2/s") == pytest.approx(1.0, rel=1e-12)
+    assert errors(solve(viscosity + "dT = 30 degC - 10 degC\nn = nu(dT)")) == ["difference-as-reading"]
+
+
+def test_a_clash_of_dimensions_names_the_curve() -> None:
+    found = only(solve(HEAD + "H = head(3 m)"), "dimension-of-argument")
+    assert "`head` takes a volume flow" in found.message
+    assert lines(found) == [6]
+    assert errors(solve(HEAD + "H = head(3 m^3/h, 2)")) == ["argument-count"]
+
+
+@pytest.mark.parametrize(
+    "known", ["H = head(40 m^3/h)", "Q = 40 m^3/h\nH = head(Q)", "Q = 4 m^3/h\nH = head(10*Q)"]
+)
+def test_a_known_argument_outside_the_range_is_placed(known: str) -> None:
+    solution = solve(HEAD + known)
+    assert solution.status == "unsolved"
+    found = only(solution, "outside-curve")
+    assert found.message == "`head` is read at Q = 40 m^3/h, outside its range 0 .. 30 m^3/h"
+    assert found.span is not None
+    assert found.span.text in known
+    assert "H" not in solution
+
+
+def test_an_end_of_the_range_belongs_to_it() -> None:
+    found = values(solve(HEAD + "Q = 2*15 m^3/h\nH = head(Q)\nH0 = head(0 m^3/h)"))
+    assert found["H"] == pytest.approx(18.0, rel=1e-15)
+    assert found["H0"] == 32.0
+
+
+def test_a_branch_not_taken_may_lie_outside() -> None:
+    text = HEAD + "Q = 40 m^3/h\nH = if Q > 30 m^3/h then 0 m else head(Q)"
+    assert values(solve(text))["H"] == 0.0
+
+
+def test_limits_and_guesses_outside_the_range() -> None:
+    solution = solve(HEAD + "Q = 40 m^3/h\nrequire head(Q) > 2 m")
+    assert errors(solution) == ["outside-curve"]
+    assert solution.limits == ()
+    assert errors(solve(HEAD + "H = head(Q)\nH = 20 m\nH near head(50 m^3/h)")) == ["outside-curve"]
+
+
+def test_no_solution_within_the_range_says_where_the_curve_ends() -> None:
+    found = only(solve(HEAD + "H = head(Q)\nH = 5 m + 0.001 m*h^2/m^6 * Q^2"), "no-solution")
+    assert any("`head` has values for Q in 0 .. 30 m^3/h" in note for note in found.notes)
+    assert any("stopped at its end, Q = 30 m^3/h" in note for note in found.notes)
+
+
+def test_steps_are_not_read_backwards() -> None:
+    found = only(solve(BORE + "bore(d) = 27.2 mm"), "step-read-backwards")
+    assert found.message == "`d` cannot be found from `bore`, which goes by steps"
+
+
+def test_a_size_is_chosen_within_a_loop() -> None:
+    # The bore wanted depends on the speed, the speed on the bore chosen.
+    text = BORE + "v = Q/(pi*D^2/4)\nQ = 0.6 L/s\nD = bore(d)\nd = 22 mm + 1 mm*s/m * v\nD near 27 mm"
+    found = values(solve(text))
+    assert found["D"] == pytest.approx(0.0272, rel=1e-12)
+    assert found["d"] == pytest.approx(
+        0.022 + 0.001 * 0.6e-3 / (3.141592653589793 * 0.0272**2 / 4), rel=1e-12
+    )
+
+
+def test_a_broken_curve_is_told_once() -> None:
+    assert errors(
+        solve(HEAD.replace("30.5", "none") + "H = head(3 m^3/h)\nG = head(4 m^3/h)\nrequire G > 3 m")
+    ) == ["cell-not-a-number"]
+
+
+def test_lines_edited_see_the_curve_as_it_is_now() -> None:
+    sheet = eqsheet.parse(HEAD + "H = head(Q)\nQ = 15 m^3/h")
+    before = sheet.solve()["H"].si
+    assert sheet.solve(changes=["Q = 20 m^3/h"])["H"].si == pytest.approx(26.0)
+    other = eqsheet.worksheet.sheet.read(
+        eqsheet.parse(HEAD.replace("30.5", "31") + "H = head(Q)\nQ = 15 m^3/h").source, sheet.cache
+    )
+    assert other.solve()["H"].si > before
+
+
+CSV = {
+    "pump.csv": "Q in m^3/h,H in m\n0,32\n10,30.5\n20,26\n30,18\n",
+    "eta.csv": "Q in m^3/h;1450;2900\n10;52;48\n20;61;66\n30;60;70\n",
+}
+
+
+def in_folder(folder: Path, text: str, **files: str) -> eqsheet.Solution:
+    for name, content in (*CSV.items(), *((f"{name}.csv", content) for name, content in files.items())):
+        (folder / name).write_text(content, encoding="utf-8")
+    (folder / "sheet.eqsheet").write_text(text, encoding="utf-8")
+    return eqsheet.load(folder / "sheet.eqsheet").solve()
+
+
+FROM_FILES = (
+    'curve head(Q in m^3/h) in m from "pump.csv"\n'
+    'surface eta(Q in m^3/h, n in rpm) in % from "eta.csv"\n'
+    "H = head(15 m^3/h)\ne = eta(25 m^3/h, 2000 rpm)\n"
+)
+
+
+def test_a_file_gives_what_the_same_rows_in_the_worksheet_give(tmp_path: Path) -> None:
+    inline = values(solve(HEAD + ETA + "H = head(15 m^3/h)\ne = eta(25 m^3/h, 2000 rpm)"))
+    assert values(in_folder(tmp_path, FROM_FILES)) == inline
+    assert values(in_folder(tmp_path, FROM_FILES, eta=CSV["eta.csv"].replace("Q in m^3/h", ""))) == inline
+
+
+@pytest.mark.parametrize(
+    ("content", "code", "place"),
+    [
+        ("Q in m^3/h,H in m\n0,32\n10,30.5,1\n", "row-length", "10,30.5,1"),
+        ('Q in m^3/h,H in m\n0,32\n10,"30,5"\n', "cell-not-a-number", '"30,5"'),
+        ("Q in m^3/h,H in m\n0,32\n10,\n", "cell-not-a-number", ""),
+        ("Q in m^3/h,H in m\n0,32\n10,30\n10,29\n", "curve-not-increasing", "10"),
+        ("Q in L/s,H in m\n0,32\n10,30\n", "csv-heading", "Q in L/s"),
+        ("Q in m^3/h,H in mm\n0,32\n10,30\n", "csv-heading", "H in mm"),
+    ],
+)
+def test_what_is_wrong_in_a_file_is_placed_there(tmp_path: Path, content: str, code: str, place: str) -> None:
+    solution = in_folder(tmp_path, FROM_FILES, pump=content)
+    assert errors(solution) == [code]
+    span = only(solution, code).span
+    assert span is not None
+    assert span.source.name.endswith("pump.csv")
+    assert span.text == place
+
+
+def test_a_missing_file_is_told_once(tmp_path: Path) -> None:
+    assert errors(in_folder(tmp_path, FROM_FILES.replace("pump.csv", "none.csv"))) == [
+        "unreadable-attachment"
+    ]
