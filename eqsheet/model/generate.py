@@ -278,7 +278,10 @@ _LEAVES = frozenset({"quantity", "literal", "const"})
 def _leaf(operation: object, value: object) -> str:
     if operation == "quantity":
         return f"q{value}"
-    return f"l{value}" if operation == "literal" else _number(value)
+    if operation == "literal":
+        return f"l{value}"
+    assert isinstance(value, Fraction | float)
+    return _number(value)
 
 
 class _Code:

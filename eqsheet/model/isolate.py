@@ -175,6 +175,8 @@ def _function(operation: str) -> _Inverse:
 
 
 def _of_power(w: Simplifier, b: _Branch, a: int, r: Fraction) -> list[_Branch]:
+    if r == 0:
+        return []  # 1, whatever the base
     t, inverse = b.target, 1 / r
     if r.denominator > 1:
         # Such a power is real for bases that are not negative only, and is not negative itself.

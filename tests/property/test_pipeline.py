@@ -60,6 +60,7 @@ def checked(text: str) -> eqsheet.Solution:
 @example("x + y = 1e200\nx^3 - y^3 = 1e300\nx near 1e150")
 @example("x = 1e-300\ny = x^2\nz = 1/y")
 @example("x^2 = -1\ny = x")
+@example("x^0 = 9")
 @example("x = x")
 @example("x*0 = 0")
 @example("1 = 1")
