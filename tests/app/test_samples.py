@@ -14,6 +14,7 @@ from pathlib import Path
 import mpmath
 import numpy as np
 import pytest
+from booster_sample import booster, booster_at_a_flow
 from family_samples import FAMILY_SAMPLES
 from scipy import constants
 from scipy.optimize import brentq
@@ -415,6 +416,7 @@ AS_WRITTEN: dict[str, Callable[[], Numbers]] = {
     "linkage": linkage,
     "insulation": insulation,
     "feeder": feeder,
+    "booster": booster,
     **FAMILY_SAMPLES,
 }
 
@@ -424,6 +426,7 @@ SWITCHED: list[tuple[str, str, str, Callable[[], Numbers]]] = [
     ("snowmelt", "T_s = 30 degC", "P = 30 kW", snowmelt_rated),
     ("roof", "sagging: w_fin", "depth: h", roof_checked),
     ("insulation", "least: price", "given: t", insulation_given),
+    ("booster", "z = 34 m", "Q = 8 m^3/h", booster_at_a_flow),
 ]
 
 
@@ -457,7 +460,7 @@ def test_sample_is_turned_round_by_switching_two_lines(
     assert text.count(f"\n{on}") == 1
     assert text.count(f"\noff {off}") == 1
     text = text.replace(f"\n{on}", f"\noff {on}").replace(f"\noff {off}", f"\n{off}")
-    solution = eqsheet.parse(text).solve()
+    solution = eqsheet.parse(text, str(SAMPLES / f"{name}.eqsheet")).solve()
     assert solution.status in ("solved", "outside-limits"), [d.message for d in solution.diagnostics]
     agrees(solution, calculation())
 
@@ -470,7 +473,7 @@ def test_sample_carries_the_caution_and_says_its_data_are_invented(name: str) ->
 
 
 @pytest.mark.parametrize(
-    "name", ["snowmelt", "cableway", "flue", "drying", "exchanger", "feeder", *FAMILY_SAMPLES]
+    "name", ["snowmelt", "cableway", "flue", "drying", "exchanger", "feeder", "booster", *FAMILY_SAMPLES]
 )
 def test_sample_has_a_block_of_four_or_more_simultaneous_unknowns(name: str) -> None:
     solution = eqsheet.load(SAMPLES / f"{name}.eqsheet").solve()
