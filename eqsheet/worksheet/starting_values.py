@@ -9,7 +9,7 @@ Jacobian singular.
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, MutableMapping, Sequence
+from collections.abc import Iterator, Mapping, MutableMapping, Sequence
 from dataclasses import dataclass
 
 from eqsheet.model.evaluate import evaluate
@@ -27,6 +27,8 @@ TYPICAL: Mapping[str, float] = {
     "kg*m^2/s^2": 1e3,
     "kg*m^2/s^3": 1e3,
 }
+# Where the equations make a start zero: small against what is typical, but not zero.
+NEAR_ZERO = 1e-3
 # Golden section: multiples of it modulo 1 spread evenly without repeating, so that starts differ.
 _SPREAD = 0.6180339887498949
 # Bounds of a wider ratio are halved in the logarithm.
@@ -79,6 +81,11 @@ def starting_values(
         between = _between(*room.bounds(quantity), position)
         if between is not None:
             found[quantity] = between
+    _propagate(unknowns, formulas, values, room, found)
+    for quantity in _told_zero(unknowns, formulas, values, found):
+        # A difference of equal starts, such as an angle between buses: near zero, not anywhere.
+        position = unknowns.index(quantity)
+        found[quantity] = _inside(NEAR_ZERO * _typical(dimensions[quantity], position), room, quantity)
     _propagate(unknowns, formulas, values, room, found)
     for position, quantity in enumerate(unknowns):
         if quantity not in found:
@@ -156,20 +163,41 @@ def _propagate(
                 again = True
 
 
+def _told_zero(
+    unknowns: Sequence[int],
+    formulas: Sequence[Formula],
+    values: Sequence[float],
+    found: Mapping[int, float],
+) -> list[int]:
+    """The unknowns without a start that some equation makes exactly zero."""
+    wanted = {q for q in unknowns if q not in found}
+    told: dict[int, None] = {}
+    for formula in formulas:
+        missing = [q for q in formula.quantities if q in wanted]
+        if len(missing) == 1 and 0.0 in _candidates(formula, missing[0], values, found):
+            told[missing[0]] = None
+    return list(told)
+
+
 def _told(
     formula: Formula, quantity: int, values: Sequence[float], found: Mapping[int, float]
 ) -> float | None:
-    """What the equation makes the quantity, with the others at their values or starts."""
+    """What the equation makes the quantity, with the others at their values or starts; zero tells nothing."""
+    return next((value for value in _candidates(formula, quantity, values, found) if value != 0.0), None)
+
+
+def _candidates(
+    formula: Formula, quantity: int, values: Sequence[float], found: Mapping[int, float]
+) -> Iterator[float]:
     isolation = isolate(formula.tape, formula.quantities.index(quantity))
     if isolation is None:
-        return None
+        return
     inputs = [found.get(q, values[q]) for q in formula.quantities]
     literals = [literal.value for literal in formula.literals]
     for candidate in isolation.candidates:
         result = evaluate(candidate.tape, inputs, literals)[candidate.tape.outputs[0]]
-        if math.isfinite(result) and result != 0.0:
-            return float(result)
-    return None
+        if math.isfinite(result):
+            yield float(result)
 
 
 def _typical(dimension: Dimension | None, position: int) -> float:
