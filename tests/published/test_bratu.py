@@ -1,6 +1,7 @@
 """The two-dimensional Bratu problem, -Laplace(u) = lambda*exp(u) on the unit square, u = 0 on its edge.
 
-Critical lambda 6.808124423: A. Mohsen, Computers and Mathematics with Applications 67, 2014, 26-33 (from memory). There lambda, as a
+Critical lambda 6.808124423: A. Mohsen, Computers and Mathematics with Applications 67, 2014, 26-33 (from memory).
+There lambda, as a
 function of the height in the middle, has its largest value, so that it hardly depends on that height, which is
 1.391661 (from memory). The worksheet takes the height as known and lambda as unknown.
 """
