@@ -6,6 +6,7 @@ from collections.abc import Iterable, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.review.columns import in_columns
+from eqsheet.review.folding import extremes, families, family_name, worst_limits
 from eqsheet.syntax.nodes import Guess, Reference
 from eqsheet.units.display import format_value
 from eqsheet.worksheet.own_line import own_line
@@ -23,7 +24,10 @@ def solution_lines(solution: Solution) -> list[str]:
             lines.append("")
         if title:
             lines.append(title)
-        rows = [_row(value, solution.blocks, said) for value in values]
+        rows = [
+            _row(group[0], solution.blocks, said) if len(group) == 1 else _family_row(group, solution.blocks)
+            for group in families(values)
+        ]
         lines += in_columns(rows, numeric=1, indent="  " if title else "")
     if solution.limits:
         lines += ["", "Limits", *limit_lines(solution.limits)]
@@ -75,6 +79,27 @@ def _row(value: QuantityValue, blocks: Sequence[BlockReport], said: Mapping[str,
     return value.name, format_value(value.value, value.digits), unit, origin_words(value, blocks), description
 
 
+def _family_row(group: Sequence[QuantityValue], blocks: Sequence[BlockReport]) -> tuple[str, ...]:
+    """One line for a large family."""
+    found = extremes(group)
+    unit = "" if group[0].unit == "1" else group[0].unit
+    return family_name(group[0].name), found.text, unit, _family_origin(group, blocks), found.words
+
+
+def _family_origin(group: Sequence[QuantityValue], blocks: Sequence[BlockReport]) -> str:
+    words = {origin_words(value, blocks) for value in group}
+    if len(words) == 1:
+        return words.pop()
+    if group[0].block is None:
+        lines = sorted({value.line for value in group if value.line is not None})
+        return f"given, lines {lines[0]} to {lines[-1]}" if lines else "given for this run"
+    numbers = {value.block for value in group if value.block is not None}
+    lines = sorted({line for number in numbers for line in blocks[number - 1].lines})
+    if len(lines) <= MOST_LINES_NAMED:
+        return f"line{'s' * (len(lines) > 1)} {', '.join(map(str, lines))}" if lines else "solved"
+    return f"{len(lines)} lines, {lines[0]} to {lines[-1]}"
+
+
 def _is_own(value: QuantityValue, blocks: Sequence[BlockReport]) -> bool:
     """Whether the quantity's line speaks of it: a known, a block of one equation, or alone on a side."""
     if value.block is None or len(blocks[value.block - 1].statements) == 1:
@@ -107,9 +132,9 @@ def limit_lines(limits: Iterable[LimitReport]) -> list[str]:
                 "holds" if limit.holds else "FAILS",
                 margin_words(limit),
                 "" if limit.line is None else f"line {limit.line}",
-                limit.statement.description,
+                ", ".join(part for part in (words, limit.statement.description) if part),
             )
-            for limit in limits
+            for limit, words in worst_limits(limits)
         ],
         indent="  ",
     )
