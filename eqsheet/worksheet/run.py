@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass, field
+from types import MappingProxyType
 
 import numpy as np
 
@@ -74,10 +75,20 @@ class Run:
 
 # Overflow far from the solution is a step to be shortened, not a message to the user.
 @np.errstate(all="ignore")
-def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = None) -> Run:
+def run_blocks(
+    prepared: Prepared,
+    budget: Budget,
+    memory: BlockMemory | None = None,
+    given: Mapping[int, BlockResult] = MappingProxyType({}),
+) -> Run:
     """Solve block after block; what depends on a failed block is left out.
 
-    With a `memory`, blocks it has met before are not solved again.
+    Parameters
+    ----------
+    memory : BlockMemory, optional
+        Blocks it has met before are not solved again.
+    given : mapping of int to BlockResult
+        Results to take for blocks, by number, instead of solving them.
     """
     solve = solve_equations if memory is None else memory.solve
     system = prepared.system
@@ -110,7 +121,7 @@ def run_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory | None = 
         if any(a in failed for a in after) or _uses(formulas, equations, prepared.contested):
             failed.add(number)
         else:
-            result = solve(
+            result = given.get(number) or solve(
                 [formulas[e] for e in equations], block.columns, known, guesses, dimensions, budget
             )
             for equation, formula in zip(equations, result.formulas):

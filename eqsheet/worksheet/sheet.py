@@ -15,13 +15,13 @@ from eqsheet.syntax.nodes import Document
 from eqsheet.syntax.parse import parse_document
 from eqsheet.worksheet.assemble import assemble
 from eqsheet.worksheet.attached_files import attach_files
+from eqsheet.worksheet.between_blocks import run_between_blocks
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.changes import apply_changes
 from eqsheet.worksheet.collection import collection_put_off
 from eqsheet.worksheet.prepare import Prepared, prepare
 from eqsheet.worksheet.prepare_changed import Unchanged, prepare_changed, unchanged
 from eqsheet.worksheet.prepare_edited import prepare_edited
-from eqsheet.worksheet.run import run_blocks
 from eqsheet.worksheet.solution import Solution
 
 
@@ -109,7 +109,7 @@ class Worksheet:
         with collection_put_off():
             prepared = self.prepare(changes, free)
             begin = time.perf_counter()
-            run = run_blocks(prepared, budget, self.memory) if prepared.valid_text else None
+            run = run_between_blocks(prepared, budget, self.memory) if prepared.valid_text else None
             solved_in = time.perf_counter() - begin
             timing = {"parse": self.timing, **prepared.timing, "solve": solved_in}
             return assemble(self.name, prepared, run, timing)

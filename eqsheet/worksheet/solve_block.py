@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import math
 import time
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -123,10 +123,31 @@ def solve_equations(
 
 
 def _closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses) -> BlockResult | None:
-    """The value an isolated or linear equation gives; None where there is no closed form with a finite value.
+    """The best closed form; None where there is none with a finite value that solves the equation."""
+    return next(closed_forms(formula, unknown, known, guesses), None)
 
-    Of several values the one inside the bounds and nearest to the guess is taken, else the principal one.
+
+def closed_forms(formula: Formula, unknown: int, known: Known, guesses: Guesses) -> Iterator[BlockResult]:
+    """The values an isolated or linear equation gives, best first.
+
+    Those inside the bounds go before those outside; among them the one nearest to the guess is best, without a
+    guess the principal one.
     """
+    found = _candidates(formula, unknown, known)
+    low, high = guesses.bounds(unknown)
+    near = guesses.near.get(unknown)
+    if near is not None:
+        found.sort(key=lambda c: abs(c[0] - near))
+    if len(found) > 1:
+        found.sort(key=lambda c: not _within(c[0], low, high))
+    for value, error in found:
+        result = _checked(formula, unknown, known, value, error, _within(value, low, high))
+        if result is not None:
+            yield result
+
+
+def _candidates(formula: Formula, unknown: int, known: Known) -> list[tuple[float, float]]:
+    """Finite values of the closed forms with their error bounds, the principal one first."""
     tape = formula.tape
     slot = formula.quantities.index(unknown)
     isolation = isolate(tape, slot)
@@ -149,18 +170,18 @@ def _closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses)
             consider(candidate.tape, candidate.condition)
     else:
         affine = affine_in(tape, slot)
-        if affine is None:
-            return None
-        consider(affine.solution, None)
-    if not found:
-        return None
-    low, high = guesses.bounds(unknown)
-    inside = [c for c in found if _within(c[0], low, high)]
-    near = guesses.near.get(unknown)
-    choice = inside or found
-    value, error = choice[0] if near is None else min(choice, key=lambda c: abs(c[0] - near))
-    inputs[slot] = value
-    afresh = evaluate_with_evidence(tape, inputs, literals)
+        if affine is not None:
+            consider(affine.solution, None)
+    return found
+
+
+def _checked(
+    formula: Formula, unknown: int, known: Known, value: float, error: float, inside: bool
+) -> BlockResult | None:
+    """The value as a result if the equation, evaluated afresh, bears it out."""
+    tape = formula.tape
+    inputs = [value if q == unknown else known.values[q] for q in formula.quantities]
+    afresh = evaluate_with_evidence(tape, inputs, literal_values(formula))
     left, right = tape.outputs
     residual = abs(afresh.values[left] - afresh.values[right])
     size = max(afresh.sizes[left], afresh.sizes[right])
@@ -169,7 +190,7 @@ def _closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses)
     if not residual <= max(ACCEPTABLE * size, bound):
         return None
     return BlockResult(
-        bool(inside),
+        inside,
         (value,),
         (error,),
         "closed form",
@@ -280,7 +301,7 @@ def _iterate(
     formulas: tuple[Formula, ...], unknowns: Sequence[int], known: Known, start: Start, budget: Budget
 ) -> BlockResult:
     outcome, problem = _solve_plain(formulas, unknowns, known, start, budget)
-    return _judged(formulas, unknowns, known, start, outcome, problem)
+    return judged(formulas, unknowns, known, start, outcome, problem)
 
 
 def _by_regimes(
@@ -323,7 +344,7 @@ def _by_regimes(
     if len(unknowns) > 1:
         problem = _problem(taken, unknowns, known, start)
     gap = () if held.gap is None else tuple(held.gap.tolist())
-    return _judged(taken, unknowns, known, start, held.outcome, problem, gap)
+    return judged(taken, unknowns, known, start, held.outcome, problem, gap)
 
 
 def _started_at(start: Start, x: Vector) -> Start:
@@ -354,7 +375,7 @@ def _evidence(
     return found[0], found[1], found[2]
 
 
-def _judged(
+def judged(
     formulas: tuple[Formula, ...],
     unknowns: Sequence[int],
     known: Known,

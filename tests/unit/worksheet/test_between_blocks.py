@@ -1,0 +1,67 @@
+"""Blocks are not islands: an early block takes the solution that lets a later one be solved."""
+
+from __future__ import annotations
+
+import math
+
+import pytest
+
+import eqsheet
+from eqsheet.worksheet.solution import Solution
+
+
+def solved(text: str) -> Solution:
+    """The solution of a worksheet that must be solved."""
+    solution = eqsheet.parse(text).solve()
+    assert solution.status == "solved", [d.message for d in solution.diagnostics]
+    return solution
+
+
+def codes(solution: Solution) -> list[str]:
+    """Codes of all diagnostics."""
+    return [d.code for d in solution.diagnostics]
+
+
+def test_another_root_of_an_iterated_block_is_taken_where_the_first_leaves_a_later_block_none() -> None:
+    for first, second in ((2.5, 3.0), (-2.5, 2.0)):
+        sign = math.copysign(1.0, first)
+        solution = solved(f"x^2 - 5*x + 6 = 0\nx near {5 - second}\ny = sqrt({sign:.0f}*(x - {abs(first)}))\n")
+        assert solution["x"].si == pytest.approx(second, rel=1e-12)
+        assert "other-solution-taken" in codes(solution)
+
+
+def test_another_closed_form_is_taken() -> None:
+    solution = solved("a^2 = 9\nb = ln(-a)\n")
+    assert solution["a"].si == -3.0
+    assert solution["b"].si == pytest.approx(math.log(3.0), rel=1e-12)
+
+
+def test_the_note_names_both_values_and_the_later_line() -> None:
+    solution = solved("a^2 = 9 m^2\nb = ln(-a/(1 m))\n")
+    note = next(d for d in solution.diagnostics if d.code == "other-solution-taken")
+    assert "`a` from line 1 is -3 m" in note.message
+    assert "with 3 m line 2" in note.message
+
+
+def test_two_troubles_are_cured_each_by_its_own_block() -> None:
+    solution = solved("a^2 = 9\nb = ln(-a)\nc^2 = 16\nd = sqrt(-c)\n")
+    assert (solution["a"].si, solution["c"].si, solution["d"].si) == (-3.0, -4.0, 2.0)
+    assert codes(solution).count("other-solution-taken") == 2
+
+
+def test_bounds_are_kept() -> None:
+    solution = eqsheet.parse("a^2 = 9\na within 0 .. 10\nb = ln(-a)\n").solve()
+    assert solution.status == "unsolved"
+    assert solution["a"].si == 3.0
+
+
+def test_nothing_is_tried_where_every_block_is_solved() -> None:
+    solution = solved("a^2 = 9\nb = ln(a)\n")
+    assert solution["a"].si == 3.0
+    assert "other-solution-taken" not in codes(solution)
+
+
+def test_a_block_two_steps_before_is_reached() -> None:
+    solution = solved("a^2 = 9\nm = a + 1\nb = sqrt(-m)\n")
+    assert solution["a"].si == -3.0
+    assert solution["b"].si == pytest.approx(math.sqrt(2.0), rel=1e-12)
