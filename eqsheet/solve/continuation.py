@@ -22,7 +22,7 @@ from eqsheet.solve.interior import Interior
 from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, Vector
-from eqsheet.solve.termination import equation_sizes, measured, scaled_norm
+from eqsheet.solve.termination import measured, scaled_norm
 from eqsheet.solve.trail import Trail
 
 # (u, t) to (H (n,), dH/du (n, n), dH/dt (n,)); None outside the domain or the bounds.
@@ -93,7 +93,7 @@ class _Scaled:
         self.first: tuple[Vector, Vector] | None = None
         if np.isfinite(residual).all() and np.isfinite(jacobian).all():
             reach = np.abs(jacobian) @ self.weights
-            sizes = np.fmax(equation_sizes(problem, self.origin, jacobian), reach)
+            sizes = np.fmax(problem.sizes(self.origin), reach)
             self.rows = np.maximum(sizes, np.finfo(float).tiny)
             self.first = self.linearise(self.u0)
 

@@ -102,8 +102,11 @@ def _equilibration(matrix: Matrix) -> tuple[Vector, Vector]:
     rows, columns = np.ones(len(matrix)), np.ones(len(matrix))
     size = np.abs(matrix)
     for _ in range(EQUILIBRATION_ROUNDS):
-        columns /= np.maximum((size * columns / rows[:, None]).max(axis=0), TINY)
-        rows *= np.maximum((size * columns / rows[:, None]).sum(axis=1), TINY)
+        # An empty row or column keeps its scale.
+        peaks = (size * columns / rows[:, None]).max(axis=0)
+        columns /= np.where(peaks > 0.0, peaks, 1.0)
+        sums = (size * columns / rows[:, None]).sum(axis=1)
+        rows *= np.where(sums > 0.0, sums, 1.0)
     return rows, columns
 
 

@@ -9,6 +9,7 @@ from eqsheet.solve.problem import Matrix, Problem, Vector
 from eqsheet.solve.termination import (
     ACCEPTABLE,
     MULTIPLE_AFTER,
+    SURE,
     at_rest,
     confirmed,
     equation_sizes,
@@ -42,9 +43,10 @@ def finish(
         How many of the last steps near the root were not much shorter than the one before, which betrays a
         multiple root that row scaling hides from the condition number.
     """
-    sizes = jacobian_sizes(problem, x, jacobian)
+    sizes = jacobian_sizes(x, jacobian)
     scaled = scaled_norm(residual, sizes)
-    if scaled > ACCEPTABLE or not trail.contracting:
+    sure = trail.contracting and scaled <= SURE
+    if not sure:
         sizes = equation_sizes(problem, x, jacobian)
         scaled = scaled_norm(residual, sizes)
     step = -factor.weights * factor.solve(residual)
@@ -54,13 +56,13 @@ def finish(
         again = scaled_norm(improved, sizes)
         if again <= scaled:
             x, residual, scaled = polished, improved, again
-    believed = scaled <= ACCEPTABLE and (trail.contracting or confirmed(problem, x, residual, jacobian))
+    believed = scaled <= ACCEPTABLE and (sure or confirmed(problem, x, residual, jacobian))
     if believed and (factor.singular or not at_rest(problem, x, factor, residual)):
         # No small step explains the residuals, so they must be small against terms that are really there.
         believed = scaled_norm(residual, term_sizes(problem, x, jacobian)) <= ACCEPTABLE
     if not believed:
         return give_up(problem, interior, trail, step, factor)
-    kind = kind_of_root(problem, x, sizes, factor)
+    kind = kind_of_root(problem, x, scaled, sizes, factor)
     if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:
         kind = Status.DOUBLE
     if kind is Status.CONVERGED:

@@ -14,7 +14,7 @@ from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, ScalarProblem, Vector, as_scalar
 from eqsheet.solve.scalar_newton import scalar_newton
-from eqsheet.solve.termination import equation_sizes, scaled_norm
+from eqsheet.solve.termination import floored, scaled_norm
 from eqsheet.solve.trail import Budget, Trail
 
 P = TypeVar("P", Problem, ScalarProblem)
@@ -127,7 +127,7 @@ def _distance_from_zero(problem: Problem) -> Callable[[Outcome], float]:
     Scaled residuals will not do: far out, where the terms are large, they are small everywhere.
     """
     _, jacobian = problem.linearise(problem.start)
-    sizes = equation_sizes(problem, problem.start, jacobian)
+    sizes = np.fmax(problem.sizes(problem.start), abs(jacobian) @ floored(problem.start, problem))
     units = np.where(np.isfinite(sizes) & (sizes > 0.0), sizes, 1.0)
 
     def distance(outcome: Outcome) -> float:

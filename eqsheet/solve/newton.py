@@ -31,6 +31,8 @@ WEIGHT_FLOOR = 0.1
 # Contraction of the corrections by a full step that needs no further look at the damping.
 SURE_CONTRACTION = 0.25
 # Ratio of two steps near the root from which on it is multiple: 1/2 at a double root, nearly 0 at a single
+# Contraction that shows a root being approached: 1/4 at a double root, 1/2 on the way to infinity.
+CONTRACTING = 0.4
 # Norm of the step below which it is looked at unknown by unknown.
 NEAR = 1e-6
 
@@ -98,7 +100,7 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
         norm = _norm(step)
         rest = float((np.abs(step * weights) / floored(x, problem)).max()) if norm < NEAR else np.inf
         slow_steps = slow_steps + 1 if MULTIPLE < rest / last_rest < SLOW else 0
-        trail.contracting = last is not None and last.contraction < 0.5
+        trail.contracting = last is not None and last.contraction < CONTRACTING
         if rest <= AT_REST and (last_step_due(rest, norm / last_norm) or rest > SLOW * last_rest):
             return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
         first = 1.0 if last is None else _predicted_damping(last, step, weights)

@@ -8,11 +8,11 @@ the idea; the code is our own).
 
 from __future__ import annotations
 
-from math import inf, nextafter
+from math import copysign, inf, nextafter
 
 from eqsheet.solve.factor import SINGULAR_CONDITION
 from eqsheet.solve.interior import LEAST_FRACTION, NUDGE, RESTING
-from eqsheet.solve.newton import LEAST_DAMPING
+from eqsheet.solve.newton import CONTRACTING, LEAST_DAMPING
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import ScalarProblem
 from eqsheet.solve.termination import (
@@ -20,9 +20,11 @@ from eqsheet.solve.termination import (
     AT_REST,
     BESIDE,
     NEARLY_ZERO,
+    NEIGHBOURHOOD,
     PROBE,
     ROUNDING,
     SLOW,
+    SURE,
     SUSPECT_CONDITION,
     ZERO_FLOOR,
     last_step_due,
@@ -93,6 +95,7 @@ def scalar_newton(problem: ScalarProblem, start: float, trail: Trail) -> Outcome
         if crossed:
             # The old point is now the one of opposite sign, and what was known beyond it is of the same sign.
             below, above = (x, inf) if trial > x else (-inf, x)
+        trail.contracting = damping == 1.0 and abs(new_value) < CONTRACTING * abs(value)
         x, value, slope = trial, new_value, new_slope
 
 
@@ -109,11 +112,31 @@ def scaled_residual(problem: ScalarProblem, x: float, value: float, slope: float
     """|value| relative to the size of the equation, as `termination` defines it; inf where that is zero."""
     if value == 0.0:
         return 0.0
-    size = abs(slope) * max(abs(x), ZERO_FLOOR * problem.magnitude)
+    by_slope = abs(slope * x)
     # Far from a root, and at rounding level, the slope alone says enough; the size of the terms is dear.
-    if ROUNDING * size < abs(value) < NEARLY_ZERO * size or size == 0.0:
-        size = max(problem.size(x), size)
+    if abs(value) <= ROUNDING * by_slope:
+        return abs(value) / by_slope
+    floor = abs(slope) * max(abs(x), ZERO_FLOOR * problem.magnitude)
+    if 0.0 < floor <= abs(value) / NEARLY_ZERO:
+        return abs(value) / floor
+    size = max(by_slope, term_size(problem, x, slope))
     return abs(value) / size if size > 0.0 else inf
+
+
+def known_size(problem: ScalarProblem, x: float) -> float:
+    """Size of the terms, where x is nearly zero that of a point a little way off; see `termination`."""
+    size = problem.size(x)
+    floor = ZERO_FLOOR * problem.magnitude
+    if abs(x) < floor:
+        off = copysign(floor, x)
+        if problem.lower < off < problem.upper:
+            size = max(size, problem.size(off))
+    return size
+
+
+def term_size(problem: ScalarProblem, x: float, slope: float) -> float:
+    """As `known_size`, with the slope in its place where the problem does not know it."""
+    return known_size(problem, x) or abs(slope) * max(abs(x), ZERO_FLOOR * problem.magnitude)
 
 
 def finish(problem: ScalarProblem, x: float, value: float, slope: float, trail: Trail) -> Outcome:
@@ -125,26 +148,27 @@ def finish(problem: ScalarProblem, x: float, value: float, slope: float, trail: 
             if abs(again) <= abs(value):
                 x, value, slope = polished, again, again_slope
     scaled = scaled_residual(problem, x, value, slope)
-    if not scaled <= ACCEPTABLE or not _confirmed(problem, x, value, slope):
+    sure = trail.contracting and 0.0 < abs(value) <= SURE * abs(slope * x)
+    if not (scaled <= ACCEPTABLE and (sure or _confirmed(problem, x, value, slope))):
         return trail.close(Status.STALLED, x, scaled)
-    span = max(
-        abs(problem.lower if x - problem.lower < problem.upper - x else problem.upper), problem.magnitude
-    )
-    resting = (0,) if min(x - problem.lower, problem.upper - x) <= RESTING * span else ()
-    kind = _kind_of_root(problem, x, slope)
+    bound = problem.lower if x - problem.lower < problem.upper - x else problem.upper
+    resting = (0,) if abs(x - bound) <= RESTING * max(abs(bound), problem.magnitude) < inf else ()
+    kind = _kind_of_root(problem, x, value, slope)
     null = () if kind is Status.CONVERGED else (1.0,)
     return trail.close(kind, x, scaled, resting, null, null)
 
 
-def _kind_of_root(problem: ScalarProblem, x: float, slope: float) -> Status:
+def _kind_of_root(problem: ScalarProblem, x: float, value: float, slope: float) -> Status:
     """Whether the root is single, double, or one of a continuum; see `termination.kind_of_root`."""
-    floor = max(abs(x), ZERO_FLOOR * problem.magnitude)
-    reach = max(abs(x), problem.magnitude if abs(x) < ZERO_FLOOR * problem.magnitude else 0.0)
-    size = max(problem.size(x), abs(slope) * floor)
+    by_slope = abs(slope * x)
+    if 0.0 < abs(value) <= SURE * by_slope:
+        return Status.CONVERGED
+    reach = max(abs(x), NEIGHBOURHOOD * problem.magnitude)
+    size = max(by_slope, term_size(problem, x, slope))
     if abs(slope) * reach * SUSPECT_CONDITION >= size > 0.0:
         return Status.CONVERGED
     near, far = (_least_beside(problem, x, distance * reach) for distance in (PROBE, 2.0 * PROBE))
-    if far <= 64.0 * ROUNDING * size:
+    if far <= max(64.0 * ROUNDING * size, 8.0 * abs(value)):
         return Status.CONTINUUM
     if far > 3.0 * near or abs(slope) * reach * SINGULAR_CONDITION < size:
         return Status.DOUBLE
@@ -161,14 +185,14 @@ def _least_beside(problem: ScalarProblem, x: float, distance: float) -> float:
 
 def _confirmed(problem: ScalarProblem, x: float, value: float, slope: float) -> bool:
     """Whether a residual small only against the slope belongs to a root, not a pole; see `termination`."""
-    if abs(value) <= ACCEPTABLE * problem.size(x):
+    if abs(value) <= ACCEPTABLE * known_size(problem, x):
         return True
     shift = BESIDE * max(abs(x), ZERO_FLOOR * problem.magnitude)
     for moved in (x + shift, x - shift):
         if problem.lower < moved < problem.upper:
             there = problem.residual(moved)
             if abs(there) < inf:
-                return abs(there) > abs(value)
+                return abs(there) > max(abs(value), 0.25 * abs(slope) * shift)
     return False
 
 

@@ -1,11 +1,12 @@
 """The stopping test: how large residuals and steps are, and what kind of root a point is.
 
-Residuals are judged against the size of their equation, ``max(size_i, sum_j |J_ij| |x_j|)``: the second
-part is the change that a relative change of the unknowns makes, so a residual of a few roundings of it is
-explained by the rounding of the unknowns alone (a backward error in the sense of Rigal and Gaches, J. ACM
-14, 1967, row by row). Where only that second part makes a residual small, the equation must also be nearly
-linear about the point: beside a pole it is not. Steps are judged against the unknowns. Both lose their unit
-that way.
+Residuals are judged against the size of their equation: that of its terms, or ``sum_j |J_ij| |x_j|``, what
+a relative change of the unknowns makes of it, so that a residual of a few roundings of it is explained by
+the rounding of the unknowns alone (a backward error in the sense of Rigal and Gaches, J. ACM 14, 1967, row
+by row). Where only that second size makes a residual small, the equation must also behave about the point
+as its derivatives foretell: beside a pole, or where it oscillates faster than doubles resolve, it does not.
+At a root at zero all terms vanish; there the terms count as large as they are a little way off
+(`ZERO_FLOOR`). Steps are judged against the unknowns. All of these lose their unit that way.
 """
 
 from __future__ import annotations
@@ -28,6 +29,8 @@ ACCEPTABLE = 1e-11
 AT_REST = 1e-9
 # Scaled residual below which the sizes of the terms are asked for.
 NEARLY_ZERO = 1e-6
+# Scaled residual, measured by the Jacobian alone, of a contracting iteration that needs no further evidence.
+SURE = 16.0 * ROUNDING
 # Ratio of successive steps, at rest, above which they are noise: at an m-fold root Newton's steps shrink by
 # 1 - 1/m.
 SLOW = 0.9
@@ -35,8 +38,10 @@ SLOW = 0.9
 # single one), and after how many of them in a row it is.
 MULTIPLE = 0.4
 MULTIPLE_AFTER = 3
-# Relative displacement at which a residual must have grown for a root to be believed.
-BESIDE = 2.0**-20
+# Relative displacement at which a residual must have grown for a root to be believed: beyond the distance
+# from which a pole can deceive, which is `ACCEPTABLE`, and no further than needed, since near an edge of
+# the domain slopes change soon.
+BESIDE = 2.0**-30
 # An unknown is never judged against less than this part of its typical size: a root at zero has no relative
 # accuracy.
 ZERO_FLOOR = 2.0**-20
@@ -47,7 +52,9 @@ SUSPECT_CONDITION = 1e7
 # where it is singular.
 LARGEST_EXAMINED = 300
 # How far from the root that examination looks, relative to the size of the unknowns.
-PROBE = 2.0**-6
+PROBE = 2.0**-12
+# An unknown near zero is moved by that part of at least this part of its typical size.
+NEIGHBOURHOOD = 2.0**-10
 
 
 def floored(x: Vector, problem: Problem) -> Vector:
@@ -55,20 +62,30 @@ def floored(x: Vector, problem: Problem) -> Vector:
     return np.maximum(np.abs(x), ZERO_FLOOR * problem.magnitude)
 
 
-def jacobian_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
-    """``sum_j |J_ij| |x_j|`` (n,): what the residuals are judged against as long as that is enough."""
-    return np.asarray(abs(jacobian) @ floored(x, problem))
+def jacobian_sizes(x: Vector, jacobian: Matrix) -> Vector:
+    """``sum_j |J_ij| |x_j|`` (n,)."""
+    return np.asarray(abs(jacobian) @ np.abs(x))
 
 
-def equation_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
-    """What each residual is judged against (n,), >= 0; asks for the sizes of the terms, which is dear."""
-    return np.asarray(np.fmax(problem.sizes(x), jacobian_sizes(problem, x, jacobian)))
+def known_sizes(problem: Problem, x: Vector) -> Vector:
+    """Size of the terms of each equation (n,), where x is nearly zero that of a point a little way off."""
+    sizes = problem.sizes(x)
+    floor = floored(x, problem)
+    if (floor > np.abs(x)).any():
+        off = np.copysign(floor, x)
+        sizes = np.fmax(sizes, problem.sizes(np.where((problem.lower < off) & (off < problem.upper), off, x)))
+    return np.asarray(sizes)
 
 
 def term_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
-    """As `equation_sizes`, but with the unknowns as they are: nothing stands in for one that is nearly
-    zero."""
-    return np.asarray(np.fmax(problem.sizes(x), abs(jacobian) @ np.abs(x)))
+    """As `known_sizes`, with the Jacobian in place of those that the problem does not know."""
+    sizes = known_sizes(problem, x)
+    return np.asarray(np.where(sizes > 0.0, sizes, abs(jacobian) @ floored(x, problem)))
+
+
+def equation_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
+    """What each residual is judged against (n,), >= 0: size of its terms or change with the unknowns."""
+    return np.asarray(np.fmax(term_sizes(problem, x, jacobian), jacobian_sizes(x, jacobian)))
 
 
 def last_step_due(rest: float, shrinkage: float) -> bool:
@@ -94,12 +111,15 @@ def scaled_norm(residual: Vector, sizes: Vector) -> float:
 
 
 def residual_at(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> float:
-    """Largest scaled residual at x; far from a root it is measured by the Jacobian alone, which costs
-    less."""
-    scaled = scaled_norm(residual, jacobian_sizes(problem, x, jacobian))
-    if ROUNDING < scaled < NEARLY_ZERO:
-        return scaled_norm(residual, equation_sizes(problem, x, jacobian))
-    return scaled
+    """Largest scaled residual at x. The sizes of the terms are dear, and asked for only where they decide."""
+    slopes = abs(jacobian)
+    scaled = scaled_norm(residual, slopes @ floored(x, problem))
+    if scaled >= NEARLY_ZERO:
+        return scaled
+    by_slopes = scaled_norm(residual, slopes @ np.abs(x))
+    if by_slopes <= ROUNDING:
+        return by_slopes
+    return scaled_norm(residual, equation_sizes(problem, x, jacobian))
 
 
 def measured(problem: Problem, x: Vector) -> float:
@@ -109,35 +129,38 @@ def measured(problem: Problem, x: Vector) -> float:
 
 
 def confirmed(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> bool:
-    """Whether residuals that are small only against ``sum_j |J_ij| |x_j|`` grow away from x, as at a root.
+    """Whether residuals that are not small against terms grow away from x as their derivatives foretell.
 
     Beside a pole ``|J| |x|`` is larger than everything else, and a huge residual would pass for rounding;
     but there it falls with the distance.
     """
-    doubtful = np.flatnonzero(np.abs(residual) > ACCEPTABLE * problem.sizes(x))
+    doubtful = np.flatnonzero(np.abs(residual) > ACCEPTABLE * known_sizes(problem, x))
     return all(_grows_away(problem, x, residual, jacobian, int(i)) for i in doubtful)
 
 
 def _grows_away(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix, equation: int) -> bool:
-    """Whether the residual of one equation is larger a little way off along its own gradient."""
+    """Whether a residual grows at least linearly a little way off along its own gradient."""
     row = jacobian[equation]
     row = row.toarray().ravel() if hasattr(row, "toarray") else row
     shift = BESIDE * floored(x, problem) * np.sign(row)
+    foretold = float(row @ shift)
     for displaced in (x + shift, x - shift):
         if ((problem.lower < displaced) & (displaced < problem.upper)).all():
             moved = problem.residual(displaced)[equation]
             if abs(moved) < inf:
-                return bool(abs(moved) > abs(residual[equation]))
+                return bool(abs(moved) > max(abs(residual[equation]), 0.25 * foretold))
     return False
 
 
-def kind_of_root(problem: Problem, x: Vector, sizes: Vector, factor: Factor) -> Status:
+def kind_of_root(problem: Problem, x: Vector, scaled: float, sizes: Vector, factor: Factor) -> Status:
     """Whether a point with vanishing residuals is an isolated root, a double one, or one of a continuum.
 
     Parameters
     ----------
     x : ndarray (n,)
-        Strictly inside the bounds, scaled residual at rounding level.
+        Strictly inside the bounds.
+    scaled : float
+        Largest scaled residual there.
     sizes : ndarray (n,)
         What the residuals are judged against.
     factor : Factor
@@ -158,12 +181,14 @@ def kind_of_root(problem: Problem, x: Vector, sizes: Vector, factor: Factor) -> 
     if problem.n > LARGEST_EXAMINED:
         return Status.CONTINUUM if factor.singular else Status.CONVERGED
     matrix = factor.matrix.toarray() if hasattr(factor.matrix, "toarray") else factor.matrix
-    _, _, direction = smallest_singular_vectors(matrix * (factor.rows / sizes)[:, None])
-    left_over = [
-        _least_residual(problem, x, factor.weights, sizes, direction, t) for t in (PROBE, 2.0 * PROBE)
-    ]
+    reach = np.maximum(np.abs(x), NEIGHBOURHOOD * problem.magnitude)
+    units = np.maximum(sizes, TINY)[:, None]
+    _, _, direction = smallest_singular_vectors(
+        matrix * (reach / factor.weights) * factor.rows[:, None] / units
+    )
+    left_over = [_least_residual(problem, x, reach, sizes, direction, t) for t in (PROBE, 2.0 * PROBE)]
     near, far = (min(pair) for pair in left_over)
-    if far <= 64.0 * ROUNDING:
+    if far <= max(64.0 * ROUNDING, 8.0 * scaled):
         return Status.CONTINUUM
     if far > 3.0 * near or factor.singular:
         return Status.DOUBLE

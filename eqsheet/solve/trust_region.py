@@ -29,7 +29,7 @@ from eqsheet.solve.interior import Interior
 from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
-from eqsheet.solve.termination import equation_sizes, floored, measured, scaled_norm
+from eqsheet.solve.termination import floored, measured, scaled_norm
 from eqsheet.solve.trail import Trail
 
 # (scaled residual f (n,), scaled Jacobian A (n, k), radius) to the step (k,) in the scaled unknowns.
@@ -63,7 +63,7 @@ def descend(problem: Problem, start: Vector, trail: Trail, strategy: StepStrateg
     if not _finite(residual, jacobian):
         return trail.close(Status.DOMAIN, x, np.inf)
     jacobian = _dense(jacobian)
-    rows = np.maximum(equation_sizes(problem, x, jacobian), np.finfo(float).tiny)
+    rows = np.maximum(np.fmax(problem.sizes(x), np.abs(jacobian) @ floored(x, problem)), np.finfo(float).tiny)
     f, a = residual / rows, jacobian / rows[:, None]
     diagonal = _column_norms(a, problem)
     norm = float(np.linalg.norm(f))

@@ -57,8 +57,9 @@ def helical_valley(x, m):
 
 
 def real(number):
-    """The real part, also of numbers of another kind."""
-    return getattr(number, "real", getattr(number, "value", number))
+    """The real part, also of numbers of another kind and of arrays, which hold one real part many times."""
+    part = getattr(number, "real", getattr(number, "value", number))
+    return part.flat[0] if hasattr(part, "flat") else part
 
 
 def size_of(number):

@@ -3,7 +3,6 @@ digits."""
 
 from __future__ import annotations
 
-import cmath
 import math
 
 import numpy as np
@@ -17,15 +16,15 @@ COMPLEX_STEP = 1e-100
 
 
 class ComplexMath:
-    """The functions the published problems use, on complex numbers."""
+    """The functions the published problems use, on arrays of complex numbers."""
 
     pi = math.pi
-    exp = staticmethod(cmath.exp)
-    log = staticmethod(cmath.log)
-    sqrt = staticmethod(cmath.sqrt)
-    sin = staticmethod(cmath.sin)
-    cos = staticmethod(cmath.cos)
-    atan = staticmethod(cmath.atan)
+    exp = staticmethod(np.exp)
+    log = staticmethod(np.log)
+    sqrt = staticmethod(np.sqrt)
+    sin = staticmethod(np.sin)
+    cos = staticmethod(np.cos)
+    atan = staticmethod(np.arctan)
 
 
 ARITHMETIC = (OverflowError, ZeroDivisionError, ValueError)
@@ -57,15 +56,11 @@ def plain_problem(formulas, start, lower=None, upper=None, magnitude=None, seen=
 
     def linearise(x):
         values = residual(x)
-        jacobian = np.full((n, n), np.nan)
-        try:
-            for j in range(n):
-                moved = [complex(v) for v in x]
-                moved[j] += 1j * COMPLEX_STEP
-                jacobian[:, j] = [complex(f).imag / COMPLEX_STEP for f in formulas(moved, ComplexMath)]
-        except ARITHMETIC:
-            pass
-        return values, jacobian
+        # Row j of the stepped unknowns holds unknown j in all n columns, stepped in column j.
+        stepped = list(np.asarray(x)[:, None] + 1j * COMPLEX_STEP * np.eye(n))
+        with np.errstate(all="ignore"):
+            rows = [np.broadcast_to(np.imag(f), (n,)) / COMPLEX_STEP for f in formulas(stepped, ComplexMath)]
+        return values, np.array(rows)
 
     def sizes(x):
         note(x)
