@@ -18,11 +18,11 @@ from eqsheet.model.interpolant import INVERSE_SLOPE, Interpolant
 from eqsheet.model.interpolation import rounding_scale, value_or_nan
 from eqsheet.model.tape import Tape, operands_of
 
-_INTERPOLATED = frozenset(("curve", "surface"))
+INTERPOLATED = frozenset(("curve", "surface"))
 # Half the spacing of floats around 1: the largest relative error of one rounding.
 ROUNDING = 2.0**-53
 # Below the normal range a rounding is bounded by this instead.
-_UNDERFLOW = 5e-324
+UNDERFLOW = 5e-324
 
 
 def evaluate(tape: Tape, quantities: Sequence[float], literals: Sequence[float]) -> list[Any]:
@@ -46,12 +46,12 @@ def evaluate(tape: Tape, quantities: Sequence[float], literals: Sequence[float])
             values.append(float(literals[instruction[1]]))
         elif operation == "const":
             values.append(as_float(instruction[1]))
-        elif operation in _OF_ATTRIBUTE:
-            values.append(_OF_ATTRIBUTE[operation](values[instruction[1]], instruction[2]))
-        elif operation in _INTERPOLATED:
+        elif operation in OF_ATTRIBUTE:
+            values.append(OF_ATTRIBUTE[operation](values[instruction[1]], instruction[2]))
+        elif operation in INTERPOLATED:
             values.append(value_or_nan(instruction[-1], *[values[i] for i in instruction[1:-1]]))
         else:
-            values.append(_STEPS[operation](*[values[i] for i in instruction[1:]]))
+            values.append(STEPS[operation](*[values[i] for i in instruction[1:]]))
     return values
 
 
@@ -78,7 +78,7 @@ def evaluate_arrays(tape: Tape, quantities: Sequence[Any], literals: Sequence[An
                 values.append((values[instruction[1]] - instruction[2].origin) / instruction[2].factor)
             elif operation == "attach":
                 values.append(values[instruction[1]] * instruction[2].factor + instruction[2].origin)
-            elif operation in _INTERPOLATED:
+            elif operation in INTERPOLATED:
                 values.append(instruction[-1].array_function(*[values[i] for i in instruction[1:-1]]))
             else:
                 values.append(steps[operation](*[values[i] for i in instruction[1:]]))
@@ -194,7 +194,7 @@ def _sinh(a: float) -> float:
         return math.copysign(math.inf, a)
 
 
-_STEPS: dict[str, Callable[..., Any]] = {
+STEPS: dict[str, Callable[..., Any]] = {
     "neg": lambda a: -a,
     "add": lambda a, b: a + b,
     "sub": lambda a, b: a - b,
@@ -215,7 +215,7 @@ _STEPS: dict[str, Callable[..., Any]] = {
     "log10": _guarded(_log10),
     "sinh": _sinh,
 }
-_OF_ATTRIBUTE: dict[str, Callable[[float, Any], float]] = {
+OF_ATTRIBUTE: dict[str, Callable[[float, Any], float]] = {
     "power": exact_power,
     "strip": lambda a, unit: (a - unit.origin) / unit.factor,
     "attach": lambda a, unit: a * unit.factor + unit.origin,
@@ -290,40 +290,40 @@ def evaluate_with_evidence(
             a, b, a_size, b_size = values[i], values[j], sizes[i], sizes[j]
             v = a * b
             size = a_size * b_size if a_size and b_size else 0.0
-            error = _product_error(a, bounds[i], b, bounds[j]) + _product_rounding(v, a, b)
+            error = product_error(a, bounds[i], b, bounds[j]) + _product_rounding(v, a, b)
         elif operation == "literal":
             v = float(literals[instruction[1]])
             size, error = abs(v), 0.0
         elif operation == "const":
             v = as_float(instruction[1])
-            size, error = abs(v), 0.0 if _is_exact(instruction[1], v) else _rounding(v)
+            size, error = abs(v), 0.0 if is_exact(instruction[1], v) else rounding_of(v)
         elif operation == "add" or operation == "sub":
             _, i, j = instruction
             a, b = values[i], values[j]
             v = a + b if operation == "add" else a - b
             size = max(sizes[i], sizes[j], abs(v))
-            error = bounds[i] + bounds[j] + (ROUNDING * abs(v) + _UNDERFLOW if v else 0.0)
-        elif operation in _TRUTH:
-            v = _STEPS[operation](*[values[i] for i in instruction[1:]])
+            error = bounds[i] + bounds[j] + (ROUNDING * abs(v) + UNDERFLOW if v else 0.0)
+        elif operation in TRUTH:
+            v = STEPS[operation](*[values[i] for i in instruction[1:]])
             size, error = 0.0, 0.0
         elif operation in UNARY:
             i = instruction[1]
-            v = _STEPS[operation](values[i])
-            size, error = _unary_evidence(operation, v, values[i], sizes[i], bounds[i])
-        elif operation in _OF_ATTRIBUTE:
+            v = STEPS[operation](values[i])
+            size, error = unary_evidence(operation, v, values[i], sizes[i], bounds[i])
+        elif operation in OF_ATTRIBUTE:
             _, i, attribute = instruction
-            v = _OF_ATTRIBUTE[operation](values[i], attribute)
-            size, error = _EVIDENCE[operation](v, values[i], sizes[i], bounds[i], attribute)
-        elif operation in _INTERPOLATED:
+            v = OF_ATTRIBUTE[operation](values[i], attribute)
+            size, error = EVIDENCE[operation](v, values[i], sizes[i], bounds[i], attribute)
+        elif operation in INTERPOLATED:
             operands = instruction[1:-1]
             arguments = [values[i] for i in operands]
             v = value_or_nan(instruction[-1], *arguments)
-            size, error = _interpolated_evidence(
+            size, error = interpolated_evidence(
                 v, instruction[-1], arguments, [sizes[i] for i in operands], [bounds[i] for i in operands]
             )
         elif operation == "if":
             _, c, i, j = instruction
-            v = _STEPS["if"](values[c], values[i], values[j])
+            v = STEPS["if"](values[c], values[i], values[j])
             chosen = i if values[c] else j
             size, error = sizes[chosen], bounds[chosen]
         elif operation == "neg":
@@ -332,8 +332,8 @@ def evaluate_with_evidence(
         else:
             _, i, j = instruction
             a, b = values[i], values[j]
-            v = _STEPS[operation](a, b)
-            size, error = _EVIDENCE[operation](v, a, sizes[i], bounds[i], b, sizes[j], bounds[j])
+            v = STEPS[operation](a, b)
+            size, error = EVIDENCE[operation](v, a, sizes[i], bounds[i], b, sizes[j], bounds[j])
         values.append(v)
         sizes.append(size)
         bounds.append(error)
@@ -342,13 +342,13 @@ def evaluate_with_evidence(
 
 # Whole numbers up to here are floats.
 _WHOLE = 2**53
-_TRUTH = frozenset({"lt", "le", "eq", "and", "or", "not"})
+TRUTH = frozenset({"lt", "le", "eq", "and", "or", "not"})
 # Roundings of a curve in units of 2^-53 of the sizes of its terms: four products and sums, and the distance
 # from the point before.
 _CURVE_UNITS = 16.0
 
 
-def _is_exact(constant: Any, value: float) -> bool:
+def is_exact(constant: Any, value: float) -> bool:
     """Whether `value` stands for the constant exactly."""
     if isinstance(constant, float) or not math.isfinite(value):
         return True
@@ -359,8 +359,9 @@ def _is_exact(constant: Any, value: float) -> bool:
     return not below & (below - 1) and Fraction(constant) == Fraction(value)
 
 
-def _rounding(v: float, units: float = 1.0) -> float:
-    return units * (ROUNDING * abs(v) + _UNDERFLOW) if v else 0.0
+def rounding_of(v: float, units: float = 1.0) -> float:
+    """Bound of the error that rounding makes in v, in `units` of half a last place."""
+    return units * (ROUNDING * abs(v) + UNDERFLOW) if v else 0.0
 
 
 def _product(a: float, b: float) -> float:
@@ -368,26 +369,28 @@ def _product(a: float, b: float) -> float:
     return a * b if a and b else 0.0
 
 
-def _unary_evidence(operation: str, v: float, a: float, size: float, error: float) -> tuple[float, float]:
+def unary_evidence(operation: str, v: float, a: float, size: float, error: float) -> tuple[float, float]:
+    """Size and error bound of a function's value v, from its argument a and that one's size and error."""
     function = UNARY[operation]
     if operation == "sqrt":
         # The slope is infinite at 0, where the root of the size and of the error say more.
         reach = math.sqrt(max(a - error, 0.0)) if a == a else math.nan
         spread = divide(error, v + reach) if error else 0.0
-        return _safe_power(v, divide(size, abs(a)) if a else 1.0, 0.5, size), spread + _rounding(v)
+        return _safe_power(v, divide(size, abs(a)) if a else 1.0, 0.5, size), spread + rounding_of(v)
     if operation in ("abs", "neg"):
         return size, error
     try:
         slope = abs(function.slope(a, v))
     except (ValueError, ZeroDivisionError, OverflowError):
         slope = math.inf
-    return max(abs(v), _product(slope, size)), _product(slope, error) + _rounding(v, function.units)
+    return max(abs(v), _product(slope, size)), _product(slope, error) + rounding_of(v, function.units)
 
 
-def _interpolated_evidence(
+def interpolated_evidence(
     v: float, interpolant: Interpolant, arguments: list[float], sizes: list[float], errors: list[float]
 ) -> tuple[float, float]:
-    size, error = abs(v), _rounding(rounding_scale(interpolant, *arguments), _CURVE_UNITS)
+    """Size and error bound of the value v of a curve or surface."""
+    size, error = abs(v), rounding_of(rounding_scale(interpolant, *arguments), _CURVE_UNITS)
     if interpolant.is_stepped:
         return size, error
     if interpolant.shape == INVERSE_SLOPE:
@@ -411,25 +414,25 @@ def _of_power(v: float, a: float, size: float, error: float, exponent: Fraction)
     r = as_float(exponent)
     slope = abs(r) * abs(raised(a, r - 1.0))
     # The exponent itself is rounded where it is no float; its effect is |ln a| times that.
-    inexact = 0.0 if _is_exact(exponent, r) or not a else abs(r * v * math.log(abs(a))) * ROUNDING
-    bound = _product(slope, error) + _rounding(v, 4.0) + inexact
+    inexact = 0.0 if is_exact(exponent, r) or not a else abs(r * v * math.log(abs(a))) * ROUNDING
+    bound = _product(slope, error) + rounding_of(v, 4.0) + inexact
     return _safe_power(v, divide(size, abs(a)) if a else 1.0, r, size), bound
 
 
 def _of_strip(v: float, a: float, size: float, error: float, unit: Any) -> tuple[float, float]:
     factor = abs(unit.factor)
-    rounding = _rounding(a - unit.origin) / factor if unit.origin else 0.0
+    rounding = rounding_of(a - unit.origin) / factor if unit.origin else 0.0
     own_size = max(size, abs(unit.origin)) / factor
-    return max(own_size, abs(v)), error / factor + rounding + _rounding(v)
+    return max(own_size, abs(v)), error / factor + rounding + rounding_of(v)
 
 
 def _of_attach(v: float, a: float, size: float, error: float, unit: Any) -> tuple[float, float]:
     factor = abs(unit.factor)
-    rounding = _rounding(a * factor) if unit.origin else 0.0
-    return max(size * factor, abs(unit.origin), abs(v)), error * factor + rounding + _rounding(v)
+    rounding = rounding_of(a * factor) if unit.origin else 0.0
+    return max(size * factor, abs(unit.origin), abs(v)), error * factor + rounding + rounding_of(v)
 
 
-def _product_error(a: float, a_error: float, b: float, b_error: float) -> float:
+def product_error(a: float, a_error: float, b: float, b_error: float) -> float:
     """What the errors of two factors make of their product."""
     if not a_error and not b_error:
         return 0.0
@@ -437,7 +440,7 @@ def _product_error(a: float, a_error: float, b: float, b_error: float) -> float:
 
 
 def _product_rounding(v: float, a: float, b: float) -> float:
-    return _rounding(v) if v else (_UNDERFLOW if a and b else 0.0)
+    return rounding_of(v) if v else (UNDERFLOW if a and b else 0.0)
 
 
 def _of_quotient(
@@ -448,7 +451,7 @@ def _of_quotient(
     spread = a_error + _product(abs(v), b_error)
     error = (spread / room if room > 0.0 else math.inf) if spread else 0.0
     size = _product(divide(a_size, below), divide(b_size, below)) if a_size else 0.0
-    return size, error + (_rounding(v) if v or not a else _UNDERFLOW)
+    return size, error + (rounding_of(v) if v or not a else UNDERFLOW)
 
 
 def _of_general_power(
@@ -456,7 +459,7 @@ def _of_general_power(
 ) -> tuple[float, float]:
     log = abs(math.log(abs(a))) if a else 0.0
     base_slope = abs(b) * abs(raised(a, b - 1.0)) if b else 0.0
-    error = _product(base_slope, a_error) + _product(abs(v) * log, b_error) + _rounding(v, 4.0)
+    error = _product(base_slope, a_error) + _product(abs(v) * log, b_error) + rounding_of(v, 4.0)
     size = _safe_power(v, divide(a_size, abs(a)) if a else 1.0, b, a_size)
     return max(size, _product(abs(v) * log, b_size)), error
 
@@ -472,7 +475,7 @@ def _of_hypot(
 ) -> tuple[float, float]:
     if v == 0.0:
         return 0.0, math.hypot(a_error, b_error)
-    error = (abs(a) * a_error + abs(b) * b_error) / v + _rounding(v, 2.0)
+    error = (abs(a) * a_error + abs(b) * b_error) / v + rounding_of(v, 2.0)
     return max(a_size, b_size, abs(v)), error
 
 
@@ -484,26 +487,26 @@ def _of_angle(
         return abs(v), math.inf if y_error or x_error else 0.0
     size = (abs(x) * y_size + abs(y) * x_size) / square
     error = (abs(x) * y_error + abs(y) * x_error) / square
-    return max(abs(v), size), error + _rounding(v, 4.0)
+    return max(abs(v), size), error + rounding_of(v, 4.0)
 
 
 def _of_logmean(
     v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
 ) -> tuple[float, float]:
-    slope = _STEPS["logmean_slope"]
+    slope = STEPS["logmean_slope"]
     error = _product(abs(slope(a, b)), a_error) + _product(abs(slope(b, a)), b_error)
     # Difference, sum, quotient, atanh or ln, and the last quotient round in turn.
-    return max(a_size, b_size), error + _rounding(v, 12.0)
+    return max(a_size, b_size), error + rounding_of(v, 12.0)
 
 
 def _of_logmean_slope(
     v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
 ) -> tuple[float, float]:
     # Written on derivative tapes only, which are no statements to be judged.
-    return abs(v), math.inf if a_error or b_error else _rounding(v, 64.0)
+    return abs(v), math.inf if a_error or b_error else rounding_of(v, 64.0)
 
 
-_EVIDENCE: dict[str, Callable[..., tuple[float, float]]] = {
+EVIDENCE: dict[str, Callable[..., tuple[float, float]]] = {
     "power": _of_power,
     "strip": _of_strip,
     "attach": _of_attach,

@@ -275,7 +275,7 @@ def _number(constant: Fraction | float) -> str:
 _LEAVES = frozenset({"quantity", "literal", "const"})
 
 
-def _leaf(operation: object, value: object) -> str:
+def _leaf(operation: object, value: Any) -> str:
     if operation == "quantity":
         return f"q{value}"
     if operation == "literal":

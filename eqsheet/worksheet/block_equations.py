@@ -9,7 +9,7 @@ import numpy as np
 
 from eqsheet.model.branches import literal_values
 from eqsheet.model.derive import equation_partials
-from eqsheet.model.evaluate import evaluate_with_evidence
+from eqsheet.model.evidence_function import evidence_of_outputs
 from eqsheet.model.generate import DOMAIN_ERRORS, block_functions, safe_function
 from eqsheet.model.tape import Formula
 from eqsheet.solve.problem import Problem, ScalarProblem, Vector
@@ -31,6 +31,7 @@ def scalar_problem(formula: Formula, unknown: int, values: Sequence[float], star
     arguments = [values[q] for q in formula.quantities] + literal_values(formula)
     before, after = arguments[:slot], arguments[slot + 1 :]
     count = len(formula.quantities)
+    no_errors = (0.0,) * count
 
     def linearise(x: float) -> tuple[float, float]:
         value, slope = both(*before, x, *after)
@@ -41,9 +42,7 @@ def scalar_problem(formula: Formula, unknown: int, values: Sequence[float], star
 
     def size(x: float) -> float:
         point = [*before, x, *after]
-        evidence = evaluate_with_evidence(formula.tape, point[:count], point[count:])
-        left, right = formula.tape.outputs
-        return max(evidence.sizes[left], evidence.sizes[right])
+        return max(evidence_of_outputs(formula.tape, point[:count], point[count:], no_errors)[1])
 
     return ScalarProblem(
         residual, linearise, size, start.values[0], start.lower[0], start.upper[0], start.magnitude[0]
@@ -123,8 +122,10 @@ class _OneByOne:
         inputs = self._inputs(x)
         sizes = np.empty(len(self._formulas))
         for row, formula in enumerate(self._formulas):
-            evidence = evaluate_with_evidence(formula.tape, inputs(formula), literal_values(formula))
-            left, right = formula.tape.outputs
-            sizes[row] = max(evidence.sizes[left], evidence.sizes[right])
+            arguments = inputs(formula)
+            _, both, _ = evidence_of_outputs(
+                formula.tape, arguments, literal_values(formula), (0.0,) * len(arguments)
+            )
+            sizes[row] = max(both)
         self._sized = x.copy(), sizes
         return sizes

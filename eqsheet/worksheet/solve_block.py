@@ -15,6 +15,7 @@ import numpy as np
 
 from eqsheet.model.branches import chosen_branches, hold, literal_values, settle, switches
 from eqsheet.model.evaluate import evaluate, evaluate_with_evidence
+from eqsheet.model.evidence_function import evidence_of_outputs
 from eqsheet.model.isolate import isolate
 from eqsheet.model.linear import affine_in, is_linear_in
 from eqsheet.model.tape import Formula, Tape
@@ -358,21 +359,18 @@ def _evidence(
     formulas: Sequence[Formula], own: Mapping[int, float], known: Known
 ) -> tuple[Vector, Vector, Vector]:
     """Residuals, sizes and error bounds of the equations, evaluated afresh one by one."""
-    found = np.empty((3, len(formulas)))
-    for row, formula in enumerate(formulas):
-        evidence = evaluate_with_evidence(
+    residuals, sizes, bounds = [], [], []
+    for formula in formulas:
+        (left, right), both_sizes, both_errors = evidence_of_outputs(
             formula.tape,
             [own[q] if q in own else known.values[q] for q in formula.quantities],
             literal_values(formula),
             [0.0 if q in own else known.errors[q] for q in formula.quantities],
         )
-        left, right = formula.tape.outputs
-        found[:, row] = (
-            evidence.values[left] - evidence.values[right],
-            max(evidence.sizes[left], evidence.sizes[right]),
-            evidence.errors[left] + evidence.errors[right],
-        )
-    return found[0], found[1], found[2]
+        residuals.append(left - right)
+        sizes.append(max(both_sizes))
+        bounds.append(sum(both_errors))
+    return np.array(residuals), np.array(sizes), np.array(bounds)
 
 
 def judged(

@@ -13,6 +13,7 @@ from tape_reference import NoValue, reference
 from tape_strategies import PLACE, POWERS, QUANTITIES, UNITS, tapes, values
 
 from eqsheet.model.evaluate import evaluate_with_evidence
+from eqsheet.model.evidence_function import written_out
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Tape, TapeBuilder
 
 
@@ -35,6 +36,25 @@ def test_error_bound_holds(tape: Tape, at: tuple[float, ...], shift: tuple[float
             assume(False)
         distance = float(abs(exact - mpmath.mpf(evidence.values[i])))
     assert distance <= evidence.errors[i] * (1 + 1e-5) + 1e-300
+
+
+WITH_SPECIAL = st.one_of(st.floats(), st.sampled_from([0.0, -0.0, 1.0, 1e300, 5e-324]), st.floats(0.2, 3.0))
+
+
+@given(tapes(), st.tuples(*[WITH_SPECIAL] * (QUANTITIES + 1)), st.sampled_from([0.0, 1e-13]))
+@settings(max_examples=1000, deadline=None)
+def test_written_out_evidence_is_the_interpreted_one(tape: Tape, at: tuple[float, ...], scale: float) -> None:
+    quantities, literals = at[:QUANTITIES], at[QUANTITIES:]
+    errors = [scale * abs(q) for q in quantities]
+    try:
+        evidence = evaluate_with_evidence(tape, quantities, literals, errors)
+    except (ValueError, OverflowError) as problem:
+        with pytest.raises(type(problem)):
+            written_out(tape, bool(scale))(quantities, literals, errors)
+        return
+    wanted = [[part[o] for o in tape.outputs] for part in (evidence.values, evidence.sizes, evidence.errors)]
+    found = written_out(tape, bool(scale))(quantities, literals, errors)
+    assert repr([list(part) for part in found]) == repr(wanted)
 
 
 OPERATIONS = [
