@@ -59,8 +59,8 @@ class Gathered:
     guesses: list[GuessItem] = field(default_factory=list)
     shown: dict[int, Unit | None] = field(default_factory=dict)
     shows: list[Formula] = field(default_factory=list)
-    hints: tuple[dict[int, Unit], dict[int, Unit], dict[int, Unit]] = field(
-        default_factory=lambda: ({}, {}, {})
+    hints: tuple[dict[int, Unit], dict[int, Unit], dict[int, Unit], dict[int, Unit]] = field(
+        default_factory=lambda: ({}, {}, {}, {})
     )
 
     def __post_init__(self) -> None:
@@ -75,16 +75,16 @@ class Gathered:
             self.first_places[quantity] = place
 
     def preferred_units(self, idle: Sequence[LoweredStatement], binder: Binder) -> dict[int, Unit]:
-        """Unit for each quantity by precedence: `show`, known, known switched off, guess, limit."""
+        """Unit for each quantity by precedence: `show`, known, known switched off, guess, limit, curve."""
         units: dict[int, Unit] = {q: unit for q, unit in self.shown.items() if unit is not None}
-        knowns, guesses, limits = self.hints
+        knowns, guesses, limits, curves = self.hints
         off: dict[int, Unit] = {}
         for one in idle:
             for provisional, unit in one.unit_hints:
                 number = binder.plain_number(provisional)
                 if number is not None:
                     off.setdefault(number, unit)
-        groups: tuple[Mapping[int, Unit | None], ...] = (self.shown, knowns, off, guesses, limits)
+        groups: tuple[Mapping[int, Unit | None], ...] = (self.shown, knowns, off, guesses, limits, curves)
         for group in groups:
             for quantity, found in group.items():
                 if found is not None:
@@ -107,11 +107,12 @@ def put_statement(gathered: Gathered, one: Work, binder: Binder, indexing: Index
         if lowered.equation is not None:
             bound = binder.bind((*lowered.named, *lowered.conditions_name), one.place, one.domain)
             _put_equations(gathered, one, lowered.equation, bound, indexing)
-            _put_hints(gathered.hints[0], lowered, bound)
+            _put_hints(gathered.hints[0], lowered.unit_hints, bound)
+            _put_hints(gathered.hints[3], lowered.curve_hints, bound)
         elif lowered.limit is not None:
             bound = binder.bind(lowered.named, one.place, one.domain)
             _put_limits(gathered, one, lowered.limit, bound, indexing)
-            _put_hints(gathered.hints[2], lowered, bound)
+            _put_hints(gathered.hints[2], lowered.unit_hints, bound)
         for meant in lowered.guesses:
             _put_guesses(gathered, one, meant, binder)
     except Unbound:
@@ -120,8 +121,8 @@ def put_statement(gathered: Gathered, one: Work, binder: Binder, indexing: Index
         _put_show(gathered, one, item.quantity, item.unit, item.formula, (item.start, item.end), binder)
 
 
-def _put_hints(hints: dict[int, Unit], lowered: LoweredStatement, bound: Bound) -> None:
-    for provisional, unit in lowered.unit_hints:
+def _put_hints(hints: dict[int, Unit], units: Sequence[tuple[int, Unit]], bound: Bound) -> None:
+    for provisional, unit in units:
         for entry in range(bound.domain.size):
             (quantity,) = bound.numbers((provisional,), entry)
             hints.setdefault(quantity, unit)

@@ -8,7 +8,7 @@ result can be kept while a worksheet is edited.
 from __future__ import annotations
 
 import math
-from collections.abc import Container
+from collections.abc import Container, Iterator
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Severity
@@ -65,6 +65,8 @@ class LoweredStatement:
         The same for quantities that only its validity conditions name.
     unit_hints : tuple of (int, Unit)
         Units in which it writes a quantity.
+    curve_hints : tuple of (int, Unit)
+        Units in which curves take or give a quantity; they count least.
     uses_gauge : bool
         Whether a gauge unit occurs.
     """
@@ -76,6 +78,7 @@ class LoweredStatement:
     named: tuple[tuple[int, int, int], ...] = ()
     conditions_name: tuple[tuple[int, int, int], ...] = ()
     unit_hints: tuple[tuple[int, Unit], ...] = ()
+    curve_hints: tuple[tuple[int, Unit], ...] = ()
     uses_gauge: bool = False
     findings: tuple[Finding, ...] = ()
 
@@ -143,7 +146,8 @@ def lower_equation(
                 )
             )
             return _broken(work, names, node)
-        if work.first_unit is not None:
+        reads_curve = formula.tape.instructions[other][0] in ("curve", "surface")
+        if work.first_unit is not None and not reads_curve:
             hints = ((known, work.first_unit),)
     item = EquationItem(formula, Place(0, node.start, node.end), known, value, tolerance, valid)
     return LoweredStatement(
@@ -151,6 +155,7 @@ def lower_equation(
         named=_named(formula),
         conditions_name=conditions_name,
         unit_hints=hints,
+        curve_hints=tuple(_units_of_curves(formula)) if context.curves else (),
         uses_gauge=uses_gauge(work),
         findings=tuple(work.findings),
     )
@@ -305,8 +310,38 @@ def is_gauge(unit: Unit) -> bool:
 
 
 def uses_gauge(work: Lowering) -> bool:
-    """Whether a literal of the formula is a gauge pressure."""
-    return any(x.kind == "reading" and x.dimension == _PRESSURE for x in work.builder.literals)
+    """Whether a literal of the formula is a gauge pressure, or a curve takes or gives one."""
+    literals = any(x.kind == "reading" and x.dimension == _PRESSURE for x in work.builder.literals)
+    return literals or any(
+        unit is not None and unit.reading and unit.dimension == _PRESSURE
+        for instruction in work.builder.instructions
+        if instruction[0] in ("curve", "surface")
+        for unit in (*instruction[-1].heading.units, instruction[-1].heading.unit)
+    )
+
+
+def _units_of_curves(formula: Formula) -> Iterator[tuple[int, Unit]]:
+    """Quantities that stand alone as arguments of curves, or against one, with the units of its heading."""
+    instructions = formula.tape.instructions
+
+    def quantity(instruction: int) -> int | None:
+        operation, *rest = instructions[instruction]
+        return formula.quantities[rest[0]] if operation == "quantity" else None
+
+    for operation, *operands in instructions:
+        if operation in ("curve", "surface"):
+            *arguments, interpolant = operands
+            for argument, unit in zip(arguments, interpolant.heading.units):
+                number = quantity(argument)
+                if number is not None and unit is not None:
+                    yield number, unit
+    for side, other in (formula.tape.outputs, formula.tape.outputs[::-1]):
+        number = quantity(side)
+        operation, *operands = instructions[other]
+        if number is not None and operation in ("curve", "surface"):
+            unit = operands[-1].heading.unit
+            if unit is not None:
+                yield number, unit
 
 
 def _is_plain_reference(node: syntax.Expression) -> bool:

@@ -238,3 +238,15 @@ def test_a_missing_file_is_told_once(tmp_path: Path) -> None:
     assert errors(in_folder(tmp_path, FROM_FILES.replace("pump.csv", "none.csv"))) == [
         "unreadable-attachment"
     ]
+
+
+def test_results_are_shown_in_the_units_of_the_heading() -> None:
+    solution = solve(HEAD + "H = head(Q)\nH = 12 m + k*Q^2\nk = 0.04 m*h^2/m^6\nG = head(10 m^3/h)")
+    assert {name: solution[name].unit for name in "HQG"} == {"H": "m", "Q": "m^3/h", "G": "m"}
+    # Any unit written for the quantity itself counts more.
+    assert solve(HEAD + "20 m = head(Q)\nQ near 5 L/s")["Q"].unit == "L/s"
+
+
+def test_the_ambient_pressure_is_told_where_a_curve_gives_gauge_pressures() -> None:
+    text = "curve vessel(V in L) in barg:\n    0 0\n    50 2\np = vessel(20 L)"
+    assert [d.code for d in solve(text).diagnostics] == ["ambient-pressure"]
