@@ -15,18 +15,27 @@ from eqsheet.diagnostics.codes import codes, page, read_page, reference
 PACKAGE = Path(registry.__file__).resolve().parents[1]
 REFERENCE = PACKAGE.parent / "grammar" / "DIAGNOSTICS.md"
 
-# What no worksheet of a few lines can show: a file that cannot be read, an argument of the command line, and
+# What no worksheet of a few lines can show: what is wrong with other files, an argument of the command line, and
 # the limits that keep time and memory bounded.
 WITHOUT_WORKSHEETS = {
-    "unreadable-file",
-    "not-a-known",
-    "no-statement",
-    "one-statement",
-    "statement-too-long",
-    "nested-too-deeply",
+    "csv-empty",
+    "csv-heading",
+    "csv-quotes",
+    "csv-too-many",
     "formula-too-large",
+    "include-cycle",
+    "member-name",
+    "nested-too-deeply",
+    "no-statement",
+    "not-a-known",
+    "one-statement",
+    "path-not-inside",
+    "statement-too-long",
     "too-many-broken",
     "too-many-statements",
+    "unreadable-attachment",
+    "unreadable-file",
+    "worksheet-too-large",
 }
 
 
