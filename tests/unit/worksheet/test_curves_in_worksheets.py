@@ -10,6 +10,8 @@ from scipy.optimize import brentq
 from solving import errors, lines, only, solve, values
 
 import eqsheet
+from eqsheet.live.document import EditedWorksheet, open_text
+from eqsheet.syntax.read import TextFile
 
 HEAD = """
 curve head(Q in m^3/h) in m:
@@ -250,3 +252,43 @@ def test_results_are_shown_in_the_units_of_the_heading() -> None:
 def test_the_ambient_pressure_is_told_where_a_curve_gives_gauge_pressures() -> None:
     text = "curve vessel(V in L) in barg:\n    0 0\n    50 2\np = vessel(20 L)"
     assert [d.code for d in solve(text).diagnostics] == ["ambient-pressure"]
+
+
+@pytest.mark.parametrize(
+    ("line", "text"),
+    [
+        (4, "    10  31"),
+        (2, "curve head(Q in m^3/h) in m by line:"),
+        (2, "curve head(Q in L/s) in m:"),
+        (8, "Q = 16 m^3/h"),
+    ],
+)
+def test_an_edited_curve_gives_what_it_gives_when_read_anew(tmp_path: Path, line: int, text: str) -> None:
+    path = tmp_path / "pump.eqsheet"
+    path.write_text(HEAD + "H = head(Q)\nQ = 15 m^3/h\n", encoding="utf-8")
+    file = open_text(str(path))
+    assert isinstance(file, TextFile)
+    sheet = EditedWorksheet(file, str(path))
+    edited = sheet.replace(line, line, text).solution
+    assert values(edited) == values(eqsheet.parse("\n".join(sheet.lines)).solve())
+    assert values(edited)["H"] != values(solve(HEAD + "H = head(Q)\nQ = 15 m^3/h"))["H"]
+
+
+def test_in_templates_and_in_simultaneous_blocks_of_surfaces() -> None:
+    text = (
+        HEAD + ETA + "template pump:\n    H = head(Q)*m\n    H = 12 m + k*Q^2*(1 + eta(Q, n))\n"
+        "    n = 2000 rpm + 10 rpm/m * H\n    m = 1\n"
+        "use pump as a:\n    k = 0.04 m*h^2/m^6\nuse pump as b:\n    k = 0.02 m*h^2/m^6\n    m = 0.9"
+    )
+    found = solve(text)
+    assert found.status == "solved"
+    for name, k, m in (("a", 0.04, 1.0), ("b", 0.02, 0.9)):
+        q, h, n = (
+            found[f"{name}.{part}"].to(unit) for part, unit in (("Q", "m^3/h"), ("H", "m"), ("n", "rpm"))
+        )
+        # Between the speeds 1450 and 2900, the first and last of two, the surface is straight along n.
+        low, high = (PchipInterpolator([10, 20, 30], column)(q) for column in ([52, 61, 60], [48, 66, 70]))
+        eta = (low + (high - low) * (n - 1450) / 1450) / 100
+        assert h == pytest.approx(m * float(PUMP(q)), rel=1e-10)
+        assert h == pytest.approx(12 + k * q * q * (1 + eta), rel=1e-10)
+        assert n == pytest.approx(2000 + 10 * h, rel=1e-10)
