@@ -113,6 +113,15 @@ def test_a_broken_line_stays_and_is_reported_and_the_others_are_tidied(
     assert ":2:5: error: " in capsys.readouterr().err
 
 
+def test_check_too_reports_a_broken_line(file: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    file.write_text("x=3 m\ny = (4\n", encoding="utf-8")
+    assert main(["fmt", "--check", str(file)]) == 3
+    shown = capsys.readouterr()
+    assert shown.out == "untidy.eqsheet: not tidy\n"
+    assert ":2:5: error: " in shown.err
+    assert file.read_text(encoding="utf-8") == "x=3 m\ny = (4\n"
+
+
 def test_of_several_files_the_worst_status(file: Path) -> None:
     assert main(["fmt", "missing.eqsheet", str(file)]) == 66
     assert file.read_text(encoding="utf-8") == TIDY

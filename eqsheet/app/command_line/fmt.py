@@ -56,7 +56,11 @@ def _check(file: str) -> int:
     if isinstance(found, int):
         return found
     source, text = found
-    if text == source.text:
-        return exit_status.SOLVED
-    print(f"{source.name}: not tidy")
-    return exit_status.OUTSIDE_LIMITS
+    diagnostics = parse_document(source)[1]
+    print_diagnostics(diagnostics)
+    tidy = text == source.text
+    if not tidy:
+        print(f"{source.name}: not tidy")
+    if diagnostics:
+        return exit_status.INVALID
+    return exit_status.SOLVED if tidy else exit_status.OUTSIDE_LIMITS
