@@ -146,7 +146,17 @@ def margin_words(limit: LimitReport) -> str:
     word = "to spare" if limit.slack >= 0 else "too far"
     if limit.margin is None:
         return f"{slack}{unit} {word}"
-    return f"{slack}{unit} ({abs(limit.margin) * 100:.3g}%) {word}"
+    return f"{slack}{unit} ({_percent(abs(limit.margin))}) {word}"
+
+
+def _percent(part: float) -> str:
+    """Three digits, written out as far as a reader takes them in: 12.4%, 1090%.
+
+    >>> _percent(0.124), _percent(10.94), _percent(3e9)
+    ('12.4%', '1094%', '3e+11%')
+    """
+    percent = part * 100
+    return f"{percent:.0f}%" if 1000 <= percent < 1e6 else f"{percent:.3g}%"
 
 
 def verdict_line(solution: Solution) -> str:
