@@ -144,7 +144,7 @@ def _comma(misfit: Misfit, before: str) -> Slip:
     assert digits is not None, misfit.rest  # a comma and a digit stand there
     groups = digits.group()
     if groups.count(",") == 1:
-        point = f"{before}.{groups[1:]}"
+        point = f"{before.replace('.', '')}.{groups[1:]}"
         thousand = f", or `{before}{groups[1:]}` without the comma" if len(groups) == 4 else ""
         return misfit.with_last(
             "decimal-comma",
