@@ -314,6 +314,9 @@ def _number(
     for column in tables.columns:
         collector.declare(((column.name, 1),), (column.set,), column.codes)
     plain: set[str] = set()
+    # Names that a known sets without a subscript, and names of families beyond doubt.
+    alone: set[str] = set()
+    indexed: set[str] = {column.name for column in tables.columns}
     broken: set[object] = set()
     keys = provisional.names
     for one in work:
@@ -326,7 +329,11 @@ def _number(
             resolved = key if one.place.plain and isinstance(key, str) else resolved_key(key, one.place)
             if isinstance(resolved, str):
                 plain.add(resolved)
+                if number == one.lowered.equation.known:
+                    alone.add(resolved)
                 continue
+            if one.place.heads or resolved.fixed:
+                indexed.add(resolved.path[0][0])
             written_key = key.key if isinstance(key, OfInstance) else key
             # A path written out, `supply.dP`, refers to what the template makes; so does a line of an
             # instance's group.
@@ -342,6 +349,7 @@ def _number(
                     diagnostics.append(found)
     # What is wrong with a reference that makes no member is said again, and better, when it is bound.
     collector.finish()
+    collector.forget(alone - indexed)
     families = {path[0][0] for path in collector.sets if len(path) == 1 and path[0][1]}
     return collector.numbering(plain - families), broken
 

@@ -187,6 +187,12 @@ class FamilyCollector:
                 slips.append(slip)
         return slips
 
+    def forget(self, names: Collection[str]) -> None:
+        """Take back the families of some names: they are quantities, given a subscript by mistake."""
+        for path in [p for p in self.sets if len(p) == 1 and p[0][0] in names]:
+            del self.sets[path]
+            self._members.pop(path, None)
+
     def _codes(self, reference: FamilyReference, domain: Domain) -> Codes:
         full = with_fixed(domain, reference.fixed)
         slots = self.sets[reference.path]
