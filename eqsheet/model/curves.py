@@ -29,6 +29,8 @@ from eqsheet.syntax import nodes as syntax
 from eqsheet.units.registry import UnitProblem, UnitTable
 from eqsheet.units.unit import Unit
 
+# Each point costs memory in every formula that reads the curve; measured data beyond this are a slip.
+MOST_POINTS = 100_000
 _NUMBER = re.compile(r"[+-]?\d+(\.\d+)?([eE][+-]?\d+)?")
 _DECIMAL_COMMA = re.compile(r"[+-]?\d+,\d+")
 _CURVES: Mapping[str, Callable[..., Interpolant]] = {
@@ -161,6 +163,15 @@ class _Reader:
 
     def _rows(self) -> list[syntax.Statement]:
         rows = []
+        if len(self.statement.body) > MOST_POINTS:
+            raise self._said(
+                error(
+                    "worksheet-too-large",
+                    f"`{self.node.name}` has {len(self.statement.body):,} rows; a curve has at most {MOST_POINTS:,}",
+                    Label(self.statement.whole),
+                    help="leave points out where the curve is nearly straight",
+                )
+            )
         for row in self.statement.body:
             if not isinstance(row.node, syntax.TableRow):
                 raise self._said(

@@ -127,3 +127,9 @@ def test_an_unknown_unit_is_placed_in_the_heading() -> None:
 
 def test_a_curve_switched_off_is_none() -> None:
     assert read("off " + CURVE.format("head")) == ({}, [])
+
+
+def test_a_curve_of_very_many_points_is_refused(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr("eqsheet.model.curves.MOST_POINTS", 2)
+    assert read(CURVE.format("head"))[1] == []
+    assert only(CURVE.format("head") + "    20 28\n").code == "worksheet-too-large"
