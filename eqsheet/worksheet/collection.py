@@ -14,7 +14,10 @@ from contextlib import contextmanager
 
 @contextmanager
 def collection_put_off() -> Iterator[None]:
-    """Runs the body without the cyclic collector, which is on again afterwards if it was on before."""
+    """Runs the body without the cyclic collector, which is on again afterwards if it was on before.
+
+    What the body has made is then old already: the next look at young values does not walk all of it.
+    """
     if not gc.isenabled():
         yield
         return
@@ -22,4 +25,8 @@ def collection_put_off() -> Iterator[None]:
     try:
         yield
     finally:
+        if gc.get_freeze_count() == 0:
+            # Together the two move every value to the oldest generation; values that the caller has frozen stay so.
+            gc.freeze()
+            gc.unfreeze()
         gc.enable()

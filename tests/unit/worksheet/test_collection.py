@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import gc
+import weakref
 
 import pytest
 
@@ -33,3 +34,27 @@ def test_stays_off_where_the_caller_has_switched_it_off() -> None:
         assert not gc.isenabled()
     finally:
         gc.enable()
+
+
+def test_what_was_made_is_collected_all_the_same() -> None:
+    class Node:
+        other: object = None
+
+    with collection_put_off():
+        node = Node()
+        node.other = node
+    gone = weakref.ref(node)
+    del node
+    gc.collect()
+    assert gone() is None
+
+
+def test_what_the_caller_has_frozen_stays_frozen() -> None:
+    gc.freeze()
+    try:
+        frozen = gc.get_freeze_count()
+        with collection_put_off():
+            pass
+        assert gc.get_freeze_count() >= frozen - 1
+    finally:
+        gc.unfreeze()
