@@ -101,9 +101,9 @@ class Worksheet:
 
         >>> import eqsheet
         >>> sheet = eqsheet.parse("v = Q/A\\nQ = 3 L/s\\nA = 12 cm^2")
-        >>> sheet.solve()["v"].to("m/s")
+        >>> round(sheet.solve()["v"].to("m/s"), 9)
         2.5
-        >>> sheet.solve(changes=["Q = 6 L/s"])["v"].to("m/s")
+        >>> round(sheet.solve(changes=["Q = 6 L/s"])["v"].to("m/s"), 9)
         5.0
         """
         with collection_put_off():
