@@ -116,9 +116,7 @@ def _whole_knowns(statements: Sequence[syntax.Statement]) -> Mapping[str, int]:
         for target, value in ((node.left, node.right), (node.right, node.left)):
             if (
                 isinstance(target, syntax.Reference)
-                and isinstance(value, syntax.Number)
                 and target.dotted in mentioned
-                and value.unit is None
                 and (number := whole_number(value)) is not None
             ):
                 whole[target.dotted] = number

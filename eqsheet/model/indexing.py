@@ -282,8 +282,13 @@ def _whole(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Codes
         raise
 
 
-def whole_number(node: syntax.Number) -> int | None:
-    """The value of a literal that is a plain whole number; None for any other, or one beyond exact floats."""
+def whole_number(node: syntax.Expression) -> int | None:
+    """The value of a plain whole number with or without a sign; None for all else, or one beyond exact floats."""
+    if isinstance(node, syntax.Unary) and node.operator in "+-" and isinstance(node.operand, syntax.Number):
+        inner = whole_number(node.operand)
+        return None if inner is None else -inner if node.operator == "-" else inner
+    if not isinstance(node, syntax.Number):
+        return None
     value = float(node.text)
     if node.unit is not None or not value.is_integer() or abs(value) > 2**53:
         return None
