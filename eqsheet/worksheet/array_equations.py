@@ -96,7 +96,11 @@ class ArrayBlock:
                 there = columns >= 0
                 mask = None if there.all() else there
                 entries.append(
-                    (mask, shape.rows if mask is None else shape.rows[mask], columns if mask is None else columns[mask])
+                    (
+                        mask,
+                        shape.rows if mask is None else shape.rows[mask],
+                        columns if mask is None else columns[mask],
+                    )
                 )
             function = array_function(equation_partials(shape.tape, slots))
             self._parts.append((shape, function, entries))
@@ -178,5 +182,9 @@ class _Pattern:
         from scipy.sparse import csc_matrix
 
         sorted_entries = entries[self._order]
-        data = sorted_entries if len(self._starts) == len(entries) else np.add.reduceat(sorted_entries, self._starts)
+        data = (
+            sorted_entries
+            if len(self._starts) == len(entries)
+            else np.add.reduceat(sorted_entries, self._starts)
+        )
         return csc_matrix((data, self._indices, self._indptr), shape=(self._n, self._n), copy=False)

@@ -31,7 +31,9 @@ def kremser(factor: float, stages: int) -> tuple[float, float]:
     """The part absorbed, and the mole fraction of the gas that leaves."""
     with mpmath.workdps(60):
         a = mpmath.mpf(factor)
-        part = mpmath.mpf(stages) / (stages + 1) if a == 1 else (a ** (stages + 1) - a) / (a ** (stages + 1) - 1)
+        part = (
+            mpmath.mpf(stages) / (stages + 1) if a == 1 else (a ** (stages + 1) - a) / (a ** (stages + 1) - 1)
+        )
         return float(part), float((1 - part) * mpmath.mpf("0.02"))
 
 

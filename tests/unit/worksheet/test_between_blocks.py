@@ -25,7 +25,9 @@ def codes(solution: Solution) -> list[str]:
 def test_another_root_of_an_iterated_block_is_taken_where_the_first_leaves_a_later_block_none() -> None:
     for first, second in ((2.5, 3.0), (-2.5, 2.0)):
         sign = math.copysign(1.0, first)
-        solution = solved(f"x^2 - 5*x + 6 = 0\nx near {5 - second}\ny = sqrt({sign:.0f}*(x - {abs(first)}))\n")
+        solution = solved(
+            f"x^2 - 5*x + 6 = 0\nx near {5 - second}\ny = sqrt({sign:.0f}*(x - {abs(first)}))\n"
+        )
         assert solution["x"].si == pytest.approx(second, rel=1e-12)
         assert "other-solution-taken" in codes(solution)
 
