@@ -101,7 +101,9 @@ class Gathered:
 
 
 def put_statement(gathered: Gathered, one: Work, binder: Binder, indexing: Indexing) -> None:
-    """Bind one statement's items."""
+    """Bind one statement's items; in a family without members there are none."""
+    if not one.domain.size:
+        return
     lowered = one.lowered
     try:
         if lowered.equation is not None:
