@@ -50,14 +50,14 @@ def evaluate(
     for slot, power in form.literals:
         dimension = literals[slot]
         if dimension:
-            value = value * (dimension if power == 1 else dimension ** Fraction(power))
+            value = value * dimension**power
     unknown: list[tuple[int, Exponent]] = []
     for slot, power in form.quantities:
         given = known[slot]
         if given is None:
             unknown.append((slot, power))
         elif given:
-            value = value * (given if power == 1 else given ** Fraction(power))
+            value = value * given**power
     return value, unknown
 
 
@@ -141,7 +141,7 @@ class Worklines:
                         broken = demand
                 elif len(unknown) == 1:
                     slot, power = unknown[0]
-                    dimension = value ** (Fraction(-1) / Fraction(power))
+                    dimension = value if power == -1 else value ** (Fraction(-1) / power)
                     known[slot] = dimension
                     solved.append((slot, self.number(dimension), demand))
                     progress = True

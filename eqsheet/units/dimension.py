@@ -30,13 +30,15 @@ class Dimension(tuple[tuple[str, Fraction], ...]):
         )
 
     def __mul__(self, other: Dimension) -> Dimension:  # type: ignore[override]
+        if not self or not other:
+            return self or other
         return _combine(self, other, 1)
 
     def __truediv__(self, other: Dimension) -> Dimension:
         return _combine(self, other, -1)
 
     def __pow__(self, power: Fraction | int) -> Dimension:
-        return _raise(self, Fraction(power))
+        return self if power == 1 or not self else _raise(self, power)
 
     @property
     def text(self) -> str:
@@ -55,7 +57,7 @@ def _combine(a: Dimension, b: Dimension, sign: int) -> Dimension:
 
 
 @lru_cache(maxsize=4096)
-def _raise(a: Dimension, power: Fraction) -> Dimension:
+def _raise(a: Dimension, power: Fraction | int) -> Dimension:
     return Dimension.of({base: exponent * power for base, exponent in a})
 
 
