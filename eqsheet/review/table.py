@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.review.columns import in_columns
 from eqsheet.review.folding import extremes, families, family_name, worst_limits
-from eqsheet.syntax.nodes import Guess, Reference
+from eqsheet.syntax.nodes import Guess, Reference, Statement
 from eqsheet.units.display import format_value
 from eqsheet.worksheet.own_line import own_line
 from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, Solution
@@ -41,12 +41,25 @@ def off_lines(solution: Solution) -> list[str]:
     """The statements that are kept but not used."""
     return in_columns(
         [
-            (" ".join(s.line.text.removeprefix("off ").split()), f"line {s.line.line}", s.description)
-            for s in solution.statements
-            if s.off and s.source.numbered
+            (
+                " ".join(s.line.text.strip().removeprefix("off ").split()).removesuffix(":"),
+                f"line {s.line.line}",
+                s.description,
+            )
+            for s in _off(solution.statements)
+            if s.source.numbered
         ],
         indent="  ",
     )
+
+
+def _off(statements: Iterable[Statement]) -> Iterator[Statement]:
+    """Statements switched off, those in groups too; a group switched off counts once."""
+    for statement in statements:
+        if statement.off:
+            yield statement
+        else:
+            yield from _off(statement.body)
 
 
 def _sections(solution: Solution) -> list[tuple[str, list[QuantityValue]]]:

@@ -78,3 +78,9 @@ def test_the_object_for_programs_holds_every_member_and_every_limit() -> None:
     data = solution_data(eqsheet.parse(LIMITS.format(20)).solve())
     assert len(data["quantities"]) == 30
     assert len(data["limits"]) == 30
+
+
+def test_statements_switched_off_in_groups_are_shown() -> None:
+    text = "for i in 1..2:\n    x[i] = 2\n    off x[i] = 3\noff for k in 1..2:\n    y[k] = 2\n"
+    lines = table(text)
+    assert lines[lines.index("Switched off") + 1 :] == ["x[i] = 3 line 3", "for k in 1..2 line 4"]
