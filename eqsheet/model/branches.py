@@ -1,14 +1,21 @@
-"""Branches of formulas: which are settled by what is known, and which depend on what is being solved for."""
+"""Branches of formulas: which are settled by what is known, and which depend on what is being solved for.
+
+A curve by steps that is read at an unknown branches too: each step is a branch, on which its value is fixed.
+"""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass
+import math
+from collections.abc import Callable, Collection, Mapping, Sequence
+from dataclasses import dataclass, replace
 from typing import Any
 
-from eqsheet.model.evaluate import evaluate
+from eqsheet.model.evaluate import evaluate, used_instructions
+from eqsheet.model.interpolant import Interpolant
+from eqsheet.model.interpolation import step_at
+from eqsheet.model.outside_curve import curve_arguments
 from eqsheet.model.specialise import conditions, specialise_formula
-from eqsheet.model.tape import Formula, Tape, operands_of
+from eqsheet.model.tape import Formula, Literal, Tape, operands_of
 
 
 def literal_values(formula: Formula) -> list[float]:
@@ -58,25 +65,42 @@ def quantities_under(tape: Tape, instruction: int) -> frozenset[int]:
 
 @dataclass(frozen=True, slots=True)
 class Switch:
-    """One undecided ``if`` of a group of formulas: which formula, and its instruction there."""
+    """One undecided ``if``, or curve by steps, of a group of formulas.
+
+    Attributes
+    ----------
+    formula, instruction : int
+        Which formula, and its instruction there.
+    count : int
+        Number of branches.
+    """
 
     formula: int
     instruction: int
+    count: int = 2
 
 
-def switches(formulas: Sequence[Formula]) -> tuple[Switch, ...]:
-    """All undecided ``if`` instructions of the formulas, in order."""
-    return tuple(
-        Switch(number, condition.instruction)
-        for number, formula in enumerate(formulas)
-        for condition in conditions(formula.tape)
-    )
+def switches(formulas: Sequence[Formula], unknowns: Collection[int] = ()) -> tuple[Switch, ...]:
+    """All undecided ``if`` instructions of the formulas, in order, and the curves by steps read at `unknowns`."""
+    found = []
+    for number, formula in enumerate(formulas):
+        found += [Switch(number, condition.instruction) for condition in conditions(formula.tape)]
+        readers = {
+            reader: len(formula.tape.instructions[reader][-1].pieces)
+            for reader, _, argument in curve_arguments(formula.tape)
+            if formula.tape.instructions[reader][-1].is_stepped
+            and any(formula.quantities[k] in unknowns for k in quantities_under(formula.tape, argument))
+        }
+        found += [Switch(number, reader, count) for reader, count in readers.items()]
+    return tuple(found)
 
 
 def chosen_branches(
     formulas: Sequence[Formula], found: Sequence[Switch], values: Callable[[int], float]
 ) -> tuple[int, ...]:
     """The branch each switch takes at given values, 0 for the first; 0 too where the switch does not matter.
+
+    Where a curve by steps is read outside its range, its number of branches, which stands for none of them.
 
     Parameters
     ----------
@@ -89,7 +113,24 @@ def chosen_branches(
         results = evaluate(tape, [values(q) for q in formula.quantities], literal_values(formula))
         for instruction, truth in _reached(tape, results).items():
             taken[number, instruction] = 0 if truth else 1
+        if curve_arguments(tape):
+            used = used_instructions(tape, results)
+            for switch in found:
+                if switch.formula == number and used[switch.instruction]:
+                    operation, *operands = tape.instructions[switch.instruction]
+                    if operation in ("curve", "surface"):
+                        *arguments, interpolant = operands
+                        taken[number, switch.instruction] = _step(
+                            interpolant, [results[a] for a in arguments]
+                        )
     return tuple(taken.get((switch.formula, switch.instruction), 0) for switch in found)
+
+
+def _step(interpolant: Interpolant, arguments: Sequence[float]) -> int:
+    try:
+        return step_at(interpolant, arguments)
+    except ValueError:
+        return len(interpolant.pieces)
 
 
 def _reached(tape: Tape, results: Sequence[Any]) -> Mapping[int, bool]:
@@ -117,9 +158,29 @@ def hold(
 ) -> tuple[Formula, ...]:
     """The formulas with every switch held at its branch."""
     held: dict[int, dict[int, bool]] = {}
+    fixed = list(formulas)
     for switch, branch in zip(found, branches):
-        held.setdefault(switch.formula, {})[switch.instruction] = branch == 0
+        taken = held.setdefault(switch.formula, {})
+        if formulas[switch.formula].tape.instructions[switch.instruction][0] == "if":
+            taken[switch.instruction] = branch == 0
+        else:
+            fixed[switch.formula] = _on_step(fixed[switch.formula], switch.instruction, branch)
     return tuple(
         specialise_formula(formula, held[number]) if number in held else formula
-        for number, formula in enumerate(formulas)
+        for number, formula in enumerate(fixed)
+    )
+
+
+def _on_step(formula: Formula, reader: int, branch: int) -> Formula:
+    """The formula with the value of a curve by steps written in its place; nan outside the range."""
+    tape = formula.tape
+    interpolant: Interpolant = tape.instructions[reader][-1]
+    value = interpolant.pieces[branch][0] if branch < len(interpolant.pieces) else math.nan
+    literal = Literal(value, interpolant.heading.dimension, "plain", *formula.places[reader])
+    instructions = list(tape.instructions)
+    instructions[reader] = ("literal", tape.literals)
+    return replace(
+        formula,
+        tape=Tape(tuple(instructions), tape.outputs, tape.quantities, tape.literals + 1),
+        literals=(*formula.literals, literal),
     )

@@ -95,21 +95,31 @@ def bicubic(c: Sequence[float], u: float, v: float) -> float:
 
 
 def _steps(interpolant: Interpolant) -> Function:
-    axes, pieces = interpolant.axes, interpolant.pieces
-    tolerances = [slack(axis) for axis in axes]
+    pieces = interpolant.pieces
 
     def value(*arguments: float) -> float:
-        place = 0
-        for axis, a, tolerance in zip(axes, arguments, tolerances):
-            if a != a:
-                return a
-            i = bisect_left(axis, a - tolerance)
-            if i == len(axis):
-                raise ValueError("above the range")
-            place = place * len(axis) + i
-        return pieces[place][0]
+        if any(a != a for a in arguments):
+            return math.nan
+        return pieces[step_at(interpolant, arguments)][0]
 
     return value
+
+
+def step_at(interpolant: Interpolant, arguments: Sequence[float]) -> int:
+    """Number of the piece that a stepped interpolant takes its value from.
+
+    Raises
+    ------
+    ValueError
+        An argument is above the range, or nan.
+    """
+    place = 0
+    for axis, a in zip(interpolant.axes, arguments):
+        i = bisect_left(axis, a - slack(axis)) if a == a else len(axis)
+        if i == len(axis):
+            raise ValueError("above the range")
+        place = place * len(axis) + i
+    return place
 
 
 def _inverse(interpolant: Interpolant) -> Function:

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Collection, Iterator, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
@@ -112,7 +111,9 @@ def _range_note(interpolant: Interpolant, position: int, value: float) -> str:
     name = heading.arguments[position]
     text = f"`{heading.name}` has values for {name} in {range_text(interpolant, position)}"
     low, high = interpolant.ranges[position]
-    span = high - (low if math.isfinite(low) else interpolant.axes[position][0])
+    if interpolant.is_stepped:
+        return f"{text}; it goes by steps, and it may be that none of its values leads back to itself"
+    span = high - low
     for end in (low, high):
         if abs(value - end) <= _AT_THE_END * span:
             unit = heading.units[position]

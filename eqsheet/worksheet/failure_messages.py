@@ -39,7 +39,7 @@ _HEADLINES = {
     Status.DOMAIN: "no point found at which every equation has a value",
     Status.POLE: "no solution found: the two sides only jump past each other",
     Status.NO_SIGN_CHANGE: "no solution found: the two sides do not meet",
-    Status.NO_CONSISTENT_BRANCH: "no solution found: each branch of the conditions leads into another one",
+    Status.NO_CONSISTENT_BRANCH: "no solution found: each branch of the conditions, or step, leads into another one",
     Status.BUDGET: "no solution found within the iterations and time allowed",
     Status.INTERRUPTED: "interrupted before a solution was found",
 }
@@ -94,7 +94,7 @@ def failure_diagnostic(
         notes += writer.not_finite(0) or writer.terms([0])
         notes += writer.range_tried()
     notes += writer.jump()
-    notes += curve_notes(result.formulas, writer.point(), run.unknowns)
+    notes += curve_notes(writer.formulas, writer.point(), run.unknowns)
     help = _CURES.get(
         status, "give a start value near the solution (`near`), or check sign and size of the terms"
     )
@@ -119,6 +119,8 @@ class _Writer:
         self.run = run
         self.result = result
         self.guesses = guesses
+        # As they were before any branch or step was held.
+        self.formulas = [prepared.formulas[e] for e in run.equations]
         self.own = dict(zip(run.unknowns, result.values))
         self.known = known
 
@@ -156,17 +158,17 @@ class _Writer:
 
     def point(self) -> Mapping[int, float]:
         """SI values of all quantities of the block's equations at the best point."""
-        quantities = {q for formula in self.result.formulas for q in formula.quantities}
+        quantities = {q for formula in self.formulas for q in formula.quantities}
         return {q: self.own.get(q, self.known.values[q]) for q in quantities}
 
     def by_curve(self, names: Sequence[str]) -> Diagnostic | None:
         """A curve makes a solution impossible: read outside its range by what is known, or by steps backwards."""
         known = {q: math.nan if q in self.own else value for q, value in self.point().items()}
-        for formula in self.result.formulas:
+        for formula in self.formulas:
             outside = outside_curve_diagnostic(self.system, formula, known, names)
             if outside is not None:
                 return outside
-        return stepped_diagnostic(self.system, self.result.formulas, self.own)
+        return stepped_diagnostic(self.system, self.formulas, self.own)
 
     def at_best_point(self) -> list[str]:
         """Values of the unknowns at the best point."""

@@ -34,8 +34,6 @@ from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.starting_values import Start, starting_values
 from eqsheet.worksheet.torn import TornBlock, torn_block
 
-# For a first try that is given up early.
-_SHORT = Budget(iterations=30, seconds=1.0)
 # Rounding of a closed form may put its value this far past a bound, relative to the bound.
 PAST_BOUND = 1e-12
 
@@ -111,7 +109,7 @@ def solve_equations(
     own = set(unknowns)
     values = known.values
     formulas = tuple(settle(f, lambda q: None if q in own else values[q]) for f in formulas)
-    found = switches(formulas)
+    found = switches(formulas, own)
     if not found:
         if len(unknowns) == 1:
             closed = _closed_form(formulas[0], unknowns[0], known, guesses)
@@ -224,22 +222,24 @@ def _solve_plain(
     own = set(unknowns)
     if all(is_linear_in(f.tape, {s for s, q in enumerate(f.quantities) if q in own}) for f in formulas):
         return linear_step(problem, problem.start, Trail("linear", problem.start, budget)), problem
-    torn = torn_block(formulas, unknowns, known.values, start) if start.blind else None
-    if torn is not None:
-        begin = _consistent(torn, start)
-        problem = replace(problem, start=np.array(begin.values), magnitude=np.array(begin.magnitude))
-        if len(torn.tears) == 1:
-            # One unknown in plain floats costs little, and a start that is no more than typical needs the help.
-            outcome = _solve_torn(torn, problem, None, _SHORT)
-            if outcome is not None:
-                return outcome, problem
-    outcome = solve_block(problem, budget)
-    if outcome.solved or outcome.status is Status.INTERRUPTED:
-        return outcome, problem
-    torn = torn or torn_block(formulas, unknowns, known.values, start)
+    if start.blind:
+        problem = _less_blind(formulas, unknowns, known, start, problem)
+
+    def through_tears(block: Problem, at: Vector, trail: Trail) -> Outcome:
+        return _through_tears(torn_block(formulas, unknowns, known.values, start), block, trail)
+
+    return solve_block(problem, budget, (("torn", through_tears),)), problem
+
+
+def _less_blind(
+    formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start, problem: Problem
+) -> Problem:
+    """The problem with a better start for the unknowns that nothing has placed."""
+    torn = torn_block(formulas, unknowns, known.values, start)
     if torn is None:
-        return outcome, problem
-    return _solve_torn(torn, problem, outcome, budget) or outcome, problem
+        return problem
+    begin = _consistent(torn, start)
+    return replace(problem, start=np.array(begin.values), magnitude=np.array(begin.magnitude))
 
 
 def _problem(formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start) -> Problem:
@@ -269,32 +269,23 @@ def _consistent(torn: TornBlock, start: Start) -> Start:
     return Start(values, start.lower, start.upper, magnitude, start.assumed, start.blind)
 
 
-def _solve_torn(torn: TornBlock, problem: Problem, failed: Outcome | None, budget: Budget) -> Outcome | None:
-    """The block solved through its torn unknowns and then untorn from there, None where that fails.
-
-    Parameters
-    ----------
-    failed : Outcome or None
-        What was tried before, for the record.
-    """
-    outcome = solve_block(torn.problem(), budget)
+def _through_tears(torn: TornBlock | None, problem: Problem, trail: Trail) -> Outcome:
+    """The block solved through its torn unknowns and then untorn from there; STALLED where that fails."""
+    if torn is None:
+        return trail.close(Status.STALLED)
+    outcome = solve_block(torn.problem(), trail.budget)
     if outcome.status is Status.INTERRUPTED:
-        return outcome if failed is None else replace(failed, status=Status.INTERRUPTED)
+        raise KeyboardInterrupt
     values, _ = torn.expand(np.asarray(outcome.x).tolist())
     if not all(map(math.isfinite, values)):
-        return None
+        return trail.close(Status.STALLED)
     point = np.array(values)
     magnitude = np.where(point != 0.0, np.abs(point), problem.magnitude)
-    polished = solve_block(replace(problem, start=point, magnitude=magnitude), budget)
+    polished = solve_block(replace(problem, start=point, magnitude=magnitude), trail.budget)
     if not polished.solved:
-        return None
-    before = () if failed is None else (*failed.attempts, replace(failed, attempts=()))
-    attempts = (*before, outcome)
+        return trail.close(Status.STALLED)
     return replace(
-        polished,
-        method=f"torn {outcome.method}",
-        iterations=polished.iterations + sum(a.iterations for a in attempts),
-        attempts=attempts,
+        polished, method=f"torn {outcome.method}", iterations=outcome.iterations + polished.iterations
     )
 
 
@@ -314,7 +305,7 @@ def _by_regimes(
     budget: Budget,
 ) -> BlockResult:
     """Hold the branches, solve, check, switch."""
-    found = switches(formulas)
+    found = switches(formulas, set(unknowns))
     deadline = time.perf_counter() + budget.seconds
     position = {q: i for i, q in enumerate(unknowns)}
 
@@ -338,8 +329,9 @@ def _by_regimes(
         left = Budget(budget.iterations, max(deadline - time.perf_counter(), 0.0))
         return _solve_plain(held, unknowns, known, begin, left)[0]
 
-    first = choose(np.array(start.values))
-    held: Held = solve_regimes(first, (2,) * len(found), solve_held, choose, np.array(start.magnitude))
+    counts = tuple(switch.count for switch in found)
+    first = tuple(map(min, choose(np.array(start.values)), (count - 1 for count in counts)))
+    held: Held = solve_regimes(first, counts, solve_held, choose, np.array(start.magnitude))
     taken = hold(formulas, found, held.branches)
     problem = None
     if len(unknowns) > 1:

@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+import math
+
 from eqsheet.diagnostics.source import Source
 from eqsheet.model.branches import chosen_branches, hold, literal_values, quantities_under, settle, switches
 from eqsheet.model.build import build_system
 from eqsheet.model.evaluate import evaluate
+from eqsheet.model.interpolant import Heading, stepped_curve
 from eqsheet.model.system import EquationSystem
-from eqsheet.model.tape import Formula
+from eqsheet.model.tape import Formula, TapeBuilder
 from eqsheet.syntax.parse import parse_document
 
 TWO = "y = if x < a then (if x < b then 1 else 2) else 3*z"
@@ -84,3 +87,23 @@ def test_quantities_under_an_instruction() -> None:
     sine = next(i for i, entry in enumerate(formula.tape.instructions) if entry[0] == "sin")
     names = {system.names[formula.quantities[k]] for k in quantities_under(formula.tape, sine)}
     assert names == {"a", "b"}
+
+
+def test_each_step_of_a_curve_is_a_branch() -> None:
+    steps = stepped_curve(Heading("size", ("x",), (None,), None), [1.0, 2.0, 5.0], [10.0, 20.0, 50.0])
+    b = TapeBuilder()
+    y, x = b.quantity(7, (0, 1)), b.quantity(8, (9, 10))
+    formula = b.formula((y, b.apply("curve", x, steps, place=(4, 11))), 0)
+    assert switches([formula], {7}) == ()
+    found = switches([formula], {8})
+    assert [switch.count for switch in found] == [3]
+    for value, branch in ((0.5, 0), (1.0, 0), (1.5, 1), (5.0, 2), (6.0, 3)):
+        assert chosen_branches([formula], found, lambda q, v=value: v) == (branch,)
+    for branch, value in enumerate([10.0, 20.0, 50.0]):
+        (held,) = hold([formula], found, [branch])
+        assert switches([held], {8}) == ()
+        assert held.quantities == (7,)
+        assert [literal.value for literal in held.literals] == [value]
+        assert (held.literals[0].start, held.literals[0].end) == (4, 11)
+    (outside,) = hold([formula], found, [3])
+    assert math.isnan(outside.literals[0].value)

@@ -292,3 +292,21 @@ def test_in_templates_and_in_simultaneous_blocks_of_surfaces() -> None:
         assert h == pytest.approx(m * float(PUMP(q)), rel=1e-10)
         assert h == pytest.approx(12 + k * q * q * (1 + eta), rel=1e-10)
         assert n == pytest.approx(2000 + 10 * h, rel=1e-10)
+
+
+def test_a_loop_through_steps_without_a_solution_is_said_to_be_one() -> None:
+    # A bore of 21.6 mm asks for 27.2 mm, and that for 21.6 mm again.
+    found = only(solve(BORE + "D = bore(d)\nd = 46 mm - D\nD within 10 mm .. 60 mm"), "no-solution")
+    assert any("`bore` has values for d in .. 32 mm; it goes by steps" in note for note in found.notes)
+
+
+@pytest.mark.parametrize("start", [21.6, 27.2, 35.9])
+def test_the_size_that_agrees_with_itself_is_found_from_any_other(start: float) -> None:
+    # 21.6 mm asks for 35.9 mm and that for 21.6 mm; 27.2 mm asks for itself.
+    solution = solve(BORE + f"D = bore(d)\nd = 43.5 mm - 0.7*D\nD near {start} mm")
+    assert solution.status == "solved"
+    assert values(solution) == pytest.approx({"D": 0.0272, "d": 0.0435 - 0.7 * 0.0272}, rel=1e-12)
+
+
+def test_a_size_in_a_loop_outside_the_range_is_no_solution() -> None:
+    assert errors(solve(BORE + "D = bore(d)\nd = 33 mm + 0.1*D")) == ["no-solution"]
