@@ -14,7 +14,9 @@ from eqsheet.model.bind import (
     resolved_key,
 )
 from eqsheet.model.curves import collect_curves
+from eqsheet.model.equation_group import LARGE_FAMILY
 from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
+from eqsheet.model.family_names import FamilyNames
 from eqsheet.model.findings import Finding
 from eqsheet.model.gather import (
     Gathered,
@@ -26,6 +28,7 @@ from eqsheet.model.gather import (
     put_column,
     put_statement,
 )
+from eqsheet.model.grouping import Grouping
 from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, whole_number
 from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
 from eqsheet.model.lower_statements import (
@@ -50,6 +53,7 @@ def build_system(
     statements: Sequence[syntax.Statement],
     cache: LoweredCache | None = None,
     freed: Collection[str] = (),
+    large_family: int = LARGE_FAMILY,
 ) -> tuple[EquationSystem, tuple[Diagnostic, ...]]:
     """The equation system of the statements in use (those that are not off).
 
@@ -61,6 +65,8 @@ def build_system(
         Lowered statements of an earlier state of the worksheet; updated.
     freed : collection of str
         Full names of members whose knowns do not count (``D[P12]``).
+    large_family : int
+        Statements with at least so many members are kept as arrays, where they are simple enough.
     """
     used = [s for s in statements if not s.off]
     diagnostics: list[Diagnostic] = []
@@ -86,7 +92,7 @@ def build_system(
         if s.off and isinstance(s.node, syntax.Equation)
         if (one := cache.lowered(s, IndexScope(), False)) is not None
     ]
-    system = _assemble(work, tables, idle, numbered, cache.names, context, freed, diagnostics)
+    system = _assemble(work, tables, idle, numbered, cache.names, context, freed, diagnostics, large_family)
     if slips:
         quantities = {name.partition("[")[0] for name in system.names}
         diagnostics.extend(finding.at(statement, quantities) for finding, statement in slips)
@@ -219,6 +225,7 @@ def _assemble(
     context: Context,
     freed: Collection[str],
     diagnostics: list[Diagnostic],
+    large_family: int,
 ) -> EquationSystem:
     """Give the quantities their final numbers and bind all items to them."""
     indexing = context.indexing
@@ -227,9 +234,12 @@ def _assemble(
     binder = Binder(
         numbering, indexing, provisional, {i: n for i, (n, _) in numbered.items()}, broken, diagnostics
     )
-    names = numbering.names(indexing)
+    grouping = None
+    if any(one.domain.size >= large_family for one in work):
+        grouping = Grouping(numbering, large_family, not freed and all(s.source.numbered for s in statements))
+    names = numbering.names(indexing) if grouping is None else FamilyNames(numbering, indexing)
     _refuse_indices_like_quantities(work, numbering, diagnostics)
-    gathered = Gathered(names, statements)
+    gathered = Gathered(names, statements, grouping)
     for column in tables.columns:
         put_column(gathered, column, numbering, binder)
     for one in work:
@@ -237,12 +247,15 @@ def _assemble(
     count_plainly(gathered, indexing, numbering)
     apply_overrides(gathered, freed, diagnostics)
     gathered.equations.sort(key=equation_key(statements))
+    groups = gathered.grouped()
+    guesses = tuple(by_precedence(gathered.guesses, statements, names, diagnostics))
+    first_places = gathered.first_places
     return EquationSystem(
         statements,
         names,
-        tuple(gathered.first_places),
-        tuple(gathered.equations),
-        tuple(by_precedence(gathered.guesses, statements, names, diagnostics)),
+        tuple(first_places) if grouping is None else grouping.by_family(first_places.__getitem__),
+        tuple(gathered.equations) if grouping is None else grouping.all_equations(gathered.equations),
+        guesses if grouping is None else grouping.all_guesses(guesses),
         tuple(gathered.limits),
         gathered.shown,
         gathered.preferred_units(idle, binder),
@@ -250,7 +263,9 @@ def _assemble(
         context.unit_table.ambient,
         any(one.lowered.uses_gauge for one in work),
         tuple(gathered.shows),
-        _families_by_quantity(numbering),
+        _families_by_quantity(numbering) if grouping is None else grouping.by_family(int),
+        *groups,
+        () if grouping is None else guesses,
     )
 
 

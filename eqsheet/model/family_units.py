@@ -3,15 +3,20 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, replace
+from typing import TypeVar
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.model.bind import merged
 from eqsheet.model.check_units import check_units
+from eqsheet.model.equation_group import offsets
+from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
+
+T = TypeVar("T")
 
 _SUBSCRIPTS = re.compile(r"\[[^\]]*\]")
 
@@ -22,16 +27,16 @@ class FamilyUnits:
 
     Attributes
     ----------
-    dimensions : tuple of (Dimension or None)
-    kinds : tuple of str
+    dimensions : sequence of (Dimension or None)
+    kinds : sequence of str
         ``reading``, ``difference`` or ``plain``.
     clashing : frozenset of int
         Equations whose dimensions do not fit.
     diagnostics : tuple of Diagnostic
     """
 
-    dimensions: tuple[Dimension | None, ...]
-    kinds: tuple[str, ...]
+    dimensions: Sequence[Dimension | None]
+    kinds: Sequence[str]
     clashing: frozenset[int]
     diagnostics: tuple[Diagnostic, ...]
 
@@ -43,8 +48,8 @@ def check_units_by_family(system: EquationSystem) -> FamilyUnits:
     physical = 0
     seen: set[object] = set()
     # Families are numbered without gaps: a number that no formula mentions would count as a quantity.
-    compact = {first: i for i, first in enumerate(sorted(set(system.families)))}
-    family_of = tuple([compact[first] for first in system.families])
+    firsts = sorted(set(system.families)) if system.firsts is None else system.firsts.tolist()
+    family_of = _family_numbers(system, firsts)
     for number, formula, is_physical in _everything(system):
         if system.families:
             numbers = tuple([family_of[q] for q in formula.quantities])
@@ -58,27 +63,66 @@ def check_units_by_family(system: EquationSystem) -> FamilyUnits:
         physical += is_physical
     names = system.names
     if system.families:
-        names = tuple([_SUBSCRIPTS.sub("", names[first]) for first in compact])
+        names = tuple([_SUBSCRIPTS.sub("", names[first]) for first in firsts])
     units = check_units(formulas, system.statements, names, range(physical, len(formulas)))
-    dimensions = units.dimensions.dimensions
-    kinds = tuple(["plain" if kind == "unknown" else kind for kind in units.kinds.kinds])
-    if system.families:
+    dimensions: Sequence[Dimension | None] = units.dimensions.dimensions
+    kinds: Sequence[str] = tuple(["plain" if kind == "unknown" else kind for kind in units.kinds.kinds])
+    if system.firsts is not None:
+        dimensions = _for_all_members(dimensions, firsts, len(system.names))
+        kinds = _for_all_members(kinds, firsts, len(system.names))
+    elif system.families:
         dimensions = tuple([dimensions[f] for f in family_of])
         kinds = tuple([kinds[f] for f in family_of])
     clashing = frozenset(stands_for[clash.formula] for clash in units.dimensions.clashes)
     return FamilyUnits(dimensions, kinds, clashing - {-1}, units.diagnostics)
 
 
+def _family_numbers(system: EquationSystem, firsts: Sequence[int]) -> Sequence[int]:
+    """The number of each quantity's family among `firsts`."""
+    if system.firsts is not None:
+        return _for_all_members(range(len(firsts)), firsts, len(system.names))
+    compact = {first: i for i, first in enumerate(firsts)}
+    return tuple([compact[first] for first in system.families])
+
+
+def _for_all_members(of_families: Sequence[T], firsts: Sequence[int], total: int) -> Sequence[T]:
+    """What the families have, as a sequence over quantities."""
+
+    def of_family(i: int) -> Callable[[int], T]:
+        return lambda _: of_families[i]
+
+    ends = [*firsts[1:], total]
+    return LazySequence([(end - first, of_family(i)) for i, (first, end) in enumerate(zip(firsts, ends))])
+
+
 def _everything(system: EquationSystem) -> Iterator[tuple[int, Formula, bool]]:
-    """Equation number (-1 for none), formula, and whether it states physics; those that do come first."""
-    for number, item in enumerate(system.equations):
+    """Equation number (-1 for none), formula, and whether it states physics; those that do come first.
+
+    The first member of a group stands for all of them.
+    """
+    written = system.written
+    for number, item in enumerate(written):
         yield number, item.formula, True
-    for item in system.equations:
+    for number, group in zip(offsets(system.groups, len(written)), system.groups):
+        yield number, group.bound.at(0), True
+    for item in written:
         for validity in item.valid:
             yield -1, validity.formula, True
-    for guess in system.guesses:
-        yield -1, guess.formula, False
+    if not system.guess_groups:
+        for guess in system.guesses:
+            yield -1, guess.formula, False
+    else:
+        for formula in _of_guesses(system):
+            yield -1, formula, False
     for limit in system.limits:
         yield -1, limit.formula, False
     for formula in system.shows:
         yield -1, formula, False
+
+
+def _of_guesses(system: EquationSystem) -> Iterator[Formula]:
+    """The formulas of guesses written out, and one of each group."""
+    for guess in system.written_guesses:
+        yield guess.formula
+    for group in system.guess_groups:
+        yield group.bound.at(0)

@@ -6,6 +6,8 @@ from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from fnmatch import fnmatchcase
 
+import numpy as np
+
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
 from eqsheet.model.bind import (
     Binder,
@@ -15,8 +17,10 @@ from eqsheet.model.bind import (
     instance_name,
     member_formulas,
 )
+from eqsheet.model.equation_group import EquationGroup, GuessGroup
 from eqsheet.model.families import Numbering
-from eqsheet.model.indexing import Domain, Indexing
+from eqsheet.model.grouping import Grouping, PreferredUnits
+from eqsheet.model.indexing import Codes, Domain, Indexing
 from eqsheet.model.lower_statements import (
     GuessMeant,
     LoweredStatement,
@@ -52,8 +56,9 @@ class Work:
 class Gathered:
     """Items bound so far."""
 
-    names: tuple[str, ...]
+    names: Sequence[str]
     statements: tuple[syntax.Statement, ...]
+    grouping: Grouping | None = None
     equations: list[EquationItem] = field(default_factory=list)
     limits: list[LimitItem] = field(default_factory=list)
     guesses: list[GuessItem] = field(default_factory=list)
@@ -69,12 +74,25 @@ class Gathered:
         self._placed = [False] * len(self.names)
 
     def see(self, quantity: int, place: Place) -> None:
-        """Note where a quantity is named, the first time."""
+        """Note where a quantity is named, the first time; with large families, where its family is."""
+        if self.grouping is not None:
+            quantity = self.grouping.family(quantity)
         if not self._placed[quantity]:
             self._placed[quantity] = True
             self.first_places[quantity] = place
 
-    def preferred_units(self, idle: Sequence[LoweredStatement], binder: Binder) -> dict[int, Unit]:
+    def grouped(self) -> tuple[tuple[EquationGroup, ...], tuple[GuessGroup, ...], Codes | None]:
+        """What is kept as arrays; guesses that clash are written out, since each is to be told of."""
+        grouping = self.grouping
+        if grouping is None:
+            return (), (), None
+        if grouping.guesses_twice(self.guesses):
+            self.guesses += [group.item(i) for group in grouping.guesses for i in range(len(group))]
+            self.guesses.sort(key=lambda item: item.place.statement)
+            grouping.guesses.clear()
+        return tuple(grouping.equations), tuple(grouping.guesses), grouping.firsts
+
+    def preferred_units(self, idle: Sequence[LoweredStatement], binder: Binder) -> Mapping[int, Unit]:
         """Unit for each quantity by precedence: `show`, known, known switched off, guess, limit, curve."""
         units: dict[int, Unit] = {q: unit for q, unit in self.shown.items() if unit is not None}
         knowns, guesses, limits, curves = self.hints
@@ -85,6 +103,8 @@ class Gathered:
                 if number is not None:
                     off.setdefault(number, unit)
         groups: tuple[Mapping[int, Unit | None], ...] = (self.shown, knowns, off, guesses, limits, curves)
+        if self.grouping is not None:
+            return PreferredUnits(groups, self.grouping.firsts, len(self.names))
         for group in groups:
             for quantity, found in group.items():
                 if found is not None:
@@ -125,8 +145,10 @@ def put_statement(gathered: Gathered, one: Work, binder: Binder, indexing: Index
 
 def _put_hints(hints: dict[int, Unit], units: Sequence[tuple[int, Unit]], bound: Bound) -> None:
     for provisional, unit in units:
-        for entry in range(bound.domain.size):
-            (quantity,) = bound.numbers((provisional,), entry)
+        column = bound.columns[provisional]
+        if not bound.domain.size:
+            continue
+        for quantity in (column,) if isinstance(column, int) else column.tolist():
             hints.setdefault(quantity, unit)
 
 
@@ -144,6 +166,18 @@ def _put_equations(
     gathered: Gathered, one: Work, item: EquationItem, bound: Bound, indexing: Indexing
 ) -> None:
     place = Place(one.number, item.place.start, item.place.end)
+    for provisional, start, end in one.lowered.named:
+        where = Place(one.number, start, end)
+        column = bound.columns[provisional]
+        for quantity in (column,) if isinstance(column, int) else _to_be_seen(column, gathered.grouping):
+            gathered.see(quantity, where)
+    if gathered.grouping is not None:
+        rest = gathered.grouping.take_equation(
+            item, bound, place, lambda domain, entry: _member(replace(one, domain=domain), entry, indexing)
+        )
+        if rest is None:
+            return
+        bound, one = rest, replace(one, domain=rest.domain)
     valid = [
         list(
             zip(
@@ -173,11 +207,14 @@ def _put_equations(
         gathered.equations.append(
             EquationItem(formula, place, known, value, item.tolerance, conditions, member)
         )
-    for provisional, start, end in one.lowered.named:
-        where = Place(one.number, start, end)
-        column = bound.columns[provisional]
-        for quantity in (column,) if isinstance(column, int) else set(column.tolist()):
-            gathered.see(quantity, where)
+
+
+def _to_be_seen(column: Codes, grouping: Grouping | None) -> Iterable[int]:
+    """The quantities of a column; one for all where they are of one family and places are kept by family."""
+    if grouping is None or not len(column):
+        return set(column.tolist())
+    first, last = int(column.min()), int(column.max())
+    return (first,) if grouping.family(first) == grouping.family(last) else set(column.tolist())
 
 
 def _put_limits(gathered: Gathered, one: Work, item: LimitItem, bound: Bound, indexing: Indexing) -> None:
@@ -218,6 +255,8 @@ def _put_guesses(gathered: Gathered, one: Work, meant: GuessMeant, binder: Binde
             targets = members.tolist()
             exact = False
     bound = binder.bind(lowered.named, one.place, one.domain, meant.target if targets is not None else -1)
+    if gathered.grouping is not None and _keep_guesses(gathered, one, meant, bound, targets, exact):
+        return
     if targets is None:
         for entry, formula in enumerate(member_formulas(meant.formula, bound, one.number)):
             (quantity,) = bound.numbers((meant.target,), entry)
@@ -231,6 +270,29 @@ def _put_guesses(gathered: Gathered, one: Work, meant: GuessMeant, binder: Binde
             gathered.guesses.append(GuessItem(quantity, place, exact, formula, meant.roles))
         for _, unit in lowered.unit_hints:
             gathered.hints[1].setdefault(quantity, unit)
+
+
+def _keep_guesses(
+    gathered: Gathered,
+    one: Work,
+    meant: GuessMeant,
+    bound: Bound,
+    targets: Sequence[int] | None,
+    exact: bool,
+) -> bool:
+    """Keep the guesses of a statement as arrays, with their units; whether that was possible."""
+    grouping = gathered.grouping
+    column = bound.columns[meant.target] if targets is None else np.array(targets, dtype=np.int64)
+    if grouping is None or isinstance(column, int):
+        return False
+    own = Bound(bound.domain, {**bound.columns, meant.target: column})
+    place = Place(one.number, meant.start, meant.end)
+    if not grouping.take_guesses(meant.formula, own, column, place, exact, meant.roles):
+        return False
+    for _, unit in one.lowered.unit_hints:
+        for quantity in column.tolist():
+            gathered.hints[1].setdefault(quantity, unit)
+    return True
 
 
 def _put_show(
@@ -353,7 +415,7 @@ def equation_key(
 def by_precedence(
     guesses: list[GuessItem],
     used: tuple[syntax.Statement, ...],
-    names: tuple[str, ...],
+    names: Sequence[str],
     diagnostics: list[Diagnostic],
 ) -> list[GuessItem]:
     """Guesses by name before those by pattern; two start values by name for one quantity are reported."""

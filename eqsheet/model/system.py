@@ -6,13 +6,18 @@ on the order of the lines.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from eqsheet.model.tape import Formula
 from eqsheet.syntax.nodes import Statement
 from eqsheet.units.registry import UnitTable
 from eqsheet.units.unit import Unit
+
+if TYPE_CHECKING:
+    from eqsheet.model.equation_group import EquationGroup, GuessGroup
+    from eqsheet.model.indexing import Codes
 
 
 @dataclass(frozen=True, slots=True)
@@ -151,13 +156,15 @@ class EquationSystem:
     ----------
     statements : tuple of Statement
         Those in use, in the order of the text; places refer to them by number.
-    names : tuple of str
+    names : sequence of str
         Names of the quantities, sorted; a quantity's number is its index.
-    first_places : tuple of Place
+    first_places : sequence of Place
         Where each quantity is first named in an equation.
-    equations : tuple of EquationItem
-        Knowns and others, ordered by knowns first, then by the names they hold, then by their text.
-    guesses, limits : tuples
+    equations : sequence of EquationItem
+        Knowns and others, ordered by knowns first, then by the names they hold, then by their text. Those of
+        `groups` stand last, group by group.
+    guesses : sequence of GuessItem
+    limits : tuple of LimitItem
     shown : mapping of int to (Unit or None)
         Quantities named by `show`, in that order.
     units : mapping of int to Unit
@@ -169,15 +176,24 @@ class EquationSystem:
         Whether a gauge unit occurs, so that the ambient pressure must be stated.
     shows : tuple of Formula
         ``show ... in`` as formulas that hold the quantity and its unit alike, for the dimensions.
-    families : tuple of int
+    families : sequence of int
         For each quantity the number of the first member of its family; empty where there are no families.
+    groups : tuple of EquationGroup
+        Statements of large families, kept as arrays.
+    guess_groups : tuple of GuessGroup
+        Likewise; their guesses are among `guesses`.
+    guesses_apart : tuple of GuessItem
+        Where there are such groups, the guesses that are in none.
+    firsts : ndarray or None
+        Where there are groups: numbers of the first members of all families and of the plain quantities,
+        ascending. Sequences over quantities and equations are then made item by item when asked for.
     """
 
     statements: tuple[Statement, ...]
-    names: tuple[str, ...]
-    first_places: tuple[Place, ...]
-    equations: tuple[EquationItem, ...]
-    guesses: tuple[GuessItem, ...]
+    names: Sequence[str]
+    first_places: Sequence[Place]
+    equations: Sequence[EquationItem]
+    guesses: Sequence[GuessItem]
     limits: tuple[LimitItem, ...]
     shown: Mapping[int, Unit | None]
     units: Mapping[int, Unit]
@@ -185,11 +201,28 @@ class EquationSystem:
     ambient: float
     uses_gauge: bool
     shows: tuple[Formula, ...] = ()
-    families: tuple[int, ...] = ()
+    families: Sequence[int] = ()
+    groups: tuple[EquationGroup, ...] = ()
+    guess_groups: tuple[GuessGroup, ...] = ()
+    firsts: Codes | None = None
+    guesses_apart: tuple[GuessItem, ...] = ()
+
+    @property
+    def written(self) -> Sequence[EquationItem]:
+        """The equations that stand before those of the groups."""
+        if not self.groups:
+            return self.equations
+        return self.equations[: len(self.equations) - sum(map(len, self.groups))]
+
+    @property
+    def written_guesses(self) -> Sequence[GuessItem]:
+        """The guesses that are in no group, in order."""
+        return self.guesses_apart if self.guess_groups else self.guesses
 
     def number(self, name: str) -> int | None:
         """Number of the quantity of that name, or None."""
         try:
+            # Sequences of names made on demand find a name without a search.
             return self.names.index(name)
         except ValueError:
             return None

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Any
 
 from eqsheet.diagnostics.json import as_data
@@ -57,7 +58,7 @@ def _method(block: BlockReport) -> str:
     return words if block.solved else f"{words}, not solved"
 
 
-def _folded(words: tuple[str, ...]) -> str:
+def _folded(words: Sequence[str]) -> str:
     if len(words) > MOST_NAMED:
         return ", ".join(words[:MOST_NAMED]) + f" and {len(words) - MOST_NAMED} more"
     return ", ".join(words)

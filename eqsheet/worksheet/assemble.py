@@ -28,18 +28,22 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
     """The solution of a worksheet whose blocks have been run; `run` is None where no number may be computed."""
     diagnostics = list(prepared.diagnostics)
     limits: tuple[LimitReport, ...] = ()
-    quantities: dict[str, QuantityValue] = {}
+    quantities: Mapping[str, QuantityValue] = {}
     best: dict[str, QuantityValue] = {}
-    blocks: tuple[BlockReport, ...] = ()
+    blocks: Sequence[BlockReport] = ()
     if run is not None:
         diagnostics += run.diagnostics
         diagnostics += known_bounds(prepared, run)
         diagnostics += judge_validity(prepared, run)
         diagnostics += limits_outside_curves(prepared, run)
         limits = judge_limits(prepared, run)
-        blocks = tuple(_block(prepared, block) for block in run.blocks)
-        own = own_statements(prepared, run)
-        quantities = _quantities(prepared, run, own)
+        own: Mapping[int, int]
+        if prepared.system.groups:
+            blocks, own, quantities = _of_families(prepared, run)
+        else:
+            blocks = tuple(_block(prepared, block) for block in run.blocks)
+            own = own_statements(prepared, run)
+            quantities = _quantities(prepared, run, own)
         best = {
             prepared.system.names[q]: _value(prepared, run, own, q, si, math.inf)
             for q, si in run.best.items()
@@ -171,6 +175,12 @@ def _block(prepared: Prepared, block: BlockRun) -> BlockReport:
     statements = tuple(system.statements[system.equations[e].place.statement] for e in block.equations)
     unknowns = tuple(system.names[q] for q in block.unknowns)
     depends = tuple(system.names[q] for q in sorted(others))
+    return _report(block, unknowns, statements, depends)
+
+
+def _report(
+    block: BlockRun, unknowns: Sequence[str], statements: Sequence[Statement], depends: Sequence[str]
+) -> BlockReport:
     result = block.result
     if result is None:
         return BlockReport(block.number, unknowns, statements, depends, block.after)
@@ -187,6 +197,28 @@ def _block(prepared: Prepared, block: BlockRun) -> BlockReport:
         result.solved,
         result.outcome,
     )
+
+
+def _of_families(
+    prepared: Prepared, run: Run
+) -> tuple[Sequence[BlockReport], Mapping[int, int], Mapping[str, QuantityValue]]:
+    """Accounts of blocks, own statements and quantities, made when asked for."""
+    from eqsheet.worksheet.group_equations import GroupedEquations
+    from eqsheet.worksheet.lazy_solution import (
+        LazyQuantities,
+        lazy_reports,
+        order_of_showing,
+        own_statement_numbers,
+    )
+
+    equations = GroupedEquations(prepared.system)
+    own = own_statement_numbers(equations, prepared, run)
+    quantities = LazyQuantities(
+        prepared.system,
+        order_of_showing(prepared, run),
+        lambda q: _value(prepared, run, own, q, run.values[q], run.errors[q]),
+    )
+    return lazy_reports(equations, prepared, run.blocks, _report), own, quantities
 
 
 def _ambient_note(system: EquationSystem) -> Diagnostic:

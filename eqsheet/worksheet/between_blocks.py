@@ -47,19 +47,16 @@ def run_between_blocks(prepared: Prepared, budget: Budget, memory: BlockMemory |
     hopeless: set[int] = set()
     notes: list[Diagnostic] = []
     while left > 0:
-        failed = next((b for b in run.blocks if _failed(b) and b.number not in hopeless), None)
-        if failed is None:
+        number = next((n for n in run.unsolved if n not in hopeless), None)
+        if number is None:
             break
+        failed = run.blocks[number - 1]
         better, left = _with_other_solution(prepared, run, failed, budget, memory, left, notes)
         if better is None:
             hopeless.add(failed.number)
         else:
             run = better
     return replace(run, diagnostics=(*run.diagnostics, *notes)) if notes else run
-
-
-def _failed(block: BlockRun) -> bool:
-    return block.result is not None and not block.result.solved
 
 
 def _with_other_solution(
@@ -72,7 +69,7 @@ def _with_other_solution(
     notes: list[Diagnostic],
 ) -> tuple[Run | None, int]:
     """A run in which a failed block is solved, None if no other solution tried gives one; and the tries left."""
-    count = sum(map(_failed, run.blocks))
+    count = len(run.unsolved)
     for block in _before(run, failed):
         kept = {b.number: b.result for b in run.blocks if b.number < block.number and b.result is not None}
         for other in _others(prepared, run, block):
@@ -81,7 +78,7 @@ def _with_other_solution(
             left -= 1
             again = run_blocks(prepared, budget, memory, {**kept, block.number: other})
             now = again.blocks[failed.number - 1]
-            if now.result is not None and now.result.solved and sum(map(_failed, again.blocks)) < count:
+            if now.result is not None and now.result.solved and len(again.unsolved) < count:
                 notes.append(_note(prepared, again, run, block, failed))
                 return again, left
     return None, left

@@ -51,7 +51,7 @@ def work_out_guesses(
     places: dict[tuple[int, str], Place] = {}
     diagnostics: list[Diagnostic] = []
     for item in system.guesses:
-        values = _values(system, item, known_values, diagnostics)
+        values = values_of_guess(system, item, known_values, diagnostics)
         for role, value in zip(item.roles, values):
             if item.quantity not in by_role[role]:
                 by_role[role][item.quantity] = value
@@ -64,14 +64,15 @@ def work_out_guesses(
     return Guesses(by_role["near"], by_role["lower"], by_role["upper"], places), tuple(diagnostics)
 
 
-def _values(
+def values_of_guess(
     system: EquationSystem,
     item: GuessItem,
     known_values: Mapping[int, float],
     diagnostics: list[Diagnostic],
 ) -> tuple[float, ...]:
+    """Values of one guess by role; none where something is wrong with it, which is added to `diagnostics`."""
     formula = item.formula
-    used = _slots_used(formula.tape)
+    used = slots_used(formula.tape)
     unknown = [
         system.names[q]
         for slot, q in enumerate(formula.quantities)
@@ -107,7 +108,7 @@ def _values(
 
 
 @lru_cache(maxsize=4096)
-def _slots_used(tape: Tape) -> frozenset[int]:
+def slots_used(tape: Tape) -> frozenset[int]:
     """Quantities of the tape that its outputs depend on, by slot."""
     return frozenset().union(*(quantities_under(tape, o) for o in tape.outputs))
 

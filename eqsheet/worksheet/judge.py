@@ -144,7 +144,7 @@ def judge_validity(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
     """A warning for each validity range that the solution leaves, where its formula is in use."""
     system = prepared.system
     diagnostics: list[Diagnostic] = []
-    if not any(item.valid for item in system.equations):
+    if not any(item.valid for item in system.written):
         return ()
     used = _quantities_used(prepared, run)
     produced = {equation: block.unknowns for block in run.blocks for equation in block.equations}

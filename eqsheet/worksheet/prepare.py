@@ -5,6 +5,7 @@ The pass list reads top to bottom in `prepare`. Each pass takes values and gives
 
 from __future__ import annotations
 
+import sys
 import time
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
@@ -13,6 +14,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
 from eqsheet.model.branches import settle
 from eqsheet.model.build import build_system
 from eqsheet.model.dimension_messages import OPEN
+from eqsheet.model.equation_group import LARGE_FAMILY
 from eqsheet.model.family_units import check_units_by_family
 from eqsheet.model.lowered_cache import LoweredCache
 from eqsheet.model.system import EquationSystem
@@ -22,6 +24,12 @@ from eqsheet.structure.verdict import Structure
 from eqsheet.syntax.nodes import Statement
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.echoes import without_echoes
+from eqsheet.worksheet.group_prepare import (
+    all_hold_unknowns,
+    knowns_of_groups,
+    settled_formulas,
+    structure_of_groups,
+)
 from eqsheet.worksheet.structure_messages import structure_diagnostics
 from eqsheet.worksheet.without_unknowns import Checked, check_without_unknowns
 
@@ -35,15 +43,15 @@ class Prepared:
     statements : tuple of Statement
         All of them, those switched off included.
     system : EquationSystem
-    formulas : tuple of Formula
+    formulas : sequence of Formula
         Of each equation of the system, conditions on knowns alone settled.
-    rows : tuple of int
+    rows : sequence of int
         Equation numbers that take part in the structure: all but those without unknowns and repeated knowns.
     structure : Structure
         Its rows are positions in `rows`, its columns are quantity numbers.
-    dimensions : tuple of (Dimension or None)
+    dimensions : sequence of (Dimension or None)
         By quantity.
-    kinds : tuple of str
+    kinds : sequence of str
         ``reading``, ``difference`` or ``plain`` for each quantity.
     known_values : mapping of int to float
     setters : mapping of int to int
@@ -57,11 +65,11 @@ class Prepared:
 
     statements: tuple[Statement, ...]
     system: EquationSystem
-    formulas: tuple[Formula, ...]
-    rows: tuple[int, ...]
+    formulas: Sequence[Formula]
+    rows: Sequence[int]
     structure: Structure
-    dimensions: tuple[Dimension | None, ...]
-    kinds: tuple[str, ...]
+    dimensions: Sequence[Dimension | None]
+    kinds: Sequence[str]
     known_values: Mapping[int, float]
     setters: Mapping[int, int]
     diagnostics: tuple[Diagnostic, ...]
@@ -75,6 +83,7 @@ def prepare(
     earlier: Sequence[Diagnostic],
     cache: LoweredCache | None = None,
     freed: Sequence[str] = (),
+    large_family: int = LARGE_FAMILY,
 ) -> Prepared:
     """Build, infer dimensions, settle, and find the order of solution.
 
@@ -83,26 +92,38 @@ def prepare(
     statements : sequence of Statement
     earlier : sequence of Diagnostic
         What reading the text has found; errors among them keep numbers from being computed.
-    cache, freed
+    cache, freed, large_family
         See `build_system`.
     """
     clock = time.perf_counter
     begin = clock()
-    system, found = build_system(statements, cache, freed)
+    system, found = build_system(statements, cache, freed, large_family)
     diagnostics = [*earlier, *without_echoes(found, earlier)]
     units = check_units_by_family(system)
     diagnostics += _of_a_whole(units.diagnostics, diagnostics)
     known_values: dict[int, float] = {}
     setters: dict[int, int] = {}
-    for number, item in enumerate(system.equations):
+    for number, item in enumerate(system.written):
         if item.known >= 0:
             known_values.setdefault(item.known, item.value)
             setters.setdefault(item.known, number)
-    settled = tuple(settle(item.formula, known_values.get) for item in system.equations)
+    settled: Sequence[Formula]
+    if system.groups:
+        knowns_of_groups(system, known_values, setters)
+        settled = settled_formulas(system, known_values)
+    else:
+        settled = tuple(settle(item.formula, known_values.get) for item in system.equations)
     modelled = clock()
-    checked: Checked = check_without_unknowns(system, settled, known_values, units.clashing)
+    whole = _whole_structure(system, settled, known_values) if system.groups else None
+    if whole is not None:
+        checked, structure = Checked(range(len(system.equations)), ()), whole
+    elif system.groups:
+        # Something is to be said of members, which needs them and their order as written.
+        return prepare(statements, earlier, cache, freed, sys.maxsize)
+    else:
+        checked = check_without_unknowns(system, settled, known_values, units.clashing)
+        structure = analyse([settled[i].quantities for i in checked.rows], len(system.names))
     diagnostics += checked.diagnostics
-    structure = analyse([settled[i].quantities for i in checked.rows], len(system.names))
     valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found, *units.diagnostics))
     if valid_text:
         diagnostics += structure_diagnostics(system, settled, checked.rows, structure)
@@ -123,6 +144,16 @@ def prepare(
         timing,
         checked.contested,
     )
+
+
+def _whole_structure(
+    system: EquationSystem, settled: Sequence[Formula], known_values: Mapping[int, float]
+) -> Structure | None:
+    """The order of solution with large families as arrays, None where that is not all there is to say."""
+    if not all_hold_unknowns(system, settled, known_values):
+        return None
+    structure = structure_of_groups(system, settled)
+    return structure if structure.square else None
 
 
 def _of_a_whole(found: Sequence[Diagnostic], earlier: Sequence[Diagnostic]) -> list[Diagnostic]:

@@ -52,7 +52,7 @@ def unchanged(prepared: Prepared) -> Unchanged:
         prepared.valid_text and not system.families and len(prepared.rows) == len(system.equations),
         tuple(
             number
-            for number, item in enumerate(system.equations)
+            for number, item in enumerate(system.written)
             if any(instruction[0] == "if" for instruction in item.formula.tape.instructions)
         ),
     )
@@ -122,7 +122,7 @@ def _with_known(base: Prepared, text: str, cache: LoweredCache) -> Prepared | No
         value=after.equation.value,
     )
     (_, start, end), *_ = after.named
-    first_places = system.first_places
+    first_places = tuple(system.first_places)
     if first_places[quantity].statement == number:
         first_places = _put(first_places, quantity, Place(number, start, end))
     return replace(
@@ -132,9 +132,9 @@ def _with_known(base: Prepared, text: str, cache: LoweredCache) -> Prepared | No
             system,
             statements=_put(system.statements, number, new),
             first_places=first_places,
-            equations=_put(system.equations, setter, changed),
+            equations=_put(tuple(system.equations), setter, changed),
         ),
-        formulas=_put(base.formulas, setter, changed.formula),
+        formulas=_put(tuple(base.formulas), setter, changed.formula),
         known_values={**base.known_values, quantity: changed.value},
     )
 

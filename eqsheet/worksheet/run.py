@@ -16,6 +16,7 @@ from eqsheet.model.tape import Formula
 from eqsheet.solve.trail import Budget
 from eqsheet.structure.verdict import Conflict
 from eqsheet.worksheet.block_memory import BlockMemory
+from eqsheet.worksheet.block_run import BlockRun as BlockRun
 from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
 from eqsheet.worksheet.follow_from_knowns import follow_from_knowns
@@ -29,48 +30,27 @@ from eqsheet.worksheet.without_unknowns import EQUAL_TO
 from eqsheet.worksheet.written_values import as_typed, written
 
 
-@dataclass(frozen=True, slots=True)
-class BlockRun:
-    """One block of the order of solution, and what became of it.
-
-    Attributes
-    ----------
-    number : int
-        From 1; knowns are not counted.
-    equations : tuple of int
-        Numbers of its equations in the system, in the order of the text.
-    unknowns : tuple of int
-        Quantity numbers, ascending.
-    after : tuple of int
-        Numbers of the blocks it depends on directly.
-    result : BlockResult or None
-        None where it was not reached because a block before it failed.
-    """
-
-    number: int
-    equations: tuple[int, ...]
-    unknowns: tuple[int, ...]
-    after: tuple[int, ...]
-    result: BlockResult | None
-
-
 @dataclass(frozen=True)
 class Run:
-    """Values of all quantities by number (nan where not found) and how they were come by."""
+    """Values of all quantities by number (nan where not found) and how they were come by.
+
+    ``unsolved`` holds the numbers of the blocks that were tried and not solved.
+    """
 
     values: tuple[float, ...]
     errors: tuple[float, ...]
-    blocks: tuple[BlockRun, ...]
+    blocks: Sequence[BlockRun]
     block_of: Mapping[int, int]
     guesses: Guesses
-    formulas: tuple[Formula, ...]
+    formulas: Sequence[Formula]
     diagnostics: tuple[Diagnostic, ...]
     best: Mapping[int, float] = field(default_factory=dict)
+    unsolved: tuple[int, ...] = ()
 
     @property
     def failed(self) -> bool:
         """Whether a block was tried and not solved."""
-        return any(b.result is not None and not b.result.solved for b in self.blocks)
+        return bool(self.unsolved)
 
 
 # Overflow far from the solution is a step to be shortened, not a message to the user.
@@ -90,6 +70,8 @@ def run_blocks(
     given : mapping of int to BlockResult
         Results to take for blocks, by number, instead of solving them.
     """
+    if prepared.system.groups:
+        return _run_groups(prepared, budget, memory, given)
     solve = solve_equations if memory is None else memory.solve
     system = prepared.system
     guesses, found = work_out_guesses(system, follow_from_knowns(prepared), prepared.kinds)
@@ -109,6 +91,7 @@ def run_blocks(
     best: dict[int, float] = {}
     numbers: dict[int, int] = {}
     failed: set[int] = set()
+    unsolved: list[int] = []
     for position, block in enumerate(prepared.structure.blocks):
         equations = [prepared.rows[r] for r in block.rows]
         if len(equations) == 1 and system.equations[equations[0]].known >= 0:
@@ -141,6 +124,7 @@ def run_blocks(
             if result.solved:
                 diagnostics += trust_warnings(system, run)
             else:
+                unsolved.append(number)
                 failure = failure_diagnostic(system, prepared, run, known, guesses)
                 diagnostics.append(failure)
                 if failure.code in OF_CURVES:
@@ -159,6 +143,33 @@ def run_blocks(
         tuple(formulas),
         tuple(diagnostics),
         best,
+        tuple(unsolved),
+    )
+
+
+def _run_groups(
+    prepared: Prepared, budget: Budget, memory: BlockMemory | None, given: Mapping[int, BlockResult]
+) -> Run:
+    """As `run_blocks`, for a worksheet with large families."""
+    from eqsheet.worksheet.group_guesses import ByBlock
+    from eqsheet.worksheet.group_run import GroupRun
+
+    work = GroupRun(prepared, budget, memory, given)
+    work.solve_all()
+    values, formulas = work.values, work.formulas
+    verdicts = _conflicts(prepared, formulas, values, work.errors)
+    diagnostics = [*work.diagnostics, *(diagnostic for _, _, diagnostic in verdicts)]
+    _withhold(prepared, work.runs, values, [c for c, satisfied, _ in verdicts if not satisfied])
+    return Run(
+        tuple(values),
+        tuple(work.errors),
+        work.runs,
+        ByBlock(work.block_of),
+        work.guesses,
+        formulas,
+        tuple(diagnostics),
+        work.best,
+        tuple(work.unsolved),
     )
 
 
@@ -168,7 +179,7 @@ def _uses(formulas: Sequence[Formula], equations: Sequence[int], quantities: Col
 
 
 def _conflicts(
-    prepared: Prepared, formulas: list[Formula], values: list[float], errors: list[float]
+    prepared: Prepared, formulas: Sequence[Formula], values: list[float], errors: list[float]
 ) -> list[tuple[Conflict, bool | None, Diagnostic]]:
     """Whether the statements of each over-determined piece contradict or merely repeat each other."""
     found = []
@@ -182,7 +193,7 @@ def _conflicts(
 def left_out_hold(
     prepared: Prepared,
     conflict: Conflict,
-    formulas: list[Formula],
+    formulas: Sequence[Formula],
     values: list[float],
     errors: list[float],
 ) -> tuple[bool | None, str]:
@@ -229,10 +240,12 @@ def _gap_words(prepared: Prepared, number: int, left: float, right: float, value
 
 
 def _withhold(
-    prepared: Prepared, runs: list[BlockRun], values: list[float], contradicted: list[Conflict]
+    prepared: Prepared, runs: Sequence[BlockRun], values: list[float], contradicted: list[Conflict]
 ) -> None:
     """Values that contradicting statements give, and what depends on them, are not shown; knowns are."""
     columns = {column for conflict in contradicted for column in conflict.columns}
+    if not columns:
+        return
     tainted: set[int] = set()
     for run in runs:
         if _uses(prepared.formulas, run.equations, columns) or tainted.intersection(run.after):

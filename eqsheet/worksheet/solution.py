@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
@@ -109,10 +109,10 @@ class BlockReport:
     ----------
     number : int
         From 1, in order of solution; knowns have no block.
-    unknowns : tuple of str
-    statements : tuple of Statement
+    unknowns : sequence of str
+    statements : sequence of Statement
         Its equations, in the order of the text.
-    depends : tuple of str
+    depends : sequence of str
         Quantities from elsewhere that its equations use, knowns included, sorted.
     after : tuple of int
         Blocks it depends on directly.
@@ -129,9 +129,9 @@ class BlockReport:
     """
 
     number: int
-    unknowns: tuple[str, ...]
-    statements: tuple[Statement, ...]
-    depends: tuple[str, ...]
+    unknowns: Sequence[str]
+    statements: Sequence[Statement]
+    depends: Sequence[str]
     after: tuple[int, ...]
     method: str = ""
     iterations: int = 0
@@ -192,7 +192,7 @@ class Solution(Mapping[str, QuantityValue]):
         ``solved``, ``outside-limits``, ``invalid`` or ``unsolved``.
     quantities : mapping of str to QuantityValue
         What is known or was found; of an ill-posed worksheet its well-determined part.
-    blocks : tuple of BlockReport
+    blocks : sequence of BlockReport
     limits : tuple of LimitReport
     diagnostics : tuple of Diagnostic
     best : mapping of str to QuantityValue
@@ -206,7 +206,7 @@ class Solution(Mapping[str, QuantityValue]):
     worksheet: str
     status: str
     quantities: Mapping[str, QuantityValue]
-    blocks: tuple[BlockReport, ...] = ()
+    blocks: Sequence[BlockReport] = ()
     limits: tuple[LimitReport, ...] = ()
     diagnostics: tuple[Diagnostic, ...] = ()
     best: Mapping[str, QuantityValue] = field(default_factory=dict)

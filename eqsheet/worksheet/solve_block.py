@@ -52,7 +52,7 @@ class BlockResult:
     residual : float
         Scaled, evaluated afresh.
     condition : float
-    formulas : tuple of Formula
+    formulas : sequence of Formula
         The equations with the branches taken.
     outcome : Outcome or None
         The solver's account; None for closed forms.
@@ -73,7 +73,7 @@ class BlockResult:
     iterations: int = 0
     residual: float = 0.0
     condition: float = 1.0
-    formulas: tuple[Formula, ...] = ()
+    formulas: Sequence[Formula] = ()
     outcome: Outcome | None = None
     start: Start | None = None
     gap: tuple[float, ...] = ()
@@ -366,7 +366,7 @@ def _evidence(
 
 
 def judged(
-    formulas: tuple[Formula, ...],
+    formulas: Sequence[Formula],
     unknowns: Sequence[int],
     known: Known,
     start: Start,

@@ -30,9 +30,9 @@ TYPICAL: Mapping[str, float] = {
 # Where the equations make a start zero: small against what is typical, but not zero.
 NEAR_ZERO = 1e-3
 # Golden section: multiples of it modulo 1 spread evenly without repeating, so that starts differ.
-_SPREAD = 0.6180339887498949
+GOLDEN_SECTION = 0.6180339887498949
 # Bounds of a wider ratio are halved in the logarithm.
-_WIDE = 10.0
+WIDE = 10.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -133,8 +133,8 @@ def _between(low: float, high: float, position: int) -> float | None:
     """A point well inside finite bounds, different for each position; None where a side is open."""
     if not (math.isfinite(low) and math.isfinite(high)):
         return None
-    part = 0.35 + 0.3 * ((position + 1) * _SPREAD % 1.0)
-    if low > 0.0 and high / low > _WIDE:
+    part = 0.35 + 0.3 * ((position + 1) * GOLDEN_SECTION % 1.0)
+    if low > 0.0 and high / low > WIDE:
         return float(low * (high / low) ** part)
     return low + part * (high - low)
 
@@ -202,7 +202,7 @@ def _candidates(
 
 def _typical(dimension: Dimension | None, position: int) -> float:
     text = "" if dimension is None else dimension.text
-    return TYPICAL.get(text, 1.0) * (1.0 + 0.2 * ((position + 1) * _SPREAD % 1.0))
+    return TYPICAL.get(text, 1.0) * (1.0 + 0.2 * ((position + 1) * GOLDEN_SECTION % 1.0))
 
 
 def _inside(value: float, room: _Room, quantity: int) -> float:

@@ -25,7 +25,7 @@ class Checked:
     ``contested`` holds the quantities that are set to several values, so that none can be relied on.
     """
 
-    rows: tuple[int, ...]
+    rows: Sequence[int]
     diagnostics: tuple[Diagnostic, ...]
     contested: frozenset[int] = frozenset()
 

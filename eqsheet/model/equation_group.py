@@ -1,0 +1,182 @@
+"""Statements of large families kept as arrays: one formula and the numbers of the quantities of each member.
+
+What needs a member by itself (a message, a branch) has its formula or item written out on demand.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from eqsheet.model.bind import Bound
+from eqsheet.model.evaluate import evaluate_arrays
+from eqsheet.model.indexing import Codes, Domain
+from eqsheet.model.system import EquationItem, GuessItem, Place
+from eqsheet.model.tape import Formula, Literal
+
+Array = NDArray[np.float64]
+
+# From this many members on a statement is kept as arrays; below, written out, it is faster and has all rights.
+LARGE_FAMILY = 2000
+# Operations with branches or ranges, in which members differ.
+_DECIDED = frozenset(("if", "curve", "surface"))
+
+
+@dataclass(frozen=True)
+class BoundFormula:
+    """A formula over the entries of a domain.
+
+    Attributes
+    ----------
+    formula : Formula
+        Quantities are provisional numbers, of which nothing depends here.
+    numbers : ndarray (members, slots)
+        Quantity numbers, all different in a row; columns are contiguous.
+    literals : tuple of (float or ndarray (members,))
+        SI values, arrays where an index stands for the literal.
+    """
+
+    formula: Formula
+    numbers: Codes
+    literals: tuple[float | Array, ...]
+
+    def __len__(self) -> int:
+        return len(self.numbers)
+
+    def at(self, entry: int) -> Formula:
+        """The formula of one entry."""
+        own: list[Literal] = [
+            replace(literal, value=float(value[entry]), index="")
+            if isinstance(value, np.ndarray)
+            else literal
+            for literal, value in zip(self.formula.literals, self.literals)
+        ]
+        numbers = tuple(self.numbers[entry].tolist())
+        return replace(self.formula, quantities=numbers, literals=tuple(own))
+
+    def literals_of(self, entries: Codes) -> tuple[Array, ...]:
+        """Values of the literals at some entries, an array each."""
+        return tuple(
+            value[entries] if isinstance(value, np.ndarray) else np.full(len(entries), value)
+            for value in self.literals
+        )
+
+
+@dataclass(frozen=True)
+class EquationGroup:
+    """The equations of one statement of a large family.
+
+    Attributes
+    ----------
+    bound : BoundFormula
+    place : Place
+    known : ndarray (members,) or None
+        Numbers of the quantities it sets, where it is a known.
+    values : ndarray (members,) or None
+        SI values of the known.
+    member : callable
+        Position of an entry to what tells it from the others, see `EquationItem.member`.
+    """
+
+    bound: BoundFormula
+    place: Place
+    known: Codes | None
+    values: Array | None
+    member: Callable[[int], str]
+
+    def __len__(self) -> int:
+        return len(self.bound)
+
+    def item(self, entry: int) -> EquationItem:
+        """One equation, written out."""
+        formula = self.bound.at(entry)
+        if self.known is None or self.values is None:
+            return EquationItem(formula, self.place, member=self.member(entry))
+        known, value = int(self.known[entry]), float(self.values[entry])
+        return EquationItem(formula, self.place, known, value, member=self.member(entry))
+
+
+@dataclass(frozen=True)
+class GuessGroup:
+    """The guesses of one statement for a large family; see `GuessItem`.
+
+    Attributes
+    ----------
+    targets : ndarray (members,)
+        Numbers of the quantities guessed.
+    """
+
+    targets: Codes
+    bound: BoundFormula
+    place: Place
+    exact: bool
+    roles: tuple[str, ...]
+
+    def __len__(self) -> int:
+        return len(self.targets)
+
+    def item(self, entry: int) -> GuessItem:
+        """One guess, written out."""
+        return GuessItem(int(self.targets[entry]), self.place, self.exact, self.bound.at(entry), self.roles)
+
+
+def bound_formula(formula: Formula, bound: Bound, statement: int, members: int) -> BoundFormula:
+    """The formula with the numbers of all entries; `members` of them even where nothing depends on an index."""
+    columns = [np.broadcast_to(np.asarray(bound.columns[p]), (members,)) for p in formula.quantities]
+    numbers = np.stack(columns) if columns else np.zeros((0, members), dtype=np.int64)
+    literals = tuple(
+        bound.domain.arrays[literal.index].astype(float) if literal.index else literal.value
+        for literal in formula.literals
+    )
+    return BoundFormula(replace(formula, statement=statement), numbers.T, literals)
+
+
+def repeating(bound: BoundFormula) -> NDArray[np.bool_]:
+    """The entries (members,) in which one quantity stands in two slots: their tape is another."""
+    ordered = np.sort(bound.numbers.T, axis=0)
+    return np.asarray((ordered[1:] == ordered[:-1]).any(axis=0))
+
+
+def part_of(bound: Bound, mask: NDArray[np.bool_]) -> Bound:
+    """The entries for which `mask` holds."""
+    return Bound(
+        bound.domain.where(mask),
+        {p: c if isinstance(c, int) else c[mask] for p, c in bound.columns.items()},
+    )
+
+
+def is_simple(item: EquationItem) -> bool:
+    """Whether nothing of an equation has to be decided member by member."""
+    return (
+        item.tolerance is None
+        and not item.valid
+        and not any(instruction[0] in _DECIDED for instruction in item.formula.tape.instructions)
+    )
+
+
+def values_of_knowns(item: EquationItem, bound: BoundFormula) -> Array:
+    """SI values (members,) of a known with this formula; see `known_value`."""
+    members = len(bound)
+    if item.value == item.value:
+        return np.full(members, item.value)
+    left, right = bound.formula.tape.outputs
+    side = right if bound.formula.tape.instructions[left][0] == "quantity" else left
+    values = evaluate_arrays(bound.formula.tape, [np.full(members, np.nan)], bound.literals)
+    return np.array(np.broadcast_to(np.asarray(values[side], dtype=float), (members,)))
+
+
+def offsets(groups: Sequence[EquationGroup], first: int) -> list[int]:
+    """Number of the first equation of each group where the first group's is `first`."""
+    found = []
+    for group in groups:
+        found.append(first)
+        first += len(group)
+    return found
+
+
+def entries_of(domain: Domain) -> Codes:
+    """Positions of all entries of a domain."""
+    return np.arange(domain.size, dtype=np.int64)

@@ -1,0 +1,32 @@
+"""One block of the order of solution, and what became of it."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from eqsheet.worksheet.solve_block import BlockResult
+
+
+@dataclass(frozen=True, slots=True)
+class BlockRun:
+    """One block of the order of solution, and what became of it.
+
+    Attributes
+    ----------
+    number : int
+        From 1; knowns are not counted.
+    equations : tuple of int
+        Numbers of its equations in the system, in the order of the text.
+    unknowns : tuple of int
+        Quantity numbers, ascending.
+    after : tuple of int
+        Numbers of the blocks it depends on directly.
+    result : BlockResult or None
+        None where it was not reached because a block before it failed.
+    """
+
+    number: int
+    equations: tuple[int, ...]
+    unknowns: tuple[int, ...]
+    after: tuple[int, ...]
+    result: BlockResult | None

@@ -1,0 +1,140 @@
+"""Solves a large block whose equations are mostly members of large families, without writing them out."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+
+import numpy as np
+from numpy.typing import NDArray
+
+from eqsheet.model.branches import settle, switches
+from eqsheet.model.lazy_sequence import LazySequence
+from eqsheet.model.linear import is_linear_in
+from eqsheet.model.tape import Formula
+from eqsheet.solve.ladder import solve_block
+from eqsheet.solve.linear import linear_step
+from eqsheet.solve.trail import Budget, Trail
+from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.array_equations import ArrayBlock, Shape
+from eqsheet.worksheet.group_equations import GroupedEquations
+from eqsheet.worksheet.group_guesses import GuessArrays
+from eqsheet.worksheet.guesses import Guesses
+from eqsheet.worksheet.solve_block import BlockResult, Known, judged, solve_equations
+from eqsheet.worksheet.starting_values import GOLDEN_SECTION, WIDE, Start, starting_values
+
+Numbers = NDArray[np.int64]
+Array = NDArray[np.float64]
+
+
+def solve_group_block(
+    equations: GroupedEquations,
+    numbers: Numbers,
+    formulas: Sequence[Formula],
+    unknowns: Sequence[int],
+    known: Known,
+    values: Array,
+    errors: Array,
+    guesses: Guesses,
+    arrays: GuessArrays,
+    dimensions: Sequence[Dimension | None],
+    budget: Budget,
+) -> BlockResult:
+    """The solution of one large block, as `solve_equations` gives it.
+
+    Parameters
+    ----------
+    equations : GroupedEquations
+    numbers : ndarray (n,)
+        Equation numbers, in the order of the text.
+    formulas : sequence of Formula
+        Of all equations of the worksheet.
+    unknowns : sequence of int
+        Quantity numbers, ascending.
+    known : Known
+    values, errors : ndarray (quantities,)
+        The same as in `known`.
+    guesses : Guesses
+    arrays : GuessArrays
+        The same as in `guesses`.
+    """
+    own = set(unknowns)
+    apart = [int(n) for n in numbers[numbers < equations.written]]
+    written = [settle(formulas[n], lambda q: None if q in own else known.values[q]) for n in apart]
+    everything = _with(formulas, numbers, dict(zip(apart, written)))
+    if switches(written):
+        return solve_equations(everything, unknowns, known, guesses, dimensions, budget)
+    shapes = equations.shapes(numbers, written)
+    columns = np.array(unknowns, dtype=np.int64)
+    start = _start(shapes, columns, arrays)
+    if start is None:
+        start = starting_values(unknowns, everything, known.values, guesses, dimensions)
+    problem = ArrayBlock(shapes, columns, values, errors).problem(start)
+    if _linear(shapes, columns, len(values)):
+        outcome = linear_step(problem, problem.start, Trail("linear", problem.start, budget))
+    else:
+        outcome = solve_block(problem, budget)
+    return judged(everything, unknowns, known, start, outcome, problem)
+
+
+def _with(formulas: Sequence[Formula], numbers: Numbers, settled: dict[int, Formula]) -> Sequence[Formula]:
+    """The formulas of some equations, on demand."""
+
+    def formula(position: int) -> Formula:
+        number = int(numbers[position])
+        return settled[number] if number in settled else formulas[number]
+
+    return LazySequence([(len(numbers), formula)])
+
+
+def _start(shapes: Sequence[Shape], unknowns: Numbers, arrays: GuessArrays) -> Start | None:
+    """The start, where all unknowns have a guess or bounds on both sides and no curve has a say in it; else None."""
+    if any(i[0] in ("curve", "surface") for shape in shapes for i in shape.tape.instructions):
+        return None
+    near = arrays.near[unknowns]
+    low, high = arrays.lower[unknowns], arrays.upper[unknowns]
+    assumed = np.flatnonzero(np.isnan(near))
+    if len(assumed):
+        near = np.where(np.isnan(near), _between(low, high), near)
+        if not np.isfinite(near).all():
+            return None
+    low, high = np.where(np.isnan(low), -math.inf, low), np.where(np.isnan(high), math.inf, high)
+    magnitude = np.abs(near)
+    if not magnitude.all():
+        return None
+    return Start(
+        tuple(near.tolist()),
+        tuple(low.tolist()),
+        tuple(high.tolist()),
+        tuple(magnitude.tolist()),
+        tuple(assumed.tolist()),
+    )
+
+
+def _between(low: Array, high: Array) -> Array:
+    """Points inside finite bounds (n,), as `starting_values` takes them; nan where a side is open."""
+    part = 0.35 + 0.3 * ((np.arange(len(low)) + 1.0) * GOLDEN_SECTION % 1.0)
+    with np.errstate(all="ignore"):
+        ratio = high / low
+        wide = (low > 0.0) & (ratio > WIDE)
+        return np.where(wide, low * ratio**part, low + part * (high - low))
+
+
+def _linear(shapes: Sequence[Shape], unknowns: Numbers, total: int) -> bool:
+    """Whether all equations are linear in the unknowns they hold."""
+    own = np.zeros(total, dtype=bool)
+    own[unknowns] = True
+    for shape in shapes:
+        held = own[shape.quantities]
+        # Members may differ in which of their slots hold unknowns; there are few such patterns.
+        patterns = np.unique(np.packbits(held, axis=1), axis=0) if held.shape[1] > 8 else None
+        if patterns is None:
+            weights = 1 << np.arange(held.shape[1])
+            codes = np.unique(held @ weights)
+            sets = [{k for k in range(held.shape[1]) if code >> k & 1} for code in codes.tolist()]
+        else:
+            bits = np.unpackbits(patterns, axis=1)[:, : held.shape[1]]
+            sets = [set(np.flatnonzero(row).tolist()) for row in bits]
+        if not all(is_linear_in(shape.tape, one) for one in sets):
+            return False
+    return True

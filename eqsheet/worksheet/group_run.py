@@ -1,0 +1,294 @@
+"""Runs the blocks of a worksheet with large families: large blocks and chains as arrays, others one by one."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Mapping, Sequence
+
+import numpy as np
+from numpy.typing import NDArray
+
+from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.model.lazy_sequence import LazySequence
+from eqsheet.model.tape import Formula
+from eqsheet.solve.trail import Budget
+from eqsheet.structure.verdict import Block
+from eqsheet.worksheet.array_equations import LARGE_BLOCK
+from eqsheet.worksheet.block_memory import BlockMemory
+from eqsheet.worksheet.block_run import BlockRun
+from eqsheet.worksheet.curve_messages import OF_CURVES
+from eqsheet.worksheet.failure_messages import FEW_DIGITS, failure_diagnostic, start_note, trust_warnings
+from eqsheet.worksheet.group_block import solve_group_block
+from eqsheet.worksheet.group_chain import (
+    LEAST_CHAIN,
+    ChainPart,
+    ChainResult,
+    ClosedForm,
+    only_closed_form,
+    solve_chain,
+)
+from eqsheet.worksheet.group_equations import GroupedEquations
+from eqsheet.worksheet.group_guesses import guess_arrays, work_out_group_guesses
+from eqsheet.worksheet.prepare import Prepared
+from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
+from eqsheet.worksheet.written_values import as_typed
+
+Numbers = NDArray[np.int64]
+
+
+class GroupRun:
+    """The state of one run; `solve_all` goes through the blocks.
+
+    Attributes
+    ----------
+    values, errors : list of float
+        By quantity number.
+    runs : sequence of BlockRun
+    block_of : ndarray (quantities,)
+        Number of the block that gives a quantity, 0 for none.
+    """
+
+    def __init__(
+        self,
+        prepared: Prepared,
+        budget: Budget,
+        memory: BlockMemory | None,
+        given: Mapping[int, BlockResult],
+    ) -> None:
+        self.prepared = prepared
+        self._budget = budget
+        self._given = given
+        self._solve = solve_equations if memory is None else memory.solve
+        self._equations = GroupedEquations(prepared.system)
+        self.guesses, found = work_out_group_guesses(prepared)
+        self.diagnostics: list[Diagnostic] = list(found)
+        total = len(prepared.system.names)
+        self._guess_arrays = guess_arrays(self.guesses, total)
+        self.values = [math.nan] * total
+        self.errors = [0.0] * total
+        for quantity, value in prepared.known_values.items():
+            if quantity not in prepared.contested:
+                self.values[quantity] = value
+                self.errors[quantity] = as_typed(value)
+        # The same as arrays, for large blocks and chains.
+        self._value_array = np.array(self.values)
+        self._error_array = np.array(self.errors)
+        self._known = Known(self.values, self.errors)
+        self._written = [prepared.formulas[n] for n in range(self._equations.written)]
+        self.block_of = np.zeros(total, dtype=np.int32)
+        self.best: dict[int, float] = {}
+        self._failed: set[int] = set()
+        self.unsolved: list[int] = []
+        self._parts: list[tuple[int, Callable[[int], BlockRun]]] = []
+        self._count = 0
+        self._numbers = self._numbered()
+
+    @property
+    def runs(self) -> Sequence[BlockRun]:
+        """The blocks in order of solution."""
+        return LazySequence(self._parts)
+
+    @property
+    def formulas(self) -> Sequence[Formula]:
+        """The formulas of all equations, with the branches taken."""
+        written = tuple(self._written)
+        groups = [(len(group), group.bound.at) for group in self._equations.groups]
+        return LazySequence([(len(written), written.__getitem__), *groups])
+
+    def _numbered(self) -> Numbers:
+        """Number of the block at each position of the structure, 0 for those of knowns."""
+        rows = self.prepared.rows
+        known = self._equations.known
+        counts = np.array(
+            [len(b.rows) > 1 or not known[rows[b.rows[0]]] for b in self.prepared.structure.blocks],
+            dtype=np.int64,
+        )
+        return np.where(counts, np.cumsum(counts), 0)
+
+    def solve_all(self) -> None:
+        """Solve block after block; what depends on a failed block is left out."""
+        blocks = self.prepared.structure.blocks
+        position = 0
+        while position < len(blocks):
+            end = position
+            while end < len(blocks) and self._form(blocks[end]) is not None:
+                end += 1
+            in_order = end - position >= LEAST_CHAIN and not self._failed and not self._given
+            if in_order and self._chain(position, end):
+                position = end
+                continue
+            for i in range(position, max(end, position + 1)):
+                if self._numbers[i]:
+                    self._one(i, blocks[i])
+            position = max(end, position + 1)
+
+    # --- one block ----------------------------------------------------------------------------------------
+
+    def _one(self, position: int, block: Block) -> None:
+        number = int(self._numbers[position])
+        equations = self._equations.in_text_order([self.prepared.rows[r] for r in block.rows])
+        after = self._after(block)
+        result = None
+        if any(a in self._failed for a in after) or self._contested(equations):
+            self._failed.add(number)
+        else:
+            result = self._given.get(number) or self._result(equations, block)
+            self._keep(number, equations, block, result)
+        for quantity in block.columns:
+            self.block_of[quantity] = number
+        run = BlockRun(number, tuple(equations.tolist()), block.columns, after, result)
+        self._parts.append((1, lambda _: run))
+        if result is None:
+            return
+        system = self.prepared.system
+        if not result.solved:
+            self.unsolved.append(number)
+            failure = failure_diagnostic(system, self.prepared, run, self._known, self.guesses)
+            self.diagnostics.append(failure)
+            if failure.code in OF_CURVES:
+                # No start would help.
+                return
+        elif self._few_digits(np.array(result.values), np.array(result.errors)).any():
+            self.diagnostics += trust_warnings(system, run)
+        self.diagnostics += start_note(system, run)
+
+    def _after(self, block: Block) -> tuple[int, ...]:
+        numbers = self._numbers
+        return tuple([int(numbers[d]) for d in block.depends if numbers[d]])
+
+    def _contested(self, equations: Numbers) -> bool:
+        contested = self.prepared.contested
+        formulas = self.formulas
+        return bool(contested) and any(q in contested for e in equations for q in formulas[int(e)].quantities)
+
+    def _result(self, equations: Numbers, block: Block) -> BlockResult:
+        dimensions = self.prepared.dimensions
+        formulas = self.formulas
+        if len(equations) < LARGE_BLOCK:
+            return self._solve(
+                [formulas[int(e)] for e in equations],
+                block.columns,
+                self._known,
+                self.guesses,
+                dimensions,
+                self._budget,
+            )
+        return solve_group_block(
+            self._equations,
+            equations,
+            formulas,
+            block.columns,
+            self._known,
+            self._value_array,
+            self._error_array,
+            self.guesses,
+            self._guess_arrays,
+            dimensions,
+            self._budget,
+        )
+
+    def _keep(self, number: int, equations: Numbers, block: Block, result: BlockResult) -> None:
+        """Put down what a block gave."""
+        apart = np.flatnonzero(equations < self._equations.written)
+        for i in apart.tolist():
+            if i < len(result.formulas):
+                self._written[int(equations[i])] = result.formulas[i]
+        if not result.solved:
+            self._failed.add(number)
+            self.best.update(zip(block.columns, result.values))
+            return
+        for quantity, value, error in zip(block.columns, result.values, result.errors):
+            self.values[quantity] = value
+            self.errors[quantity] = error
+        columns = np.array(block.columns, dtype=np.int64)
+        self._value_array[columns] = result.values
+        self._error_array[columns] = result.errors
+
+    @staticmethod
+    def _few_digits(values: NDArray[np.float64], errors: NDArray[np.float64]) -> NDArray[np.bool_]:
+        """Which values may have fewer digits than are passed over in silence."""
+        with np.errstate(all="ignore"):
+            return np.asarray(
+                (values != 0.0) & ~(errors <= np.abs(values) * 10.0 ** -(FEW_DIGITS + 0.5)) & (errors != 0.0)
+            )
+
+    # --- chains -------------------------------------------------------------------------------------------
+
+    def _form(self, block: Block) -> tuple[int, int, int, ClosedForm] | None:
+        """Group, entry, slot and closed form of a block that can be part of a chain."""
+        if len(block.rows) != 1:
+            return None
+        group, entry = self._equations.group_of(self.prepared.rows[block.rows[0]])
+        if group < 0 or self._equations.groups[group].known is not None:
+            return None
+        bound = self._equations.groups[group].bound
+        slot = int(np.flatnonzero(bound.numbers[entry] == block.columns[0])[0])
+        closed = only_closed_form(bound.formula.tape, slot)
+        return None if closed is None else (group, entry, slot, closed)
+
+    def _chain(self, begin: int, end: int) -> bool:
+        """Solve the blocks from `begin` to before `end` as a chain; whether that went well."""
+        blocks = self.prepared.structure.blocks[begin:end]
+        targets = np.array([block.columns[0] for block in blocks], dtype=np.int64)
+        result = solve_chain(
+            self._chain_parts(blocks),
+            targets,
+            self.values,
+            self._value_array,
+            self._error_array,
+            self._guess_arrays,
+        )
+        if result is None:
+            for quantity in targets.tolist():
+                self.values[quantity] = math.nan
+            return False
+        self._value_array[targets] = result.values
+        self._error_array[targets] = result.errors
+        for quantity, error in zip(targets.tolist(), result.errors.tolist()):
+            self.errors[quantity] = error
+        self.block_of[targets] = self._numbers[begin:end]
+        make = self._runs_of_chain(begin, result)
+        self._parts.append((end - begin, make))
+        for i in np.flatnonzero(self._few_digits(result.values, result.errors)).tolist():
+            self.diagnostics += trust_warnings(self.prepared.system, make(i))
+        return True
+
+    def _chain_parts(self, blocks: Sequence[Block]) -> list[ChainPart]:
+        """The blocks by group and slot."""
+        gathered: dict[tuple[int, int], tuple[ClosedForm, list[int], list[int]]] = {}
+        for position, block in enumerate(blocks):
+            form = self._form(block)
+            assert form is not None
+            group, entry, slot, closed = form
+            _, positions, entries = gathered.setdefault((group, slot), (closed, [], []))
+            positions.append(position)
+            entries.append(entry)
+        return [
+            ChainPart(
+                self._equations.groups[group],
+                slot,
+                closed,
+                np.array(positions, dtype=np.int64),
+                np.array(entries, dtype=np.int64),
+            )
+            for (group, slot), (closed, positions, entries) in gathered.items()
+        ]
+
+    def _runs_of_chain(self, begin: int, result: ChainResult) -> Callable[[int], BlockRun]:
+        """Makes the account of one block of a chain."""
+        prepared, numbers, after = self.prepared, self._numbers, self._after
+
+        def run(i: int) -> BlockRun:
+            block = prepared.structure.blocks[begin + i]
+            equation = prepared.rows[block.rows[0]]
+            one = BlockResult(
+                True,
+                (float(result.values[i]),),
+                (float(result.errors[i]),),
+                "closed form",
+                residual=float(result.residuals[i]),
+                formulas=(prepared.formulas[equation],),
+            )
+            return BlockRun(int(numbers[begin + i]), (equation,), block.columns, after(block), one)
+
+        return run

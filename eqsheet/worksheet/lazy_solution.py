@@ -1,0 +1,207 @@
+"""The parts of a solution with large families that are made when asked for: quantities, blocks, own lines."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from typing import TypeVar
+
+import numpy as np
+from numpy.typing import NDArray
+
+from eqsheet.model.lazy_sequence import LazySequence
+from eqsheet.model.system import EquationSystem
+from eqsheet.syntax.nodes import Statement
+from eqsheet.worksheet.block_run import BlockRun
+from eqsheet.worksheet.group_equations import GroupedEquations
+from eqsheet.worksheet.prepare import Prepared
+from eqsheet.worksheet.run import Run
+from eqsheet.worksheet.solution import BlockReport, QuantityValue
+
+T = TypeVar("T")
+Numbers = NDArray[np.int64]
+# Longer lists are made item by item.
+MOST_PICKED = 64
+
+
+class LazyQuantities(Mapping[str, QuantityValue]):
+    """Quantities by name, in order of showing.
+
+    Parameters
+    ----------
+    system : EquationSystem
+    order : ndarray (m,)
+        Numbers of the quantities there are, in order of showing.
+    make : callable
+        Quantity number to its value.
+    """
+
+    def __init__(self, system: EquationSystem, order: Numbers, make: Callable[[int], QuantityValue]) -> None:
+        self._system = system
+        self._order = order
+        self._there = np.zeros(len(system.names), dtype=bool)
+        self._there[order] = True
+        self._make = make
+
+    def __getitem__(self, name: str) -> QuantityValue:
+        number = self._system.number(name) if isinstance(name, str) else None
+        if number is None or not self._there[number]:
+            raise KeyError(name)
+        return self._make(number)
+
+    def __iter__(self) -> Iterator[str]:
+        names = self._system.names
+        return (names[q] for q in self._order.tolist())
+
+    def __len__(self) -> int:
+        return len(self._order)
+
+    def __repr__(self) -> str:
+        return f"LazyQuantities({len(self)} quantities)"
+
+
+def order_of_showing(prepared: Prepared, run: Run) -> Numbers:
+    """Numbers of the quantities found: those of `show` first, then families by their first place in the text."""
+    system = prepared.system
+    assert system.firsts is not None
+    firsts = system.firsts.tolist()
+    ends = [*firsts[1:], len(system.names)]
+    places = [system.first_places[first] for first in firsts]
+    spans = sorted((p.statement, p.start, first, end) for p, first, end in zip(places, firsts, ends))
+    ranges = [np.arange(first, end, dtype=np.int64) for _, _, first, end in spans]
+    rest = np.concatenate(ranges) if ranges else np.zeros(0, dtype=np.int64)
+    shown = np.fromiter(system.shown, np.int64, len(system.shown))
+    order = np.concatenate([shown, rest[~np.isin(rest, shown)]]) if len(shown) else rest
+    return np.asarray(order[np.isfinite(np.array(run.values)[order])])
+
+
+def own_statement_numbers(equations: GroupedEquations, prepared: Prepared, run: Run) -> Mapping[int, int]:
+    """As `assemble.own_statements`, as arrays."""
+    system = prepared.system
+    total = len(system.names)
+    block_of = np.zeros(total, dtype=np.int64)
+    for quantity, number in _pairs(run.block_of):
+        block_of[quantity] = number
+    block_of_equation = _blocks_of_equations(prepared, block_of)
+    own = np.full(total, -1, dtype=np.int64)
+    for side in (0, 1):
+        statements, quantities = [], []
+        for number, item in enumerate(system.written):
+            tape = item.formula.tape
+            operation, *rest = tape.instructions[tape.outputs[side]]
+            if operation == "quantity":
+                quantity = item.formula.quantities[rest[0]]
+                if block_of[quantity] and block_of[quantity] == block_of_equation[number]:
+                    statements.append(np.array([item.formula.statement]))
+                    quantities.append(np.array([quantity]))
+        for start, group in zip(equations.starts.tolist(), equations.groups):
+            tape = group.bound.formula.tape
+            operation, *rest = tape.instructions[tape.outputs[side]]
+            if operation == "quantity":
+                numbers = group.bound.numbers[:, rest[0]]
+                there = block_of_equation[start : start + len(group)] == block_of[numbers]
+                there &= block_of[numbers] > 0
+                quantities.append(numbers[there])
+                statements.append(np.full(int(there.sum()), group.place.statement))
+        if quantities:
+            _put_first(own, np.concatenate(quantities), np.concatenate(statements))
+    first = _first_statements(equations, block_of_equation)
+    missing = (own < 0) & (block_of > 0)
+    own[missing] = first[block_of[missing]]
+    return _Known(own)
+
+
+def _pairs(mapping: Mapping[int, int]) -> Iterator[tuple[int, int]]:
+    array = getattr(mapping, "array", None)
+    if array is None:
+        return iter(mapping.items())
+    there = np.flatnonzero(array)
+    return zip(there.tolist(), array[there].tolist())
+
+
+def _blocks_of_equations(prepared: Prepared, block_of: Numbers) -> Numbers:
+    """Number of the block that each equation belongs to, 0 for none."""
+    found = np.zeros(len(prepared.system.equations), dtype=np.int64)
+    for block in prepared.structure.blocks:
+        number = block_of[block.columns[0]]
+        if len(block.rows) == 1:
+            found[prepared.rows[block.rows[0]]] = number
+        else:
+            found[[prepared.rows[r] for r in block.rows]] = number
+    return found
+
+
+def _put_first(own: Numbers, quantities: Numbers, statements: Numbers) -> None:
+    """Give each quantity that has none the first of its statements."""
+    free = own[quantities] < 0
+    quantities, statements = quantities[free], statements[free]
+    latest_first = np.argsort(-statements, kind="stable")
+    own[quantities[latest_first]] = statements[latest_first]
+
+
+def _first_statements(equations: GroupedEquations, block_of_equation: Numbers) -> Numbers:
+    """The first statement of each block, by its number."""
+    count = int(block_of_equation.max()) + 1 if len(block_of_equation) else 1
+    first = np.full(count, np.iinfo(np.int64).max, dtype=np.int64)
+    np.minimum.at(first, block_of_equation, equations.statement)
+    return first
+
+
+class _Known(Mapping[int, int]):
+    """A mapping over an array with -1 where there is nothing."""
+
+    def __init__(self, array: Numbers) -> None:
+        self._array = array
+
+    def __getitem__(self, key: int) -> int:
+        value = int(self._array[key])
+        if value < 0:
+            raise KeyError(key)
+        return value
+
+    def __contains__(self, key: object) -> bool:
+        return isinstance(key, int) and bool(self._array[key] >= 0)
+
+    def __iter__(self) -> Iterator[int]:
+        return iter(np.flatnonzero(self._array >= 0).tolist())
+
+    def __len__(self) -> int:
+        return int((self._array >= 0).sum())
+
+
+def lazy_reports(
+    equations: GroupedEquations,
+    prepared: Prepared,
+    blocks: Sequence[BlockRun],
+    report: Callable[[BlockRun, Sequence[str], Sequence[Statement], Sequence[str]], BlockReport],
+) -> Sequence[BlockReport]:
+    """The accounts of all blocks.
+
+    Parameters
+    ----------
+    report : callable
+        Block, names of its unknowns, its statements, names of what else it takes, to its account.
+    """
+    system = prepared.system
+    names = system.names
+
+    def make(i: int) -> BlockReport:
+        block = blocks[i]
+        numbers = np.array(block.equations, dtype=np.int64)
+        apart = [system.equations[int(n)].formula for n in numbers[numbers < equations.written]]
+        others = equations.outside(numbers, apart, block.unknowns)
+        placed = equations.statement[numbers].tolist()
+        return report(
+            block,
+            _picked(names, block.unknowns),
+            _picked(system.statements, placed),
+            _picked(names, others),
+        )
+
+    return LazySequence([(len(blocks), make)])
+
+
+def _picked(items: Sequence[T], numbers: Sequence[int]) -> Sequence[T]:
+    """The items of some numbers, on demand where they are many."""
+    if len(numbers) < MOST_PICKED:
+        return tuple([items[n] for n in numbers])
+    return LazySequence([(len(numbers), lambda i: items[numbers[i]])])

@@ -1,0 +1,173 @@
+"""Large families solved as arrays give what the same worksheets written out give."""
+
+import math
+
+import pytest
+
+import eqsheet
+from eqsheet.solve.ladder import DEFAULT_BUDGET
+from eqsheet.worksheet.assemble import assemble
+from eqsheet.worksheet.prepare import prepare
+from eqsheet.worksheet.run import run_blocks
+from eqsheet.worksheet.solution import Solution
+
+# More members than any test here has, and fewer.
+WRITTEN_OUT, AS_ARRAYS = 10**6, 3
+
+CONDUCTION = """
+N = 80
+L = 1 m
+h = L/(N+1)
+k = 2 W/(m*K)
+for i in 1..N:
+    k*(T[i+1] - 2*T[i] + T[i-1])/h^2 + q[i] = 1e-8 W/(m^3*K^4)*T[i]^4
+    q[i] = 100 W/m^3 * i
+    T[i] near 300 K within 200 K .. 900 K
+T[0] = 20 degC
+T[N+1] = 350 K
+mean = sum(T[i] for i in 1..N)/N
+require T[40] <= 4000 K
+show T in degC
+"""
+CHAIN = """
+N = 90
+x[0] = 1 m
+for i in 1..N:
+    x[i] = 0.5*x[i-1] + 2 m*sqrt(y[i-1])
+    y[i]^2 = 1 + 0.1*i + x[i]/(10 m)
+    y[i] near 2
+y[0] = 1
+"""
+LOOPS = """
+N = 70
+for i in 1..N:
+    a[i]*b[i] = 6 + i
+    a[i] + b[i] = c[i-1]
+    a[i] near 3
+    b[i] within 0 .. 5
+    c[i] = c[i-1] + 0.01*a[i]
+c[0] = 20
+total = sum(c[i] for i in 1..N)
+"""
+TWO_DIMENSIONAL = """
+N = 12
+h = 1/(N+1)
+for i in 1..N, j in 1..N:
+    u[i-1, j] + u[i+1, j] + u[i, j-1] + u[i, j+1] - 4*u[i, j] + h^2*exp(u[i, j]) = 0
+    u within 0 .. 1
+for i in 1..N:
+    u[i, 0] = 0
+    u[i, N+1] = 0
+    u[0, i] = 0
+    u[N+1, i] = 0
+"""
+RING = """
+N = 75
+for i in 2..N+1:
+    p[i-1] - p[i] = 3 Pa*s^2/m^6*Q[i-1]*abs(Q[i-1])
+for i in 2..N:
+    Q[i] = Q[i-1] - 0.001 m^3/s
+p[1] = 2 bar
+Q[1] = 0.2 m^3/s
+for i in 1..N+1:
+    p[i] within 0 bar ..
+"""
+SQUARES = """
+N = 60
+for i in 1..N:
+    T[i]^2 - 2*T[i]*T[1] + 3 = i
+T within 0 .. 50
+"""
+WITH_CONDITIONS = """
+N = 66
+for i in 1..N:
+    v[i] = 0.01 m/s * i
+    Re[i] = v[i]*(20 mm)/(1e-6 m^2/s)
+    f[i] = if Re[i] < 2300 then 64/Re[i] else 0.3164/Re[i]^0.25
+    dp[i] = f[i]*(1 m)/(20 mm)*(1000 kg/m^3)*v[i]^2/2
+"""
+RESULTS = {
+    "conduction": CONDUCTION,
+    "chain": CHAIN,
+    "loops": LOOPS,
+    "two dimensions": TWO_DIMENSIONAL,
+    "ring": RING,
+    "squares": SQUARES,
+    "conditions": WITH_CONDITIONS,
+}
+WRONG = {
+    "one equation missing": CONDUCTION.replace("T[0] = 20 degC", ""),
+    "one equation too many": CONDUCTION + "T[30] = 400 K\n",
+    "a known twice": CONDUCTION + "q[7] = 3 W/m^3\n",
+    "a false check": CHAIN + "x[0] = 2*y[0]*(1 m)\n",
+    "no solution": CONDUCTION.replace("+ q[i] =", "+ q[i] = 1e9 W/m^3*sqrt(-1 - (T[i]/(1 K))^2) +"),
+    "dimensions": CONDUCTION.replace("- 2*T[i]", "- 2*q[i]"),
+    "guesses twice": CONDUCTION + "T[3] near 310 K\n",
+    "empty bounds": CONDUCTION.replace("within 200 K .. 900 K", "within 900 K .. 200 K"),
+    "closed form outside its bounds": CHAIN + "x[50] within 100 m .. 200 m\n",
+    "no closed form": CHAIN.replace("0.1*i", "0.1*i - 300"),
+}
+
+
+def solved(text: str, large_family: int) -> Solution:
+    """The solution with statements of at least so many members kept as arrays."""
+    sheet = eqsheet.parse(text)
+    prepared = prepare(sheet.document.statements, sheet.diagnostics, large_family=large_family)
+    run = run_blocks(prepared, DEFAULT_BUDGET) if prepared.valid_text else None
+    return assemble("<text>", prepared, run, {})
+
+
+@pytest.mark.parametrize("name", RESULTS)
+def test_values_and_their_accounts_are_the_same(name: str) -> None:
+    written, arrays = solved(RESULTS[name], WRITTEN_OUT), solved(RESULTS[name], AS_ARRAYS)
+    assert written.status == "solved", written.diagnostics
+    assert arrays.status == written.status
+    assert list(arrays) == list(written)
+    for quantity, expected in written.items():
+        found = arrays[quantity]
+        assert math.isclose(found.si, expected.si, rel_tol=1e-12, abs_tol=1e-14), quantity
+        assert (found.unit, found.kind, found.known, found.block) == (
+            expected.unit,
+            expected.kind,
+            expected.known,
+            expected.block,
+        ), quantity
+        assert found.line == expected.line, quantity
+        assert abs(found.digits - expected.digits) <= 1, quantity
+    assert arrays.diagnostics == written.diagnostics
+    assert [limit.holds for limit in arrays.limits] == [limit.holds for limit in written.limits]
+
+
+@pytest.mark.parametrize("name", RESULTS)
+def test_blocks_are_the_same(name: str) -> None:
+    written, arrays = solved(RESULTS[name], WRITTEN_OUT), solved(RESULTS[name], AS_ARRAYS)
+    assert len(arrays.blocks) == len(written.blocks)
+    for found, expected in zip(arrays.blocks, written.blocks):
+        assert (found.number, found.after, found.method, found.solved) == (
+            expected.number,
+            expected.after,
+            expected.method,
+            expected.solved,
+        )
+        assert tuple(found.unknowns) == tuple(expected.unknowns)
+        assert tuple(found.depends) == tuple(expected.depends)
+        assert found.lines == expected.lines
+
+
+@pytest.mark.parametrize("name", WRONG)
+def test_what_is_wrong_is_said_the_same(name: str) -> None:
+    written, arrays = solved(WRONG[name], WRITTEN_OUT), solved(WRONG[name], AS_ARRAYS)
+    assert written.status in ("invalid", "unsolved"), written.diagnostics
+    assert arrays.status == written.status
+    assert [(d.code, d.message, d.span) for d in arrays.diagnostics] == [
+        (d.code, d.message, d.span) for d in written.diagnostics
+    ]
+    assert list(arrays) == list(written)
+
+
+def test_a_name_of_a_member_is_found_as_it_is_written_only() -> None:
+    arrays = solved(TWO_DIMENSIONAL, AS_ARRAYS)
+    assert arrays["u[3, 4]"].name == "u[3, 4]"
+    for name in ("u[3,4]", "u[03, 4]", "u[3]", "u[99, 1]", "u", "w[1]"):
+        with pytest.raises(KeyError):
+            arrays[name]
