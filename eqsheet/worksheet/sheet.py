@@ -25,6 +25,14 @@ from eqsheet.worksheet.prepare_edited import prepare_edited
 from eqsheet.worksheet.solution import Solution
 
 
+@dataclass
+class _Kept:
+    """What is kept between calls: the worksheet prepared without changes, and whether changes were asked for."""
+
+    unchanged: Unchanged | None = None
+    changed: bool = False
+
+
 @dataclass(frozen=True)
 class Worksheet:
     """A worksheet as read. Reading one never runs code.
@@ -44,7 +52,7 @@ class Worksheet:
     cache: LoweredCache = field(default_factory=LoweredCache, repr=False, compare=False)
     memory: BlockMemory | None = field(default=None, repr=False, compare=False)
     earlier: Unchanged | None = field(default=None, repr=False, compare=False)
-    _unchanged: list[Unchanged] = field(default_factory=list, init=False, repr=False, compare=False)
+    _kept: _Kept = field(default_factory=_Kept, init=False, repr=False, compare=False)
 
     @property
     def name(self) -> str:
@@ -54,27 +62,33 @@ class Worksheet:
     @property
     def unchanged(self) -> Unchanged | None:
         """What has been prepared of it, for `read` after an edit; None where nothing has."""
-        return self._unchanged[0] if self._unchanged else None
+        return self._kept.unchanged
 
     def prepare(self, changes: Sequence[str] = (), free: Sequence[str] = ()) -> Prepared:
         """Everything up to the order of solution, before any number is computed; parameters as in `solve`."""
-        if self._unchanged and not free:
+        kept = self._kept
+        if changes and not free:
+            if kept.unchanged is None and kept.changed:
+                # Asked a second time, so more will follow, and all of them go faster from what is unchanged.
+                self.prepare()
+            kept.changed = True
+        if kept.unchanged is not None and not free:
             begin = time.perf_counter()
-            again = prepare_changed(self._unchanged[0], changes, self.cache)
+            again = prepare_changed(kept.unchanged, changes, self.cache)
             if again is not None:
                 return replace(again, timing={"model": time.perf_counter() - begin, "structure": 0.0})
         if not changes and not free and not self.diagnostics and self.earlier is not None:
             begin = time.perf_counter()
             edited = prepare_edited(self.earlier, self.document.statements, self.cache)
             if edited is not None:
-                self._unchanged[:] = [replace(self.earlier, prepared=edited)]
+                kept.unchanged = replace(self.earlier, prepared=edited)
                 return replace(edited, timing={"model": time.perf_counter() - begin, "structure": 0.0})
         statements, freed, found = apply_changes(self.document.statements, changes, free)
         if not statements and not self.diagnostics:
             found = (*found, _empty(self.source))
         prepared = prepare(statements, (*self.diagnostics, *found), self.cache, freed)
         if not changes and not free:
-            self._unchanged[:] = [unchanged(prepared)]
+            kept.unchanged = unchanged(prepared)
         return prepared
 
     def solve(

@@ -103,3 +103,12 @@ def test_is_taken_for_a_plain_number() -> None:
     assert prepare_changed(base, ["D = 60 mm"], sheet.cache) is not None
     assert prepare_changed(base, ["D = 6 cm"], sheet.cache) is None
     assert prepare_changed(base, ["Q = 0.5 L/s"], sheet.cache) is None
+
+
+def test_is_ready_from_the_second_call_with_changes_on() -> None:
+    """A single call, as from the command line, prepares nothing that it does not need."""
+    sheet = eqsheet.parse(PIPE)
+    once = seen(sheet, ["D = 60 mm"])
+    assert sheet.unchanged is None
+    assert seen(sheet, ["D = 60 mm"]) == once
+    assert sheet.unchanged is not None
