@@ -44,18 +44,17 @@ def finish(
         multiple root that row scaling hides from the condition number.
     """
     sizes = jacobian_sizes(x, jacobian)
+    step = -factor.weights * factor.solve(residual)
+    polished, cut = interior.cut(x, step, 0.0)
+    if cut < 0 and residual.any():
+        improved = problem.residual(polished)
+        if scaled_norm(improved, sizes) <= scaled_norm(residual, sizes):
+            x, residual = polished, improved
     scaled = scaled_norm(residual, sizes)
     sure = trail.contracting and scaled <= SURE
     if not sure:
         sizes = equation_sizes(problem, x, jacobian)
         scaled = scaled_norm(residual, sizes)
-    step = -factor.weights * factor.solve(residual)
-    polished, cut = interior.cut(x, step, 0.0)
-    if cut < 0 and scaled > 0.0:
-        improved = problem.residual(polished)
-        again = scaled_norm(improved, sizes)
-        if again <= scaled:
-            x, residual, scaled = polished, improved, again
     believed = scaled <= ACCEPTABLE and (sure or confirmed(problem, x, residual, jacobian))
     if believed and (factor.singular or not at_rest(problem, x, factor, residual)):
         # No small step explains the residuals, so they must be small against terms that are really there.

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import replace
 from time import perf_counter
-from typing import TypeVar
+from typing import TypeAlias, TypeVar
 
 import numpy as np
 
@@ -19,6 +19,7 @@ from eqsheet.solve.trail import Budget, Trail
 
 P = TypeVar("P", Problem, ScalarProblem)
 S = TypeVar("S", Vector, float)
+Rung: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
 
 # How telling a failure is, most telling first; all others come after these.
 _TELLING = {Status.CONTINUUM: 0, Status.MINIMUM: 1, Status.SINGULAR: 1, Status.POLE: 1}
@@ -26,26 +27,35 @@ _TELLING = {Status.CONTINUUM: 0, Status.MINIMUM: 1, Status.SINGULAR: 1, Status.P
 DEFAULT_BUDGET = Budget()
 
 
-def solve_block(problem: Problem, budget: Budget = DEFAULT_BUDGET) -> Outcome:
+def solve_block(
+    problem: Problem, budget: Budget = DEFAULT_BUDGET, own_rungs: Sequence[tuple[str, Rung]] = ()
+) -> Outcome:
     """The solution of a block, or the most telling of the failed attempts with all others in its `attempts`.
 
     Damped Newton first; the rungs of `fallbacks` only where it fails. Never raises for numerical reasons;
     KeyboardInterrupt ends with status INTERRUPTED and the best point so far.
+
+    Parameters
+    ----------
+    own_rungs : sequence of (name, rung)
+        What the caller, who knows more of the equations, can try between Newton and the fallbacks.
     """
     if problem.n == 1:
         return solve_scalar(as_scalar(problem), budget)
     deadline = perf_counter() + budget.seconds
     # Overflow and invalid operations are ordinary events here: they shorten the step.
     with np.errstate(all="ignore"):
-        attempts = [_attempt("newton", newton, problem, problem.start, budget, deadline)]
-        if not _final(attempts[0], deadline):
+        trail = Trail("newton", problem.start, budget, deadline)
+        attempts = [_attempt(newton, problem, problem.start, trail)]
+        # Through a singular Jacobian rounding has chosen the way: a start without symmetry says what counts.
+        if trail.singular or not _final(attempts[0], deadline):
             from eqsheet.solve.fallbacks import fallbacks
             from eqsheet.solve.moved_start import moved_start
 
             start = moved_start(problem)
-            for name, rung in fallbacks(problem):
-                attempts.append(_attempt(name, rung, problem, start, budget, deadline))
-                if _final(attempts[-1], deadline):
+            for name, rung in (*own_rungs, *fallbacks(problem)):
+                attempts.append(_attempt(rung, problem, start, Trail(name, start, budget, deadline)))
+                if _final(attempts[-1], deadline) or attempts[0].solved:
                     break
         found = _concluded(attempts, lambda: _distance_from_zero(problem))
         if _came_to_bound(found):
@@ -58,9 +68,11 @@ def solve_block(problem: Problem, budget: Budget = DEFAULT_BUDGET) -> Outcome:
 def solve_scalar(problem: ScalarProblem, budget: Budget = DEFAULT_BUDGET) -> Outcome:
     """As `solve_block` for one equation in plain floats: safeguarded Newton, then bracketing."""
     deadline = perf_counter() + budget.seconds
-    attempts = [_attempt("newton", scalar_newton, problem, problem.start, budget, deadline)]
+    start = problem.start
+    attempts = [_attempt(scalar_newton, problem, start, Trail("newton", start, budget, deadline))]
     if not _final(attempts[0], deadline):
-        attempts.append(_attempt("bracketing", bracketing, problem, problem.start, budget, deadline))
+        trail = Trail("bracketing", start, budget, deadline)
+        attempts.append(_attempt(bracketing, problem, start, trail))
     found = _concluded(attempts, lambda: lambda outcome: abs(problem.residual(float(outcome.x[0]))))
     if _came_to_bound(found):
         from eqsheet.solve.other_roots import scalar_roots
@@ -87,11 +99,8 @@ def _inner_if_any(on_bound: Outcome, others: Callable[[], tuple[Outcome, ...]]) 
     return on_bound if inner is None else replace(inner, attempts=(*on_bound.attempts, on_bound))
 
 
-def _attempt(
-    name: str, rung: Callable[[P, S, Trail], Outcome], problem: P, start: S, budget: Budget, deadline: float
-) -> Outcome:
+def _attempt(rung: Callable[[P, S, Trail], Outcome], problem: P, start: S, trail: Trail) -> Outcome:
     """The outcome of one rung; an interrupt keeps the point it had reached."""
-    trail = Trail(name, start, budget, deadline)
     try:
         return rung(problem, start, trail)
     except KeyboardInterrupt:
@@ -102,7 +111,7 @@ def _attempt(
 
 
 def _concluded(attempts: list[Outcome], measure: Callable[[], Callable[[Outcome], float]]) -> Outcome:
-    """The outcome that stands for all: the last if solved or interrupted, else that of the best point.
+    """The outcome that stands for all: the last solved one, else that of the best point.
 
     A continuum of roots tells more than any point that is no root, and a minimum more than a point on the
     way.
@@ -110,8 +119,11 @@ def _concluded(attempts: list[Outcome], measure: Callable[[], Callable[[Outcome]
     last = attempts[-1]
     if len(attempts) == 1:
         return last
-    if last.solved or last.status is Status.INTERRUPTED:
+    solved = [attempt for attempt in attempts if attempt.solved]
+    if last.status is Status.INTERRUPTED:
         chosen = last
+    elif solved:
+        chosen = solved[-1]
     else:
         distance = measure()
         chosen = min(attempts, key=lambda a: (_TELLING.get(a.status, 2), _or_infinity(distance(a))))

@@ -21,7 +21,16 @@ from eqsheet.solve.finish import finish, give_up
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
-from eqsheet.solve.termination import AT_REST, MULTIPLE, ROUNDING, SLOW, floored, last_step_due, residual_at
+from eqsheet.solve.termination import (
+    AT_REST,
+    MULTIPLE,
+    ROUNDING,
+    SLOW,
+    floored,
+    last_step_due,
+    residual_at,
+    residual_by_slopes,
+)
 from eqsheet.solve.trail import Trail
 
 # Smallest damping tried: below it a step changes no more than the rounding of the residuals does.
@@ -31,6 +40,8 @@ WEIGHT_FLOOR = 0.1
 # Contraction of the corrections by a full step that needs no further look at the damping.
 SURE_CONTRACTION = 0.25
 # Ratio of two steps near the root from which on it is multiple: 1/2 at a double root, nearly 0 at a single
+# Contraction of a quadratic approach.
+QUICK = 0.1
 # Contraction that shows a root being approached: 1/4 at a double root, 1/2 on the way to infinity.
 CONTRACTING = 0.4
 # Norm of the step below which it is looked at unknown by unknown.
@@ -87,7 +98,10 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
     last_rest, last_norm, slow_steps = np.inf, np.inf, 0
     factor: Factor | None = None
     while True:
-        scaled = residual_at(problem, x, residual, jacobian)
+        # On a quadratic approach the next step reaches rounding level anyhow: no need to ask what the terms
+        # say.
+        quick = last is not None and last.contraction < QUICK
+        scaled = (residual_by_slopes if quick else residual_at)(problem, x, residual, jacobian)
         trail.note(x, scaled, damping, limiting)
         if scaled > ROUNDING or factor is None:
             weights = np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude)
@@ -109,6 +123,7 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
             if rest <= AT_REST:
                 return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
             return give_up(problem, interior, trail, step * weights, factor)
+        trail.singular = trail.singular or factor.singular
         last, last_rest, last_norm = accepted, rest, norm
         x, residual, jacobian, damping, limiting = accepted[:5]
 

@@ -12,7 +12,7 @@ from math import copysign, inf, nextafter
 
 from eqsheet.solve.factor import SINGULAR_CONDITION
 from eqsheet.solve.interior import LEAST_FRACTION, NUDGE, RESTING
-from eqsheet.solve.newton import CONTRACTING, LEAST_DAMPING
+from eqsheet.solve.newton import CONTRACTING, LEAST_DAMPING, QUICK
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import ScalarProblem
 from eqsheet.solve.termination import (
@@ -50,10 +50,12 @@ def scalar_newton(problem: ScalarProblem, start: float, trail: Trail) -> Outcome
     damping, limiting = 0.0, -1
     # Nearest points known to either side with the opposite sign of the residual at x.
     below, above = -inf, inf
-    last_rest = inf
+    last_rest, quick = inf, False
     while True:
         floor = max(abs(x), ZERO_FLOOR * problem.magnitude)
-        scaled = scaled_residual(problem, x, value, slope)
+        # On a quadratic approach the next step reaches rounding level anyhow: no need to ask what the terms
+        # say.
+        scaled = (residual_by_slope if quick else scaled_residual)(problem, x, value, slope)
         trail.note(x, scaled, damping, limiting)
         step = -value / slope if slope != 0.0 else (0.0 if value == 0.0 else inf)
         rest = abs(step) / floor
@@ -96,6 +98,7 @@ def scalar_newton(problem: ScalarProblem, start: float, trail: Trail) -> Outcome
             # The old point is now the one of opposite sign, and what was known beyond it is of the same sign.
             below, above = (x, inf) if trial > x else (-inf, x)
         trail.contracting = damping == 1.0 and abs(new_value) < CONTRACTING * abs(value)
+        quick = damping == 1.0 and abs(new_value) < QUICK * abs(value)
         x, value, slope = trial, new_value, new_slope
 
 
@@ -110,17 +113,22 @@ def enter(problem: ScalarProblem, x: float) -> float:
 
 def scaled_residual(problem: ScalarProblem, x: float, value: float, slope: float) -> float:
     """|value| relative to the size of the equation, as `termination` defines it; inf where that is zero."""
+    scaled = residual_by_slope(problem, x, value, slope)
+    if scaled <= ROUNDING or NEARLY_ZERO <= scaled < inf:
+        return scaled
+    size = max(abs(slope * x), term_size(problem, x, slope))
+    return abs(value) / size if size > 0.0 else inf
+
+
+def residual_by_slope(problem: ScalarProblem, x: float, value: float, slope: float) -> float:
+    """|value| relative to what the slope alone says; at rounding level only if x as it is explains it."""
     if value == 0.0:
         return 0.0
     by_slope = abs(slope * x)
-    # Far from a root, and at rounding level, the slope alone says enough; the size of the terms is dear.
     if abs(value) <= ROUNDING * by_slope:
         return abs(value) / by_slope
-    floor = abs(slope) * max(abs(x), ZERO_FLOOR * problem.magnitude)
-    if 0.0 < floor <= abs(value) / NEARLY_ZERO:
-        return abs(value) / floor
-    size = max(by_slope, term_size(problem, x, slope))
-    return abs(value) / size if size > 0.0 else inf
+    size = abs(slope) * max(abs(x), ZERO_FLOOR * problem.magnitude)
+    return max(abs(value) / size, 2.0 * ROUNDING) if size > 0.0 else inf
 
 
 def known_size(problem: ScalarProblem, x: float) -> float:
@@ -147,8 +155,8 @@ def finish(problem: ScalarProblem, x: float, value: float, slope: float, trail: 
             again, again_slope = problem.linearise(polished)
             if abs(again) <= abs(value):
                 x, value, slope = polished, again, again_slope
-    scaled = scaled_residual(problem, x, value, slope)
     sure = trail.contracting and 0.0 < abs(value) <= SURE * abs(slope * x)
+    scaled = (residual_by_slope if sure else scaled_residual)(problem, x, value, slope)
     if not (scaled <= ACCEPTABLE and (sure or _confirmed(problem, x, value, slope))):
         return trail.close(Status.STALLED, x, scaled)
     bound = problem.lower if x - problem.lower < problem.upper - x else problem.upper

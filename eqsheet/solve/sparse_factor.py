@@ -65,7 +65,7 @@ def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
 
 
 def _inverse(matrix: Any, left: Vector, right: Vector) -> tuple[SparseInverse | None, float]:
-    """Inverse of the matrix, by way of its rows divided by `left` and columns times `right`; its condition."""
+    """Inverse of the matrix, found with rows divided by `left`, columns times `right`; its condition."""
     try:
         lu = splu(sp.csc_matrix(sp.diags(1.0 / left) @ matrix @ sp.diags(right)))
     except RuntimeError:

@@ -110,16 +110,21 @@ def scaled_norm(residual: Vector, sizes: Vector) -> float:
     return largest if largest < inf else inf
 
 
+def residual_by_slopes(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> float:
+    """Largest scaled residual at x by the Jacobian alone; at rounding level only if x itself explains it."""
+    slopes = abs(jacobian)
+    scaled = scaled_norm(residual, slopes @ np.abs(x))
+    if scaled <= ROUNDING:
+        return scaled
+    return max(scaled_norm(residual, slopes @ floored(x, problem)), 2.0 * ROUNDING)
+
+
 def residual_at(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> float:
     """Largest scaled residual at x. The sizes of the terms are dear, and asked for only where they decide."""
-    slopes = abs(jacobian)
-    scaled = scaled_norm(residual, slopes @ floored(x, problem))
-    if scaled >= NEARLY_ZERO:
-        return scaled
-    by_slopes = scaled_norm(residual, slopes @ np.abs(x))
-    if by_slopes <= ROUNDING:
-        return by_slopes
-    return scaled_norm(residual, equation_sizes(problem, x, jacobian))
+    scaled = residual_by_slopes(problem, x, residual, jacobian)
+    if ROUNDING < scaled < NEARLY_ZERO:
+        return scaled_norm(residual, equation_sizes(problem, x, jacobian))
+    return scaled
 
 
 def measured(problem: Problem, x: Vector) -> float:

@@ -41,15 +41,28 @@ class Trail:
     best_residual : float
     contracting : bool
         Whether the last steps have shrunk, so that the point is being approached; false at the start.
+    singular : bool
+        Whether a step was taken from a point with a singular Jacobian, in a direction that rounding decides.
     """
 
-    __slots__ = ("begun", "best", "best_residual", "budget", "contracting", "deadline", "method", "steps")
+    __slots__ = (
+        "begun",
+        "best",
+        "best_residual",
+        "budget",
+        "contracting",
+        "deadline",
+        "method",
+        "singular",
+        "steps",
+    )
 
     def __init__(self, method: str, start: Vector | float, budget: Budget, deadline: float = inf) -> None:
         self.method = method
         self.best: Any = start
         self.best_residual = inf
         self.contracting = False
+        self.singular = False
         self.begun = 0
         self.budget = budget
         self.deadline = min(deadline, perf_counter() + budget.seconds)
