@@ -12,6 +12,7 @@ from eqsheet.model.infer_kinds import KindResult, infer_kinds
 from eqsheet.model.kind_messages import kind_diagnostics
 from eqsheet.model.rotation_check import rotation_diagnostics
 from eqsheet.model.tape import Formula
+from eqsheet.model.unit_slips import unit_slips
 from eqsheet.syntax.nodes import Statement
 
 #: The quantity that gauge pressures stand on, where the worksheet sets it.
@@ -54,5 +55,6 @@ def check_units(
         *dimension_diagnostics(dimensions, formulas, statements, names),
         *kind_diagnostics(kinds, formulas, statements, names),
         *rotation_diagnostics(formulas, dimensions.dimensions, statements, names),
+        *unit_slips(formulas, statements),
     )
     return UnitCheck(dimensions, kinds, diagnostics)
