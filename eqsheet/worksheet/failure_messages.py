@@ -31,8 +31,10 @@ MOST_EQUATIONS = 3
 # Below this many digits a result is not good enough for ordinary work, and the run says so.
 FEW_DIGITS = 5
 
+_AT_MINIMUM = "no solution found: the search ended where no step brings the sides closer together"
 _HEADLINES = {
     Status.STALLED: "no solution found",
+    Status.MINIMUM: _AT_MINIMUM,
     Status.HELD: "no solution found within the bounds",
     Status.SINGULAR: "no solution found: the equations depend on each other at the best point",
     Status.CONTINUUM: "no single solution: the equations leave a combination of unknowns free",
@@ -43,6 +45,8 @@ _HEADLINES = {
     Status.BUDGET: "no solution found within the iterations and time allowed",
     Status.INTERRUPTED: "interrupted before a solution was found",
 }
+# Ends of a search that bounds may have brought about.
+_HELD_BACK = (Status.STALLED, Status.MINIMUM, Status.SINGULAR, Status.BUDGET)
 _CURES = {
     Status.HELD: "widen the bounds named, or check the equation that pushes against them",
     Status.CONTINUUM: "one more independent equation or known is needed among these lines",
@@ -68,18 +72,21 @@ def failure_diagnostic(
     by_curve = writer.by_curve(names)
     if by_curve is not None:
         return by_curve
+    without_value = writer.without_value(names)
+    if without_value is not None:
+        return without_value
     status = result.outcome.status if result.outcome is not None else Status.STALLED
     if status.solved:
         status = Status.STALLED
     facts = (
         None if result.problem is None or result.outcome is None else explain(result.problem, result.outcome)
     )
-    if facts is not None and facts.pressed and status in (Status.STALLED, Status.SINGULAR, Status.BUDGET):
+    if facts is not None and facts.pressed and status in _HELD_BACK:
         status = Status.HELD
     worst = 0 if facts is None or not facts.worst else facts.worst[0][0]
     headline = _HEADLINES.get(status, "no solution found")
     if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
-        headline = "no solution found: the search ended where no step brings the sides closer together"
+        headline = _AT_MINIMUM
     message = f"{headline}: {quoted(names)} from {where}"
     labels = [label_of(system, places[worst], "the worst satisfied" if len(places) > 1 else "")]
     labels += [label_of(system, p) for i, p in enumerate(places) if i != worst][:8]
@@ -228,6 +235,31 @@ class _Writer:
         text = self.system.statements[formula.statement].line.text[start:end]
         place = line_words(self.system, [self.system.equations[self.run.equations[equation]].place])
         return [f"{place}: `{text}` has no finite value there"]
+
+    def without_value(self, names: Sequence[str]) -> Diagnostic | None:
+        """A quantity set to what has no value; None for any other failure."""
+        if self.result.outcome is not None or not math.isnan(self.result.values[0]):
+            return None
+        formula = self.result.formulas[0]
+        inputs = [1.0 if q in self.own else self.known.values[q] for q in formula.quantities]
+        found = first_nonfinite(formula.tape, evaluate(formula.tape, inputs, literal_values(formula)))
+        if found is None:
+            return None
+        statement = self.system.statements[formula.statement]
+        start, end = formula.places[found]
+        text = " ".join(statement.line.text[start:end].split())
+        others = [
+            f"{self.system.names[q]} = {self.value(q, self.known.values[q])}"
+            for q in formula.quantities
+            if q not in self.own
+        ]
+        return error(
+            "no-solution",
+            f"`{names[0]}` has no value: `{text}` is not a finite number",
+            Label(statement.span(start, end)),
+            notes=(f"here {', '.join(others)}",) if others else (),
+            help="check the values it uses, and the lines they come from",
+        )
 
     def pressed(self, facts: Facts) -> list[str]:
         """Unknowns on their bounds, and which equation pushes them."""

@@ -13,7 +13,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from eqsheet.model.branches import chosen_branches, hold, literal_values, settle, switches
+from eqsheet.model.branches import chosen_branches, hold, literal_values, quantities_under, settle, switches
 from eqsheet.model.evaluate import evaluate, evaluate_with_evidence
 from eqsheet.model.evidence_function import evidence_of_outputs
 from eqsheet.model.isolate import isolate
@@ -122,8 +122,25 @@ def solve_equations(
 
 
 def _closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses) -> BlockResult | None:
-    """The best closed form; None where there is none with a finite value that solves the equation."""
-    return next(closed_forms(formula, unknown, known, guesses), None)
+    """The best closed form; None where there is none with a finite value that solves the equation.
+
+    A quantity set to what has no value (``y = sqrt(x)`` at a negative x) fails here: no search would help.
+    """
+    found = next(closed_forms(formula, unknown, known, guesses), None)
+    if found is None and _set_to_nothing(formula, unknown, known):
+        return BlockResult(False, (math.nan,), (math.inf,), "closed form", formulas=(formula,))
+    return found
+
+
+def _set_to_nothing(formula: Formula, unknown: int, known: Known) -> bool:
+    """Whether the unknown stands alone on one side and the other side, free of it, has no finite value."""
+    tape = formula.tape
+    leaf = ("quantity", formula.quantities.index(unknown))
+    sides = [o for o in tape.outputs if tape.instructions[o] != leaf]
+    if len(sides) != 1 or leaf[1] in quantities_under(tape, sides[0]):
+        return False
+    values = evaluate(tape, [known.values[q] for q in formula.quantities], literal_values(formula))
+    return not math.isfinite(values[sides[0]])
 
 
 def closed_forms(formula: Formula, unknown: int, known: Known, guesses: Guesses) -> Iterator[BlockResult]:
