@@ -3,7 +3,7 @@
 References
 ----------
 K. Levenberg, Quart. Appl. Math. 2 (1944), 164-168; D. W. Marquardt, J. SIAM 11 (1963), 431-441; the
-parameter for a given radius by Hebden's iteration as in J. J. Moré, Lecture Notes in Mathematics 630
+parameter for a given radius by Hebden's iteration as in J. J. Moré, Numerical Analysis (ed. G. A. Watson)
 (1978), section 5, on the singular values.
 """
 

@@ -8,8 +8,8 @@ driven on is held for the step; other steps are cut short of the bounds unknown 
 
 References
 ----------
-J. J. Moré, The Levenberg-Marquardt algorithm: implementation and theory, in: Numerical Analysis, Lecture
-Notes in Mathematics 630, Springer 1978 (scaling of the unknowns, update of the radius). T. F. Coleman and
+J. J. Moré, The Levenberg-Marquardt algorithm: implementation and theory, in: Numerical Analysis
+(ed. G. A. Watson), Springer 1978 (scaling of the unknowns, update of the radius). T. F. Coleman and
 Y. Li, SIAM J. Optim. 6 (1996), 418-445 (strictly feasible steps; the holding of unknowns is a
 simplification of their scaling).
 """
