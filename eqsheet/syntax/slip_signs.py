@@ -38,7 +38,7 @@ _SIGNS = {
     "~": ("guess-sign", "`~` is no operator", "a guess is written `x near 5`"),
     "\\": ("line-end", "a backslash does not continue a line", "end the line with an operator or a comma"),
     "·": ("product-sign", "`·` joins the symbols of a unit only", "write `*` for a product"),
-    "$": ("foreign-sign", "`$` has no meaning here", "currencies are units of your own: `new unit USD`"),
+    "$": ("foreign-sign", "`$` has no meaning here", "a currency is a unit after its number: `5 USD`"),
     "@": ("foreign-sign", "`@` has no meaning here", "leave it out"),
     "?": ("foreign-sign", "`?` has no meaning here", "an unknown is a name that nothing fixes; leave it out"),
     "`": ("foreign-sign", "` has no meaning here", "leave it out"),
@@ -97,6 +97,8 @@ def foreign_signs(misfit: Misfit) -> Slip | None:
     if pair is not None:
         code, message, help = pair
         return misfit.here(code, message, help, 2)
+    if misfit.last_text == "+" and misfit.touches and rest.startswith("/-"):
+        return misfit.with_last("tolerance-sign", "`+/-` is no operator", "write `±` or `+-`", 2)
     for sign, (code, message, help) in _SIGNS.items():
         if rest.startswith(sign):
             return misfit.here(code, message, help, len(sign))

@@ -34,6 +34,7 @@ SLIPS = {
     "bracket of the other kind": ("x = (a]", "bracket-mismatch", "]", "write )"),
     "empty brackets": ("x = f()", "empty-brackets", "()", "leave the brackets out"),
     "decimal comma": ("D = 52,5 mm", "decimal-comma", "52,5", "write 52.5"),
+    "tolerance sign of three": ("D = 52.5 mm +/- 0.1 mm", "tolerance-sign", "+/-", "write ± or +-"),
     "decimal comma after groups": ("D = 1.052,5 mm", "decimal-comma", "1.052,5", "write 1052.5"),
     "decimal comma in a list": ("y = x valid 0,7 <= Pr", "decimal-comma", "0,", "point"),
     "comma for thousands": ("x = 1,000,000", "digit-groups", "1,000,000", "write 1000000"),
