@@ -140,7 +140,9 @@ class UnitTable:
                 "unit-redefined",
                 0,
                 f"`{symbol}` is already a unit{meaning}",
-                "choose another symbol, or leave the line out",
+                "convert currencies by a known, such as `rate = 1.05 EUR/CHF`"
+                if row is not None and row[8] == "Money"
+                else "choose another symbol, or leave the line out",
             )
         return UnitTable(self.ambient, MappingProxyType({**self.added, symbol: atom}))
 

@@ -355,3 +355,12 @@ def test_every_known_symbol_is_a_unit() -> None:
     symbols = STANDARD.known_symbols()
     assert len(symbols) > 300
     assert all(STANDARD.lookup(text) is not None for text in symbols)
+
+
+def test_a_currency_is_converted_by_a_rate_not_made_anew() -> None:
+    table = UnitTable.standard()
+    euro = table.resolve("EUR", (("EUR", Fraction(1)),))
+    assert isinstance(euro, Unit)
+    found = table.with_unit("CHF", euro, 1.05)
+    assert isinstance(found, UnitProblem)
+    assert "rate" in found.help
