@@ -15,6 +15,12 @@ from eqsheet.worksheet.places import MOST_LABELS, label_of, line_words, listed, 
 # Each name is compared with all others; where very many quantities are free, a slip is not the reason.
 MOST_SPELLED = 20
 
+# Names that an engineer may take for given.
+_NOT_GIVEN = {
+    **dict.fromkeys(("π", "Pi", "PI"), "`{}` is a quantity like any other; the number is written `pi`"),
+    "ambient": "`{}` is set by no line: write `ambient = 101.325 kPa` or the like",
+}
+
 
 def structure_diagnostics(
     system: EquationSystem, formulas: Sequence[Formula], rows: Sequence[int], structure: Structure
@@ -87,10 +93,14 @@ def _likely_slips(
     if not shortfalls:
         return {}
     uses = Counter(quantity for formula in formulas for quantity in formula.quantities)
-    once = [c for shortfall in shortfalls for c in shortfall.columns if uses[c] == 1]
+    free = [c for shortfall in shortfalls for c in shortfall.columns]
+    once = [c for c in free if uses[c] == 1 or system.names[c] in _NOT_GIVEN]
     found: dict[int, str] = {}
     for column in once[:MOST_SPELLED]:
         # Members of one family are alike by design, and an index is no slip.
+        if system.names[column] in _NOT_GIVEN:
+            found[column] = _NOT_GIVEN[system.names[column]].format(system.names[column])
+            continue
         close = close_names(system.names[column], system.names) if "[" not in system.names[column] else ()
         if close:
             place = line_words(system, (system.first_places[column],))

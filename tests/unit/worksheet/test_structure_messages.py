@@ -113,3 +113,15 @@ def test_many_lines_are_folded() -> None:
     found = only(solve(text), "contradicting-equations")
     assert "and 15 more" in found.message
     assert len(found.labels) <= 7
+
+
+@pytest.mark.parametrize(
+    ("text", "said"),
+    [
+        ("A = π*D^2/4\nD = 50 mm\nC = π*D", "the number is written `pi`"),
+        ("p = 2*ambient\nq = ambient/2\nr = 1 barg", "write `ambient = 101.325 kPa`"),
+    ],
+)
+def test_names_that_are_taken_for_given_are_told_not_to_be(text: str, said: str) -> None:
+    (note,) = only(solve(text), "under-determined").notes
+    assert said in note
