@@ -232,7 +232,9 @@ class Actions:
         new = [d for d in new if d.severity is not Severity.NOTE]
         self._left_out(self._printer.diagnostics(new, MOST_MESSAGES))
         if not solution.solved and self._document.good is not None:
-            self._printer.say("The values shown are those of before; `undo` takes the change back.")
+            self._printer.say(
+                "The values shown are those of before; Ctrl-C clears the line, `undo` takes the change back."
+            )
         if self._document.journal_trouble and not self._journal_told:
             self._journal_told = True
             self._printer.say(f"there is no recovery file: {self._document.journal_trouble}")
