@@ -2,20 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from typing import TypeAlias
-
 from eqsheet.solve.continuation import fixed_point_homotopy, newton_homotopy
 from eqsheet.solve.dogleg import dogleg
 from eqsheet.solve.levenberg_marquardt import levenberg_marquardt
 from eqsheet.solve.logarithmic import logarithmic_dogleg, logarithmic_homotopy, logarithmic_newton
 from eqsheet.solve.newton import newton
-from eqsheet.solve.outcome import Outcome
-from eqsheet.solve.problem import Problem, Vector
+from eqsheet.solve.problem import Problem
 from eqsheet.solve.spread import spread
-from eqsheet.solve.trail import Trail
-
-Rung: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
+from eqsheet.solve.trail import Rung
 
 WITHOUT_BOUNDS: tuple[tuple[str, Rung], ...] = (
     ("newton, start moved", newton),

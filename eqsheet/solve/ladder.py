@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from dataclasses import replace
 from time import perf_counter
-from typing import TypeAlias, TypeVar
+from typing import TypeVar
 
 import numpy as np
 
@@ -15,12 +15,10 @@ from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, ScalarProblem, Vector, as_scalar
 from eqsheet.solve.scalar_newton import scalar_newton
 from eqsheet.solve.termination import floored, scaled_norm
-from eqsheet.solve.trail import Budget, Trail
+from eqsheet.solve.trail import Budget, Rung, Trail
 
 P = TypeVar("P", Problem, ScalarProblem)
 S = TypeVar("S", Vector, float)
-Rung: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
-
 # How telling a failure is, most telling first; all others come after these.
 _TELLING = {Status.CONTINUUM: 0, Status.MINIMUM: 1, Status.SINGULAR: 1, Status.POLE: 1}
 

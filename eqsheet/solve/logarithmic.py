@@ -3,9 +3,6 @@ themselves."""
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from typing import TypeAlias
-
 from eqsheet.solve.continuation import newton_homotopy
 from eqsheet.solve.dogleg import dogleg
 from eqsheet.solve.interior_coordinates import interior_coordinates
@@ -13,9 +10,7 @@ from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome
 from eqsheet.solve.problem import Problem, Vector
 from eqsheet.solve.termination import measured
-from eqsheet.solve.trail import Trail
-
-Method: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
+from eqsheet.solve.trail import Rung, Trail
 
 
 def logarithmic_newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
@@ -33,7 +28,7 @@ def logarithmic_homotopy(problem: Problem, start: Vector, trail: Trail) -> Outco
     return _in_coordinates(newton_homotopy, problem, start, trail)
 
 
-def _in_coordinates(method: Method, problem: Problem, start: Vector, trail: Trail) -> Outcome:
+def _in_coordinates(method: Rung, problem: Problem, start: Vector, trail: Trail) -> Outcome:
     """The outcome of `method`, judged in the unknowns themselves."""
     coordinates = interior_coordinates(problem)
     inner = method(coordinates.problem, coordinates.there(start), trail)

@@ -3,8 +3,7 @@
 from __future__ import annotations
 
 import itertools
-from collections.abc import Callable, Iterator
-from typing import TypeAlias
+from collections.abc import Iterator
 
 import numpy as np
 
@@ -15,9 +14,7 @@ from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, Vector
 from eqsheet.solve.spread_starts import scaled_starts, spread_starts
-from eqsheet.solve.trail import Budget, Trail
-
-Rung: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
+from eqsheet.solve.trail import Budget, Rung, Trail
 
 # Starts tried; enough for the published problems, and a fraction of a second.
 STARTS = 64

@@ -113,10 +113,11 @@ def scaled_norm(residual: Vector, sizes: Vector) -> float:
 def residual_by_slopes(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> float:
     """Largest scaled residual at x by the Jacobian alone; at rounding level only if x itself explains it."""
     slopes = abs(jacobian)
-    scaled = scaled_norm(residual, slopes @ np.abs(x))
-    if scaled <= ROUNDING:
+    scaled = scaled_norm(residual, slopes @ floored(x, problem))
+    if scaled > ROUNDING:
         return scaled
-    return max(scaled_norm(residual, slopes @ floored(x, problem)), 2.0 * ROUNDING)
+    as_it_is = scaled_norm(residual, slopes @ np.abs(x))
+    return as_it_is if as_it_is <= ROUNDING else 2.0 * ROUNDING
 
 
 def residual_at(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -> float:

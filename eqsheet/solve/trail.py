@@ -2,15 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from math import inf
 from time import perf_counter
-from typing import Any
+from typing import Any, TypeAlias
 
 import numpy as np
 
 from eqsheet.solve.outcome import Iteration, Outcome, Status
-from eqsheet.solve.problem import Vector
+from eqsheet.solve.problem import Problem, Vector
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,3 +108,7 @@ class Trail:
             null_equations,
             null_unknowns,
         )
+
+
+# A method that takes a problem, a start (n,) and the trail it writes: what ladders are made of.
+Rung: TypeAlias = Callable[[Problem, Vector, Trail], Outcome]
