@@ -12,7 +12,8 @@ import math
 from collections.abc import Iterator, Mapping, MutableMapping, Sequence
 from dataclasses import dataclass
 
-from eqsheet.model.evaluate import evaluate
+from eqsheet.model.branches import literal_values
+from eqsheet.model.generate import value_function
 from eqsheet.model.isolate import isolate
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
@@ -193,9 +194,8 @@ def _candidates(
     if isolation is None:
         return
     inputs = [found.get(q, values[q]) for q in formula.quantities]
-    literals = [literal.value for literal in formula.literals]
     for candidate in isolation.candidates:
-        result = evaluate(candidate.tape, inputs, literals)[candidate.tape.outputs[0]]
+        result = value_function(candidate.tape)(*inputs, *literal_values(formula))
         if math.isfinite(result):
             yield float(result)
 
