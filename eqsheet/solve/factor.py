@@ -84,23 +84,26 @@ def factorise(jacobian: Matrix, weights: Vector) -> Factor:
     matrix = jacobian * weights
     matrix /= rows[:, None]
     inverse, condition = _inverse(matrix)
-    if condition > SINGULAR_CONDITION:
-        # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up.
-        left, right = _equilibration(matrix)
-        inverse, condition = _inverse(matrix * right / left[:, None])
-        inverse = inverse * right[:, None] / left
+    # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up, first with the
+    # sizes and then without them.
+    for start in (np.ones_like(weights), 1.0 / weights):
+        if condition > SINGULAR_CONDITION:
+            left, right = _equilibration(matrix, start)
+            inverse, condition = _inverse(matrix * right / left[:, None])
+            inverse = inverse * right[:, None] / left
     if condition > SINGULAR_CONDITION:
         return Factor(matrix, weights, rows, pseudo_inverse(matrix), np.inf)
     return Factor(matrix, weights, rows, inverse, condition)
 
 
-def _equilibration(matrix: Matrix) -> tuple[Vector, Vector]:
-    """Divisors of the rows and factors of the columns after which both have sizes near 1.
+def _equilibration(matrix: Matrix, start: Vector) -> tuple[Vector, Vector]:
+    """Divisors of the rows and factors of the columns, from those of `start`, after which both have sizes near 1.
 
     The rows end with the absolute sum 1, as without this.
     """
-    rows, columns = np.ones(len(matrix)), np.ones(len(matrix))
     size = np.abs(matrix)
+    columns = start.copy()
+    rows = np.maximum((size * columns).sum(axis=1), TINY)
     for _ in range(EQUILIBRATION_ROUNDS):
         # An empty row or column keeps its scale.
         peaks = (size * columns / rows[:, None]).max(axis=0)

@@ -55,10 +55,12 @@ def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
     scaled = sp.csc_matrix(sp.diags(1.0 / rows) @ scaled)
     ones = np.ones(scaled.shape[0])
     inverse, condition = _inverse(scaled, ones, ones)
-    if condition > SINGULAR_CONDITION:
-        # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up.
-        left, right = _equilibration(scaled)
-        inverse, condition = _inverse(scaled, left, right)
+    # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up, first with the
+    # sizes and then without them.
+    for start in (ones, 1.0 / weights):
+        if condition > SINGULAR_CONDITION:
+            left, right = _equilibration(scaled, start)
+            inverse, condition = _inverse(scaled, left, right)
     if inverse is None:
         return Factor(scaled, weights, rows, SparseLeastSquares(scaled), np.inf)
     return Factor(scaled, weights, rows, inverse, condition)
@@ -76,10 +78,11 @@ def _inverse(matrix: Any, left: Vector, right: Vector) -> tuple[SparseInverse | 
     return SparseInverse(lu, left, right), float(pivots.max()) / smallest if smallest > 0.0 else np.inf
 
 
-def _equilibration(matrix: Any) -> tuple[Vector, Vector]:
+def _equilibration(matrix: Any, start: Vector) -> tuple[Vector, Vector]:
     """As in `factor`: divisors of the rows and factors of the columns after which both have sizes near 1."""
-    rows, columns = np.ones(matrix.shape[0]), np.ones(matrix.shape[0])
     size = abs(matrix)
+    columns = start.copy()
+    rows = np.maximum(np.asarray((size @ sp.diags(columns)).sum(axis=1)).ravel(), TINY)
     for _ in range(EQUILIBRATION_ROUNDS):
         now = sp.diags(1.0 / rows) @ size @ sp.diags(columns)
         columns /= np.maximum(now.max(axis=0).toarray().ravel(), TINY)
