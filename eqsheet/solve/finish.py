@@ -38,7 +38,7 @@ def finish(
     x, residual, jacobian : ndarray
         The point where the iteration has come to rest, residuals (n,) and Jacobian (n, n) there.
     factor : Factor
-        Of that Jacobian, or of the one before: so near a root it serves as well.
+        Of that Jacobian.
     slow_steps : int
         How many of the last steps near the root were not much shorter than the one before, which betrays a
         multiple root that row scaling hides from the condition number.

@@ -96,16 +96,16 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
     damping, limiting = 0.0, -1
     last: Accepted | None = None
     last_rest, last_norm, slow_steps = np.inf, np.inf, 0
-    factor: Factor | None = None
     while True:
         # On a quadratic approach the next step reaches rounding level anyhow: no need to ask what the terms
         # say.
         quick = last is not None and last.contraction < QUICK
         scaled = (residual_by_slopes if quick else residual_at)(problem, x, residual, jacobian)
         trail.note(x, scaled, damping, limiting)
-        if scaled > ROUNDING or factor is None:
-            weights = np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude)
-            factor = factorise(jacobian, weights)
+        trail.contracting = last is not None and last.contraction < CONTRACTING
+        weights = np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude)
+        # At the root too: only there does the Jacobian tell whether it is an isolated one.
+        factor = factorise(jacobian, weights)
         if scaled <= ROUNDING:
             return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
         if trail.spent:
@@ -114,7 +114,6 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
         norm = _norm(step)
         rest = float((np.abs(step * weights) / floored(x, problem)).max()) if norm < NEAR else np.inf
         slow_steps = slow_steps + 1 if MULTIPLE < rest / last_rest < SLOW else 0
-        trail.contracting = last is not None and last.contraction < CONTRACTING
         if rest <= AT_REST and (last_step_due(rest, norm / last_norm) or rest > SLOW * last_rest):
             return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
         first = 1.0 if last is None else _predicted_damping(last, step, weights)

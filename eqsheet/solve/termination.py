@@ -170,7 +170,7 @@ def kind_of_root(problem: Problem, x: Vector, scaled: float, sizes: Vector, fact
     sizes : ndarray (n,)
         What the residuals are judged against.
     factor : Factor
-        The Jacobian at x, or very near to it.
+        The Jacobian at x, or one last correction before it.
 
     Notes
     -----

@@ -17,7 +17,8 @@ from eqsheet.solve.problem import Problem
 from eqsheet.solve.trail import Budget
 
 FACTORS = (1, 10, 100)
-# The formulas are written for any kind of number and slow; a verdict must not hang on the load of the machine.
+# The formulas are written for any kind of number and slow; a verdict must not hang on the load of the
+# machine.
 PATIENT = Budget(seconds=120.0)
 # A root in 50 digits must lie this near to the solution, relative to max(|x|, 1); a double root is known to
 # half the digits.

@@ -1,4 +1,4 @@
-"""Units do not matter: the published problems with unknowns and equations rescaled by random powers of ten."""
+"""Units do not matter: published problems, unknowns and equations rescaled by random powers of ten."""
 
 import numpy as np
 import pytest

@@ -193,3 +193,13 @@ def test_sparse_and_dense_jacobians_give_the_same_root():
     sparse = replace(dense, linearise=lambda x: (residual(x), sp.csc_matrix(jacobian(x))))
     assert run(sparse).x == pytest.approx(run(dense).x, rel=1e-13)
     assert run(sparse).status is Status.CONVERGED
+
+
+def test_an_equation_that_loses_its_unknown_at_the_root_leaves_it_free():
+    # 3 x exp(y) = 0 says nothing of y once x = 0; on the way there it seems to.
+    p = problem(
+        lambda x: [x[0], 3 * x[0] * np.exp(x[1])],
+        lambda x: [[1, 0], [3 * np.exp(x[1]), 3 * x[0] * np.exp(x[1])]],
+        [1.0, 0.9],
+    )
+    assert run(p).status is Status.CONTINUUM
