@@ -10,6 +10,7 @@ number is wanted.
 
 from __future__ import annotations
 
+from collections import Counter
 from fractions import Fraction
 
 from eqsheet.model.dimension_propagation import UNKNOWN, Inference, Worklines, demand_row, propagate_without
@@ -37,14 +38,14 @@ def choose_culprit(
     """The formula of the first contradiction in `found` that is best set aside."""
     best = found.broken[0][0]
     best_rank: tuple[int, ...] | None = None
-    touched = {q for index in found.conflict for q in lines.formulas[index].quantities}
-    knowns = {quantity: _known_of(lines, found, quantity, minor) for quantity in touched}
+    uses = Counter(q for index in found.conflict for q in lines.formulas[index].quantities)
+    knowns = {quantity: _known_of(lines, found, quantity, minor) for quantity in uses}
     for index in found.conflict if len(found.conflict) > 1 else ():
         if lines.visits > LARGEST_EFFORT:
             break
         without = propagate_without(lines, found, lines.siblings(index), set_aside)
         written = len(lines.formulas[index].quantities) <= 1
-        oddness = {q: _oddness(lines, without.state[q]) for q in knowns}
+        oddness = {q: _oddness(lines, without.state[q], uses[q] > 1) for q in knowns}
         rank = (
             len(without.broken),
             # A unit written on purpose says little against itself, however odd it is.
@@ -71,9 +72,15 @@ def _known_of(lines: Worklines, found: Inference, quantity: int, minor: frozense
     return reason.formula
 
 
-def _oddness(lines: Worklines, number: int) -> int:
-    """How unlikely a quantity of the dimension is: roots of units more than products without a name."""
-    dimension = DIMENSIONLESS if number == UNKNOWN else lines.dimensions[number]
+def _oddness(lines: Worklines, number: int, shared: bool) -> int:
+    """How unlikely a quantity of the dimension is: roots of units more than products without a name.
+
+    A dimension left open speaks a little against a culprit too, where the quantity is `shared` by several
+    formulas: without the culprit they agree only because nothing is left to be compared.
+    """
+    if number == UNKNOWN:
+        return 1 if shared else 0
+    dimension = lines.dimensions[number]
     if any(power.denominator > 1 for _, power in dimension):
         return 4
     if dimension == DIMENSIONLESS or dimension_word(dimension):

@@ -32,6 +32,20 @@ f = 0.316/Re^0.25
 dP = f*(L/D)*rho*v^2/2
 show dP in kPa
 """
+BRANCHES = """\
+Q = 2000 m^3/h
+D_2 = 250 mm
+Q = Q_1 + Q_2
+dp = f_1*L_1/D_1*rho/2*v_1^2
+dp = f_2*L_2/D_2*rho/2*v_2^2
+Q_1 = v_1*pi*D_1^2/4
+Q_2 = v_2*pi*D_2^2/4
+f_1 = 0.316*(nu/(v_1*D_1))^0.25
+f_2 = 0.316*(nu/(v_2*D_2))^0.25
+nu = 15e-6 m^2/s
+rho = 1.2 kg/m^3
+L_1 = 40 m
+"""
 RADIATION = "T = 20 degC\nTs = 5 degC\nA = 2 m^2\nQ = 0.9*const.sigma*A*(T^4 - Ts^4)\n"
 
 
@@ -65,6 +79,8 @@ def test_sound_worksheets_pass(text: str) -> None:
         ("v near 2 m\nv = 3 m/s\n", "dimension-clash", "2 m", 1),
         ("U = 0.6 V\nV_T = 25 mV\nx = exp(U)\n", "dimension-of-argument", "U", 3),
         ("L = 2 m\np = 10 bar/L\nq = p*3\nrequire q < 20 bar\n", "dimension-clash", "10 bar/L", 2),
+        (BRANCHES + "D_1 = 3 kg\nL_2 = 30 m\n", "dimension-clash", "3 kg", 13),
+        (BRANCHES + "D_1 = 315\nL_2 = 30 m\n", "dimension-clash", "315", 13),
         ("ambient = 84 kPa\np = 2 barg\np_abs = p + ambient\n", "reading-made-absolute", "ambient", 3),
     ],
 )
