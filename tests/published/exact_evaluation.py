@@ -39,6 +39,7 @@ DIGITS = 50
 # A double is off by up to 1.1e-16 of itself; a residual may be off by as much of its bound, and by a few times
 # that where the solution of a block carries the rounding of its equations.
 HOLDS = 1e-13
+ROUNDING = 1.1e-16
 # A start or a solution at a bound may stand past it by rounding.
 PAST_BOUND = 1e-9
 
@@ -58,13 +59,19 @@ def statements_of(text: str) -> tuple[Statement, ...]:
     return tuple(statement for statement in document.statements if not statement.off)
 
 
-def residuals(text: str, values: Mapping[str, float]) -> list[float]:
-    """Of every equation, the difference of its sides over its bound, at SI values by name."""
+def residuals(text: str, values: Mapping[str, float], least: Mapping[str, float]) -> list[float]:
+    """Of every equation, the difference of its sides over its bound, at SI values by name.
+
+    Parameters
+    ----------
+    least : mapping of str to float
+        By name, the least size a quantity is taken to have; zero where missing.
+    """
     statements = statements_of(text)
     definitions = {s.node.name: s.node for s in statements if isinstance(s.node, Definition)}
     found = []
     with mpmath.workdps(DIGITS):
-        names = {name: _exactly(value) for name, value in values.items()}
+        names = {n: Bounded(mpmath.mpf(v), max(abs(v), least.get(n, 0.0))) for n, v in values.items()}
         evaluator = _Evaluator(names, definitions)
         for statement in statements:
             if isinstance(statement.node, Equation):
@@ -96,7 +103,21 @@ def within_bounds(text: str, values: Mapping[str, float]) -> bool:
 def holds(text: str, solution: Solution) -> bool:
     """Whether a solution called solved is one: all equations hold at fifty digits, and all bounds."""
     values = {name: solution[name].si for name in solution}
-    return all(r <= HOLDS for r in residuals(text, values)) and within_bounds(text, values)
+    return all(r <= HOLDS for r in residuals(text, values, least_sizes(solution))) and within_bounds(
+        text, values
+    )
+
+
+def least_sizes(solution: Solution) -> dict[str, float]:
+    """For each quantity, the rounding of the largest one of its dimension: nothing smaller is told from zero.
+
+    A bar that stands upright has a tip at x = 0 beside lengths of metres; found as 1e-40 m it is as good.
+    """
+    largest: dict[str, float] = {}
+    for value in solution.values():
+        text = value.dimension.text
+        largest[text] = max(largest.get(text, 0.0), abs(value.si))
+    return {name: ROUNDING * largest[solution[name].dimension.text] for name in solution}
 
 
 def _exactly(value: float) -> Bounded:
