@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, error
 from eqsheet.model.spelling import close_names
-from eqsheet.model.system import EquationSystem
+from eqsheet.model.system import EquationItem, EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.verdict import Conflict, Shortfall, Structure
 from eqsheet.worksheet.places import MOST_LABELS, label_of, line_words, listed, quoted
@@ -124,13 +124,14 @@ def conflict_diagnostic(
     """
     items = [system.equations[rows[r]] for r in conflict.rows]
     items.sort(key=lambda i: i.place.statement)
+    likely = sorted(items, key=_suspicion(system, items))
     names = [system.names[c] for c in conflict.columns]
-    knowns = [system.names[i.known] for i in items if i.known >= 0]
+    knowns = [system.names[i.known] for i in likely if i.known >= 0]
     where = line_words(system, [i.place for i in items])
     many = f"{len(items)} statements for {len(names)} quantit{'y' if len(names) == 1 else 'ies'}"
     left_out = [system.equations[rows[r]] for r in conflict.left_out]
     labels = [label_of(system, left_out[0].place, "this is one too many" if satisfied is not True else "")]
-    others = dict.fromkeys(label_of(system, i.place) for i in items if i.place != left_out[0].place)
+    others = dict.fromkeys(label_of(system, i.place) for i in likely if i.place != left_out[0].place)
     labels += list(others)[:MOST_LABELS]
     notes = [f"they compete for {quoted(names)}"]
     if gap:
@@ -147,3 +148,29 @@ def conflict_diagnostic(
         return error("contradicting-equations", message, *labels, notes=tuple(notes), help=help)
     message = f"{where} over-determine {listed([f'`{n}`' for n in names])}: {many}"
     return error("over-determined", message, *labels, notes=tuple(notes), help=help)
+
+
+def _suspicion(system: EquationSystem, items: Sequence[EquationItem]) -> Callable[[EquationItem], int]:
+    """How unlikely it is that a competing statement is the one too many; equal ones stay in their order.
+
+    A known whose quantity has a guess as well was meant to be found, and so was one that an equation has alone
+    on a side.
+    """
+    guessed = {guess.quantity for guess in system.guesses}
+    given = {q for item in items if item.known < 0 for q in _alone(item.formula)}
+    times = Counter(item.known for item in items)
+
+    def rank(item: EquationItem) -> int:
+        if item.known < 0:
+            return 3
+        if item.known in guessed:
+            return 0
+        return 1 if item.known in given or times[item.known] > 1 else 2
+
+    return rank
+
+
+def _alone(formula: Formula) -> list[int]:
+    """Quantities that stand alone on a side of an equation."""
+    sides = [formula.tape.instructions[output] for output in formula.tape.outputs]
+    return [formula.quantities[side[1]] for side in sides if side[0] == "quantity"]

@@ -20,7 +20,7 @@ def test_over_determined_names_statements_quantities_and_what_could_go() -> None
     assert found.message == "lines 1, 2, 3, 4 and 5 contradict each other: 5 statements for 4 quantities"
     assert sorted(lines(found)) == [1, 2, 3, 4, 5]
     assert found.notes[0] == "they compete for `A`, `D`, `Q` and `v`"
-    assert found.help == "switch one of them `off`; a known that could go: `D`, `Q` or `v`"
+    assert found.help == "switch one of them `off`; a known that could go: `v`, `D` or `Q`"
 
 
 def test_the_known_of_a_quantity_with_its_own_equation_is_the_one_too_many() -> None:
@@ -125,3 +125,15 @@ def test_many_lines_are_folded() -> None:
 def test_names_that_are_taken_for_given_are_told_not_to_be(text: str, said: str) -> None:
     (note,) = only(solve(text), "under-determined").notes
     assert said in note
+
+
+def test_a_known_whose_quantity_has_a_guess_is_named_first_among_what_competes() -> None:
+    text = "a = 2 m\nb = 3 m\nx = a + b + y\ny*x = 10 m^2\nx near 5 m\nx = 7 m\n"
+    found = only(solve(text), "contradicting-equations")
+    assert 6 in lines(found)[:2]
+    assert "could go: `x`, `a`" in found.help
+
+
+def test_a_known_that_an_equation_has_alone_on_a_side_is_named_before_the_others() -> None:
+    found = only(solve("a = 2 m\nb = 3 m\nc = a*b/1 m\nd = c + a\nd = 4 m"), "contradicting-equations")
+    assert 5 in lines(found)[:2]
