@@ -99,8 +99,12 @@ class Tape:
     quantities: int
     literals: int
     _hash: int = field(init=False, repr=False, compare=False)
+    # An exact 3 equals the float 3.0, but the tapes that hold them are not the same.
+    _constants: tuple[type, ...] = field(init=False, repr=False)
 
     def __post_init__(self) -> None:
+        kinds = tuple([type(i[1]) for i in self.instructions if i[0] == "const"])
+        object.__setattr__(self, "_constants", kinds)
         # Taken once: a tape is a key of many memories, and hashing its fractions anew costs more than a look-up.
         content = (self.instructions, self.outputs, self.quantities, self.literals)
         object.__setattr__(self, "_hash", hash(content))
