@@ -281,5 +281,7 @@ def _unique(codes: Codes) -> Codes:
     if codes.shape[1] == 0:
         return codes[:1]
     if codes.shape[1] == 1:
-        return np.unique(codes[:, 0])[:, None]
+        # Mostly runs in order, which a stable sort takes as they are.
+        ordered = np.sort(codes[:, 0], kind="stable")
+        return np.asarray(ordered[np.append(True, ordered[1:] != ordered[:-1])][:, None])
     return np.unique(codes, axis=0)

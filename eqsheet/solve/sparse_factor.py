@@ -49,10 +49,13 @@ class SparseLeastSquares:
 
 def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
     """As `factor.factorise`; the condition is that of the pivots, a lower estimate."""
-    scaled = sp.csc_matrix(jacobian @ sp.diags(weights))
-    rows = np.asarray(abs(scaled).sum(axis=1)).ravel()
+    scaled = sp.csc_matrix(jacobian)
+    # On the entries themselves: products with diagonal matrices take as long as the factorisation.
+    data = scaled.data * np.repeat(weights, np.diff(scaled.indptr))
+    rows: Vector = np.bincount(scaled.indices, np.abs(data), scaled.shape[0]).astype(float)
     rows[rows == 0.0] = 1.0
-    scaled = sp.csc_matrix(sp.diags(1.0 / rows) @ scaled)
+    data /= rows[scaled.indices]
+    scaled = sp.csc_matrix((data, scaled.indices, scaled.indptr), shape=scaled.shape)
     ones = np.ones(scaled.shape[0])
     inverse, condition = _inverse(scaled, ones, ones)
     # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up, first with the
@@ -69,13 +72,30 @@ def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
 def _inverse(matrix: Any, left: Vector, right: Vector) -> tuple[SparseInverse | None, float]:
     """Inverse of the matrix, found with rows divided by `left`, columns times `right`; its condition."""
     try:
-        lu = splu(sp.csc_matrix(sp.diags(1.0 / left) @ matrix @ sp.diags(right)))
+        data = matrix.data * np.repeat(right, np.diff(matrix.indptr)) / left[matrix.indices]
+        both = sp.csc_matrix((data, matrix.indices, matrix.indptr), shape=matrix.shape)
+        lu = splu(both, permc_spec=_ordering(both))
     except RuntimeError:
         # SuperLU's only way to say "exactly singular".
         return None, np.inf
     pivots = np.abs(lu.U.diagonal())
     smallest = float(pivots.min())
     return SparseInverse(lu, left, right), float(pivots.max()) / smallest if smallest > 0.0 else np.inf
+
+
+def _ordering(matrix: Any) -> str:
+    """The ordering of columns that fills in less.
+
+    Where entries stand in pairs across a diagonal that is the largest of its column, as in meshes, minimum degree
+    on the sum of the matrix and its transpose leaves about half the entries of the general column ordering. Where
+    pivots must leave the diagonal, it leaves many times more.
+    """
+    diagonal = np.abs(matrix.diagonal())
+    if (diagonal[np.repeat(np.arange(len(diagonal)), np.diff(matrix.indptr))] < np.abs(matrix.data)).any():
+        return "COLAMD"
+    turned = matrix.T.tocsc()
+    paired = np.array_equal(matrix.indptr, turned.indptr) and np.array_equal(matrix.indices, turned.indices)
+    return "MMD_AT_PLUS_A" if paired else "COLAMD"
 
 
 def _equilibration(matrix: Any, start: Vector) -> tuple[Vector, Vector]:

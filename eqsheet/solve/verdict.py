@@ -84,13 +84,15 @@ def judge(
         error = reach * _absolute_solve(factor.inverse, (np.abs(residual) + rounding) / factor.rows)
     with np.errstate(divide="ignore"):
         digits = np.floor(-np.log10(np.maximum(error / reach, 1e-16)))
+    # An error that is no number leaves no digits.
+    trusted = np.clip(np.nan_to_num(digits, nan=0.0), 0, MOST_DIGITS).astype(int)
     return Verdict(
         bool((np.abs(residual) <= allowed).all()),
         worst,
         float(abs(residual[worst])) / size,
         factor.condition,
         error,
-        tuple(int(min(max(d, 0), MOST_DIGITS)) for d in digits),
+        tuple(trusted.tolist()),
     )
 
 

@@ -206,13 +206,13 @@ def _of_families(
     from eqsheet.worksheet.group_equations import GroupedEquations
     from eqsheet.worksheet.lazy_solution import (
         LazyQuantities,
+        OwnStatements,
         lazy_reports,
         order_of_showing,
-        own_statement_numbers,
     )
 
     equations = GroupedEquations(prepared.system)
-    own = own_statement_numbers(equations, prepared, run)
+    own = OwnStatements(equations, prepared, run)
     quantities = LazyQuantities(
         prepared.system,
         order_of_showing(prepared, run),

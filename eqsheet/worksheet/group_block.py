@@ -25,6 +25,8 @@ from eqsheet.worksheet.starting_values import GOLDEN_SECTION, WIDE, Start, start
 
 Numbers = NDArray[np.int64]
 Array = NDArray[np.float64]
+# Patterns of more slots are too many to number.
+_MOST_CODED = 16
 
 
 def solve_group_block(
@@ -62,7 +64,7 @@ def solve_group_block(
     apart = [int(n) for n in numbers[numbers < equations.written]]
     written = [settle(formulas[n], lambda q: None if q in own else known.values[q]) for n in apart]
     everything = _with(formulas, numbers, dict(zip(apart, written)))
-    if switches(written):
+    if switches(written, own):
         return solve_equations(everything, unknowns, known, guesses, dimensions, budget)
     shapes = equations.shapes(numbers, written)
     columns = np.array(unknowns, dtype=np.int64)
@@ -126,15 +128,15 @@ def _linear(shapes: Sequence[Shape], unknowns: Numbers, total: int) -> bool:
     own[unknowns] = True
     for shape in shapes:
         held = own[shape.quantities]
-        # Members may differ in which of their slots hold unknowns; there are few such patterns.
-        patterns = np.unique(np.packbits(held, axis=1), axis=0) if held.shape[1] > 8 else None
-        if patterns is None:
-            weights = 1 << np.arange(held.shape[1])
-            codes = np.unique(held @ weights)
-            sets = [{k for k in range(held.shape[1]) if code >> k & 1} for code in codes.tolist()]
-        else:
-            bits = np.unpackbits(patterns, axis=1)[:, : held.shape[1]]
-            sets = [set(np.flatnonzero(row).tolist()) for row in bits]
-        if not all(is_linear_in(shape.tape, one) for one in sets):
+        if not all(is_linear_in(shape.tape, one) for one in _patterns(held)):
             return False
     return True
+
+
+def _patterns(held: NDArray[np.bool_]) -> list[set[int]]:
+    """The different rows of a table of truth values, as sets of columns; there are few."""
+    slots = held.shape[1]
+    if slots > _MOST_CODED:
+        return [set(np.flatnonzero(row).tolist()) for row in np.unique(held, axis=0)]
+    codes = np.flatnonzero(np.bincount(held @ (1 << np.arange(slots))))
+    return [{k for k in range(slots) if code >> k & 1} for code in codes.tolist()]

@@ -19,16 +19,10 @@ from eqsheet.worksheet.block_run import BlockRun
 from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import FEW_DIGITS, failure_diagnostic, start_note, trust_warnings
 from eqsheet.worksheet.group_block import solve_group_block
-from eqsheet.worksheet.group_chain import (
-    LEAST_CHAIN,
-    ChainPart,
-    ChainResult,
-    ClosedForm,
-    only_closed_form,
-    solve_chain,
-)
+from eqsheet.worksheet.group_chain import LEAST_CHAIN, ChainResult, solve_chain
 from eqsheet.worksheet.group_equations import GroupedEquations
 from eqsheet.worksheet.group_guesses import guess_arrays, work_out_group_guesses
+from eqsheet.worksheet.group_singles import Singles
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
 from eqsheet.worksheet.written_values import as_typed
@@ -81,7 +75,8 @@ class GroupRun:
         self.unsolved: list[int] = []
         self._parts: list[tuple[int, Callable[[int], BlockRun]]] = []
         self._count = 0
-        self._numbers = self._numbered()
+        self._singles = Singles(prepared, self._equations)
+        self._numbers = self._singles.numbers
 
     @property
     def runs(self) -> Sequence[BlockRun]:
@@ -95,32 +90,21 @@ class GroupRun:
         groups = [(len(group), group.bound.at) for group in self._equations.groups]
         return LazySequence([(len(written), written.__getitem__), *groups])
 
-    def _numbered(self) -> Numbers:
-        """Number of the block at each position of the structure, 0 for those of knowns."""
-        rows = self.prepared.rows
-        known = self._equations.known
-        counts = np.array(
-            [len(b.rows) > 1 or not known[rows[b.rows[0]]] for b in self.prepared.structure.blocks],
-            dtype=np.int64,
-        )
-        return np.where(counts, np.cumsum(counts), 0)
-
     def solve_all(self) -> None:
         """Solve block after block; what depends on a failed block is left out."""
         blocks = self.prepared.structure.blocks
         position = 0
-        while position < len(blocks):
-            end = position
-            while end < len(blocks) and self._form(blocks[end]) is not None:
-                end += 1
-            in_order = end - position >= LEAST_CHAIN and not self._failed and not self._given
-            if in_order and self._chain(position, end):
-                position = end
-                continue
-            for i in range(position, max(end, position + 1)):
-                if self._numbers[i]:
-                    self._one(i, blocks[i])
-            position = max(end, position + 1)
+        for begin, end in self._singles.runs(LEAST_CHAIN):
+            self._one_by_one(position, begin)
+            if self._failed or self._given or not self._chain(begin, end):
+                self._one_by_one(begin, end)
+            position = end
+        self._one_by_one(position, len(blocks))
+
+    def _one_by_one(self, begin: int, end: int) -> None:
+        for position in range(begin, end):
+            if self._numbers[position]:
+                self._one(position, self.prepared.structure.blocks[position])
 
     # --- one block ----------------------------------------------------------------------------------------
 
@@ -197,9 +181,14 @@ class GroupRun:
             self._failed.add(number)
             self.best.update(zip(block.columns, result.values))
             return
-        for quantity, value, error in zip(block.columns, result.values, result.errors):
-            self.values[quantity] = value
-            self.errors[quantity] = error
+        first, end = block.columns[0], block.columns[-1] + 1
+        if end - first == len(block.columns):
+            self.values[first:end] = result.values
+            self.errors[first:end] = result.errors
+        else:
+            for quantity, value, error in zip(block.columns, result.values, result.errors):
+                self.values[quantity] = value
+                self.errors[quantity] = error
         columns = np.array(block.columns, dtype=np.int64)
         self._value_array[columns] = result.values
         self._error_array[columns] = result.errors
@@ -209,29 +198,18 @@ class GroupRun:
         """Which values may have fewer digits than are passed over in silence."""
         with np.errstate(all="ignore"):
             return np.asarray(
-                (values != 0.0) & ~(errors <= np.abs(values) * 10.0 ** -(FEW_DIGITS + 0.5)) & (errors != 0.0)
+                (values != 0.0)
+                & ~(errors <= np.abs(values) * 10.0 ** -(FEW_DIGITS + 0.001))
+                & (errors != 0.0)
             )
 
     # --- chains -------------------------------------------------------------------------------------------
 
-    def _form(self, block: Block) -> tuple[int, int, int, ClosedForm] | None:
-        """Group, entry, slot and closed form of a block that can be part of a chain."""
-        if len(block.rows) != 1:
-            return None
-        group, entry = self._equations.group_of(self.prepared.rows[block.rows[0]])
-        if group < 0 or self._equations.groups[group].known is not None:
-            return None
-        bound = self._equations.groups[group].bound
-        slot = int(np.flatnonzero(bound.numbers[entry] == block.columns[0])[0])
-        closed = only_closed_form(bound.formula.tape, slot)
-        return None if closed is None else (group, entry, slot, closed)
-
     def _chain(self, begin: int, end: int) -> bool:
         """Solve the blocks from `begin` to before `end` as a chain; whether that went well."""
-        blocks = self.prepared.structure.blocks[begin:end]
-        targets = np.array([block.columns[0] for block in blocks], dtype=np.int64)
+        targets = self._singles.columns[begin:end]
         result = solve_chain(
-            self._chain_parts(blocks),
+            self._singles.parts(begin, end),
             targets,
             self.values,
             self._value_array,
@@ -252,27 +230,6 @@ class GroupRun:
         for i in np.flatnonzero(self._few_digits(result.values, result.errors)).tolist():
             self.diagnostics += trust_warnings(self.prepared.system, make(i))
         return True
-
-    def _chain_parts(self, blocks: Sequence[Block]) -> list[ChainPart]:
-        """The blocks by group and slot."""
-        gathered: dict[tuple[int, int], tuple[ClosedForm, list[int], list[int]]] = {}
-        for position, block in enumerate(blocks):
-            form = self._form(block)
-            assert form is not None
-            group, entry, slot, closed = form
-            _, positions, entries = gathered.setdefault((group, slot), (closed, [], []))
-            positions.append(position)
-            entries.append(entry)
-        return [
-            ChainPart(
-                self._equations.groups[group],
-                slot,
-                closed,
-                np.array(positions, dtype=np.int64),
-                np.array(entries, dtype=np.int64),
-            )
-            for (group, slot), (closed, positions, entries) in gathered.items()
-        ]
 
     def _runs_of_chain(self, begin: int, result: ChainResult) -> Callable[[int], BlockRun]:
         """Makes the account of one block of a chain."""

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Mapping, Sequence
+from functools import cached_property
 from typing import TypeVar
 
 import numpy as np
@@ -13,6 +14,7 @@ from eqsheet.model.system import EquationSystem
 from eqsheet.syntax.nodes import Statement
 from eqsheet.worksheet.block_run import BlockRun
 from eqsheet.worksheet.group_equations import GroupedEquations
+from eqsheet.worksheet.group_guesses import ByBlock
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import Run
 from eqsheet.worksheet.solution import BlockReport, QuantityValue
@@ -74,13 +76,11 @@ def order_of_showing(prepared: Prepared, run: Run) -> Numbers:
     return np.asarray(order[np.isfinite(np.array(run.values)[order])])
 
 
-def own_statement_numbers(equations: GroupedEquations, prepared: Prepared, run: Run) -> Mapping[int, int]:
-    """As `assemble.own_statements`, as arrays."""
+def own_statement_numbers(equations: GroupedEquations, prepared: Prepared, run: Run) -> Numbers:
+    """As `assemble.own_statements`, as an array (quantities,) with -1 where there is none."""
     system = prepared.system
     total = len(system.names)
-    block_of = np.zeros(total, dtype=np.int64)
-    for quantity, number in _pairs(run.block_of):
-        block_of[quantity] = number
+    block_of = _array(run.block_of, total)
     block_of_equation = _blocks_of_equations(prepared, block_of)
     own = np.full(total, -1, dtype=np.int64)
     for side in (0, 1):
@@ -107,15 +107,17 @@ def own_statement_numbers(equations: GroupedEquations, prepared: Prepared, run: 
     first = _first_statements(equations, block_of_equation)
     missing = (own < 0) & (block_of > 0)
     own[missing] = first[block_of[missing]]
-    return _Known(own)
+    return own
 
 
-def _pairs(mapping: Mapping[int, int]) -> Iterator[tuple[int, int]]:
-    array = getattr(mapping, "array", None)
-    if array is None:
-        return iter(mapping.items())
-    there = np.flatnonzero(array)
-    return zip(there.tolist(), array[there].tolist())
+def _array(block_of: Mapping[int, int], total: int) -> Numbers:
+    """Block numbers by quantity, 0 for none."""
+    if isinstance(block_of, ByBlock):
+        return block_of.array.astype(np.int64)
+    found = np.zeros(total, dtype=np.int64)
+    for quantity, number in block_of.items():
+        found[quantity] = number
+    return found
 
 
 def _blocks_of_equations(prepared: Prepared, block_of: Numbers) -> Numbers:
@@ -146,11 +148,16 @@ def _first_statements(equations: GroupedEquations, block_of_equation: Numbers) -
     return first
 
 
-class _Known(Mapping[int, int]):
-    """A mapping over an array with -1 where there is nothing."""
+class OwnStatements(Mapping[int, int]):
+    """`own_statement_numbers` by quantity, worked out once somebody asks."""
 
-    def __init__(self, array: Numbers) -> None:
-        self._array = array
+    def __init__(self, equations: GroupedEquations, prepared: Prepared, run: Run) -> None:
+        self._needed = equations, prepared, run
+
+    @cached_property
+    def _array(self) -> Numbers:
+        """Statement numbers, -1 where there is none."""
+        return own_statement_numbers(*self._needed)
 
     def __getitem__(self, key: int) -> int:
         value = int(self._array[key])
