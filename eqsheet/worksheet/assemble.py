@@ -6,14 +6,12 @@ import math
 from collections.abc import Mapping, Sequence
 from types import MappingProxyType
 
-from eqsheet.diagnostics.diagnostic import Diagnostic, Label, Severity, note
-from eqsheet.model.system import EquationSystem
+from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
 from eqsheet.syntax.nodes import Statement
-from eqsheet.units.display import format_value
 from eqsheet.worksheet.alike import fold_alike
+from eqsheet.worksheet.ambient_note import ambient_note
 from eqsheet.worksheet.failure_messages import digits_of
 from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds, limits_outside_curves
-from eqsheet.worksheet.places import span_of
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import BlockRun, Run
 from eqsheet.worksheet.shown_units import shown_unit
@@ -50,7 +48,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
             if math.isfinite(si)
         }
     if prepared.system.uses_gauge:
-        diagnostics.append(_ambient_note(prepared.system))
+        diagnostics.append(ambient_note(prepared))
     diagnostics = _distinct(diagnostics, prepared.system.names)
     return Solution(
         name,
@@ -219,17 +217,3 @@ def _of_families(
         lambda q: _value(prepared, run, own, q, run.values[q], run.errors[q]),
     )
     return lazy_reports(equations, prepared, run.blocks, _report), own, quantities
-
-
-def _ambient_note(system: EquationSystem) -> Diagnostic:
-    text = format_value(system.ambient / 1000.0)
-    given = system.number("ambient")
-    if given is None:
-        place: tuple[Label, ...] = ()
-        said = f"gauge pressures stand on the standard atmosphere, {text} kPa"
-        help = "write `ambient = 84 kPa` or the like for another place"
-    else:
-        place = (Label(span_of(system, system.first_places[given])),)
-        said = f"gauge pressures stand on the ambient pressure, {text} kPa"
-        help = ""
-    return note("ambient-pressure", said, *place, help=help)
