@@ -298,7 +298,8 @@ _WORDS_AFTER_OPERANDS = frozenset(
 def products(misfit: Misfit) -> Slip | None:
     """Two things side by side, which do not multiply."""
     thing = misfit.thing
-    if misfit.last not in ENDS_OF_OPERANDS or misfit.word in RESERVED or not misfit.before:
+    inch = misfit.word == "in" and misfit.last_text == ")"
+    if misfit.last not in ENDS_OF_OPERANDS or (misfit.word in RESERVED and not inch) or not misfit.before:
         return None
     if not (misfit.word or thing[:1].isdigit() or thing == "("):
         return None
@@ -313,6 +314,10 @@ def products(misfit: Misfit) -> Slip | None:
         else:
             digits, _, symbol = left.partition(" ")
             help = f"write `{digits}*{symbol}*{right}`, or `{left}*{right}` where `{symbol}` is a unit"
+    elif inch:
+        help = f"a unit belongs to a number: write `{left}*1 in`"
+    elif misfit.last_text == ")" and misfit.word and right == misfit.word:
+        help += f" for a product; a unit belongs to a number, `{left}*1 {right}`"
     elif misfit.last == "NAME" and len(misfit.before) == 1 and misfit.word:
         help += f" for a product, `{left}_{right}` for one name"
     return Slip(

@@ -34,6 +34,8 @@ SLIPS = {
     "bracket of the other kind": ("x = (a]", "bracket-mismatch", "]", "write )"),
     "empty brackets": ("x = f()", "empty-brackets", "()", "leave the brackets out"),
     "decimal comma": ("D = 52,5 mm", "decimal-comma", "52,5", "write 52.5"),
+    "unit after a bracket": ("P = (1 + 2) mmHg", "implied-product", ") mmHg", "(1 + 2)*1 mmHg"),
+    "inch after a bracket": ("t = (3/8) in", "implied-product", ") in", "(3/8)*1 in"),
     "tolerance sign of three": ("D = 52.5 mm +/- 0.1 mm", "tolerance-sign", "+/-", "write ± or +-"),
     "decimal comma after groups": ("D = 1.052,5 mm", "decimal-comma", "1.052,5", "write 1052.5"),
     "decimal comma in a list": ("y = x valid 0,7 <= Pr", "decimal-comma", "0,", "point"),
