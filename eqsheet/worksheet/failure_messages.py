@@ -16,6 +16,7 @@ from eqsheet.solve.explain import Facts, explain
 from eqsheet.solve.outcome import Status
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.display import default_unit
+from eqsheet.worksheet.beyond_bounds import Beyond, beyond_bounds
 from eqsheet.worksheet.curve_messages import curve_notes, outside_curve_diagnostic, stepped_diagnostic
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.places import label_of, line_words, quoted
@@ -83,14 +84,20 @@ def failure_diagnostic(
     )
     if facts is not None and facts.pressed and status in _HELD_BACK:
         status = Status.HELD
+    beyond = writer.beyond()
+    if beyond is not None and status not in (Status.CONTINUUM, Status.DOMAIN):
+        status = Status.HELD
     worst = 0 if facts is None or not facts.worst else facts.worst[0][0]
     headline = _HEADLINES.get(status, "no solution found")
     if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
         headline = _AT_MINIMUM
     message = f"{headline}: {quoted(names)} from {where}"
     labels = [label_of(system, places[worst], "the worst satisfied" if len(places) > 1 else "")]
-    labels += [label_of(system, p) for i, p in enumerate(places) if i != worst][:8]
+    labels += writer.shut_out_by(beyond)
+    others = sorted((p for i, p in enumerate(places) if i != worst), key=lambda p: (p.statement, p.start))
+    labels += [label_of(system, p) for p in others[:8]]
     notes = writer.at_best_point()
+    notes += writer.found_beyond(beyond)
     if facts is not None and facts.not_finite >= 0:
         notes += writer.not_finite(facts.not_finite)
     elif facts is not None:
@@ -162,6 +169,38 @@ class _Writer:
             *labels,
             help="widen the bound, or check the equation and the values it uses",
         )
+
+    def beyond(self) -> Beyond | None:
+        """A solution outside the bounds, if there is one."""
+        if self.result.outcome is not None and self.result.outcome.status is Status.INTERRUPTED:
+            return None
+        return beyond_bounds(
+            self.formulas,
+            self.run.unknowns,
+            self.known,
+            self.guesses,
+            self.dimensions,
+            self.result.values,
+        )
+
+    def shut_out_by(self, beyond: Beyond | None) -> list[Label]:
+        """The bounds that a solution does not lie in."""
+        if beyond is None:
+            return []
+        places = dict.fromkeys(
+            self.guesses.places[quantity, role]
+            for quantity in beyond.shut_out
+            for role in ("lower", "upper")
+            if (quantity, role) in self.guesses.places
+        )
+        return [label_of(self.system, place, "shuts a solution out") for place in places]
+
+    def found_beyond(self, beyond: Beyond | None) -> list[str]:
+        """Where the solution outside the bounds lies."""
+        if beyond is None:
+            return []
+        parts = [f"{self.system.names[q]} = {self.value(q, beyond.values[q])}" for q in beyond.shut_out[:4]]
+        return [f"outside the bounds the equations are satisfied, with {', '.join(parts)}"]
 
     def point(self) -> Mapping[int, float]:
         """SI values of all quantities of the block's equations at the best point."""
@@ -340,7 +379,7 @@ def start_note(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
     names = [system.names[run.unknowns[i]] for i in result.start.blind]
     if not names:
         return []
-    place = system.equations[run.equations[0]].place
+    place = min((system.equations[e].place for e in run.equations), key=lambda p: (p.statement, p.start))
     return [
         note(
             "started-without-guess",
