@@ -47,6 +47,8 @@ def dogleg_step(f: Vector, a: Matrix, radius: float) -> Vector:
     # Where the line from the steepest-descent point to the Newton point leaves the trust region.
     across = newton - steepest
     p, q, r = float(across @ across), float(steepest @ across), short * short - radius * radius
+    if p == 0.0:
+        return np.asarray(steepest)
     part = (
         -r / (q + float(np.sqrt(max(q * q - p * r, 0.0))))
         if q > 0.0

@@ -121,7 +121,7 @@ def own_statements(prepared: Prepared, run: Run) -> dict[int, int]:
                     if run.block_of.get(quantity) == block.number:
                         own.setdefault(quantity, formula.statement)
     for block in run.blocks:
-        first = equations[block.equations[0]].place.statement
+        first = min(equations[e].place.statement for e in block.equations)
         for quantity in block.unknowns:
             own.setdefault(quantity, first)
     return own
@@ -170,7 +170,8 @@ def _block(prepared: Prepared, block: BlockRun) -> BlockReport:
     system = prepared.system
     own = set(block.unknowns)
     others = {q for e in block.equations for q in system.equations[e].formula.quantities if q not in own}
-    statements = tuple(system.statements[system.equations[e].place.statement] for e in block.equations)
+    numbers = sorted(system.equations[e].place.statement for e in block.equations)
+    statements = tuple(system.statements[n] for n in numbers)
     unknowns = tuple(system.names[q] for q in block.unknowns)
     depends = tuple(system.names[q] for q in sorted(others))
     return _report(block, unknowns, statements, depends)

@@ -16,7 +16,7 @@ class BlockRun:
     number : int
         From 1; knowns are not counted.
     equations : tuple of int
-        Numbers of its equations in the system, in the order of the text.
+        Numbers of its equations in the system, ascending, so that not even rounding depends on the order of the lines.
     unknowns : tuple of int
         Quantity numbers, ascending.
     after : tuple of int

@@ -98,7 +98,6 @@ def run_blocks(
             continue
         number = len(runs) + 1
         numbers[position] = number
-        equations.sort(key=lambda e: system.equations[e].place.statement)
         after = tuple(numbers[d] for d in block.depends if d in numbers)
         result = None
         if any(a in failed for a in after) or _uses(formulas, equations, prepared.contested):
