@@ -278,7 +278,7 @@ def _is_fixed(node: syntax.Expression, indices: Container[str]) -> bool:
 
 
 def _unique(codes: Codes) -> Codes:
-    if codes.shape[1] == 0:
+    if codes.shape[1] == 0 or not len(codes):
         return codes[:1]
     if codes.shape[1] == 1:
         # Mostly runs in order, which a stable sort takes as they are.
