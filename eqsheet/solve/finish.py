@@ -17,6 +17,7 @@ from eqsheet.solve.termination import (
     kind_of_root,
     scaled_norm,
     term_sizes,
+    underflown,
 )
 from eqsheet.solve.trail import Trail
 
@@ -59,6 +60,8 @@ def finish(
     if believed and (factor.singular or not at_rest(problem, x, factor, residual)):
         # No small step explains the residuals, so they must be small against terms that are really there.
         believed = scaled_norm(residual, term_sizes(problem, x, jacobian)) <= ACCEPTABLE
+    if believed and underflown(problem, x, factor):
+        believed = False
     if not believed:
         return give_up(problem, interior, trail, step, factor)
     kind = kind_of_root(problem, x, scaled, sizes, factor)

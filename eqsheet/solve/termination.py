@@ -144,6 +144,18 @@ def confirmed(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -
     return all(_grows_away(problem, x, residual, jacobian, int(i)) for i in doubtful)
 
 
+def underflown(problem: Problem, x: Vector, factor: Factor) -> bool:
+    """Whether an equation has no terms and no slopes left at x: too small for doubles, and no zero.
+
+    ``exp(-1e9)`` is such a one. A problem that knows no sizes at all is given the benefit of the doubt.
+    """
+    empty = factor.rows <= TINY
+    if not empty.any():
+        return False
+    sizes = known_sizes(problem, x)
+    return bool((sizes[empty] == 0.0).any() and (sizes > 0.0).any())
+
+
 def _grows_away(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix, equation: int) -> bool:
     """Whether a residual grows at least linearly a little way off along its own gradient."""
     row = jacobian[equation]

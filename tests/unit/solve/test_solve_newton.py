@@ -203,3 +203,14 @@ def test_an_equation_that_loses_its_unknown_at_the_root_leaves_it_free():
         [1.0, 0.9],
     )
     assert run(p).status is Status.CONTINUUM
+
+
+def test_underflow_is_no_root():
+    # exp(-x^2) is zero in doubles from x = 28 on, and nowhere else.
+    p = problem(
+        lambda x: [np.exp(-(x[0] ** 2)), x[1] - 1],
+        lambda x: [[-2 * x[0] * np.exp(-(x[0] ** 2)), 0], [0, 1]],
+        [100.0, 0.5],
+        sizes=lambda x: np.array([np.exp(-(x[0] ** 2)), 1.0]),
+    )
+    assert not run(p).solved
