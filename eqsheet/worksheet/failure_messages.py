@@ -54,7 +54,7 @@ _CURES = {
     Status.SINGULAR: "check that no equation of these lines repeats another, or start elsewhere with `near`",
     Status.DOMAIN: "give start values (`near`) or bounds (`within`) inside the domain of the equations",
     Status.NO_CONSISTENT_BRANCH: "let the branches meet where they switch, or check the condition",
-    Status.NO_SIGN_CHANGE: "widen the bounds, or check sign and size of the terms",
+    Status.NO_SIGN_CHANGE: "check sign and size of the terms, and the bounds if there are any",
 }
 
 
