@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from eqsheet.solve.factor import Factor, smallest_singular_vectors
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.outcome import Outcome, Status
@@ -68,7 +70,8 @@ def finish(
     if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:
         kind = Status.DOUBLE
     if kind is Status.CONVERGED:
-        return trail.close(kind, x, scaled, interior.resting(x))
+        found = trail.close(kind, x, scaled, interior.resting(x))
+        return replace(found, factor=factor) if hasattr(jacobian, "tocsc") else found
     _, left, right = smallest_singular_vectors(factor.matrix)
     return trail.close(kind, x, scaled, interior.resting(x), tuple(left.tolist()), tuple(right.tolist()))
 

@@ -44,6 +44,8 @@ SURE_CONTRACTION = 0.25
 QUICK = 0.1
 # Contraction that shows a root being approached: 1/4 at a double root, 1/2 on the way to infinity.
 CONTRACTING = 0.4
+# Vectors longer than this are multiplied in threads by the library, which takes longer to start than the product.
+THREADED = 10_000
 # Norm of the step below which it is looked at unknown by unknown.
 NEAR = 1e-6
 
@@ -184,6 +186,8 @@ def _first_accepted(
 
 def _norm(vector: Vector) -> float:
     """Root mean square."""
+    if vector.size > THREADED:
+        return sqrt(float(np.einsum("i,i", vector, vector)) / vector.size)
     return sqrt(float(np.dot(vector, vector)) / vector.size)
 
 

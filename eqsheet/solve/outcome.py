@@ -6,6 +6,7 @@ from dataclasses import dataclass, field
 from enum import Enum
 from typing import NamedTuple
 
+from eqsheet.solve.factor import Factor
 from eqsheet.solve.problem import Vector
 
 
@@ -108,6 +109,8 @@ class Outcome:
         and each unknown (relative to its size) takes part; empty otherwise.
     attempts : tuple of Outcome
         Earlier attempts of the ladder, in order; empty where the first one succeeded.
+    factor : Factor or None
+        Of a large Jacobian at the root or next to it, which is dear, so that the root can be judged by it.
     """
 
     status: Status
@@ -120,6 +123,7 @@ class Outcome:
     null_equations: tuple[float, ...] = ()
     null_unknowns: tuple[float, ...] = ()
     attempts: tuple[Outcome, ...] = field(default=(), repr=False)
+    factor: Factor | None = field(default=None, repr=False, compare=False)
 
     @property
     def solved(self) -> bool:

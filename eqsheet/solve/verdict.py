@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from eqsheet.solve.factor import factorise
+from eqsheet.solve.factor import Factor, factorise
 from eqsheet.solve.problem import Matrix, Vector
 from eqsheet.solve.termination import ACCEPTABLE, ZERO_FLOOR
 
@@ -49,7 +49,13 @@ class Verdict:
 
 
 def judge(
-    residual: Vector, sizes: Vector, error_bounds: Vector, jacobian: Matrix, x: Vector, magnitude: Vector
+    residual: Vector,
+    sizes: Vector,
+    error_bounds: Vector,
+    jacobian: Matrix,
+    x: Vector,
+    magnitude: Vector,
+    factor: Factor | None = None,
 ) -> Verdict:
     """The verdict on x.
 
@@ -63,6 +69,8 @@ def judge(
         Running error bound of each residual (Higham 2002, section 3.3), in its own unit.
     jacobian : ndarray (n, n)
     x, magnitude : ndarray (n,)
+    factor : Factor, optional
+        Of a Jacobian at x or next to it, where there is one already.
 
     Notes
     -----
@@ -77,11 +85,11 @@ def judge(
     tiny = np.finfo(float).tiny
     worst = int((np.abs(residual) / np.maximum(allowed, tiny)).argmax())
     size = max(float(sizes[worst]), float((abs(jacobian) @ reach)[worst]), tiny)
-    factor = factorise(jacobian, reach)
+    factor = factor or factorise(jacobian, reach)
     if factor.singular:
         error = np.full(x.size, np.inf)
     else:
-        error = reach * _absolute_solve(factor.inverse, (np.abs(residual) + rounding) / factor.rows)
+        error = factor.weights * _absolute_solve(factor.inverse, (np.abs(residual) + rounding) / factor.rows)
     with np.errstate(divide="ignore"):
         digits = np.floor(-np.log10(np.maximum(error / reach, 1e-16)))
     # An error that is no number leaves no digits.

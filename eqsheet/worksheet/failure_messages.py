@@ -10,7 +10,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note, warni
 from eqsheet.model.branches import literal_values
 from eqsheet.model.dimension_of import dimensions_of
 from eqsheet.model.evaluate import evaluate, first_nonfinite
-from eqsheet.model.system import EquationSystem
+from eqsheet.model.system import EquationSystem, Place
 from eqsheet.model.tape import Formula
 from eqsheet.solve.explain import Facts, explain
 from eqsheet.solve.outcome import Status
@@ -401,19 +401,30 @@ def trust_warnings(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
             worst = (digits, position)
     if worst is None:
         return []
-    digits, position = worst
-    places = [system.equations[e].place for e in run.equations]
+    return [few_digits_warning(system, run, *worst, [system.equations[e].place for e in run.equations])]
+
+
+def few_digits_warning(
+    system: EquationSystem, run: BlockRun, digits: int, position: int, places: Sequence[Place]
+) -> Diagnostic:
+    """A warning that the unknown at a position of a solved block has few digits.
+
+    Parameters
+    ----------
+    places : sequence of Place
+        Of the block's equations, in the order of the text; one of each statement will do.
+    """
+    result = run.result
+    assert result is not None
     name = system.names[run.unknowns[position]]
     double = result.outcome is not None and result.outcome.status is Status.DOUBLE
     why = "a double root" if double else "the equations are close to depending on each other"
-    return [
-        warning(
-            "few-digits",
-            f"`{name}` from {line_words(system, places)} is good to about {digits} digits: {why}",
-            label_of(system, places[0]),
-            help="a small change of the inputs moves it much; check that the problem is posed as meant",
-        )
-    ]
+    return warning(
+        "few-digits",
+        f"`{name}` from {line_words(system, places)} is good to about {digits} digits: {why}",
+        label_of(system, places[0]),
+        help="a small change of the inputs moves it much; check that the problem is posed as meant",
+    )
 
 
 def digits_of(value: float, error_bound: float) -> int:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from typing import cast
 
 import numpy as np
 from numpy.typing import NDArray
@@ -104,13 +105,9 @@ def _start(shapes: Sequence[Shape], unknowns: Numbers, arrays: GuessArrays) -> S
     magnitude = np.abs(near)
     if not magnitude.all():
         return None
-    return Start(
-        tuple(near.tolist()),
-        tuple(low.tolist()),
-        tuple(high.tolist()),
-        tuple(magnitude.tolist()),
-        tuple(assumed.tolist()),
-    )
+    # Arrays serve as the sequences of floats they are; tuples of a million would take long to make.
+    values, lower, upper, sizes = (cast(tuple[float, ...], one) for one in (near, low, high, magnitude))
+    return Start(values, lower, upper, sizes, tuple(assumed.tolist()))
 
 
 def _between(low: Array, high: Array) -> Array:

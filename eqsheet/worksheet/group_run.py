@@ -17,7 +17,14 @@ from eqsheet.worksheet.array_equations import LARGE_BLOCK
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.block_run import BlockRun
 from eqsheet.worksheet.curve_messages import OF_CURVES
-from eqsheet.worksheet.failure_messages import FEW_DIGITS, failure_diagnostic, start_note, trust_warnings
+from eqsheet.worksheet.failure_messages import (
+    FEW_DIGITS,
+    digits_of,
+    failure_diagnostic,
+    few_digits_warning,
+    start_note,
+    trust_warnings,
+)
 from eqsheet.worksheet.group_block import solve_group_block
 from eqsheet.worksheet.group_chain import LEAST_CHAIN, ChainResult, solve_chain
 from eqsheet.worksheet.group_equations import GroupedEquations
@@ -110,7 +117,10 @@ class GroupRun:
 
     def _one(self, position: int, block: Block) -> None:
         number = int(self._numbers[position])
-        equations = self._equations.in_text_order([self.prepared.rows[r] for r in block.rows])
+        rows = self.prepared.rows
+        # Where all equations take part, as they do with groups, rows are their numbers.
+        numbers = block.rows if isinstance(rows, range) else [rows[r] for r in block.rows]
+        equations = self._equations.in_text_order(numbers)
         after = self._after(block)
         result = None
         if any(a in self._failed for a in after) or self._contested(equations):
@@ -132,8 +142,10 @@ class GroupRun:
             if failure.code in OF_CURVES:
                 # No start would help.
                 return
-        elif self._few_digits(np.array(result.values), np.array(result.errors)).any():
+        elif len(equations) < LARGE_BLOCK:
             self.diagnostics += trust_warnings(system, run)
+        else:
+            self.diagnostics += self._trust(run, equations, np.array(result.values), np.array(result.errors))
         self.diagnostics += start_note(system, run)
 
     def _after(self, block: Block) -> tuple[int, ...]:
@@ -192,6 +204,25 @@ class GroupRun:
         columns = np.array(block.columns, dtype=np.int64)
         self._value_array[columns] = result.values
         self._error_array[columns] = result.errors
+
+    def _trust(
+        self, run: BlockRun, equations: Numbers, values: NDArray[np.float64], errors: NDArray[np.float64]
+    ) -> list[Diagnostic]:
+        """As `trust_warnings` for a large block."""
+        few = np.flatnonzero(self._few_digits(values, errors))
+        if not len(few):
+            return []
+        with np.errstate(all="ignore"):
+            # The first of those with the fewest whole digits.
+            digits = np.floor(-np.log10(errors[few] / np.abs(values[few])))
+        position = int(few[np.argmin(np.where(np.isnan(digits), 0.0, np.maximum(digits, 0.0)))])
+        count = digits_of(float(values[position]), float(errors[position]))
+        if count >= FEW_DIGITS:
+            return []
+        system = self.prepared.system
+        _, firsts = np.unique(self._equations.statement[equations], return_index=True)
+        places = [system.equations[int(equations[i])].place for i in firsts]
+        return [few_digits_warning(system, run, count, position, places)]
 
     @staticmethod
     def _few_digits(values: NDArray[np.float64], errors: NDArray[np.float64]) -> NDArray[np.bool_]:

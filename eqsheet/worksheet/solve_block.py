@@ -394,6 +394,10 @@ def judged(
     """The solver's outcome, believed only where the equations evaluated afresh bear it out."""
     x = np.asarray(outcome.x, dtype=float)
     values = tuple(x.tolist())
+    factor = outcome.factor
+    if factor is not None:
+        # Too large to be kept with the solution.
+        outcome = replace(outcome, factor=None)
     failed = BlockResult(
         False,
         values,
@@ -420,7 +424,7 @@ def judged(
     else:
         assert problem is not None
         jacobian = problem.linearise(x)[1]
-    verdict = judge(residuals, sizes, bounds, jacobian, x, np.array(start.magnitude))
+    verdict = judge(residuals, sizes, bounds, jacobian, x, np.array(start.magnitude), factor)
     if not verdict.solved:
         return failed
     return BlockResult(
