@@ -133,6 +133,17 @@ def _step(interpolant: Interpolant, arguments: Sequence[float]) -> int:
         return len(interpolant.pieces)
 
 
+def conditions_met(formula: Formula, values: Callable[[int], float]) -> list[tuple[int, bool]]:
+    """The conditions that decide a formula at given values: (instruction, truth), in the order of the tape.
+
+    Conditions in a branch not taken are left out.
+    """
+    tape = formula.tape
+    results = evaluate(tape, [values(q) for q in formula.quantities], literal_values(formula))
+    reached = _reached(tape, results)
+    return sorted({tape.instructions[i][1]: truth for i, truth in reached.items()}.items())
+
+
 def _reached(tape: Tape, results: Sequence[Any]) -> Mapping[int, bool]:
     """The ``if`` instructions that the outputs pass through, with the truth of their conditions."""
     reached: dict[int, bool] = {}

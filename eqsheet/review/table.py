@@ -10,7 +10,7 @@ from eqsheet.review.folding import extremes, families, family_name, worst_limits
 from eqsheet.syntax.nodes import Guess, Reference, Statement
 from eqsheet.units.display import format_value
 from eqsheet.worksheet.own_line import own_line
-from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, Solution
+from eqsheet.worksheet.solution import BlockReport, BranchReport, LimitReport, QuantityValue, Solution
 
 MOST_LINES_NAMED = 3
 
@@ -31,10 +31,25 @@ def solution_lines(solution: Solution) -> list[str]:
         lines += in_columns(rows, numeric=1, indent="  " if title else "")
     if solution.limits:
         lines += ["", "Limits", *limit_lines(solution.limits)]
+    if solution.branches:
+        lines += ["", "Branches", *branch_lines(solution.branches)]
     off = off_lines(solution)
     if off:
         lines += ["", "Switched off", *off]
     return lines[1:] if lines and not lines[0] else lines
+
+
+def branch_lines(branches: Iterable[BranchReport]) -> list[str]:
+    """A line for each condition: whether it holds; members of a family that take the same branch are counted."""
+    members: dict[tuple[int | None, str, bool], list[str]] = {}
+    for branch in branches:
+        members.setdefault((branch.line, branch.text, branch.holds), []).append(branch.member)
+    rows = []
+    for (line, text, holds), names in members.items():
+        where = "" if line is None else f"line {line}"
+        own = names[0] if len(names) == 1 else f"{len(names)} members"
+        rows.append((text, "holds" if holds else "does not hold", where, own))
+    return in_columns(rows, indent="  ")
 
 
 def off_lines(solution: Solution) -> list[str]:

@@ -10,6 +10,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
 from eqsheet.syntax.nodes import Statement
 from eqsheet.worksheet.alike import fold_alike
 from eqsheet.worksheet.ambient_note import ambient_note
+from eqsheet.worksheet.branches_taken import branches_taken
 from eqsheet.worksheet.failure_messages import digits_of
 from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds, limits_outside_curves
 from eqsheet.worksheet.prepare import Prepared
@@ -60,6 +61,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         MappingProxyType(best),
         MappingProxyType(dict(timing)),
         prepared.statements,
+        () if run is None else branches_taken(prepared, run),
     )
 
 

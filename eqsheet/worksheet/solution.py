@@ -147,6 +147,32 @@ class BlockReport:
 
 
 @dataclass(frozen=True, slots=True)
+class BranchReport:
+    """How a condition of an ``if`` stands at the solution, and with it which branch is taken.
+
+    Attributes
+    ----------
+    statement : Statement
+    text : str
+        The condition as written; for one inside a definition the call that brings it in.
+    holds : bool
+        The branch after ``then`` is taken where it holds, else the other.
+    member : str
+        In a family or an instance, which member.
+    """
+
+    statement: Statement
+    text: str
+    holds: bool
+    member: str = ""
+
+    @property
+    def line(self) -> int | None:
+        """Number of its line, from 1."""
+        return self.statement.line.line if self.statement.source.numbered else None
+
+
+@dataclass(frozen=True, slots=True)
 class LimitReport:
     """How a limit stands at the solution.
 
@@ -201,6 +227,8 @@ class Solution(Mapping[str, QuantityValue]):
         Seconds spent in each stage.
     statements : tuple of Statement
         All statements of the worksheet as solved, those switched off included.
+    branches : tuple of BranchReport
+        Which branch each condition takes.
     """
 
     worksheet: str
@@ -212,6 +240,7 @@ class Solution(Mapping[str, QuantityValue]):
     best: Mapping[str, QuantityValue] = field(default_factory=dict)
     timing: Mapping[str, float] = field(default_factory=dict)
     statements: tuple[Statement, ...] = ()
+    branches: tuple[BranchReport, ...] = ()
 
     @property
     def solved(self) -> bool:
