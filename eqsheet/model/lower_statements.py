@@ -147,7 +147,13 @@ def lower_equation(
             )
             return _broken(work, names, node)
         reads_curve = formula.tape.instructions[other][0] in ("curve", "surface")
-        if work.first_unit is not None and not reads_curve:
+        # `w = 2*pi*9 kHz` is an angular speed, which a unit of frequency must not show.
+        reckoned_frequency = (
+            work.first_unit is not None
+            and work.first_unit.sense == "frequency"
+            and not isinstance(value_node, syntax.Number)
+        )
+        if work.first_unit is not None and not reads_curve and not reckoned_frequency:
             hints = ((known, work.first_unit),)
     item = EquationItem(formula, Place(0, node.start, node.end), known, value, tolerance, valid)
     return LoweredStatement(
