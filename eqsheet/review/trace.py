@@ -21,7 +21,9 @@ def trace_lines(solution: Solution) -> list[str]:
         if lines:
             lines.append("")
         where = ", ".join(map(str, block.lines))
-        lines.append(f"Block {block.number}: {', '.join(block.unknowns)} from line{'s' * (len(block.lines) != 1)} {where}")
+        lines.append(
+            f"Block {block.number}: {', '.join(block.unknowns)} from line{'s' * (len(block.lines) != 1)} {where}"
+        )
         for attempt in _attempts(block.outcome):
             lines += _attempt_lines(attempt, block)
     return lines
