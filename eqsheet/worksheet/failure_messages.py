@@ -16,9 +16,10 @@ from eqsheet.solve.explain import Facts, explain
 from eqsheet.solve.outcome import Status
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.display import default_unit
-from eqsheet.worksheet.beyond_bounds import Beyond, beyond_bounds
+from eqsheet.worksheet.beyond_bounds import LARGEST_BLOCK, Beyond, beyond_bounds
 from eqsheet.worksheet.curve_messages import curve_notes, outside_curve_diagnostic, stepped_diagnostic
 from eqsheet.worksheet.guesses import Guesses
+from eqsheet.worksheet.intervals import narrowed
 from eqsheet.worksheet.places import label_of, line_words, quoted
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known
@@ -91,6 +92,9 @@ def failure_diagnostic(
     headline = _HEADLINES.get(status, "no solution found")
     if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
         headline = _AT_MINIMUM
+    proof = writer.proof()
+    if proof >= 0:
+        headline = "there is no solution" + (" within the bounds" if writer.bounded() else "")
     message = f"{headline}: {quoted(names)} from {where}"
     labels = [label_of(system, places[worst], "the worst satisfied" if len(places) > 1 else "")]
     labels += writer.shut_out_by(beyond)
@@ -98,6 +102,7 @@ def failure_diagnostic(
     labels += [label_of(system, p) for p in others[:8]]
     notes = writer.at_best_point()
     notes += writer.found_beyond(beyond)
+    notes += writer.proven(proof)
     if facts is not None and facts.not_finite >= 0:
         notes += writer.not_finite(facts.not_finite)
     elif facts is not None:
@@ -112,6 +117,8 @@ def failure_diagnostic(
     help = _CURES.get(
         status, "give a start value near the solution (`near`), or check sign and size of the terms"
     )
+    if proof >= 0 and beyond is None:
+        help = "no start value helps: check sign and size of the terms, and the bounds and knowns they use"
     return error("no-solution", message, *labels, notes=tuple(notes), help=help)
 
 
@@ -169,6 +176,28 @@ class _Writer:
             *labels,
             help="widen the bound, or check the equation and the values it uses",
         )
+
+    def bounded(self) -> bool:
+        """Whether any unknown has bounds."""
+        return any(map(math.isfinite, (b for q in self.run.unknowns for b in self.guesses.bounds(q))))
+
+    def proof(self) -> int:
+        """Position of an equation that no values within the bounds satisfy, by carrying bounds through; else -1."""
+        return -1 if len(self.run.unknowns) > LARGEST_BLOCK else self._empty(self.formulas)
+
+    def _empty(self, formulas: Sequence[Formula]) -> int:
+        bounds = [self.guesses.bounds(q) for q in self.run.unknowns]
+        return narrowed(self.run.unknowns, formulas, self.known.values, self.known.errors, bounds).empty
+
+    def proven(self, equation: int) -> list[str]:
+        """That there is no solution, and by which line."""
+        if equation < 0:
+            return []
+        place = line_words(self.system, [self.system.equations[self.run.equations[equation]].place])
+        within = " within the bounds" if self.bounded() else ""
+        alone = self._empty(self.formulas[equation : equation + 1]) >= 0
+        rest = "" if alone else " with what the other lines leave"
+        return [f"this is certain: no values{within} satisfy {place}{rest}"]
 
     def beyond(self) -> Beyond | None:
         """A solution outside the bounds, if there is one."""

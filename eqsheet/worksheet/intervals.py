@@ -1,0 +1,261 @@
+"""Bounds carried through the equations of a block, forwards and backwards, until they narrow no more.
+
+Source: Benhamou, Goualard, Granvilliers and Puget, Revising hull and box consistency, Int. Conf. Logic
+Programming 1999, the algorithm HC4-revise: each expression is given a range from its parts, then each part from
+its expression. What is not monotone (a sine, a curve, a condition) passes on what is certain and nothing else.
+
+The ranges hold every solution within the bounds; where one becomes empty there is none.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass
+
+from eqsheet.model.branches import literal_values
+from eqsheet.model.tape import Formula, Instruction
+from eqsheet.worksheet.interval import (
+    EVERYTHING,
+    Interval,
+    hull,
+    increasing,
+    magnitude,
+    meet,
+    minus,
+    negated,
+    over,
+    plus,
+    raised,
+    root,
+    times,
+    widened,
+)
+
+# Sweeps over all equations; ranges that still narrow do so slowly.
+MOST_SWEEPS = 12
+# A range that loses less than this part of itself is not worth another sweep.
+_WORTH = 0.01
+
+
+@dataclass(frozen=True, slots=True)
+class Narrowed:
+    """Where the solutions within the bounds are.
+
+    Attributes
+    ----------
+    ranges : tuple of (float, float)
+        SI, by position of the unknowns.
+    empty : int
+        Position of the equation that no values in the ranges satisfy, so that there is no solution; else -1.
+    """
+
+    ranges: tuple[Interval, ...]
+    empty: int = -1
+
+
+def narrowed(
+    unknowns: Sequence[int],
+    formulas: Sequence[Formula],
+    values: Sequence[float],
+    errors: Sequence[float],
+    bounds: Sequence[Interval],
+) -> Narrowed:
+    """The bounds of the unknowns of a block, narrowed by its equations.
+
+    Parameters
+    ----------
+    unknowns : sequence of int
+        Quantity numbers.
+    values, errors : sequence of float
+        SI values by quantity number and how far they may be off; only those of no unknowns are read.
+    bounds : sequence of (float, float)
+        By position of the unknowns.
+    """
+    ranges = dict(zip(unknowns, bounds))
+    own = set(unknowns)
+    given = {
+        q: widened(values[q] - errors[q], values[q] + errors[q])
+        for formula in formulas
+        for q in formula.quantities
+        if q not in own
+    }
+    for _ in range(MOST_SWEEPS):
+        before = dict(ranges)
+        for position, formula in enumerate(formulas):
+            if not _revise(formula, given, ranges):
+                return Narrowed(tuple(before[q] for q in unknowns), position)
+        if not any(_much(before[q], ranges[q]) for q in unknowns):
+            break
+    return Narrowed(tuple(ranges[q] for q in unknowns))
+
+
+def _much(before: Interval, after: Interval) -> bool:
+    """Whether a range has narrowed by more than is not worth while."""
+    if before == after:
+        return False
+    width = before[1] - before[0]
+    return not math.isfinite(width) or after[1] - after[0] < (1.0 - _WORTH) * width
+
+
+def _revise(formula: Formula, given: Mapping[int, Interval], ranges: dict[int, Interval]) -> bool:
+    """Narrow the ranges by one equation; False where it holds nowhere in them."""
+    instructions = formula.tape.instructions
+    literals = literal_values(formula)
+    of: list[Interval] = []
+    for instruction in instructions:
+        if instruction[0] == "quantity":
+            quantity = formula.quantities[instruction[1]]
+            found: Interval | None = ranges[quantity] if quantity in ranges else given[quantity]
+        elif instruction[0] == "literal":
+            found = widened(literals[instruction[1]], literals[instruction[1]])
+        else:
+            found = _forwards(instruction, of)
+        if found is None:
+            return False
+        of.append(found)
+    left, right = formula.tape.outputs
+    both = meet(of[left], of[right])
+    if both is None:
+        return False
+    of[left] = of[right] = both
+    for index in range(len(instructions) - 1, -1, -1):
+        instruction = instructions[index]
+        if instruction[0] == "quantity" and formula.quantities[instruction[1]] in ranges:
+            ranges[formula.quantities[instruction[1]]] = of[index]
+        elif not _backwards(instruction, of[index], of):
+            return False
+    return True
+
+
+# --- from the parts to the whole --------------------------------------------------------------------------
+
+
+def _forwards(instruction: Instruction, of: Sequence[Interval]) -> Interval | None:
+    """Range of one expression from those of its parts; None where it has no value at all."""
+    operation, *rest = instruction
+    if operation == "const":
+        value = float(rest[0])
+        return widened(value, value)
+    if operation in _OF_TWO:
+        return _OF_TWO[operation](of[rest[0]], of[rest[1]])
+    if operation == "power":
+        return raised(of[rest[0]], float(rest[1]))
+    if operation in _RISING:
+        function, _, domain, _ = _RISING[operation]
+        return increasing(function, of[rest[0]], domain)
+    if operation in ("strip", "attach"):
+        unit = rest[1]
+        return increasing(unit.from_si if operation == "strip" else unit.to_si, of[rest[0]])
+    if operation in _CERTAIN:
+        return _CERTAIN[operation](of[rest[0]])
+    if operation == "if":
+        return hull(of[rest[1]], of[rest[2]])
+    return EVERYTHING
+
+
+_OF_TWO: Mapping[str, Callable[[Interval, Interval], Interval | None]] = {
+    "add": plus,
+    "sub": minus,
+    "mul": times,
+    "div": over,
+    "min": lambda a, b: (min(a[0], b[0]), min(a[1], b[1])),
+    "max": lambda a, b: (max(a[0], b[0]), max(a[1], b[1])),
+}
+_HALF_TURN = (-1.0, 1.0)
+_RIGHT_ANGLES = (-math.pi / 2, math.pi / 2)
+_POSITIVE = (0.0, math.inf)
+
+
+def _logarithm(of: Callable[[float], float]) -> Callable[[float], float]:
+    return lambda x: -math.inf if x == 0.0 else of(x)
+
+
+def _tangent(x: float) -> float:
+    # The double nearest to a right angle has a finite tangent.
+    return math.tan(x) if abs(x) < _RIGHT_ANGLES[1] else math.copysign(math.inf, x)
+
+
+def _power_of_ten(x: float) -> float:
+    return math.inf if x > 400.0 else float(10.0**x)
+
+
+# Functions that rise: themselves, their inverse, their domain and their range.
+_RISING: Mapping[str, tuple[Callable[[float], float], Callable[[float], float], Interval, Interval]] = {
+    "sqrt": (math.sqrt, lambda y: y * y, _POSITIVE, _POSITIVE),
+    "exp": (math.exp, _logarithm(math.log), EVERYTHING, _POSITIVE),
+    "ln": (_logarithm(math.log), math.exp, _POSITIVE, EVERYTHING),
+    "log10": (_logarithm(math.log10), _power_of_ten, _POSITIVE, EVERYTHING),
+    "sinh": (math.sinh, math.asinh, EVERYTHING, EVERYTHING),
+    "tanh": (math.tanh, math.atanh, EVERYTHING, _HALF_TURN),
+    "atan": (math.atan, _tangent, EVERYTHING, _RIGHT_ANGLES),
+    "asin": (math.asin, math.sin, _HALF_TURN, _RIGHT_ANGLES),
+}
+# What is certain of functions that do not rise throughout.
+_CERTAIN: Mapping[str, Callable[[Interval], Interval | None]] = {
+    "neg": negated,
+    "abs": magnitude,
+    "sin": lambda a: widened(-1.0, 1.0),
+    "cos": lambda a: widened(-1.0, 1.0),
+    "erf": lambda a: widened(-1.0, 1.0),
+    "sign": lambda a: (-1.0, 1.0),
+    "cosh": lambda a: increasing(math.cosh, magnitude(a)),
+    "acos": lambda a: None if meet(a, _HALF_TURN) is None else widened(0.0, math.pi),
+}
+
+
+# --- from the whole to the parts --------------------------------------------------------------------------
+
+
+def _backwards(instruction: Instruction, whole: Interval, of: list[Interval]) -> bool:
+    """Narrow the parts of one expression by its range; False where a part has no value left."""
+    operation, *rest = instruction
+    parts: dict[int, Interval | None] = {}
+    if operation in ("add", "sub", "mul", "div"):
+        a, b = rest
+        if a == b:
+            return True
+        first, second = _TURNED[operation](whole, of[a], of[b])
+        parts = {a: first, b: second}
+    elif operation == "power":
+        parts = {rest[0]: root(whole, float(rest[1]), of[rest[0]]) if rest[1] else EVERYTHING}
+    elif operation in _RISING:
+        _, inverse, domain, image = _RISING[operation]
+        back = increasing(inverse, whole, image)
+        parts = {rest[0]: None if back is None else meet(back, widened(*domain))}
+    elif operation in ("strip", "attach"):
+        unit = rest[1]
+        parts = {rest[0]: increasing(unit.to_si if operation == "strip" else unit.from_si, whole)}
+    elif operation == "neg":
+        parts = {rest[0]: negated(whole)}
+    elif operation == "abs":
+        parts = {rest[0]: hull(negated(whole), whole)}
+    for index, part in parts.items():
+        kept = None if part is None else meet(of[index], part)
+        if kept is None:
+            return False
+        of[index] = kept
+    return True
+
+
+def _of_product(whole: Interval, a: Interval, b: Interval) -> tuple[Interval | None, Interval | None]:
+    return _factor(whole, b), _factor(whole, a)
+
+
+def _factor(whole: Interval, other: Interval) -> Interval | None:
+    """What times `other` gives `whole`: anything where both may be zero."""
+    if other[0] <= 0.0 <= other[1] and whole[0] <= 0.0 <= whole[1]:
+        return EVERYTHING
+    return over(whole, other)
+
+
+def _of_quotient(whole: Interval, a: Interval, b: Interval) -> tuple[Interval | None, Interval | None]:
+    return times(whole, b), _factor(a, whole)
+
+
+_TURNED: Mapping[str, Callable[[Interval, Interval, Interval], tuple[Interval | None, Interval | None]]] = {
+    "add": lambda whole, a, b: (minus(whole, b), minus(whole, a)),
+    "sub": lambda whole, a, b: (plus(whole, b), minus(a, whole)),
+    "mul": _of_product,
+    "div": _of_quotient,
+}

@@ -1,0 +1,106 @@
+"""Bounds carried through equations hold every solution, and prove where there is none."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+
+import pytest
+from solving import only, solve
+
+import eqsheet
+from eqsheet.worksheet.interval import increasing, meet, over, plus, raised, reciprocal, root, times
+from eqsheet.worksheet.intervals import Narrowed, narrowed
+
+OPEN = (-math.inf, math.inf)
+POSITIVE = (0.0, math.inf)
+
+
+def narrow(
+    text: str, bounds: dict[str, tuple[float, float]]
+) -> tuple[Narrowed, dict[str, tuple[float, float]]]:
+    """The unknowns' ranges of a worksheet of equations in numbers, taken as one block."""
+    prepared = eqsheet.parse(text).prepare()
+    names: Sequence[str] = prepared.system.names
+    unknowns = range(len(names))
+    given = [bounds.get(name, OPEN) for name in names]
+    found = narrowed(unknowns, prepared.formulas, [math.nan] * len(names), [0.0] * len(names), given)
+    return found, dict(zip(names, found.ranges))
+
+
+def holds(interval: tuple[float, float], low: float, high: float) -> bool:
+    """Whether the interval is that from low to high, but for its widening."""
+    return interval == pytest.approx((low, high), rel=1e-9) and interval[0] <= low and interval[1] >= high
+
+
+def test_sums_and_products_narrow_positive_unknowns() -> None:
+    """From x + y = 5 with both positive, each is below 5; then x*y = 6 keeps each above 6/5."""
+    found, ranges = narrow("x + y = 5\nx*y = 6\n", {"x": POSITIVE, "y": POSITIVE})
+    assert found.empty == -1
+    assert ranges["x"][0] >= 1.199 and ranges["x"][1] <= 3.81
+    assert ranges["x"][0] <= 2.0 and ranges["x"][1] >= 3.0
+
+
+def test_monotone_functions_are_turned_back() -> None:
+    _, ranges = narrow("ln(x) = y\ny + z = 1\nsqrt(z) = w\n", {"w": (0.0, 2.0)})
+    assert holds(ranges["z"], 0.0, 4.0)
+    assert holds(ranges["y"], -3.0, 1.0)
+    assert holds(ranges["x"], math.exp(-3.0), math.e)
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "x^2 + y^2 = -1\nx - y = 0.5",
+        "y = x^2 + 2\ny = 1 - x^2",
+        "exp(x) + y = 1\ny = 2 + exp(x)",
+        "sin(x)*cos(y) = 1.2\nx + y = 1",
+        "y = sqrt(x)\nx = -2 - y",
+    ],
+)
+def test_what_has_no_solution_is_proven_to_have_none(text: str) -> None:
+    found, _ = narrow(text, {})
+    assert found.empty >= 0
+    assert only(solve(text), "no-solution").message.startswith("there is no solution")
+
+
+def test_nothing_is_proven_that_is_not_certain() -> None:
+    """The curves touch at x = 0; parallel lines are out of reach of ranges."""
+    assert narrow("y = x^2 + 1\ny = 1 - x^2\n", {})[0].empty == -1
+    assert narrow("x + y = 1\nx + y = 2\n", {})[0].empty == -1
+
+
+def test_the_message_says_what_is_certain_and_by_which_line() -> None:
+    found = only(solve("x^2 + y^2 = -1\nx - y = 0.5"), "no-solution")
+    assert "this is certain: no values satisfy line 1" in found.notes
+    assert found.help.startswith("no start value helps")
+
+
+def test_products_with_zero_and_infinity() -> None:
+    assert times((0.0, 0.0), OPEN) == (0.0, 0.0)
+    assert plus((-math.inf, 0.0), (0.0, math.inf)) == OPEN
+    assert times((1e-200, 1e-200), (1e-200, 1e-200))[1] > 0.0
+
+
+def test_quotients_by_what_holds_zero() -> None:
+    assert reciprocal((0.0, 0.0)) is None
+    assert over((1.0, 1.0), (-1.0, 1.0)) == OPEN
+    inverse = reciprocal((0.0, 2.0))
+    assert inverse is not None and holds((inverse[0], 1.0), 0.5, 1.0) and inverse[1] == math.inf
+
+
+def test_even_powers_have_roots_on_both_sides() -> None:
+    square = raised((-2.0, 1.0), 2.0)
+    assert square is not None and holds(square, 0.0, 4.0)
+    both = root((4.0, 9.0), 2.0, OPEN)
+    assert both is not None and holds(both, -3.0, 3.0)
+    right = root((4.0, 9.0), 2.0, POSITIVE)
+    assert right is not None and holds(right, 2.0, 3.0)
+    assert root((-9.0, -4.0), 2.0, OPEN) is None
+    odd = root((-8.0, 27.0), 3.0, OPEN)
+    assert odd is not None and holds(odd, -2.0, 3.0)
+
+
+def test_outside_its_domain_a_function_has_no_range() -> None:
+    assert increasing(math.sqrt, (-2.0, -1.0), POSITIVE) is None
+    assert meet((0.0, 1.0), (2.0, 3.0)) is None
