@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 
 from eqsheet.model.branches import conditions_met
+from eqsheet.model.specialise import conditions
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import Run
 from eqsheet.worksheet.solution import BranchReport
@@ -19,7 +20,7 @@ def branches_taken(prepared: Prepared, run: Run) -> tuple[BranchReport, ...]:
     found: dict[tuple[int, int], BranchReport] = {}
     for item in system.equations:
         formula = item.formula
-        if not any(instruction[0] == "if" for instruction in formula.tape.instructions):
+        if not conditions(formula.tape):
             continue
         if not all(math.isfinite(run.values[q]) for q in formula.quantities):
             continue
