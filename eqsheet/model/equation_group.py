@@ -19,8 +19,9 @@ from eqsheet.model.tape import Formula, Literal
 
 Array = NDArray[np.float64]
 
-# From this many members on a statement is kept as arrays; below, written out, it is faster and has all rights.
-LARGE_FAMILY = 2000
+# From this many members on a statement is kept as arrays; below, written out, it takes less time than importing
+# the library of sparse graphs.
+LARGE_FAMILY = 1000
 # Operations with branches or ranges, in which members differ.
 _DECIDED = frozenset(("if", "curve", "surface"))
 
