@@ -187,7 +187,7 @@ class _Writer:
 
     def _empty(self, formulas: Sequence[Formula]) -> int:
         bounds = [self.guesses.bounds(q) for q in self.run.unknowns]
-        return narrowed(self.run.unknowns, formulas, self.known.values, self.known.errors, bounds).empty
+        return narrowed(self.run.unknowns, formulas, self.known.values, bounds, self.known.errors).empty
 
     def proven(self, equation: int) -> list[str]:
         """That there is no solution, and by which line."""

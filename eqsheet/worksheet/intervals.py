@@ -58,8 +58,8 @@ def narrowed(
     unknowns: Sequence[int],
     formulas: Sequence[Formula],
     values: Sequence[float],
-    errors: Sequence[float],
     bounds: Sequence[Interval],
+    errors: Sequence[float] | None = None,
 ) -> Narrowed:
     """The bounds of the unknowns of a block, narrowed by its equations.
 
@@ -67,15 +67,17 @@ def narrowed(
     ----------
     unknowns : sequence of int
         Quantity numbers.
-    values, errors : sequence of float
-        SI values by quantity number and how far they may be off; only those of no unknowns are read.
+    values : sequence of float
+        SI values by quantity number; only those of no unknowns are read.
     bounds : sequence of (float, float)
         By position of the unknowns.
+    errors : sequence of float, optional
+        How far `values` may be off besides rounding.
     """
     ranges = dict(zip(unknowns, bounds))
     own = set(unknowns)
     given = {
-        q: widened(values[q] - errors[q], values[q] + errors[q])
+        q: _known(values[q], 0.0 if errors is None else errors[q])
         for formula in formulas
         for q in formula.quantities
         if q not in own
@@ -88,6 +90,10 @@ def narrowed(
         if not any(_much(before[q], ranges[q]) for q in unknowns):
             break
     return Narrowed(tuple(ranges[q] for q in unknowns))
+
+
+def _known(value: float, error: float) -> Interval:
+    return widened(value - error, value + error)
 
 
 def _much(before: Interval, after: Interval) -> bool:

@@ -19,6 +19,7 @@ from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.curve_ranges import Range, argument_ranges
 from eqsheet.worksheet.guesses import Guesses
+from eqsheet.worksheet.intervals import narrowed
 
 # What a quantity of a dimension is like in engineering, in SI, where nothing in the worksheet tells.
 TYPICAL: Mapping[str, float] = {
@@ -30,6 +31,8 @@ TYPICAL: Mapping[str, float] = {
 }
 # Where the equations make a start zero: small against what is typical, but not zero.
 NEAR_ZERO = 1e-3
+# In a larger block carrying bounds through the equations takes longer than it helps.
+MOST_NARROWED = 60
 # Golden section: multiples of it modulo 1 spread evenly without repeating, so that starts differ.
 GOLDEN_SECTION = 0.6180339887498949
 # Bounds of a wider ratio are halved in the logarithm.
@@ -88,6 +91,8 @@ def starting_values(
         position = unknowns.index(quantity)
         found[quantity] = _inside(NEAR_ZERO * _typical(dimensions[quantity], position), room, quantity)
     _propagate(unknowns, formulas, values, room, found)
+    if len(found) < len(unknowns):
+        room = _narrowed(unknowns, formulas, values, room)
     for position, quantity in enumerate(unknowns):
         if quantity not in found:
             blind.append(position)
@@ -128,6 +133,16 @@ class _Room:
             return value
         between = _between(*self.bounds(quantity), position)
         return value if between is None else between
+
+
+def _narrowed(
+    unknowns: Sequence[int], formulas: Sequence[Formula], values: Sequence[float], room: _Room
+) -> _Room:
+    """The room that bounds carried through the equations leave; as it is where there is no solution in it."""
+    if len(unknowns) > MOST_NARROWED:
+        return room
+    found = narrowed(unknowns, formulas, values, [room.bounds(q) for q in unknowns])
+    return room if found.empty >= 0 else _Room(room.guesses, dict(zip(unknowns, found.ranges)))
 
 
 def _between(low: float, high: float, position: int) -> float | None:

@@ -29,7 +29,7 @@ def test_the_solution_is_in_the_ranges(group: Entry, bounded: bool) -> None:
         values = [prepared.known_values.get(q, math.nan) for q in range(len(names))]
         bounds = [guesses.bounds(q) if bounded else (-math.inf, math.inf) for q in unknowns]
         formulas = [f for f in prepared.formulas if any(q in unknowns for q in f.quantities)]
-        found = narrowed(unknowns, formulas, values, [0.0] * len(names), bounds)
+        found = narrowed(unknowns, formulas, values, bounds)
         assert found.empty == -1, entry.name
         for quantity, (low, high) in zip(unknowns, found.ranges):
             value = solution[names[quantity]]

@@ -24,7 +24,7 @@ def narrow(
     names: Sequence[str] = prepared.system.names
     unknowns = range(len(names))
     given = [bounds.get(name, OPEN) for name in names]
-    found = narrowed(unknowns, prepared.formulas, [math.nan] * len(names), [0.0] * len(names), given)
+    found = narrowed(unknowns, prepared.formulas, [math.nan] * len(names), given)
     return found, dict(zip(names, found.ranges))
 
 
