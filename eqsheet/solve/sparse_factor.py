@@ -18,17 +18,20 @@ class SparseInverse:
     """Applies the inverse by ``@``, as a dense inverse does."""
 
     lu: Any
-    left: Vector
-    right: Vector
+    left: Vector | None
+    right: Vector | None
 
     def __matmul__(self, right: Vector) -> Vector:
+        if self.left is None or self.right is None:
+            return np.asarray(self.lu.solve(right))
         return np.asarray(self.right * self.lu.solve(right / self.left))
 
     def row(self, number: int) -> Vector:
         """One row (n,) of the inverse."""
         unit = np.zeros(self.lu.shape[0])
-        unit[number] = self.right[number]
-        return np.asarray(self.lu.solve(unit, trans="T") / self.left)
+        unit[number] = 1.0 if self.right is None else self.right[number]
+        row = np.asarray(self.lu.solve(unit, trans="T"))
+        return row if self.left is None else row / self.left
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,7 +60,7 @@ def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
     data /= rows[scaled.indices]
     scaled = sp.csc_matrix((data, scaled.indices, scaled.indptr), shape=scaled.shape)
     ones = np.ones(scaled.shape[0])
-    inverse, condition = _inverse(scaled, ones, ones)
+    inverse, condition = _inverse(scaled, None, None)
     # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up, first with the
     # sizes and then without them.
     for start in (ones, 1.0 / weights):
@@ -69,11 +72,13 @@ def factorise_sparse(jacobian: Matrix, weights: Vector) -> Factor:
     return Factor(scaled, weights, rows, inverse, condition)
 
 
-def _inverse(matrix: Any, left: Vector, right: Vector) -> tuple[SparseInverse | None, float]:
+def _inverse(matrix: Any, left: Vector | None, right: Vector | None) -> tuple[SparseInverse | None, float]:
     """Inverse of the matrix, found with rows divided by `left`, columns times `right`; its condition."""
     try:
-        data = matrix.data * np.repeat(right, np.diff(matrix.indptr)) / left[matrix.indices]
-        both = sp.csc_matrix((data, matrix.indices, matrix.indptr), shape=matrix.shape)
+        both = matrix
+        if left is not None and right is not None:
+            data = matrix.data * np.repeat(right, np.diff(matrix.indptr)) / left[matrix.indices]
+            both = sp.csc_matrix((data, matrix.indices, matrix.indptr), shape=matrix.shape)
         lu = splu(both, permc_spec=_ordering(both))
     except RuntimeError:
         # SuperLU's only way to say "exactly singular".

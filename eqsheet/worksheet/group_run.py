@@ -145,7 +145,10 @@ class GroupRun:
         elif len(equations) < LARGE_BLOCK:
             self.diagnostics += trust_warnings(system, run)
         else:
-            self.diagnostics += self._trust(run, equations, np.array(result.values), np.array(result.errors))
+            columns = np.array(block.columns, dtype=np.int64)
+            self.diagnostics += self._trust(
+                run, equations, self._value_array[columns], self._error_array[columns]
+            )
         self.diagnostics += start_note(system, run)
 
     def _after(self, block: Block) -> tuple[int, ...]:
