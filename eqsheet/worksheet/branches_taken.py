@@ -18,7 +18,8 @@ def branches_taken(prepared: Prepared, run: Run) -> tuple[BranchReport, ...]:
     """
     system = prepared.system
     found: dict[tuple[int, int], BranchReport] = {}
-    for item in system.equations:
+    # Groups hold no conditions.
+    for item in system.written:
         formula = item.formula
         if not conditions(formula.tape):
             continue

@@ -5,6 +5,8 @@ import math
 import pytest
 
 import eqsheet
+from eqsheet.model.equation_group import EquationGroup
+from eqsheet.model.system import EquationItem
 from eqsheet.solve.ladder import DEFAULT_BUDGET
 from eqsheet.worksheet.assemble import assemble
 from eqsheet.worksheet.prepare import prepare
@@ -171,3 +173,21 @@ def test_a_name_of_a_member_is_found_as_it_is_written_only() -> None:
     for name in ("u[3,4]", "u[03, 4]", "u[3]", "u[99, 1]", "u", "w[1]"):
         with pytest.raises(KeyError):
             arrays[name]
+
+
+@pytest.mark.parametrize("name", sorted(set(RESULTS) - {"conditions"}))
+def test_members_of_a_sound_worksheet_are_not_written_out(name: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    written: list[int] = []
+    item = EquationGroup.item
+
+    def noted(group: EquationGroup, entry: int) -> EquationItem:
+        written.append(entry)
+        return item(group, entry)
+
+    monkeypatch.setattr(EquationGroup, "item", noted)
+    sheet = eqsheet.parse(RESULTS[name])
+    prepared = prepare(sheet.document.statements, sheet.diagnostics, large_family=AS_ARRAYS)
+    assemble("<text>", prepared, run_blocks(prepared, DEFAULT_BUDGET), {})
+    assert prepared.system.groups
+    # One for the account of a block is nothing; one a member would be.
+    assert len(written) < 10
