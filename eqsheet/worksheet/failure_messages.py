@@ -97,9 +97,10 @@ def failure_diagnostic(
         headline = "there is no solution" + (" within the bounds" if writer.bounded() else "")
     message = f"{headline}: {quoted(names)} from {where}"
     labels = [label_of(system, places[worst], "the worst satisfied" if len(places) > 1 else "")]
-    labels += writer.shut_out_by(beyond)
     others = sorted((p for i, p in enumerate(places) if i != worst), key=lambda p: (p.statement, p.start))
-    labels += [label_of(system, p) for p in others[:8]]
+    shut_out = writer.shut_out_by(beyond)
+    # One bound is as likely at fault as an equation; several at once rather follow from one.
+    labels += shut_out[:1] + [label_of(system, p) for p in others[:8]] + shut_out[1:]
     notes = writer.at_best_point()
     notes += writer.found_beyond(beyond)
     notes += writer.proven(proof)
@@ -213,16 +214,19 @@ class _Writer:
         )
 
     def shut_out_by(self, beyond: Beyond | None) -> list[Label]:
-        """The bounds that a solution does not lie in."""
+        """The bounds that a solution does not lie in, those at zero last.
+
+        A bound at zero is seldom the slip: there it is rather an equation that makes a quantity negative.
+        """
         if beyond is None:
             return []
-        places = dict.fromkeys(
-            self.guesses.places[quantity, role]
-            for quantity in beyond.shut_out
-            for role in ("lower", "upper")
-            if (quantity, role) in self.guesses.places
-        )
-        return [label_of(self.system, place, "shuts a solution out") for place in places]
+        places: tuple[dict[Place, None], dict[Place, None]] = ({}, {})
+        for quantity in beyond.shut_out:
+            low, high = self.guesses.bounds(quantity)
+            role, bound = ("lower", low) if beyond.values[quantity] < low else ("upper", high)
+            if (quantity, role) in self.guesses.places:
+                places[bound == 0.0][self.guesses.places[quantity, role]] = None
+        return [label_of(self.system, p, "shuts a solution out") for group in places for p in group]
 
     def found_beyond(self, beyond: Beyond | None) -> list[str]:
         """Where the solution outside the bounds lies."""
