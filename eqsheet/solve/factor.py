@@ -12,8 +12,9 @@ from eqsheet.solve.problem import Matrix, Vector
 # Condition number of the scaled Jacobian beyond which a Newton step has no digit left (1/eps is 4.5e15,
 # less one digit for the elimination and one for the scaling).
 SINGULAR_CONDITION = 1e14
-# Rounds of rows and columns in turn; a chain of stages needs more than one, and few gain by more than three.
-EQUILIBRATION_ROUNDS = 3
+# Rounds of rows and columns in turn, taken only where a matrix looks singular. A chain of stages needs more than
+# one; a frame whose unknowns are scaled by up to 1e6 either way needs more than ten.
+EQUILIBRATION_ROUNDS = 20
 # Stands in for the size of an empty row.
 TINY = float(np.finfo(float).tiny)
 
