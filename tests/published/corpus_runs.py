@@ -129,7 +129,7 @@ def _compared(
     new: Mapping[str, str],
     scale: Mapping[str, float],
 ) -> Run:
-    """Right where both are solved to the same results, or neither is."""
+    """Right where both are solved to the same results in as many iterations, give or take one, or neither is."""
     if not (original.right and run.right):
         same = original.right == run.right
         return Run(run.name, same, run.false, "" if same else run.said or "solved now", run.seconds)
@@ -139,6 +139,12 @@ def _compared(
         allowed = max(SAME * abs(value.si), value.error)
         if abs(found - value.si) > allowed:
             return Run(run.name, False, run.false, f"{name}: {value.si!r} and {found!r}", run.seconds)
+    before = {tuple(sorted(new[n] for n in b.unknowns)): b.iterations for b in solution.blocks}
+    for block in again.blocks:
+        # A known that is rescaled becomes a block of its own, which was none before.
+        steps = before.get(tuple(sorted(block.unknowns)), block.iterations)
+        if len(block.unknowns) > 1 and abs(block.iterations - steps) > 1:
+            return Run(run.name, False, run.false, f"{steps} and {block.iterations} iterations", run.seconds)
     return run
 
 
