@@ -205,6 +205,8 @@ def _checked(
     bound = afresh.errors[left] + afresh.errors[right]
     if not residual <= max(ACCEPTABLE * size, bound):
         return None
+    if not math.isfinite(error) and _inputs_are_good(formula, (unknown,), known):
+        return None
     return BlockResult(
         inside,
         (value,),
@@ -214,6 +216,15 @@ def _checked(
         formulas=(formula,),
         outside=() if inside else (0,),
     )
+
+
+def _inputs_are_good(formula: Formula, unknowns: Sequence[int], known: Known) -> bool:
+    """Whether what the equation takes from elsewhere is known to some digits.
+
+    If so, a bound without end means that the equation makes noise of it, as a division by what is zero but for
+    rounding does: no digit of the result could be relied on.
+    """
+    return all(math.isfinite(known.errors[q]) for q in formula.quantities if q not in unknowns)
 
 
 def _within(value: float, low: float, high: float) -> bool:
@@ -418,6 +429,8 @@ def judged(
         residuals, sizes, bounds = problem.evidence(x)
     else:
         residuals, sizes, bounds = _evidence(formulas, dict(zip(unknowns, values)), known)
+        if any(not math.isfinite(b) and _inputs_are_good(f, unknowns, known) for b, f in zip(bounds, formulas)):
+            return failed
     if len(unknowns) == 1:
         _, slope = scalar_problem(formulas[0], unknowns[0], known.values, start).linearise(values[0])
         jacobian = np.array([[slope]])

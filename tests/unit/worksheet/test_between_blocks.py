@@ -67,3 +67,11 @@ def test_a_block_two_steps_before_is_reached() -> None:
     solution = solved("a^2 = 9\nm = a + 1\nb = sqrt(-m)\n")
     assert solution["a"].si == -3.0
     assert solution["b"].si == pytest.approx(math.sqrt(2.0), rel=1e-12)
+
+
+def test_a_value_without_one_good_digit_is_no_solution_and_the_other_root_is_taken() -> None:
+    """Wien's displacement law: the equation has a root at zero too, by which nothing can be divided."""
+    solution = solved("5*(1 - exp(-x)) = x\nb = const.h*const.c/(const.k_B*x)\n")
+    # CODATA: 2.897 771 955 e-3 m K.
+    assert solution["b"].si == pytest.approx(2.897771955e-3, rel=1e-9)
+    assert "other-solution-taken" in codes(solution)
