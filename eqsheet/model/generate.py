@@ -44,7 +44,8 @@ def float_function(tape: Tape) -> Function:
     callable
         ``f(q0, q1, ..., l0, l1, ...)``: all quantities, then all literals of the tape. It returns a tuple of
         the outputs, or the output itself where there is only one. It raises one of `DOMAIN_ERRORS` where an
-        instruction needed has no value.
+        instruction needed has no value, and where one has none that two branches share though neither is
+        taken; `safe_function` tells these apart.
     """
     code = _Code(tape, _SCALAR)
     return _compiled(_head(tape), code.lines(_packed), code.names(_scalar_names()))

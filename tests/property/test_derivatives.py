@@ -17,7 +17,7 @@ from tape_strategies import PLACE, QUANTITIES, tapes, values
 
 from eqsheet.model.derive import equation_partials, partials, residual_tape
 from eqsheet.model.evaluate import evaluate, evaluate_with_evidence
-from eqsheet.model.generate import array_function, float_function
+from eqsheet.model.generate import array_function, float_function, safe_function
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Tape, TapeBuilder
 
 ALL = tuple(range(QUANTITIES))
@@ -125,7 +125,7 @@ def test_code_of_derivatives_agrees_with_the_interpreter(tape: Tape, at: tuple[f
     if not all(math.isfinite(v) for v in expected):
         return
     slack = [1e-12 * evidence.sizes[i] + 4 * min(evidence.errors[i], 1.0) for i in derived.outputs]
-    for got in (float_function(derived)(*at), array_function(derived)(*[np.array([v, v]) for v in at])):
+    for got in (safe_function(derived)(*at), array_function(derived)(*[np.array([v, v]) for v in at])):
         for value, wanted, room in zip(got, expected, slack):
             assert np.all(np.abs(value - wanted) <= room + 1e-300)
 
