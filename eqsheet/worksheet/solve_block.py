@@ -429,7 +429,9 @@ def judged(
         residuals, sizes, bounds = problem.evidence(x)
     else:
         residuals, sizes, bounds = _evidence(formulas, dict(zip(unknowns, values)), known)
-        if any(not math.isfinite(b) and _inputs_are_good(f, unknowns, known) for b, f in zip(bounds, formulas)):
+        if any(
+            not math.isfinite(b) and _inputs_are_good(f, unknowns, known) for b, f in zip(bounds, formulas)
+        ):
             return failed
     if len(unknowns) == 1:
         _, slope = scalar_problem(formulas[0], unknowns[0], known.values, start).linearise(values[0])
