@@ -29,7 +29,7 @@ class Dimension(tuple[tuple[str, Fraction], ...]):
             tuple((base, Fraction(power)) for base, power in sorted(exponents.items()) if power != 0)
         )
 
-    def __mul__(self, other: Dimension) -> Dimension:  # type: ignore[override]
+    def __mul__(self, other: Dimension) -> Dimension:  # type: ignore[override]  # no repetition
         if not self or not other:
             return self or other
         return _combine(self, other, 1)
@@ -53,7 +53,7 @@ def _combine(a: Dimension, b: Dimension, sign: int) -> Dimension:
     exponents = dict(a)
     for base, power in b:
         exponents[base] = exponents.get(base, Fraction(0)) + sign * power
-    return Dimension.of(exponents)  # type: ignore[arg-type]
+    return Dimension.of(exponents)  # type: ignore[arg-type]  # dicts are invariant
 
 
 @lru_cache(maxsize=4096)
