@@ -185,8 +185,15 @@ class _Judge:
 
     def _terms(self, instruction: int) -> list[int]:
         """The instruction taken apart into its terms, down to where it is no sum any more."""
-        operands = self.operands_alike(instruction)
-        return [t for o in operands for t in self._terms(o)] if operands else [instruction]
+        terms: list[int] = []
+        waiting = [instruction]
+        while waiting:
+            inner = waiting.pop()
+            operands = self.operands_alike(inner)
+            waiting.extend(reversed(operands))
+            if not operands:
+                terms.append(inner)
+        return terms
 
     def operands_alike(self, instruction: int) -> list[int]:
         """Operands that have the instruction's own dimension; none for a product, a function or a leaf."""

@@ -6,6 +6,7 @@ import re
 from collections.abc import Sequence
 from fractions import Fraction
 
+from eqsheet.diagnostics.shortened import shortened
 from eqsheet.model.dimension_blame import Clash, Part
 from eqsheet.model.dimension_culprit import GRAVITY, SLIPS
 from eqsheet.model.infer_dimensions import DimensionResult
@@ -35,9 +36,9 @@ def cure_for(clash: Clash, formula: Formula, result: DimensionResult, names: Seq
         return gravity
     opposite = [cure for part in clash.innocent if (cure := _other_power(part, clash.excess, names))]
     if clash.bare < 0 and opposite and clash.against is not None:
-        return f"it would fit with {' or with '.join(opposite)} in `{text[slice(*clash.against)]}`"
+        return f"it would fit with {' or with '.join(opposite)} in `{shortened(text[slice(*clash.against)])}`"
     if clash.against is None and clash.expected == DIMENSIONLESS:
-        return f"divide `{guilty}` by a quantity or value that is {described(clash.excess)} too"
+        return f"divide `{shortened(guilty)}` by a quantity or value that is {described(clash.excess)} too"
     alone = len(clash.guilty) == 1 and clash.guilty[0].power == 1
     return _factor(guilty, missing, result, names, alone)
 
@@ -89,7 +90,7 @@ def _factor(
     inverse = [
         names[q] for q, dimension in enumerate(result.dimensions) if dimension == DIMENSIONLESS / missing
     ]
-    sentence = f"`{guilty}` lacks a factor in {missing.text}"
+    sentence = f"`{shortened(guilty)}` lacks a factor in {missing.text}"
     if 1 <= len(fitting) <= MOST_NAMED:
         return f"{sentence}, which {_listed(fitting)} would be"
     if 1 <= len(inverse) <= MOST_NAMED:

@@ -6,6 +6,7 @@ from collections.abc import Sequence
 from fractions import Fraction
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
+from eqsheet.diagnostics.shortened import shortened
 from eqsheet.model.dimension_blame import Clash, Part
 from eqsheet.model.dimension_cures import cure_for
 from eqsheet.model.infer_dimensions import DimensionResult, Link
@@ -78,7 +79,7 @@ class _Writer:
         code = CLASH if clash.against is not None else NOT_PLAIN
         return error(
             code,
-            self._headline(clash, _short(text[slice(*clash.place)])),
+            self._headline(clash, shortened(text[slice(*clash.place)])),
             *self._labels(clash),
             notes=self._notes(clash),
             help=cure_for(clash, formula, self.result, self.names, text),
@@ -86,13 +87,13 @@ class _Writer:
 
     def _headline(self, clash: Clash, guilty: str) -> str:
         if clash.found is None or (clash.against is not None and clash.expected is None):
-            other = _short(self.text(clash.formula)[slice(*clash.against)]) if clash.against else ""
+            other = shortened(self.text(clash.formula)[slice(*clash.against)]) if clash.against else ""
             versus = f" and `{other}`" if other else " and what is needed here"
             return f"`{guilty}`{versus} cannot be alike: they differ by a factor in {clash.excess.text}"
         found = _no_unit(clash)
         assert clash.expected is not None
         if clash.against is not None:
-            other = _short(self.text(clash.formula)[slice(*clash.against)])
+            other = shortened(self.text(clash.formula)[slice(*clash.against)])
             return f"`{other}` is {described(clash.expected)}, but `{guilty}` {found}"
         wanted = described(clash.expected)
         if clash.what == "exponent":
@@ -160,8 +161,13 @@ class _Writer:
                     quantity = formula.quantities[slot]
                     if self.result.dimensions[quantity] is None and quantity not in first:
                         first[quantity] = Label(self.statements[formula.statement].span(*place))
+        links: dict[int, list[Link]] = {}
+        for link in self.result.links:
+            links.setdefault(link.powers[0][0], []).append(link)
         return [
-            self._open(group, [first[q] for q in group if q in first])
+            self._open(
+                group, [first[q] for q in group if q in first], [x for q in group for x in links.get(q, ())]
+            )
             for group in self._groups()
             if not doubtful.intersection(group)
         ]
@@ -204,17 +210,17 @@ class _Writer:
             groups.setdefault(find(quantity), []).append(quantity)
         return list(groups.values())
 
-    def _open(self, group: list[int], labels: list[Label]) -> Diagnostic:
+    def _open(self, group: list[int], labels: list[Label], links: list[Link]) -> Diagnostic:
         names = [self.names[quantity] for quantity in group]
         shown = _listed(names)
         plural = "s" if len(names) > 1 else ""
-        notes = tuple(self._link(link) for link in self.result.links if link.powers[0][0] in group)
+        notes = tuple(self._link(link) for link in links[:MOST_NAMES])
         name = names[0]
         return warning(
             OPEN,
             f"nothing fixes the dimension{plural} of {shown}",
             *labels[:MOST_NAMES],
-            notes=notes[:MOST_NAMES],
+            notes=notes,
             help=f"give {'one of them' if plural else 'it'} a guess with a unit, `{name} near 1 m`, "
             f"or a shown unit, `show {name} in m`",
         )
@@ -246,9 +252,3 @@ def _no_unit(clash: Clash) -> str:
     if clash.literal and clash.found == DIMENSIONLESS:
         return "has no unit"
     return f"is {described(clash.found)}"
-
-
-def _short(text: str) -> str:
-    """The text on one line, its middle left out where it is long."""
-    flat = " ".join(text.split())
-    return flat if len(flat) <= 48 else f"{flat[:30]} ... {flat[-12:]}"

@@ -5,6 +5,7 @@ from __future__ import annotations
 from fractions import Fraction
 
 from eqsheet.syntax import nodes as syntax
+from eqsheet.syntax.spine import left_spine
 
 # Exponents beyond this size or denominator are not physics; they are computed in floats, which keeps exact
 # arithmetic on the worksheet's numbers bounded.
@@ -16,7 +17,10 @@ def exact_value(node: syntax.Expression) -> Fraction | None:
 
     Constant arithmetic in exponents is exact, so that ``x^(2/3)`` has an exact dimension.
     """
-    value = _exact(node)
+    return _within_physics(_exact(node))
+
+
+def _within_physics(value: Fraction | None) -> Fraction | None:
     if value is None or abs(value) > LARGEST_EXACT_EXPONENT or value.denominator > LARGEST_EXACT_EXPONENT:
         return None
     return value
@@ -30,16 +34,22 @@ def _exact(node: syntax.Expression) -> Fraction | None:
     if isinstance(node, syntax.Unary) and node.operator in "+-":
         operand = exact_value(node.operand)
         return operand if operand is None or node.operator == "+" else -operand
-    if isinstance(node, syntax.Binary):
-        a, b = exact_value(node.left), exact_value(node.right)
-        if a is None or b is None:
-            return None
-        if node.operator == "/":
-            return None if b == 0 else a / b
-        if node.operator == "^":
-            return None
-        return {"+": a + b, "-": a - b, "*": a * b}[node.operator]
+    if isinstance(node, syntax.Binary) and node.operator != "^":
+        first, operations = left_spine(node)
+        value = exact_value(first)
+        for operation in operations:
+            other = exact_value(operation.right)
+            if value is None or other is None:
+                return None
+            value = _within_physics(_applied(operation.operator, value, other))
+        return value
     return None
+
+
+def _applied(operator: str, a: Fraction, b: Fraction) -> Fraction | None:
+    if operator == "/":
+        return None if b == 0 else a / b
+    return {"+": a + b, "-": a - b, "*": a * b}[operator]
 
 
 def _decimal_exponent(text: str) -> int:

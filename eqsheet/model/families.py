@@ -15,6 +15,7 @@ import numpy as np
 
 from eqsheet.model.indexing import Codes, Domain, Indexing, IndexSlip, member_text, placed, subscript
 from eqsheet.syntax import nodes as syntax
+from eqsheet.syntax.spine import operands_in_run
 
 # One step of a path: a name, and how many subscripts stand behind it.
 Step: TypeAlias = tuple[str, int]
@@ -272,7 +273,7 @@ def _is_fixed(node: syntax.Expression, indices: Container[str]) -> bool:
         case syntax.Unary():
             return _is_fixed(node.operand, indices)
         case syntax.Binary():
-            return _is_fixed(node.left, indices) and _is_fixed(node.right, indices)
+            return all(_is_fixed(operand, indices) for operand in operands_in_run(node))
         case _:
             return False
 

@@ -6,9 +6,10 @@ A domain holds one array of numbers for each index, all equally long: one entry 
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
-from typing import TypeAlias
+from operator import add, mul, sub
+from typing import Any, TypeAlias
 
 import numpy as np
 from numpy.typing import NDArray
@@ -16,6 +17,7 @@ from numpy.typing import NDArray
 from eqsheet.model.findings import Finding
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.syntax import nodes as syntax
+from eqsheet.syntax.spine import left_spine
 
 Codes: TypeAlias = NDArray[np.int64]
 
@@ -162,6 +164,9 @@ def filtered(domain: Domain, condition: syntax.Expression | None, indexing: Inde
     return domain.where(np.broadcast_to(_holds(condition, domain, indexing), (domain.size,)))
 
 
+_ON_INDICES: Mapping[str, Callable[[Any, Any], Any]] = {"+": add, "-": sub, "*": mul}
+
+
 def subscript(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Indices:
     """What a subscript stands for at every entry of the domain.
 
@@ -186,16 +191,13 @@ def subscript(node: syntax.Expression, domain: Domain, indexing: Indexing) -> In
         case syntax.Unary() if node.operator in "+-":
             inner = _numbers(node.operand, domain, indexing)
             return Indices(inner if node.operator == "+" else -inner)
-        case syntax.Binary() if node.operator in "+-*":
-            left = _numbers(node.left, domain, indexing)
-            right = _numbers(node.right, domain, indexing)
-            return Indices(
-                left + right
-                if node.operator == "+"
-                else left - right
-                if node.operator == "-"
-                else left * right
-            )
+        case syntax.Binary() if node.operator in _ON_INDICES:
+            first, operations = left_spine(node)
+            if all(part.operator in _ON_INDICES for part in operations):
+                result = _numbers(first, domain, indexing)
+                for part in operations:
+                    result = _ON_INDICES[part.operator](result, _numbers(part.right, domain, indexing))
+                return Indices(result)
     raise IndexSlip(
         "subscript-form",
         "in brackets stand indices, members, whole-number knowns, and sums of them",

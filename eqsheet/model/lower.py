@@ -22,6 +22,7 @@ from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
 from eqsheet.model.written_nodes import canonical, names_in
 from eqsheet.syntax import nodes as syntax
+from eqsheet.syntax.spine import left_spine
 from eqsheet.units.constants import constant, constant_names
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.registry import UnitProblem
@@ -281,21 +282,27 @@ class Lowering:
         return self.builder.apply("neg", operand, place=self._place(node))
 
     def _binary(self, node: syntax.Binary) -> int:
-        place = self._place(node)
         if node.operator == "^":
-            base = self.value(node.left)
-            exponent = exact_value(node.right)
-            if exponent is not None:
-                return self.builder.apply("power", base, exponent, place=place)
-            power = self.value(node.right)
-            instruction = self.builder.instructions[power]
-            if instruction[0] == "const" and isinstance(instruction[1], Fraction):
-                # A parameter of a definition that stands for a whole number: `define f(x, n) = x^n`.
-                return self.builder.apply("power", base, instruction[1], place=place)
-            return self.builder.apply("pow", base, power, place=place)
-        operation = _ARITHMETIC[node.operator]
-        left = self.value(node.left)
-        return self.builder.apply(operation, left, self.value(node.right), place=place)
+            return self._power(node)
+        first, operations = left_spine(node)
+        result = self.value(first)
+        for part in operations:
+            other = self.value(part.right)
+            result = self.builder.apply(_ARITHMETIC[part.operator], result, other, place=self._place(part))
+        return result
+
+    def _power(self, node: syntax.Binary) -> int:
+        place = self._place(node)
+        base = self.value(node.left)
+        exponent = exact_value(node.right)
+        if exponent is not None:
+            return self.builder.apply("power", base, exponent, place=place)
+        power = self.value(node.right)
+        instruction = self.builder.instructions[power]
+        if instruction[0] == "const" and isinstance(instruction[1], Fraction):
+            # A parameter of a definition that stands for a whole number: `define f(x, n) = x^n`.
+            return self.builder.apply("power", base, instruction[1], place=place)
+        return self.builder.apply("pow", base, power, place=place)
 
     def _comparison(self, node: syntax.Comparison) -> int:
         place = self._place(node)

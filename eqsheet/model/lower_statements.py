@@ -24,6 +24,7 @@ from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, Toleranc
 from eqsheet.model.tape import Formula, Literal, extract
 from eqsheet.model.written_nodes import canonical
 from eqsheet.syntax import nodes as syntax
+from eqsheet.syntax.spine import operands_in_run
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.unit import Unit
 
@@ -410,7 +411,7 @@ def _has_names(node: syntax.Expression, indices: Container[str]) -> bool:
         case syntax.Unary():
             return _has_names(node.operand, indices)
         case syntax.Binary():
-            return _has_names(node.left, indices) or _has_names(node.right, indices)
+            return any(_has_names(operand, indices) for operand in operands_in_run(node))
         case syntax.Call():
             in_names = node.name not in FUNCTION_NAMES
             return in_names or any(_has_names(a, indices) for a in node.arguments)

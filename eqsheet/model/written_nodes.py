@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 
 from eqsheet.syntax import nodes as syntax
+from eqsheet.syntax.spine import left_spine
 
 
 def canonical(node: syntax.Expression, fixed: Mapping[str, tuple[int, str]]) -> str:
@@ -22,8 +23,12 @@ def canonical(node: syntax.Expression, fixed: Mapping[str, tuple[int, str]]) -> 
             return f"{node.dotted}[{inner}]" if inner else node.dotted
         case syntax.Unary():
             return f"{node.operator}({canonical(node.operand, fixed)})"
+        case syntax.Binary(operator="^"):
+            return f"({canonical(node.left, fixed)}^{canonical(node.right, fixed)})"
         case syntax.Binary():
-            return f"({canonical(node.left, fixed)}{node.operator}{canonical(node.right, fixed)})"
+            first, operations = left_spine(node)
+            rest = (f"{part.operator}{canonical(part.right, fixed)})" for part in operations)
+            return "".join(("(" * len(operations), canonical(first, fixed), *rest))
     return f"{node.start}:{node.end}"
 
 

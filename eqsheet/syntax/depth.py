@@ -5,8 +5,9 @@ from __future__ import annotations
 import re
 
 from eqsheet.syntax.bounds import DEEPEST_EXPRESSION
-from eqsheet.syntax.nodes import StatementNode
+from eqsheet.syntax.nodes import Binary, StatementNode
 from eqsheet.syntax.slip import Slip
+from eqsheet.syntax.spine import operands_in_run
 from eqsheet.syntax.walk import Node, children
 
 _BRACKETS = re.compile(r'"[^"\n]*"|#[^\n]*|[()\[\]]')
@@ -41,7 +42,7 @@ def refuse_deep_expression(text: str, statement: StatementNode) -> None:
     level: list[Node] = [statement]
     depth = 0
     while level:
-        level = [below for node in level for below in children(node)]
+        level = [below for node in level for below in _inside(node)]
         depth += 1
         if depth > DEEPEST_EXPRESSION:
             raise Slip(
@@ -49,5 +50,10 @@ def refuse_deep_expression(text: str, statement: StatementNode) -> None:
                 f"the expression has more than {DEEPEST_EXPRESSION} operations one inside the other",
                 0,
                 min(len(text), 40),
-                _CURE + "; a long sum over alike terms is written `sum(... for i in 1..N)`",
+                _CURE,
             )
+
+
+def _inside(node: Node) -> tuple[Node, ...]:
+    """The nodes one level deeper: a sum or product is one level, however many terms it has."""
+    return operands_in_run(node) if type(node) is Binary else children(node)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import fields
 from typing import Any
 
-from eqsheet.syntax.nodes import Document, Statement
+from eqsheet.syntax.nodes import Document
 
 _PLACES = frozenset(("start", "end", "operator_start", "name_end", "line", "source"))
 _meaningful: dict[type, tuple[str, ...]] = {}
@@ -27,12 +27,19 @@ def same_meaning(a: Any, b: Any) -> bool:
     >>> same_meaning(parsed_text("x=a*(b)").node, parsed_text("x  = a * b").node)
     True
     """
-    if isinstance(a, Document) and isinstance(b, Document):
-        return same_meaning(a.statements, b.statements)
-    if type(a) is not type(b):
-        return False
-    if type(a) is tuple:
-        return len(a) == len(b) and all(map(same_meaning, a, b))
-    if isinstance(a, Statement) or hasattr(a, "__dataclass_fields__"):
-        return all(same_meaning(getattr(a, name), getattr(b, name)) for name in _fields(type(a)))
-    return bool(a == b)
+    waiting = [(a, b)]
+    while waiting:
+        a, b = waiting.pop()
+        if type(a) is not type(b):
+            return False
+        if type(a) is tuple:
+            if len(a) != len(b):
+                return False
+            waiting.extend(zip(a, b))
+        elif type(a) is Document:
+            waiting.append((a.statements, b.statements))
+        elif hasattr(a, "__dataclass_fields__"):
+            waiting.extend((getattr(a, name), getattr(b, name)) for name in _fields(type(a)))
+        elif a != b:
+            return False
+    return True

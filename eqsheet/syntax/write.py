@@ -22,6 +22,7 @@ from eqsheet.syntax.nodes import (
     Text,
     Unary,
 )
+from eqsheet.syntax.spine import left_spine
 
 # How tightly an expression holds together, loosest first; one that is looser than its place gets a bracket.
 _CONDITIONAL, _OR, _AND, _NOT, _COMPARISON, _SUM, _PRODUCT, _SIGN, _POWER, _ATOM = range(10)
@@ -78,12 +79,16 @@ def _binary(node: Binary) -> tuple[str, int]:
         if type(node.right) is Number and node.right.unit is not None:
             exponent = f"({exponent})"
         return f"{base}^{exponent}", _POWER
-    binding = _BINDING[operator]
-    left = _written(node.left, binding)
-    right = _written(node.right, binding + 1)
-    if binding == _SUM or (_ends_in_unit(node.left, left) and _UNIT_GOES_ON.match(right)):
-        return f"{left} {operator} {right}", binding
-    return f"{left}{operator}{right}", binding
+    first, operations = left_spine(node)
+    parts = [_written(first, _BINDING[operations[0].operator])]
+    for operation, above in zip(operations, (*operations[1:], None)):
+        binding = _BINDING[operation.operator]
+        right = _written(operation.right, binding + 1)
+        apart = binding == _SUM or (_ends_in_unit(operation.left, parts[-1]) and _UNIT_GOES_ON.match(right))
+        parts += [f" {operation.operator} " if apart else operation.operator, right]
+        if above is not None and binding < _BINDING[above.operator]:
+            parts = [f"({''.join(parts)})"]
+    return "".join(parts), _BINDING[operator]
 
 
 def _ends_in_unit(node: Expression, text: str) -> bool:

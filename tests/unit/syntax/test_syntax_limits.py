@@ -15,7 +15,9 @@ HUGE = {
     "9,000 nested brackets": ("x = " + "(" * 9000 + "1" + ")" * 9000, "nested-too-deeply"),
     "9,000 open brackets": ("x = " + "(" * 9000, "nested-too-deeply"),
     "a line of 100,000 characters": ("x = " + "a + " * 25000 + "a", "statement-too-long"),
-    "a long sum": ("x = " + "a+" * 5000 + "a", "nested-too-deeply"),
+    "a sum of sums": ("x = " + "a+(" * 5000 + "a" + ")" * 5000, "statement-too-long"),
+    "a sum of sums of sums": ("x = " + "a+(" * 4000 + "a" + ")" * 4000, "nested-too-deeply"),
+    "brackets to the left": ("x = " + "(" * 4000 + "a" + "+a)" * 4000, "nested-too-deeply"),
     "a chain of powers": ("x = " + "2^" * 3000 + "2", "nested-too-deeply"),
     "a chain of signs": ("x = " + "-" * 5000 + "a", "nested-too-deeply"),
     "a chain of conditions": ("x = " + "if a<b then 1 else " * 800 + "1", "nested-too-deeply"),
@@ -43,7 +45,16 @@ def test_reading_stops_after_many_broken_statements() -> None:
 
 def test_deepest_allowed_expression_is_read() -> None:
     document, found = parse_document(
-        Source("sheet", "x = " + "(" * 150 + "a" + ")" * 150 + "\ny = " + "a+" * 190 + "a")
+        Source("sheet", "x = " + "(" * 150 + "a" + ")" * 150 + "\ny = " + "2^" * 190 + "a")
+    )
+    assert not found
+    assert len(document.statements) == 2
+
+
+def test_terms_side_by_side_are_not_nested() -> None:
+    """A sum or product is as deep as its deepest operand, however many it has."""
+    document, found = parse_document(
+        Source("sheet", "x = " + "a+" * 5000 + "a\ny = " + "a*b - " * 3000 + "(a + b)/c")
     )
     assert not found
     assert len(document.statements) == 2
