@@ -13,12 +13,14 @@ from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.model.branches import literal_values
+from eqsheet.model.dimension_of import dimensions_of
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.families import FamilyReference
 from eqsheet.model.findings import Finding
 from eqsheet.model.lower import FUNCTION_NAMES, Lowering, Poisoned, kind_of
+from eqsheet.model.no_value import no_value
 from eqsheet.model.outside_curve import HELP as OUTSIDE_CURVE_HELP
-from eqsheet.model.outside_curve import outside_curve
+from eqsheet.model.outside_curve import outside_curve, written
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable
 from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
 from eqsheet.model.tape import Formula, Literal, extract
@@ -26,6 +28,7 @@ from eqsheet.model.written_nodes import canonical
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import operands_in_run
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
+from eqsheet.units.display import default_unit
 from eqsheet.units.unit import Unit
 
 _PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
@@ -138,14 +141,7 @@ def lower_equation(
                     Finding("outside-curve", outside.message, *place, help=OUTSIDE_CURVE_HELP)
                 )
                 return _broken(work, names, node)
-            work.findings.append(
-                Finding(
-                    "value-not-finite",
-                    f"the value of `{work.text[target.start : target.end]}` is not a finite number",
-                    node.start,
-                    node.end,
-                )
-            )
+            work.findings.append(_without_value(extract(formula, (other,)), target, work.text, context))
             return _broken(work, names, node)
         reads_curve = formula.tape.instructions[other][0] in ("curve", "surface")
         # `w = 2*pi*9 kHz` is an angular speed, which a unit of frequency must not show.
@@ -165,6 +161,25 @@ def lower_equation(
         curve_hints=tuple(_units_of_curves(formula)) if context.curves else (),
         uses_gauge=uses_gauge(work),
         findings=tuple(work.findings),
+    )
+
+
+def _without_value(value: Formula, target: syntax.Reference, line: str, context: Context) -> Finding:
+    """That the value of a known is not finite, and why."""
+    values = evaluate(value.tape, (), literal_values(value))
+    found = no_value(value, values, line)
+    assert found is not None, "called for a value that is not finite"
+    dimensions = dimensions_of(value, ())
+    notes = tuple(
+        f"`{text}` is {written(values[i], default_unit(dimensions[i] or DIMENSIONLESS, 'plain', context.unit_table))}"
+        for i, text in found.operands
+    )
+    return Finding(
+        "value-not-finite",
+        f"`{line[target.start : target.end]}` has no value: {found.reason}",
+        found.start,
+        found.end,
+        notes=notes,
     )
 
 

@@ -89,7 +89,7 @@ def _message(interpolant: Interpolant, position: int, value: float) -> str:
 def written(value: float, unit: Unit | None) -> str:
     """An SI value in a unit, as a worksheet has it."""
     number = _number(value, unit, _DIGITS)
-    if unit is None or unit.text == "1":
+    if unit is None or unit.text in ("", "1"):
         return number
     return f"{number}%" if unit.text == "%" else f"{number} {unit.text}"
 

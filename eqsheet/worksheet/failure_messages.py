@@ -9,7 +9,8 @@ from typing import TYPE_CHECKING
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note, warning
 from eqsheet.model.branches import literal_values
 from eqsheet.model.dimension_of import dimensions_of
-from eqsheet.model.evaluate import evaluate, first_nonfinite
+from eqsheet.model.evaluate import evaluate
+from eqsheet.model.no_value import no_value
 from eqsheet.model.system import EquationSystem, Place
 from eqsheet.model.tape import Formula
 from eqsheet.solve.explain import Facts, explain
@@ -300,13 +301,14 @@ class _Writer:
     def not_finite(self, equation: int) -> list[str]:
         """The first part of the equation that has no value."""
         formula = self.result.formulas[equation]
-        found = first_nonfinite(formula.tape, self._evaluate(formula))
+        found = no_value(formula, self._evaluate(formula), self._line(formula))
         if found is None:
             return []
-        start, end = formula.places[found]
-        text = self.system.statements[formula.statement].line.text[start:end]
         place = line_words(self.system, [self.system.equations[self.run.equations[equation]].place])
-        return [f"{place}: `{text}` has no finite value there"]
+        return [f"{place}: there {found.reason}"]
+
+    def _line(self, formula: Formula) -> str:
+        return self.system.statements[formula.statement].line.text
 
     def without_value(self, names: Sequence[str]) -> Diagnostic | None:
         """A quantity set to what has no value; None for any other failure."""
@@ -314,12 +316,13 @@ class _Writer:
             return None
         formula = self.result.formulas[0]
         inputs = [1.0 if q in self.own else self.known.values[q] for q in formula.quantities]
-        found = first_nonfinite(formula.tape, evaluate(formula.tape, inputs, literal_values(formula)))
+        values = evaluate(formula.tape, inputs, literal_values(formula))
+        found = no_value(formula, values, self._line(formula))
         if found is None:
             return None
         statement = self.system.statements[formula.statement]
-        start, end = formula.places[found]
-        text = " ".join(statement.line.text[start:end].split())
+        units = self._units(formula)
+        parts = tuple(f"`{text}` is {units[i](values[i])}" for i, text in found.operands)
         others = [
             f"{self.system.names[q]} = {self.value(q, self.known.values[q])}"
             for q in formula.quantities
@@ -327,9 +330,9 @@ class _Writer:
         ]
         return error(
             "no-solution",
-            f"`{names[0]}` has no value: `{text}` is not a finite number",
-            Label(statement.span(start, end)),
-            notes=(f"here {', '.join(others)}",) if others else (),
+            f"`{names[0]}` has no value: {found.reason}",
+            Label(statement.span(found.start, found.end)),
+            notes=(*parts, *((f"here {', '.join(others)}",) if others else ())),
             help="check the values it uses, and the lines they come from",
         )
 

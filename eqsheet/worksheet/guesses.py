@@ -10,8 +10,9 @@ from functools import lru_cache
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
 from eqsheet.model.branches import quantities_under
 from eqsheet.model.evaluate import evaluate
+from eqsheet.model.no_value import no_value
 from eqsheet.model.system import EquationSystem, GuessItem, Place
-from eqsheet.model.tape import Tape
+from eqsheet.model.tape import Formula, Tape
 from eqsheet.worksheet.curve_messages import outside_curve_diagnostic
 from eqsheet.worksheet.places import quoted, span_of
 
@@ -102,9 +103,22 @@ def values_of_guess(
         if outside is not None:
             diagnostics.append(outside)
             return ()
-        diagnostics.append(error("value-not-finite", "the guess is not a finite number", here))
+        diagnostics.append(_without_value(system, formula, values))
         return ()
     return found
+
+
+def _without_value(system: EquationSystem, formula: Formula, values: Sequence[float]) -> Diagnostic:
+    """That a guess has no finite value, and why."""
+    statement = system.statements[formula.statement]
+    part = no_value(formula, values, statement.line.text)
+    assert part is not None, "called for a guess that is not finite"
+    return error(
+        "value-not-finite",
+        f"the guess has no value: {part.reason}",
+        Label(statement.span(part.start, part.end)),
+        help="check the values it uses",
+    )
 
 
 @lru_cache(maxsize=4096)
