@@ -15,13 +15,13 @@ import math
 from collections.abc import Callable, Sequence
 from fractions import Fraction
 from functools import lru_cache
+from itertools import accumulate
 from typing import Any
 
-from eqsheet.model.derive import jacobian
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.functions import ALL_BINARY_FUNCTIONS, ALL_UNARY_FUNCTIONS, BINARY, UNARY, as_float
 from eqsheet.model.interpolant import Interpolant
-from eqsheet.model.simplify import Simplifier, uses
+from eqsheet.model.simplify import uses
 from eqsheet.model.tape import Tape, operands_of
 
 Function = Callable[..., Any]
@@ -110,73 +110,40 @@ def array_function(tape: Tape) -> Function:
     return _compiled(_head(tape), lines, code.names(_array_names()))
 
 
-def block_functions(
-    equations: Sequence[tuple[Tape, tuple[int, ...]]], unknowns: Sequence[int]
-) -> tuple[Function, tuple[int, ...]]:
-    """All residuals of a small block and its dense Jacobian as one function.
-
-    A call takes a third of the time of one call for each equation (tests/benchmarks/test_codegen_speed.py),
-    but the Jacobian has an entry for each equation and unknown: meant for blocks of up to some tens of
-    unknowns.
+def grouped_function(tape: Tape, unknowns: int, groups: Sequence[int], extra: int = 0) -> Function:
+    """The tape as a function of sequences, with its outputs in groups.
 
     Parameters
     ----------
-    equations : sequence of (Tape, tuple of int)
-        For each equation its tape with the outputs (left, right), and the numbers of the quantities it takes.
-    unknowns : sequence of int
-        Numbers of the quantities to solve for, in the order of x.
+    tape : Tape
+    unknowns : int
+        The first so many quantities are the first argument.
+    groups : sequence of int
+        How many of the outputs each tuple of the result holds, in order; a single one is the result itself.
+    extra : int
+        The last so many quantities are a third argument; 0 for none.
 
     Returns
     -------
-    function : callable
-        ``f(x, p)`` for sequences of floats x (the unknowns) and p, giving ``(residuals, jacobian)``: a tuple
-        of left - right for each equation, and a tuple of the derivatives row by row. Raises one of
-        `DOMAIN_ERRORS`.
-    parameters : tuple of int
-        Numbers of the known quantities at the head of p; the literals of each equation follow, equation by
-        equation.
+    callable
+        ``f(x, p)`` or ``f(x, p, e)``: x the unknowns, p all other quantities and then the literals. It raises one
+        of `DOMAIN_ERRORS`, as `float_function`.
     """
-    place = {number: i for i, number in enumerate(unknowns)}
-    parameters: dict[int, int] = {}
-    shapes = []
-    for tape, quantities in equations:
-        slots = []
-        for number in quantities:
-            if number not in place:
-                place[number] = len(unknowns) + len(parameters)
-                parameters[number] = len(parameters)
-            slots.append(place[number])
-        shapes.append((tape, tuple(slots)))
-    return _block_function(tuple(shapes), len(unknowns), len(parameters)), tuple(parameters)
+    known = tape.quantities - extra
+    arguments = {
+        "x": [f"q{k}" for k in range(unknowns)],
+        "p": [f"q{k}" for k in range(unknowns, known)] + [f"l{k}" for k in range(tape.literals)],
+        "e": [f"q{k}" for k in range(known, tape.quantities)],
+    }
+    ends = list(accumulate(groups))
 
+    def grouped(texts: list[str]) -> str:
+        return ",".join([_tuple(texts[end - size : end]) for end, size in zip(ends, groups)])
 
-@lru_cache(maxsize=MEMORY)
-def _block_function(shapes: tuple[tuple[Tape, tuple[int, ...]], ...], unknowns: int, known: int) -> Function:
-    writer = Simplifier()
-    roots = []
-    literals = 0
-    for tape, slots in shapes:
-        new = writer.copy(
-            tape,
-            [writer.put("quantity", k) for k in slots],
-            [writer.put("literal", literals + k) for k in range(tape.literals)],
-        )
-        literals += tape.literals
-        roots.append(writer.sub(new[tape.outputs[0]], new[tape.outputs[1]]))
-    slopes = jacobian(writer, roots, range(unknowns))
-    tape = writer.tape((*roots, *slopes), unknowns + known, literals)
-
-    def pair(texts: list[str]) -> str:
-        return f"{_tuple(texts[: len(roots)])},{_tuple(texts[len(roots) :])}"
-
-    lines = []
-    if unknowns:
-        lines.append(f"{_tuple([f'q{k}' for k in range(unknowns)])}=x")
-    rest = [f"q{k}" for k in range(unknowns, unknowns + known)] + [f"l{k}" for k in range(literals)]
-    if rest:
-        lines.append(f"{_tuple(rest)}=p")
+    lines = [f"{_tuple(names)}={argument}" for argument, names in arguments.items() if names]
     code = _Code(tape, _SCALAR)
-    return _compiled("x,p", lines + code.lines(pair), code.names(_scalar_names()))
+    head = "x,p,e" if extra else "x,p"
+    return _compiled(head, lines + code.lines(grouped), code.names(_scalar_names()))
 
 
 # --- writing ----------------------------------------------------------------------------------------------

@@ -51,4 +51,4 @@ def deflated(problem: Problem, roots: Sequence[Vector]) -> Problem:
         product, _ = factor(x)
         return np.asarray(product * problem.sizes(x))
 
-    return replace(problem, residual=residual, linearise=linearise, sizes=sizes)
+    return replace(problem, residual=residual, linearise=linearise, sizes=sizes, written=None)

@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
+from typing import NamedTuple
 
-from eqsheet.solve.factor import Factor, smallest_singular_vectors
+import numpy as np
+
+from eqsheet.solve.factor import Factor, factorise, smallest_singular_vectors
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
@@ -22,6 +24,37 @@ from eqsheet.solve.termination import (
     underflown,
 )
 from eqsheet.solve.trail import Trail
+
+# The norm of the damping weighs no unknown against less than this part of its typical size.
+WEIGHT_FLOOR = 0.1
+# Of the 52 bits of a double so many are cleared before the last correction: eleven digits stay, and one step of
+# Newton's method doubles them.
+CLEARED = (1 << 16) - 1
+HALF_OF_CLEARED = 1 << 15
+
+
+class _Rest(NamedTuple):
+    """A point where an iteration has come to rest.
+
+    Attributes
+    ----------
+    x, residual : ndarray (n,)
+    jacobian : ndarray (n, n)
+        At x, or one last correction before it.
+    factor : Factor
+        Of that Jacobian.
+    scaled : float
+        Largest residual relative to `sizes`.
+    sizes : ndarray (n,)
+        ``sum_j |J_ij| |x_j|``.
+    """
+
+    x: Vector
+    residual: Vector
+    jacobian: Matrix
+    factor: Factor
+    scaled: float
+    sizes: Vector
 
 
 def finish(
@@ -46,14 +79,66 @@ def finish(
         How many of the last steps near the root were not much shorter than the one before, which betrays a
         multiple root that row scaling hides from the condition number.
     """
+    rest = None if hasattr(jacobian, "tocsc") else _from_rounded_point(problem, interior, x)
+    if rest is None:
+        rest = _corrected(problem, interior, x, residual, jacobian, factor)
+    return _concluded(problem, interior, trail, rest, slow_steps)
+
+
+def finish_plainly(
+    problem: Problem, interior: Interior, trail: Trail, x: Vector, slow_steps: int
+) -> Outcome | None:
+    """As `finish`, None where the point is not as near to a root as a plain way leads."""
+    rest = _from_rounded_point(problem, interior, x)
+    return None if rest is None else _concluded(problem, interior, trail, rest, slow_steps)
+
+
+def _from_rounded_point(problem: Problem, interior: Interior, x: Vector) -> _Rest | None:
+    """One more correction from x rounded to some digits; None where it does not end at rounding level.
+
+    Ways that meet at a root differ in their last digits. From the rounded point all of them go on alike, so that
+    the way, and with it guesses, scales and the order of lines, leaves no trace in the result.
+    """
+    near = ((x.view(np.int64) + HALF_OF_CLEARED) & ~CLEARED).view(np.float64)
+    if not interior.contains(near):
+        return None
+    residual, jacobian = problem.linearise(near)
+    factor = weighted_factor(problem, near, jacobian)
+    if factor is None:
+        return None
+    polished, cut = interior.cut(near, -factor.weights * factor.solve(residual), 0.0)
+    if cut >= 0:
+        return None
+    residual = problem.residual(polished)
+    sizes = jacobian_sizes(polished, jacobian)
+    scaled = scaled_norm(residual, sizes)
+    return _Rest(polished, residual, jacobian, factor, scaled, sizes) if scaled <= SURE else None
+
+
+def weighted_factor(problem: Problem, x: Vector, jacobian: Matrix) -> Factor | None:
+    """The Jacobian factorised in the size of the unknowns, none of which counts as less than a part of its typical
+    size; None where it is not finite."""
+    if not np.isfinite(jacobian).all():
+        return None
+    return factorise(jacobian, np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude))
+
+
+def _corrected(
+    problem: Problem, interior: Interior, x: Vector, residual: Vector, jacobian: Matrix, factor: Factor
+) -> _Rest:
+    """One more correction if it improves the residuals."""
     sizes = jacobian_sizes(x, jacobian)
-    step = -factor.weights * factor.solve(residual)
-    polished, cut = interior.cut(x, step, 0.0)
+    polished, cut = interior.cut(x, -factor.weights * factor.solve(residual), 0.0)
     if cut < 0 and residual.any():
         improved = problem.residual(polished)
         if scaled_norm(improved, sizes) <= scaled_norm(residual, sizes):
             x, residual = polished, improved
-    scaled = scaled_norm(residual, sizes)
+    return _Rest(x, residual, jacobian, factor, scaled_norm(residual, sizes), sizes)
+
+
+def _concluded(problem: Problem, interior: Interior, trail: Trail, rest: _Rest, slow_steps: int) -> Outcome:
+    """The judgement of a point."""
+    x, residual, jacobian, factor, scaled, sizes = rest
     sure = trail.contracting and scaled <= SURE
     if not sure:
         sizes = equation_sizes(problem, x, jacobian)
@@ -65,13 +150,13 @@ def finish(
     if believed and underflown(problem, x, factor):
         believed = False
     if not believed:
+        step = -factor.weights * factor.solve(residual)
         return give_up(problem, interior, trail, step, factor)
     kind = kind_of_root(problem, x, scaled, sizes, factor)
     if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:
         kind = Status.DOUBLE
     if kind is Status.CONVERGED:
-        found = trail.close(kind, x, scaled, interior.resting(x))
-        return replace(found, factor=factor) if hasattr(jacobian, "tocsc") else found
+        return trail.close(kind, x, scaled, interior.resting(x), factor=factor)
     _, left, right = smallest_singular_vectors(factor.matrix)
     return trail.close(kind, x, scaled, interior.resting(x), tuple(left.tolist()), tuple(right.tolist()))
 

@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from math import inf
+
 import numpy as np
 
 from eqsheet.solve.problem import Problem, Vector
@@ -27,17 +30,25 @@ class Interior:
         Whether there is any bound at all; where not, every method is the identity.
     """
 
-    __slots__ = ("bounded", "lower", "magnitude", "upper")
+    __slots__ = ("_bounds", "bounded", "lower", "magnitude", "upper")
 
     def __init__(self, problem: Problem) -> None:
         self.lower = problem.lower
         self.upper = problem.upper
         self.magnitude = problem.magnitude
         self.bounded = bool((self.lower > -np.inf).any() or (self.upper < np.inf).any())
+        self._bounds: list[tuple[int, float, float]] | None = None
 
     def contains(self, x: Vector) -> bool:
         """Whether x lies strictly inside."""
         return bool(((self.lower < x) & (x < self.upper)).all())
+
+    def holds(self, x: Sequence[float]) -> bool:
+        """As `contains`, for plain floats."""
+        if self._bounds is None:
+            both = enumerate(zip(self.lower.tolist(), self.upper.tolist()))
+            self._bounds = [(i, low, high) for i, (low, high) in both if low > -inf or high < inf]
+        return all(low < x[i] < high for i, low, high in self._bounds)
 
     def enter(self, x: Vector) -> Vector:
         """The point itself if inside, else moved in: never onto a bound."""

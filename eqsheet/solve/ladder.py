@@ -16,6 +16,7 @@ from eqsheet.solve.problem import Problem, ScalarProblem, Vector, as_scalar
 from eqsheet.solve.scalar_newton import scalar_newton
 from eqsheet.solve.termination import floored, scaled_norm
 from eqsheet.solve.trail import Budget, Rung, Trail
+from eqsheet.solve.written_newton import written_newton
 
 P = TypeVar("P", Problem, ScalarProblem)
 S = TypeVar("S", Vector, float)
@@ -44,7 +45,7 @@ def solve_block(
     # Overflow and invalid operations are ordinary events here: they shorten the step.
     with np.errstate(all="ignore"):
         trail = Trail("newton", problem.start, budget, deadline)
-        attempts = [_attempt(newton, problem, problem.start, trail)]
+        attempts = [_attempt(_newton, problem, problem.start, trail)]
         # Through a singular Jacobian rounding has chosen the way: a start without symmetry says what counts.
         if trail.singular or not _final(attempts[0], deadline):
             from eqsheet.solve.fallbacks import fallbacks
@@ -95,6 +96,16 @@ def _inner_if_any(on_bound: Outcome, others: Callable[[], tuple[Outcome, ...]]) 
         return on_bound
     inner = next((o for o in found if o.status is Status.CONVERGED and not o.on_bound), None)
     return on_bound if inner is None else replace(inner, attempts=(*on_bound.attempts, on_bound))
+
+
+def _newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
+    """Damped Newton: in plain floats where the step is written out and the way is plain, else with arrays."""
+    if problem.written is not None:
+        own = Trail(trail.method, start, trail.budget, trail.deadline)
+        found = written_newton(problem, problem.written, start, own)
+        if found is not None:
+            return found
+    return newton(problem, start, trail)
 
 
 def _attempt(rung: Callable[[P, S, Trail], Outcome], problem: P, start: S, trail: Trail) -> Outcome:

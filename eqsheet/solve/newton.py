@@ -16,8 +16,14 @@ from typing import NamedTuple
 
 import numpy as np
 
+from eqsheet.solve.damping import (
+    LEAST_DAMPING,
+    SURE_CONTRACTION,
+    corrected_damping,
+    predicted_damping,
+)
 from eqsheet.solve.factor import Factor, factorise
-from eqsheet.solve.finish import finish, give_up
+from eqsheet.solve.finish import WEIGHT_FLOOR, finish, give_up
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
@@ -33,13 +39,6 @@ from eqsheet.solve.termination import (
 )
 from eqsheet.solve.trail import Trail
 
-# Smallest damping tried: below it a step changes no more than the rounding of the residuals does.
-LEAST_DAMPING = 2.0**-30
-# The norm of the damping weighs no unknown against less than this part of its typical size.
-WEIGHT_FLOOR = 0.1
-# Contraction of the corrections by a full step that needs no further look at the damping.
-SURE_CONTRACTION = 0.25
-# Ratio of two steps near the root from which on it is multiple: 1/2 at a double root, nearly 0 at a single
 # Contraction of a quadratic approach.
 QUICK = 0.1
 # Contraction that shows a root being approached: 1/4 at a double root, 1/2 on the way to infinity.
@@ -134,11 +133,13 @@ def _predicted_damping(last: Accepted, step: Vector, weights: Vector) -> float:
     if last.damping == 1.0 and last.contraction < SURE_CONTRACTION:
         return 1.0
     correction = last.correction / weights
-    deviation = _norm(correction - step) * _norm(step)
-    if deviation <= 0.0:
-        return 1.0
-    estimate = last.damping * _norm(last.step / weights) * _norm(correction) / deviation
-    return min(1.0, max(estimate, LEAST_DAMPING))
+    return predicted_damping(
+        last.damping,
+        _norm(last.step / weights),
+        _norm(correction),
+        _norm(correction - step),
+        _norm(step),
+    )
 
 
 def _first_accepted(
@@ -170,13 +171,10 @@ def _first_accepted(
             )
         # Deviation from what the linear model predicts for the step as taken: the nonlinearity along it.
         deviation = _norm(correction - (step - (trial - x) / weights))
-        estimate = 0.5 * norm * damping * damping / deviation if deviation > 0.0 else np.inf
-        if not contraction < 1.0:
-            damping = min(estimate, 0.5 * damping)
-            continue
-        if limiting < 0 and not raised and min(1.0, estimate) >= 4.0 * damping:
-            damping = min(1.0, estimate)
-            raised = True
+        better = corrected_damping(damping, contraction, deviation, norm, limiting >= 0, raised)
+        if better != damping:
+            raised = raised or better > damping
+            damping = better
             continue
         if limiting < 0 and damping < 1.0:
             limiting = int(np.abs(step).argmax())

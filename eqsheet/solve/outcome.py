@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass, field
 from enum import Enum
 from typing import NamedTuple
@@ -100,7 +101,7 @@ class Outcome:
         Accepted steps of that method; those of the others stand in `attempts`.
     method : str
         The method that gave x.
-    history : tuple of Iteration
+    history : sequence of Iteration
         Of that method.
     on_bound : tuple of int
         Unknowns that rest on a bound to rounding (solved) or are pressed against one (not solved).
@@ -110,7 +111,7 @@ class Outcome:
     attempts : tuple of Outcome
         Earlier attempts of the ladder, in order; empty where the first one succeeded.
     factor : Factor or None
-        Of a large Jacobian at the root or next to it, which is dear, so that the root can be judged by it.
+        Of the Jacobian at the root or next to it, so that the root can be judged by it.
     """
 
     status: Status
@@ -118,7 +119,7 @@ class Outcome:
     residual: float
     iterations: int
     method: str
-    history: tuple[Iteration, ...] = field(default=(), repr=False)
+    history: Sequence[Iteration] = field(default=(), repr=False)
     on_bound: tuple[int, ...] = ()
     null_equations: tuple[float, ...] = ()
     null_unknowns: tuple[float, ...] = ()

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Any, TypeAlias
 
@@ -13,6 +13,24 @@ Vector: TypeAlias = NDArray[np.float64]
 # Dense (n, n) array, or a scipy.sparse matrix of that shape for large blocks. scipy is not imported for its
 # sake.
 Matrix: TypeAlias = Any
+
+
+@dataclass(frozen=True, slots=True)
+class WrittenStep:
+    """The Newton step of a small block as code of its own in plain floats, with the same pivots every time.
+
+    Both may raise ArithmeticError or ValueError, outside the domain or at a pivot that is zero.
+
+    Attributes
+    ----------
+    step : callable
+        x, n floats, to the residuals r, the step ``-J^-1 r``, and the numbers of the elimination.
+    correction : callable
+        Residuals and numbers of the elimination to the step of the same Jacobian.
+    """
+
+    step: Callable[[Sequence[float]], tuple[Sequence[float], Sequence[float], Sequence[float]]]
+    correction: Callable[[Sequence[float], Sequence[float]], Sequence[float]]
 
 
 @dataclass(frozen=True)
@@ -38,6 +56,8 @@ class Problem:
     magnitude : ndarray (n,)
         Typical size of each unknown, > 0, in the unknown's own unit. Results do not depend on the units
         chosen only if this does.
+    written : WrittenStep or None
+        The Newton step in plain floats, for a block that is solved again and again; None where there is none.
     """
 
     n: int
@@ -48,6 +68,7 @@ class Problem:
     lower: Vector
     upper: Vector
     magnitude: Vector
+    written: WrittenStep | None = None
 
 
 @dataclass(frozen=True, slots=True)

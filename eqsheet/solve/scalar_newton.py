@@ -10,9 +10,10 @@ from __future__ import annotations
 
 from math import copysign, inf, nextafter
 
+from eqsheet.solve.damping import LEAST_DAMPING
 from eqsheet.solve.factor import SINGULAR_CONDITION
 from eqsheet.solve.interior import LEAST_FRACTION, NUDGE, RESTING
-from eqsheet.solve.newton import CONTRACTING, LEAST_DAMPING, QUICK
+from eqsheet.solve.newton import CONTRACTING, QUICK
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import ScalarProblem
 from eqsheet.solve.termination import (

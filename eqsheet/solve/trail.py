@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from math import inf
 from time import perf_counter
@@ -10,6 +10,7 @@ from typing import Any, TypeAlias
 
 import numpy as np
 
+from eqsheet.solve.factor import Factor
 from eqsheet.solve.outcome import Iteration, Outcome, Status
 from eqsheet.solve.problem import Problem, Vector
 
@@ -56,6 +57,7 @@ class Trail:
         "method",
         "singular",
         "steps",
+        "way",
     )
 
     def __init__(self, method: str, start: Vector | float, budget: Budget, deadline: float = inf) -> None:
@@ -68,12 +70,18 @@ class Trail:
         self.budget = budget
         self.deadline = min(deadline, perf_counter() + budget.seconds)
         self.steps: list[Iteration] = []
+        self.way: Sequence[Iteration] | None = None
 
     def note(self, x: Vector | float, residual: float, damping: float, limiting: int) -> None:
         """Record an accepted step to `x`."""
         self.steps.append(Iteration(residual, damping, limiting, self.method))
         self.best = x
         self.best_residual = residual
+
+    def walked(self, way: Sequence[Iteration], x: Vector) -> None:
+        """Record a whole way to `x`, whose iterations are told one by one only when asked for."""
+        self.way = way
+        self.best = x
 
     def renew(self) -> Trail:
         """The same trail with its iterations to spend again, for a method called by another; time goes on."""
@@ -94,19 +102,22 @@ class Trail:
         on_bound: tuple[int, ...] = (),
         null_equations: tuple[float, ...] = (),
         null_unknowns: tuple[float, ...] = (),
+        factor: Factor | None = None,
     ) -> Outcome:
         """The outcome: at `x` if given, else at the best point."""
         point = self.best if x is None else x
+        history = tuple(self.steps) if self.way is None else self.way
         return Outcome(
             status,
             np.array([point]) if isinstance(point, float) else point,
             self.best_residual if residual is None else residual,
-            max(len(self.steps) - 1, 0),
+            max(len(history) - 1, 0),
             self.method,
-            tuple(self.steps),
+            history,
             on_bound,
             null_equations,
             null_unknowns,
+            factor=factor,
         )
 
 

@@ -76,16 +76,50 @@ def judge(
     -----
     The forward error is ``|J^-1| (|r| + bound)``, componentwise (Higham 2002, section 7.1).
     """
-    reach = np.maximum(np.abs(x), ZERO_FLOOR * magnitude)
-    if not (np.isfinite(residual).all() and np.isfinite(abs(jacobian).sum())):
-        worst = int(np.flatnonzero(~np.isfinite(residual))[0]) if not np.isfinite(residual).all() else 0
-        return Verdict(False, worst, np.inf, np.inf, np.full(x.size, np.inf), (0,) * x.size)
-    rounding = error_bounds + ROUNDED_UNKNOWNS * UNIT_ROUNDOFF * (abs(jacobian) @ reach)
+    reach = _reach(x, magnitude)
+    slopes = abs(jacobian) @ reach
+    if not np.isfinite(abs(jacobian).sum()):
+        return _unfit(residual)
+    return _judged(residual, sizes, error_bounds, slopes, factor or factorise(jacobian, reach), x, reach)
+
+
+def judge_by_factor(
+    residual: Vector, sizes: Vector, error_bounds: Vector, factor: Factor, x: Vector, magnitude: Vector
+) -> Verdict:
+    """`judge` by what is factorised already: a Jacobian at x or next to it."""
+    reach = _reach(x, magnitude)
+    slopes = factor.rows * (abs(factor.matrix) @ (reach / factor.weights))
+    return _judged(residual, sizes, error_bounds, slopes, factor, x, reach)
+
+
+def _reach(x: Vector, magnitude: Vector) -> Vector:
+    """Size (n,) of each unknown, > 0."""
+    return np.maximum(np.abs(x), ZERO_FLOOR * magnitude)
+
+
+def _unfit(residual: Vector) -> Verdict:
+    """The verdict where something is not finite."""
+    worst = int(np.flatnonzero(~np.isfinite(residual))[0]) if not np.isfinite(residual).all() else 0
+    return Verdict(False, worst, np.inf, np.inf, np.full(residual.size, np.inf), (0,) * residual.size)
+
+
+def _judged(
+    residual: Vector,
+    sizes: Vector,
+    error_bounds: Vector,
+    slopes: Vector,
+    factor: Factor,
+    x: Vector,
+    reach: Vector,
+) -> Verdict:
+    """The verdict, with ``slopes = |J| reach`` (n,)."""
+    if not np.isfinite(residual).all():
+        return _unfit(residual)
+    rounding = error_bounds + ROUNDED_UNKNOWNS * UNIT_ROUNDOFF * slopes
     allowed = np.maximum(ACCEPTABLE * sizes, rounding)
     tiny = np.finfo(float).tiny
     worst = int((np.abs(residual) / np.maximum(allowed, tiny)).argmax())
-    size = max(float(sizes[worst]), float((abs(jacobian) @ reach)[worst]), tiny)
-    factor = factor or factorise(jacobian, reach)
+    size = max(float(sizes[worst]), float(slopes[worst]), tiny)
     if factor.singular:
         error = np.full(x.size, np.inf)
     else:

@@ -151,11 +151,11 @@ class ArrayBlock:
             np.array(start.lower),
             np.array(start.upper),
             np.array(start.magnitude),
-            self.evidence,
+            evidence=self.evidence,
         )
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, kw_only=True)
 class ArrayProblem(Problem):
     """A problem that tells its residuals, sizes and error bounds afresh: see `ArrayBlock.evidence`."""
 

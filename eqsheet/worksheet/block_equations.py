@@ -4,15 +4,18 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Sequence
+from dataclasses import dataclass
 
 import numpy as np
 
+from eqsheet.model.block_code import block_code
 from eqsheet.model.branches import literal_values
 from eqsheet.model.derive import equation_partials
 from eqsheet.model.evidence_function import evidence_of_outputs
-from eqsheet.model.generate import DOMAIN_ERRORS, block_functions, safe_function
+from eqsheet.model.generate import DOMAIN_ERRORS, safe_function
 from eqsheet.model.tape import Formula
 from eqsheet.solve.problem import Problem, ScalarProblem, Vector
+from eqsheet.worksheet.repeated_blocks import Repeats, repeats_of
 from eqsheet.worksheet.starting_values import Start
 
 
@@ -49,28 +52,71 @@ def scalar_problem(formula: Formula, unknown: int, values: Sequence[float], star
     )
 
 
+@dataclass(frozen=True, kw_only=True)
+class BlockProblem(Problem):
+    """The equations of a small block, with what its solution is judged by.
+
+    Attributes
+    ----------
+    evidence : callable
+        x (n,) to residuals, sizes and error bounds (n,) of the statements themselves, evaluated afresh.
+    repeats : Repeats
+        How often blocks of its shape have been solved.
+    """
+
+    evidence: Callable[[Vector], tuple[Vector, Vector, Vector]]
+    repeats: Repeats
+
+
 def block_problem(
-    formulas: Sequence[Formula], unknowns: Sequence[int], values: Sequence[float], start: Start
-) -> Problem:
-    """Several equations in as many unknowns; see `scalar_problem` for the parameters."""
+    formulas: Sequence[Formula],
+    unknowns: Sequence[int],
+    values: Sequence[float],
+    errors: Sequence[float],
+    start: Start,
+) -> BlockProblem:
+    """Several equations in as many unknowns.
+
+    Parameters
+    ----------
+    formulas : sequence of Formula
+    unknowns : sequence of int
+        Quantity numbers, ascending.
+    values, errors : sequence of float
+        SI values and error bounds by quantity number; those of the unknowns are not read.
+    """
     n = len(unknowns)
-    function, known = block_functions([(f.tape, f.quantities) for f in formulas], unknowns)
+    code, known = block_code([(f.tape, f.quantities) for f in formulas], unknowns)
+    literals = [value for formula in formulas for value in literal_values(formula)]
     parameters = [values[q] for q in known]
-    for formula in formulas:
-        parameters.extend(literal_values(formula))
+    bounds = (*(0.0,) * n, *[errors[q] for q in known])
     one_by_one = _OneByOne(formulas, unknowns, values)
+    repeats = repeats_of(code)
 
     def linearise(x: Vector) -> tuple[Vector, Vector]:
         try:
-            residuals, jacobian = function(x.tolist(), parameters)
+            residuals, entries = code.linearise(x.tolist(), arguments)
         except DOMAIN_ERRORS:
             return one_by_one.linearise(x)
-        return np.array(residuals), np.array(jacobian).reshape(n, n)
+        jacobian = np.zeros(n * n)
+        jacobian[repeats.places] = entries
+        return np.array(residuals), jacobian.reshape(n, n)
 
     def residual(x: Vector) -> Vector:
-        return linearise(x)[0]
+        if not repeats.often:
+            return linearise(x)[0]
+        try:
+            return np.array(code.residuals(x.tolist(), arguments))
+        except DOMAIN_ERRORS:
+            return linearise(x)[0]
 
-    return Problem(
+    def evidence(x: Vector) -> tuple[Vector, Vector, Vector]:
+        found = evidence_of_outputs(code.statements, (*x.tolist(), *parameters), literals, bounds)
+        (left, right), sizes, both = np.array(found).reshape(3, n, 2).transpose(0, 2, 1)
+        return left - right, sizes.max(axis=0), both.sum(axis=0)
+
+    arguments = [*parameters, *literals]
+    return BlockProblem(
         n,
         residual,
         linearise,
@@ -79,6 +125,9 @@ def block_problem(
         np.array(start.lower),
         np.array(start.upper),
         np.array(start.magnitude),
+        repeats.written(arguments),
+        evidence=evidence,
+        repeats=repeats,
     )
 
 

@@ -26,10 +26,10 @@ from eqsheet.solve.problem import Problem, Vector
 from eqsheet.solve.regimes import Held, solve_regimes
 from eqsheet.solve.termination import ACCEPTABLE
 from eqsheet.solve.trail import Budget, Trail
-from eqsheet.solve.verdict import judge
+from eqsheet.solve.verdict import judge, judge_by_factor
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.array_equations import LARGE_BLOCK, ArrayBlock, ArrayProblem, shapes_of
-from eqsheet.worksheet.block_equations import block_problem, scalar_problem
+from eqsheet.worksheet.block_equations import BlockProblem, block_problem, scalar_problem
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.starting_values import Start, starting_values
 from eqsheet.worksheet.torn import TornBlock, torn_block
@@ -218,6 +218,16 @@ def _checked(
     )
 
 
+def _noise(formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, bounds: Vector) -> bool:
+    """Whether an error bound without end comes from an equation all of whose inputs are good."""
+    if np.isfinite(bounds).all():
+        return False
+    return any(
+        not math.isfinite(bound) and _inputs_are_good(formula, unknowns, known)
+        for bound, formula in zip(bounds.tolist(), formulas)
+    )
+
+
 def _inputs_are_good(formula: Formula, unknowns: Sequence[int], known: Known) -> bool:
     """Whether what the equation takes from elsewhere is known to some digits.
 
@@ -273,7 +283,7 @@ def _less_blind(
 def _problem(formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start) -> Problem:
     """The block for the solver: as arrays where it is large, else as one generated function."""
     if len(unknowns) < LARGE_BLOCK:
-        return block_problem(formulas, unknowns, known.values, start)
+        return block_problem(formulas, unknowns, known.values, known.errors, start)
     numbers = np.array(unknowns, dtype=np.int64)
     block = ArrayBlock(shapes_of(formulas), numbers, np.array(known.values), np.array(known.errors))
     return block.problem(start)
@@ -425,21 +435,22 @@ def judged(
     )
     if not outcome.solved:
         return failed
-    if isinstance(problem, ArrayProblem):
+    if isinstance(problem, ArrayProblem | BlockProblem):
         residuals, sizes, bounds = problem.evidence(x)
     else:
         residuals, sizes, bounds = _evidence(formulas, dict(zip(unknowns, values)), known)
-        if any(
-            not math.isfinite(b) and _inputs_are_good(f, unknowns, known) for b, f in zip(bounds, formulas)
-        ):
-            return failed
-    if len(unknowns) == 1:
-        _, slope = scalar_problem(formulas[0], unknowns[0], known.values, start).linearise(values[0])
-        jacobian = np.array([[slope]])
+    if not isinstance(problem, ArrayProblem) and _noise(formulas, unknowns, known, bounds):
+        return failed
+    magnitude = np.array(start.magnitude)
+    if isinstance(problem, BlockProblem) and factor is not None:
+        verdict = judge_by_factor(residuals, sizes, bounds, factor, x, magnitude)
+    elif problem is not None:
+        verdict = judge(residuals, sizes, bounds, problem.linearise(x)[1], x, magnitude, factor)
     else:
-        assert problem is not None
-        jacobian = problem.linearise(x)[1]
-    verdict = judge(residuals, sizes, bounds, jacobian, x, np.array(start.magnitude), factor)
+        _, slope = scalar_problem(formulas[0], unknowns[0], known.values, start).linearise(values[0])
+        verdict = judge(residuals, sizes, bounds, np.array([[slope]]), x, magnitude)
+    if isinstance(problem, BlockProblem) and verdict.solved and factor is not None:
+        problem.repeats.solved(factor)
     if not verdict.solved:
         return failed
     return BlockResult(

@@ -8,8 +8,9 @@ from fractions import Fraction
 import numpy as np
 import pytest
 
+from eqsheet.model.block_code import block_code
 from eqsheet.model.derive import equation_partials
-from eqsheet.model.generate import array_function, block_functions, float_function, safe_function
+from eqsheet.model.generate import array_function, float_function, safe_function
 from eqsheet.model.tape import Literal, Tape, TapeBuilder
 from eqsheet.units.dimension import DIMENSIONLESS
 
@@ -114,14 +115,16 @@ def test_block_with_literals_and_shared_parameters() -> None:
     c = TapeBuilder()
     x, y, p = (c.quantity(k, (0, 1)) for k in (5, 3, 9))
     second = c.tape((c.apply("add", x, y), p))
-    function, parameters = block_functions([(first, (5, 9)), (second, (5, 3, 9))], [3, 5])
+    code, parameters = block_code([(first, (5, 9)), (second, (5, 3, 9))], [3, 5])
     assert parameters == (9,)
-    assert function([10.0, 4.0], [2.0, 6.0]) == ((2.0, 12.0), (0.0, 2.0, 1.0, 1.0))
+    assert code.pattern == ((0, 1), (1, 0), (1, 1))
+    assert code.linearise([10.0, 4.0], [2.0, 6.0]) == ((2.0, 12.0), (2.0, 1.0, 1.0))
+    assert code.residuals([10.0, 4.0], [2.0, 6.0]) == (2.0, 12.0)
 
 
 def test_blocks_of_one_shape_share_one_function() -> None:
     b = TapeBuilder()
     tape = b.tape((b.quantity(0, (0, 1)), b.apply("exp", b.quantity(1, (0, 1)))))
-    first, _ = block_functions([(tape, (4, 5)), (tape, (5, 6))], [4, 5])
-    second, _ = block_functions([(tape, (14, 25)), (tape, (25, 6))], [14, 25])
+    first, _ = block_code([(tape, (4, 5)), (tape, (5, 6))], [4, 5])
+    second, _ = block_code([(tape, (14, 25)), (tape, (25, 6))], [14, 25])
     assert first is second

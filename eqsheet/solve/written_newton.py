@@ -1,0 +1,173 @@
+"""The damped Newton iteration of `newton` in plain floats, for a small block whose step is written out.
+
+The decisions are those of `newton`, and so are the points, but for rounding. It only goes where the way is plain:
+where the start has no value, a pivot vanishes or no damping helps, it leaves the block to `newton`. The root is
+judged in the same way, by `finish`.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from math import hypot, inf, sqrt
+from operator import truediv
+from typing import overload
+
+import numpy as np
+
+from eqsheet.solve.damping import SURE_CONTRACTION, corrected_damping, predicted_damping
+from eqsheet.solve.finish import WEIGHT_FLOOR, finish_plainly
+from eqsheet.solve.interior import Interior
+from eqsheet.solve.newton import CONTRACTING, NEAR
+from eqsheet.solve.outcome import Iteration, Outcome
+from eqsheet.solve.problem import Problem, Vector, WrittenStep
+from eqsheet.solve.termination import (
+    AT_REST,
+    MULTIPLE,
+    SLOW,
+    ZERO_FLOOR,
+    last_step_due,
+    residual_at,
+)
+from eqsheet.solve.trail import Trail
+
+# More steps than these are not a plain way.
+MOST_STEPS = 40
+# Damping below which the way is not plain either.
+LEAST_PLAIN = 2.0**-10
+
+
+def written_newton(problem: Problem, written: WrittenStep, start: Vector, trail: Trail) -> Outcome | None:
+    """The root that damped Newton steps lead to from `start`; None where the way there is not plain.
+
+    Parameters
+    ----------
+    problem : Problem
+    written : WrittenStep
+        Of the same equations.
+    start : ndarray (n,)
+    trail : Trail
+        Written on the way.
+    """
+    try:
+        return _walk(problem, written, start, trail)
+    except (ArithmeticError, ValueError):
+        return None
+
+
+def _walk(problem: Problem, written: WrittenStep, start: Vector, trail: Trail) -> Outcome | None:
+    interior = Interior(problem)
+    floors = (WEIGHT_FLOOR * problem.magnitude).tolist()
+    mean = sqrt(problem.n)
+    x: list[float] = interior.enter(start).tolist()
+    residuals, step, numbers = written.step(x)
+    damping, limiting, contraction = 0.0, -1, inf
+    last_step: Sequence[float] = ()
+    last_correction: Sequence[float] = ()
+    last_rest, last_norm, slow_steps = inf, inf, 0
+    way: list[tuple[list[float], float, int]] = []
+    while len(way) < MOST_STEPS:
+        way.append((x, damping, limiting))
+        weights = list(map(max, map(abs, x), floors))
+        scaled = list(map(truediv, step, weights))
+        norm = hypot(*scaled) / mean
+        rest = _largest_change(step, x, problem) if norm < NEAR else inf
+        slow_steps = slow_steps + 1 if MULTIPLE < rest / last_rest < SLOW else 0
+        if rest <= AT_REST and (last_step_due(rest, norm / last_norm) or rest > SLOW * last_rest):
+            point = np.array(x)
+            trail.walked(Way(problem, way, trail.method), point)
+            trail.contracting = contraction < CONTRACTING
+            outcome = finish_plainly(problem, interior, trail, point, slow_steps)
+            return outcome if outcome is not None and outcome.solved else None
+        if damping == 0.0 or (damping == 1.0 and contraction < SURE_CONTRACTION):
+            damping = 1.0
+        else:
+            corrected = list(map(truediv, last_correction, weights))
+            damping = predicted_damping(
+                damping,
+                hypot(*map(truediv, last_step, weights)) / mean,
+                hypot(*corrected) / mean,
+                hypot(*[c - s for c, s in zip(corrected, scaled)]) / mean,
+                norm,
+            )
+        raised = False
+        while True:
+            if not damping >= LEAST_PLAIN:
+                return None
+            trial, limiting = _trial(interior, x, step, damping, norm)
+            try:
+                residuals, next_step, next_numbers = written.step(trial)
+            except (ValueError, OverflowError):
+                # Outside the domain. A division by zero may be a pivot instead, which is no matter of damping.
+                damping *= 0.5
+                continue
+            correction = written.correction(residuals, numbers)
+            corrected = list(map(truediv, correction, weights))
+            contraction = hypot(*corrected) / mean / norm
+            if damping == 1.0 and contraction < SURE_CONTRACTION:
+                break
+            deviation = hypot(
+                *[c - (s - (t - a) / w) for c, s, t, a, w in zip(corrected, scaled, trial, x, weights)]
+            )
+            better = corrected_damping(damping, contraction, deviation / mean, norm, limiting >= 0, raised)
+            if better == damping:
+                if limiting < 0 and damping < 1.0:
+                    limiting = max(range(problem.n), key=lambda i: abs(scaled[i]))
+                break
+            raised = raised or better > damping
+            damping = better
+        last_step, last_correction, last_rest, last_norm = step, correction, rest, norm
+        x, step, numbers = trial, next_step, next_numbers
+    return None
+
+
+class Way(Sequence[Iteration]):
+    """The iterations of a way by its points; their scaled residuals are worked out when asked for.
+
+    Parameters
+    ----------
+    problem : Problem
+    steps : sequence of (point, damping, limiting unknown)
+    method : str
+    """
+
+    def __init__(
+        self, problem: Problem, steps: Sequence[tuple[list[float], float, int]], method: str
+    ) -> None:
+        self._problem = problem
+        self._steps = steps
+        self._method = method
+
+    def __len__(self) -> int:
+        return len(self._steps)
+
+    @overload
+    def __getitem__(self, position: int) -> Iteration: ...
+
+    @overload
+    def __getitem__(self, position: slice) -> Sequence[Iteration]: ...
+
+    def __getitem__(self, position: int | slice) -> Iteration | Sequence[Iteration]:
+        if isinstance(position, slice):
+            return Way(self._problem, self._steps[position], self._method)
+        point, damping, limiting = self._steps[position]
+        x = np.array(point)
+        with np.errstate(all="ignore"):
+            scaled = residual_at(self._problem, x, *self._problem.linearise(x))
+        return Iteration(scaled, damping, limiting, self._method)
+
+
+def _largest_change(step: Sequence[float], x: Sequence[float], problem: Problem) -> float:
+    """The largest part of a step relative to its unknown."""
+    floors = (ZERO_FLOOR * problem.magnitude).tolist()
+    return float(max(map(truediv, map(abs, step), map(max, map(abs, x), floors))))
+
+
+def _trial(
+    interior: Interior, x: Sequence[float], step: Sequence[float], damping: float, norm: float
+) -> tuple[list[float], int]:
+    """As `Interior.cut`."""
+    trial = [a + damping * d for a, d in zip(x, step)]
+    if interior.holds(trial):
+        return trial, -1
+    cut, limiting = interior.cut(np.array(x), damping * np.array(step), norm)
+    return cut.tolist(), limiting
