@@ -50,6 +50,8 @@ _HEADLINES = {
 }
 # Ends of a search that bounds may have brought about.
 _HELD_BACK = (Status.STALLED, Status.MINIMUM, Status.SINGULAR, Status.BUDGET)
+# Failures that a start elsewhere would not mend.
+_NO_START_HELPS = (Status.CONTINUUM, Status.NO_CONSISTENT_BRANCH)
 _CURES = {
     Status.HELD: "widen the bounds named, or check the equation that pushes against them",
     Status.CONTINUUM: "one more independent equation or known is needed among these lines",
@@ -90,6 +92,10 @@ def failure_diagnostic(
     if beyond is not None and status not in (Status.CONTINUUM, Status.DOMAIN):
         status = Status.HELD
     worst = 0 if facts is None or not facts.worst else facts.worst[0][0]
+    guilty = "the worst satisfied"
+    if status is Status.NO_CONSISTENT_BRANCH:
+        # Each branch by itself may be satisfied well; the trouble is where they switch.
+        worst, guilty = next(((i, "it switches here") for i in writer.switching()), (worst, guilty))
     headline = _HEADLINES.get(status, "no solution found")
     if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
         headline = _AT_MINIMUM
@@ -97,12 +103,13 @@ def failure_diagnostic(
     if proof >= 0:
         headline = "there is no solution" + (" within the bounds" if writer.bounded() else "")
     message = f"{headline}: {quoted(names)} from {where}"
-    labels = [label_of(system, places[worst], "the worst satisfied" if len(places) > 1 else "")]
+    labels = [label_of(system, places[worst], guilty if len(places) > 1 else "")]
     others = sorted((p for i, p in enumerate(places) if i != worst), key=lambda p: (p.statement, p.start))
     shut_out = writer.shut_out_by(beyond)
     # One bound is as likely at fault as an equation; several at once rather follow from one.
     labels += shut_out[:1] + [label_of(system, p) for p in others[:8]] + shut_out[1:]
-    notes = writer.at_best_point()
+    # A best point that satisfies what nothing can satisfy lies where a term is lost to underflow.
+    notes = writer.at_best_point() if proof < 0 or writer.gaps() else []
     notes += writer.found_beyond(beyond)
     notes += writer.proven(proof)
     if facts is not None and facts.not_finite >= 0:
@@ -115,6 +122,8 @@ def failure_diagnostic(
         notes += writer.not_finite(0) or writer.terms([0])
         notes += writer.range_tried()
     notes += writer.jump()
+    if proof < 0 and status not in _NO_START_HELPS:
+        notes += writer.blind_start()
     notes += curve_notes(writer.formulas, writer.point(), run.unknowns)
     help = _CURES.get(
         status, "give a start value near the solution (`near`), or check sign and size of the terms"
@@ -256,6 +265,14 @@ class _Writer:
         finite = [p for p, v in zip(parts, self.own.values()) if math.isfinite(v)]
         return [f"best point: {', '.join(finite)}"] if finite else []
 
+    def gaps(self) -> bool:
+        """Whether an equation is not satisfied to the last digit at the best point."""
+        return any(
+            len({results[o] for o in formula.tape.outputs}) > 1
+            for formula in self.result.formulas
+            for results in (self._evaluate(formula),)
+        )
+
     def terms(self, equations: Sequence[int]) -> list[str]:
         """Both sides of the worst equations with the size of each term."""
         notes = []
@@ -268,11 +285,15 @@ class _Writer:
                 for terms in (_terms(formula, output) for output in formula.tape.outputs)
             ]
             place = line_words(self.system, [self.system.equations[self.run.equations[position]].place])
-            totals = " against ".join(units[o](results[o]) for o in formula.tape.outputs)
-            note_text = f"{place}: {totals}"
+            left, right = formula.tape.outputs
+            if results[left] == results[right]:
+                continue
+            totals = [units[o](results[o]) for o in formula.tape.outputs]
+            note_text = f"{place}: {' against '.join(totals)}"
+            if totals[0] == totals[1]:
+                note_text += f", {units[left](abs(results[left] - results[right]))} apart"
             if any(len(_terms(formula, o)) > 1 for o in formula.tape.outputs):
-                left, right = (side.removeprefix("+ ") for side in sides)
-                note_text += f"; term by term: {left} = {right}"
+                note_text += f"; term by term: {' = '.join(side.removeprefix('+ ') for side in sides)}"
             notes.append(note_text)
         return notes
 
@@ -372,6 +393,17 @@ class _Writer:
         parts = [self.value(quantity, b) if math.isfinite(b) else "" for b in (low, high)]
         return [f"searched within {parts[0]} .. {parts[1]}".replace("  ", " ")]
 
+    def blind_start(self) -> list[str]:
+        """Which unknowns had neither a guess nor bounds."""
+        names = blind_names(self.system, self.run)
+        return [f"{quoted(names)} {_was(names)} started without a guess"] if names else []
+
+    def switching(self) -> list[int]:
+        """Positions of the equations with a condition."""
+        return [
+            i for i, f in enumerate(self.formulas) if any(step[0] == "if" for step in f.tape.instructions)
+        ]
+
     def jump(self) -> list[str]:
         """How far the branches lie apart."""
         parts = [
@@ -405,25 +437,37 @@ def _signed(text: str, sign: int) -> str:
 
 
 def start_note(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
-    """A note that names the unknowns started without a guess, where a start matters.
+    """A note that names the unknowns of a solved block started without a guess, where a start matters.
+
+    A block that was not solved says so itself, where a start could have helped.
+    """
+    names = blind_names(system, run)
+    if not names or run.result is None or not run.result.solved:
+        return []
+    place = min((system.equations[e].place for e in run.equations), key=lambda p: (p.statement, p.start))
+    return [
+        note(
+            "started-without-guess",
+            f"{quoted(names)} {_was(names)} started without a guess",
+            Label(label_of(system, place).span),
+            help="a guess (`near`) or bounds (`within`) make sure which solution is meant",
+        )
+    ]
+
+
+def blind_names(system: EquationSystem, run: BlockRun) -> list[str]:
+    """Names of the unknowns started without a guess, where a start matters.
 
     An unknown between bounds, or told by an equation from the starts of others, needs none and is not named.
     """
     result = run.result
     if result is None or result.start is None or result.method in ("closed form", "linear"):
         return []
-    names = [system.names[run.unknowns[i]] for i in result.start.blind]
-    if not names:
-        return []
-    place = min((system.equations[e].place for e in run.equations), key=lambda p: (p.statement, p.start))
-    return [
-        note(
-            "started-without-guess",
-            f"{quoted(names)} {'was' if len(names) == 1 else 'were'} started without a guess",
-            Label(label_of(system, place).span),
-            help="a guess (`near`) or bounds (`within`) make sure which solution is meant",
-        )
-    ]
+    return [system.names[run.unknowns[i]] for i in result.start.blind]
+
+
+def _was(names: Sequence[str]) -> str:
+    return "was" if len(names) == 1 else "were"
 
 
 def trust_warnings(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:

@@ -28,13 +28,13 @@ def widened(low: float, high: float) -> Interval:
 
 
 def meet(a: Interval, b: Interval) -> Interval | None:
-    """What both hold; None where that is nothing.
+    """What both hold; None where that is nothing. An infinite end is not reached, so infinity alone is nothing.
 
     >>> meet((0.0, 2.0), (1.0, 3.0)), meet((0.0, 1.0), (2.0, 3.0))
     ((1.0, 2.0), None)
     """
     low, high = max(a[0], b[0]), min(a[1], b[1])
-    return (low, high) if low <= high else None
+    return (low, high) if low < high or (low == high and math.isfinite(low)) else None
 
 
 def hull(a: Interval, b: Interval) -> Interval:
@@ -113,7 +113,7 @@ def _at(function: Callable[[float], float], end: float, otherwise: float) -> Int
         value = function(end)
     except (ValueError, OverflowError, ZeroDivisionError):
         value = otherwise
-    return (0.0, 0.0) if end == value == 0.0 else _nonzero(value)
+    return (0.0, 0.0) if value == 0.0 and (end == 0.0 or math.isinf(end)) else _nonzero(value)
 
 
 def magnitude(a: Interval) -> Interval:

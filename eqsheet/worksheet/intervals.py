@@ -147,6 +147,9 @@ def _forwards(instruction: Instruction, of: Sequence[Interval]) -> Interval | No
         return _OF_TWO[operation](of[rest[0]], of[rest[1]])
     if operation == "power":
         return raised(of[rest[0]], float(rest[1]))
+    if operation == "pow":
+        logarithm = _logarithm_of_base(of[rest[0]])
+        return EVERYTHING if logarithm is None else increasing(math.exp, times(logarithm, of[rest[1]]))
     if operation in _RISING:
         function, _, domain, _ = _RISING[operation]
         return increasing(function, of[rest[0]], domain)
@@ -225,6 +228,11 @@ def _backwards(instruction: Instruction, whole: Interval, of: list[Interval]) ->
         parts = {a: first, b: second}
     elif operation == "power":
         parts = {rest[0]: root(whole, float(rest[1]), of[rest[0]]) if rest[1] else EVERYTHING}
+    elif operation == "pow":
+        logarithm = _logarithm_of_base(of[rest[0]])
+        back = EVERYTHING if logarithm is None else increasing(_logarithm(math.log), whole, _POSITIVE)
+        if logarithm is not None:
+            parts = {rest[1]: None if back is None else _factor(back, logarithm)}
     elif operation in _RISING:
         _, inverse, domain, image = _RISING[operation]
         back = increasing(inverse, whole, image)
@@ -242,6 +250,11 @@ def _backwards(instruction: Instruction, whole: Interval, of: list[Interval]) ->
             return False
         of[index] = kept
     return True
+
+
+def _logarithm_of_base(base: Interval) -> Interval | None:
+    """Range of the logarithm of a base that is positive throughout; None of any other."""
+    return increasing(math.log, base) if base[0] > 0.0 else None
 
 
 def _of_product(whole: Interval, a: Interval, b: Interval) -> tuple[Interval | None, Interval | None]:

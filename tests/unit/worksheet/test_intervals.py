@@ -104,3 +104,26 @@ def test_even_powers_have_roots_on_both_sides() -> None:
 def test_outside_its_domain_a_function_has_no_range() -> None:
     assert increasing(math.sqrt, (-2.0, -1.0), POSITIVE) is None
     assert meet((0.0, 1.0), (2.0, 3.0)) is None
+
+
+@pytest.mark.parametrize(
+    "text",
+    ["exp(x) = 0", "10^x = 0", "3*exp(-x) = 0", "exp(x) + exp(2*x) = 0", "2^(x^2) = 0.5", "0.5^x = -1"],
+)
+def test_what_a_power_only_tends_to_is_never_reached(text: str) -> None:
+    """exp(x) underflows to 0 in floats, so that a search sees it satisfied; no number satisfies it."""
+    assert narrow(text, {})[0].empty == 0
+    message = only(solve(text), "no-solution")
+    assert message.message.startswith("there is no solution")
+    assert "this is certain: no values satisfy line 1" in message.notes
+    assert not any("0 against 0" in note or "-1149" in note for note in message.notes)
+
+
+def test_powers_of_a_constant_narrow_their_exponent() -> None:
+    _, ranges = narrow("10^x = y", {"y": (0.01, 1000.0)})
+    assert holds(ranges["x"], -2.0, 3.0)
+
+
+def test_infinity_alone_is_nothing() -> None:
+    assert meet((-math.inf, 0.0), (-math.inf, -math.inf)) is None
+    assert meet((2.0, 2.0), (1.0, 3.0)) == (2.0, 2.0)

@@ -131,3 +131,19 @@ def test_a_quantity_rescaled_by_a_million_is_found_the_same() -> None:
     for name, factor in (("y", (3 + 5**0.5) / 2), ("z", (3 - 5**0.5) / 2)):
         assert small[name].si == pytest.approx(1e-6 * factor, rel=1e-10)
         assert large[name].si == pytest.approx(1e6 * factor, rel=1e-10)
+
+
+def test_no_consistent_branch_points_at_the_condition_and_not_at_what_is_satisfied() -> None:
+    (found,) = solve("x = y/2\ny = if x < 0.5 then 1 else 0.2").diagnostics
+    assert found.span is not None
+    assert found.span.line == 2
+    assert found.labels[0].text == "it switches here"
+    assert not any(" against " in note for note in found.notes)
+
+
+def test_sides_that_look_alike_are_told_apart() -> None:
+    """A parabola and a line a billionth below its tangent: no digits shown would tell the sides apart."""
+    (found,) = solve("x^2 = y\ny = 2*x - 1 - 1e-9\nx near 1\ny near 1").diagnostics
+    sides = [note for note in found.notes if " against " in note]
+    assert sides
+    assert all("1 against 1, " in note and " apart" in note for note in sides)
