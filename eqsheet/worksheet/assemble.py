@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
+from functools import partial
 from types import MappingProxyType
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
@@ -11,6 +12,7 @@ from eqsheet.syntax.nodes import Statement
 from eqsheet.worksheet.alike import fold_alike
 from eqsheet.worksheet.ambient_note import ambient_note
 from eqsheet.worksheet.branches_taken import branches_taken
+from eqsheet.worksheet.deferred import DeferredMapping, DeferredSequence
 from eqsheet.worksheet.failure_messages import digits_of
 from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds, limits_outside_curves
 from eqsheet.worksheet.prepare import Prepared
@@ -40,9 +42,9 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         if prepared.system.groups:
             blocks, own, quantities = _of_families(prepared, run)
         else:
-            blocks = tuple(_block(prepared, block) for block in run.blocks)
-            own = own_statements(prepared, run)
-            quantities = _quantities(prepared, run, own)
+            own = DeferredMapping(partial(own_statements, prepared, run))
+            blocks = DeferredSequence(partial(_blocks, prepared, run))
+            quantities = DeferredMapping(partial(_quantities, prepared, run, own))
         best = {
             prepared.system.names[q]: _value(prepared, run, own, q, si, math.inf)
             for q, si in run.best.items()
@@ -61,7 +63,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         MappingProxyType(best),
         MappingProxyType(dict(timing)),
         prepared.statements,
-        () if run is None else branches_taken(prepared, run),
+        () if run is None else DeferredSequence(partial(branches_taken, prepared, run)),
     )
 
 
@@ -76,6 +78,8 @@ def _status(diagnostics: list[Diagnostic], limits: tuple[LimitReport, ...]) -> s
 
 def _distinct(diagnostics: list[Diagnostic], names: Sequence[str]) -> list[Diagnostic]:
     """Each diagnostic once, errors first, then by place."""
+    if not diagnostics:
+        return diagnostics
     unique = fold_alike(list(dict.fromkeys(diagnostics)), names)
 
     def key(diagnostic: Diagnostic) -> tuple[int, bool, int]:
@@ -166,6 +170,11 @@ def _statement_of(prepared: Prepared, own: Mapping[int, int], quantity: int) -> 
         return system.statements[own[quantity]]
     setter = prepared.setters.get(quantity)
     return None if setter is None else system.statements[system.equations[setter].place.statement]
+
+
+def _blocks(prepared: Prepared, run: Run) -> Sequence[BlockReport]:
+    """Accounts of all blocks."""
+    return [_block(prepared, block) for block in run.blocks]
 
 
 def _block(prepared: Prepared, block: BlockRun) -> BlockReport:

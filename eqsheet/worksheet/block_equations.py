@@ -8,14 +8,14 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from eqsheet.model.block_code import block_code
 from eqsheet.model.branches import literal_values
 from eqsheet.model.derive import equation_partials
 from eqsheet.model.evidence_function import evidence_of_outputs
 from eqsheet.model.generate import DOMAIN_ERRORS, safe_function
 from eqsheet.model.tape import Formula
 from eqsheet.solve.problem import Problem, ScalarProblem, Vector
-from eqsheet.worksheet.repeated_blocks import Repeats, repeats_of
+from eqsheet.worksheet.block_plan import plan_of
+from eqsheet.worksheet.repeated_blocks import Repeats
 from eqsheet.worksheet.starting_values import Start
 
 
@@ -86,12 +86,11 @@ def block_problem(
         SI values and error bounds by quantity number; those of the unknowns are not read.
     """
     n = len(unknowns)
-    code, known = block_code([(f.tape, f.quantities) for f in formulas], unknowns)
-    literals = [value for formula in formulas for value in literal_values(formula)]
-    parameters = [values[q] for q in known]
-    bounds = (*(0.0,) * n, *[errors[q] for q in known])
+    plan = plan_of(formulas, unknowns)
+    code, literals, repeats = plan.code, plan.literals, plan.repeats
+    parameters = [values[q] for q in plan.known]
+    bounds = (*(0.0,) * n, *[errors[q] for q in plan.known])
     one_by_one = _OneByOne(formulas, unknowns, values)
-    repeats = repeats_of(code)
 
     def linearise(x: Vector) -> tuple[Vector, Vector]:
         try:

@@ -6,6 +6,7 @@ import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from functools import lru_cache
+from typing import NamedTuple
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
 from eqsheet.model.branches import quantities_under
@@ -15,6 +16,9 @@ from eqsheet.model.system import EquationSystem, GuessItem, Place
 from eqsheet.model.tape import Formula, Tape
 from eqsheet.worksheet.curve_messages import outside_curve_diagnostic
 from eqsheet.worksheet.places import quoted, span_of
+
+# Worksheets whose constant guesses are kept.
+MOST_KEPT = 64
 
 
 @dataclass(frozen=True)
@@ -63,6 +67,36 @@ def work_out_guesses(
             places.pop((quantity, "lower"), None)
     _check_ranges(system, by_role, places, known_values, diagnostics)
     return Guesses(by_role["near"], by_role["lower"], by_role["upper"], places), tuple(diagnostics)
+
+
+class _Constant(NamedTuple):
+    """What guesses come to that use no quantity, None where some do or there is something to be said of them."""
+
+    items: Sequence[GuessItem]
+    kinds: Sequence[str]
+    guesses: Guesses | None
+
+
+_constant: dict[tuple[int, int], _Constant] = {}
+
+
+def constant_guesses(system: EquationSystem, kinds: Sequence[str]) -> Guesses | None:
+    """The guesses of a worksheet in which none depends on any value, and none is wrong; None of any other.
+
+    They are worked out once for these very guesses, which a worksheet solved again has still.
+    """
+    key = id(system.guesses), id(kinds)
+    kept = _constant.get(key)
+    if kept is None:
+        found = None
+        if not any(slots_used(item.formula.tape) for item in system.guesses):
+            # Without any known no guess is excused for lying outside bounds.
+            guesses, diagnostics = work_out_guesses(system, {}, kinds)
+            found = None if diagnostics else guesses
+        while len(_constant) >= MOST_KEPT:
+            del _constant[next(iter(_constant))]
+        kept = _constant[key] = _Constant(system.guesses, kinds, found)
+    return kept.guesses
 
 
 def values_of_guess(

@@ -212,7 +212,10 @@ def known_bounds(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
     """An error for each known that lies outside the bounds a guess gives it."""
     system = prepared.system
     found = []
+    lower, upper = run.guesses.lower, run.guesses.upper
     for quantity, value in prepared.known_values.items():
+        if quantity not in lower and quantity not in upper:
+            continue
         low, high = run.guesses.bounds(quantity)
         if low <= value <= high:
             continue

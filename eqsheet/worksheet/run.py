@@ -20,7 +20,7 @@ from eqsheet.worksheet.block_run import BlockRun as BlockRun
 from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
 from eqsheet.worksheet.follow_from_knowns import follow_from_knowns
-from eqsheet.worksheet.guesses import Guesses, work_out_guesses
+from eqsheet.worksheet.guesses import Guesses, constant_guesses, work_out_guesses
 from eqsheet.worksheet.places import line_words, span_of
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
@@ -74,8 +74,11 @@ def run_blocks(
         return _run_groups(prepared, budget, memory, given)
     solve = solve_equations if memory is None else memory.solve
     system = prepared.system
-    guesses, found = work_out_guesses(system, follow_from_knowns(prepared), prepared.kinds)
-    diagnostics = list(found)
+    diagnostics: list[Diagnostic] = []
+    guesses = constant_guesses(system, prepared.kinds)
+    if guesses is None:
+        guesses, found = work_out_guesses(system, follow_from_knowns(prepared), prepared.kinds)
+        diagnostics += found
     count = len(system.names)
     values = [math.nan] * count
     errors = [0.0] * count

@@ -227,7 +227,7 @@ class Solution(Mapping[str, QuantityValue]):
         Seconds spent in each stage.
     statements : tuple of Statement
         All statements of the worksheet as solved, those switched off included.
-    branches : tuple of BranchReport
+    branches : sequence of BranchReport
         Which branch each condition takes.
     """
 
@@ -240,7 +240,7 @@ class Solution(Mapping[str, QuantityValue]):
     best: Mapping[str, QuantityValue] = field(default_factory=dict)
     timing: Mapping[str, float] = field(default_factory=dict)
     statements: tuple[Statement, ...] = ()
-    branches: tuple[BranchReport, ...] = ()
+    branches: Sequence[BranchReport] = ()
 
     @property
     def solved(self) -> bool:

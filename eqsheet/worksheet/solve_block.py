@@ -13,11 +13,19 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from eqsheet.model.branches import chosen_branches, hold, literal_values, quantities_under, settle, switches
+from eqsheet.model.branches import (
+    Switch,
+    chosen_branches,
+    hold,
+    literal_values,
+    quantities_under,
+    settle,
+    switches,
+)
 from eqsheet.model.evaluate import evaluate, evaluate_with_evidence
 from eqsheet.model.evidence_function import evidence_of_outputs
 from eqsheet.model.isolate import isolate
-from eqsheet.model.linear import affine_in, is_linear_in
+from eqsheet.model.linear import affine_in
 from eqsheet.model.tape import Formula, Tape
 from eqsheet.solve.ladder import DEFAULT_BUDGET, solve_block, solve_scalar
 from eqsheet.solve.linear import linear_step
@@ -30,6 +38,7 @@ from eqsheet.solve.verdict import judge, judge_by_factor
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.array_equations import LARGE_BLOCK, ArrayBlock, ArrayProblem, shapes_of
 from eqsheet.worksheet.block_equations import BlockProblem, block_problem, scalar_problem
+from eqsheet.worksheet.block_plan import plan_of
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.starting_values import Start, starting_values
 from eqsheet.worksheet.torn import TornBlock, torn_block
@@ -106,10 +115,13 @@ def solve_equations(
     unknowns : sequence of int
         Quantity numbers, ascending.
     """
-    own = set(unknowns)
     values = known.values
-    formulas = tuple(settle(f, lambda q: None if q in own else values[q]) for f in formulas)
-    found = switches(formulas, own)
+    plan = plan_of(formulas, unknowns)
+    formulas = plan.formulas
+    found: tuple[Switch, ...] = ()
+    if not plan.plain:
+        formulas = tuple(settle(f, lambda q: None if q in plan.own else values[q]) for f in formulas)
+        found = switches(formulas, plan.own)
     if not found:
         if len(unknowns) == 1:
             closed = _closed_form(formulas[0], unknowns[0], known, guesses)
@@ -257,8 +269,7 @@ def _solve_plain(
             return Outcome(Status.SINGULAR, point, math.inf, 0, "newton"), None
         return solve_scalar(scalar_problem(formulas[0], unknowns[0], known.values, start), budget), None
     problem = _problem(formulas, unknowns, known, start)
-    own = set(unknowns)
-    if all(is_linear_in(f.tape, {s for s, q in enumerate(f.quantities) if q in own}) for f in formulas):
+    if plan_of(formulas, unknowns).linear:
         return linear_step(problem, problem.start, Trail("linear", problem.start, budget)), problem
     if start.blind:
         problem = _less_blind(formulas, unknowns, known, start, problem)

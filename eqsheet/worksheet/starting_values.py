@@ -11,15 +11,18 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Mapping, MutableMapping, Sequence
 from dataclasses import dataclass
+from typing import NamedTuple
 
 from eqsheet.model.branches import literal_values
 from eqsheet.model.generate import value_function
 from eqsheet.model.isolate import isolate
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.block_plan import plan_of
 from eqsheet.worksheet.curve_ranges import Range, argument_ranges
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.intervals import narrowed
+from eqsheet.worksheet.start_plan import StartPlan, Told
 
 # What a quantity of a dimension is like in engineering, in SI, where nothing in the worksheet tells.
 TYPICAL: Mapping[str, float] = {
@@ -73,6 +76,11 @@ def starting_values(
     values : sequence of float
         SI values by quantity number, nan where not known yet.
     """
+    plan = plan_of(formulas, unknowns)
+    if plan.start is not None and plan.start.guesses is guesses:
+        again = plan.start.values(values)
+        if again is not None:
+            return _started_alike(plan.start.first, again)
     found: dict[int, float] = {}
     assumed = []
     blind = []
@@ -85,7 +93,9 @@ def starting_values(
         between = _between(*room.bounds(quantity), position)
         if between is not None:
             found[quantity] = between
-    _propagate(unknowns, formulas, values, room, found)
+    given = dict(found)
+    told = _propagate(unknowns, formulas, values, room, found)
+    settled = len(found) == len(unknowns)
     for quantity in _told_zero(unknowns, formulas, values, found):
         # A difference of equal starts, such as an angle between buses: near zero, not anywhere.
         position = unknowns.index(quantity)
@@ -100,7 +110,7 @@ def starting_values(
             # One seed may let the equations tell the others.
             _propagate(unknowns, formulas, values, room, found)
     bounds = [guesses.bounds(quantity) for quantity in unknowns]
-    return Start(
+    start = Start(
         tuple(found[q] for q in unknowns),
         tuple(low for low, _ in bounds),
         tuple(high for _, high in bounds),
@@ -108,6 +118,15 @@ def starting_values(
         tuple(assumed),
         tuple(blind),
     )
+    if plan.often and settled and told is not None and not room.ranges:
+        plan.start = StartPlan(plan, guesses, given, told, start)
+    return start
+
+
+def _started_alike(first: Start, values: Sequence[float]) -> Start:
+    """A start at other values that guesses, bounds and equations have told in the same way."""
+    magnitude = tuple([abs(v) or m for v, m in zip(values, first.magnitude)])
+    return Start(tuple(values), first.lower, first.upper, magnitude, first.assumed)
 
 
 @dataclass(frozen=True, slots=True)
@@ -161,22 +180,36 @@ def _propagate(
     values: Sequence[float],
     room: _Room,
     found: MutableMapping[int, float],
-) -> None:
-    """Let each equation with one magnitude missing tell it, until none does."""
+) -> list[Told] | None:
+    """Let each equation with one magnitude missing tell it, until none does.
+
+    Returns
+    -------
+    list of Told or None
+        What has been told, in order; None where it was not all plain: an equation had no value to tell or a value
+        was moved inside its bounds.
+    """
+    told: list[Told] = []
+    plain = True
     wanted = {q for q in unknowns if q not in found}
     again = bool(wanted)
     while again:
         again = False
-        for formula in formulas:
+        for number, formula in enumerate(formulas):
             missing = [q for q in formula.quantities if q in wanted]
             if len(missing) != 1:
                 continue
             quantity = missing[0]
             value = _told(formula, quantity, values, found)
-            if value is not None:
-                found[quantity] = _inside(value, room, quantity)
-                wanted.discard(quantity)
-                again = True
+            if value is None:
+                plain = plain and isolate(formula.tape, formula.quantities.index(quantity)) is None
+                continue
+            found[quantity] = _inside(value.value, room, quantity)
+            plain = plain and found[quantity] == value.value and value.candidate == 0
+            told.append(Told(number, quantity, value.candidate))
+            wanted.discard(quantity)
+            again = True
+    return told if plain else None
 
 
 def _told_zero(
@@ -195,11 +228,19 @@ def _told_zero(
     return list(told)
 
 
+class _Value(NamedTuple):
+    """A value, and which of the closed forms it is of."""
+
+    value: float
+    candidate: int
+
+
 def _told(
     formula: Formula, quantity: int, values: Sequence[float], found: Mapping[int, float]
-) -> float | None:
+) -> _Value | None:
     """What the equation makes the quantity, with the others at their values or starts; zero tells nothing."""
-    return next((value for value in _candidates(formula, quantity, values, found) if value != 0.0), None)
+    found_values = enumerate(_candidates(formula, quantity, values, found))
+    return next((_Value(value, i) for i, value in found_values if value != 0.0), None)
 
 
 def _candidates(
