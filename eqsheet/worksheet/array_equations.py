@@ -14,6 +14,7 @@ from eqsheet.model.derive import equation_partials
 from eqsheet.model.generate import array_function
 from eqsheet.model.tape import Formula, Tape
 from eqsheet.solve.problem import Matrix, Problem, Vector
+from eqsheet.solve.sparse_pattern import Pattern
 from eqsheet.worksheet.starting_values import Start
 
 Numbers = NDArray[np.int64]
@@ -104,9 +105,9 @@ class ArrayBlock:
                 )
             function = array_function(equation_partials(shape.tape, slots))
             self._parts.append((shape, function, entries))
-        self._rows = np.concatenate([r for _, _, e in self._parts for _, r, _ in e])
-        self._columns = np.concatenate([c for _, _, e in self._parts for _, _, c in e])
-        self._pattern = _Pattern(self._rows, self._columns, self._n)
+        rows = np.concatenate([r for _, _, e in self._parts for _, r, _ in e])
+        columns = np.concatenate([c for _, _, e in self._parts for _, _, c in e])
+        self._triplets = _Triplets(rows, columns, self._n)
 
     def linearise(self, x: Vector) -> tuple[Vector, Matrix]:
         """Residuals (n,) and sparse Jacobian (n, n) at x."""
@@ -122,7 +123,7 @@ class ArrayBlock:
             for (mask, _, _), slope in zip(places, slopes):
                 wide = np.broadcast_to(np.asarray(slope, dtype=float), (m,))
                 entries.append(wide if mask is None else wide[mask])
-        return residuals, self._pattern.matrix(np.concatenate(entries))
+        return residuals, self._triplets.matrix(np.concatenate(entries))
 
     def evidence(self, x: Vector) -> tuple[Vector, Vector, Vector]:
         """Residuals, sizes and error bounds (n,) at x, evaluated afresh from the statements."""
@@ -162,29 +163,22 @@ class ArrayProblem(Problem):
     evidence: Callable[[Vector], tuple[Vector, Vector, Vector]]
 
 
-class _Pattern:
+class _Triplets:
     """Where triplets go in a compressed sparse column matrix, worked out once."""
 
     def __init__(self, rows: Numbers, columns: Numbers, n: int) -> None:
-        order = np.lexsort((rows, columns))
+        order = np.argsort(columns * n + rows, kind="stable")
         rows, columns = rows[order], columns[order]
         new = np.ones(len(rows), dtype=bool)
         new[1:] = (rows[1:] != rows[:-1]) | (columns[1:] != columns[:-1])
         self._order = order
         self._starts = np.flatnonzero(new)
-        self._indices = rows[new].astype(np.int32)
         counts = np.bincount(columns[new], minlength=n)
-        self._indptr = np.concatenate(([0], np.cumsum(counts))).astype(np.int32)
-        self._n = n
+        indptr = np.concatenate(([0], np.cumsum(counts)))
+        self._pattern = Pattern(rows[new].astype(np.int32), indptr.astype(np.int32))
 
     def matrix(self, entries: Vector) -> Matrix:
         """The matrix with these entries; those of one place are added up."""
-        from scipy.sparse import csc_matrix
-
-        sorted_entries = entries[self._order]
-        data = (
-            sorted_entries
-            if len(self._starts) == len(entries)
-            else np.add.reduceat(sorted_entries, self._starts)
-        )
-        return csc_matrix((data, self._indices, self._indptr), shape=(self._n, self._n), copy=False)
+        ordered = entries[self._order]
+        alone = len(self._starts) == len(entries)
+        return self._pattern.matrix(ordered if alone else np.add.reduceat(ordered, self._starts))
