@@ -8,10 +8,11 @@ from typing import Any
 import numpy as np
 import numpy.typing as npt
 
-from eqsheet.structure.block_triangular import assemble
-from eqsheet.structure.dulmage_mendelsohn import coarse_parts, conflicts, shortfalls
+from eqsheet.structure.array_sequence import as_sequence
+from eqsheet.structure.block_triangular import topological_order
+from eqsheet.structure.dulmage_mendelsohn import conflicts, shortfalls
 from eqsheet.structure.transversal_basis import leave_out_latest
-from eqsheet.structure.verdict import Block, Structure
+from eqsheet.structure.verdict import Block, Part, Structure
 
 Indices = npt.NDArray[np.int32] | npt.NDArray[np.int64]
 
@@ -54,44 +55,62 @@ def analyse_sparse(indptr: Indices, indices: Indices, columns: int) -> Structure
     incidence.sum_duplicates()
     matched_column = maximum_bipartite_matching(incidence, perm_type="column")
     matched_row = _inverse(matched_column, columns)
-    row_match: list[int] = matched_column.tolist()
-    column_match: list[int] = matched_row.tolist()
-
     over_rows: list[int] = []
     under_columns: list[int] = []
     row_lists: dict[int, Sequence[int]] = {}
     column_lists: dict[int, Sequence[int]] = {}
-    if -1 in row_match:
-        over_rows = _reached(incidence, matched_row, np.flatnonzero(matched_column < 0))
-        row_lists = _lists(incidence, over_rows)
-        over_columns = sorted([row_match[r] for r in over_rows if row_match[r] >= 0])
-        leave_out_latest(over_rows, _exchanged(over_columns, row_lists), row_match, column_match)
-    if -1 in column_match:
-        transposed = incidence.T.tocsr()
-        under_columns = _reached(transposed, matched_column, np.flatnonzero(matched_row < 0))
-        column_lists = _lists(transposed, under_columns)
-        under_rows = sorted([column_match[c] for c in under_columns if column_match[c] >= 0])
-        leave_out_latest(under_columns, _exchanged(under_rows, column_lists), column_match, row_match)
+    if (matched_column < 0).any() or (matched_row < 0).any():
+        row_match: list[int] = matched_column.tolist()
+        column_match: list[int] = matched_row.tolist()
+        if -1 in row_match:
+            over_rows = _reached(incidence, matched_row, np.flatnonzero(matched_column < 0))
+            row_lists = _lists(incidence, over_rows)
+            over_columns = sorted([row_match[r] for r in over_rows if row_match[r] >= 0])
+            leave_out_latest(over_rows, _exchanged(over_columns, row_lists), row_match, column_match)
+        if -1 in column_match:
+            transposed = incidence.T.tocsr()
+            under_columns = _reached(transposed, matched_column, np.flatnonzero(matched_row < 0))
+            column_lists = _lists(transposed, under_columns)
+            under_rows = sorted([column_match[c] for c in under_columns if column_match[c] >= 0])
+            leave_out_latest(under_columns, _exchanged(under_rows, column_lists), column_match, row_match)
+        matched_column = np.array(row_match, dtype=np.intp)
+        matched_row = np.array(column_match, dtype=np.intp)
 
-    over, under, well = coarse_parts(over_rows, under_columns, row_match, column_match)
+    over = Part(*_with_partners(over_rows, matched_column))
+    columns_under, rows_under = _with_partners(under_columns, matched_row)
+    under = Part(rows_under, columns_under)
+    well = Part(
+        _all_but(len(matched_column), over.rows, under.rows), _all_but(columns, over.columns, under.columns)
+    )
+    row_matches, column_matches = as_sequence(matched_column), as_sequence(matched_row)
     return Structure(
-        row_match=tuple(row_match),
-        column_match=tuple(column_match),
+        row_match=row_matches,
+        column_match=column_matches,
         over=over,
         under=under,
         well=well,
-        unmatched_rows=tuple([r for r in over.rows if row_match[r] < 0]),
-        unmatched_columns=tuple([c for c in under.columns if column_match[c] < 0]),
+        unmatched_rows=tuple([r for r in over.rows if row_matches[r] < 0]),
+        unmatched_columns=tuple([c for c in under.columns if column_matches[c] < 0]),
         blocks=_ordered_blocks(
-            incidence,
-            np.array(row_match, dtype=np.intp),
-            np.array(column_match, dtype=np.intp),
-            np.array(under.rows, dtype=np.intp),
-            set(over.columns),
+            incidence, matched_column, matched_row, np.array(under.rows, dtype=np.intp), set(over.columns)
         ),
-        conflicts=conflicts(over, row_lists, row_match),
-        shortfalls=shortfalls(under, column_lists, column_match),
+        conflicts=conflicts(over, row_lists, row_matches),
+        shortfalls=shortfalls(under, column_lists, column_matches),
     )
+
+
+def _with_partners(numbers: Sequence[int], match: npt.NDArray[Any]) -> tuple[Sequence[int], Sequence[int]]:
+    """Rows and the columns matched to them, or the reverse, ascending; see `dulmage_mendelsohn.coarse_parts`."""
+    partners = match[np.array(numbers, dtype=np.intp)]
+    return as_sequence(np.array(numbers, dtype=np.intp)), as_sequence(np.sort(partners[partners >= 0]))
+
+
+def _all_but(count: int, *others: Sequence[int]) -> Sequence[int]:
+    """The numbers below `count` that are in none of the others, ascending."""
+    left = np.ones(count, dtype=bool)
+    for numbers in others:
+        left[np.array(numbers, dtype=np.intp)] = False
+    return as_sequence(np.flatnonzero(left))
 
 
 def _inverse(match: npt.NDArray[Any], size: int) -> npt.NDArray[Any]:
@@ -167,9 +186,6 @@ def _ordered_blocks(
     labels, starts = np.unique(label[by_label], return_index=True)
     number = np.full(count, -1)
     number[labels] = np.arange(len(labels))
-    members = by_label.tolist()
-    bounds = [*starts.tolist(), len(members)]
-    components = [members[bounds[i] : bounds[i + 1]] for i in range(len(labels))]
 
     block, needed_block = number[label[column]], number[label[needed]]
     between = block != needed_block
@@ -177,4 +193,22 @@ def _ordered_blocks(
     edge_starts = np.searchsorted(edges // max(count, 1), np.arange(len(labels) + 1)).tolist()
     edge_ends = (edges % max(count, 1)).tolist()
     depends = [edge_ends[edge_starts[i] : edge_starts[i + 1]] for i in range(len(labels))]
-    return assemble(components, depends, column_match.tolist(), over_columns)
+
+    firsts = by_label[starts].tolist()
+    order = topological_order(firsts, depends)
+    place = [0] * len(order)
+    for position, i in enumerate(order):
+        place[i] = position
+    bounds = [*starts.tolist(), len(by_label)]
+    row_of_first = column_match[firsts].tolist()
+    blocks = []
+    for i in order:
+        first = firsts[i]
+        rows: Sequence[int] = (row_of_first[i],)
+        its_columns: Sequence[int] = (first,)
+        if bounds[i + 1] - bounds[i] > 1:
+            members = by_label[bounds[i] : bounds[i + 1]]
+            rows, its_columns = as_sequence(np.sort(column_match[members])), as_sequence(members)
+        after = tuple(sorted([place[j] for j in depends[i]])) if depends[i] else ()
+        blocks.append(Block(rows, its_columns, after, "over" if first in over_columns else "well"))
+    return tuple(blocks)

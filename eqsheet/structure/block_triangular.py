@@ -54,16 +54,6 @@ def ordered_blocks(
             needed = {number[c] for column in component for c in needs[column]}
         needed.discard(i)
         depends.append(needed)
-    return assemble(components, depends, column_match, over_columns)
-
-
-def assemble(
-    components: Sequence[Sequence[int]],
-    depends: Sequence[Collection[int]],
-    column_match: Sequence[int],
-    over_columns: Collection[int],
-) -> tuple[Block, ...]:
-    """Blocks in order of solution from components (ascending columns) and the components each one needs."""
     order = topological_order([component[0] for component in components], depends)
     place = [0] * len(order)
     for i, component_number in enumerate(order):

@@ -15,12 +15,12 @@ class Part(NamedTuple):
 
     Attributes
     ----------
-    rows, columns : tuple of int
+    rows, columns : sequence of int
         Ascending.
     """
 
-    rows: tuple[int, ...]
-    columns: tuple[int, ...]
+    rows: Sequence[int]
+    columns: Sequence[int]
 
 
 class Block(NamedTuple):
@@ -30,7 +30,7 @@ class Block(NamedTuple):
 
     Attributes
     ----------
-    rows, columns : tuple of int
+    rows, columns : sequence of int
         Ascending, equally many.
     depends : tuple of int
         Numbers of the blocks whose columns occur in `rows`; ascending, all smaller than the block's own.
@@ -38,8 +38,8 @@ class Block(NamedTuple):
         "over" where the block belongs to the over-determined part with its left-out rows removed.
     """
 
-    rows: tuple[int, ...]
-    columns: tuple[int, ...]
+    rows: Sequence[int]
+    columns: Sequence[int]
     depends: tuple[int, ...]
     part: Literal["well", "over"]
 
@@ -88,11 +88,13 @@ class Shortfall:
 class Structure:
     """The verdict on a system of rows and columns.
 
+    Sequences are tuples, those of a large system arrays that look like them (`ArraySequence`).
+
     Attributes
     ----------
-    row_match : tuple of int
+    row_match : sequence of int
         Column matched to each row, -1 for none.
-    column_match : tuple of int
+    column_match : sequence of int
         Row matched to each column, -1 for none.
     over, under, well : Part
         The over-, under- and well-determined part; together all rows and all columns.
@@ -108,8 +110,8 @@ class Structure:
         One for each connected piece of the under-determined part, ordered by first column.
     """
 
-    row_match: tuple[int, ...]
-    column_match: tuple[int, ...]
+    row_match: Sequence[int]
+    column_match: Sequence[int]
     over: Part
     under: Part
     well: Part

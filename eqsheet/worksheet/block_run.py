@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from eqsheet.worksheet.solve_block import BlockResult
@@ -15,9 +16,9 @@ class BlockRun:
     ----------
     number : int
         From 1; knowns are not counted.
-    equations : tuple of int
+    equations : sequence of int
         Numbers of its equations in the system, ascending, so that not even rounding depends on the order of the lines.
-    unknowns : tuple of int
+    unknowns : sequence of int
         Quantity numbers, ascending.
     after : tuple of int
         Numbers of the blocks it depends on directly.
@@ -26,7 +27,7 @@ class BlockRun:
     """
 
     number: int
-    equations: tuple[int, ...]
-    unknowns: tuple[int, ...]
+    equations: Sequence[int]
+    unknowns: Sequence[int]
     after: tuple[int, ...]
     result: BlockResult | None

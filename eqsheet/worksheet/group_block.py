@@ -61,14 +61,14 @@ def solve_group_block(
     arrays : GuessArrays
         The same as in `guesses`.
     """
-    own = set(unknowns)
     apart = [int(n) for n in numbers[numbers < equations.written]]
+    own = set(unknowns) if apart else set()
     written = [settle(formulas[n], lambda q: None if q in own else known.values[q]) for n in apart]
     everything = _with(formulas, numbers, dict(zip(apart, written)))
     if switches(written, own):
         return solve_equations(everything, unknowns, known, guesses, dimensions, budget)
     shapes = equations.shapes(numbers, written)
-    columns = np.array(unknowns, dtype=np.int64)
+    columns = np.asarray(unknowns)
     start = _start(shapes, columns, arrays)
     if start is None:
         start = starting_values(unknowns, everything, known.values, guesses, dimensions)

@@ -12,6 +12,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.tape import Formula
 from eqsheet.solve.trail import Budget
+from eqsheet.structure.array_sequence import as_sequence
 from eqsheet.structure.verdict import Block
 from eqsheet.worksheet.array_equations import LARGE_BLOCK
 from eqsheet.worksheet.block_memory import BlockMemory
@@ -44,6 +45,8 @@ class GroupRun:
     ----------
     values, errors : list of float
         By quantity number.
+    value_array, error_array : ndarray (quantities,)
+        The same.
     runs : sequence of BlockRun
     block_of : ndarray (quantities,)
         Number of the block that gives a quantity, 0 for none.
@@ -71,9 +74,8 @@ class GroupRun:
             if quantity not in prepared.contested:
                 self.values[quantity] = value
                 self.errors[quantity] = as_typed(value)
-        # The same as arrays, for large blocks and chains.
-        self._value_array = np.array(self.values)
-        self._error_array = np.array(self.errors)
+        self.value_array = np.array(self.values)
+        self.error_array = np.array(self.errors)
         self._known = Known(self.values, self.errors)
         self._written = [prepared.formulas[n] for n in range(self._equations.written)]
         self.block_of = np.zeros(total, dtype=np.int32)
@@ -128,9 +130,8 @@ class GroupRun:
         else:
             result = self._given.get(number) or self._result(equations, block)
             self._keep(number, equations, block, result)
-        for quantity in block.columns:
-            self.block_of[quantity] = number
-        run = BlockRun(number, tuple(equations.tolist()), block.columns, after, result)
+        self.block_of[np.asarray(block.columns)] = number
+        run = BlockRun(number, as_sequence(equations), block.columns, after, result)
         self._parts.append((1, lambda _: run))
         if result is None:
             return
@@ -145,9 +146,9 @@ class GroupRun:
         elif len(equations) < LARGE_BLOCK:
             self.diagnostics += trust_warnings(system, run)
         else:
-            columns = np.array(block.columns, dtype=np.int64)
+            columns = np.asarray(block.columns)
             self.diagnostics += self._trust(
-                run, equations, self._value_array[columns], self._error_array[columns]
+                run, equations, self.value_array[columns], self.error_array[columns]
             )
         self.diagnostics += start_note(system, run)
 
@@ -178,8 +179,8 @@ class GroupRun:
             formulas,
             block.columns,
             self._known,
-            self._value_array,
-            self._error_array,
+            self.value_array,
+            self.error_array,
             self.guesses,
             self._guess_arrays,
             dimensions,
@@ -196,6 +197,9 @@ class GroupRun:
             self._failed.add(number)
             self.best.update(zip(block.columns, result.values))
             return
+        columns = np.asarray(block.columns)
+        self.value_array[columns] = result.values
+        self.error_array[columns] = result.errors
         first, end = block.columns[0], block.columns[-1] + 1
         if end - first == len(block.columns):
             self.values[first:end] = result.values
@@ -204,9 +208,6 @@ class GroupRun:
             for quantity, value, error in zip(block.columns, result.values, result.errors):
                 self.values[quantity] = value
                 self.errors[quantity] = error
-        columns = np.array(block.columns, dtype=np.int64)
-        self._value_array[columns] = result.values
-        self._error_array[columns] = result.errors
 
     def _trust(
         self, run: BlockRun, equations: Numbers, values: NDArray[np.float64], errors: NDArray[np.float64]
@@ -246,16 +247,16 @@ class GroupRun:
             self._singles.parts(begin, end),
             targets,
             self.values,
-            self._value_array,
-            self._error_array,
+            self.value_array,
+            self.error_array,
             self._guess_arrays,
         )
         if result is None:
             for quantity in targets.tolist():
                 self.values[quantity] = math.nan
             return False
-        self._value_array[targets] = result.values
-        self._error_array[targets] = result.errors
+        self.value_array[targets] = result.values
+        self.error_array[targets] = result.errors
         for quantity, error in zip(targets.tolist(), result.errors.tolist()):
             self.errors[quantity] = error
         self.block_of[targets] = self._numbers[begin:end]

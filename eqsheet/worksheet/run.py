@@ -14,6 +14,7 @@ from eqsheet.model.branches import literal_values
 from eqsheet.model.evaluate import evaluate_with_evidence
 from eqsheet.model.tape import Formula
 from eqsheet.solve.trail import Budget
+from eqsheet.structure.array_sequence import as_sequence
 from eqsheet.structure.verdict import Conflict
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.block_run import BlockRun as BlockRun
@@ -37,8 +38,8 @@ class Run:
     ``unsolved`` holds the numbers of the blocks that were tried and not solved.
     """
 
-    values: tuple[float, ...]
-    errors: tuple[float, ...]
+    values: Sequence[float]
+    errors: Sequence[float]
     blocks: Sequence[BlockRun]
     block_of: Mapping[int, int]
     guesses: Guesses
@@ -156,20 +157,17 @@ def _run_groups(
     from eqsheet.worksheet.group_guesses import ByBlock
     from eqsheet.worksheet.group_run import GroupRun
 
+    # Nothing can be contradicted: what is not square is prepared without groups.
     work = GroupRun(prepared, budget, memory, given)
     work.solve_all()
-    values, formulas = work.values, work.formulas
-    verdicts = _conflicts(prepared, formulas, values, work.errors)
-    diagnostics = [*work.diagnostics, *(diagnostic for _, _, diagnostic in verdicts)]
-    _withhold(prepared, work.runs, values, [c for c, satisfied, _ in verdicts if not satisfied])
     return Run(
-        tuple(values),
-        tuple(work.errors),
+        as_sequence(work.value_array),
+        as_sequence(work.error_array),
         work.runs,
         ByBlock(work.block_of),
         work.guesses,
-        formulas,
-        tuple(diagnostics),
+        work.formulas,
+        tuple(work.diagnostics),
         work.best,
         tuple(work.unsolved),
     )

@@ -35,6 +35,7 @@ from eqsheet.solve.regimes import Held, solve_regimes
 from eqsheet.solve.termination import ACCEPTABLE
 from eqsheet.solve.trail import Budget, Trail
 from eqsheet.solve.verdict import judge, judge_by_factor
+from eqsheet.structure.array_sequence import as_sequence
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.array_equations import LARGE_BLOCK, ArrayBlock, ArrayProblem, shapes_of
 from eqsheet.worksheet.block_equations import BlockProblem, block_problem, scalar_problem
@@ -54,7 +55,7 @@ class BlockResult:
     Attributes
     ----------
     solved : bool
-    values, errors : tuple of float
+    values, errors : sequence of float
         By position of the unknowns; the best point and infinities where it is not solved.
     method : str
     iterations : int
@@ -76,8 +77,8 @@ class BlockResult:
     """
 
     solved: bool
-    values: tuple[float, ...]
-    errors: tuple[float, ...]
+    values: Sequence[float]
+    errors: Sequence[float]
     method: str
     iterations: int = 0
     residual: float = 0.0
@@ -425,7 +426,7 @@ def judged(
 ) -> BlockResult:
     """The solver's outcome, believed only where the equations evaluated afresh bear it out."""
     x = np.asarray(outcome.x, dtype=float)
-    values = tuple(x.tolist())
+    values = as_sequence(x)
     factor = outcome.factor
     if factor is not None:
         # Too large to be kept with the solution.
@@ -467,7 +468,7 @@ def judged(
     return BlockResult(
         True,
         values,
-        tuple(verdict.forward_error.tolist()),
+        as_sequence(verdict.forward_error),
         outcome.method,
         outcome.iterations,
         verdict.residual,
