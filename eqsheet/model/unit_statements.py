@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.registry import UnitProblem, UnitTable
@@ -23,6 +23,8 @@ def collect_units(statements: Sequence[syntax.Statement], diagnostics: list[Diag
         for statement in waiting:
             outcome = _with_new_unit(table, statement)
             if isinstance(outcome, UnitTable):
+                if outcome is table:
+                    diagnostics.append(_no_news(table, statement))
                 table = outcome
             else:
                 left.append(statement)
@@ -32,6 +34,19 @@ def collect_units(statements: Sequence[syntax.Statement], diagnostics: list[Diag
             break
         waiting = left
     return table
+
+
+def _no_news(table: UnitTable, statement: syntax.Statement) -> Diagnostic:
+    """That a line makes a unit that is there already, and just so: a currency of the list, or a second line."""
+    node = statement.node
+    assert isinstance(node, syntax.NewUnit)
+    known = table.meaning(node.symbol)
+    return note(
+        "unit-known",
+        f"`{node.symbol}` is a unit already{f' ({known})' if known else ''}, so this line changes nothing",
+        Label(statement.whole),
+        help="leave the line out",
+    )
 
 
 def _with_new_unit(table: UnitTable, statement: syntax.Statement) -> UnitTable | Diagnostic:

@@ -135,11 +135,11 @@ class UnitTable:
     def _with(self, symbol: str, atom: _Atom) -> UnitTable | UnitProblem:
         if self._atom(symbol) is not None or symbol in _GAS_VOLUMES:
             row = UNITS.get(symbol)
-            meaning = f" ({row[9]})" if row is not None else ""
+            known = self.meaning(symbol)
             return UnitProblem(
                 "unit-redefined",
                 0,
-                f"`{symbol}` is already a unit{meaning}",
+                f"`{symbol}` is already a unit{f' ({known})' if known else ''}",
                 "convert currencies by a known, such as `rate = 1.05 EUR/CHF`"
                 if row is not None and row[8] == "Money"
                 else "choose another symbol, or leave the line out",
@@ -147,6 +147,11 @@ class UnitTable:
         return UnitTable(self.ambient, MappingProxyType({**self.added, symbol: atom}))
 
     # --- look-ups -----------------------------------------------------------------------------------------
+
+    def meaning(self, symbol: str) -> str:
+        """What a symbol of the published list is, in words; empty for a prefixed one and for all others."""
+        row = UNITS.get(symbol)
+        return "" if row is None else row[9]
 
     def lookup(self, symbol: str) -> Unit | None:
         """The unit of one symbol, prefixed or not; None if there is none (refused spellings included)."""

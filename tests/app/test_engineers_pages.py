@@ -236,7 +236,6 @@ def test_two_stage_compressor_with_intercooling_between() -> None:
     """Intermediate pressure at which both stages take the same power; cost of a year."""
     solution = solve(
         """
-        new unit EUR
         q = 120 Nm^3/h             # at 0 degC and 1 atm
         M = 28.96 g/mol
         n = 1.4

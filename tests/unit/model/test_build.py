@@ -162,9 +162,16 @@ def test_a_label_stands_once() -> None:
 
 
 def test_new_units_in_any_order() -> None:
-    system, found = build("x = 2 crate\nnew unit crate = 3 box\nnew unit box = 4 EUR\nnew unit EUR")
+    system, found = build("x = 2 crate\nnew unit crate = 3 box\nnew unit box = 4 carton\nnew unit carton")
     assert not found
     assert knowns(system) == {"x": 24.0}
+
+
+@pytest.mark.parametrize("lines", ["new unit EUR", "new unit token\nnew unit token"])
+def test_a_new_unit_that_is_there_already_is_noted(lines: str) -> None:
+    system, found = build(f"{lines}\nx = 2 {lines.split()[-1]}")
+    assert found == ["unit-known"]
+    assert knowns(system) == {"x": 2.0}
 
 
 @pytest.mark.parametrize(

@@ -227,6 +227,10 @@ def test_angles_and_parts_are_plain_numbers() -> None:
         ("cm2", "write `cm^2`"),
         ("Pas", "write `Pa*s`"),
         ("gpn", "write `gon` or `gpm`, or make it"),
+        ("acfm", "write `cfm`"),
+        ("kips", "write `kip`"),
+        ("MGD", "write `1e6 gal/d`"),
+        ("ton_ref", "write `TR`"),
         ("widget", "make it a unit of the worksheet: `new unit widget`"),
     ],
 )
@@ -245,6 +249,11 @@ def test_help_for_an_unknown_unit(written: str, help_starts: str) -> None:
         ("F", "degF"),
         ("R", "degR"),
         ("k", "const.k_B"),
+        ("therm", "therm_US"),
+        ("MMBtu", "1e6 Btu"),
+        ("ft_head", "ftH2O"),
+        ("bhp", "9.81 kW"),
+        ("scfh", "Nm^3/h"),
     ],
 )
 def test_ambiguous_symbols_are_refused_with_the_choices(written: str, named: str) -> None:
