@@ -11,7 +11,7 @@ from typing import Any
 
 import numpy as np
 
-from eqsheet.model.functions import _CLOSE, _SLOPE_TERMS
+from eqsheet.model.functions import _CLOSE, SLOPE_SERIES, SLOPE_SERIES_REACHES
 
 
 def _erf(a: Any) -> Any:
@@ -49,12 +49,12 @@ def _logmean(a: Any, b: Any) -> Any:
 def _logmean_slope(a: Any, b: Any) -> Any:
     a, b = np.asarray(a, dtype=float), np.asarray(b, dtype=float)
     s = _log_ratio(b, a)
-    near = np.clip(s, -1.0, 1.0)
+    near = np.clip(s, -SLOPE_SERIES_REACHES, SLOPE_SERIES_REACHES)
     total: Any = 0.0
-    for n in range(_SLOPE_TERMS + 1, 1, -1):
-        total = 1.0 + total * near / (n + 1)
+    for factor in SLOPE_SERIES:
+        total = total * near + factor
     far = np.divide(np.expm1(s) - s, s * s)
-    slope = np.where(np.abs(s) > 1.0, far, total / 2.0)
+    slope = np.where(np.abs(s) > SLOPE_SERIES_REACHES, far, total)
     return np.where((b == 0.0) & (a != 0.0), 0.0, slope)
 
 

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from functools import cached_property, lru_cache
+from typing import Any
 
 from eqsheet.model.derive import jacobian
 from eqsheet.model.generate import Function, grouped_function
@@ -87,7 +88,7 @@ class BlockCode:
 
         It takes x and the known quantities, then the literals of each equation.
         """
-        instructions: list[tuple[object, ...]] = []
+        instructions: list[tuple[Any, ...]] = [("quantity", k) for k in range(self.unknowns + self.known)]
         outputs: list[int] = []
         literals = 0
         for tape, slots in self._shapes:
@@ -95,8 +96,9 @@ class BlockCode:
             for instruction in tape.instructions:
                 operation = instruction[0]
                 if operation == "quantity":
-                    instruction = ("quantity", slots[instruction[1]])
-                elif operation == "literal":
+                    new.append(slots[instruction[1]])
+                    continue
+                if operation == "literal":
                     instruction = ("literal", literals + instruction[1])
                 new.append(len(instructions))
                 instructions.append(renumbered(instruction, new))

@@ -111,11 +111,13 @@ class _Code:
             "R": ROUNDING,
             "U": UNDERFLOW,
             "product_error": product_error,
+            "judge_div": EVIDENCE["div"],
             "unary_evidence": unary_evidence,
             "interpolated_evidence": interpolated_evidence,
             "value_or_nan": value_or_nan,
         }
         self._exact: set[int] = set()  # instructions whose error is zero whatever the values
+        self._measured: set[int] = set()  # instructions whose magnitude m has a name
 
     def stands_for(self, letter: str, number: int) -> int:
         """The number itself; errors that are always zero get a name first."""
@@ -127,40 +129,83 @@ class _Code:
         """The error bound of an instruction."""
         return "0.0" if number in self._exact else f"b{number}"
 
+    def magnitude(self, number: int) -> str:
+        """The magnitude of an instruction's value, worked out once."""
+        if number not in self._measured:
+            self._measured.add(number)
+            self.lines.append(f"m{number}=abs(v{number})")
+        return f"m{number}"
+
     def write(self, i: int, instruction: tuple[Any, ...]) -> None:
         """Add the lines of instruction number i."""
         operation, *operands = instruction
         if operation == "quantity":
-            self.lines.append(f"v{i}=q[{operands[0]}]; s{i}=abs(v{i})")
+            self.lines.append(f"v{i}=q[{operands[0]}]; m{i}=s{i}=abs(v{i})")
+            self._measured.add(i)
             if self.errors_given:
                 self.lines.append(f"b{i}=abs(e[{operands[0]}])")
             else:
                 self._exact.add(i)
         elif operation == "literal":
-            self.lines.append(f"v{i}=l[{operands[0]}]; s{i}=abs(v{i})")
+            self.lines.append(f"v{i}=l[{operands[0]}]; m{i}=s{i}=abs(v{i})")
+            self._measured.add(i)
             self._exact.add(i)
         elif operation == "const":
             value = as_float(operands[0])
             error = 0.0 if is_exact(operands[0], value) else rounding_of(value)
-            self.names |= {f"v{i}": value, f"s{i}": abs(value), f"b{i}": error}
+            self.names |= {f"v{i}": value, f"m{i}": abs(value), f"s{i}": abs(value), f"b{i}": error}
+            self._measured.add(i)
+            if not error:
+                self._exact.add(i)
         elif operation == "mul":
-            a, b = operands
-            self.lines.append(f"v{i}=v{a}*v{b}; s{i}=s{a}*s{b} if s{a} and s{b} else 0.0")
-            handed_on = (
-                "" if {a, b} <= self._exact else f"product_error(v{a},{self.bound(a)},v{b},{self.bound(b)})+"
-            )
-            self.lines.append(f"b{i}={handed_on}(R*abs(v{i})+U if v{i} else (U if v{a} and v{b} else 0.0))")
+            self._write_product(i, *operands)
+        elif operation == "div":
+            self._write_quotient(i, *operands)
         elif operation in ("add", "sub"):
             a, b = operands
-            self.lines.append(
-                f"v{i}=v{a}{'+' if operation == 'add' else '-'}v{b}; s{i}=max(s{a},s{b},abs(v{i}))"
-            )
-            self.lines.append(f"b{i}={self.bound(a)}+{self.bound(b)}+(R*abs(v{i})+U if v{i} else 0.0)")
+            self.lines.append(f"v{i}=v{a}{'+' if operation == 'add' else '-'}v{b}")
+            self.lines.append(f"s{i}=max(s{a},s{b},{self.magnitude(i)})")
+            self.lines.append(f"b{i}={self.bound(a)}+{self.bound(b)}+(R*m{i}+U if v{i} else 0.0)")
         elif operation == "neg":
             (a,) = operands
             self.lines.append(f"v{i}=-v{a}; s{i}=s{a}; b{i}={self.bound(a)}")
         else:
             self._write_call(i, operation, operands)
+
+    def _write_product(self, i: int, a: int, b: int) -> None:
+        """The lines of a product; what makes no number of 0 times infinity is left to the interpreter's function."""
+        self.lines.append(f"v{i}=v{a}*v{b}; s{i}=s{a}*s{b} if s{a} and s{b} else 0.0")
+        first, second = self.bound(a), self.bound(b)
+        parts = []
+        if b not in self._exact:
+            parts.append(f"{self.magnitude(a)}*{second}")
+        if a not in self._exact:
+            parts.append(f"{self.magnitude(b)}*{first}")
+        if len(parts) == 2:
+            parts.append(f"{first}*{second}")
+        if parts:
+            self.lines.append(f"h={'+'.join(parts)}")
+            self.lines.append(f"if h!=h: h=product_error(v{a},{first},v{b},{second})")
+        handed_on = "h+" if parts else ""
+        rounding = f"(R*{self.magnitude(i)}+U if v{i} else (U if v{a} and v{b} else 0.0))"
+        self.lines.append(f"b{i}={handed_on}{rounding}")
+
+    def _write_quotient(self, i: int, a: int, b: int) -> None:
+        """The lines of a quotient of numbers that are not zero; any other is left to the interpreter's function."""
+        self.names["step_div"] = STEPS["div"]
+        first, second = self.bound(a), self.bound(b)
+        top, below = self.magnitude(a), self.magnitude(b)
+        spread = "+".join([x for x in (first, "" if b in self._exact else f"h*{second}") if x and x != "0.0"])
+        room = below if b in self._exact else f"{below}-{second}"
+        judged = f"judge_div(v{i},v{a},s{a},{first},v{b},s{b},{second})"
+        self._measured.add(i)
+        self.lines += [
+            f"if 0.0<{top} and 0.0<{below}:",
+            f" v{i}=v{a}/v{b}; m{i}=h=abs(v{i}); r={room}; s{i}=s{a}/{below}*(s{b}/{below})",
+            f" b{i}={f'({spread})/r+' if spread else ''}(R*h+U)",
+            f" if not (h and r>0.0 and b{i}==b{i} and s{i}>0.0): s{i},b{i}={judged}",
+            f"else: v{i}=step_div(v{a},v{b}); m{i}=abs(v{i}); s{i},b{i}={judged}",
+        ]
 
     def _write_call(self, i: int, operation: str, operands: list[Any]) -> None:
         """The step and the evidence of an operation by calls of the interpreter's own functions."""

@@ -23,8 +23,11 @@ ALL_BINARY_FUNCTIONS = (*BINARY_FUNCTIONS, *INNER_BINARY_FUNCTIONS)
 # Where a and b are closer than this (as |a-b|/|a+b|), ln(a/b) is taken as 2*atanh((a-b)/(a+b)), which does
 # not cancel; beyond it the rounding of the quotient near 1 would lose digits in atanh.
 _CLOSE = 0.5
-# Terms s^n/(n+2)! left out after this many are below the rounding of the sum for |s| <= 1.
-_SLOPE_TERMS = 18
+# Up to this |s| the series of the slope of the logarithmic mean is summed; beyond it the closed form loses less than
+# two bits.
+SLOPE_SERIES_REACHES = 0.5
+# 1/n! for n = 16 down to 2, the factors of the series: what is left out is below the rounding of the sum.
+SLOPE_SERIES = tuple([1.0 / math.factorial(n) for n in range(16, 1, -1)])
 # Bernoulli numbers B_2k/(2k), k = 1.. of the asymptotic series of digamma (Abramowitz and Stegun 6.3.18).
 _DIGAMMA_SERIES = (1 / 12, -1 / 120, 1 / 252, -1 / 240, 1 / 132, -691 / 32760, 1 / 12)
 # From here the seven terms are below rounding level.
@@ -85,12 +88,12 @@ def logmean_slope(a: float, b: float) -> float:
     if b == 0.0 and a != 0.0:
         return 0.0
     s = _log_ratio(b, a)
-    if abs(s) > 1.0:
+    if not -SLOPE_SERIES_REACHES <= s <= SLOPE_SERIES_REACHES:
         return (math.expm1(s) - s) / (s * s)
     total = 0.0
-    for n in range(_SLOPE_TERMS + 1, 1, -1):
-        total = 1.0 + total * s / (n + 1)
-    return total / 2.0
+    for factor in SLOPE_SERIES:
+        total = total * s + factor
+    return total
 
 
 def digamma(a: float) -> float:

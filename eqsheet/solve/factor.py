@@ -87,11 +87,12 @@ def factorise(jacobian: Matrix, weights: Vector) -> Factor:
     inverse, condition = _inverse(matrix)
     # The sizes of the unknowns may be far off: scale by what stands in the matrix before giving up, first with the
     # sizes and then without them.
-    for start in (np.ones_like(weights), 1.0 / weights):
-        if condition > SINGULAR_CONDITION:
-            left, right = _equilibration(matrix, start)
-            inverse, condition = _inverse(matrix * right / left[:, None])
-            inverse = inverse * right[:, None] / left
+    for power in (0.0, -1.0):
+        if condition <= SINGULAR_CONDITION:
+            break
+        left, right = _equilibration(matrix, weights**power)
+        inverse, condition = _inverse(matrix * right / left[:, None])
+        inverse = inverse * right[:, None] / left
     if condition > SINGULAR_CONDITION:
         return Factor(matrix, weights, rows, pseudo_inverse(matrix), np.inf)
     return Factor(matrix, weights, rows, inverse, condition)

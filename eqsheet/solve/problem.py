@@ -13,6 +13,7 @@ Vector: TypeAlias = NDArray[np.float64]
 # Dense (n, n) array, or a scipy.sparse matrix of that shape for large blocks. scipy is not imported for its
 # sake.
 Matrix: TypeAlias = Any
+Floats: TypeAlias = Sequence[float]
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,13 +25,16 @@ class WrittenStep:
     Attributes
     ----------
     step : callable
-        x, n floats, to the residuals r, the step ``-J^-1 r``, and the numbers of the elimination.
+        x, n floats, and `arguments` to the residuals r, the step ``-J^-1 r``, and the numbers of the elimination.
     correction : callable
-        Residuals and numbers of the elimination to the step of the same Jacobian.
+        Residuals, an empty tuple and the numbers of the elimination to the step of the same Jacobian.
+    arguments : sequence of float
+        What else the equations take.
     """
 
-    step: Callable[[Sequence[float]], tuple[Sequence[float], Sequence[float], Sequence[float]]]
-    correction: Callable[[Sequence[float], Sequence[float]], Sequence[float]]
+    step: Callable[[Floats, Floats], tuple[Floats, Floats, Floats]]
+    correction: Callable[[Floats, tuple[()], Floats], Floats]
+    arguments: Floats = ()
 
 
 @dataclass(frozen=True)

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from eqsheet.solve.factor import Factor, factorise
+from eqsheet.solve.factor import TINY, Factor, factorise
 from eqsheet.solve.problem import Matrix, Vector
 from eqsheet.solve.termination import ACCEPTABLE, ZERO_FLOOR
 
@@ -36,8 +36,8 @@ class Verdict:
         is the relative error of the unknowns at worst.
     forward_error : ndarray (n,)
         Estimate of the error of each unknown, in its own unit.
-    digits : tuple of int
-        Significant digits of each unknown to trust, 0 to 15.
+    reach : ndarray (n,)
+        Size of each unknown, > 0.
     """
 
     solved: bool
@@ -45,7 +45,15 @@ class Verdict:
     residual: float
     condition: float
     forward_error: Vector
-    digits: tuple[int, ...]
+    reach: Vector
+
+    @property
+    def digits(self) -> tuple[int, ...]:
+        """Significant digits of each unknown to trust, 0 to 15."""
+        with np.errstate(divide="ignore"):
+            digits = np.floor(-np.log10(np.maximum(self.forward_error / self.reach, 1e-16)))
+        # An error that is no number leaves no digits.
+        return tuple(np.clip(np.nan_to_num(digits, nan=0.0), 0, MOST_DIGITS).astype(int).tolist())
 
 
 def judge(
@@ -100,7 +108,8 @@ def _reach(x: Vector, magnitude: Vector) -> Vector:
 def _unfit(residual: Vector) -> Verdict:
     """The verdict where something is not finite."""
     worst = int(np.flatnonzero(~np.isfinite(residual))[0]) if not np.isfinite(residual).all() else 0
-    return Verdict(False, worst, np.inf, np.inf, np.full(residual.size, np.inf), (0,) * residual.size)
+    nothing = np.full(residual.size, np.inf)
+    return Verdict(False, worst, np.inf, np.inf, nothing, np.ones(residual.size))
 
 
 def _judged(
@@ -117,25 +126,16 @@ def _judged(
         return _unfit(residual)
     rounding = error_bounds + ROUNDED_UNKNOWNS * UNIT_ROUNDOFF * slopes
     allowed = np.maximum(ACCEPTABLE * sizes, rounding)
-    tiny = np.finfo(float).tiny
-    worst = int((np.abs(residual) / np.maximum(allowed, tiny)).argmax())
-    size = max(float(sizes[worst]), float(slopes[worst]), tiny)
+    gaps = np.abs(residual)
+    shares = gaps / np.maximum(allowed, TINY)
+    worst = int(shares.argmax())
+    size = max(float(sizes[worst]), float(slopes[worst]), TINY)
     if factor.singular:
         error = np.full(x.size, np.inf)
     else:
-        error = factor.weights * _absolute_solve(factor.inverse, (np.abs(residual) + rounding) / factor.rows)
-    with np.errstate(divide="ignore"):
-        digits = np.floor(-np.log10(np.maximum(error / reach, 1e-16)))
-    # An error that is no number leaves no digits.
-    trusted = np.clip(np.nan_to_num(digits, nan=0.0), 0, MOST_DIGITS).astype(int)
-    return Verdict(
-        bool((np.abs(residual) <= allowed).all()),
-        worst,
-        float(abs(residual[worst])) / size,
-        factor.condition,
-        error,
-        tuple(trusted.tolist()),
-    )
+        error = factor.weights * _absolute_solve(factor.inverse, (gaps + rounding) / factor.rows)
+    solved = bool((gaps <= allowed).all())
+    return Verdict(solved, worst, float(gaps[worst]) / size, factor.condition, error, reach)
 
 
 def _absolute_solve(inverse: Matrix, right: Vector) -> Vector:

@@ -17,7 +17,7 @@ import numpy as np
 from eqsheet.solve.damping import SURE_CONTRACTION, corrected_damping, predicted_damping
 from eqsheet.solve.finish import WEIGHT_FLOOR, finish_plainly
 from eqsheet.solve.interior import Interior
-from eqsheet.solve.newton import CONTRACTING, NEAR
+from eqsheet.solve.newton import CONTRACTING, NEAR, QUICK
 from eqsheet.solve.outcome import Iteration, Outcome
 from eqsheet.solve.problem import Problem, Vector, WrittenStep
 from eqsheet.solve.termination import (
@@ -30,6 +30,11 @@ from eqsheet.solve.termination import (
 )
 from eqsheet.solve.trail import Trail
 
+# Once Newton's steps shrink quadratically and the one after the next is foretold to be smaller than this, the point
+# after the next has the digits that the last correction starts from.
+SETTLED = 2.0**-44
+# The floor of the test of rest as a part of that of the weights.
+ZERO_PART = ZERO_FLOOR / WEIGHT_FLOOR
 # More steps than these are not a plain way.
 MOST_STEPS = 40
 # Damping below which the way is not plain either.
@@ -58,26 +63,34 @@ def _walk(problem: Problem, written: WrittenStep, start: Vector, trail: Trail) -
     interior = Interior(problem)
     floors = (WEIGHT_FLOOR * problem.magnitude).tolist()
     mean = sqrt(problem.n)
+    newton_step, correct, arguments = written.step, written.correction, written.arguments
     x: list[float] = interior.enter(start).tolist()
-    residuals, step, numbers = written.step(x)
+    _, step, numbers = newton_step(x, arguments)
     damping, limiting, contraction = 0.0, -1, inf
     last_step: Sequence[float] = ()
     last_correction: Sequence[float] = ()
     last_rest, last_norm, slow_steps = inf, inf, 0
     way: list[tuple[list[float], float, int]] = []
+    settled = True
     while len(way) < MOST_STEPS:
         way.append((x, damping, limiting))
         weights = list(map(max, map(abs, x), floors))
         scaled = list(map(truediv, step, weights))
         norm = hypot(*scaled) / mean
-        rest = _largest_change(step, x, problem) if norm < NEAR else inf
+        rest = _largest_change(step, x, floors) if norm < NEAR else inf
         slow_steps = slow_steps + 1 if MULTIPLE < rest / last_rest < SLOW else 0
-        if rest <= AT_REST and (last_step_due(rest, norm / last_norm) or rest > SLOW * last_rest):
-            point = np.array(x)
-            trail.walked(Way(problem, way, trail.method), point)
-            trail.contracting = contraction < CONTRACTING
-            outcome = finish_plainly(problem, interior, trail, point, slow_steps)
-            return outcome if outcome is not None and outcome.solved else None
+        at_rest = rest <= AT_REST and (last_step_due(rest, norm / last_norm) or rest > SLOW * last_rest)
+        if at_rest or (settled and contraction < QUICK and rest * (norm / last_norm) ** 2 <= SETTLED):
+            point = x
+            if not at_rest:
+                point = [a + d for a, d in zip(x, step)]
+                way.append((point, 1.0, -1))
+            outcome = _finished(problem, interior, trail, way, contraction, slow_steps)
+            if outcome is not None or at_rest:
+                return outcome
+            # The root is further off than the steps foretold.
+            way.pop()
+            settled = False
         if damping == 0.0 or (damping == 1.0 and contraction < SURE_CONTRACTION):
             damping = 1.0
         else:
@@ -95,12 +108,12 @@ def _walk(problem: Problem, written: WrittenStep, start: Vector, trail: Trail) -
                 return None
             trial, limiting = _trial(interior, x, step, damping, norm)
             try:
-                residuals, next_step, next_numbers = written.step(trial)
+                residuals, next_step, next_numbers = newton_step(trial, arguments)
             except (ValueError, OverflowError):
                 # Outside the domain. A division by zero may be a pivot instead, which is no matter of damping.
                 damping *= 0.5
                 continue
-            correction = written.correction(residuals, numbers)
+            correction = correct(residuals, (), numbers)
             corrected = list(map(truediv, correction, weights))
             contraction = hypot(*corrected) / mean / norm
             if damping == 1.0 and contraction < SURE_CONTRACTION:
@@ -156,10 +169,26 @@ class Way(Sequence[Iteration]):
         return Iteration(scaled, damping, limiting, self._method)
 
 
-def _largest_change(step: Sequence[float], x: Sequence[float], problem: Problem) -> float:
-    """The largest part of a step relative to its unknown."""
-    floors = (ZERO_FLOOR * problem.magnitude).tolist()
-    return float(max(map(truediv, map(abs, step), map(max, map(abs, x), floors))))
+def _finished(
+    problem: Problem,
+    interior: Interior,
+    trail: Trail,
+    way: list[tuple[list[float], float, int]],
+    contraction: float,
+    slow_steps: int,
+) -> Outcome | None:
+    """The judgement of the last point of a way; None where it is not at a root."""
+    point = np.array(way[-1][0])
+    trail.walked(Way(problem, tuple(way), trail.method), point)
+    trail.contracting = contraction < CONTRACTING
+    outcome = finish_plainly(problem, interior, trail, point, slow_steps)
+    return outcome if outcome is not None and outcome.solved else None
+
+
+def _largest_change(step: Sequence[float], x: Sequence[float], floors: Sequence[float]) -> float:
+    """The largest part of a step relative to its unknown, which counts as no less than its floor."""
+    sizes = [a if a > f else f for a, f in zip(map(abs, x), [ZERO_PART * f for f in floors])]
+    return float(max(map(truediv, map(abs, step), sizes)))
 
 
 def _trial(

@@ -50,21 +50,12 @@ class Repeats:
         if found is not None and found[1] <= _MOST_OPERATIONS:
             self._functions = self.code.newton_step(found[0])
 
-    def written(self, parameters: Sequence[float]) -> WrittenStep | None:
+    def written(self, arguments: Sequence[float]) -> WrittenStep | None:
         """The Newton step of a block with these known values and literals; None while it is not written out."""
         if self._functions is None:
             return None
-        first, again = self._functions
-
-        def step(x: Sequence[float]) -> tuple[Sequence[float], Sequence[float], Sequence[float]]:
-            residuals, steps, numbers = first(x, parameters)
-            return residuals, steps, numbers
-
-        def correction(residuals: Sequence[float], numbers: Sequence[float]) -> Sequence[float]:
-            steps: Sequence[float] = again(residuals, (), numbers)
-            return steps
-
-        return WrittenStep(step, correction)
+        step, correction = self._functions
+        return WrittenStep(step, correction, arguments)
 
 
 @lru_cache(maxsize=1 << 12)

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from dataclasses import replace
 
 import numpy as np
@@ -12,7 +11,7 @@ from solve_problems import problem
 from eqsheet.solve.ladder import solve_block
 from eqsheet.solve.newton import newton
 from eqsheet.solve.outcome import Outcome, Status
-from eqsheet.solve.problem import Problem, WrittenStep
+from eqsheet.solve.problem import Floats, Problem, WrittenStep
 from eqsheet.solve.trail import Budget, Trail
 from eqsheet.solve.written_newton import written_newton
 
@@ -20,13 +19,13 @@ from eqsheet.solve.written_newton import written_newton
 def written(problem: Problem) -> WrittenStep:
     """The step of a problem as code would give it."""
 
-    def step(x: Sequence[float]) -> tuple[Sequence[float], Sequence[float], Sequence[float]]:
+    def step(x: Floats, arguments: Floats) -> tuple[Floats, Floats, Floats]:
         residual, jacobian = problem.linearise(np.array(x))
         if not np.isfinite(residual).all():
             raise ValueError("outside the domain")
         return residual.tolist(), np.linalg.solve(jacobian, -residual).tolist(), jacobian.ravel().tolist()
 
-    def correction(residuals: Sequence[float], numbers: Sequence[float]) -> Sequence[float]:
+    def correction(residuals: Floats, nothing: tuple[()], numbers: Floats) -> Floats:
         jacobian = np.array(numbers).reshape(problem.n, problem.n)
         found: list[float] = np.linalg.solve(jacobian, -np.array(residuals)).tolist()
         return found
@@ -115,11 +114,11 @@ def test_ladder_takes_the_written_step_first_and_arrays_where_it_fails() -> None
     p = exponential([9.0, 0.3])
     calls = []
 
-    def counted(x: Sequence[float]) -> tuple[Sequence[float], Sequence[float], Sequence[float]]:
+    def counted(x: Floats, arguments: Floats) -> tuple[Floats, Floats, Floats]:
         calls.append(x)
-        return written(p).step(x)
+        return written(p).step(x, arguments)
 
-    def broken(x: Sequence[float]) -> tuple[Sequence[float], Sequence[float], Sequence[float]]:
+    def broken(x: Floats, arguments: Floats) -> tuple[Floats, Floats, Floats]:
         raise ZeroDivisionError
 
     correction = written(p).correction
