@@ -8,10 +8,11 @@ difference between two runs is easy to read.
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 from eqsheet.units.display import format_value
+from eqsheet.worksheet.many_values import ManyQuantities, ManyValues
 from eqsheet.worksheet.solution import LimitReport, QuantityValue
 
 # A family of more members is folded.
@@ -28,17 +29,18 @@ def family_name(name: str) -> str:
     return _SUBSCRIPTS.sub("", name)
 
 
-def families(values: Iterable[QuantityValue]) -> list[list[QuantityValue]]:
-    """The values with the members of large families together; every other value in a list of its own.
-
-    Known members and solved ones of a family are kept apart. A family stands where its first member does.
-    """
-    groups: dict[tuple[str, bool], list[QuantityValue]] = {}
-    for value in values:
-        groups.setdefault((family_name(value.name), value.known), []).append(value)
-    result: list[list[QuantityValue]] = []
+def values_together(quantities: Mapping[str, QuantityValue]) -> Sequence[ManyValues]:
+    """The values in order of showing, with the members of large families taken together: see `ManyQuantities`."""
+    if isinstance(quantities, ManyQuantities):
+        return quantities.together(MOST_MEMBERS)
+    groups: dict[tuple[str, str, bool], list[QuantityValue]] = {}
+    for value in quantities.values():
+        section = "" if value.statement is None else value.statement.section
+        groups.setdefault((section, family_name(value.name), value.known), []).append(value)
+    result: list[ManyValues] = []
     for group in groups.values():
-        result += [group] if len(group) > MOST_MEMBERS else [[value] for value in group]
+        together = [group] if len(group) > MOST_MEMBERS else [[value] for value in group]
+        result += [ManyValues.of(one) for one in together]
     return result
 
 
@@ -58,16 +60,15 @@ class Extremes:
     words: str
 
 
-def extremes(group: Sequence[QuantityValue]) -> Extremes:
-    """Of a family with members of one dimension; ties go to the first member."""
-    unit = group[0].unit
-    smallest = min(group, key=lambda value: value.si)
-    largest = max(group, key=lambda value: value.si)
+def extremes(group: ManyValues) -> Extremes:
+    """Of a family with members of one dimension."""
+    unit = group.first.unit
+    smallest, largest = group.smallest, group.largest
     low = format_value(smallest.to(unit), smallest.digits)
     high = format_value(largest.to(unit), largest.digits)
     if low == high:
-        return Extremes(low, f"all {len(group):,} members")
-    words = f"{len(group):,} members, smallest {smallest.name}, largest {largest.name}"
+        return Extremes(low, f"all {group.count:,} members")
+    words = f"{group.count:,} members, smallest {smallest.name}, largest {largest.name}"
     return Extremes(f"{low} .. {high}", words)
 
 

@@ -6,9 +6,10 @@ from collections.abc import Iterable, Iterator, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.review.columns import in_columns
-from eqsheet.review.folding import extremes, families, family_name, worst_limits
+from eqsheet.review.folding import extremes, family_name, values_together, worst_limits
 from eqsheet.syntax.nodes import Guess, Reference, Statement
 from eqsheet.units.display import format_value
+from eqsheet.worksheet.many_values import ManyValues
 from eqsheet.worksheet.own_line import own_line
 from eqsheet.worksheet.solution import BlockReport, BranchReport, LimitReport, QuantityValue, Solution
 
@@ -25,8 +26,10 @@ def solution_lines(solution: Solution) -> list[str]:
         if title:
             lines.append(title)
         rows = [
-            _row(group[0], solution.blocks, said) if len(group) == 1 else _family_row(group, solution.blocks)
-            for group in families(values)
+            _row(group.first, solution.blocks, said)
+            if group.count == 1
+            else _family_row(group, solution.blocks)
+            for group in values
         ]
         lines += in_columns(rows, numeric=1, indent="  " if title else "")
     if solution.limits:
@@ -77,12 +80,12 @@ def _off(statements: Iterable[Statement]) -> Iterator[Statement]:
             yield from _off(statement.body)
 
 
-def _sections(solution: Solution) -> list[tuple[str, list[QuantityValue]]]:
+def _sections(solution: Solution) -> list[tuple[str, list[ManyValues]]]:
     """Quantities in order of showing, grouped by the section of their line."""
-    order: dict[str, list[QuantityValue]] = {}
-    for value in solution.values():
-        title = "" if value.statement is None else value.statement.section
-        order.setdefault(title, []).append(value)
+    order: dict[str, list[ManyValues]] = {}
+    for group in values_together(solution.quantities):
+        statement = group.first.statement
+        order.setdefault("" if statement is None else statement.section, []).append(group)
     titles = [s.section for s in solution.statements]
     rank = {title: i for i, title in reversed(list(enumerate(titles)))}
     return sorted(order.items(), key=lambda pair: rank.get(pair[0], -1))
@@ -107,21 +110,21 @@ def _row(value: QuantityValue, blocks: Sequence[BlockReport], said: Mapping[str,
     return value.name, format_value(value.value, value.digits), unit, origin_words(value, blocks), description
 
 
-def _family_row(group: Sequence[QuantityValue], blocks: Sequence[BlockReport]) -> tuple[str, ...]:
+def _family_row(group: ManyValues, blocks: Sequence[BlockReport]) -> tuple[str, ...]:
     """One line for a large family."""
     found = extremes(group)
-    unit = "" if group[0].unit == "1" else group[0].unit
-    return family_name(group[0].name), found.text, unit, _family_origin(group, blocks), found.words
+    unit = "" if group.first.unit == "1" else group.first.unit
+    return family_name(group.first.name), found.text, unit, _family_origin(group, blocks), found.words
 
 
-def _family_origin(group: Sequence[QuantityValue], blocks: Sequence[BlockReport]) -> str:
-    words = {origin_words(value, blocks) for value in group}
+def _family_origin(group: ManyValues, blocks: Sequence[BlockReport]) -> str:
+    words = {origin_words(value, blocks) for value in group.origins}
     if len(words) == 1:
         return words.pop()
-    if group[0].block is None:
-        lines = sorted({value.line for value in group if value.line is not None})
+    if group.first.block is None:
+        lines = sorted({value.line for value in group.origins if value.line is not None})
         return f"given, lines {lines[0]} to {lines[-1]}" if lines else "given for this run"
-    numbers = {value.block for value in group if value.block is not None}
+    numbers = {value.block for value in group.origins if value.block is not None}
     lines = sorted({line for number in numbers for line in blocks[number - 1].lines})
     if len(lines) <= MOST_LINES_NAMED:
         return f"line{'s' * (len(lines) > 1)} {', '.join(map(str, lines))}" if lines else "solved"

@@ -56,7 +56,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
     return Solution(
         name,
         _status(diagnostics, limits),
-        MappingProxyType(quantities),
+        quantities if prepared.system.groups else MappingProxyType(quantities),
         blocks,
         limits,
         tuple(diagnostics),
@@ -216,6 +216,7 @@ def _of_families(
     from eqsheet.worksheet.group_equations import GroupedEquations
     from eqsheet.worksheet.lazy_solution import (
         LazyQuantities,
+        Origins,
         OwnStatements,
         lazy_reports,
         order_of_showing,
@@ -227,5 +228,6 @@ def _of_families(
         prepared.system,
         order_of_showing(prepared, run),
         lambda q: _value(prepared, run, own, q, run.values[q], run.errors[q]),
+        Origins(equations, own, prepared, run),
     )
     return lazy_reports(equations, prepared, run.blocks, _report), own, quantities

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, ItemsView, Iterator, Mapping, Sequence, ValuesView
 from functools import cached_property
 from typing import TypeVar
 
@@ -13,8 +13,10 @@ from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.system import EquationSystem
 from eqsheet.syntax.nodes import Statement
 from eqsheet.worksheet.block_run import BlockRun
+from eqsheet.worksheet.deferred import DeferredSequence
 from eqsheet.worksheet.group_equations import GroupedEquations
 from eqsheet.worksheet.group_guesses import ByBlock
+from eqsheet.worksheet.many_values import ManyQuantities, ManyValues
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import Run
 from eqsheet.worksheet.solution import BlockReport, QuantityValue
@@ -25,7 +27,7 @@ Numbers = NDArray[np.int64]
 MOST_PICKED = 64
 
 
-class LazyQuantities(Mapping[str, QuantityValue]):
+class LazyQuantities(ManyQuantities):
     """Quantities by name, in order of showing.
 
     Parameters
@@ -35,14 +37,18 @@ class LazyQuantities(Mapping[str, QuantityValue]):
         Numbers of the quantities there are, in order of showing.
     make : callable
         Quantity number to its value.
+    origins : Origins
     """
 
-    def __init__(self, system: EquationSystem, order: Numbers, make: Callable[[int], QuantityValue]) -> None:
+    def __init__(
+        self, system: EquationSystem, order: Numbers, make: Callable[[int], QuantityValue], origins: Origins
+    ) -> None:
         self._system = system
         self._order = order
         self._there = np.zeros(len(system.names), dtype=bool)
         self._there[order] = True
         self._make = make
+        self._origins = origins
 
     def __getitem__(self, name: str) -> QuantityValue:
         number = self._system.number(name) if isinstance(name, str) else None
@@ -57,8 +63,126 @@ class LazyQuantities(Mapping[str, QuantityValue]):
     def __len__(self) -> int:
         return len(self._order)
 
+    def values(self) -> ValuesView[QuantityValue]:
+        """As of any mapping, without looking numbers up by name."""
+        return _MadeValues(self, self._order, self._make)
+
+    def items(self) -> ItemsView[str, QuantityValue]:
+        """As of any mapping, without looking numbers up by name."""
+        return _MadeItems(self, self._order, self._make)
+
+    def together(self, most: int) -> Sequence[ManyValues]:
+        """See `ManyQuantities`."""
+        order, origins, make = self._order, self._origins, self._make
+        if not len(order):
+            return ()
+        statement, block = origins.statement[order], origins.block[order]
+        firsts = self._system.firsts
+        assert firsts is not None
+        family = np.searchsorted(firsts, order, side="right")
+        section = origins.section[statement]
+        key = (section * (len(firsts) + 1) + family) * 2 + (block > 0)
+        _, begins, which, counts = np.unique(key, return_index=True, return_inverse=True, return_counts=True)
+        members = np.split(np.argsort(which, kind="stable"), np.cumsum(counts)[:-1])
+        found: list[tuple[int, ManyValues]] = []
+        for begin, positions in zip(begins.tolist(), members):
+            if len(positions) <= most:
+                found += [(begin, ManyValues.of((make(int(order[p])),))) for p in positions]
+                continue
+            si = origins.si[order[positions]]
+            # Of a block of one equation the statement says it all.
+            several = np.where(origins.equations[block[positions]] > 1, block[positions], 0)
+            _, distinct = np.unique(np.stack([statement[positions], several]), axis=1, return_index=True)
+            first, smallest, largest = (make(int(order[positions[p]])) for p in (0, si.argmin(), si.argmax()))
+            of_each = tuple(make(int(order[positions[p]])) for p in np.sort(distinct))
+            found.append((begin, ManyValues(len(positions), first, smallest, largest, of_each)))
+        found.sort(key=lambda pair: pair[0])
+        return tuple(values for _, values in found)
+
     def __repr__(self) -> str:
         return f"LazyQuantities({len(self)} quantities)"
+
+
+class _MadeValues(ValuesView[QuantityValue]):
+    """Values made one by one, in order."""
+
+    def __init__(self, mapping: LazyQuantities, order: Numbers, make: Callable[[int], QuantityValue]) -> None:
+        super().__init__(mapping)
+        self._numbers = order
+        self._make = make
+
+    def __iter__(self) -> Iterator[QuantityValue]:
+        return map(self._make, self._numbers.tolist())
+
+
+class _MadeItems(ItemsView[str, QuantityValue]):
+    """Names and values made one by one, in order."""
+
+    def __init__(self, mapping: LazyQuantities, order: Numbers, make: Callable[[int], QuantityValue]) -> None:
+        super().__init__(mapping)
+        self._numbers = order
+        self._make = make
+
+    def __iter__(self) -> Iterator[tuple[str, QuantityValue]]:
+        return ((value.name, value) for value in map(self._make, self._numbers.tolist()))
+
+
+class Origins:
+    """Where the values of quantities come from, as arrays, worked out once somebody asks.
+
+    Attributes
+    ----------
+    si : ndarray (quantities,)
+        Values.
+    block : ndarray (quantities,)
+        Number of the block that gives each, 0 for none.
+    statement : ndarray (quantities,)
+        The own statement of each solved one, that which sets a known; -1 for neither.
+    equations : ndarray (blocks + 1,)
+        How many equations each block has, by its number.
+    section : ndarray (statements + 1,)
+        A number for the section of each statement; the last serves those without one.
+    """
+
+    def __init__(self, equations: GroupedEquations, own: OwnStatements, prepared: Prepared, run: Run) -> None:
+        self._needed = equations, own, prepared, run
+
+    @cached_property
+    def si(self) -> NDArray[np.float64]:
+        """See above."""
+        return np.array(self._needed[3].values)
+
+    @cached_property
+    def block(self) -> Numbers:
+        """See above."""
+        _, _, prepared, run = self._needed
+        return _array(run.block_of, len(prepared.system.names))
+
+    @cached_property
+    def statement(self) -> Numbers:
+        """See above."""
+        equations, own, prepared, _ = self._needed
+        found = own.array.copy()
+        setters = prepared.setters
+        quantities = np.fromiter(setters.keys(), np.int64, len(setters))
+        lines = equations.statement[np.fromiter(setters.values(), np.int64, len(setters))]
+        free = found[quantities] < 0
+        found[quantities[free]] = lines[free]
+        return found
+
+    @cached_property
+    def equations(self) -> Numbers:
+        """See above."""
+        _, _, prepared, _ = self._needed
+        return np.bincount(_blocks_of_equations(prepared, self.block), minlength=int(self.block.max()) + 1)
+
+    @cached_property
+    def section(self) -> Numbers:
+        """See above."""
+        titles: dict[str, int] = {"": 0}
+        statements = self._needed[2].system.statements
+        numbers = [titles.setdefault(statement.section, len(titles)) for statement in statements]
+        return np.array([*numbers, 0], dtype=np.int64)
 
 
 def order_of_showing(prepared: Prepared, run: Run) -> Numbers:
@@ -155,24 +279,24 @@ class OwnStatements(Mapping[int, int]):
         self._needed = equations, prepared, run
 
     @cached_property
-    def _array(self) -> Numbers:
+    def array(self) -> Numbers:
         """Statement numbers, -1 where there is none."""
         return own_statement_numbers(*self._needed)
 
     def __getitem__(self, key: int) -> int:
-        value = int(self._array[key])
+        value = int(self.array[key])
         if value < 0:
             raise KeyError(key)
         return value
 
     def __contains__(self, key: object) -> bool:
-        return isinstance(key, int) and bool(self._array[key] >= 0)
+        return isinstance(key, int) and bool(self.array[key] >= 0)
 
     def __iter__(self) -> Iterator[int]:
-        return iter(np.flatnonzero(self._array >= 0).tolist())
+        return iter(np.flatnonzero(self.array >= 0).tolist())
 
     def __len__(self) -> int:
-        return int((self._array >= 0).sum())
+        return int((self.array >= 0).sum())
 
 
 def lazy_reports(
@@ -195,13 +319,14 @@ def lazy_reports(
         block = blocks[i]
         numbers = np.array(block.equations, dtype=np.int64)
         apart = [system.equations[int(n)].formula for n in numbers[numbers < equations.written]]
-        others = equations.outside(numbers, apart, block.unknowns)
+        unknowns = block.unknowns
+        others = DeferredSequence(lambda: _picked(names, equations.outside(numbers, apart, unknowns)))
         placed = equations.statement[numbers].tolist()
         return report(
             block,
-            _picked(names, block.unknowns),
+            _picked(names, unknowns),
             _picked(system.statements, placed),
-            _picked(names, others),
+            others,
         )
 
     return LazySequence([(len(blocks), make)])

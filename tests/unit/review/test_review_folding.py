@@ -2,12 +2,16 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 import pytest
 
 import eqsheet
 from eqsheet.review.folding import MOST_MEMBERS, family_name
 from eqsheet.review.json_form import solution_data
 from eqsheet.review.table import solution_lines
+from eqsheet.worksheet import assemble
+from eqsheet.worksheet.solution import QuantityValue
 
 
 def table(text: str) -> list[str]:
@@ -84,3 +88,17 @@ def test_statements_switched_off_in_groups_are_shown() -> None:
     text = "for i in 1..2:\n    x[i] = 2\n    off x[i] = 3\noff for k in 1..2:\n    y[k] = 2\n"
     lines = table(text)
     assert lines[lines.index("Switched off") + 1 :] == ["x[i] = 3 line 3", "for k in 1..2 line 4"]
+
+
+def test_a_large_family_is_shown_without_making_its_members(monkeypatch: pytest.MonkeyPatch) -> None:
+    made = []
+    make = assemble._value
+
+    def counted(prepared: Any, run: Any, own: Any, quantity: int, si: float, error: float) -> QuantityValue:
+        made.append(quantity)
+        return make(prepared, run, own, quantity, si, error)
+
+    monkeypatch.setattr(assemble, "_value", counted)
+    (line,) = [line for line in table(CHAIN.format(5000)) if line.startswith("T 28.85 .. ")]
+    assert line.endswith("degC line 3 5,000 members, smallest T[1], largest T[5000]")
+    assert 0 < len(made) < 20

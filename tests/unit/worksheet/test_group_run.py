@@ -7,6 +7,7 @@ import pytest
 import eqsheet
 from eqsheet.model.equation_group import EquationGroup
 from eqsheet.model.system import EquationItem
+from eqsheet.review.table import solution_lines
 from eqsheet.solve.ladder import DEFAULT_BUDGET
 from eqsheet.worksheet.assemble import assemble
 from eqsheet.worksheet.prepare import prepare
@@ -138,6 +139,25 @@ def test_values_and_their_accounts_are_the_same(name: str) -> None:
         assert abs(found.digits - expected.digits) <= 1, quantity
     assert arrays.diagnostics == written.diagnostics
     assert [limit.holds for limit in arrays.limits] == [limit.holds for limit in written.limits]
+
+
+SECTIONS = """
+## Loads
+N = 30
+for i in 1..N:
+    F[i] = 2 kN * i
+F[0] = 1 kN
+## Displacements
+x[0] = 0 mm
+for i in 1..N:
+    x[i] = x[i-1] + F[i]/(3 kN/mm)
+show x[3]
+"""
+
+
+@pytest.mark.parametrize("text", [*RESULTS.values(), SECTIONS], ids=[*RESULTS, "sections"])
+def test_the_table_is_the_same(text: str) -> None:
+    assert solution_lines(solved(text, AS_ARRAYS)) == solution_lines(solved(text, WRITTEN_OUT))
 
 
 @pytest.mark.parametrize("name", RESULTS)
