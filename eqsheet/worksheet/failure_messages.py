@@ -33,6 +33,8 @@ MOST_TERMS = 6
 MOST_EQUATIONS = 3
 # Below this many digits a result is not good enough for ordinary work, and the run says so.
 FEW_DIGITS = 5
+# Below this part of a value an error leaves that many digits for sure.
+FEWEST_SURE = 0.5 * 10.0**-FEW_DIGITS
 
 _AT_MINIMUM = "no solution found: the search ended where no step brings the sides closer together"
 _HEADLINES = {
@@ -474,11 +476,13 @@ def trust_warnings(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
     """A warning where a solved block is close to singular, so that few digits are good."""
     result = run.result
     assert result is not None
-    worst: tuple[int, int] | None = None
-    for position, (value, error_bound) in enumerate(zip(result.values, result.errors)):
-        digits = digits_of(value, error_bound)
-        if value != 0.0 and digits < FEW_DIGITS and (worst is None or digits < worst[0]):
-            worst = (digits, position)
+    doubtful = [
+        position
+        for position, (value, error_bound) in enumerate(zip(result.values, result.errors))
+        if not error_bound <= FEWEST_SURE * abs(value) and value != 0.0
+    ]
+    found = [(digits_of(result.values[p], result.errors[p]), p) for p in doubtful]
+    worst = min((pair for pair in found if pair[0] < FEW_DIGITS), default=None)
     if worst is None:
         return []
     return [few_digits_warning(system, run, *worst, [system.equations[e].place for e in run.equations])]

@@ -17,6 +17,7 @@ from eqsheet.solve.trail import Budget
 from eqsheet.structure.array_sequence import as_sequence
 from eqsheet.structure.verdict import Conflict
 from eqsheet.worksheet.block_memory import BlockMemory
+from eqsheet.worksheet.block_order import blocks_in_order
 from eqsheet.worksheet.block_run import BlockRun as BlockRun
 from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
@@ -93,35 +94,28 @@ def run_blocks(
     runs: list[BlockRun] = []
     block_of: dict[int, int] = {}
     best: dict[int, float] = {}
-    numbers: dict[int, int] = {}
     failed: set[int] = set()
     unsolved: list[int] = []
-    for position, block in enumerate(prepared.structure.blocks):
-        equations = [prepared.rows[r] for r in block.rows]
-        if len(equations) == 1 and system.equations[equations[0]].known >= 0:
-            continue
-        number = len(runs) + 1
-        numbers[position] = number
-        after = tuple(numbers[d] for d in block.depends if d in numbers)
+    for number, equations, unknowns, after in blocks_in_order(prepared):
         result = None
-        if any(a in failed for a in after) or _uses(formulas, equations, prepared.contested):
+        if not failed.isdisjoint(after) or _uses(formulas, equations, prepared.contested):
             failed.add(number)
         else:
             result = given.get(number) or solve(
-                [formulas[e] for e in equations], block.columns, known, guesses, dimensions, budget
+                [formulas[e] for e in equations], unknowns, known, guesses, dimensions, budget
             )
             for equation, formula in zip(equations, result.formulas):
                 formulas[equation] = formula
             if result.solved:
-                for quantity, value, error in zip(block.columns, result.values, result.errors):
+                for quantity, value, error in zip(unknowns, result.values, result.errors):
                     values[quantity] = value
                     errors[quantity] = error
             else:
                 failed.add(number)
-                best.update(zip(block.columns, result.values))
-        for quantity in block.columns:
+                best.update(zip(unknowns, result.values))
+        for quantity in unknowns:
             block_of[quantity] = number
-        run = BlockRun(number, tuple(equations), block.columns, after, result)
+        run = BlockRun(number, equations, unknowns, after, result)
         runs.append(run)
         if result is not None:
             if result.solved:

@@ -22,7 +22,7 @@ from eqsheet.model.branches import (
     settle,
     switches,
 )
-from eqsheet.model.evaluate import evaluate, evaluate_with_evidence
+from eqsheet.model.evaluate import evaluate
 from eqsheet.model.evidence_function import evidence_of_outputs
 from eqsheet.model.isolate import isolate
 from eqsheet.model.linear import affine_in
@@ -186,13 +186,11 @@ def _candidates(formula: Formula, unknown: int, known: Known) -> list[tuple[floa
     found: list[tuple[float, float]] = []
 
     def consider(form: Tape, condition: Tape | None) -> None:
-        evidence = evaluate_with_evidence(form, inputs, literals, errors)
-        (output,) = form.outputs
-        value = evidence.values[output]
+        (value,), _, (error,) = evidence_of_outputs(form, inputs, literals, errors)
         if not math.isfinite(value):
             return
         if condition is None or evaluate(condition, inputs, literals)[condition.outputs[0]] is True:
-            found.append((value, evidence.errors[output]))
+            found.append((value, error))
 
     if isolation is not None:
         for candidate in isolation.candidates:
@@ -210,12 +208,13 @@ def _checked(
     """The value as a result if the equation, evaluated afresh, bears it out."""
     tape = formula.tape
     inputs = [value if q == unknown else known.values[q] for q in formula.quantities]
-    afresh = evaluate_with_evidence(tape, inputs, literal_values(formula))
-    left, right = tape.outputs
-    residual = abs(afresh.values[left] - afresh.values[right])
-    size = max(afresh.sizes[left], afresh.sizes[right])
+    (left, right), sizes, bounds = evidence_of_outputs(
+        tape, inputs, literal_values(formula), (0.0,) * len(inputs)
+    )
+    residual = abs(left - right)
+    size = max(sizes)
     # What the equation makes of an uncertainty of the value by its own error is no sign of a wrong value.
-    bound = afresh.errors[left] + afresh.errors[right]
+    bound = sum(bounds)
     if not residual <= max(ACCEPTABLE * size, bound):
         return None
     if not math.isfinite(error) and _inputs_are_good(formula, (unknown,), known):
@@ -431,28 +430,31 @@ def judged(
     if factor is not None:
         # Too large to be kept with the solution.
         outcome = replace(outcome, factor=None)
-    failed = BlockResult(
-        False,
-        values,
-        (math.inf,) * len(values),
-        outcome.method,
-        outcome.iterations,
-        outcome.residual,
-        math.inf,
-        formulas,
-        outcome,
-        start,
-        gap,
-        problem=problem,
-    )
+
+    def failed() -> BlockResult:
+        return BlockResult(
+            False,
+            values,
+            (math.inf,) * len(values),
+            outcome.method,
+            outcome.iterations,
+            outcome.residual,
+            math.inf,
+            formulas,
+            outcome,
+            start,
+            gap,
+            problem=problem,
+        )
+
     if not outcome.solved:
-        return failed
+        return failed()
     if isinstance(problem, ArrayProblem | BlockProblem):
         residuals, sizes, bounds = problem.evidence(x)
     else:
         residuals, sizes, bounds = _evidence(formulas, dict(zip(unknowns, values)), known)
     if not isinstance(problem, ArrayProblem) and _noise(formulas, unknowns, known, bounds):
-        return failed
+        return failed()
     magnitude = np.array(start.magnitude)
     if isinstance(problem, BlockProblem) and factor is not None:
         verdict = judge_by_factor(residuals, sizes, bounds, factor, x, magnitude)
@@ -464,7 +466,7 @@ def judged(
     if isinstance(problem, BlockProblem) and verdict.solved and factor is not None:
         problem.repeats.solved(factor)
     if not verdict.solved:
-        return failed
+        return failed()
     return BlockResult(
         True,
         values,
