@@ -11,6 +11,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Mapping, MutableMapping, Sequence
 from dataclasses import dataclass
+from heapq import heappop, heappush
 from typing import NamedTuple
 
 from eqsheet.model.branches import literal_values
@@ -94,21 +95,24 @@ def starting_values(
         if between is not None:
             found[quantity] = between
     given = dict(found)
-    told = _propagate(unknowns, formulas, values, room, found)
+    propagation = _Propagation(unknowns, formulas, values, found)
+    told = propagation.run(room)
     settled = len(found) == len(unknowns)
-    for quantity in _told_zero(unknowns, formulas, values, found):
-        # A difference of equal starts, such as an angle between buses: near zero, not anywhere.
-        position = unknowns.index(quantity)
-        found[quantity] = _inside(NEAR_ZERO * _typical(dimensions[quantity], position), room, quantity)
-    _propagate(unknowns, formulas, values, room, found)
+    zero = set(() if settled else _told_zero(unknowns, formulas, values, found))
+    for position, quantity in enumerate(unknowns):
+        if quantity in zero:
+            # A difference of equal starts, such as an angle between buses: near zero, not anywhere.
+            near = NEAR_ZERO * _typical(dimensions[quantity], position)
+            propagation.put(quantity, _inside(near, room, quantity))
+    propagation.run(room)
     if len(found) < len(unknowns):
         room = _narrowed(unknowns, formulas, values, room)
     for position, quantity in enumerate(unknowns):
         if quantity not in found:
             blind.append(position)
-            found[quantity] = _inside(_typical(dimensions[quantity], position), room, quantity)
+            propagation.put(quantity, _inside(_typical(dimensions[quantity], position), room, quantity))
             # One seed may let the equations tell the others.
-            _propagate(unknowns, formulas, values, room, found)
+            propagation.run(room)
     bounds = [guesses.bounds(quantity) for quantity in unknowns]
     start = Start(
         tuple(found[q] for q in unknowns),
@@ -174,42 +178,80 @@ def _between(low: float, high: float, position: int) -> float | None:
     return low + part * (high - low)
 
 
-def _propagate(
-    unknowns: Sequence[int],
-    formulas: Sequence[Formula],
-    values: Sequence[float],
-    room: _Room,
-    found: MutableMapping[int, float],
-) -> list[Told] | None:
-    """Let each equation with one magnitude missing tell it, until none does.
+class _Propagation:
+    """Lets each equation with one magnitude missing tell it, until none does.
 
-    Returns
-    -------
-    list of Told or None
-        What has been told, in order; None where it was not all plain: an equation had no value to tell or a value
-        was moved inside its bounds.
+    The equations are asked in turn, round after round; each is asked when it comes to have one magnitude missing,
+    and not again, so that the time is linear in their length.
+
+    Parameters
+    ----------
+    unknowns, formulas, values
+        As in `starting_values`.
+    found : mutable mapping of int to float
+        Starts so far; those told are added.
     """
-    told: list[Told] = []
-    plain = True
-    wanted = {q for q in unknowns if q not in found}
-    again = bool(wanted)
-    while again:
-        again = False
+
+    def __init__(
+        self,
+        unknowns: Sequence[int],
+        formulas: Sequence[Formula],
+        values: Sequence[float],
+        found: MutableMapping[int, float],
+    ) -> None:
+        self._formulas = formulas
+        self._values = values
+        self._found = found
+        self._missing: list[set[int]] = []
+        self._readers: dict[int, list[int]] = {q: [] for q in unknowns if q not in found}
+        # Equations to be asked, by round and number.
+        self._ready: list[tuple[int, int]] = []
+        if not self._readers:
+            return
         for number, formula in enumerate(formulas):
-            missing = [q for q in formula.quantities if q in wanted]
-            if len(missing) != 1:
+            missing = {q for q in formula.quantities if q in self._readers}
+            self._missing.append(missing)
+            for quantity in missing:
+                self._readers[quantity].append(number)
+            if len(missing) == 1:
+                self._ready.append((0, number))
+
+    def put(self, quantity: int, start: float, after: tuple[int, int] = (0, -1)) -> None:
+        """Give an unknown its start; `after` is the round and number of the equation that has told it."""
+        self._found[quantity] = start
+        turn, by = after
+        for number in self._readers[quantity]:
+            self._missing[number].discard(quantity)
+            if len(self._missing[number]) == 1:
+                heappush(self._ready, (turn if number > by else turn + 1, number))
+
+    def run(self, room: _Room) -> list[Told] | None:
+        """Ask the equations until none has one magnitude missing.
+
+        Returns
+        -------
+        list of Told or None
+            What has been told, in order; None where it was not all plain: an equation had no value to tell or a value
+            was moved inside its bounds.
+        """
+        told: list[Told] = []
+        plain = True
+        while self._ready:
+            after = heappop(self._ready)
+            number = after[1]
+            if not self._missing[number]:
                 continue
-            quantity = missing[0]
-            value = _told(formula, quantity, values, found)
+            (quantity,) = self._missing[number]
+            formula = self._formulas[number]
+            value = _told(formula, quantity, self._values, self._found)
             if value is None:
                 plain = plain and isolate(formula.tape, formula.quantities.index(quantity)) is None
                 continue
-            found[quantity] = _inside(value.value, room, quantity)
-            plain = plain and found[quantity] == value.value and value.candidate == 0
+            start = _inside(value.value, room, quantity)
+            plain = plain and start == value.value and value.candidate == 0
             told.append(Told(number, quantity, value.candidate))
-            wanted.discard(quantity)
-            again = True
-    return told if plain else None
+            self.put(quantity, start, after)
+        return told if plain else None
 
 
 def _told_zero(
