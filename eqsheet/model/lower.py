@@ -7,6 +7,7 @@ the way, and findings. Quantities keep provisional numbers from a `NameTable`.
 from __future__ import annotations
 
 import math
+import sys
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 from fractions import Fraction
@@ -192,6 +193,13 @@ class Lowering:
         si = unit.to_si(value)
         if math.isinf(si):
             self._refuse("number-too-large", f"{_short(node.text)} {unit.text} is too large", node)
+        if value != 0.0 and not unit.reading and abs(si) < sys.float_info.min:
+            self._refuse(
+                "number-out-of-range",
+                f"{_short(node.text)} {unit.text} is too small for floating-point arithmetic in SI units",
+                node,
+                help="check the exponent",
+            )
         return self.builder.literal(Literal(si, unit.dimension, kind_of(unit), *place, unit.text))
 
     def _reference(self, node: syntax.Reference) -> int:

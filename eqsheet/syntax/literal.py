@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 import re
+import sys
 from fractions import Fraction
 from functools import lru_cache
 from unicodedata import normalize
@@ -69,15 +70,17 @@ def _check_range(start: int, written: str) -> None:
     if len(written) < 20 and "e" not in written and "E" not in written:
         return
     value = float(written)
-    if math.isinf(value) or (value == 0 and re.search("[1-9]", re.split("[eE]", written)[0])):
+    # Below the normal range digits are lost one after another: 1.23e-322 would be kept as 1.24e-322.
+    small = value < sys.float_info.min and re.search("[1-9]", re.split("[eE]", written)[0]) is not None
+    if math.isinf(value) or small:
         raise Slip(
             "number-out-of-range",
             f"{written if len(written) < 30 else written[:27] + '...'} is too "
-            + ("large" if value else "small")
+            + ("small" if small else "large")
             + " for floating-point arithmetic",
             start,
             start + len(written),
-            "numbers lie between about 1e-307 and 1e308 in size; choose another unit",
+            "numbers lie between about 2.3e-308 and 1.7e308 in size; choose another unit",
         )
 
 

@@ -2,9 +2,13 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 from eqsheet.units.dimension import Dimension
+
+# Rounding a larger number might lead beyond the range of floats.
+_LARGEST_ROUNDED = 1e300
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,6 +49,28 @@ class Unit:
     def from_si(self, value: float) -> float:
         """Value in this unit of the SI value of a reading."""
         return self.difference_from_si(value - self.origin)
+
+    def as_written(self, si: float) -> float:
+        """`from_si` as a person would write it: a short number that `to_si` takes back to the very same value.
+
+        Division does not undo multiplication to the last digit, and an origin takes digits away: 12 degF come back
+        from kelvin as 11.999999999999943. Of the numbers that stand for one SI value the one written is meant.
+
+        >>> from eqsheet.units.registry import UnitTable
+        >>> inch = UnitTable.standard().lookup("in")
+        >>> inch.from_si(inch.to_si(1.5)), inch.as_written(inch.to_si(1.5))
+        (1.4999999999999998, 1.5)
+        """
+        value = self.from_si(si)
+        if value == 0.0 or not abs(value) < _LARGEST_ROUNDED:
+            return value
+        # From two decimals less than one unit in the last place of the SI value leaves certain.
+        certain = -math.ceil(math.log10(math.ulp(si)) - math.log10(self.factor))
+        for kept in range(certain - 2, certain + 3):
+            short = round(value, kept)
+            if self.to_si(short) == si:
+                return short
+        return value
 
     def difference_from_si(self, value: float) -> float:
         """Value in this unit of the SI value of a difference."""

@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from eqsheet.model.system import EquationSystem
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.display import default_unit, format_value
+from eqsheet.units.registry import as_difference
 from eqsheet.units.unit import Unit
 from eqsheet.worksheet.written_values import DIGITS_IN_MESSAGES
 
@@ -27,8 +28,8 @@ def shown_unit(
 
 
 def in_unit(unit: Unit, kind: str, si: float) -> float:
-    """The value in the unit, a difference without the unit's origin."""
-    return unit.difference_from_si(si) if kind == "difference" else unit.from_si(si)
+    """The value in the unit, as it would be written; a difference without the unit's origin."""
+    return (as_difference(unit) if kind == "difference" else unit).as_written(si)
 
 
 def with_unit(number: str, unit: Unit) -> str:

@@ -11,6 +11,7 @@ from eqsheet.syntax.nodes import Statement
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.registry import UnitTable
 from eqsheet.units.unit import Unit
+from eqsheet.worksheet.shown_units import in_unit
 from eqsheet.worksheet.unit_text import resolve_text
 
 
@@ -96,9 +97,7 @@ class QuantityValue:
         return self._in(wanted)
 
     def _in(self, unit: Unit) -> float:
-        if self.kind == "difference":
-            return unit.difference_from_si(self.si)
-        return unit.from_si(self.si)
+        return in_unit(unit, self.kind, self.si)
 
 
 @dataclass(frozen=True, slots=True)

@@ -30,6 +30,8 @@ LONG = {
     "a number too large": ("x = 1e400", "number-out-of-range"),
     "a number too small": ("x = 1e-400 m", "number-out-of-range"),
     "a number of 5,000 digits": ("x = " + "9" * 5_000, "number-out-of-range"),
+    "a number that would lose digits": ("x = 1.23e-320", "number-out-of-range"),
+    "a number that would lose digits in SI": ("x = 1e-300 nm^2", "number-out-of-range"),
     "a number too large in SI": ("x = 1e308 km", "number-too-large"),
     "a comment of 100,000 characters": ("# " + "a" * 100_000, "empty-worksheet"),
     "100,000 empty lines": ("\n" * 100_000, "empty-worksheet"),

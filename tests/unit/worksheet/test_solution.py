@@ -138,3 +138,18 @@ def test_off_takes_a_statement_out() -> None:
     solution = solve("x = 1 m\noff x = 2 m\noff require x >= 5 m\ny = 2*x\noff broken = x + 1 s")
     assert solution.status == "solved"
     assert {n: v.si for n, v in solution.items()} == {"x": 1.0, "y": 2.0}
+
+
+@pytest.mark.parametrize(
+    ("value", "unit"),
+    [(1.5, "in"), (12.1, "degF"), (0.3, "psig"), (3.9, "L/min"), (9.3, "%"), (38.7, "rpm"), (0.1, "degC")],
+)
+def test_a_known_comes_back_as_it_was_written(value: float, unit: str) -> None:
+    known = eqsheet.parse(f"x = {value} {unit}").solve()["x"]
+    assert known.value == value
+    assert known.to(unit) == value
+
+
+def test_a_difference_comes_back_as_it_was_written() -> None:
+    known = eqsheet.parse("dT = 12.1 delta_degF\nT = 20 degC\nT_2 = T + dT\nshow dT in degF").solve()["dT"]
+    assert (known.kind, known.value) == ("difference", 12.1)
