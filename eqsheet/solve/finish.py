@@ -8,19 +8,20 @@ import numpy as np
 
 from eqsheet.solve.factor import Factor, factorise, smallest_singular_vectors
 from eqsheet.solve.interior import Interior
+from eqsheet.solve.kind_of_root import kind_of_root
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
 from eqsheet.solve.termination import (
     ACCEPTABLE,
     MULTIPLE_AFTER,
     SURE,
+    SUSPECT_CONDITION,
     at_rest,
     confirmed,
     equation_sizes,
     jacobian_sizes,
-    kind_of_root,
     scaled_norm,
-    term_sizes,
+    sizes_really_there,
     underflown,
 )
 from eqsheet.solve.trail import Trail
@@ -31,6 +32,9 @@ WEIGHT_FLOOR = 0.1
 # Newton's method doubles them.
 CLEARED = (1 << 16) - 1
 HALF_OF_CLEARED = 1 << 15
+# Condition below which a root is a single one: sizes of residuals by the Jacobian are no larger than its scaled rows,
+# so nothing is amplified further than this.
+SURELY_SINGLE = 0.5 * SUSPECT_CONDITION
 
 
 class _Rest(NamedTuple):
@@ -103,9 +107,8 @@ def _from_rounded_point(problem: Problem, interior: Interior, x: Vector) -> _Res
     if not interior.contains(near):
         return None
     residual, jacobian = problem.linearise(near)
-    factor = weighted_factor(problem, near, jacobian)
-    if factor is None:
-        return None
+    # The size of the unknowns, none of which counts as less than a part of its typical size.
+    factor = factorise(jacobian, np.maximum(np.abs(near), WEIGHT_FLOOR * problem.magnitude))
     polished, cut = interior.cut(near, -factor.weights * factor.solve(residual), 0.0)
     if cut >= 0:
         return None
@@ -113,14 +116,6 @@ def _from_rounded_point(problem: Problem, interior: Interior, x: Vector) -> _Res
     sizes = jacobian_sizes(polished, jacobian)
     scaled = scaled_norm(residual, sizes)
     return _Rest(polished, residual, jacobian, factor, scaled, sizes) if scaled <= SURE else None
-
-
-def weighted_factor(problem: Problem, x: Vector, jacobian: Matrix) -> Factor | None:
-    """The Jacobian factorised in the size of the unknowns, none of which counts as less than a part of its typical
-    size; None where it is not finite."""
-    if not np.isfinite(jacobian).all():
-        return None
-    return factorise(jacobian, np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude))
 
 
 def _corrected(
@@ -146,13 +141,16 @@ def _concluded(problem: Problem, interior: Interior, trail: Trail, rest: _Rest, 
     believed = scaled <= ACCEPTABLE and (sure or confirmed(problem, x, residual, jacobian))
     if believed and (factor.singular or not at_rest(problem, x, factor, residual)):
         # No small step explains the residuals, so they must be small against terms that are really there.
-        believed = scaled_norm(residual, term_sizes(problem, x, jacobian)) <= ACCEPTABLE
+        believed = scaled_norm(residual, sizes_really_there(problem, x, jacobian)) <= ACCEPTABLE
     if believed and underflown(problem, x, factor):
         believed = False
     if not believed:
         step = -factor.weights * factor.solve(residual)
         return give_up(problem, interior, trail, step, factor)
-    kind = kind_of_root(problem, x, scaled, sizes, factor)
+    if sure and factor.condition < SURELY_SINGLE:
+        kind = Status.CONVERGED
+    else:
+        kind = kind_of_root(problem, x, scaled, sizes, factor)
     if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:
         kind = Status.DOUBLE
     if kind is Status.CONVERGED:

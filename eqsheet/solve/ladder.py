@@ -27,7 +27,10 @@ DEFAULT_BUDGET = Budget()
 
 
 def solve_block(
-    problem: Problem, budget: Budget = DEFAULT_BUDGET, own_rungs: Sequence[tuple[str, Rung]] = ()
+    problem: Problem,
+    budget: Budget = DEFAULT_BUDGET,
+    own_rungs: Sequence[tuple[str, Rung]] = (),
+    hopeless: Callable[[], bool] | None = None,
 ) -> Outcome:
     """The solution of a block, or the most telling of the failed attempts with all others in its `attempts`.
 
@@ -38,6 +41,9 @@ def solve_block(
     ----------
     own_rungs : sequence of (name, rung)
         What the caller, who knows more of the equations, can try between Newton and the fallbacks.
+    hopeless : callable, optional
+        Whether the caller can prove that there is no root within the bounds; asked only where Newton has failed,
+        and spares the search for one. The best point is still looked for.
     """
     if problem.n == 1:
         return solve_scalar(as_scalar(problem), budget)
@@ -48,11 +54,14 @@ def solve_block(
         attempts = [_attempt(_newton, problem, problem.start, trail)]
         # Through a singular Jacobian rounding has chosen the way: a start without symmetry says what counts.
         if trail.singular or not _final(attempts[0], deadline):
-            from eqsheet.solve.fallbacks import fallbacks
+            from eqsheet.solve.fallbacks import LAST, fallbacks
             from eqsheet.solve.moved_start import moved_start
 
             start = moved_start(problem)
-            for name, rung in (*own_rungs, *fallbacks(problem)):
+            for name, rung in fallbacks(problem, own_rungs, hopeless):
+                if _on_a_curve(attempts) and name != LAST:
+                    # From here all ways lead onto it; only other starts may lead past it.
+                    continue
                 attempts.append(_attempt(rung, problem, start, Trail(name, start, budget, deadline)))
                 if _final(attempts[-1], deadline) or attempts[0].solved:
                     break
@@ -78,6 +87,11 @@ def solve_scalar(problem: ScalarProblem, budget: Budget = DEFAULT_BUDGET) -> Out
 
         return _inner_if_any(found, lambda: scalar_roots(problem, [float(found.x[0])], 2, budget))
     return found
+
+
+def _on_a_curve(attempts: Sequence[Outcome]) -> bool:
+    """Whether more than one attempt has ended on a continuum of roots."""
+    return sum(attempt.status is Status.CONTINUUM for attempt in attempts) > 1
 
 
 def _came_to_bound(outcome: Outcome) -> bool:

@@ -168,7 +168,7 @@ def finish(problem: ScalarProblem, x: float, value: float, slope: float, trail: 
 
 
 def _kind_of_root(problem: ScalarProblem, x: float, value: float, slope: float) -> Status:
-    """Whether the root is single, double, or one of a continuum; see `termination.kind_of_root`."""
+    """Whether the root is single, double, or one of a continuum; see `kind_of_root`."""
     by_slope = abs(slope * x)
     if 0.0 < abs(value) <= SURE * by_slope:
         return Status.CONVERGED

@@ -21,6 +21,8 @@ STARTS = 64
 # Points looked at for starts inside the domain: where equations have no value over most of the range, the
 # few points where they have one are worth finding.
 CANDIDATES = 1024
+# Starts that end on a continuum of roots after which no isolated root is expected any more.
+ENOUGH_CONTINUA = 12
 # Steps from one start: where a start is any good, these suffice.
 SHORT = 60
 
@@ -29,7 +31,10 @@ def spread(problem: Problem, start: Vector, trail: Trail) -> Outcome:
     """The first root found from the spread starts, else what the best point of all descends to."""
     interior = Interior(problem)
     best: Outcome | None = None
+    continua = 0
     for point, methods in _attempts(problem):
+        if trail.spent or continua >= ENOUGH_CONTINUA:
+            break
         for method in methods:
             if trail.spent:
                 break
@@ -39,6 +44,7 @@ def spread(problem: Problem, start: Vector, trail: Trail) -> Outcome:
                 return outcome
             if outcome.status is Status.DOMAIN:
                 break
+            continua += outcome.status is Status.CONTINUUM
             if best is None or outcome.residual < best.residual:
                 best = outcome
     if best is None:

@@ -1,8 +1,4 @@
-"""Starts spread evenly over the bounds, or over decades where there are none, the same at every run.
-
-Reference: I. M. Sobol, On the distribution of points in a cube and the approximate evaluation of integrals,
-USSR Comput. Math. Math. Phys. 7 (1967), 86-112; scrambled with a fixed seed by scipy.
-"""
+"""Starts spread evenly over the bounds, or over decades where there are none, the same at every run."""
 
 from __future__ import annotations
 
@@ -14,9 +10,8 @@ import numpy as np
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.moved_start import moved_start
 from eqsheet.solve.problem import Problem, Vector
+from eqsheet.solve.sobol import sobol
 
-# Any fixed number: the same worksheet must give the same answer tomorrow.
-SEED = 20040
 # Factors by which a whole guess may be wrong, as by a unit taken for another.
 COMMON_FACTORS = (0.1, 10.0, 0.01, 100.0, 1e-3, 1e3, -1.0, -0.1)
 # Decades to either side of its typical size over which an unknown is spread where a bound is missing.
@@ -44,10 +39,7 @@ def spread_starts(problem: Problem, count: int) -> Iterator[Vector]:
     """
     if count == 0:
         return
-    from scipy.stats import qmc
-
-    sequence = qmc.Sobol(problem.n, scramble=True, rng=np.random.default_rng(SEED))
-    for number, sample in enumerate(sequence.random(count)):
+    for number, sample in enumerate(sobol(problem.n, count)):
         either_sign = number % 2 == 1
         yield np.array([_placed(problem, k, float(part), either_sign) for k, part in enumerate(sample)])
 

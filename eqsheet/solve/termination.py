@@ -1,4 +1,4 @@
-"""The stopping test: how large residuals and steps are, and what kind of root a point is.
+"""The stopping test: how large residuals and steps are.
 
 Residuals are judged against the size of their equation: that of its terms, or ``sum_j |J_ij| |x_j|``, what
 a relative change of the unknowns makes of it, so that a residual of a few roundings of it is explained by
@@ -15,8 +15,7 @@ from math import inf
 
 import numpy as np
 
-from eqsheet.solve.factor import TINY, Factor, pseudo_inverse, smallest_singular_vectors
-from eqsheet.solve.outcome import Status
+from eqsheet.solve.factor import TINY, Factor
 from eqsheet.solve.problem import Matrix, Problem, Vector
 
 # Scaled residual that rounding alone explains: four units in the last place, as an equation of a few terms
@@ -48,9 +47,6 @@ ZERO_FLOOR = 2.0**-20
 # Condition from which a root is examined for being double or not isolated: 1/sqrt(eps) is where a double
 # root stops.
 SUSPECT_CONDITION = 1e7
-# Order of the largest block that is examined so: it takes dense matrices. A larger one is not believed
-# where it is singular.
-LARGEST_EXAMINED = 300
 # How far from the root that examination looks, relative to the size of the unknowns.
 PROBE = 2.0**-12
 # An unknown near zero is moved by that part of at least this part of its typical size.
@@ -81,6 +77,19 @@ def term_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
     """As `known_sizes`, with the Jacobian in place of those that the problem does not know."""
     sizes = known_sizes(problem, x)
     return np.asarray(np.where(sizes > 0.0, sizes, abs(jacobian) @ floored(x, problem)))
+
+
+def sizes_really_there(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
+    """Size of the terms of each equation at x itself (n,); only where all have vanished that of `term_sizes`.
+
+    Vanished is what is next to nothing against the terms at the start. Of ``x y = 1`` far out on one axis the product
+    is zero as far as y goes, but the one is still there.
+    """
+    own = problem.sizes(x)
+    usual = problem.sizes(problem.start)
+    # Written so that sizes that are not known count as vanished.
+    there = own > ZERO_FLOOR * usual
+    return np.asarray(np.where(there, own, term_sizes(problem, x, jacobian)))
 
 
 def equation_sizes(problem: Problem, x: Vector, jacobian: Matrix) -> Vector:
@@ -149,9 +158,9 @@ def underflown(problem: Problem, x: Vector, factor: Factor) -> bool:
 
     ``exp(-1e9)`` is such a one. A problem that knows no sizes at all is given the benefit of the doubt.
     """
-    empty = factor.rows <= TINY
-    if not empty.any():
+    if factor.rows.min() > TINY:
         return False
+    empty = factor.rows <= TINY
     sizes = known_sizes(problem, x)
     return bool((sizes[empty] == 0.0).any() and (sizes > 0.0).any())
 
@@ -168,69 +177,3 @@ def _grows_away(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix,
             if abs(moved) < inf:
                 return bool(abs(moved) > max(abs(residual[equation]), 0.25 * foretold))
     return False
-
-
-def kind_of_root(problem: Problem, x: Vector, scaled: float, sizes: Vector, factor: Factor) -> Status:
-    """Whether a point with vanishing residuals is an isolated root, a double one, or one of a continuum.
-
-    Parameters
-    ----------
-    x : ndarray (n,)
-        Strictly inside the bounds.
-    scaled : float
-        Largest scaled residual there.
-    sizes : ndarray (n,)
-        What the residuals are judged against.
-    factor : Factor
-        The Jacobian at x, or one last correction before it.
-
-    Notes
-    -----
-    Looks along the right singular vector v of the smallest singular value. At distances t and 2t along it the
-    residual is made as small as the other directions allow; what is left grows with t^2 at a double root
-    and with t at a regular one, and stays at rounding level on a continuum.
-    """
-    # Amplification of a relative error of the equations, in terms of their sizes, into one of the unknowns.
-    sensitivity = (
-        factor.inverse * (sizes / factor.rows) if isinstance(factor.inverse, np.ndarray) else factor.condition
-    )
-    if not factor.singular and np.max(np.abs(sensitivity)) < SUSPECT_CONDITION:
-        return Status.CONVERGED
-    if problem.n > LARGEST_EXAMINED:
-        return Status.CONTINUUM if factor.singular else Status.CONVERGED
-    matrix = factor.matrix.toarray() if hasattr(factor.matrix, "toarray") else factor.matrix
-    reach = np.maximum(np.abs(x), NEIGHBOURHOOD * problem.magnitude)
-    units = np.maximum(sizes, TINY)[:, None]
-    _, _, direction = smallest_singular_vectors(
-        matrix * (reach / factor.weights) * factor.rows[:, None] / units
-    )
-    left_over = [_least_residual(problem, x, reach, sizes, direction, t) for t in (PROBE, 2.0 * PROBE)]
-    near, far = (min(pair) for pair in left_over)
-    if far <= max(64.0 * ROUNDING, 8.0 * scaled):
-        return Status.CONTINUUM
-    if far > 3.0 * near or factor.singular:
-        return Status.DOUBLE
-    return Status.CONVERGED
-
-
-def _least_residual(
-    problem: Problem, x: Vector, weights: Vector, sizes: Vector, direction: Vector, distance: float
-) -> tuple[float, float]:
-    """Least scaled residual at `distance` to either side, by Gauss-Newton steps across `direction`."""
-    across = np.eye(problem.n) - np.outer(direction, direction)
-    found = []
-    for side in (distance, -distance):
-        point = x + side * weights * direction
-        smallest = np.inf
-        for _ in range(6):
-            if not ((problem.lower < point) & (point < problem.upper)).all():
-                break
-            residual, jacobian = problem.linearise(point)
-            if not (np.isfinite(residual).all() and np.isfinite(np.asarray(jacobian)).all()):
-                break
-            smallest = min(smallest, scaled_norm(residual, sizes))
-            scale = np.where(sizes > 0.0, sizes, 1.0)
-            matrix = (np.asarray(jacobian) * weights / scale[:, None]) @ across
-            point = point - weights * (across @ (pseudo_inverse(matrix) @ (residual / scale)))
-        found.append(smallest)
-    return found[0], found[1]

@@ -41,7 +41,8 @@ from eqsheet.worksheet.array_equations import LARGE_BLOCK, ArrayBlock, ArrayProb
 from eqsheet.worksheet.block_equations import BlockProblem, block_problem, scalar_problem
 from eqsheet.worksheet.block_plan import plan_of
 from eqsheet.worksheet.guesses import Guesses
-from eqsheet.worksheet.starting_values import Start, starting_values
+from eqsheet.worksheet.intervals import narrowed
+from eqsheet.worksheet.starting_values import MOST_NARROWED, Start, starting_values
 from eqsheet.worksheet.torn import TornBlock, torn_block
 
 # Rounding of a closed form may put its value this far past a bound, relative to the bound.
@@ -277,7 +278,14 @@ def _solve_plain(
     def through_tears(block: Problem, at: Vector, trail: Trail) -> Outcome:
         return _through_tears(torn_block(formulas, unknowns, known.values, start), block, trail)
 
-    return solve_block(problem, budget, (("torn", through_tears),)), problem
+    def hopeless() -> bool:
+        bounds = list(zip(start.lower, start.upper))
+        return (
+            len(unknowns) <= MOST_NARROWED
+            and narrowed(unknowns, formulas, known.values, bounds, known.errors).empty >= 0
+        )
+
+    return solve_block(problem, budget, (("torn", through_tears),), hopeless), problem
 
 
 def _less_blind(
@@ -427,7 +435,7 @@ def judged(
     x = np.asarray(outcome.x, dtype=float)
     values = as_sequence(x)
     factor = outcome.factor
-    if factor is not None:
+    if factor is not None and not isinstance(problem, BlockProblem):
         # Too large to be kept with the solution.
         outcome = replace(outcome, factor=None)
 
