@@ -8,14 +8,13 @@ import numpy as np
 
 from eqsheet.solve.factor import Factor, factorise, smallest_singular_vectors
 from eqsheet.solve.interior import Interior
-from eqsheet.solve.kind_of_root import kind_of_root
+from eqsheet.solve.kind_of_root import DOUBTFUL, kind_of_root
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
 from eqsheet.solve.termination import (
     ACCEPTABLE,
     MULTIPLE_AFTER,
     SURE,
-    SUSPECT_CONDITION,
     at_rest,
     confirmed,
     equation_sizes,
@@ -34,7 +33,7 @@ CLEARED = (1 << 16) - 1
 HALF_OF_CLEARED = 1 << 15
 # Condition below which a root is a single one: sizes of residuals by the Jacobian are no larger than its scaled rows,
 # so nothing is amplified further than this.
-SURELY_SINGLE = 0.5 * SUSPECT_CONDITION
+SURELY_SINGLE = 0.5 * DOUBTFUL
 
 
 class _Rest(NamedTuple):
@@ -147,10 +146,8 @@ def _concluded(problem: Problem, interior: Interior, trail: Trail, rest: _Rest, 
     if not believed:
         step = -factor.weights * factor.solve(residual)
         return give_up(problem, interior, trail, step, factor)
-    if sure and factor.condition < SURELY_SINGLE:
-        kind = Status.CONVERGED
-    else:
-        kind = kind_of_root(problem, x, scaled, sizes, factor)
+    single = sure and factor.condition < SURELY_SINGLE
+    kind = Status.CONVERGED if single else kind_of_root(problem, x, scaled, sizes, factor)
     if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:
         kind = Status.DOUBLE
     if kind is Status.CONVERGED:

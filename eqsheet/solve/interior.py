@@ -19,6 +19,8 @@ NUDGE = 2.0**-7
 # Distance to a bound, relative to the larger of the bound and the typical size, at which an unknown rests
 # on it.
 RESTING = 2.0**-40
+# Well inside its bounds is what lies several times further from them, relative to whatever may be large there.
+WELL_INSIDE = 2.0**-36
 
 
 class Interior:
@@ -42,6 +44,18 @@ class Interior:
     def contains(self, x: Vector) -> bool:
         """Whether x lies strictly inside."""
         return bool(((self.lower < x) & (x < self.upper)).all())
+
+    def _holds_well(self, x: Vector) -> bool:
+        """Whether x lies inside by more than a little of itself, of its bounds and of its typical size."""
+        if self._bounds is None:
+            # Asked for once, and that of large blocks: arrays are as quick.
+            return False
+        values, sizes = x.tolist(), self.magnitude.tolist()
+        for i, low, high in self._bounds:
+            room = min(values[i] - low, high - values[i])
+            if not room > WELL_INSIDE * max(sizes[i], abs(values[i])):
+                return False
+        return True
 
     def holds(self, x: Sequence[float]) -> bool:
         """As `contains`, for plain floats."""
@@ -95,7 +109,7 @@ class Interior:
 
     def resting(self, x: Vector) -> tuple[int, ...]:
         """Indices of the unknowns that rest on a bound to rounding."""
-        if not self.bounded:
+        if not self.bounded or self._holds_well(x):
             return ()
         low = x - self.lower <= RESTING * np.maximum(np.abs(self.lower), self.magnitude)
         high = self.upper - x <= RESTING * np.maximum(np.abs(self.upper), self.magnitude)

@@ -74,7 +74,7 @@ def _walk(problem: Problem, written: WrittenStep, start: Vector, trail: Trail) -
     settled = True
     while len(way) < MOST_STEPS:
         way.append((x, damping, limiting))
-        weights = list(map(max, map(abs, x), floors))
+        weights = [a if a > f else max(-a, f) for a, f in zip(x, floors)]
         scaled = list(map(truediv, step, weights))
         norm = hypot(*scaled) / mean
         rest = _largest_change(step, x, floors) if norm < NEAR else inf
