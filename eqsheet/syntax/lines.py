@@ -27,8 +27,10 @@ _TABLE_HEAD = re.compile(
     rf"(?:off[ \t]+|{_NAME}[ \t]*:[ \t]*)*(?:rows|curve|surface)[ \t]+{_NAME}[ \t]*(?![-=*/+^])"
 )
 _GOES_ON = re.compile(r"(?:[-+*/^=<>(\[,±]|(?<!\w)(?:and|or|not|then|else|if))$")
+# `* within 0 ..` is a pattern, though not one that is taken; `* near + 3` goes on with a factor of that name.
+_PATTERN = r"\*[\w.*]*[ \t]+(?:within(?!\w)|near[ \t]+[\w(])"
 _CARRIES_ON = re.compile(
-    r"\s*(?:[-+*/^=<>,±]|!=|\.\.|&&|\|\||(?:and|or|then|else|valid|within)(?!\w)(?![ \t]*[=:]))"
+    rf"\s*(?!{_PATTERN})(?:[-+*/^=<>,±]|!=|\.\.|&&|\|\||(?:and|or|then|else|valid|within)(?!\w)(?![ \t]*[=:]))"
 )
 _STARTS = re.compile(
     r"\s*(?:"
@@ -40,7 +42,8 @@ _STARTS = re.compile(
     rf"|{_NAME}(?:\[[^\]=]*\]|\.{_NAME})*[ \t]*(?:=|:|(?:near|within)(?!\w))"
     r")"
 )
-_HEADING = re.compile(r"(#{2,6})[ \t]+(.*\S)[ \t]*$")
+# The blank before the title is easily forgotten; `##x = 3 m` is rather a statement that was put aside.
+_HEADING = re.compile(r"(#{2,6})(?:[ \t]+|(?=[^\W\d_][^=]*$))(.*\S)[ \t]*$")
 _EQUALS_OR_BRACKET = re.compile(r'"[^"\n]*"|[<>!]=|=|[()\[\]]')
 _TEXT_OR_COMMENT = re.compile(r'"[^"\n]*"|#')
 

@@ -31,6 +31,7 @@ _FUNCTIONS = frozenset(
         *("tanh", "abs", "sign", "min", "max", "hypot", "erf", "gamma", "logmean"),
     )
 )
+_PATTERN_OF_BOUNDS = re.compile(r"\*[\w.*]*[ \t]+(?:near|within)(?!\w)")
 # Signs that end an operand that has not begun.
 _ENDS = frozenset("*/^=<>)],:")
 
@@ -107,6 +108,23 @@ def _at_if(misfit: Misfit, code: str, message: str) -> Slip:
         if terminal == "IF":
             return Slip(code, message, start, end, _IF_FORM)
     return misfit.here(code, message, _IF_FORM)
+
+
+def patterns(misfit: Misfit) -> Slip | None:
+    """A ``*`` where a pattern of names was meant: alone, first, or in a ``show``."""
+    if misfit.rest[:1] == "*" and misfit.first == "SHOW" and misfit.last in ("SHOW", "NAME", "COMMA"):
+        return misfit.here(
+            "pattern-form",
+            "`show` names quantities, and takes no pattern",
+            "all quantities are shown anyway; name those that come first or in a unit of their own: `show v in m/s`",
+        )
+    if not misfit.before and _PATTERN_OF_BOUNDS.match(misfit.rest):
+        return misfit.here(
+            "pattern-form",
+            "a pattern begins with a letter",
+            "name what the quantities have in common, `c_* within 0 mol/L ..`, or give each its own line",
+        )
+    return None
 
 
 def reserved_words(misfit: Misfit) -> Slip | None:
@@ -309,6 +327,14 @@ def products(misfit: Misfit) -> Slip | None:
     left, right = misfit.text[start : misfit.before[-1][2]], _operand_at(misfit)
     help = f"write `{left}({right})`" if left in _FUNCTIONS else f"write `{left}*{right}`"
     if misfit.last == "NUMBER" and misfit.word and right == misfit.word and not misfit.touches:
+        if left[-1].isdigit() and misfit.text[misfit.before[-1][2] : misfit.position] != " ":
+            return Slip(
+                "unit-apart",
+                f"`{left}` and `{right}` stand apart: a unit follows its number directly or after one space",
+                misfit.last_start,
+                misfit.position + len(misfit.thing),
+                f"write `{left} {right}`, or `{left}*{right}` where `{right}` is a quantity",
+            )
         if left[-1].isdigit():
             help += f" for a product; a unit follows its number after one space, `{left} {right}`"
         else:

@@ -18,6 +18,7 @@ _RULES: tuple[Callable[[Misfit], Slip | None], ...] = (
     slip_signs.units,
     slip_signs.foreign_signs,
     slip_signs.quotes,
+    slip_forms.patterns,
     slip_forms.file_names,
     slip_forms.conditionals,
     slip_forms.reserved_words,

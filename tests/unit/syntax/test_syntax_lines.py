@@ -27,6 +27,7 @@ ONE_STATEMENT = {
     "comment inside": "x = a +  # first\n  # between\n  b",
     "blank line inside": "x = (a +\n\n  b)",
     "bracket in a comment": "x = (a  # )\n  + b)",
+    "factor on the next line": "x = a\n  * near + 3",
     "bracket in quotes": 'x = y[")"\n  ]',
 }
 
@@ -48,6 +49,8 @@ TWO_STATEMENTS = {
     "side missing": "x =\ny = b",
     "comma left over": "show x,\nshow y",
     "blank line before a leading sign": "x = a\n\n- y = b",
+    "bounds for everything": "x = a\n* within 0 ..",
+    "guess for everything": "x = a\n*_in near 3 bar",
     "hash in quotes": 'x = y["#1"]\nz = 2',
 }
 
@@ -102,3 +105,19 @@ def test_comment_starts_at_the_first_hash_outside_quotes() -> None:
 )
 def test_remarks(comment: str, parts: tuple[str, str, str]) -> None:
     assert tuple(remarks(comment)) == parts
+
+
+@pytest.mark.parametrize(
+    ("line", "title"),
+    [
+        ("## Given", "Given"),
+        ("##Given", "Given"),
+        ("###Größe: bore", "Größe: bore"),
+        ("##x = 3 m", ""),  # a statement put aside
+        ("####----", ""),
+        ("# #tag", ""),
+    ],
+)
+def test_a_heading_without_its_blank_opens_a_section(line: str, title: str) -> None:
+    (prose,) = logical_lines(Source("sheet", line)).prose
+    assert prose.title == title
