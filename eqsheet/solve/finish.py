@@ -31,8 +31,8 @@ WEIGHT_FLOOR = 0.1
 # Newton's method doubles them.
 CLEARED = (1 << 16) - 1
 HALF_OF_CLEARED = 1 << 15
-# Condition below which a root is a single one: sizes of residuals by the Jacobian are no larger than its scaled rows,
-# so nothing is amplified further than this.
+# Entries of the inverse of the scaled Jacobian below which a root is a single one: sizes of residuals by the Jacobian
+# are no larger than its rows, so nothing is amplified further than this.
 SURELY_SINGLE = 0.5 * DOUBTFUL
 
 
@@ -146,7 +146,8 @@ def _concluded(problem: Problem, interior: Interior, trail: Trail, rest: _Rest, 
     if not believed:
         step = -factor.weights * factor.solve(residual)
         return give_up(problem, interior, trail, step, factor)
-    single = sure and factor.condition < SURELY_SINGLE
+    # The condition is that of the matrix equilibrated where it had to be, so the inverse itself is asked.
+    single = sure and isinstance(factor.inverse, np.ndarray) and np.abs(factor.inverse).max() < SURELY_SINGLE
     kind = Status.CONVERGED if single else kind_of_root(problem, x, scaled, sizes, factor)
     if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:
         kind = Status.DOUBLE
