@@ -44,6 +44,11 @@ class Bound:
         columns = self.columns
         return tuple([c if isinstance(c := columns[p], int) else int(c[entry]) for p in provisional])
 
+    def at(self, entry: int) -> Bound:
+        """One entry alone."""
+        columns = {p: c if isinstance(c, int) else c[entry : entry + 1] for p, c in self.columns.items()}
+        return Bound(self.domain.at(entry), columns)
+
 
 class Binder:
     """Puts final quantity numbers and statement numbers into lowered items."""

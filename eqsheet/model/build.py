@@ -239,7 +239,7 @@ def _assemble(
         grouping = Grouping(numbering, large_family, not freed and all(s.source.numbered for s in statements))
     names = numbering.names(indexing) if grouping is None else FamilyNames(numbering, indexing)
     _refuse_indices_like_quantities(work, numbering, diagnostics)
-    gathered = Gathered(names, statements, grouping)
+    gathered = Gathered(names, statements, context.unit_table, grouping)
     for column in tables.columns:
         put_column(gathered, column, numbering, binder)
     for one in work:

@@ -25,6 +25,7 @@ from eqsheet.model.lower_statements import (
     GuessMeant,
     LoweredStatement,
 )
+from eqsheet.model.members_without_value import members_without_value
 from eqsheet.model.placed import Placed
 from eqsheet.model.system import (
     EquationItem,
@@ -39,6 +40,7 @@ from eqsheet.model.tape import Formula, Literal, TapeBuilder
 from eqsheet.model.value_of_known import known_value
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.dimension import DIMENSIONLESS
+from eqsheet.units.registry import UnitTable
 from eqsheet.units.unit import Unit
 
 
@@ -58,6 +60,7 @@ class Gathered:
 
     names: Sequence[str]
     statements: tuple[syntax.Statement, ...]
+    unit_table: UnitTable
     grouping: Grouping | None = None
     equations: list[EquationItem] = field(default_factory=list)
     limits: list[LimitItem] = field(default_factory=list)
@@ -128,7 +131,7 @@ def put_statement(gathered: Gathered, one: Work, binder: Binder, indexing: Index
     try:
         if lowered.equation is not None:
             bound = binder.bind((*lowered.named, *lowered.conditions_name), one.place, one.domain)
-            _put_equations(gathered, one, lowered.equation, bound, indexing)
+            _put_equations(gathered, one, lowered.equation, bound, binder)
             _put_hints(gathered.hints[0], lowered.unit_hints, bound)
             _put_hints(gathered.hints[3], lowered.curve_hints, bound)
         elif lowered.limit is not None:
@@ -162,19 +165,26 @@ def _member(one: Work, entry: int, indexing: Indexing) -> str:
     return ", ".join(part for part in (name, rest) if part)
 
 
-def _put_equations(
-    gathered: Gathered, one: Work, item: EquationItem, bound: Bound, indexing: Indexing
-) -> None:
+def _put_equations(gathered: Gathered, one: Work, item: EquationItem, bound: Bound, binder: Binder) -> None:
+    indexing = binder.indexing
     place = Place(one.number, item.place.start, item.place.end)
     for provisional, start, end in one.lowered.named:
         where = Place(one.number, start, end)
         column = bound.columns[provisional]
         for quantity in (column,) if isinstance(column, int) else _to_be_seen(column, gathered.grouping):
             gathered.see(quantity, where)
+
+    def told(domain: Domain, entry: int) -> str:
+        return _member(replace(one, domain=domain), entry, indexing)
+
+    statement = one.place.statement
+    name = gathered.names.__getitem__
+    slip = members_without_value(item, bound, statement, name, told, gathered.unit_table)
+    if slip is not None:
+        binder.note(slip)
+        return
     if gathered.grouping is not None:
-        rest = gathered.grouping.take_equation(
-            item, bound, place, lambda domain, entry: _member(replace(one, domain=domain), entry, indexing)
-        )
+        rest = gathered.grouping.take_equation(item, bound, place, told)
         if rest is None:
             return
         bound, one = rest, replace(one, domain=rest.domain)

@@ -29,6 +29,7 @@ from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import operands_in_run
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.display import default_unit
+from eqsheet.units.registry import UnitTable
 from eqsheet.units.unit import Unit
 
 _PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
@@ -141,7 +142,9 @@ def lower_equation(
                     Finding("outside-curve", outside.message, *place, help=OUTSIDE_CURVE_HELP)
                 )
                 return _broken(work, names, node)
-            work.findings.append(_without_value(extract(formula, (other,)), target, work.text, context))
+            name = work.text[target.start : target.end]
+            alone = extract(formula, (other,))
+            work.findings.append(without_value(alone, name, work.text, context.unit_table))
             return _broken(work, names, node)
         reads_curve = formula.tape.instructions[other][0] in ("curve", "surface")
         # `w = 2*pi*9 kHz` is an angular speed, which a unit of frequency must not show.
@@ -164,19 +167,19 @@ def lower_equation(
     )
 
 
-def _without_value(value: Formula, target: syntax.Reference, line: str, context: Context) -> Finding:
+def without_value(value: Formula, name: str, line: str, unit_table: UnitTable) -> Finding:
     """That the value of a known is not finite, and why."""
     values = evaluate(value.tape, (), literal_values(value))
     found = no_value(value, values, line)
     assert found is not None, "called for a value that is not finite"
     dimensions = dimensions_of(value, ())
     notes = tuple(
-        f"`{text}` is {written(values[i], default_unit(dimensions[i] or DIMENSIONLESS, 'plain', context.unit_table))}"
+        f"`{text}` is {written(values[i], default_unit(dimensions[i] or DIMENSIONLESS, 'plain', unit_table))}"
         for i, text in found.operands
     )
     return Finding(
         "value-not-finite",
-        f"`{line[target.start : target.end]}` has no value: {found.reason}",
+        f"`{name}` has no value: {found.reason}",
         found.start,
         found.end,
         notes=notes,
