@@ -146,8 +146,9 @@ def _concluded(problem: Problem, interior: Interior, trail: Trail, rest: _Rest, 
     if not believed:
         step = -factor.weights * factor.solve(residual)
         return give_up(problem, interior, trail, step, factor)
-    # The condition is that of the matrix equilibrated where it had to be, so the inverse itself is asked.
-    single = sure and isinstance(factor.inverse, np.ndarray) and np.abs(factor.inverse).max() < SURELY_SINGLE
+    single = sure and factor.condition < SURELY_SINGLE and isinstance(factor.inverse, np.ndarray)
+    # The condition is that of the matrix equilibrated where it had to be, so the inverse itself is asked too.
+    single = single and np.abs(factor.inverse).max() < SURELY_SINGLE
     kind = Status.CONVERGED if single else kind_of_root(problem, x, scaled, sizes, factor)
     if kind is Status.CONVERGED and slow_steps >= MULTIPLE_AFTER:
         kind = Status.DOUBLE
