@@ -14,7 +14,7 @@ import numpy as np
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.families import Family, FamilyReference, Numbering, with_fixed, written_name
 from eqsheet.model.indexing import Codes, Domain, Indexing, IndexSlip, member_text, placed, subscript
-from eqsheet.model.placed import Placed, Scope
+from eqsheet.model.placed import Placed, Scope, is_hidden
 from eqsheet.model.scope import NameTable, OfInstance
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import Formula, Instruction, Tape, TapeBuilder, interned, operands_of
@@ -300,6 +300,7 @@ def entry_text(domain: Domain, entry: int, indexing: Indexing) -> str:
     return ", ".join(
         f"{name} = {member_text(domain.sets[name], int(array[entry]), indexing)}"
         for name, array in domain.arrays.items()
+        if not is_hidden(name)
     )
 
 

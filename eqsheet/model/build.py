@@ -6,14 +6,15 @@ left out of the system; the others are unaffected.
 
 from __future__ import annotations
 
-from collections.abc import Collection, Iterable, Mapping, Sequence
+from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
 
-from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.bind import (
     Binder,
     resolved_key,
 )
 from eqsheet.model.curves import collect_curves
+from eqsheet.model.domains import Domains, visible
 from eqsheet.model.equation_group import LARGE_FAMILY
 from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
 from eqsheet.model.family_names import FamilyNames
@@ -29,14 +30,14 @@ from eqsheet.model.gather import (
     put_statement,
 )
 from eqsheet.model.grouping import Grouping
-from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, whole_number
+from eqsheet.model.indexing import Indexing, IndexSlip, whole_number
 from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
 from eqsheet.model.lower_statements import (
     LoweredStatement,
 )
 from eqsheet.model.lowered_cache import LoweredCache
-from eqsheet.model.placed import Placed, place_statements
-from eqsheet.model.scope import Context, IndexScope, NameTable, OfInstance
+from eqsheet.model.placed import Placed, Scope, place_statements
+from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance
 from eqsheet.model.system import (
     EquationSystem,
 )
@@ -45,8 +46,6 @@ from eqsheet.model.unit_statements import collect_units
 from eqsheet.model.written_nodes import names_in
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.walk import walk
-
-_ONE = Domain()
 
 
 def build_system(
@@ -147,19 +146,17 @@ def _lower_all(
     diagnostics: list[Diagnostic],
 ) -> list[Work]:
     work: list[Work] = []
-    domains: dict[tuple[int, ...], Domain | None] = {}
-    no_indices = IndexScope()
+    domains = Domains(indexing, diagnostics)
     said: set[int] = set()
     for place in placed:
         statement = place.statement
         number = numbered[id(statement)][0]
         in_instance = place.instance is not None
-        domain, indices = _ONE, no_indices
-        if place.heads:
-            over = _domain(place.heads, indexing, domains, diagnostics)
-            if over is None:
-                continue
-            domain, indices = over, IndexScope(free=over.sets)
+        domain = domains.of(place)
+        if domain is None:
+            continue
+        free = visible(domain.sets)
+        indices = IndexScope(free=free) if free else NO_INDICES
         one = cache.lowered(statement, indices, in_instance)
         if one is not None:
             if one.findings and id(statement) not in said:
@@ -168,7 +165,7 @@ def _lower_all(
             work.append(Work(place, number, domain, one))
             continue
         for entry in range(domain.size):
-            fixed = {n: (int(a[entry]), domain.sets[n]) for n, a in domain.arrays.items()}
+            fixed = {n: (int(domain.arrays[n][entry]), free[n]) for n in free}
             one = cache.lowered(statement, IndexScope(fixed=fixed), in_instance)
             assert one is not None
             if one.findings and id(statement) not in said:
@@ -176,44 +173,6 @@ def _lower_all(
                 slips.extend((finding, statement) for finding in one.findings)
             work.append(Work(place, number, domain.at(entry), one))
     return work
-
-
-def _domain(
-    heads: Sequence[syntax.Statement],
-    indexing: Indexing,
-    known: dict[tuple[int, ...], Domain | None],
-    diagnostics: list[Diagnostic],
-) -> Domain | None:
-    """The domain of some `for` lines, None where one of them is wrong (which is said once)."""
-    key = tuple(map(id, heads))
-    if key in known:
-        return known[key]
-    outer = _domain(heads[:-1], indexing, known, diagnostics) if len(heads) > 1 else _ONE
-    head = heads[-1].node
-    assert isinstance(head, syntax.Family)
-    result = None
-    if outer is not None:
-        try:
-            result = outer
-            for clause in head.clauses:
-                result = grown(result, clause, indexing)
-            result = filtered(result, head.filter, indexing)
-            if not result.size and outer.size:
-                diagnostics.append(_empty_family(heads[-1]))
-        except IndexSlip as slip:
-            diagnostics.append(slip.finding.at(heads[-1]))
-            result = None
-    known[key] = result
-    return result
-
-
-def _empty_family(head: syntax.Statement) -> Diagnostic:
-    return warning(
-        "empty-family",
-        "this family has no members",
-        Label(head.whole),
-        help="its lines are not used; check the range or the filter",
-    )
 
 
 def _assemble(
@@ -278,10 +237,8 @@ def _refuse_indices_like_quantities(
         return
     checked: set[tuple[int, int]] = set()
     for one in work:
-        statement = one.place.statement
-        scope = one.place.scope
-        for part in (*one.place.heads, statement):
-            if (id(part), id(scope)) in checked or (part is statement and " for " not in statement.line.text):
+        for part, scope in _with_indices(one.place):
+            if (id(part), id(scope)) in checked:
                 continue
             checked.add((id(part), id(scope)))
             for clause in _clauses(part):
@@ -296,6 +253,17 @@ def _refuse_indices_like_quantities(
                     )
                     if slip not in diagnostics:
                         diagnostics.append(slip)
+
+
+def _with_indices(place: Placed) -> Iterator[tuple[syntax.Statement, Scope]]:
+    """A statement and the `for` lines around it, those around its instances included, with their scopes."""
+    scope, heads = place.scope, place.heads
+    if " for " in place.statement.line.text:
+        yield place.statement, scope
+    yield from ((head, scope) for head in heads)
+    while scope.around is not None:
+        heads, scope = scope.heads, scope.around
+        yield from ((head, scope) for head in heads)
 
 
 def _clauses(statement: syntax.Statement) -> list[syntax.IndexClause]:
@@ -345,7 +313,7 @@ def _number(
                 if number == one.lowered.equation.known:
                     alone.add(resolved)
                 continue
-            if one.place.heads or resolved.fixed:
+            if one.domain.arrays or resolved.fixed:
                 indexed.add(resolved.path[0][0])
             written_key = key.key if isinstance(key, OfInstance) else key
             # A path written out, `supply.dP`, refers to what the template makes; so does a line of an

@@ -89,13 +89,18 @@ class Lowering:
         self._fixed_place: Place2 | None = None
         self._free = indices.free
         self._fixed = dict(indices.fixed)
+        self._around = frozenset((*indices.free, *indices.fixed))
         self.of_instance = False
         self._written_out: dict[tuple[str, tuple[int, ...]], int] = {}
 
     @property
     def index_names(self) -> frozenset[str]:
         """The indices in force."""
-        return frozenset((*self._free, *self._fixed))
+        return frozenset(name for name in (*self._free, *self._fixed) if self._is_index(name))
+
+    def _is_index(self, name: str) -> bool:
+        """Whether an index counts as one here: on the left of a line in an instance's group the family's do not."""
+        return not (self.of_instance and name in self._around)
 
     # --- entry points ---------------------------------------------------------------------------------
 
@@ -211,7 +216,7 @@ class Lowering:
         parameter = self._parameters.get(node.name)
         if parameter is not None:
             return parameter
-        if node.name in self._fixed or node.name in self._free:
+        if (node.name in self._fixed or node.name in self._free) and self._is_index(node.name):
             return self._index(node, place)
         if node.name == "pi":
             return self.builder.constant(math.pi, place)

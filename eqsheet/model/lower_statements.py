@@ -105,7 +105,7 @@ def lower_equation(
         work.of_instance = False
         right = work.value(node.right)
         work.valid(node.valid)
-        target, value_node = _known_parts(node, indices)
+        target, value_node = _known_parts(node, indices, in_instance)
         tolerance = _tolerance(node, value_node, work) if node.tolerance else None
     except Poisoned:
         return _broken(work, names, node)
@@ -204,10 +204,10 @@ def lower_guess(
             for role, part in (("near", node.near), ("lower", node.lower), ("upper", node.upper))
             if part is not None
         ]
-        key = node.target.pattern if isinstance(node.target, syntax.NamePattern) else _key(node.target, work)
         # A pattern stands for many quantities; each gets its own formula when the names are known, and until
         # then a provisional quantity of the pattern's name holds the place.
         work.of_instance = in_instance
+        key = node.target.pattern if isinstance(node.target, syntax.NamePattern) else _key(node.target, work)
         number = work.number_of(key)
         work.of_instance = False
         target = work.builder.quantity(number, (node.target.start, node.target.end))
@@ -399,12 +399,14 @@ def known_name(statement: syntax.Statement) -> str | None:
 
 
 def _known_parts(
-    node: syntax.Equation, indices: IndexScope
+    node: syntax.Equation, indices: IndexScope, in_instance: bool = False
 ) -> tuple[syntax.Reference | None, syntax.Expression | None]:
     """The quantity set and its value expression; (None, None) for an equation."""
     known_indices = {*indices.free, *indices.fixed}
     for target, value in ((node.left, node.right), (node.right, node.left)):
-        if not isinstance(target, syntax.Reference) or _is_constant(target) or target.name in known_indices:
+        if not isinstance(target, syntax.Reference) or _is_constant(target):
+            continue
+        if target.name in known_indices and not (in_instance and target is node.left):
             continue
         if not _has_names(value, known_indices):
             return target, value

@@ -7,17 +7,19 @@ stands once for each `use`, with the scope that tells what its names mean there.
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.families import FamilyReference, Path
 from eqsheet.model.lower_statements import known_name
 from eqsheet.model.spelling import did_you_mean
-from eqsheet.model.written_nodes import canonical
+from eqsheet.model.written_nodes import canonical, renamed
 from eqsheet.syntax import nodes as syntax
 
 # Templates inside templates multiply; more statements than this are a slip.
 MOST_PLACED = 2_000_000
+# Behind the name of an index that a template cannot name, with the depth of the scope it is of.
+_HIDDEN = "'"
 _IN_INSTANCE = (syntax.Equation, syntax.Guess)
 _TOP_LEVEL_ONLY = (
     syntax.Definition,
@@ -36,7 +38,10 @@ class Scope:
     Attributes
     ----------
     path, written, nodes
-        Path and subscripts of the instance, put before every local name; empty for the worksheet itself.
+        Path and subscripts of the instance, put before every local name; empty for the worksheet itself. Indices
+        in `nodes` are hidden ones, except in the scope of a line in the group of a `use`.
+    heads : tuple of Statement
+        The `for` lines around the `use`, outermost first, those in the same scope.
     shared : frozenset of str
         Names that mean the same as around the instance.
     around : Scope or None
@@ -47,6 +52,12 @@ class Scope:
     nodes: tuple[syntax.Expression, ...] = ()
     shared: frozenset[str] = frozenset()
     around: Scope | None = None
+    heads: tuple[syntax.Statement, ...] = ()
+
+    @property
+    def depth(self) -> int:
+        """How many instances it is inside of."""
+        return 0 if self.around is None else self.around.depth + 1
 
     def resolve(self, key: str | FamilyReference) -> str | FamilyReference:
         """The quantity that a name or reference stands for here."""
@@ -86,7 +97,7 @@ class Placed:
     instance : Scope or None
         For a line in the group of a `use`: the instance, whose name stands on the left.
     heads : tuple of Statement
-        The `for` lines around it, outermost first.
+        The `for` lines around it in its own scope, outermost first.
     """
 
     statement: syntax.Statement
@@ -98,6 +109,20 @@ class Placed:
     def plain(self) -> bool:
         """Whether it stands for itself alone: in no family and no instance."""
         return not self.heads and self.scope is WORKSHEET and self.instance is None
+
+
+def hidden_index(name: str, depth: int) -> str:
+    """What an index of a scope is called in the domains of the instances inside it.
+
+    >>> hidden_index("i", 0)
+    "i'0"
+    """
+    return f"{name}{_HIDDEN}{depth}"
+
+
+def is_hidden(name: str) -> bool:
+    """Whether an index is one that no line can name."""
+    return _HIDDEN in name
 
 
 @dataclass
@@ -188,7 +213,7 @@ def _unfold(
     if len(work.placed) > MOST_PLACED:
         work.diagnostics.append(error("worksheet-too-large", "templates make too many statements", here))
         return
-    instance = _instance_scope(node, scope, template)
+    instance = _instance_scope(node, scope, heads, template)
     if work.instances.setdefault(instance.text, statement) is not statement:
         work.diagnostics.append(
             error(
@@ -214,7 +239,7 @@ def _unfold(
         work.placed.append(Placed(line, scope, instance, heads))
     outer = work.unfolding
     work.unfolding = (*outer, node.template)
-    _walk(template.body, instance, heads, frozenset(own), work)
+    _walk(template.body, _closed(instance), (), frozenset(own), work)
     work.unfolding = outer
 
 
@@ -226,7 +251,10 @@ def _sets(statement: syntax.Statement) -> str:
     return known_name(statement) or ""
 
 
-def _instance_scope(node: syntax.Use, scope: Scope, template: syntax.Statement) -> Scope:
+def _instance_scope(
+    node: syntax.Use, scope: Scope, heads: tuple[syntax.Statement, ...], template: syntax.Statement
+) -> Scope:
+    """The scope of an instance as seen by the lines of its group, which may name the indices around it."""
     chain: list[syntax.Reference] = []
     step: syntax.Reference | None = node.instance
     while step is not None:
@@ -244,7 +272,17 @@ def _instance_scope(node: syntax.Use, scope: Scope, template: syntax.Statement) 
         if isinstance(line.node, syntax.Shared) and not line.off
         for reference in line.node.names
     )
-    return Scope(tuple(path), tuple(written), tuple(nodes), shared, scope)
+    return Scope(tuple(path), tuple(written), tuple(nodes), shared, scope, heads)
+
+
+def _closed(instance: Scope) -> Scope:
+    """The scope of an instance as seen by the lines of its template, which cannot name the indices around it."""
+    if not instance.nodes or instance.around is None:
+        return instance
+    depth = instance.around.depth
+    indices = [c.index for h in instance.heads if isinstance(h.node, syntax.Family) for c in h.node.clauses]
+    names = {index: hidden_index(index, depth) for index in indices}
+    return replace(instance, nodes=renamed(instance.nodes, names))
 
 
 def _refuse(work: _Work, statement: syntax.Statement, message: str) -> None:

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
+from dataclasses import fields, replace
+from typing import Any
 
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import left_spine
@@ -45,3 +47,15 @@ def names_in(nodes: Iterable[object]) -> set[str]:
         elif hasattr(node, "__dataclass_fields__"):
             stack.extend(getattr(node, name) for name in node.__dataclass_fields__)
     return found
+
+
+def renamed(node: Any, names: Mapping[str, str]) -> Any:
+    """A subscript, or a tuple of them, with the indices in `names` under their new names."""
+    if isinstance(node, tuple):
+        return tuple(renamed(one, names) for one in node)
+    if not hasattr(node, "__dataclass_fields__"):
+        return node
+    changed = {f.name: renamed(getattr(node, f.name), names) for f in fields(node)}
+    if isinstance(node, syntax.Reference) and node.owner is None and node.subscripts is None:
+        changed["name"] = names.get(node.name, node.name)
+    return replace(node, **changed)

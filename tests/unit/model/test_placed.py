@@ -10,6 +10,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.diagnostics.source import Source
 from eqsheet.model.families import FamilyReference
 from eqsheet.model.placed import Placed, place_statements
+from eqsheet.model.written_nodes import canonical
 from eqsheet.syntax.parse import parse_document
 
 
@@ -82,10 +83,23 @@ def test_a_name_shared_by_the_inner_template_alone_is_the_outer_ones() -> None:
 
 def test_instances_in_a_family_carry_its_index() -> None:
     places, _ = placed(TEMPLATE + "for l in 1..2:\n    use t as p[l]:\n        y = l\n")
-    assert {len(p.heads) for p in places} == {1}
-    found = places[1].scope.resolve("x")
+    line, inside = places[:2]
+    assert (len(line.heads), len(inside.heads), len(inside.scope.heads)) == (1, 0, 1)
+    found = inside.scope.resolve("x")
     assert isinstance(found, FamilyReference)
     assert (found.path, found.written) == ((("p", 1), ("x", 0)), ("l",))
+
+
+def test_the_index_around_an_instance_is_hidden_from_its_template() -> None:
+    places, _ = placed(
+        "template o:\n    for l in 1..2:\n        use t as q[l+1]\n"
+        + TEMPLATE
+        + "for l in 1..2:\n    use o as p[l]\n"
+    )
+    innermost = places[0].scope
+    names = [canonical(node, {}) for node in innermost.nodes]
+    assert names == ["l'0", "(l'1+1)"]
+    assert innermost.written == ("l", "(l+1)")
 
 
 @pytest.mark.parametrize(
