@@ -12,6 +12,7 @@ from functools import lru_cache
 import numpy as np
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.model.aggregate_parts import ENTRY, is_part
 from eqsheet.model.families import Family, FamilyReference, Numbering, with_fixed, written_name
 from eqsheet.model.indexing import Codes, Domain, Indexing, IndexSlip, member_text, placed, subscript
 from eqsheet.model.placed import Placed, Scope, is_hidden
@@ -171,8 +172,8 @@ class Binder:
 
     @property
     def family_texts(self) -> tuple[str, ...]:
-        """Names of all plain quantities and families, without subscripts."""
-        return (*self.numbering.plain, *self._by_name)
+        """Names of all plain quantities and families, without subscripts; those of parts of sums are not told."""
+        return tuple(name for name in (*self.numbering.plain, *self._by_name) if not is_part(name))
 
     def plain_number(self, provisional: int) -> int | None:
         """Number of a plain quantity of the worksheet, None for any other."""
@@ -300,7 +301,7 @@ def entry_text(domain: Domain, entry: int, indexing: Indexing) -> str:
     return ", ".join(
         f"{name} = {member_text(domain.sets[name], int(array[entry]), indexing)}"
         for name, array in domain.arrays.items()
-        if not is_hidden(name)
+        if ENTRY not in name and not is_hidden(name)
     )
 
 

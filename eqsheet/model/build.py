@@ -30,7 +30,7 @@ from eqsheet.model.gather import (
     put_statement,
 )
 from eqsheet.model.grouping import Grouping
-from eqsheet.model.indexing import Indexing, IndexSlip, whole_number
+from eqsheet.model.indexing import Indexing, IndexSlip, each_with_all, whole_number
 from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
 from eqsheet.model.lower_statements import (
     LoweredStatement,
@@ -148,6 +148,7 @@ def _lower_all(
     work: list[Work] = []
     domains = Domains(indexing, diagnostics)
     said: set[int] = set()
+    parts_there: set[object] = set()
     for place in placed:
         statement = place.statement
         number = numbered[id(statement)][0]
@@ -163,6 +164,7 @@ def _lower_all(
                 said.add(id(statement))
                 slips.extend((finding, statement) for finding in one.findings)
             work.append(Work(place, number, domain, one))
+            work += _parts(work[-1], parts_there)
             continue
         for entry in range(domain.size):
             fixed = {n: (int(domain.arrays[n][entry]), free[n]) for n in free}
@@ -172,7 +174,24 @@ def _lower_all(
                 said.add(id(statement))
                 slips.extend((finding, statement) for finding in one.findings)
             work.append(Work(place, number, domain.at(entry), one))
+            work += _parts(work[-1], parts_there)
     return work
+
+
+def _parts(one: Work, there: set[object]) -> list[Work]:
+    """The parts of large sums in a statement, those that are not `there` yet from a like sum elsewhere."""
+    found = []
+    place = Placed(one.place.statement, one.place.scope)
+    already = frozenset(there)
+    for part in one.lowered.parts:
+        key = place.scope.resolve(part.name)
+        if key in already:
+            continue
+        there.add(key)
+        # In an instance of a family of instances there are parts for each.
+        domain = each_with_all(one.domain, part.domain) if place.scope.nodes else part.domain
+        found.append(Work(place, one.number, domain, part.lowered))
+    return found
 
 
 def _assemble(
