@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import TypeVar
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.model.aggregate_parts import is_like_members
 from eqsheet.model.bind import merged
 from eqsheet.model.check_units import check_units
 from eqsheet.model.equation_group import offsets
@@ -50,8 +51,14 @@ def check_units_by_family(system: EquationSystem) -> FamilyUnits:
     # Families are numbered without gaps: a number that no formula mentions would count as a quantity.
     firsts = sorted(set(system.families)) if system.firsts is None else system.firsts.tolist()
     family_of = _family_numbers(system, firsts)
+    stands_in = _like_their_members(system, firsts, family_of)
+    if stands_in:
+        firsts = [first for family, first in enumerate(firsts) if family not in stands_in]
+        family_of = _without_parts(family_of, stands_in)
     for number, formula, is_physical in _everything(system):
         if system.families:
+            if stands_in and _makes_part(formula, system):
+                continue
             numbers = tuple([family_of[q] for q in formula.quantities])
             key = (formula.statement, formula.tape, numbers)
             if key in seen:
@@ -68,8 +75,9 @@ def check_units_by_family(system: EquationSystem) -> FamilyUnits:
     dimensions: Sequence[Dimension | None] = units.dimensions.dimensions
     kinds: Sequence[str] = tuple(["plain" if kind == "unknown" else kind for kind in units.kinds.kinds])
     if system.firsts is not None:
-        dimensions = _for_all_members(dimensions, firsts, len(system.names))
-        kinds = _for_all_members(kinds, firsts, len(system.names))
+        every = system.firsts.tolist()
+        dimensions = _for_all_members([dimensions[family_of[f]] for f in every], every, len(system.names))
+        kinds = _for_all_members([kinds[family_of[f]] for f in every], every, len(system.names))
     elif system.families:
         dimensions = tuple([dimensions[f] for f in family_of])
         kinds = tuple([kinds[f] for f in family_of])
@@ -83,6 +91,51 @@ def _family_numbers(system: EquationSystem, firsts: Sequence[int]) -> Sequence[i
         return _for_all_members(range(len(firsts)), firsts, len(system.names))
     compact = {first: i for i, first in enumerate(firsts)}
     return tuple([compact[first] for first in system.families])
+
+
+def _like_their_members(
+    system: EquationSystem, firsts: Sequence[int], family_of: Sequence[int]
+) -> dict[int, int]:
+    """Families of parts of sums and extremes, with the family of what they are made from, which they are like.
+
+    So that a slip is put down to the line that has it, not to the parts.
+    """
+    parts = {i for i, first in enumerate(firsts) if is_like_members(system.names[first])}
+    if not parts:
+        return {}
+    made_from: dict[int, int] = {}
+    groups = (group.bound.at(0) for group in system.groups)
+    for formula in (*(item.formula for item in system.written), *groups):
+        operation, *rest = formula.tape.instructions[formula.tape.outputs[0]]
+        if operation == "quantity":
+            part = family_of[formula.quantities[rest[0]]]
+            others = [f for q in formula.quantities if (f := family_of[q]) != part]
+            if part in parts and others:
+                made_from[part] = others[0]
+    for part in made_from:
+        while made_from[part] in made_from:
+            made_from[part] = made_from[made_from[part]]
+    return made_from
+
+
+def _makes_part(formula: Formula, system: EquationSystem) -> bool:
+    """Whether it is one of the formulas that `_like_their_members` has told the outcome of.
+
+    All of such a formula stands for one place, which no two sides of an equation of the text do.
+    """
+    operation, *rest = formula.tape.instructions[formula.tape.outputs[0]]
+    if operation != "quantity" or len(set(formula.places)) > 1:
+        return False
+    return is_like_members(system.names[formula.quantities[rest[0]]])
+
+
+def _without_parts(family_of: Sequence[int], stands_in: Mapping[int, int]) -> Sequence[int]:
+    """Family numbers without gaps where some families go under the numbers of others."""
+    count = max(family_of[len(family_of) - 1], *stands_in) + 1
+    own = [family for family in range(count) if family not in stands_in]
+    compact = {family: i for i, family in enumerate(own)}
+    number = [compact[stands_in.get(family, family)] for family in range(count)]
+    return LazySequence([(len(family_of), lambda quantity: number[family_of[quantity]])])
 
 
 def _for_all_members(of_families: Sequence[T], firsts: Sequence[int], total: int) -> Sequence[T]:

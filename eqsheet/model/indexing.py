@@ -164,6 +164,13 @@ def filtered(domain: Domain, condition: syntax.Expression | None, indexing: Inde
     return domain.where(np.broadcast_to(_holds(condition, domain, indexing), (domain.size,)))
 
 
+def each_with_all(outer: Domain, inner: Domain) -> Domain:
+    """Every entry of one domain with every entry of another that shares no index with it."""
+    arrays = {name: np.repeat(array, inner.size) for name, array in outer.arrays.items()}
+    arrays |= {name: np.tile(array, outer.size) for name, array in inner.arrays.items()}
+    return Domain(outer.size * inner.size, arrays, {**outer.sets, **inner.sets})
+
+
 _ON_INDICES: Mapping[str, Callable[[Any, Any], Any]] = {"+": add, "-": sub, "*": mul}
 
 

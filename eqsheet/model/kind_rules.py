@@ -146,19 +146,23 @@ class KindShape:
             scaled = operation in ("mul", "div") and any(self.numbers[o] is not None for o in inner)
             if summed or scaled:
                 judged.update(inner)
+        holds = self._hold_readings()
         return tuple(
             i
             for i, instruction in enumerate(self.instructions)
-            if instruction[0] in ("add", "sub") and i not in judged and self._reading_in(i)
+            if instruction[0] in ("add", "sub") and i not in judged and holds[i]
         )
 
-    def _reading_in(self, index: int) -> bool:
-        operation, *operands = self.instructions[index]
-        if operation == "literal" and isinstance(operands[0], int):
-            return self.formula.literals[operands[0]].kind == "reading"
-        return operation in ("add", "sub", "neg") and any(
-            self._reading_in(o) for o in operands if isinstance(o, int)
-        )
+    def _hold_readings(self) -> list[bool]:
+        """By instruction, whether a reading is written among the terms of a sum."""
+        holds: list[bool] = []
+        for operation, *operands in self.instructions:
+            if operation == "literal" and isinstance(operands[0], int):
+                holds.append(self.formula.literals[operands[0]].kind == "reading")
+            else:
+                summed = operation in ("add", "sub", "neg")
+                holds.append(summed and any(holds[o] for o in operands if isinstance(o, int)))
+        return holds
 
     # --- what does --------------------------------------------------------------------------------------
 

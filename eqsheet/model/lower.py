@@ -9,18 +9,21 @@ from __future__ import annotations
 import math
 import sys
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass, replace
+from contextlib import suppress
+from dataclasses import replace
 from fractions import Fraction
 from typing import Any, Never
 
+from eqsheet.model.aggregate_parts import JOINED, MANY, Part, in_parts
 from eqsheet.model.exact import exact_value
 from eqsheet.model.families import FamilyReference, with_fixed
 from eqsheet.model.findings import Finding
 from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown
 from eqsheet.model.interpolant import Interpolant
-from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance
+from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance, QuantityKey
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
+from eqsheet.model.while_lowering import ConditionMet, NeedsMembers, Place2, Poisoned
 from eqsheet.model.written_nodes import canonical, names_in
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import left_spine
@@ -28,8 +31,6 @@ from eqsheet.units.constants import constant, constant_names
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.registry import UnitProblem
 from eqsheet.units.unit import Unit
-
-Place2 = tuple[int, int]
 
 # Whole numbers up to this size are part of a formula's shape (the 2 in x^2/2, the 4 in 4*pi); larger ones and
 # decimals are data, so that formulas that differ only in data share one tape.
@@ -44,24 +45,6 @@ _TEMPERATURE = Dimension.of({"K": 1})
 _PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
 
 
-class NeedsMembers(Exception):
-    """The shape of the formula depends on the member, so that each member must be lowered by itself."""
-
-
-@dataclass(frozen=True, slots=True)
-class ConditionMet:
-    """A validity condition written out while lowering: its instruction, guards, text and place."""
-
-    instruction: int
-    guards: tuple[tuple[int, bool], ...]
-    text: str
-    place: Place2
-
-
-class Poisoned(Exception):
-    """The expression cannot be lowered; the finding that says why is already noted."""
-
-
 class Lowering:
     """One formula in the making.
 
@@ -70,6 +53,8 @@ class Lowering:
     builder : TapeBuilder
     findings : list of Finding
     conditions : list of ConditionMet
+    parts : list of Part
+        Equations of large sums and the like.
     """
 
     def __init__(
@@ -78,6 +63,7 @@ class Lowering:
         self.builder = TapeBuilder()
         self.findings: list[Finding] = []
         self.conditions: list[ConditionMet] = []
+        self.parts: list[Part] = []
         self.first_unit: Unit | None = None
         self._context = context
         self._names = names
@@ -363,6 +349,12 @@ class Lowering:
         except IndexSlip as slip:
             self._note_finding(slip.finding)
             raise Poisoned from None
+        under_family = bool(names_in((node.body,)) & set(self._free))
+        if under_family and domain.size > LARGEST_FORMULA // 4:
+            raise NeedsMembers
+        if domain.size >= MANY and self._stands_alone and not under_family:
+            with suppress(NeedsMembers):
+                return in_parts(self, node, domain, self._context.indexing)
         place = self._place(node)
         parts: list[int] = []
         inner = [clause.index for clause in node.clauses]
@@ -378,7 +370,7 @@ class Lowering:
                 )
         self._fixed = outer
         if parts:
-            return self._join(_JOINED[node.function], parts, place)
+            return self._join(JOINED[node.function], parts, place)
         if node.function in _EMPTY:
             return self.builder.constant(_EMPTY[node.function], place)
         return self._refuse(
@@ -387,6 +379,27 @@ class Lowering:
             node,
             help="the index set or the filter leaves nothing",
         )
+
+    @property
+    def _stands_alone(self) -> bool:
+        """Whether what stands here is of the statement itself, and of no branch."""
+        return not (self._calls or self._empirical or self._guards or self.of_instance)
+
+    def inside(self, sets: Mapping[str, str]) -> Lowering:
+        """For a formula of its own in which some indices run over their members; findings are shared."""
+        lowering = Lowering(self._context, self._names, self.text, IndexScope(sets, self._fixed))
+        lowering.findings = self.findings
+        lowering.parts = self.parts
+        return lowering
+
+    def key_of(self, number: int) -> QuantityKey:
+        """What a provisional number refers to."""
+        return self._names.names[number]
+
+    @property
+    def fixed(self) -> Mapping[str, tuple[int, str]]:
+        """Indices that have one member here, with their codes and sets."""
+        return self._fixed
 
     def _names_member(self, node: syntax.Expression) -> bool:
         """Whether a side of a comparison stands for a member of a named set."""
@@ -580,7 +593,6 @@ def _short(text: str) -> str:
     return text if len(text) <= 24 else f"{text[:12]}...{text[-6:]}"
 
 
-_JOINED = {"sum": "add", "prod": "mul", "min": "min", "max": "max"}
 _EMPTY = {"sum": Fraction(0), "prod": Fraction(1)}
 _ARITHMETIC = {"+": "add", "-": "sub", "*": "mul", "/": "div"}
 # operator -> (operation, operands swapped)

@@ -7,8 +7,9 @@ from collections.abc import Collection, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.findings import Finding
-from eqsheet.model.lower import AGGREGATE_NAMES, FUNCTION_NAMES, Lowering, Poisoned
+from eqsheet.model.lower import AGGREGATE_NAMES, FUNCTION_NAMES, Lowering
 from eqsheet.model.scope import Context, NameTable
+from eqsheet.model.while_lowering import Poisoned
 from eqsheet.syntax import nodes as syntax
 
 

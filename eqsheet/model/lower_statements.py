@@ -8,7 +8,7 @@ result can be kept while a worksheet is edited.
 from __future__ import annotations
 
 import math
-from collections.abc import Container, Iterator
+from collections.abc import Container, Iterable, Iterator, Sequence
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Severity
@@ -17,13 +17,15 @@ from eqsheet.model.dimension_of import dimensions_of
 from eqsheet.model.evaluate import evaluate
 from eqsheet.model.families import FamilyReference
 from eqsheet.model.findings import Finding
-from eqsheet.model.lower import FUNCTION_NAMES, Lowering, Poisoned, kind_of
+from eqsheet.model.indexing import Domain
+from eqsheet.model.lower import FUNCTION_NAMES, Lowering, kind_of
 from eqsheet.model.no_value import no_value
 from eqsheet.model.outside_curve import HELP as OUTSIDE_CURVE_HELP
 from eqsheet.model.outside_curve import outside_curve, written
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable
 from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
-from eqsheet.model.tape import Formula, Literal, extract
+from eqsheet.model.tape import Formula, Instruction, Literal, extract
+from eqsheet.model.while_lowering import ConditionMet, Poisoned
 from eqsheet.model.written_nodes import canonical
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import operands_in_run
@@ -74,6 +76,8 @@ class LoweredStatement:
         Units in which curves take or give a quantity; they count least.
     uses_gauge : bool
         Whether a gauge unit occurs.
+    parts : tuple of PartMeant
+        Equations that its large sums and the like come to.
     """
 
     equation: EquationItem | None = None
@@ -86,6 +90,16 @@ class LoweredStatement:
     curve_hints: tuple[tuple[int, Unit], ...] = ()
     uses_gauge: bool = False
     findings: tuple[Finding, ...] = ()
+    parts: tuple[PartMeant, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class PartMeant:
+    """Equations for parts of a large sum, over a domain of their own: see `aggregate_parts`."""
+
+    name: str
+    domain: Domain
+    lowered: LoweredStatement
 
 
 def lower_equation(
@@ -110,21 +124,7 @@ def lower_equation(
     except Poisoned:
         return _broken(work, names, node)
     formula = work.builder.formula((left, right), 0, ((left, right),))
-    valid = tuple(
-        Validity(
-            extract(formula, (met.instruction,)),
-            met.text,
-            Place(0, *met.place),
-            tuple(Guard(extract(formula, (c,)), branch) for c, branch in met.guards),
-        )
-        for met in work.conditions
-    )
-    conditions_name: tuple[tuple[int, int, int], ...] = ()
-    if valid:
-        everything = _named(formula)
-        formula = extract(formula, (left, right))
-        own = set(formula.quantities)
-        conditions_name = tuple(n for n in everything if n[0] not in own)
+    formula, valid, conditions_name = _with_conditions(formula, work.conditions)
     known, value = -1, math.nan
     hints: tuple[tuple[int, Unit], ...] = ()
     if target is not None and len(formula.quantities) == 1:
@@ -164,7 +164,44 @@ def lower_equation(
         curve_hints=tuple(_units_of_curves(formula)) if context.curves else (),
         uses_gauge=uses_gauge(work),
         findings=tuple(work.findings),
+        parts=_parts(work),
     )
+
+
+def _with_conditions(
+    formula: Formula, conditions: Sequence[ConditionMet]
+) -> tuple[Formula, tuple[Validity, ...], tuple[tuple[int, int, int], ...]]:
+    """The equation without its validity conditions, these, and the quantities that only they name."""
+    if not conditions:
+        return formula, (), ()
+    valid = tuple(
+        Validity(
+            extract(formula, (met.instruction,)),
+            met.text,
+            Place(0, *met.place),
+            tuple(Guard(extract(formula, (c,)), branch) for c, branch in met.guards),
+        )
+        for met in conditions
+    )
+    alone = extract(formula, formula.tape.outputs)
+    own = set(alone.quantities)
+    return alone, valid, tuple(n for n in _named(formula) if n[0] not in own)
+
+
+def _parts(work: Lowering) -> tuple[PartMeant, ...]:
+    """The equations of the parts of large sums."""
+    found = []
+    for part in work.parts:
+        formula, valid, conditions_name = _with_conditions(part.formula, part.conditions)
+        place = Place(0, *part.formula.places[part.formula.tape.outputs[0]])
+        lowered = LoweredStatement(
+            equation=EquationItem(formula, place, valid=valid),
+            named=_named(formula),
+            conditions_name=conditions_name,
+            uses_gauge=_holds_gauge(formula.literals, formula.tape.instructions),
+        )
+        found.append(PartMeant(part.name, part.domain, lowered))
+    return tuple(found)
 
 
 def without_value(value: Formula, name: str, line: str, unit_table: UnitTable) -> Finding:
@@ -224,6 +261,7 @@ def lower_guess(
         unit_hints=() if pattern else hints,
         uses_gauge=uses_gauge(work),
         findings=tuple(work.findings),
+        parts=_parts(work),
     )
 
 
@@ -287,6 +325,7 @@ def lower_limit(
         unit_hints=tuple(hints),
         uses_gauge=uses_gauge(work),
         findings=tuple(work.findings),
+        parts=_parts(work),
     )
 
 
@@ -336,10 +375,13 @@ def is_gauge(unit: Unit) -> bool:
 
 def uses_gauge(work: Lowering) -> bool:
     """Whether a literal of the formula is a gauge pressure, or a curve takes or gives one."""
-    literals = any(x.kind == "reading" and x.dimension == _PRESSURE for x in work.builder.literals)
-    return literals or any(
+    return _holds_gauge(work.builder.literals, work.builder.instructions)
+
+
+def _holds_gauge(literals: Iterable[Literal], instructions: Iterable[Instruction]) -> bool:
+    return any(x.kind == "reading" and x.dimension == _PRESSURE for x in literals) or any(
         unit is not None and unit.reading and unit.dimension == _PRESSURE
-        for instruction in work.builder.instructions
+        for instruction in instructions
         if instruction[0] in ("curve", "surface")
         for unit in (*instruction[-1].heading.units, instruction[-1].heading.unit)
     )

@@ -6,7 +6,6 @@ from collections.abc import Callable
 from dataclasses import dataclass, field
 
 from eqsheet.model.indexing import Indexing
-from eqsheet.model.lower import NeedsMembers
 from eqsheet.model.lower_statements import (
     LoweredStatement,
     lower_equation,
@@ -15,6 +14,7 @@ from eqsheet.model.lower_statements import (
     lower_show,
 )
 from eqsheet.model.scope import Context, IndexScope, NameTable
+from eqsheet.model.while_lowering import NeedsMembers
 from eqsheet.syntax import nodes as syntax
 
 _LOWER: dict[type, Callable[..., LoweredStatement]] = {

@@ -8,6 +8,7 @@ from functools import partial
 from types import MappingProxyType
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Severity
+from eqsheet.model.aggregate_parts import is_part
 from eqsheet.syntax.nodes import Statement
 from eqsheet.worksheet.alike import fold_alike
 from eqsheet.worksheet.ambient_note import ambient_note
@@ -48,7 +49,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         best = {
             prepared.system.names[q]: _value(prepared, run, own, q, si, math.inf)
             for q, si in run.best.items()
-            if math.isfinite(si)
+            if math.isfinite(si) and not is_part(prepared.system.names[q])
         }
     if prepared.system.uses_gauge:
         diagnostics.append(ambient_note(prepared))
@@ -105,7 +106,7 @@ def _quantities(prepared: Prepared, run: Run, own: Mapping[int, int]) -> dict[st
     return {
         system.names[q]: _value(prepared, run, own, q, run.values[q], run.errors[q])
         for q in order
-        if math.isfinite(run.values[q])
+        if math.isfinite(run.values[q]) and not is_part(system.names[q])
     }
 
 

@@ -7,6 +7,7 @@ from collections.abc import Sequence
 import numpy as np
 from numpy.typing import NDArray
 
+from eqsheet.model.aggregate_parts import is_part
 from eqsheet.model.equation_group import EquationGroup, offsets
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
@@ -29,6 +30,8 @@ class GroupedEquations:
         Statement of each equation.
     known : ndarray (equations,)
         Whether it is a known.
+    part : ndarray (quantities,)
+        Whether it is a part of a large sum.
     """
 
     def __init__(self, system: EquationSystem) -> None:
@@ -42,6 +45,10 @@ class GroupedEquations:
         for number, item in enumerate(written):
             self.statement[number] = item.place.statement
             self.known[number] = item.known >= 0
+        self.part = np.zeros(len(system.names), dtype=bool)
+        firsts = [] if system.firsts is None else system.firsts.tolist()
+        for first, end in zip(firsts, [*firsts[1:], len(system.names)]):
+            self.part[first:end] = is_part(system.names[first])
         for start, group in zip(self.starts.tolist(), self.groups):
             self.statement[start : start + len(group)] = group.place.statement
             self.known[start : start + len(group)] = group.known is not None

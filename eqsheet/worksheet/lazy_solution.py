@@ -9,6 +9,7 @@ from typing import TypeVar
 import numpy as np
 from numpy.typing import NDArray
 
+from eqsheet.model.aggregate_parts import is_part
 from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.system import EquationSystem
 from eqsheet.syntax.nodes import Statement
@@ -189,8 +190,10 @@ def order_of_showing(prepared: Prepared, run: Run) -> Numbers:
     """Numbers of the quantities found: those of `show` first, then families by their first place in the text."""
     system = prepared.system
     assert system.firsts is not None
-    firsts = system.firsts.tolist()
-    ends = [*firsts[1:], len(system.names)]
+    every = system.firsts.tolist()
+    ends_of = dict(zip(every, [*every[1:], len(system.names)]))
+    firsts = [first for first in every if not is_part(system.names[first])]
+    ends = [ends_of[first] for first in firsts]
     places = [system.first_places[first] for first in firsts]
     spans = sorted((p.statement, p.start, first, end) for p, first, end in zip(places, firsts, ends))
     ranges = [np.arange(first, end, dtype=np.int64) for _, _, first, end in spans]
