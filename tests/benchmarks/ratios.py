@@ -35,10 +35,11 @@ def main() -> None:
     sheet = eqsheet.parse(LOOP.read_text(encoding="utf-8"))
     stage: list[float] = []
     changes = itertools.cycle([["T_h1 = 78 degC"], ["T_h1 = 77 degC"]])
-    root, warm, changed = call_times(
+    root, warm, read, changed = call_times(
         [
             script_20.find_root,
             lambda: stage.append(sheet.solve().timing["solve"]),
+            lambda: [value.si for value in sheet.solve().values()],
             lambda: sheet.solve(next(changes)),
         ],
         runs=51,
@@ -46,6 +47,7 @@ def main() -> None:
     print(
         f"  warm   script {root * 1e3:7.3f} ms   sheet.solve() {warm * 1e3:7.3f} ms   ratio {warm / root:5.2f}"
     )
+    print(f"         all its values read                {read * 1e3:10.3f} ms   ratio {read / root:5.2f}")
     numbers = median(stage)
     print(
         f"         its numbers alone (timing 'solve') {numbers * 1e3:10.3f} ms   ratio {numbers / root:5.2f}"
