@@ -20,6 +20,7 @@ from eqsheet.model.families import FamilyReference, with_fixed
 from eqsheet.model.findings import Finding
 from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown
 from eqsheet.model.interpolant import Interpolant
+from eqsheet.model.literal_kind import kind_of, shortened_number
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance, QuantityKey
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
@@ -28,7 +29,7 @@ from eqsheet.model.written_nodes import canonical, names_in
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import left_spine
 from eqsheet.units.constants import constant, constant_names
-from eqsheet.units.dimension import DIMENSIONLESS, Dimension
+from eqsheet.units.dimension import DIMENSIONLESS
 from eqsheet.units.registry import UnitProblem
 from eqsheet.units.unit import Unit
 
@@ -41,8 +42,6 @@ LARGEST_FORMULA = 20_000
 FUNCTION_NAMES = frozenset((*UNARY_FUNCTIONS, *BINARY_FUNCTIONS))
 AGGREGATE_NAMES = frozenset(("sum", "prod"))
 TRUTH_OPERATIONS = frozenset(("lt", "le", "eq", "and", "or", "not"))
-_TEMPERATURE = Dimension.of({"K": 1})
-_PRESSURE = Dimension.of({"kg": 1, "m": -1, "s": -2})
 
 
 class Lowering:
@@ -161,7 +160,7 @@ class Lowering:
         if math.isinf(value):
             self._refuse(
                 "number-too-large",
-                f"the number {_short(node.text)} is too large",
+                f"the number {shortened_number(node.text)} is too large",
                 node,
                 help="numbers go up to about 1.8e308",
             )
@@ -183,11 +182,11 @@ class Lowering:
             self.first_unit = unit
         si = unit.to_si(value)
         if math.isinf(si):
-            self._refuse("number-too-large", f"{_short(node.text)} {unit.text} is too large", node)
+            self._refuse("number-too-large", f"{shortened_number(node.text)} {unit.text} is too large", node)
         if value != 0.0 and not unit.reading and abs(si) < sys.float_info.min:
             self._refuse(
                 "number-out-of-range",
-                f"{_short(node.text)} {unit.text} is too small for floating-point arithmetic in SI units",
+                f"{shortened_number(node.text)} {unit.text} is too small for floating-point arithmetic in SI units",
                 node,
                 help="check the exponent",
             )
@@ -578,19 +577,6 @@ class Lowering:
         self.findings.append(
             Finding(problem.code, problem.message, start, end, help, symbol=symbol, cure_if_quantity=cure)
         )
-
-
-def kind_of(unit: Unit) -> str:
-    """The kind of a literal in `unit`: see `Literal.kind`."""
-    if unit.reading:
-        return "reading"
-    if unit.difference:
-        return "difference"
-    return "absolute" if unit.dimension in (_TEMPERATURE, _PRESSURE) else "plain"
-
-
-def _short(text: str) -> str:
-    return text if len(text) <= 24 else f"{text[:12]}...{text[-6:]}"
 
 
 _EMPTY = {"sum": Fraction(0), "prod": Fraction(1)}

@@ -18,7 +18,8 @@ from eqsheet.model.evaluate import evaluate
 from eqsheet.model.families import FamilyReference
 from eqsheet.model.findings import Finding
 from eqsheet.model.indexing import Domain
-from eqsheet.model.lower import FUNCTION_NAMES, Lowering, kind_of
+from eqsheet.model.literal_kind import kind_of
+from eqsheet.model.lower import FUNCTION_NAMES, Lowering
 from eqsheet.model.no_value import no_value
 from eqsheet.model.outside_curve import HELP as OUTSIDE_CURVE_HELP
 from eqsheet.model.outside_curve import outside_curve, written

@@ -6,16 +6,16 @@ place, and what is wrong with it is said there.
 
 from __future__ import annotations
 
-import math
-import re
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.diagnostics.shortened import shortened
+from eqsheet.model.cell_number import cell_number, cure_of_cell, cure_of_row
 from eqsheet.model.indexing import Codes, IndexSet, MemberColumn
-from eqsheet.model.lower import kind_of
+from eqsheet.model.literal_kind import kind_of
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import Literal
 from eqsheet.syntax import nodes as syntax
@@ -26,7 +26,6 @@ from eqsheet.units.unit import Unit
 LEFT_UNKNOWN = "-"
 # Of one kind of slip in one table a reader wants a few examples and the count.
 MOST_SAID = 5
-_NUMBER = re.compile(r"[+-]?\d+(\.\d+)?([eE][+-]?\d+)?")
 
 
 @dataclass(frozen=True)
@@ -169,6 +168,9 @@ def _distinct_rows(
         cells = row.node.cells
         if len(cells) != wanted:
             names = ", ".join(("name", *(c.name for c in node.columns)))
+            help = f"a row is {names}; write `-` for a member left unknown"
+            if len(cells) > wanted and node.heading is not None:
+                help = cure_of_row(row.line.text) or help
             count = f"{len(cells)} cell{'s' * (len(cells) != 1)}"
             diagnostics.append(
                 error(
@@ -176,7 +178,7 @@ def _distinct_rows(
                     f"this row has {count}, and the heading of `{node.name}` has {wanted}",
                     Label(row.whole),
                     Label(_heading(statement, node).whole, "the heading"),
-                    help=f"a row is {names}; write `-` for a member left unknown",
+                    help=help,
                 )
             )
         first = cells[0]
@@ -188,7 +190,7 @@ def _distinct_rows(
             diagnostics.append(
                 error(
                     "member-twice",
-                    f"`{first.text}` stands twice in `{node.name}`",
+                    f"`{shortened(first.text)}` stands twice in `{node.name}`",
                     Label(row.span(first.start, first.end), "again here"),
                     Label(other.whole, "first here"),
                 )
@@ -228,9 +230,9 @@ def _member_column(
             diagnostics.append(
                 error(
                     "no-such-member",
-                    f"`{cell.text}` is not a member of `{target.name}`",
+                    f"`{shortened(cell.text)}` is not a member of `{target.name}`",
                     Label(row.span(cell.start, cell.end)),
-                    notes=(f"row `{_cells(row)[0].text}`, column `{column.name}`",),
+                    notes=(f"row `{shortened(_cells(row)[0].text)}`, column `{column.name}`",),
                     help=did_you_mean(cell.text, target.members),
                 )
             )
@@ -286,17 +288,12 @@ def _unit(
 def _value(
     cell: syntax.Cell, row: syntax.Statement, column: syntax.Column, diagnostics: list[Diagnostic]
 ) -> float | None:
-    if _NUMBER.fullmatch(cell.text):
-        value = float(cell.text)
-        if math.isfinite(value):
-            return value
-    where = f"row `{_cells(row)[0].text}`, column `{column.name}`"
-    cure = "write `-` for a member left unknown"
-    if re.fullmatch(r"[+-]?\d+,\d+", cell.text):
-        cure = f"the decimal mark is a point: write {cell.text.replace(',', '.')}"
-    elif not cell.text:
-        cure = f"the cell is empty; {cure}"
-    message = f"`{cell.text}` is not a number" if cell.text else "a cell is empty"
+    value = cell_number(cell.text)
+    if value is not None:
+        return value
+    where = f"row `{shortened(_cells(row)[0].text)}`, column `{column.name}`"
+    cure = cure_of_cell(cell.text) or "write `-` for a member left unknown"
+    message = f"`{shortened(cell.text)}` is not a number" if cell.text else "a cell is empty"
     diagnostics.append(
         error("cell-not-a-number", message, Label(row.span(cell.start, cell.end)), notes=(where,), help=cure)
     )
