@@ -6,6 +6,7 @@ from collections.abc import Collection, Sequence
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.model.bare_angles import bare_angle_diagnostics
 from eqsheet.model.dimension_messages import dimension_diagnostics
 from eqsheet.model.infer_dimensions import DimensionResult, infer_dimensions
 from eqsheet.model.infer_kinds import KindResult, infer_kinds
@@ -56,5 +57,6 @@ def check_units(
         *kind_diagnostics(kinds, formulas, statements, names),
         *rotation_diagnostics(formulas, dimensions.dimensions, statements, names),
         *unit_slips(formulas, statements),
+        *bare_angle_diagnostics(formulas, statements, names),
     )
     return UnitCheck(dimensions, kinds, diagnostics)

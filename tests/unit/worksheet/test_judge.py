@@ -170,3 +170,24 @@ def test_the_range_of_an_empirical_formula_has_units() -> None:
     assert warned(text.format(20)) == []
     assert len(warned(text.format(60))) == 1
     assert eqsheet.parse(text.format(60)).solve()["h"].to("mm") == pytest.approx(12.0)
+
+
+@pytest.mark.parametrize("limit", ["v < 2 m/s", "v <= 2 m/s", "v > 2 m/s", "v >= 2 m/s"])
+def test_a_value_at_its_limit_meets_it_however_it_is_written(limit: str) -> None:
+    """REFERENCE.md, Limits: strict limits hold within the forward error of their sides, like all others."""
+    (report,) = solve(f"v = Q/A\nQ = 0.6 m^3/s\nA = 0.3 m^2\nrequire {limit}").limits
+    assert (report.holds, report.slack) == (True, 0.0)
+
+
+def test_a_gauge_pressure_in_a_product_counts_as_absolute() -> None:
+    """REFERENCE.md, Readings and differences: 110 % of 100 psig, and ten per cent above it."""
+    text = """
+    ambient = 101.325 kPa
+    p = 100 psig
+    absolute = 110 % * p
+    above = p + 10 % * (p - ambient)
+    show absolute in psig, above in psig
+    """
+    solution = solve(text)
+    assert solution["absolute"].value == pytest.approx(1.1 * (100 + 14.6959488) - 14.6959488, abs=1e-6)
+    assert solution["above"].value == pytest.approx(110.0, abs=1e-9)
