@@ -11,7 +11,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Mapping, MutableMapping, Sequence
 from dataclasses import dataclass
-from heapq import heappop, heappush
+from heapq import heapify, heappop, heappush
 from typing import NamedTuple
 
 from eqsheet.model.branches import literal_values
@@ -181,8 +181,10 @@ def _between(low: float, high: float, position: int) -> float | None:
 class _Propagation:
     """Lets each equation with one magnitude missing tell it, until none does.
 
-    The equations are asked in turn, round after round; each is asked when it comes to have one magnitude missing,
-    and not again, so that the time is linear in their length.
+    An equation with the missing magnitude alone on a side goes before one that has to be turned: ``h = Nu*k/d`` is
+    what h is, while what a balance leaves for it may be the small difference of rough starts. Among equals they are
+    asked in turn, round after round; each is asked when it comes to have one magnitude missing, and not again, so
+    that the time is linear in their length.
 
     Parameters
     ----------
@@ -204,8 +206,8 @@ class _Propagation:
         self._found = found
         self._missing: list[set[int]] = []
         self._readers: dict[int, list[int]] = {q: [] for q in unknowns if q not in found}
-        # Equations to be asked, by round and number.
-        self._ready: list[tuple[int, int]] = []
+        # Equations to be asked: whether they have to be turned, by round and number.
+        self._ready: list[tuple[bool, int, int]] = []
         if not self._readers:
             return
         for number, formula in enumerate(formulas):
@@ -214,7 +216,15 @@ class _Propagation:
             for quantity in missing:
                 self._readers[quantity].append(number)
             if len(missing) == 1:
-                self._ready.append((0, number))
+                self._ready.append((self._turned(number), 0, number))
+        heapify(self._ready)
+
+    def _turned(self, number: int) -> bool:
+        """Whether the one magnitude missing in an equation does not stand alone on a side."""
+        formula = self._formulas[number]
+        (quantity,) = self._missing[number]
+        alone = ("quantity", formula.quantities.index(quantity))
+        return all(formula.tape.instructions[o] != alone for o in formula.tape.outputs)
 
     def put(self, quantity: int, start: float, after: tuple[int, int] = (0, -1)) -> None:
         """Give an unknown its start; `after` is the round and number of the equation that has told it."""
@@ -223,7 +233,7 @@ class _Propagation:
         for number in self._readers[quantity]:
             self._missing[number].discard(quantity)
             if len(self._missing[number]) == 1:
-                heappush(self._ready, (turn if number > by else turn + 1, number))
+                heappush(self._ready, (self._turned(number), turn if number > by else turn + 1, number))
 
     def run(self, room: _Room) -> list[Told] | None:
         """Ask the equations until none has one magnitude missing.
@@ -237,8 +247,7 @@ class _Propagation:
         told: list[Told] = []
         plain = True
         while self._ready:
-            after = heappop(self._ready)
-            number = after[1]
+            _, turn, number = heappop(self._ready)
             if not self._missing[number]:
                 continue
             (quantity,) = self._missing[number]
@@ -250,7 +259,7 @@ class _Propagation:
             start = _inside(value.value, room, quantity)
             plain = plain and start == value.value and value.candidate == 0
             told.append(Told(number, quantity, value.candidate))
-            self.put(quantity, start, after)
+            self.put(quantity, start, (turn, number))
         return told if plain else None
 
 
