@@ -2,7 +2,8 @@
 
 Source: Benhamou, Goualard, Granvilliers and Puget, Revising hull and box consistency, Int. Conf. Logic
 Programming 1999, the algorithm HC4-revise: each expression is given a range from its parts, then each part from
-its expression. What is not monotone (a sine, a curve, a condition) passes on what is certain and nothing else.
+its expression. What is not monotone (a sine, a curve) passes on what is certain and nothing else. A branch of an
+`if` has no say unless it is certain to be taken: where it has no value, the other one is.
 
 The ranges hold every solution within the bounds; where one becomes empty there is none.
 """
@@ -12,9 +13,10 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
+from typing import cast
 
 from eqsheet.model.branches import literal_values
-from eqsheet.model.tape import Formula, Instruction
+from eqsheet.model.tape import COMPARISONS, Formula, Instruction, operands_of
 from eqsheet.worksheet.interval import (
     EVERYTHING,
     Interval,
@@ -31,6 +33,7 @@ from eqsheet.worksheet.interval import (
     times,
     widened,
 )
+from eqsheet.worksheet.interval_truth import FALSE, TRUE, compared, denied, joined, operands, sides
 
 # Sweeps over all equations; ranges that still narrow do so slowly.
 MOST_SWEEPS = 12
@@ -108,37 +111,111 @@ def _revise(formula: Formula, given: Mapping[int, Interval], ranges: dict[int, I
     """Narrow the ranges by one equation; False where it holds nowhere in them."""
     instructions = formula.tape.instructions
     literals = literal_values(formula)
-    of: list[Interval] = []
+    # None where an expression has no value; that matters where it is needed.
+    of: list[Interval | None] = []
     for instruction in instructions:
         if instruction[0] == "quantity":
             quantity = formula.quantities[instruction[1]]
-            found: Interval | None = ranges[quantity] if quantity in ranges else given[quantity]
+            of.append(ranges[quantity] if quantity in ranges else given[quantity])
         elif instruction[0] == "literal":
-            found = widened(literals[instruction[1]], literals[instruction[1]])
+            of.append(widened(literals[instruction[1]], literals[instruction[1]]))
         else:
-            found = _forwards(instruction, of)
-        if found is None:
-            return False
-        of.append(found)
+            of.append(_value(instruction, of))
     left, right = formula.tape.outputs
-    both = meet(of[left], of[right])
-    if both is None:
-        return False
+    both = _met(of[left], of[right])
     of[left] = of[right] = both
+    needed = [False] * len(instructions)
+    needed[left] = needed[right] = True
     for index in range(len(instructions) - 1, -1, -1):
-        instruction = instructions[index]
-        if instruction[0] == "quantity" and formula.quantities[instruction[1]] in ranges:
-            ranges[formula.quantities[instruction[1]]] = of[index]
-        elif not _backwards(instruction, of[index], of):
+        whole = of[index]
+        if not needed[index]:
+            continue
+        if whole is None:
             return False
+        instruction = instructions[index]
+        for part in _narrow(instruction, whole, of):
+            if of[part] is None:
+                return False
+            needed[part] = True
+        if instruction[0] == "quantity" and formula.quantities[instruction[1]] in ranges:
+            ranges[formula.quantities[instruction[1]]] = whole
     return True
+
+
+def _met(a: Interval | None, b: Interval | None) -> Interval | None:
+    return None if a is None or b is None else meet(a, b)
+
+
+def _value(instruction: Instruction, of: Sequence[Interval | None]) -> Interval | None:
+    """Range of one expression from those of its parts; None where it has no value at all."""
+    operation, *rest = instruction
+    if operation == "if":
+        condition, a, b = (of[i] for i in rest)
+        if condition is None:
+            return None
+        first, second = _possible(condition, TRUE, a), _possible(condition, FALSE, b)
+        return hull(first, second) if first and second else first or second
+    if operation in ("and", "or"):
+        first, second = of[rest[0]], of[rest[1]]
+        return None if first is None else joined(operation, first, second)
+    if operation == "power" and rest[1] == 0:
+        return 1.0, 1.0
+    if any(of[i] is None for i in operands_of(instruction)):
+        return None
+    return _forwards(instruction, cast("list[Interval]", of))
+
+
+def _possible(condition: Interval, truth: Interval, value: Interval | None) -> Interval | None:
+    """The range of a branch that is taken with this truth of its condition; None where it cannot be taken."""
+    return value if meet(condition, truth) else None
+
+
+def _narrow(instruction: Instruction, whole: Interval, of: list[Interval | None]) -> Sequence[int]:
+    """Narrow the parts of one expression that its value depends on for certain; gives those."""
+    operation, *rest = instruction
+    if operation == "if":
+        return _narrow_branches(whole, rest[0], rest[1], rest[2], of)
+    if operation in ("and", "or"):
+        return _narrow_joined(operation, whole, rest[0], rest[1], of)
+    if operation == "power" and rest[1] == 0:
+        return ()
+    needed = operands_of(instruction)
+    if not _backwards(instruction, whole, cast("list[Interval]", of)):
+        of[needed[0]] = None
+    return needed
+
+
+def _narrow_branches(
+    whole: Interval, condition: int, a: int, b: int, of: list[Interval | None]
+) -> Sequence[int]:
+    """As `_narrow` for an ``if``: a branch has its say where the other cannot give the value."""
+    truth = of[condition]
+    assert truth is not None, "an if has no value where its condition has none"
+    first = _met(_possible(truth, TRUE, of[a]), whole)
+    second = _met(_possible(truth, FALSE, of[b]), whole)
+    if first and second:
+        return (condition,)
+    of[condition] = meet(truth, TRUE if first else FALSE)
+    taken = a if first else b
+    of[taken] = first or second
+    return condition, taken
+
+
+def _narrow_joined(
+    operation: str, whole: Interval, a: int, b: int, of: list[Interval | None]
+) -> Sequence[int]:
+    """As `_narrow` for ``and`` and ``or``: the second operand is needed where the first does not decide."""
+    first, second = of[a], of[b]
+    assert first is not None, "they have no value where the first operand has none"
+    of[a], of[b] = operands(operation, whole, first, second)
+    return (a, b) if of[a] == (TRUE if operation == "and" else FALSE) else (a,)
 
 
 # --- from the parts to the whole --------------------------------------------------------------------------
 
 
 def _forwards(instruction: Instruction, of: Sequence[Interval]) -> Interval | None:
-    """Range of one expression from those of its parts; None where it has no value at all."""
+    """Range of one expression without conditions from those of its parts, all of which have one."""
     operation, *rest = instruction
     if operation == "const":
         value = float(rest[0])
@@ -158,8 +235,10 @@ def _forwards(instruction: Instruction, of: Sequence[Interval]) -> Interval | No
         return increasing(unit.from_si if operation == "strip" else unit.to_si, of[rest[0]])
     if operation in _CERTAIN:
         return _CERTAIN[operation](of[rest[0]])
-    if operation == "if":
-        return hull(of[rest[1]], of[rest[2]])
+    if operation in COMPARISONS:
+        return compared(operation, of[rest[0]], of[rest[1]])
+    if operation == "not":
+        return denied(of[rest[0]])
     return EVERYTHING
 
 
@@ -244,6 +323,10 @@ def _backwards(instruction: Instruction, whole: Interval, of: list[Interval]) ->
         parts = {rest[0]: negated(whole)}
     elif operation == "abs":
         parts = {rest[0]: hull(negated(whole), whole)}
+    elif operation in COMPARISONS:
+        parts = dict(zip(rest, sides(operation, whole, of[rest[0]], of[rest[1]])))
+    elif operation == "not":
+        parts = {rest[0]: denied(whole)}
     for index, part in parts.items():
         kept = None if part is None else meet(of[index], part)
         if kept is None:
