@@ -8,12 +8,13 @@ file; either way a cell has a place, and what is wrong with it is said there.
 from __future__ import annotations
 
 import math
-import re
 from collections.abc import Callable, Collection, Mapping, Sequence
 from contextlib import suppress
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.diagnostics.shortened import shortened
+from eqsheet.model.cell_number import cell_number, cure_of_cell, cure_of_row
 from eqsheet.model.interpolant import (
     Heading,
     Interpolant,
@@ -31,8 +32,6 @@ from eqsheet.units.unit import Unit
 
 # Each point costs memory in every formula that reads the curve; measured data beyond this are a slip.
 MOST_POINTS = 100_000
-_NUMBER = re.compile(r"[+-]?\d+(\.\d+)?([eE][+-]?\d+)?")
-_DECIMAL_COMMA = re.compile(r"[+-]?\d+,\d+")
 _CURVES: Mapping[str, Callable[..., Interpolant]] = {
     "smooth": smooth_curve,
     "line": straight_curve,
@@ -219,6 +218,8 @@ class _Reader:
         cells = row.node.cells
         if len(cells) != wanted:
             plural = "" if len(cells) == 1 else "s"
+            if len(cells) > wanted and self.node.path is not None:
+                layout = cure_of_row(row.line.text) or layout
             raise self._said(
                 error(
                     "row-length",
@@ -231,14 +232,13 @@ class _Reader:
         return cells
 
     def _entry(self, cell: syntax.Cell, row: syntax.Statement, unit: Unit | None) -> _Entry:
-        if _NUMBER.fullmatch(cell.text) and not cell.quoted:
-            value = float(cell.text) if unit is None else unit.to_si(float(cell.text))
+        number = None if cell.quoted else cell_number(cell.text)
+        if number is not None:
+            value = number if unit is None else unit.to_si(number)
             if math.isfinite(value):
                 return _Entry(value, cell, row)
-        help = "every point of a curve has a number"
-        if _DECIMAL_COMMA.fullmatch(cell.text):
-            help = f"the decimal mark is a point: write {cell.text.replace(',', '.')}"
-        message = f"`{cell.text}` is not a number" if cell.text else "a cell is empty"
+        help = cure_of_cell(cell.text) or "every point of a curve has a number"
+        message = f"`{shortened(cell.text)}` is not a number" if cell.text else "a cell is empty"
         raise self._said(
             error("cell-not-a-number", message, Label(row.span(cell.start, cell.end)), help=help)
         )

@@ -10,9 +10,11 @@ empty or the heading of the first argument.
 from __future__ import annotations
 
 import csv
+import re
 from dataclasses import dataclass, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.diagnostics.shortened import shortened
 from eqsheet.diagnostics.source import Source, Span
 from eqsheet.syntax.nodes import Cell, Column, LogicalLine, Rows, Statement, TableRow, UnitText
 from eqsheet.syntax.parse import parse_statement
@@ -22,6 +24,12 @@ MOST_ROWS = 2_000_000
 MOST_BROKEN_ROWS = 20
 # What stands before a heading's words where they are read as the heading of rows in a worksheet.
 _HEAD = "rows x: "
+# A name and a unit: in brackets, after `in`, or after a blank where it looks like no second word of a name.
+_WITH_UNIT = re.compile(
+    r"(\w[\w ]*?)\s*(?:\sin\s+|(?=[\[(])|\s(?=\S{1,3}$|\S*[/^°%*·]))[\[(]?([^\s\[\]()]{1,40})[\])]?"
+)
+_POWER = re.compile(r"([^\W\d])(-?[0-9])")
+_PLAIN_SIGNS = str.maketrans({"°": "deg", "²": "^2", "³": "^3", "⋅": "*", "×": "*", "℃": "degC", "Ω": "Ohm"})
 
 
 @dataclass(frozen=True, slots=True)
@@ -156,24 +164,44 @@ def _columns(
     """What the fields of a heading mean; None after a diagnostic."""
     columns = []
     for cell in cells:
-        statement, found = parse_statement(
-            Source(source.name, f"{_HEAD}{cell.text}\n    a 1", numbered=False)
-        )
-        node = None if statement is None else statement.node
-        if found or not isinstance(node, Rows) or len(node.columns) != 1:
+        column = _column(cell.text)
+        if column is None:
             diagnostics.append(
                 error(
                     "csv-heading",
-                    f"`{cell.text}` is not the heading of a column",
+                    f"`{shortened(cell.text)}` is not the heading of a column",
                     Label(Span(source, offset + cell.start, offset + cell.end)),
-                    help="write `name`, `name in UNIT` or `name of SET`",
+                    help=_cure_of_heading(cell.text),
                 )
             )
             continue
-        column = node.columns[0]
         unit = None if column.unit is None else _moved(column.unit, cell.start - len(_HEAD))
         columns.append(Column(cell.start, cell.end, column.name, unit, column.of))
     return None if diagnostics else tuple(columns)
+
+
+def _column(text: str) -> Column | None:
+    """What a field of a heading means, None where it means nothing; places count from the start of the statement."""
+    statement, found = parse_statement(Source("heading", f"{_HEAD}{text}\n    a 1", numbered=False))
+    node = None if statement is None else statement.node
+    if found or not isinstance(node, Rows) or len(node.columns) != 1:
+        return None
+    return node.columns[0]
+
+
+def _cure_of_heading(text: str) -> str:
+    """How to write a heading whose unit stands in brackets or in signs of another notation.
+
+    >>> _cure_of_heading("L [m]"), _cure_of_heading("rho kg/m3"), _cure_of_heading("pipe length")
+    ('write `L in m`', 'write `rho in kg/m^3`', 'write `name`, `name in UNIT` or `name of SET`')
+    """
+    found = _WITH_UNIT.fullmatch(text)
+    if found is not None:
+        unit = _POWER.sub(r"\1^\2", found[2].translate(_PLAIN_SIGNS))
+        written = f"{found[1].replace(' ', '_')} in {unit}"
+        if _column(written) is not None:
+            return f"write `{written}`"
+    return "write `name`, `name in UNIT` or `name of SET`"
 
 
 def _moved(unit: UnitText, by: int) -> UnitText:

@@ -58,6 +58,20 @@ def read_source(path: str) -> TextFile | Diagnostic:
     return decoded(name, content)
 
 
+def read_regular_file(path: str) -> TextFile | Diagnostic:
+    """The text of a file that a worksheet names: as `read_source`, of a file on disk only.
+
+    A pipe or a device may never come to an end, and opening a pipe waits for somebody to write to it.
+    """
+    try:
+        mode = os.stat(path).st_mode
+    except (OSError, ValueError):
+        return read_source(path)
+    if not (stat.S_ISREG(mode) or stat.S_ISDIR(mode)):
+        return _unreadable(path, "it is a pipe or a device, not a file")
+    return read_source(path)
+
+
 def decoded(name: str, content: bytes) -> TextFile | Diagnostic:
     """The source that `content`, the bytes of a file, holds, or a diagnostic where it is not text."""
     marked = content.startswith(_MARK)

@@ -11,11 +11,12 @@ from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
+from eqsheet.model.spelling import did_you_mean
 from eqsheet.syntax.csv_table import Table, read_grid, read_table
 from eqsheet.syntax.nodes import Curve, Include, Rows, Statement
 from eqsheet.syntax.nodes import Text as TextNode
 from eqsheet.syntax.parse import parse_document
-from eqsheet.syntax.read import read_source
+from eqsheet.syntax.read import read_regular_file
 
 # A worksheet that includes more files than this has gone wrong.
 MOST_FILES = 1000
@@ -99,9 +100,9 @@ def _included(statement: Statement, node: Include, work: _Attaching) -> list[Sta
             error("worksheet-too-large", f"more than {MOST_FILES} files are included", Label(statement.whole))
         )
         return []
-    source = read_source(path)
+    source = read_regular_file(path)
     if isinstance(source, Diagnostic):
-        work.diagnostics.append(_unreadable(statement, node.path, source))
+        work.diagnostics.append(_unreadable(statement, node.path, source, path, work))
         return []
     source = replace(source, name=os.path.join(work.shown, node.path.value), attached=True)
     document, found = parse_document(source)
@@ -119,9 +120,9 @@ def _filled(
     path = _inside(statement, written, work)
     if path is None:
         return None
-    source = read_source(path)
+    source = read_regular_file(path)
     if isinstance(source, Diagnostic):
-        work.diagnostics.append(_unreadable(statement, written, replace(source, help="")))
+        work.diagnostics.append(_unreadable(statement, written, replace(source, help=""), path, work))
         return None
     source = replace(source, name=os.path.join(work.shown, written.value), attached=True)
     is_grid = isinstance(node, Curve) and len(node.parameters) == 2
@@ -138,6 +139,17 @@ def _filled(
                     "the first column holds the names of the members",
                     Label(table.heading.span(first.start, first.end)),
                     help=f"write `{first.name}` alone",
+                )
+            )
+            return None
+        if first.name != node.name:
+            work.diagnostics.append(
+                error(
+                    "csv-heading",
+                    f"the names in this file are headed `{first.name}`, and the set is called `{node.name}`",
+                    Label(table.heading.span(first.start, first.end)),
+                    Label(statement.span(written.start, written.end), "the file is named here"),
+                    help=f"if it is the right file, write `{node.name}` into its first field",
                 )
             )
             return None
@@ -192,11 +204,27 @@ def _inside(statement: Statement, written: TextNode, work: _Attaching) -> str | 
     return path
 
 
-def _unreadable(statement: Statement, written: TextNode, why: Diagnostic) -> Diagnostic:
+def _unreadable(
+    statement: Statement, written: TextNode, why: Diagnostic, path: str, work: _Attaching
+) -> Diagnostic:
     reason = why.message.rpartition(": ")[2]
     return error(
         "unreadable-attachment",
         f"`{written.value}` cannot be read: {reason}",
         Label(statement.span(written.start, written.end)),
-        help=why.help,
+        help=why.help if os.path.lexists(path) else _where_it_may_be(statement, written.value, path, work),
     )
+
+
+def _where_it_may_be(statement: Statement, name: str, path: str, work: _Attaching) -> str:
+    """What to write for a file that is not there: it may be beside the file that names it, or called much alike."""
+    folder = os.path.dirname(os.path.relpath(statement.source.name, work.shown or "."))
+    beside = os.path.normpath(os.path.join(folder, name)).replace(os.sep, "/")
+    if folder and os.path.isfile(os.path.join(work.folder, beside)):
+        return f"all paths start at the worksheet's folder: write `{beside}`"
+    try:
+        there = os.listdir(os.path.dirname(path))
+    except OSError:
+        there = []
+    like = did_you_mean(os.path.basename(name), there[:MOST_FILES])
+    return like or "the path starts at the worksheet's folder"

@@ -223,3 +223,102 @@ def test_what_is_no_text_is_refused(tmp_path: Path) -> None:
 def test_switched_off_nothing_is_read(tmp_path: Path) -> None:
     solution = solve(tmp_path, main_eqsheet='x = 1\noff include "gone.eqsheet"\noff rows n from "gone.csv"\n')
     assert solution.status == "solved"
+
+
+@pytest.mark.parametrize("text", ['include "pipe"\n', 'rows n from "pipe"\n'])
+def test_a_pipe_is_no_file_and_is_not_waited_for(tmp_path: Path, text: str) -> None:
+    os.mkfifo(tmp_path / "pipe")
+    solution = solve(tmp_path, main_eqsheet=f"x = 1\n{text}")
+    assert codes(solution) == ["unreadable-attachment"]
+    assert "a pipe or a device" in solution.diagnostics[0].message
+
+
+def test_the_first_heading_word_is_the_name_of_the_set(tmp_path: Path) -> None:
+    solution = solve(tmp_path, main_eqsheet='rows pipe from "nodes.csv"\n', nodes_csv="node, L in m\nA, 1\n")
+    assert codes(solution) == ["csv-heading"]
+    assert solution.diagnostics[0].span is not None
+    assert solution.diagnostics[0].span.text == "node"
+    assert "`pipe`" in solution.diagnostics[0].message
+
+
+@pytest.mark.parametrize(
+    "table",
+    [
+        "n, {long} v\nA, 1\n",
+        "n, v\nA, {long}\n",
+        "n, v\n{long}, x\n",
+        "n, v\n{long}, 1\n{long}, 2\n",
+        "n, v of n\nA, {long}\n",
+    ],
+)
+def test_long_cells_are_not_told_in_full(tmp_path: Path, table: str) -> None:
+    solution = solve(tmp_path, main_eqsheet='rows n from "n.csv"\n', n_csv=table.format(long="w" * 100_000))
+    assert codes(solution)
+    for found in solution.diagnostics:
+        assert all(len(text) < 300 for text in (found.message, found.help, *found.notes))
+
+
+def test_a_decimal_comma_between_commas_is_guessed(tmp_path: Path) -> None:
+    solution = solve(
+        tmp_path,
+        main_eqsheet='rows pipe from "p.csv"\ncurve h(Q in L/s) in m from "h.csv"\nx = h(1 L/s)\n',
+        p_csv="pipe, L in m, D in mm\np1,2,5,100\n",
+        h_csv="Q,H\n0,32\n1,5,30\n",
+    )
+    assert [d.code for d in solution.diagnostics] == ["row-length"] * 2
+    assert {d.help.partition(":")[0] for d in solution.diagnostics} == {
+        "if 2,5 is one number, write 2.5",
+        "if 1,5 is one number, write 1.5",
+    }
+
+
+@pytest.mark.parametrize(
+    ("cell", "cure"),
+    [
+        ("2 m", "`in m`"),
+        ("1 000", "write 1000"),
+        ("1'000.5", "write 1000.5"),
+        ("1/2", "write 0.5"),
+        ("−5", "write -5"),
+        (".5", "write 0.5"),
+        ("5.", "write 5"),
+        ("１２", "digits 0 to 9"),
+        ("none", "write `-`"),
+    ],
+)
+def test_the_cure_of_a_cell_fits_what_it_holds(tmp_path: Path, cell: str, cure: str) -> None:
+    solution = solve(tmp_path, main_eqsheet='rows n from "n.csv"\n', n_csv=f"n, v\nA, {cell}\n")
+    assert codes(solution) == ["cell-not-a-number"]
+    assert cure in solution.diagnostics[0].help
+
+
+@pytest.mark.parametrize(
+    ("heading", "cure"),
+    [
+        ("L [m]", "`L in m`"),
+        ("D (mm)", "`D in mm`"),
+        ("T in °C", "`T in degC`"),
+        ("rho kg/m3", "`rho in kg/m^3`"),
+        ("flow rate [m³/h]", "`flow_rate in m^3/h`"),
+        ("pipe length", "`name in UNIT`"),
+    ],
+)
+def test_the_cure_of_a_heading_is_the_heading(tmp_path: Path, heading: str, cure: str) -> None:
+    solution = solve(tmp_path, main_eqsheet='rows n from "n.csv"\n', n_csv=f"n, {heading}\nA, 1\n")
+    assert codes(solution) == ["csv-heading"]
+    assert cure in solution.diagnostics[0].help
+
+
+@pytest.mark.parametrize(
+    ("named", "cure"),
+    [("b.eqsheet", "write `lib/b.eqsheet`"), ("lib/bb.eqsheet", "`b.eqsheet`"), ("zz", "worksheet's folder")],
+)
+def test_where_a_missing_file_may_be(tmp_path: Path, named: str, cure: str) -> None:
+    solution = solve(
+        tmp_path,
+        main_eqsheet='include "lib/a.eqsheet"\n',
+        lib__a_eqsheet=f'include "{named}"\n',
+        lib__b_eqsheet="y = 1\n",
+    )
+    assert codes(solution) == ["unreadable-attachment"]
+    assert cure in solution.diagnostics[0].help
