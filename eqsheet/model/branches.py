@@ -26,6 +26,8 @@ def literal_values(formula: Formula) -> list[float]:
 def settle(formula: Formula, known: Callable[[int], float | None]) -> Formula:
     """The formula without the conditions that known quantities decide.
 
+    A condition that has no value there is left undecided.
+
     Parameters
     ----------
     known : callable
@@ -42,7 +44,9 @@ def settle(formula: Formula, known: Callable[[int], float | None]) -> Formula:
             if results is None:
                 numbers = [float("nan") if v is None else v for v in values]
                 results = evaluate(tape, numbers, literal_values(formula))
-            branches[condition.instruction] = results[condition.condition] is True
+            truth = results[condition.condition]
+            if truth == truth:
+                branches[condition.instruction] = truth is True
     return specialise_formula(formula, branches) if branches else formula
 
 
@@ -100,7 +104,8 @@ def chosen_branches(
 ) -> tuple[int, ...]:
     """The branch each switch takes at given values, 0 for the first; 0 too where the switch does not matter.
 
-    Where a curve by steps is read outside its range, its number of branches, which stands for none of them.
+    Where a condition has no value, or a curve by steps is read outside its range, its number of branches, which
+    stands for none of them.
 
     Parameters
     ----------
@@ -112,7 +117,7 @@ def chosen_branches(
         tape = formula.tape
         results = evaluate(tape, [values(q) for q in formula.quantities], literal_values(formula))
         for instruction, truth in _reached(tape, results).items():
-            taken[number, instruction] = 0 if truth else 1
+            taken[number, instruction] = (0 if truth else 1) if truth == truth else 2
         if curve_arguments(tape):
             used = used_instructions(tape, results)
             for switch in found:
@@ -136,17 +141,19 @@ def _step(interpolant: Interpolant, arguments: Sequence[float]) -> int:
 def conditions_met(formula: Formula, values: Callable[[int], float]) -> list[tuple[int, bool]]:
     """The conditions that decide a formula at given values: (instruction, truth), in the order of the tape.
 
-    Conditions in a branch not taken are left out.
+    Conditions in a branch not taken are left out, and so are those without a value.
     """
     tape = formula.tape
     results = evaluate(tape, [values(q) for q in formula.quantities], literal_values(formula))
     reached = _reached(tape, results)
-    return sorted({tape.instructions[i][1]: truth for i, truth in reached.items()}.items())
+    return sorted(
+        {tape.instructions[i][1]: truth is True for i, truth in reached.items() if truth == truth}.items()
+    )
 
 
-def _reached(tape: Tape, results: Sequence[Any]) -> Mapping[int, bool]:
-    """The ``if`` instructions that the outputs pass through, with the truth of their conditions."""
-    reached: dict[int, bool] = {}
+def _reached(tape: Tape, results: Sequence[Any]) -> Mapping[int, bool | float]:
+    """The ``if`` instructions that the outputs pass through, with the truth of their conditions, nan for none."""
+    reached: dict[int, bool | float] = {}
     seen: set[int] = set()
     stack = list(tape.outputs)
     while stack:
@@ -157,8 +164,8 @@ def _reached(tape: Tape, results: Sequence[Any]) -> Mapping[int, bool]:
         entry: tuple[Any, ...] = tape.instructions[i]
         if entry[0] == "if":
             _, condition, a, b = entry
-            reached[i] = results[condition] is True
-            stack += [condition, a if reached[i] else b]
+            reached[i] = results[condition]
+            stack += [condition, a if reached[i] is True else b]
         else:
             stack.extend(operands_of(entry))
     return reached

@@ -60,7 +60,7 @@ def solve_regimes(
     solve_held : callable
         (branches, start or None for the caller's own start) to the outcome with these branches held.
     consistent : callable
-        x (n,) to the branches that x itself chooses.
+        x (n,) to the branches that x itself chooses; the number of branches where it chooses none of them.
     magnitude : ndarray (n,)
         Typical size of each unknown, for telling points apart.
     """
@@ -81,7 +81,7 @@ def solve_regimes(
                 return Held(outcome, branches, tuple(tried))
         if outcome.status is Status.INTERRUPTED:
             return Held(outcome, branches, tuple(tried))
-        if chosen not in tried:
+        if chosen not in tried and all(branch < count for branch, count in zip(chosen, counts)):
             # Go on from where this branch led to, which is already in the next one's region.
             queue.append((chosen, outcome.x))
         elif not queue:

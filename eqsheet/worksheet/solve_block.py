@@ -7,6 +7,7 @@ solve layer; conditions that depend on the block's own unknowns are held, checke
 from __future__ import annotations
 
 import math
+import operator
 import time
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
@@ -27,6 +28,7 @@ from eqsheet.model.evidence_function import evidence_of_outputs
 from eqsheet.model.isolate import isolate
 from eqsheet.model.linear import affine_in
 from eqsheet.model.tape import Formula, Tape
+from eqsheet.solve.kind_of_root import LARGEST_EXAMINED
 from eqsheet.solve.ladder import DEFAULT_BUDGET, solve_block, solve_scalar
 from eqsheet.solve.linear import linear_step
 from eqsheet.solve.outcome import Outcome, Status
@@ -42,6 +44,7 @@ from eqsheet.worksheet.block_equations import BlockProblem, block_problem, scala
 from eqsheet.worksheet.block_plan import plan_of
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.intervals import narrowed
+from eqsheet.worksheet.kinks import beyond_the_kinks
 from eqsheet.worksheet.starting_values import MOST_NARROWED, Start, starting_values
 from eqsheet.worksheet.torn import TornBlock, torn_block
 
@@ -350,6 +353,11 @@ def _iterate(
     formulas: tuple[Formula, ...], unknowns: Sequence[int], known: Known, start: Start, budget: Budget
 ) -> BlockResult:
     outcome, problem = _solve_plain(formulas, unknowns, known, start, budget)
+    kinks = plan_of(formulas, unknowns).kinked
+    if kinks and outcome.solved and len(unknowns) <= LARGEST_EXAMINED:
+        posed = problem or scalar_problem(formulas[0], unknowns[0], known.values, start)
+        with_kinks = [formulas[k] for k in kinks]
+        outcome = beyond_the_kinks(outcome, posed, with_kinks, unknowns, known.values, start)
     return judged(formulas, unknowns, known, start, outcome, problem)
 
 
@@ -389,12 +397,15 @@ def _by_regimes(
     counts = tuple(switch.count for switch in found)
     first = tuple(map(min, choose(np.array(start.values)), (count - 1 for count in counts)))
     held: Held = solve_regimes(first, counts, solve_held, choose, np.array(start.magnitude))
-    taken = hold(formulas, found, held.branches)
+    taken, outcome = hold(formulas, found, held.branches), held.outcome
+    if outcome.status is Status.NO_CONSISTENT_BRANCH and any(map(operator.eq, choose(outcome.x), counts)):
+        # What the branch gives is no use where the condition itself has no value.
+        taken, outcome = formulas, replace(outcome, status=Status.DOMAIN)
     problem = None
     if len(unknowns) > 1:
         problem = _problem(taken, unknowns, known, start)
     gap = () if held.gap is None else tuple(held.gap.tolist())
-    return judged(taken, unknowns, known, start, held.outcome, problem, gap)
+    return judged(taken, unknowns, known, start, outcome, problem, gap)
 
 
 def _started_at(start: Start, x: Vector) -> Start:

@@ -127,3 +127,24 @@ def test_powers_of_a_constant_narrow_their_exponent() -> None:
 def test_infinity_alone_is_nothing() -> None:
     assert meet((-math.inf, 0.0), (-math.inf, -math.inf)) is None
     assert meet((2.0, 2.0), (1.0, 3.0)) == (2.0, 2.0)
+
+
+@pytest.mark.parametrize(
+    "condition", ["x > 0", "0 < x", "not (x <= 0)", "x > 0 and y > -5", "x >= 0 or x > 3"]
+)
+def test_a_branch_narrows_where_the_other_cannot_be_taken(condition: str) -> None:
+    """With y in 1 .. 2 only the first branch serves, and x is in 1 .. 4; with y open nothing is known of x."""
+    text = f"y = if {condition} then sqrt(x) else -sqrt(-x)\n"
+    _, ranges = narrow(text, {"y": (1.0, 2.0)})
+    assert holds(ranges["x"], 1.0, 4.0)
+    found, ranges = narrow(text, {})
+    assert found.empty == -1 and ranges["x"] == OPEN and ranges["y"] == OPEN
+
+
+def test_a_condition_narrows_where_its_branch_is_taken() -> None:
+    text = "y = if x < 3 and 1 <= x then -1 else 1\n"
+    _, ranges = narrow(text, {"y": (-2.0, 0.0)})
+    assert holds(ranges["x"], 1.0, 3.0)
+    assert narrow(text, {"y": (-2.0, 0.0), "x": (4.0, 5.0)})[0].empty == 0
+    _, ranges = narrow("y = if x < 3 or x > 7 then -1 else 1\n", {"y": (0.0, 2.0)})
+    assert holds(ranges["x"], 3.0, 7.0)

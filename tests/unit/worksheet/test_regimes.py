@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
+import math
 import random
 
 import pytest
-from solving import errors, solve, values
+from solving import errors, only, solve, values
 
 FRICTION = """
 Re = rho*v*D/mu
@@ -147,3 +148,49 @@ def test_sides_that_look_alike_are_told_apart() -> None:
     sides = [note for note in found.notes if " against " in note]
     assert sides
     assert all("1 against 1, " in note and " apart" in note for note in sides)
+
+
+@pytest.mark.parametrize(
+    "text, place",
+    [
+        (
+            "b = -2\ny = if ln(b) < 1 then 2 else 3",
+            "line 2: there `ln(b)` takes the logarithm of a negative number",
+        ),
+        (
+            "y = if ln(y) < 1 then -2 else -3",
+            "line 1: there `ln(y)` takes the logarithm of a negative number",
+        ),
+        (
+            "x + y = 3\nx - 2*y = if ln(-x^2) < 1 then 1 else 2",
+            "line 2: there `ln(-x^2)` takes the logarithm of a negative number",
+        ),
+    ],
+)
+def test_a_condition_without_a_value_chooses_no_branch(text: str, place: str) -> None:
+    solution = solve(text)
+    assert errors(solution) == ["no-solution"]
+    assert place in only(solution, "no-solution").notes
+
+
+CHECK_VALVE = """
+dp = p1 - p2
+Q = if dp > 0 Pa then k*sqrt(dp) else -k*sqrt(-dp)
+k = 1e-5 m^(7/2)/kg^(1/2)
+p1 = 2e5 Pa + 3e8 Pa*s/m^3*(1 L/s - Q)
+p2 = {p2}
+"""
+
+
+@pytest.mark.parametrize("p2, sign", [("2.2e5 Pa", 1.0), ("6e5 Pa", -1.0)])
+def test_a_root_in_each_branch_bars_neither_side(p2: str, sign: float) -> None:
+    """The root in a branch has a value on its own side only; neither side is proven to hold no solution.
+
+    Q and dp have one sign, with 3e8*(1e-3 - Q) + 2e5 - p2 = sign*(Q/k)^2 at the solution.
+    """
+    solution = solve(CHECK_VALVE.format(p2=p2))
+    assert solution.status == "solved"
+    found = values(solution)
+    assert math.copysign(1.0, found["Q"]) == sign
+    assert found["dp"] == pytest.approx(sign * (found["Q"] / 1e-5) ** 2, rel=1e-9)
+    assert found["dp"] == pytest.approx(2e5 + 3e8 * (1e-3 - found["Q"]) - float(p2.split()[0]), rel=1e-9)
