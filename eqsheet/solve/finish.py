@@ -27,10 +27,10 @@ from eqsheet.solve.trail import Trail
 
 # The norm of the damping weighs no unknown against less than this part of its typical size.
 WEIGHT_FLOOR = 0.1
-# Of the 52 bits of a double so many are cleared before the last correction: eleven digits stay, and one step of
-# Newton's method doubles them.
-CLEARED = (1 << 16) - 1
-HALF_OF_CLEARED = 1 << 15
+# A number times this, less the difference of the two, has the last 16 of its 53 bits rounded away (T. J. Dekker, A
+# floating-point technique for extending the available precision, Numer. Math. 18, 1971): eleven digits stay, and one
+# step of Newton's method doubles them.
+SPLITTER = 2.0**16 + 1.0
 # Entries of the inverse of the scaled Jacobian below which a root is a single one: sizes of residuals by the Jacobian
 # are no larger than its rows, so nothing is amplified further than this.
 SURELY_SINGLE = 0.5 * DOUBTFUL
@@ -102,14 +102,15 @@ def _from_rounded_point(problem: Problem, interior: Interior, x: Vector) -> _Res
     Ways that meet at a root differ in their last digits. From the rounded point all of them go on alike, so that
     the way, and with it guesses, scales and the order of lines, leaves no trace in the result.
     """
-    near = ((x.view(np.int64) + HALF_OF_CLEARED) & ~CLEARED).view(np.float64)
-    if not interior.contains(near):
+    high = SPLITTER * x
+    near = high - (high - x)
+    if not interior.holds(near.tolist()):
         return None
     residual, jacobian = problem.linearise(near)
     # The size of the unknowns, none of which counts as less than a part of its typical size.
     factor = factorise(jacobian, np.maximum(np.abs(near), WEIGHT_FLOOR * problem.magnitude))
-    polished, cut = interior.cut(near, -factor.weights * factor.solve(residual), 0.0)
-    if cut >= 0:
+    polished = near - factor.weights * factor.solve(residual)
+    if not interior.holds(polished.tolist()):
         return None
     residual = problem.residual(polished)
     sizes = jacobian_sizes(polished, jacobian)

@@ -108,8 +108,11 @@ def last_step_due(rest: float, shrinkage: float) -> bool:
 
 def at_rest(problem: Problem, x: Vector, factor: Factor, residual: Vector) -> bool:
     """Whether the Newton step from x is negligible in every unknown."""
-    step = np.abs(factor.solve(residual)) * factor.weights
-    return bool((step <= AT_REST * floored(x, problem)).all())
+    step = np.abs(factor.solve(residual))
+    if step.max() <= ZERO_FLOOR * AT_REST:
+        # No unknown counts as less than that part of its weight.
+        return True
+    return bool((step * factor.weights <= AT_REST * floored(x, problem)).all())
 
 
 def scaled_norm(residual: Vector, sizes: Vector) -> float:

@@ -8,23 +8,24 @@ is no longer used all the same.
 from __future__ import annotations
 
 import gc
-from collections.abc import Iterator
-from contextlib import contextmanager
 
 
-@contextmanager
-def collection_put_off() -> Iterator[None]:
-    """Runs the body without the cyclic collector, which is on again afterwards if it was on before.
+class CollectionPutOff:
+    """Runs a body without the cyclic collector, which is on again afterwards if it was on before.
 
     What the body has made is then old already: the next look at young values does not walk all of it.
     """
-    if not gc.isenabled():
-        yield
-        return
-    gc.disable()
-    try:
-        yield
-    finally:
+
+    __slots__ = ("_on",)
+
+    def __enter__(self) -> None:
+        self._on = gc.isenabled()
+        if self._on:
+            gc.disable()
+
+    def __exit__(self, *_: object) -> None:
+        if not self._on:
+            return
         if gc.get_freeze_count() == 0:
             # Together the two move every value to the oldest generation; values that the caller has frozen stay so.
             gc.freeze()

@@ -23,13 +23,14 @@ from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
 from eqsheet.worksheet.follow_from_knowns import follow_from_knowns
 from eqsheet.worksheet.guesses import Guesses, constant_guesses, work_out_guesses
+from eqsheet.worksheet.known_quantities import known_quantities
 from eqsheet.worksheet.places import line_words, span_of
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
 from eqsheet.worksheet.structure_messages import conflict_diagnostic
 from eqsheet.worksheet.without_unknowns import EQUAL_TO
-from eqsheet.worksheet.written_values import as_typed, written
+from eqsheet.worksheet.written_values import written
 
 
 @dataclass(frozen=True)
@@ -81,13 +82,7 @@ def run_blocks(
     if guesses is None:
         guesses, found = work_out_guesses(system, follow_from_knowns(prepared), prepared.kinds)
         diagnostics += found
-    count = len(system.names)
-    values = [math.nan] * count
-    errors = [0.0] * count
-    for quantity, value in prepared.known_values.items():
-        if quantity not in prepared.contested:
-            values[quantity] = value
-            errors[quantity] = as_typed(value)
+    values, errors = map(list, known_quantities(prepared))
     formulas = list(prepared.formulas)
     dimensions = prepared.dimensions
     known = Known(values, errors)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import time
 from collections.abc import Sequence
 from dataclasses import dataclass, field, replace
+from types import MappingProxyType
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.diagnostics.source import Source, Span
@@ -18,11 +19,14 @@ from eqsheet.worksheet.attached_files import attach_files
 from eqsheet.worksheet.between_blocks import run_between_blocks
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.changes import apply_changes
-from eqsheet.worksheet.collection import collection_put_off
+from eqsheet.worksheet.collection import CollectionPutOff
 from eqsheet.worksheet.prepare import Prepared, prepare
 from eqsheet.worksheet.prepare_changed import Unchanged, prepare_changed, unchanged
 from eqsheet.worksheet.prepare_edited import prepare_edited
 from eqsheet.worksheet.solution import Solution
+
+# Of a worksheet that is prepared already.
+NO_TIME = MappingProxyType({"model": 0.0, "structure": 0.0})
 
 
 @dataclass
@@ -73,6 +77,8 @@ class Worksheet:
                 self.prepare()
             kept.changed = True
         if kept.unchanged is not None and not free:
+            if not changes:
+                return kept.unchanged.prepared
             begin = time.perf_counter()
             again = prepare_changed(kept.unchanged, changes, self.cache)
             if again is not None:
@@ -81,14 +87,14 @@ class Worksheet:
             begin = time.perf_counter()
             edited = prepare_edited(self.earlier, self.document.statements, self.cache)
             if edited is not None:
-                kept.unchanged = replace(self.earlier, prepared=edited)
+                kept.unchanged = replace(self.earlier, prepared=replace(edited, timing=NO_TIME))
                 return replace(edited, timing={"model": time.perf_counter() - begin, "structure": 0.0})
         statements, freed, found = apply_changes(self.document.statements, changes, free)
         if not statements and not self.diagnostics:
             found = (*found, _empty(self.source))
         prepared = prepare(statements, (*self.diagnostics, *found), self.cache, freed)
         if not changes and not free:
-            kept.unchanged = unchanged(prepared)
+            kept.unchanged = unchanged(replace(prepared, timing=NO_TIME))
         return prepared
 
     def solve(
@@ -120,7 +126,7 @@ class Worksheet:
         >>> round(sheet.solve(changes=["Q = 6 L/s"])["v"].to("m/s"), 9)
         5.0
         """
-        with collection_put_off():
+        with CollectionPutOff():
             prepared = self.prepare(changes, free)
             begin = time.perf_counter()
             run = run_between_blocks(prepared, budget, self.memory) if prepared.valid_text else None

@@ -87,9 +87,8 @@ class StartPlan:
             told = self._function(self._given, arguments)
         except DOMAIN_ERRORS:
             return None
-        for value in told:
-            if value == 0.0 or not math.isfinite(value):
-                return None
+        if 0.0 in told or not math.isfinite(sum(told)):
+            return None
         for k, low, high in self._bounded:
             if not low < told[k] < high:
                 return None

@@ -8,21 +8,21 @@ import weakref
 import pytest
 
 import eqsheet
-from eqsheet.worksheet.collection import collection_put_off
+from eqsheet.worksheet.collection import CollectionPutOff
 
 
 def test_is_off_inside_and_on_again_afterwards() -> None:
     assert gc.isenabled()
-    with collection_put_off():
+    with CollectionPutOff():
         assert not gc.isenabled()
-        with collection_put_off():
+        with CollectionPutOff():
             assert not gc.isenabled()
         assert not gc.isenabled()
     assert gc.isenabled()
 
 
 def test_is_on_again_after_an_exception() -> None:
-    with pytest.raises(ZeroDivisionError), collection_put_off():
+    with pytest.raises(ZeroDivisionError), CollectionPutOff():
         _ = 1 / 0
     assert gc.isenabled()
 
@@ -40,7 +40,7 @@ def test_what_was_made_is_collected_all_the_same() -> None:
     class Node:
         other: object = None
 
-    with collection_put_off():
+    with CollectionPutOff():
         node = Node()
         node.other = node
     gone = weakref.ref(node)
@@ -53,7 +53,7 @@ def test_what_the_caller_has_frozen_stays_frozen() -> None:
     gc.freeze()
     try:
         frozen = gc.get_freeze_count()
-        with collection_put_off():
+        with CollectionPutOff():
             pass
         assert gc.get_freeze_count() >= frozen - 1
     finally:
