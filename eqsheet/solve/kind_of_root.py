@@ -71,7 +71,7 @@ def kind_of_root(problem: Problem, x: Vector, scaled: float, sizes: Vector, fact
     _, _, direction = smallest_singular_vectors(
         _dense(factor.matrix) * (reach / factor.weights) * (factor.rows / units)[:, None]
     )
-    left_over = [_least_residual(problem, x, reach, units, direction, t) for t in (PROBE, 2.0 * PROBE)]
+    left_over = [least_residuals(problem, x, reach, units, direction, t) for t in (PROBE, 2.0 * PROBE)]
     near, far = (min(pair) for pair in left_over)
     if far <= max(64.0 * ROUNDING, 8.0 * scaled):
         return Status.CONTINUUM
@@ -98,7 +98,7 @@ def _sensitive(factor: Factor, sizes: Vector, limit: float) -> bool:
     return not factor.condition < limit
 
 
-def _least_residual(
+def least_residuals(
     problem: Problem, x: Vector, reach: Vector, units: Vector, direction: Vector, distance: float
 ) -> tuple[float, float]:
     """Least scaled residual at `distance` to either side, by Gauss-Newton steps across `direction`."""

@@ -54,6 +54,13 @@ class BlockPlan:
         return not any(conditions(f.tape) for f in self.formulas) and not switches(self.formulas, self.own)
 
     @cached_property
+    def kinked(self) -> tuple[int, ...]:
+        """Positions of the equations in which the unknowns decide the side of an `abs`, `min` or `max`."""
+        from eqsheet.worksheet.kinks import kinked
+
+        return kinked(self.formulas, self.own)
+
+    @cached_property
     def linear(self) -> bool:
         """All equations are linear in the unknowns together."""
         return all(
