@@ -40,6 +40,7 @@ from eqsheet.model.placed import Placed, Scope, place_statements
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance
 from eqsheet.model.system import (
     EquationSystem,
+    LimitItem,
 )
 from eqsheet.model.tables import Tables, collect_tables
 from eqsheet.model.unit_statements import collect_units
@@ -228,13 +229,14 @@ def _assemble(
     groups = gathered.grouped()
     guesses = tuple(by_precedence(gathered.guesses, statements, names, diagnostics))
     first_places = gathered.first_places
+    limits = tuple([one for one in gathered.limits if isinstance(one, LimitItem)])
     return EquationSystem(
         statements,
         names,
         tuple(first_places) if grouping is None else grouping.by_family(first_places.__getitem__),
         tuple(gathered.equations) if grouping is None else grouping.all_equations(gathered.equations),
         guesses if grouping is None else grouping.all_guesses(guesses),
-        tuple(gathered.limits),
+        limits if grouping is None else grouping.all_limits(gathered.limits),
         gathered.shown,
         gathered.preferred_units(idle, binder),
         context.unit_table,
@@ -244,6 +246,7 @@ def _assemble(
         _families_by_quantity(numbering) if grouping is None else grouping.by_family(int),
         *groups,
         () if grouping is None else guesses,
+        limits if grouping is None else tuple(gathered.limits),
     )
 
 

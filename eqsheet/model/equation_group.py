@@ -14,8 +14,8 @@ from numpy.typing import NDArray
 from eqsheet.model.bind import Bound
 from eqsheet.model.evaluate import evaluate_arrays
 from eqsheet.model.indexing import Codes, Domain
-from eqsheet.model.system import EquationItem, GuessItem, Place
-from eqsheet.model.tape import Formula, Literal
+from eqsheet.model.system import EquationItem, GuessItem, LimitItem, Place
+from eqsheet.model.tape import Formula, Literal, Tape
 
 Array = NDArray[np.float64]
 
@@ -124,6 +124,35 @@ class GuessGroup:
         return GuessItem(int(self.targets[entry]), self.place, self.exact, self.bound.at(entry), self.roles)
 
 
+@dataclass(frozen=True)
+class LimitGroup:
+    """The limits of one statement for a large family; see `LimitItem`.
+
+    Attributes
+    ----------
+    bound : BoundFormula
+    shared : LimitItem
+        What they have in common; its formula is that of `bound`.
+    member : callable
+        Position of an entry to what tells it from the others.
+    """
+
+    bound: BoundFormula
+    shared: LimitItem
+    member: Callable[[int], str]
+
+    def __len__(self) -> int:
+        return len(self.bound)
+
+    def text(self, entry: int) -> str:
+        """One limit as written, and which member it is for."""
+        return f"{self.shared.text} ({self.member(entry)})"
+
+    def item(self, entry: int) -> LimitItem:
+        """One limit, written out."""
+        return replace(self.shared, formula=self.bound.at(entry), text=self.text(entry))
+
+
 def bound_formula(formula: Formula, bound: Bound, statement: int, members: int) -> BoundFormula:
     """The formula with the numbers of all entries; `members` of them even where nothing depends on an index."""
     columns = [np.broadcast_to(np.asarray(bound.columns[p]), (members,)) for p in formula.quantities]
@@ -151,11 +180,12 @@ def part_of(bound: Bound, mask: NDArray[np.bool_]) -> Bound:
 
 def is_simple(item: EquationItem) -> bool:
     """Whether nothing of an equation has to be decided member by member."""
-    return (
-        item.tolerance is None
-        and not item.valid
-        and not any(instruction[0] in _DECIDED for instruction in item.formula.tape.instructions)
-    )
+    return item.tolerance is None and not item.valid and not is_decided(item.formula.tape)
+
+
+def is_decided(tape: Tape) -> bool:
+    """Whether members may differ in branches or ranges."""
+    return any(instruction[0] in _DECIDED for instruction in tape.instructions)
 
 
 def values_of_knowns(item: EquationItem, bound: BoundFormula) -> Array:

@@ -11,7 +11,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic
 from eqsheet.model.aggregate_parts import is_like_members
 from eqsheet.model.bind import merged
 from eqsheet.model.check_units import check_units
-from eqsheet.model.equation_group import offsets
+from eqsheet.model.equation_group import LimitGroup, offsets
 from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
@@ -167,8 +167,8 @@ def _everything(system: EquationSystem) -> Iterator[tuple[int, Formula, bool]]:
     else:
         for formula in _of_guesses(system):
             yield -1, formula, False
-    for limit in system.limits:
-        yield -1, limit.formula, False
+    for part in system.limit_parts:
+        yield -1, part.bound.at(0) if isinstance(part, LimitGroup) else part.formula, False
     for formula in system.shows:
         yield -1, formula, False
 

@@ -17,7 +17,7 @@ from eqsheet.model.bind import (
     instance_name,
     member_formulas,
 )
-from eqsheet.model.equation_group import EquationGroup, GuessGroup
+from eqsheet.model.equation_group import EquationGroup, GuessGroup, LimitGroup
 from eqsheet.model.families import Numbering
 from eqsheet.model.grouping import Grouping, PreferredUnits
 from eqsheet.model.indexing import Codes, Domain, Indexing
@@ -63,7 +63,7 @@ class Gathered:
     unit_table: UnitTable
     grouping: Grouping | None = None
     equations: list[EquationItem] = field(default_factory=list)
-    limits: list[LimitItem] = field(default_factory=list)
+    limits: list[LimitItem | LimitGroup] = field(default_factory=list)
     guesses: list[GuessItem] = field(default_factory=list)
     shown: dict[int, Unit | None] = field(default_factory=dict)
     shows: list[Formula] = field(default_factory=list)
@@ -228,16 +228,16 @@ def _to_be_seen(column: Codes, grouping: Grouping | None) -> Iterable[int]:
 
 
 def _put_limits(gathered: Gathered, one: Work, item: LimitItem, bound: Bound, indexing: Indexing) -> None:
+    item = replace(item, place=replace(item.place, statement=one.number))
+    if gathered.grouping is not None:
+        group = gathered.grouping.limits(item, bound, lambda entry: _member(one, entry, indexing))
+        if group is not None:
+            gathered.limits.append(group)
+            return
     for entry, formula in enumerate(member_formulas(item.formula, bound, one.number)):
         member = "" if one.place.plain else _member(one, entry, indexing)
-        gathered.limits.append(
-            replace(
-                item,
-                formula=formula,
-                place=replace(item.place, statement=one.number),
-                text=f"{item.text} ({member})" if member else item.text,
-            )
-        )
+        text = f"{item.text} ({member})" if member else item.text
+        gathered.limits.append(replace(item, formula=formula, text=text))
 
 
 def _put_guesses(gathered: Gathered, one: Work, meant: GuessMeant, binder: Binder) -> None:

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from bisect import bisect_right
 from collections.abc import Callable, Iterator, Mapping, Sequence
+from dataclasses import replace
 from typing import TypeVar
 
 import numpy as np
@@ -15,7 +16,9 @@ from eqsheet.model.bind import Bound
 from eqsheet.model.equation_group import (
     EquationGroup,
     GuessGroup,
+    LimitGroup,
     bound_formula,
+    is_decided,
     is_simple,
     part_of,
     repeating,
@@ -24,7 +27,7 @@ from eqsheet.model.equation_group import (
 from eqsheet.model.families import Numbering
 from eqsheet.model.indexing import Codes, Domain
 from eqsheet.model.lazy_sequence import LazySequence
-from eqsheet.model.system import EquationItem, GuessItem, Place
+from eqsheet.model.system import EquationItem, GuessItem, LimitItem, Place
 from eqsheet.model.tape import Formula
 from eqsheet.units.unit import Unit
 
@@ -81,6 +84,15 @@ class Grouping:
             )
         return rest
 
+    def limits(self, item: LimitItem, bound: Bound, member: Callable[[int], str]) -> LimitGroup | None:
+        """The limits of a statement kept as arrays, None where they must be written out."""
+        if bound.domain.size < self._least or is_decided(item.formula.tape):
+            return None
+        group = bound_formula(item.formula, bound, item.place.statement, bound.domain.size)
+        if repeating(group).any():
+            return None
+        return LimitGroup(group, replace(item, formula=group.formula), member)
+
     def take_guesses(
         self,
         formula: Formula,
@@ -111,6 +123,13 @@ class Grouping:
         groups = [(len(group), group.item) for group in self.equations]
         return LazySequence([(len(written), tuple(written).__getitem__), *groups])
 
+    @staticmethod
+    def all_limits(parts: Sequence[LimitItem | LimitGroup]) -> Sequence[LimitItem]:
+        """The limits in the order of the text."""
+        return LazySequence(
+            [(len(p), p.item) if isinstance(p, LimitGroup) else (1, _always(p)) for p in parts]
+        )
+
     def guesses_twice(self, written: Sequence[GuessItem]) -> bool:
         """Whether two guesses by name give one quantity the same role, so that somebody has to be told."""
         for role in ("near", "lower", "upper"):
@@ -137,6 +156,10 @@ class Grouping:
         return LazySequence(
             [(end - first, _same(of_first, first)) for first, end in zip(self._first_list, ends)]
         )
+
+
+def _always(item: T) -> Callable[[int], T]:
+    return lambda _: item
 
 
 def _same(of_first: Callable[[int], T], first: int) -> Callable[[int], T]:

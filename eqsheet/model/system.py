@@ -16,7 +16,7 @@ from eqsheet.units.registry import UnitTable
 from eqsheet.units.unit import Unit
 
 if TYPE_CHECKING:
-    from eqsheet.model.equation_group import EquationGroup, GuessGroup
+    from eqsheet.model.equation_group import EquationGroup, GuessGroup, LimitGroup
     from eqsheet.model.indexing import Codes
 
 
@@ -164,7 +164,8 @@ class EquationSystem:
         Knowns and others, ordered by knowns first, then by the names they hold, then by their text. Those of
         `groups` stand last, group by group.
     guesses : sequence of GuessItem
-    limits : tuple of LimitItem
+    limits : sequence of LimitItem
+        In the order of the text.
     shown : mapping of int to (Unit or None)
         Quantities named by `show`, in that order.
     units : mapping of int to Unit
@@ -187,6 +188,8 @@ class EquationSystem:
     firsts : ndarray or None
         Where there are groups: numbers of the first members of all families and of the plain quantities,
         ascending. Sequences over quantities and equations are then made item by item when asked for.
+    limit_parts : tuple of (LimitItem or LimitGroup)
+        The limits in their order, those on large families as arrays.
     """
 
     statements: tuple[Statement, ...]
@@ -194,7 +197,7 @@ class EquationSystem:
     first_places: Sequence[Place]
     equations: Sequence[EquationItem]
     guesses: Sequence[GuessItem]
-    limits: tuple[LimitItem, ...]
+    limits: Sequence[LimitItem]
     shown: Mapping[int, Unit | None]
     units: Mapping[int, Unit]
     unit_table: UnitTable
@@ -206,6 +209,7 @@ class EquationSystem:
     guess_groups: tuple[GuessGroup, ...] = ()
     firsts: Codes | None = None
     guesses_apart: tuple[GuessItem, ...] = ()
+    limit_parts: tuple[LimitItem | LimitGroup, ...] = ()
 
     @property
     def written(self) -> Sequence[EquationItem]:

@@ -12,6 +12,7 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 from eqsheet.units.display import format_value
+from eqsheet.worksheet.many_limits import WorstLimit, worst_of_each
 from eqsheet.worksheet.many_values import ManyQuantities, ManyValues
 from eqsheet.worksheet.solution import LimitReport, QuantityValue
 
@@ -74,17 +75,18 @@ def extremes(group: ManyValues) -> Extremes:
 
 def worst_limits(limits: Iterable[LimitReport]) -> list[tuple[LimitReport, str]]:
     """The limits, of a large family the worst member alone with a count of the others in words."""
-    groups: dict[int, list[LimitReport]] = {}
-    for limit in limits:
-        groups.setdefault(id(limit.statement), []).append(limit)
+    groups: dict[int, list[WorstLimit]] = {}
+    for one in worst_of_each(limits):
+        groups.setdefault(id(one.limit.statement), []).append(one)
     result: list[tuple[LimitReport, str]] = []
     for group in groups.values():
-        if len(group) <= MOST_MEMBERS:
-            result += [(limit, "") for limit in group]
+        count = sum(one.count for one in group)
+        if count <= MOST_MEMBERS:
+            result += [(one.limit, "") for one in group]
             continue
-        failing = sum(not limit.holds for limit in group)
-        words = f"worst of {len(group):,}" + (f", of which {failing:,} fail" if failing > 1 else "")
-        result.append((min(group, key=_badness), words))
+        failing = sum(one.failing for one in group)
+        words = f"worst of {count:,}" + (f", of which {failing:,} fail" if failing > 1 else "")
+        result.append((min((one.limit for one in group), key=_badness), words))
     return result
 
 

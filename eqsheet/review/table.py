@@ -9,6 +9,7 @@ from eqsheet.review.columns import in_columns
 from eqsheet.review.folding import extremes, family_name, values_together, worst_limits
 from eqsheet.syntax.nodes import Guess, Reference, Statement
 from eqsheet.units.display import format_value
+from eqsheet.worksheet.many_limits import failing_limits
 from eqsheet.worksheet.many_values import ManyValues
 from eqsheet.worksheet.own_line import own_line
 from eqsheet.worksheet.solution import BlockReport, BranchReport, LimitReport, QuantityValue, Solution
@@ -192,7 +193,7 @@ def _percent(part: float) -> str:
 
 def verdict_line(solution: Solution) -> str:
     """One line: the file, and how it stands."""
-    failing = sum(not limit.holds for limit in solution.limits)
+    failing = failing_limits(solution.limits)
     count = len(solution.limits)
     match solution.status:
         case "solved":

@@ -16,6 +16,7 @@ from eqsheet.worksheet.branches_taken import branches_taken
 from eqsheet.worksheet.deferred import DeferredMapping, DeferredSequence
 from eqsheet.worksheet.failure_messages import digits_of
 from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds, limits_outside_curves
+from eqsheet.worksheet.many_limits import failing_limits
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import BlockRun, Run
 from eqsheet.worksheet.shown_units import shown_unit
@@ -29,7 +30,7 @@ UNSOLVED_CODES = frozenset(("no-solution", "outside-bounds", "outside-curve", "s
 def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str, float]) -> Solution:
     """The solution of a worksheet whose blocks have been run; `run` is None where no number may be computed."""
     diagnostics = list(prepared.diagnostics)
-    limits: tuple[LimitReport, ...] = ()
+    limits: Sequence[LimitReport] = ()
     quantities: Mapping[str, QuantityValue] = {}
     best: dict[str, QuantityValue] = {}
     blocks: Sequence[BlockReport] = ()
@@ -68,13 +69,13 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
     )
 
 
-def _status(diagnostics: list[Diagnostic], limits: tuple[LimitReport, ...]) -> str:
+def _status(diagnostics: list[Diagnostic], limits: Sequence[LimitReport]) -> str:
     errors = {d.code for d in diagnostics if d.severity is Severity.ERROR}
     if errors - UNSOLVED_CODES:
         return "invalid"
     if errors:
         return "unsolved"
-    return "solved" if all(limit.holds for limit in limits) else "outside-limits"
+    return "outside-limits" if failing_limits(limits) else "solved"
 
 
 def _distinct(diagnostics: list[Diagnostic], names: Sequence[str]) -> list[Diagnostic]:

@@ -26,20 +26,28 @@ from eqsheet.worksheet.written_values import as_typed
 _WITH_READINGS = frozenset((Dimension.of({"K": 1}), Dimension.of({"kg": 1, "m": -1, "s": -2})))
 
 
-def judge_limits(prepared: Prepared, run: Run) -> tuple[LimitReport, ...]:
+def judge_limits(prepared: Prepared, run: Run) -> Sequence[LimitReport]:
     """Every limit whose quantities are all found, in the order of the text."""
-    reports = []
-    for item in prepared.system.limits:
-        formula = item.formula
-        inputs = [run.values[q] for q in formula.quantities]
-        if not all(map(math.isfinite, inputs)):
-            continue
-        evidence = evaluate_with_evidence(
-            formula.tape, inputs, literal_values(formula), [run.errors[q] for q in formula.quantities]
-        )
-        if outside_curve(formula.tape, evidence.values) is None:
-            reports.append(_report(prepared, item, evidence))
-    return tuple(reports)
+    if prepared.system.groups:
+        from eqsheet.worksheet.judge_families import judge_limits_of_families
+
+        return judge_limits_of_families(prepared, run)
+    reports = (judge_limit(prepared, run, item) for item in prepared.system.limits)
+    return tuple([report for report in reports if report is not None])
+
+
+def judge_limit(prepared: Prepared, run: Run, item: LimitItem) -> LimitReport | None:
+    """One limit; None where a quantity is not found, or a curve is read outside its range."""
+    formula = item.formula
+    inputs = [run.values[q] for q in formula.quantities]
+    if not all(map(math.isfinite, inputs)):
+        return None
+    evidence = evaluate_with_evidence(
+        formula.tape, inputs, literal_values(formula), [run.errors[q] for q in formula.quantities]
+    )
+    if outside_curve(formula.tape, evidence.values) is not None:
+        return None
+    return _report(prepared, item, evidence)
 
 
 def limits_outside_curves(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
@@ -48,22 +56,16 @@ def limits_outside_curves(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...
         outside_curve_diagnostic(
             prepared.system, item.formula, {q: run.values[q] for q in item.formula.quantities}
         )
-        for item in prepared.system.limits
+        for item in prepared.system.limit_parts
+        if isinstance(item, LimitItem)
     )
     return tuple(diagnostic for diagnostic in found if diagnostic is not None)
 
 
 def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitReport:
     system = prepared.system
-    outputs = item.formula.tape.outputs
-    operands = outputs[:-1] if item.within else outputs
-    dimension = next(
-        (d for d in (dimensions_of(item.formula, prepared.dimensions)[o] for o in operands) if d is not None),
-        Dimension(()),
-    )
-    unit = item.unit
-    if unit is None or unit.dimension != dimension:
-        unit = _unit_of_a_side(prepared, item, operands, dimension)
+    operands = operands_compared(item)
+    unit, relative = slack_unit(prepared, item)
     links = [
         _link(item, operator, a, b, evidence)
         for operator, a, b in zip(item.operators, operands, operands[1:])
@@ -73,16 +75,32 @@ def _report(prepared: Prepared, item: LimitItem, evidence: Evidence) -> LimitRep
     if holds:
         # Past the limit by rounding alone is at the limit.
         slack = max(slack, 0.0)
-    reading = dimension in _WITH_READINGS and _compares_readings(prepared, item, operands)
-    margin = None if scale == 0.0 or reading else slack / abs(scale)
+    margin = None if scale == 0.0 or not relative else slack / abs(scale)
     return LimitReport(
         system.statements[item.place.statement],
         item.text,
         holds,
         margin,
         unit.difference_from_si(slack),
-        _difference_text(unit.text, prepared),
+        difference_text(unit.text, prepared),
     )
+
+
+def operands_compared(item: LimitItem) -> tuple[int, ...]:
+    """Instructions of the sides of its comparisons, in order."""
+    outputs = item.formula.tape.outputs
+    return outputs[:-1] if item.within else outputs
+
+
+def slack_unit(prepared: Prepared, item: LimitItem) -> tuple[Unit, bool]:
+    """The unit of a limit's slack, and whether it has a margin too, which readings have not."""
+    operands = operands_compared(item)
+    found = dimensions_of(item.formula, prepared.dimensions)
+    dimension = next((d for o in operands if (d := found[o]) is not None), Dimension(()))
+    unit = item.unit
+    if unit is None or unit.dimension != dimension:
+        unit = _unit_of_a_side(prepared, item, operands, dimension)
+    return unit, not (dimension in _WITH_READINGS and _compares_readings(prepared, item, operands))
 
 
 def _unit_of_a_side(
@@ -108,14 +126,18 @@ def _link(item: LimitItem, operator: str, a: int, b: int, evidence: Evidence) ->
         if item.relative:
             allowed *= abs(right)
         return allowed - abs(left - right), allowed, room
-    # The limit is the side that is no more than literals; where both move, the right one.
     return (right - left if operator in ("<", "<=") else left - right), _limit_side(item, a, b, values), room
 
 
 def _limit_side(item: LimitItem, a: int, b: int, values: Sequence[float]) -> float:
+    return float(values[limit_side(item, a, b)])
+
+
+def limit_side(item: LimitItem, a: int, b: int) -> int:
+    """The side that a margin is relative to: the one that is no more than literals; where both move, the right one."""
     instructions = item.formula.tape.instructions
     fixed = [i for i in (b, a) if instructions[i][0] in ("literal", "const")]
-    return float(values[fixed[0] if fixed else b])
+    return fixed[0] if fixed else b
 
 
 def _compares_readings(prepared: Prepared, item: LimitItem, operands: Sequence[int]) -> bool:
@@ -130,7 +152,7 @@ def _compares_readings(prepared: Prepared, item: LimitItem, operands: Sequence[i
     return False
 
 
-def _difference_text(text: str, prepared: Prepared) -> str:
+def difference_text(text: str, prepared: Prepared) -> str:
     """The unit of a slack: a distance between readings is a difference, between degC one in K."""
     unit = prepared.system.unit_table.lookup(text) if text else None
     if unit is None or not unit.reading:
@@ -170,8 +192,11 @@ def _quantities_used(prepared: Prepared, run: Run) -> set[int]:
         mine = own.get(number, set())
         in_use.update(q for q in formula.quantities if q not in mine)
         mentioned.update(q for q in item.formula.quantities if q not in mine)
-    for limit in system.limits:
-        in_use.update(limit.formula.quantities)
+    for limit in system.limit_parts:
+        if isinstance(limit, LimitItem):
+            in_use.update(limit.formula.quantities)
+        else:
+            in_use.update(limit.bound.numbers.ravel().tolist())
     return in_use | (set(range(len(system.names))) - mentioned)
 
 

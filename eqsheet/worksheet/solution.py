@@ -218,7 +218,7 @@ class Solution(Mapping[str, QuantityValue]):
     quantities : mapping of str to QuantityValue
         What is known or was found; of an ill-posed worksheet its well-determined part.
     blocks : sequence of BlockReport
-    limits : tuple of LimitReport
+    limits : sequence of LimitReport
     diagnostics : tuple of Diagnostic
     best : mapping of str to QuantityValue
         Best point of a failed block; never mixed with `quantities`.
@@ -234,7 +234,7 @@ class Solution(Mapping[str, QuantityValue]):
     status: str
     quantities: Mapping[str, QuantityValue]
     blocks: Sequence[BlockReport] = ()
-    limits: tuple[LimitReport, ...] = ()
+    limits: Sequence[LimitReport] = ()
     diagnostics: tuple[Diagnostic, ...] = ()
     best: Mapping[str, QuantityValue] = field(default_factory=dict)
     timing: Mapping[str, float] = field(default_factory=dict)

@@ -7,9 +7,10 @@ import pytest
 import eqsheet
 from eqsheet.model.equation_group import EquationGroup
 from eqsheet.model.system import EquationItem
-from eqsheet.review.table import solution_lines
+from eqsheet.review.table import solution_lines, verdict_line
 from eqsheet.solve.ladder import DEFAULT_BUDGET
 from eqsheet.worksheet.assemble import assemble
+from eqsheet.worksheet.many_limits import failing_limits
 from eqsheet.worksheet.prepare import prepare
 from eqsheet.worksheet.run import run_blocks
 from eqsheet.worksheet.solution import Solution
@@ -98,6 +99,50 @@ RESULTS = {
     "squares": SQUARES,
     "conditions": WITH_CONDITIONS,
 }
+LIMITS = """
+N = 40
+T[0] = 20 degC
+v_max = 3 m/s
+require T[0] <= 90 degC
+for i in 1..N:
+    T[i] = T[i-1] + 0.5 K
+    v[i] = 0.1 m/s * i
+    p[i] = 2 barg + i*0.01 bar
+    require T[i] <= {reading}
+    require 0.05 m/s <= v[i] <= v_max  # erosion
+    require v[i]*(2 s) = 0.2 m * i within 1 %
+    require T[i] - T[i-1] = 0.5 K within 0.1 K
+    require p[i] <= 2.2 barg
+    require v[i] > 0 m/s
+require v[3] <= 1 m/s
+"""
+
+
+@pytest.mark.parametrize("reading", ["90 degC", "30 degC", "T[0] + 15 K"])
+def test_limits_are_judged_the_same(reading: str) -> None:
+    text = LIMITS.format(reading=reading)
+    written, arrays = solved(text, WRITTEN_OUT), solved(text, AS_ARRAYS)
+    assert arrays.status == written.status == "outside-limits"
+    assert len(arrays.limits) == len(written.limits) == 6 * 40 + 2
+    for found, expected in zip(arrays.limits, written.limits):
+        assert (found.text, found.line, found.unit) == (expected.text, expected.line, expected.unit)
+        assert found.holds == expected.holds
+        assert (found.margin is None) == (expected.margin is None)
+        assert math.isclose(found.margin or 0.0, expected.margin or 0.0, rel_tol=1e-12, abs_tol=1e-12)
+        assert math.isclose(found.slack, expected.slack, rel_tol=1e-12, abs_tol=1e-12)
+    assert solution_lines(arrays) == solution_lines(written)
+    assert verdict_line(arrays) == verdict_line(written)
+    assert failing_limits(arrays.limits) == failing_limits(written.limits) > 0
+
+
+def test_limits_on_members_that_were_not_found_are_left_out() -> None:
+    text = "for i in 1..20:\n    y[i] = i - 5\n    x[i] = sqrt(y[i])\n    require x[i] <= 2\n"
+    written, arrays = solved(text, WRITTEN_OUT), solved(text, AS_ARRAYS)
+    assert 0 < len(written.limits) < 20
+    assert [limit.text for limit in arrays.limits] == [limit.text for limit in written.limits]
+    assert [limit.holds for limit in arrays.limits] == [limit.holds for limit in written.limits]
+
+
 WRONG = {
     "one equation missing": CONDUCTION.replace("T[0] = 20 degC", ""),
     "one equation too many": CONDUCTION + "T[30] = 400 K\n",
