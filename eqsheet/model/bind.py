@@ -194,6 +194,8 @@ class Binder:
             return
         here = Label(place.statement.span(start, end))
         name = key if isinstance(key, str) else key.text
+        if name in self._broken:
+            return
         if self._by_name.get(name):
             family = self._by_name[name][0]
             slots = ", ".join(s or "number" for s in family.sets)

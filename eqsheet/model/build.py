@@ -84,7 +84,8 @@ def build_system(
     diagnostics += told
     numbered = _numbered(placed, tables)
     slips: list[tuple[Finding, syntax.Statement]] = []
-    work = _lower_all(placed, numbered, cache, indexing, slips, diagnostics)
+    lost: set[object] = set()
+    work = _lower_all(placed, numbered, cache, indexing, slips, lost, diagnostics)
     # A known switched off still tells in which unit its quantity is thought of.
     idle = [
         one
@@ -92,7 +93,9 @@ def build_system(
         if s.off and isinstance(s.node, syntax.Equation)
         if (one := cache.lowered(s, IndexScope(), False)) is not None
     ]
-    system = _assemble(work, tables, idle, numbered, cache.names, context, freed, diagnostics, large_family)
+    system = _assemble(
+        work, tables, idle, numbered, cache.names, lost, context, freed, diagnostics, large_family
+    )
     if slips:
         quantities = {name.partition("[")[0] for name in system.names}
         diagnostics.extend(finding.at(statement, quantities) for finding, statement in slips)
@@ -144,8 +147,10 @@ def _lower_all(
     cache: LoweredCache,
     indexing: Indexing,
     slips: list[tuple[Finding, syntax.Statement]],
+    lost: set[object],
     diagnostics: list[Diagnostic],
 ) -> list[Work]:
+    """Lowered statements with their domains; the names of those whose `for` line is wrong are added to `lost`."""
     work: list[Work] = []
     domains = Domains(indexing, diagnostics)
     said: set[int] = set()
@@ -156,6 +161,7 @@ def _lower_all(
         in_instance = place.instance is not None
         domain = domains.of(place)
         if domain is None:
+            lost.update(_names_at(place))
             continue
         free = visible(domain.sets)
         indices = IndexScope(free=free) if free else NO_INDICES
@@ -177,6 +183,14 @@ def _lower_all(
             work.append(Work(place, number, domain.at(entry), one))
             work += _parts(work[-1], parts_there)
     return work
+
+
+def _names_at(place: Placed) -> Iterator[str]:
+    """What the quantities that a statement names are called, without subscripts."""
+    for name in names_in((place.statement.node,)):
+        for scope in (place.scope, place.instance or place.scope):
+            key = scope.resolve(name)
+            yield key if isinstance(key, str) else key.text
 
 
 def _parts(one: Work, there: set[object]) -> list[Work]:
@@ -201,6 +215,7 @@ def _assemble(
     idle: Sequence[LoweredStatement],
     numbered: Mapping[int, tuple[int, syntax.Statement]],
     provisional: NameTable,
+    lost: set[object],
     context: Context,
     freed: Collection[str],
     diagnostics: list[Diagnostic],
@@ -210,6 +225,7 @@ def _assemble(
     indexing = context.indexing
     statements = tuple(statement for _, statement in numbered.values())
     numbering, broken = _number(work, tables, provisional, indexing, diagnostics)
+    broken |= lost
     binder = Binder(
         numbering, indexing, provisional, {i: n for i, (n, _) in numbered.items()}, broken, diagnostics
     )

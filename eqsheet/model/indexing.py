@@ -122,7 +122,8 @@ def grown(domain: Domain, clause: syntax.IndexClause, indexing: Indexing) -> Dom
     IndexSlip
     """
     if clause.index in domain.arrays:
-        raise IndexSlip("index-twice", f"the index `{clause.index}` is already in use here", clause)
+        raise index_twice(clause)
+    _check_name(clause, indexing)
     if isinstance(clause.over, syntax.Range):
         first = _whole(clause.over.first, domain, indexing)
         last = _whole(clause.over.last, domain, indexing)
@@ -154,6 +155,36 @@ def grown(domain: Domain, clause: syntax.IndexClause, indexing: Indexing) -> Dom
     ramp = np.arange(total, dtype=np.int64) - np.repeat(offsets, lengths) + np.repeat(starts, lengths)
     return Domain(
         total, {**repeats, clause.index: ramp.astype(np.int64)}, {**domain.sets, clause.index: set_name}
+    )
+
+
+def index_twice(clause: syntax.IndexClause) -> IndexSlip:
+    """That an index is in force where another is to be made of its name."""
+    return IndexSlip(
+        "index-twice",
+        f"the index `{clause.index}` is already in use here",
+        clause,
+        "give the inner index another name",
+    )
+
+
+def _check_name(clause: syntax.IndexClause, indexing: Indexing) -> None:
+    """An index may bear no name that means something else where the index is used."""
+    name = clause.index
+    of = indexing.sets.get(clause.over.dotted) if isinstance(clause.over, syntax.Reference) else None
+    if name in ("pi", "const"):
+        other = "`pi` is the number" if name == "pi" else "`const` holds the constants"
+    elif name in indexing.sets:
+        other = f"`{name}` is an index set"
+    elif of is not None and name in of.positions:
+        other = f"`{name}` is a member of `{of.name}`"
+    else:
+        return
+    raise IndexSlip(
+        "index-name-taken",
+        f"{other}, so no index can be called so here",
+        clause,
+        "give the index another name",
     )
 
 

@@ -18,7 +18,7 @@ from eqsheet.model.aggregate_parts import JOINED, MANY, Part, in_parts
 from eqsheet.model.exact import exact_value
 from eqsheet.model.families import FamilyReference, with_fixed
 from eqsheet.model.findings import Finding
-from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown
+from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown, index_twice
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.literal_kind import kind_of, shortened_number
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance, QuantityKey
@@ -341,8 +341,10 @@ class Lowering:
             raise NeedsMembers
         outer = self._fixed
         try:
-            domain = with_fixed(Domain(), outer)
+            domain = with_fixed(Domain(), self._around_aggregate(node))
             for clause in node.clauses:
+                if clause.index in self._free and not self._calls:
+                    raise index_twice(clause)
                 domain = grown(domain, clause, self._context.indexing)
             domain = filtered(domain, node.filter, self._context.indexing)
         except IndexSlip as slip:
@@ -378,6 +380,11 @@ class Lowering:
             node,
             help="the index set or the filter leaves nothing",
         )
+
+    def _around_aggregate(self, node: syntax.Aggregate) -> Mapping[str, tuple[int, str]]:
+        """The indices with one member that an aggregate stands under; in a definition its own go before them."""
+        own = {clause.index for clause in node.clauses} if self._calls else ()
+        return {name: member for name, member in self._fixed.items() if name not in own}
 
     @property
     def _stands_alone(self) -> bool:

@@ -231,16 +231,37 @@ def _unfold(
         if not isinstance(line.node, _IN_INSTANCE):
             _refuse(work, line, "in the group of a `use` stand knowns, equations and guesses")
             continue
-        target = line.node.left if isinstance(line.node, syntax.Equation) else None
-        if isinstance(target, syntax.Reference) and target.owner is None and target.subscripts is None:
-            own.add(target.name)
-        elif isinstance(line.node, syntax.Guess):
+        target = line.node.left if isinstance(line.node, syntax.Equation) else line.node.target
+        if isinstance(target, syntax.Reference) and (first := _first_name(target)) in instance.shared:
+            work.diagnostics.append(_shared_in_instance(line, target, first, instance))
+            continue
+        if isinstance(line.node, syntax.Guess):
             own.add(_sets(line))
+        elif isinstance(target, syntax.Reference) and target.owner is None and target.subscripts is None:
+            own.add(target.name)
         work.placed.append(Placed(line, scope, instance, heads))
     outer = work.unfolding
     work.unfolding = (*outer, node.template)
     _walk(template.body, _closed(instance), (), frozenset(own), work)
     work.unfolding = outer
+
+
+def _first_name(reference: syntax.Reference) -> str:
+    """The name that a reference begins with."""
+    while reference.owner is not None:
+        reference = reference.owner
+    return reference.name
+
+
+def _shared_in_instance(
+    line: syntax.Statement, target: syntax.Reference, name: str, instance: Scope
+) -> Diagnostic:
+    return error(
+        "shared-in-instance",
+        f"`{name}` is shared, so it is no quantity of `{instance.text}` alone",
+        Label(line.span(target.start, target.end)),
+        help=f"write this line outside the group, where it counts for all, or take `{name}` out of `shared`",
+    )
 
 
 def _sets(statement: syntax.Statement) -> str:
