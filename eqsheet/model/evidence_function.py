@@ -19,6 +19,7 @@ from eqsheet.model.evaluate import (
     STEPS,
     TRUTH,
     UNDERFLOW,
+    Evidence,
     evaluate_with_evidence,
     interpolated_evidence,
     is_exact,
@@ -42,20 +43,78 @@ def evidence_of_outputs(
     tape: Tape, quantities: Sequence[float], literals: Sequence[float], errors: Sequence[float]
 ) -> OutputEvidence:
     """Values, sizes and error bounds of the outputs; parameters and rules as in `evaluate_with_evidence`."""
-    return (_with_errors if any(errors) else _without_errors)(tape)(quantities, literals, errors)
+    exact = 0 if any(errors) else tape.quantities
+    return _of_outputs(tape, exact)(quantities, literals, errors)
+
+
+def evidence_of_equations(tape: Tape, exact: int) -> Judge:
+    """Residuals, sizes and error bounds of equations, from a tape with the outputs left and right of each in turn.
+
+    Parameters
+    ----------
+    tape : Tape
+    exact : int
+        The first so many quantities have no errors.
+
+    Returns
+    -------
+    callable
+        Quantities, literals and errors of the quantities to left - right, the larger size and the sum of the bounds
+        of both sides, for each equation.
+    """
+    return _of_equations(tape, exact)
 
 
 @lru_cache(maxsize=MEMORY)
-def _with_errors(tape: Tape) -> Judge:
-    return _worth_compiling(tape, True)
+def _of_outputs(tape: Tape, exact: int) -> Judge:
+    return _worth_compiling(tape, exact, _Outputs())
 
 
 @lru_cache(maxsize=MEMORY)
-def _without_errors(tape: Tape) -> Judge:
-    return _worth_compiling(tape, False)
+def _of_equations(tape: Tape, exact: int) -> Judge:
+    return _worth_compiling(tape, exact, _Equations())
 
 
-def _worth_compiling(tape: Tape, errors_given: bool) -> Judge:
+class _Outputs:
+    """What is told of a tape: all outputs."""
+
+    def of(self, tape: Tape, evidence: Evidence) -> OutputEvidence:
+        """From what the interpreter says."""
+        return (
+            tuple([evidence.values[o] for o in tape.outputs]),
+            tuple([evidence.sizes[o] for o in tape.outputs]),
+            tuple([evidence.errors[o] for o in tape.outputs]),
+        )
+
+    def written(self, outputs: Sequence[int], bound: Callable[[int], str]) -> list[list[str]]:
+        """As code."""
+        return [[f"v{o}" for o in outputs], [f"s{o}" for o in outputs], [bound(o) for o in outputs]]
+
+
+class _Equations:
+    """What is told of a tape: pairs of outputs as the sides of equations."""
+
+    def of(self, tape: Tape, evidence: Evidence) -> OutputEvidence:
+        """From what the interpreter says."""
+        pairs = list(zip(tape.outputs[::2], tape.outputs[1::2]))
+        values, sizes, errors = evidence.values, evidence.sizes, evidence.errors
+        return (
+            tuple([values[a] - values[b] for a, b in pairs]),
+            tuple([max(sizes[a], sizes[b]) for a, b in pairs]),
+            tuple([errors[a] + errors[b] for a, b in pairs]),
+        )
+
+    def written(self, outputs: Sequence[int], bound: Callable[[int], str]) -> list[list[str]]:
+        """As code."""
+        pairs = list(zip(outputs[::2], outputs[1::2]))
+        return [
+            [f"v{a}-v{b}" for a, b in pairs],
+            [f"max(s{a},s{b})" for a, b in pairs],
+            [f"{bound(a)}+{bound(b)}" for a, b in pairs],
+        ]
+
+
+def _worth_compiling(tape: Tape, exact: int, told: _Outputs | _Equations) -> Judge:
     """Interprets until it has been called often enough to pay for code."""
     calls = 0
     compiled: Judge | None = None
@@ -68,34 +127,26 @@ def _worth_compiling(tape: Tape, errors_given: bool) -> Judge:
             return compiled(quantities, literals, errors)
         calls += 1
         if calls >= _CALLS_WORTH_COMPILING:
-            compiled = written_out(tape, errors_given)
-        evidence = evaluate_with_evidence(tape, quantities, literals, errors)
-        return (
-            tuple([evidence.values[o] for o in tape.outputs]),
-            tuple([evidence.sizes[o] for o in tape.outputs]),
-            tuple([evidence.errors[o] for o in tape.outputs]),
-        )
+            compiled = written_out(tape, exact, told)
+        return told.of(tape, evaluate_with_evidence(tape, quantities, literals, errors))
 
     return judge
 
 
-def written_out(tape: Tape, errors_given: bool) -> Judge:
+def written_out(tape: Tape, exact: int, told: _Outputs | _Equations | None = None) -> Judge:
     """The function of one tape.
 
     Parameters
     ----------
     tape : Tape
-    errors_given : bool
-        Whether quantities come with errors; without, all of them are taken to be zero.
+    exact : int
+        The first so many quantities are taken to have no errors.
     """
-    code = _Code(errors_given)
+    code = _Code(exact)
     for number, instruction in enumerate(tape.instructions):
         code.write(number, instruction)
-    outputs = [
-        "(" + "".join(f"{letter}{code.stands_for(letter, o)}," for o in tape.outputs) + ")"
-        for letter in "vsb"
-    ]
-    body = "\n ".join([*code.lines, f"return {','.join(outputs)}"])
+    groups = (told or _Outputs()).written(tape.outputs, code.bound)
+    body = "\n ".join([*code.lines, "return " + ",".join([f"({','.join(g)},)" for g in groups])])
     exec(compile(f"def judge(q,l,e):\n {body}\n", "<evidence>", "exec"), code.names)
     judge: Judge = code.names["judge"]
     return judge
@@ -104,8 +155,8 @@ def written_out(tape: Tape, errors_given: bool) -> Judge:
 class _Code:
     """Lines that compute value v, size s and error bound b of each instruction, by its number."""
 
-    def __init__(self, errors_given: bool) -> None:
-        self.errors_given = errors_given
+    def __init__(self, exact: int) -> None:
+        self.exact = exact
         self.lines: list[str] = []
         self.names: dict[str, Any] = {
             "R": ROUNDING,
@@ -118,12 +169,6 @@ class _Code:
         }
         self._exact: set[int] = set()  # instructions whose error is zero whatever the values
         self._measured: set[int] = set()  # instructions whose magnitude m has a name
-
-    def stands_for(self, letter: str, number: int) -> int:
-        """The number itself; errors that are always zero get a name first."""
-        if letter == "b" and number in self._exact:
-            self.lines.append(f"b{number}=0.0")
-        return number
 
     def bound(self, number: int) -> str:
         """The error bound of an instruction."""
@@ -142,10 +187,10 @@ class _Code:
         if operation == "quantity":
             self.lines.append(f"v{i}=q[{operands[0]}]; m{i}=s{i}=abs(v{i})")
             self._measured.add(i)
-            if self.errors_given:
-                self.lines.append(f"b{i}=abs(e[{operands[0]}])")
-            else:
+            if operands[0] < self.exact:
                 self._exact.add(i)
+            else:
+                self.lines.append(f"b{i}=abs(e[{operands[0]}])")
         elif operation == "literal":
             self.lines.append(f"v{i}=l[{operands[0]}]; m{i}=s{i}=abs(v{i})")
             self._measured.add(i)

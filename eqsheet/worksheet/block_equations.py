@@ -10,7 +10,7 @@ import numpy as np
 
 from eqsheet.model.branches import literal_values
 from eqsheet.model.derive import equation_partials
-from eqsheet.model.evidence_function import evidence_of_outputs
+from eqsheet.model.evidence_function import evidence_of_equations, evidence_of_outputs
 from eqsheet.model.generate import DOMAIN_ERRORS, safe_function
 from eqsheet.model.tape import Formula
 from eqsheet.solve.problem import Problem, ScalarProblem, Vector
@@ -110,9 +110,9 @@ def block_problem(
             return linearise(x)[0]
 
     def evidence(x: Vector) -> tuple[Vector, Vector, Vector]:
-        found = evidence_of_outputs(code.statements, (*x.tolist(), *parameters), literals, bounds)
-        (left, right), sizes, both = np.array(found).reshape(3, n, 2).transpose(0, 2, 1)
-        return left - right, sizes.max(axis=0), both.sum(axis=0)
+        judge = evidence_of_equations(code.statements, n)
+        residuals, sizes, both = np.array(judge((*x.tolist(), *parameters), literals, bounds))
+        return residuals, sizes, both
 
     arguments = [*parameters, *literals]
     return BlockProblem(

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 from random import Random
 
 import mpmath
@@ -13,7 +14,7 @@ from tape_reference import NoValue, reference
 from tape_strategies import PLACE, POWERS, QUANTITIES, UNITS, tapes, values
 
 from eqsheet.model.evaluate import evaluate_with_evidence
-from eqsheet.model.evidence_function import written_out
+from eqsheet.model.evidence_function import evidence_of_equations, written_out
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Tape, TapeBuilder
 
 
@@ -41,21 +42,31 @@ def test_error_bound_holds(tape: Tape, at: tuple[float, ...], shift: tuple[float
 WITH_SPECIAL = st.one_of(st.floats(), st.sampled_from([0.0, -0.0, 1.0, 1e300, 5e-324]), st.floats(0.2, 3.0))
 
 
-@given(tapes(), st.tuples(*[WITH_SPECIAL] * (QUANTITIES + 1)), st.sampled_from([0.0, 1e-13]))
+@given(tapes(), st.tuples(*[WITH_SPECIAL] * (QUANTITIES + 1)), st.integers(0, QUANTITIES))
 @settings(max_examples=1000, deadline=None)
-def test_written_out_evidence_is_the_interpreted_one(tape: Tape, at: tuple[float, ...], scale: float) -> None:
+def test_written_out_evidence_is_the_interpreted_one(tape: Tape, at: tuple[float, ...], exact: int) -> None:
     quantities, literals = at[:QUANTITIES], at[QUANTITIES:]
-    # No error put in is exactly 0, also of what is infinite.
-    errors = [scale * abs(q) if scale else 0.0 for q in quantities]
+    errors = [0.0 if k < exact else 1e-13 * abs(q) for k, q in enumerate(quantities)]
     try:
         evidence = evaluate_with_evidence(tape, quantities, literals, errors)
     except (ValueError, OverflowError) as problem:
         with pytest.raises(type(problem)):
-            written_out(tape, bool(scale))(quantities, literals, errors)
+            written_out(tape, exact)(quantities, literals, errors)
         return
     wanted = [[part[o] for o in tape.outputs] for part in (evidence.values, evidence.sizes, evidence.errors)]
-    found = written_out(tape, bool(scale))(quantities, literals, errors)
+    found = written_out(tape, exact)(quantities, literals, errors)
     assert repr([list(part) for part in found]) == repr(wanted)
+    # The same outputs as sides of equations, each with the first one.
+    sides = replace(tape, outputs=tuple(side for o in tape.outputs for side in (o, tape.outputs[0])))
+    of_equations = evidence_of_equations(sides, exact)
+    first = of_equations(quantities, literals, errors)
+    for _ in range(30):
+        again = of_equations(quantities, literals, errors)
+    assert repr(first) == repr(again)
+    values, sizes, bounds = wanted
+    assert repr(first[0]) == repr(tuple(v - values[0] for v in values))
+    assert repr(first[1]) == repr(tuple(max(s, sizes[0]) for s in sizes))
+    assert repr(first[2]) == repr(tuple(b + bounds[0] for b in bounds))
 
 
 OPERATIONS = [
