@@ -24,22 +24,23 @@ WELL_INSIDE = 2.0**-36
 
 
 class Interior:
-    """The open box of a problem.
+    """The open box of a problem."""
 
-    Attributes
-    ----------
-    bounded : bool
-        Whether there is any bound at all; where not, every method is the identity.
-    """
-
-    __slots__ = ("_bounds", "bounded", "lower", "magnitude", "upper")
+    __slots__ = ("_bounded", "_bounds", "lower", "magnitude", "upper")
 
     def __init__(self, problem: Problem) -> None:
         self.lower = problem.lower
         self.upper = problem.upper
         self.magnitude = problem.magnitude
-        self.bounded = bool((self.lower > -np.inf).any() or (self.upper < np.inf).any())
+        self._bounded: bool | None = None
         self._bounds: list[tuple[int, float, float]] | None = None
+
+    @property
+    def bounded(self) -> bool:
+        """Whether there is any bound at all; where not, every method is the identity."""
+        if self._bounded is None:
+            self._bounded = bool((self.lower > -np.inf).any() or (self.upper < np.inf).any())
+        return self._bounded
 
     def contains(self, x: Vector) -> bool:
         """Whether x lies strictly inside."""
@@ -109,7 +110,7 @@ class Interior:
 
     def resting(self, x: Vector) -> tuple[int, ...]:
         """Indices of the unknowns that rest on a bound to rounding."""
-        if not self.bounded or self._holds_well(x):
+        if self._holds_well(x) or not self.bounded:
             return ()
         low = x - self.lower <= RESTING * np.maximum(np.abs(self.lower), self.magnitude)
         high = self.upper - x <= RESTING * np.maximum(np.abs(self.upper), self.magnitude)

@@ -9,7 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from math import hypot, inf, sqrt
-from operator import truediv
+from operator import add, truediv
 from typing import overload
 
 import numpy as np
@@ -64,7 +64,9 @@ def _walk(problem: Problem, written: WrittenStep, start: Vector, trail: Trail) -
     floors = (WEIGHT_FLOOR * problem.magnitude).tolist()
     mean = sqrt(problem.n)
     newton_step, correct, arguments = written.step, written.correction, written.arguments
-    x: list[float] = interior.enter(start).tolist()
+    x: list[float] = start.tolist()
+    if not interior.holds(x):
+        x = interior.enter(start).tolist()
     _, step, numbers = newton_step(x, arguments)
     damping, limiting, contraction = 0.0, -1, inf
     last_step: Sequence[float] = ()
@@ -83,7 +85,7 @@ def _walk(problem: Problem, written: WrittenStep, start: Vector, trail: Trail) -
         if at_rest or (settled and contraction < QUICK and rest * (norm / last_norm) ** 2 <= SETTLED):
             point = x
             if not at_rest:
-                point = [a + d for a, d in zip(x, step)]
+                point = list(map(add, x, step))
                 way.append((point, 1.0, -1))
             outcome = _finished(problem, interior, trail, way, contraction, slow_steps)
             if outcome is not None or at_rest:
@@ -195,7 +197,7 @@ def _trial(
     interior: Interior, x: Sequence[float], step: Sequence[float], damping: float, norm: float
 ) -> tuple[list[float], int]:
     """As `Interior.cut`."""
-    trial = [a + damping * d for a, d in zip(x, step)]
+    trial = list(map(add, x, step)) if damping == 1.0 else [a + damping * d for a, d in zip(x, step)]
     if interior.holds(trial):
         return trial, -1
     cut, limiting = interior.cut(np.array(x), damping * np.array(step), norm)
