@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from math import inf
 
 from eqsheet.solve.chandrupatla import Bracket, chandrupatla
@@ -53,8 +53,16 @@ def bracketing(problem: ScalarProblem, start: float, trail: Trail) -> Outcome:
     return trail.close(Status.POLE, jump, scaled_residual(problem, jump, value, 0.0))
 
 
-def sign_changes(problem: ScalarProblem, start: float, trail: Trail) -> Iterator[Bracket]:
-    """Changes of sign between neighbouring samples and at edges of the domain, nearest to `start` first."""
+def sign_changes(
+    problem: ScalarProblem, start: float, trail: Trail, further: Sequence[float] = ()
+) -> Iterator[Bracket]:
+    """Changes of sign between neighbouring samples and at edges of the domain, nearest to `start` first.
+
+    Parameters
+    ----------
+    further : sequence of float
+        Samples besides those of `sample_points`; those outside the bounds are left out.
+    """
     origin = enter(problem, start)
     value = problem.residual(origin)
     _note(problem, origin, value, trail)
@@ -62,8 +70,10 @@ def sign_changes(problem: ScalarProblem, start: float, trail: Trail) -> Iterator
         yield Bracket(origin, value, origin, value)
     upward = _Walk(problem, origin, value, trail)
     downward = _Walk(problem, origin, value, trail)
-    above = [x for x in sample_points(problem, origin) if x > origin]
-    below = [x for x in sample_points(problem, origin) if x < origin][::-1]
+    inside = {x for x in further if problem.lower < x < problem.upper}
+    points = sorted(inside.union(sample_points(problem, origin)))
+    above = [x for x in points if x > origin]
+    below = [x for x in points if x < origin][::-1]
     i = j = 0
     while i < len(above) or j < len(below):
         if j >= len(below) or (i < len(above) and above[i] - origin <= origin - below[j]):

@@ -73,10 +73,29 @@ def other_roots(
 def scalar_roots(
     problem: ScalarProblem, known: Sequence[float], most: int = 8, budget: Budget = DEFAULT_BUDGET
 ) -> tuple[Outcome, ...]:
-    """As `other_roots` for one unknown: the roots behind the changes of sign, nearest to the start first."""
+    """As `other_roots` for one unknown: the roots behind the changes of sign, nearest to the start first.
+
+    A root of its own changes the sign, so that samples close to either side of those known show a further one even
+    where it is next to them.
+    """
     found: list[Outcome] = []
     trail = Trail("bracketing", problem.start, budget)
-    for bracket in sign_changes(problem, problem.start, trail):
+    more = True
+    while more and len(found) < most and not trail.spent:
+        # Once again with what is beside the roots just found.
+        roots = [*known, *(float(other.x[0]) for other in found)]
+        new = _behind_changes(problem, roots, most - len(found), budget, trail)
+        found += new
+        more = bool(new)
+    return tuple(found)
+
+
+def _behind_changes(
+    problem: ScalarProblem, known: Sequence[float], most: int, budget: Budget, trail: Trail
+) -> list[Outcome]:
+    """Roots that are none of `known`, from one walk over the samples."""
+    found: list[Outcome] = []
+    for bracket in sign_changes(problem, problem.start, trail, _beside(problem, known)):
         if len(found) >= most or trail.spent:
             break
         x, _ = chandrupatla(problem.residual, bracket).better
@@ -84,7 +103,18 @@ def scalar_roots(
         roots = [*known, *(float(other.x[0]) for other in found)]
         if outcome.solved and all(_differ(outcome.x, np.array([root]), problem.magnitude) for root in roots):
             found.append(outcome)
-    return tuple(found)
+    return found
+
+
+def _beside(problem: ScalarProblem, roots: Sequence[float]) -> list[float]:
+    """Points to either side of each root, from its own size down to where two roots would be one."""
+    halvings = range(1, 20)
+    return [
+        root + side * max(abs(root), problem.magnitude) * 2.0**-k
+        for root in roots
+        for k in halvings
+        for side in (-1.0, 1.0)
+    ]
 
 
 def _another(

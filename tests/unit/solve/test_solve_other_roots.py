@@ -74,3 +74,21 @@ def test_the_deflated_equations_have_no_value_at_the_known_root():
     with np.errstate(invalid="ignore"):
         at_the_root = deflated(swapped(), [np.array([2.0, 3.0])]).residual(np.array([2.0, 3.0]))
     assert not np.isfinite(at_the_root).any()
+
+
+@pytest.mark.parametrize("gap", [0.1, 0.01, 1e-4])
+def test_a_root_next_to_the_known_one_is_found(gap):
+    """Both lie between two samples that are taken from a start far off."""
+    p = scalar(lambda x: (x - 1.0) * (x - 1.0 - gap), lambda x: 2 * x - 2.0 - gap, 1.77)
+    for known, other in ((1.0, 1.0 + gap), (1.0 + gap, 1.0)):
+        (found,) = scalar_roots(p, [known])
+        assert float(found.x[0]) == pytest.approx(other, rel=1e-11)
+
+
+def test_roots_next_to_those_found_on_the_way_are_found_too():
+    p = scalar(
+        lambda x: (x - 1.0) * (x - 1.01) * (x - 1.02),
+        lambda x: (x - 1.0) * (x - 1.01) + (x - 1.0) * (x - 1.02) + (x - 1.01) * (x - 1.02),
+        5.0,
+    )
+    assert sorted(float(o.x[0]) for o in scalar_roots(p, [1.02])) == pytest.approx([1.0, 1.01], rel=1e-10)
