@@ -113,6 +113,9 @@ def newton(problem: Problem, start: Vector, trail: Trail) -> Outcome:
             return trail.close(Status.BUDGET)
         step = -factor.solve(residual)
         norm = _norm(step)
+        if norm == 0.0:
+            # A step that vanishes in floating point changes nothing.
+            return finish(problem, interior, trail, x, residual, jacobian, factor, slow_steps)
         rest = float((np.abs(step * weights) / floored(x, problem)).max()) if norm < NEAR else np.inf
         slow_steps = slow_steps + 1 if MULTIPLE < rest / last_rest < SLOW else 0
         if rest <= AT_REST and (last_step_due(rest, norm / last_norm) or rest > SLOW * last_rest):

@@ -47,6 +47,21 @@ def test_bounds_are_kept_strictly_at_every_evaluation():
     assert (points < upper).all()
 
 
+def test_a_step_that_vanishes_in_floating_point_ends_the_iteration():
+    """Terms, slopes and the typical size of the first unknown are at the end of the range of floats."""
+    p = problem(
+        lambda x: [x[0] + 1e-200, (x[1] - 1.0) * x[0] + 1e-200],
+        lambda x: [[1e-20, 0], [x[1], 1e-20]],
+        [0.0, 1.0],
+        magnitude=[5e-324, 1.0],
+        sizes=lambda x: np.full(2, 1e-200),
+    )
+    with np.errstate(all="ignore"):
+        outcome = run(p)
+    assert outcome.status is not Status.CONVERGED
+    assert np.isfinite(outcome.x).all()
+
+
 def test_a_start_outside_the_bounds_is_moved_inside():
     seen = []
     p = problem(
