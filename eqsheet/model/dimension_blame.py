@@ -15,6 +15,7 @@ from eqsheet.model.dimension_propagation import (
     demand_row,
 )
 from eqsheet.model.dimension_rules import KEEPS, LIKE, Demand, Exponent, Form
+from eqsheet.model.dimension_suspects import Suspect, suspects
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 
@@ -68,6 +69,8 @@ class Clash:
         The quantity the other text consists of, or -1.
     literal : bool
         Whether the guilty text is a single literal.
+    suspects : tuple of Suspect
+        Knowns whose unit, were it another, would make the formula fit.
     """
 
     formula: int
@@ -83,6 +86,7 @@ class Clash:
     innocent: tuple[Part, ...]
     bare: int
     literal: bool
+    suspects: tuple[Suspect, ...]
 
 
 # --- where a dimension comes from ---------------------------------------------------------------------------
@@ -299,7 +303,22 @@ def describe_clash(
         innocent=innocent,
         bare=bare,
         literal=judge.formula.tape.instructions[guilty][0] in ("literal", "const"),
+        suspects=suspects(lines, found, index, _changes(judge, guilty, bare, guilty_parts, excess)),
     )
+
+
+def _changes(
+    judge: _Judge, guilty: int, bare: int, parts: tuple[Part, ...], excess: Dimension
+) -> dict[int, Dimension]:
+    """Factors that would make a clash go away: on the quantity that stands alone, else on those of the guilty text."""
+    if not parts:
+        return {bare: excess} if bare >= 0 else {}
+    if judge.operands_alike(guilty):
+        # The terms of a sum fail together.
+        return {}
+    return {
+        part.quantity: (DIMENSIONLESS / excess) ** (1 / Fraction(part.power)) for part in parts if part.power
+    }
 
 
 def _guilty_side(judge: _Judge, demand: Demand) -> tuple[int, int]:

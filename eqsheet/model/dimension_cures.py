@@ -18,14 +18,24 @@ from eqsheet.units.dimension_names import described, dimension_word, suggested_u
 MOST_NAMED = 3
 
 
-def cure_for(clash: Clash, formula: Formula, result: DimensionResult, names: Sequence[str], text: str) -> str:
-    """Advice on the clash, in the words of the worksheet; `text` is the formula's logical line."""
+def cure_for(
+    clash: Clash, formula: Formula, result: DimensionResult, names: Sequence[str], text: str, suspects: str
+) -> str:
+    """Advice on the clash, in the words of the worksheet.
+
+    Parameters
+    ----------
+    text : str
+        The formula's logical line.
+    suspects : str
+        Which knowns may have the wrong unit; said where no slip in the formula itself explains the clash.
+    """
     guilty = text[slice(*clash.place)]
     read_as_unit = _unit_that_is_a_name(clash, formula, names)
     if read_as_unit:
         return read_as_unit
     if clash.literal and clash.expected is not None:
-        return _unit_for_literal(guilty, clash.expected, clash.found)
+        return _joined(_unit_for_literal(guilty, clash.expected, clash.found), suspects)
     missing = DIMENSIONLESS / clash.excess
     gravity = _gravity(missing)
     if len(clash.guilty) > 1 or any(part.power != 1 for part in clash.guilty):
@@ -38,9 +48,18 @@ def cure_for(clash: Clash, formula: Formula, result: DimensionResult, names: Seq
     if clash.bare < 0 and opposite and clash.against is not None:
         return f"it would fit with {' or with '.join(opposite)} in `{shortened(text[slice(*clash.against)])}`"
     if clash.against is None and clash.expected == DIMENSIONLESS:
-        return f"divide `{shortened(guilty)}` by a quantity or value that is {described(clash.excess)} too"
+        divide = f"divide `{shortened(guilty)}` by a quantity or value that is {described(clash.excess)} too"
+        return _joined(divide, suspects)
+    makes_up = _made_up_for(missing, result, names)
+    sentence = f"`{shortened(guilty)}` lacks a factor in {missing.text}"
+    if makes_up:
+        return sentence + makes_up
     alone = len(clash.guilty) == 1 and clash.guilty[0].power == 1
-    return _factor(guilty, missing, result, names, alone)
+    return _joined("" if alone else sentence, suspects)
+
+
+def _joined(*cures: str) -> str:
+    return "; ".join(filter(None, cures))
 
 
 def _other_power(part: Part, missing: Dimension, names: Sequence[str]) -> str:
@@ -82,20 +101,17 @@ def _unit_for_literal(guilty: str, expected: Dimension, found: Dimension | None)
     return f"give it in a unit of {word}, such as {unit}" if word else ""
 
 
-def _factor(
-    guilty: str, missing: Dimension, result: DimensionResult, names: Sequence[str], alone: bool
-) -> str:
-    """Which quantity would make up for what is missing; for a name alone nothing is said if none would."""
+def _made_up_for(missing: Dimension, result: DimensionResult, names: Sequence[str]) -> str:
+    """Which quantity would make up for what is missing; empty if none or many would."""
     fitting = [names[q] for q, dimension in enumerate(result.dimensions) if dimension == missing]
     inverse = [
         names[q] for q, dimension in enumerate(result.dimensions) if dimension == DIMENSIONLESS / missing
     ]
-    sentence = f"`{shortened(guilty)}` lacks a factor in {missing.text}"
     if 1 <= len(fitting) <= MOST_NAMED:
-        return f"{sentence}, which {_listed(fitting)} would be"
+        return f", which {_listed(fitting)} would be"
     if 1 <= len(inverse) <= MOST_NAMED:
-        return f"{sentence}; division by {_listed(inverse)} would mend that"
-    return "" if alone else sentence
+        return f"; division by {_listed(inverse)} would mend that"
+    return ""
 
 
 def _listed(names: Sequence[str]) -> str:

@@ -22,6 +22,9 @@ OPEN = "dimension-open"
 #: Names listed in one message before the rest is only counted.
 MOST_NAMES = 6
 
+#: More suspects than this accuse nobody.
+MOST_SUSPECTS = 2
+
 _REMARKS = {
     "sum": "the terms of a sum must have one dimension",
     "difference": "the terms of a difference must have one dimension",
@@ -82,8 +85,22 @@ class _Writer:
             self._headline(clash, shortened(text[slice(*clash.place)])),
             *self._labels(clash),
             notes=self._notes(clash),
-            help=cure_for(clash, formula, self.result, self.names, text),
+            help=cure_for(clash, formula, self.result, self.names, text, self._suspects(clash)),
         )
+
+    def _suspects(self, clash: Clash) -> str:
+        """Knowns that may be the culprit, if they are few enough to tell."""
+        if len(clash.suspects) > MOST_SUSPECTS:
+            return ""
+        ways = [
+            f"`{self.names[s.quantity]}`{self._on_line(s.formula)} were {described(s.needed)} ({suggested_unit(s.needed)})"
+            for s in clash.suspects
+        ]
+        return f"it would fit if {' or '.join(ways)}" if ways else ""
+
+    def _on_line(self, formula: int) -> str:
+        span = self.statement(formula).whole
+        return f" on line {span.line}" if span.source.numbered else ""
 
     def _headline(self, clash: Clash, guilty: str) -> str:
         if clash.found is None or (clash.against is not None and clash.expected is None):
