@@ -14,7 +14,16 @@ import numpy as np
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.aggregate_parts import ENTRY, is_part
 from eqsheet.model.families import Family, FamilyReference, Numbering, with_fixed, written_name
-from eqsheet.model.indexing import Codes, Domain, Indexing, IndexSlip, member_text, placed, subscript
+from eqsheet.model.indexing import (
+    Codes,
+    Domain,
+    Indexing,
+    IndexSlip,
+    member_text,
+    no_set_with,
+    placed,
+    subscript,
+)
 from eqsheet.model.placed import Placed, Scope, is_hidden
 from eqsheet.model.scope import NameTable, OfInstance
 from eqsheet.model.spelling import did_you_mean
@@ -127,17 +136,12 @@ class Binder:
             return found
         family = self.numbering.families.get(key.path)
         if family is None:
-            self._unknown(key, place, start, end)
+            if not self._memberless(key, place, domain, start, end):
+                self._unknown(key, place, start, end)
             raise Unbound
-        full = with_fixed(domain, key.fixed)
-        try:
-            codes = [
-                placed(subscript(node, full, self.indexing), family.sets[k], node, self.indexing)
-                for k, node in enumerate(key.nodes)
-            ]
-        except IndexSlip as slip:
-            self._add(slip.finding.at(place.statement))
-            raise Unbound from None
+        codes = self._codes(key, family.sets, place, domain, start, end)
+        if codes is None:
+            raise Unbound
         numbers = family.numbers(codes, domain.size)
         missing = np.flatnonzero(numbers < 0)
         if missing.size:
@@ -189,6 +193,52 @@ class Binder:
         if diagnostic not in self._diagnostics:
             self._diagnostics.append(diagnostic)
 
+    def _codes(
+        self,
+        key: FamilyReference,
+        sets: Sequence[str | None],
+        place: Placed,
+        domain: Domain,
+        start: int,
+        end: int,
+    ) -> list[Codes | int] | None:
+        """The codes of the subscripts over the sets of the slots; None where one is wrong, which is said."""
+        full = with_fixed(domain, key.fixed)
+        codes = []
+        for k, (node, of) in enumerate(zip(key.nodes, sets)):
+            try:
+                found = subscript(node, full, self.indexing)
+                if found.name and of is None:
+                    raise no_set_with(found.name, node, self.indexing)
+                codes.append(placed(found, of or "", node, self.indexing))
+            except IndexSlip as slip:
+                self._add(key.found_at(slip.finding, k, start, end).at(place.statement))
+                return None
+        return codes
+
+    def _memberless(self, key: FamilyReference, place: Placed, domain: Domain, start: int, end: int) -> bool:
+        """Say what is wrong with a reference to a family without members; whether it is one."""
+        sets = self.numbering.memberless.get(key.path)
+        if sets is None or not sets or key in self._broken:
+            return False
+        codes = self._codes(key, sets, place, domain, start, end)
+        if codes is None:
+            return True
+        firsts = [int(np.broadcast_to(np.asarray(one), (domain.size,))[0]) for one in codes]
+        texts = [member_text(of or "", first, self.indexing) for of, first in zip(sets, firsts)]
+        name = written_name(key.path, texts)
+        at = entry_text(domain, 0, self.indexing)
+        self._add(
+            error(
+                "no-such-member",
+                f"there is no `{name}`" + (f" (at {at})" if at else ""),
+                Label(place.statement.span(start, end)),
+                notes=(f"`{key.text}` has no members",),
+                help="members are made by an index alone in the brackets, `x[i]`, or by fixed ones, `x[3]`",
+            )
+        )
+        return True
+
     def _unknown(self, key: str | FamilyReference, place: Placed, start: int, end: int) -> None:
         if key in self._broken:
             return
@@ -196,8 +246,9 @@ class Binder:
         name = key if isinstance(key, str) else key.text
         if name in self._broken:
             return
-        if self._by_name.get(name):
-            family = self._by_name[name][0]
+        families = [family for family in self._by_name.get(name, ()) if family.sets]
+        if families:
+            family = families[0]
             slots = ", ".join(s or "number" for s in family.sets)
             self._add(
                 error(
@@ -208,7 +259,7 @@ class Binder:
                 )
             )
             return
-        if name in self.numbering.plain:
+        if name in self.numbering.plain or name in self._by_name:
             self._add(error("not-a-family", f"`{name}` is not a family, so it takes no subscript", here))
             return
         if isinstance(key, FamilyReference) and len(key.path) > 1:

@@ -343,7 +343,7 @@ def _number(
             broken.update(resolved_key(keys[n], one.place) for n, _, _ in one.lowered.named)
         if one.lowered.equation is None:
             continue
-        for number, _, _ in one.lowered.named:
+        for number, start, end in one.lowered.named:
             key = keys[number]
             resolved = key if one.place.plain and isinstance(key, str) else resolved_key(key, one.place)
             if isinstance(resolved, str):
@@ -356,16 +356,17 @@ def _number(
             written_key = key.key if isinstance(key, OfInstance) else key
             # A path written out, `supply.dP`, refers to what the template makes; so does a line of an
             # instance's group.
-            makes = not isinstance(key, OfInstance) and (
-                isinstance(written_key, str)
-                or (isinstance(written_key, FamilyReference) and len(written_key.path) == 1)
+            makes = (
+                not isinstance(key, OfInstance)
+                and number not in one.lowered.summed
+                and (
+                    isinstance(written_key, str)
+                    or (isinstance(written_key, FamilyReference) and len(written_key.path) == 1)
+                )
             )
-            try:
-                collector.see(resolved, one.domain, makes)
-            except IndexSlip as slip:
-                found = slip.finding.at(one.place.statement)
-                if found not in diagnostics:
-                    diagnostics.append(found)
+            finding = collector.see(resolved, one.domain, makes, (start, end))
+            if finding is not None and (found := finding.at(one.place.statement)) not in diagnostics:
+                diagnostics.append(found)
     # What is wrong with a reference that makes no member is said again, and better, when it is bound.
     collector.finish()
     collector.forget(alone - indexed)

@@ -8,11 +8,12 @@ itself (``T[i]`` over the whole domain) or fixed (``T[0]``, ``y[N+1]``); ``T[i-1
 from __future__ import annotations
 
 from collections.abc import Collection, Container, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import TypeAlias
 
 import numpy as np
 
+from eqsheet.model.findings import Finding
 from eqsheet.model.indexing import Codes, Domain, Indexing, IndexSlip, member_text, placed, subscript
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import operands_in_run
@@ -36,17 +37,30 @@ class FamilyReference:
     fixed : mapping of str to (int, str)
         Code and set of indices already decided (inside an aggregate written out); not compared, but part of
         `written`.
+    place : tuple of (int, int)
+        Where it stands in the line that named it first; other lines may name the same quantity. Not compared.
+    inherited : int
+        How many of the subscripts are those of instances around the line. Not compared.
     """
 
     path: Path
     written: tuple[str, ...]
     nodes: tuple[syntax.Expression, ...] = field(compare=False)
     fixed: Mapping[str, tuple[int, str]] = field(compare=False, default_factory=dict)
+    place: tuple[int, int] = field(compare=False, default=(0, 0))
+    inherited: int = field(compare=False, default=0)
 
     @property
     def text(self) -> str:
         """The name without subscripts."""
         return ".".join(name for name, _ in self.path)
+
+    def found_at(self, finding: Finding, slot: int, start: int, end: int) -> Finding:
+        """What was found of a subscript, placed where the reference stands between `start` and `end`."""
+        first, last = self.place
+        if slot < self.inherited or last - first != end - start:
+            return replace(finding, start=start, end=end)
+        return replace(finding, start=finding.start - first + start, end=finding.end - first + start)
 
 
 @dataclass(frozen=True)
@@ -125,11 +139,14 @@ class Numbering:
         Of quantities without subscripts and owners.
     families : mapping of Path to Family
     total : int
+    memberless : mapping of Path to (tuple of (str or None))
+        Families that are referred to and have no members, with the set of each slot; None where nothing tells it.
     """
 
     plain: Mapping[str, int]
     families: Mapping[Path, Family]
     total: int
+    memberless: Mapping[Path, tuple[str | None, ...]] = field(default_factory=dict)
 
     def names(self, indexing: Indexing) -> tuple[str, ...]:
         """Names by number."""
@@ -150,35 +167,55 @@ class FamilyCollector:
         self.sets: dict[Path, list[str | None]] = {}
         self._members: dict[Path, list[Codes]] = {}
         self._waiting: list[tuple[FamilyReference, Domain]] = []
+        self._by_name: dict[Path, list[set[str]]] = {}
+        self._declared: set[Path] = set()
 
     def declare(self, path: Path, sets: Sequence[str], codes: Codes) -> None:
         """Members that a table makes."""
         self.sets[path] = list(sets)
+        self._declared.add(path)
         self._members.setdefault(path, []).append(codes.reshape(-1, len(sets)))
 
-    def see(self, reference: FamilyReference, domain: Domain, makes: bool) -> None:
+    def see(
+        self, reference: FamilyReference, domain: Domain, makes: bool, place: tuple[int, int] = (0, 0)
+    ) -> Finding | None:
         """Note a reference; the sets of its slots now, its members (where it `makes` any) in `finish`.
 
-        Raises
-        ------
-        IndexSlip
+        Parameters
+        ----------
+        place : tuple of (int, int)
+            Where it stands in its line, for what is wrong with it.
         """
         slots = self.sets.setdefault(reference.path, [None] * len(reference.nodes))
         for k, node in enumerate(reference.nodes):
-            found = subscript(node, with_fixed(domain, reference.fixed), self._indexing)
-            if found.name:
-                continue
-            if slots[k] is None:
-                slots[k] = found.set
-            elif slots[k] != found.set:
-                placed(found, slots[k] or "", node, self._indexing)
+            try:
+                found = subscript(node, with_fixed(domain, reference.fixed), self._indexing)
+                if found.name:
+                    if slots[k] is None:
+                        self._by_name.setdefault(reference.path, [set() for _ in slots])[k].add(found.name)
+                    continue
+                if slots[k] is None:
+                    slots[k] = found.set
+                elif slots[k] != found.set:
+                    placed(found, slots[k] or "", node, self._indexing)
+            except IndexSlip as slip:
+                return reference.found_at(slip.finding, k, *place)
         if makes:
             self._waiting.append((reference, domain))
+        return None
 
     def finish(self) -> list[IndexSlip]:
         """Work the members out, once all slots are known; slips found on the way."""
         slips: list[IndexSlip] = []
+        for path in self._with_other_subscripts():
+            del self.sets[path]
+            self._by_name.pop(path, None)
+        for path, names in self._by_name.items():
+            slots = self.sets[path]
+            slots[:] = [self._set_of(n) if s is None else s for s, n in zip(slots, names)]
         for reference, domain in self._waiting:
+            if reference.path not in self.sets:
+                continue
             indices = {*domain.arrays, *reference.fixed}
             if not all(makes_members(node, indices) for node in reference.nodes):
                 continue
@@ -187,6 +224,35 @@ class FamilyCollector:
             except IndexSlip as slip:
                 slips.append(slip)
         return slips
+
+    def _with_other_subscripts(self) -> set[Path]:
+        """Paths that have the name of a family with another number of subscripts.
+
+        The family is the one that a table makes, else that which lines over an index make, else that which most
+        lines make, else the first.
+        """
+        weights: dict[Path, list[int]] = {path: [1, 0, 0] for path in self._declared}
+        for reference, domain in self._waiting:
+            weight = weights.setdefault(reference.path, [0, 0, 0])
+            weight[1] = max(weight[1], bool(domain.arrays))
+            weight[2] += 1
+        alike: dict[tuple[str, ...], list[Path]] = {}
+        for path in weights:
+            alike.setdefault(tuple(name for name, _ in path), []).append(path)
+        several = [paths for paths in alike.values() if len(paths) > 1]
+        return {path for paths in several for path in paths if path != max(paths, key=weights.__getitem__)}
+
+    def _set_of(self, names: Collection[str]) -> str | None:
+        """The set that a slot is over where only members by name stand: the one that has most of them.
+
+        Of several that have them all it makes no difference which is taken.
+        """
+        counts = {
+            name: sum(member in one.positions for member in names)
+            for name, one in self._indexing.sets.items()
+        }
+        best = max(counts.values(), default=0)
+        return min(name for name, count in counts.items() if count == best) if best else None
 
     def forget(self, names: Collection[str]) -> None:
         """Take back the families of some names: they are quantities, given a subscript by mistake."""
@@ -225,7 +291,8 @@ class FamilyCollector:
             if family is not None:
                 families[paths[name]] = family
                 first += family.size
-        return Numbering(numbers, families, first)
+        memberless = {path: tuple(sets) for path, sets in self.sets.items() if path not in families}
+        return Numbering(numbers, families, first, memberless)
 
     def _family(self, path: Path, first: int) -> Family | None:
         gathered = self._members[path]

@@ -292,6 +292,18 @@ def placed(indices: Indices, set_name: str, node: syntax.Expression, indexing: I
     return indices.codes
 
 
+def no_set_with(name: str, node: syntax.Expression, indexing: Indexing) -> IndexSlip:
+    """What to say of a subscript that stands for a member, where no set has one of that name."""
+    members = [member for one in indexing.sets.values() for member in one.members]
+    return IndexSlip(
+        "no-such-member",
+        f"`{name}` is no index, no whole-number known and no member of a set",
+        node,
+        did_you_mean(name, members)
+        or "the members of a set are the names of its `rows`; a quantity by itself has a plain name, `x_A`",
+    )
+
+
 def member_text(set_name: str, code: int, indexing: Indexing) -> str:
     """A member as written in brackets: quoted where it is not a name."""
     if not set_name:

@@ -54,6 +54,9 @@ class Lowering:
     conditions : list of ConditionMet
     parts : list of Part
         Equations of large sums and the like.
+    exist : set of int
+        Provisional numbers of the quantities named elsewhere than as the members that an index of a sum over a
+        range runs through: such a sum takes the members there are, and makes none.
     """
 
     def __init__(
@@ -63,6 +66,7 @@ class Lowering:
         self.findings: list[Finding] = []
         self.conditions: list[ConditionMet] = []
         self.parts: list[Part] = []
+        self.exist: set[int] = set()
         self.first_unit: Unit | None = None
         self._context = context
         self._names = names
@@ -75,6 +79,7 @@ class Lowering:
         self._free = indices.free
         self._fixed = dict(indices.fixed)
         self._around = frozenset((*indices.free, *indices.fixed))
+        self._running: frozenset[str] = frozenset()
         self.of_instance = False
         self._written_out: dict[tuple[str, tuple[int, ...]], int] = {}
 
@@ -217,7 +222,13 @@ class Lowering:
                 node,
                 help=f"make it a parameter with a unit: `{self._empirical}(..., {node.name} in UNIT)`",
             )
-        return self.builder.quantity(self.number_of(key), self._place(node))
+        number = self.number_of(key)
+        if isinstance(key, str) or not any(
+            isinstance(s, syntax.Reference) and s.subscripts is None and s.dotted in self._running
+            for s in key.nodes
+        ):
+            self.exist.add(number)
+        return self.builder.quantity(number, self._place(node))
 
     def number_of(self, key: str | FamilyReference) -> int:
         """Provisional number of a quantity, of the instance's where the line is read in an instance's name."""
@@ -237,7 +248,8 @@ class Lowering:
             path.append((part.name, len(own)))
             subscripts.extend(own)
         written = tuple(canonical(s, self._fixed) for s in subscripts)
-        return FamilyReference(tuple(path), written, tuple(subscripts), dict(self._fixed))
+        place = (node.start, node.end)
+        return FamilyReference(tuple(path), written, tuple(subscripts), dict(self._fixed), place)
 
     def _index(self, node: syntax.Reference, place: Place2) -> int:
         """An index as a number."""
@@ -339,7 +351,7 @@ class Lowering:
         used = names_in((*node.clauses, node.filter))
         if used & set(self._free):
             raise NeedsMembers
-        outer = self._fixed
+        outer, outside = self._fixed, self._running
         try:
             domain = with_fixed(Domain(), self._around_aggregate(node))
             for clause in node.clauses:
@@ -359,6 +371,7 @@ class Lowering:
         place = self._place(node)
         parts: list[int] = []
         inner = [clause.index for clause in node.clauses]
+        self._running = outside.union(n for n in inner if not domain.sets[n])
         for entry in range(domain.size):
             members = {n: (int(domain.arrays[n][entry]), domain.sets[n]) for n in inner}
             self._fixed = {**outer, **members}
@@ -369,7 +382,7 @@ class Lowering:
                     f"written out, this formula has over {LARGEST_FORMULA} operations",
                     node,
                 )
-        self._fixed = outer
+        self._fixed, self._running = outer, outside
         if parts:
             return self._join(JOINED[node.function], parts, place)
         if node.function in _EMPTY:

@@ -71,6 +71,8 @@ class LoweredStatement:
         Provisional numbers of the quantities it names, with start and end of the first place.
     conditions_name : tuple of (int, int, int)
         The same for quantities that only its validity conditions name.
+    summed : frozenset of int
+        Provisional numbers of members that it names in sums over ranges only, so that it does not make them.
     unit_hints : tuple of (int, Unit)
         Units in which it writes a quantity.
     curve_hints : tuple of (int, Unit)
@@ -87,6 +89,7 @@ class LoweredStatement:
     shows: tuple[ShowMeant, ...] = ()
     named: tuple[tuple[int, int, int], ...] = ()
     conditions_name: tuple[tuple[int, int, int], ...] = ()
+    summed: frozenset[int] = frozenset()
     unit_hints: tuple[tuple[int, Unit], ...] = ()
     curve_hints: tuple[tuple[int, Unit], ...] = ()
     uses_gauge: bool = False
@@ -138,7 +141,7 @@ def lower_equation(
         if not math.isfinite(value) and not by_member:
             outside = outside_curve(formula.tape, values)
             if outside is not None:
-                place = formula.places[outside.argument]
+                place = outside.place(formula)
                 work.findings.append(
                     Finding("outside-curve", outside.message, *place, help=OUTSIDE_CURVE_HELP)
                 )
@@ -161,6 +164,7 @@ def lower_equation(
         equation=item,
         named=_named(formula),
         conditions_name=conditions_name,
+        summed=frozenset(work.builder.quantities).difference(work.exist),
         unit_hints=hints,
         curve_hints=tuple(_units_of_curves(formula)) if context.curves else (),
         uses_gauge=uses_gauge(work),

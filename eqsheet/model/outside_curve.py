@@ -11,7 +11,7 @@ from typing import Any
 from eqsheet.model.evaluate import used_instructions
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.interpolation import slack
-from eqsheet.model.tape import Tape
+from eqsheet.model.tape import Formula, Tape
 from eqsheet.units.display import format_value
 from eqsheet.units.unit import Unit
 
@@ -25,14 +25,20 @@ class OutsideCurve:
 
     Attributes
     ----------
-    argument : int
-        The instruction of the argument.
+    reader, argument : int
+        The instructions that read the curve, and of the argument.
     message : str
         Curve, value and range.
     """
 
+    reader: int
     argument: int
     message: str
+
+    def place(self, formula: Formula) -> tuple[int, int]:
+        """The place of the argument in the line; that of the whole call where the argument is one named before."""
+        (start, end), (first, last) = formula.places[self.argument], formula.places[self.reader]
+        return (start, end) if first <= start and end <= last else (first, last)
 
 
 @lru_cache(maxsize=1 << 14)
@@ -66,7 +72,7 @@ def outside_curve(tape: Tape, values: Sequence[Any]) -> OutsideCurve | None:
         low, high = interpolant.ranges[position]
         room = slack(interpolant.axes[position])
         if not low - room <= value <= high + room:
-            return OutsideCurve(argument, _message(interpolant, position, value))
+            return OutsideCurve(reader, argument, _message(interpolant, position, value))
     return None
 
 

@@ -68,12 +68,16 @@ class Scope:
         if not scope.path:
             return key
         if isinstance(key, str):
-            return FamilyReference((*scope.path, (key, 0)), scope.written, scope.nodes)
+            return FamilyReference(
+                (*scope.path, (key, 0)), scope.written, scope.nodes, inherited=len(scope.nodes)
+            )
         return FamilyReference(
             (*scope.path, *key.path),
             (*scope.written, *key.written),
             (*scope.nodes, *key.nodes),
             key.fixed,
+            key.place,
+            len(scope.nodes) + key.inherited,
         )
 
     @property

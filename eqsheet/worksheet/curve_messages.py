@@ -39,7 +39,7 @@ def outside_curve_diagnostic(
     found = outside_curve(tape, results)
     if found is None:
         return None
-    place = Label(system.statements[formula.statement].span(*formula.places[found.argument]))
+    place = Label(system.statements[formula.statement].span(*found.place(formula)))
     notes = (f"{quoted(wanted)} cannot be found",) if wanted else ()
     return error("outside-curve", found.message, place, notes=notes, help=HELP)
 
