@@ -10,7 +10,7 @@ from eqsheet.model.evaluate import evaluate
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.outside_curve import HELP, curve_arguments, outside_curve, range_text, written
 from eqsheet.model.system import EquationSystem
-from eqsheet.model.tape import Formula, operands_of
+from eqsheet.model.tape import Formula, Tape, operands_of
 from eqsheet.worksheet.places import quoted
 
 #: Codes that say a curve makes a solution impossible, wherever the search starts.

@@ -10,6 +10,7 @@ from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note, warni
 from eqsheet.model.branches import literal_values
 from eqsheet.model.dimension_of import dimensions_of
 from eqsheet.model.evaluate import evaluate
+from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.no_value import no_value
 from eqsheet.model.system import EquationSystem, Place
 from eqsheet.model.tape import Formula
@@ -443,10 +444,17 @@ def start_note(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
 
     A block that was not solved says so itself, where a start could have helped.
     """
+    if not blind_names(system, run):
+        return []
+    place = min((system.equations[e].place for e in run.equations), key=lambda p: (p.statement, p.start))
+    return start_note_at(system, run, place)
+
+
+def start_note_at(system: EquationSystem, run: BlockRun, place: Place) -> list[Diagnostic]:
+    """`start_note` where the first place of the block's equations is known."""
     names = blind_names(system, run)
     if not names or run.result is None or not run.result.solved:
         return []
-    place = min((system.equations[e].place for e in run.equations), key=lambda p: (p.statement, p.start))
     return [
         note(
             "started-without-guess",
@@ -457,15 +465,16 @@ def start_note(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
     ]
 
 
-def blind_names(system: EquationSystem, run: BlockRun) -> list[str]:
+def blind_names(system: EquationSystem, run: BlockRun) -> Sequence[str]:
     """Names of the unknowns started without a guess, where a start matters.
 
     An unknown between bounds, or told by an equation from the starts of others, needs none and is not named.
     """
     result = run.result
     if result is None or result.start is None or result.method in ("closed form", "linear"):
-        return []
-    return [system.names[run.unknowns[i]] for i in result.start.blind]
+        return ()
+    blind = result.start.blind
+    return LazySequence([(len(blind), lambda i: system.names[run.unknowns[blind[i]]])])
 
 
 def _was(names: Sequence[str]) -> str:

@@ -2,28 +2,26 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Sequence
-from typing import cast
 
 import numpy as np
 from numpy.typing import NDArray
 
 from eqsheet.model.branches import settle, switches
-from eqsheet.model.evaluate import evaluate_arrays
 from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.linear import is_linear_in
-from eqsheet.model.tape import Formula, Tape
+from eqsheet.model.tape import Formula
 from eqsheet.solve.ladder import solve_block
 from eqsheet.solve.linear import linear_step
 from eqsheet.solve.trail import Budget, Trail
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.array_equations import ArrayBlock, Shape
+from eqsheet.worksheet.curve_ranges import argument_ranges
 from eqsheet.worksheet.group_equations import GroupedEquations
 from eqsheet.worksheet.group_guesses import GuessArrays
+from eqsheet.worksheet.group_starts import group_starts
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.solve_block import BlockResult, Known, judged, solve_equations
-from eqsheet.worksheet.starting_values import GOLDEN_SECTION, WIDE, Start, starting_values
 
 Numbers = NDArray[np.int64]
 Array = NDArray[np.float64]
@@ -41,6 +39,7 @@ def solve_group_block(
     errors: Array,
     guesses: Guesses,
     arrays: GuessArrays,
+    firsts: Numbers,
     dimensions: Sequence[Dimension | None],
     budget: Budget,
 ) -> BlockResult:
@@ -61,6 +60,8 @@ def solve_group_block(
     guesses : Guesses
     arrays : GuessArrays
         The same as in `guesses`.
+    firsts : ndarray
+        Numbers of the first members of all families, ascending; quantities that are no family among them.
     """
     apart = [int(n) for n in numbers[numbers < equations.written]]
     own = set(unknowns) if apart else set()
@@ -70,9 +71,8 @@ def solve_group_block(
         return solve_equations(everything, unknowns, known, guesses, dimensions, budget)
     shapes = equations.shapes(numbers, written)
     columns = np.asarray(unknowns)
-    start = _start(shapes, columns, arrays, values, equations.part)
-    if start is None:
-        start = starting_values(unknowns, everything, known.values, guesses, dimensions)
+    ranges = argument_ranges(unknowns, written, known.values) if written else {}
+    start = group_starts(shapes, columns, values, arrays, ranges, firsts, equations.part, dimensions)
     problem = ArrayBlock(shapes, columns, values, errors).problem(start)
     if _linear(shapes, columns, len(values)):
         outcome = linear_step(problem, problem.start, Trail("linear", problem.start, budget))
@@ -89,76 +89,6 @@ def _with(formulas: Sequence[Formula], numbers: Numbers, settled: dict[int, Form
         return settled[number] if number in settled else formulas[number]
 
     return LazySequence([(len(numbers), formula)])
-
-
-def _start(
-    shapes: Sequence[Shape],
-    unknowns: Numbers,
-    arrays: GuessArrays,
-    values: Array,
-    is_part: NDArray[np.bool_],
-) -> Start | None:
-    """The start, where all unknowns have a guess or bounds on both sides and no curve has a say in it; else None.
-
-    Parts of large sums need none.
-    """
-    if any(i[0] in ("curve", "surface") for shape in shapes for i in shape.tape.instructions):
-        return None
-    near = arrays.near[unknowns]
-    low, high = arrays.lower[unknowns], arrays.upper[unknowns]
-    assumed = np.flatnonzero(np.isnan(near))
-    if len(assumed):
-        near = np.where(np.isnan(near), _between(low, high), near)
-        if not np.isfinite(near).all():
-            near = _with_parts(near, unknowns, shapes, values, is_part)
-            assumed = assumed[~is_part[unknowns[assumed]]]
-        if not np.isfinite(near).all():
-            return None
-    low, high = np.where(np.isnan(low), -math.inf, low), np.where(np.isnan(high), math.inf, high)
-    magnitude = np.abs(near)
-    if not magnitude.all():
-        return None
-    # Arrays serve as the sequences of floats they are; tuples of a million would take long to make.
-    starts, lower, upper, sizes = (cast(tuple[float, ...], one) for one in (near, low, high, magnitude))
-    return Start(starts, lower, upper, sizes, tuple(assumed.tolist()))
-
-
-def _with_parts(
-    near: Array, unknowns: Numbers, shapes: Sequence[Shape], values: Array, is_part: NDArray[np.bool_]
-) -> Array:
-    """Start values with those of the parts of large sums, which follow from the others."""
-    at = values.copy()
-    at[unknowns] = near
-    waiting = unknowns[np.isnan(near) & is_part[unknowns]]
-    made = [
-        (shape, shape.quantities[:, slot])
-        for shape in shapes
-        if (slot := _alone_on_the_left(shape.tape)) is not None and is_part[shape.quantities[:, slot]].all()
-    ]
-    # Level by level: parts, parts of parts, and so on.
-    left = len(waiting) + 1
-    while np.isnan(at[waiting]).any() and int(np.isnan(at[waiting]).sum()) < left:
-        left = int(np.isnan(at[waiting]).sum())
-        for shape, targets in made:
-            right = shape.tape.outputs[1]
-            found = evaluate_arrays(shape.tape, list(at[shape.quantities.T]), shape.literals)[right]
-            at[targets] = np.where(np.isnan(at[targets]), found, at[targets])
-    return at[unknowns]
-
-
-def _alone_on_the_left(tape: Tape) -> int | None:
-    """The slot of the quantity that the left side is."""
-    operation, *rest = tape.instructions[tape.outputs[0]]
-    return int(rest[0]) if operation == "quantity" else None
-
-
-def _between(low: Array, high: Array) -> Array:
-    """Points inside finite bounds (n,), as `starting_values` takes them; nan where a side is open."""
-    part = 0.35 + 0.3 * ((np.arange(len(low)) + 1.0) * GOLDEN_SECTION % 1.0)
-    with np.errstate(all="ignore"):
-        ratio = high / low
-        wide = (low > 0.0) & (ratio > WIDE)
-        return np.where(wide, low * ratio**part, low + part * (high - low))
 
 
 def _linear(shapes: Sequence[Shape], unknowns: Numbers, total: int) -> bool:

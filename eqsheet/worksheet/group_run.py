@@ -20,10 +20,11 @@ from eqsheet.worksheet.block_run import BlockRun
 from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import (
     FEW_DIGITS,
+    blind_names,
     digits_of,
     failure_diagnostic,
     few_digits_warning,
-    start_note,
+    start_note_at,
     trust_warnings,
 )
 from eqsheet.worksheet.group_block import solve_group_block
@@ -83,7 +84,8 @@ class GroupRun:
         self._failed: set[int] = set()
         self.unsolved: list[int] = []
         self._parts: list[tuple[int, Callable[[int], BlockRun]]] = []
-        self._count = 0
+        assert prepared.system.firsts is not None
+        self._firsts = prepared.system.firsts
         self._singles = Singles(prepared, self._equations)
         self._numbers = self._singles.numbers
 
@@ -150,7 +152,9 @@ class GroupRun:
             self.diagnostics += self._trust(
                 run, equations, self.value_array[columns], self.error_array[columns]
             )
-        self.diagnostics += start_note(system, run)
+        if blind_names(system, run):
+            first = system.equations[int(equations[0])].place
+            self.diagnostics += start_note_at(system, run, first)
 
     def _after(self, block: Block) -> tuple[int, ...]:
         numbers = self._numbers
@@ -183,6 +187,7 @@ class GroupRun:
             self.error_array,
             self.guesses,
             self._guess_arrays,
+            self._firsts,
             dimensions,
             self._budget,
         )

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
 from eqsheet.diagnostics.diagnostic import Label
 from eqsheet.diagnostics.source import Span
@@ -61,4 +61,10 @@ def listed(words: list[str], joint: str = "and") -> str:
 
 def quoted(names: Iterable[str], joint: str = "and") -> str:
     """Names in backquotes, listed."""
-    return listed([f"`{name}`" for name in names], joint)
+    every = names if isinstance(names, Sequence) else tuple(names)
+    # Folded here, since a large family has more names than are worth putting in quotes.
+    shown = every if len(every) <= MOST_LISTED else every[: MOST_LISTED - 1]
+    words = [f"`{name}`" for name in shown]
+    if len(shown) < len(every):
+        words.append(f"{len(every) - len(shown)} more")
+    return listed(words, joint)

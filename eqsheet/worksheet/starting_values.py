@@ -307,9 +307,13 @@ def _candidates(
             yield float(result)
 
 
+def typical_size(dimension: Dimension | None) -> float:
+    """What a quantity of a dimension is like where nothing tells."""
+    return TYPICAL.get("" if dimension is None else dimension.text, 1.0)
+
+
 def _typical(dimension: Dimension | None, position: int) -> float:
-    text = "" if dimension is None else dimension.text
-    return TYPICAL.get(text, 1.0) * (1.0 + 0.2 * ((position + 1) * GOLDEN_SECTION % 1.0))
+    return typical_size(dimension) * (1.0 + 0.2 * ((position + 1) * GOLDEN_SECTION % 1.0))
 
 
 def _inside(value: float, room: _Room, quantity: int) -> float:
@@ -333,4 +337,4 @@ def _magnitude(value: float, room: _Room, quantity: int, dimension: Dimension | 
         return abs(value)
     low, high = room.bounds(quantity)
     finite = [abs(b) for b in (low, high) if math.isfinite(b) and b != 0.0]
-    return max(finite) if finite else TYPICAL.get("" if dimension is None else dimension.text, 1.0)
+    return max(finite) if finite else typical_size(dimension)
