@@ -48,10 +48,11 @@ def stepped_diagnostic(
     system: EquationSystem, formulas: Sequence[Formula], unknowns: Collection[int]
 ) -> Diagnostic | None:
     """The error that an unknown stands in arguments of curves by steps only; None where none does."""
-    for unknown in sorted(unknowns):
+    with_steps = [formula for formula in formulas if _has_steps(formula.tape)]
+    for unknown in sorted(unknowns) if with_steps else ():
         readers = [
             (formula, reader, argument)
-            for formula in formulas
+            for formula in with_steps
             if unknown in formula.quantities
             for reader, argument in _stepped(formula, formula.quantities.index(unknown))
         ]
@@ -66,6 +67,11 @@ def stepped_diagnostic(
                 help=f"find `{system.names[unknown]}` by another equation, or read the curve smooth or `by line`",
             )
     return None
+
+
+def _has_steps(tape: Tape) -> bool:
+    """Whether a curve by steps is read."""
+    return any(tape.instructions[reader][-1].is_stepped for reader, _, _ in curve_arguments(tape))
 
 
 def _stepped(formula: Formula, slot: int) -> Iterator[tuple[int, int]]:

@@ -160,3 +160,12 @@ def test_a_rod_needs_no_guess(n: int) -> None:
     (said,) = [d for d in solution.diagnostics if d.code == "started-without-guess"]
     assert said.message.startswith("`T[1]`, `T[2]`, `T[3]`")
     assert f"and {n - 7} more" in said.message
+
+
+def test_parts_of_a_large_sum_follow_from_its_members() -> None:
+    text = f"N = {LARGE_FAMILY + 100}\nfor i in 1..N:\n    x[i]^3 + x[i] = 0.001*i + 0.01*S\nS = sum(x[i] for i in 1..N)/N"
+    solution = eqsheet.parse(text).solve()
+    assert solution.status == "solved"
+    (said,) = [d for d in solution.diagnostics if d.code == "started-without-guess"]
+    assert "sum" not in said.message
+    assert said.message.startswith("`S`, `x[1]`, `x[2]`")
