@@ -75,3 +75,56 @@ def test_a_value_without_one_good_digit_is_no_solution_and_the_other_root_is_tak
     # CODATA: 2.897 771 955 e-3 m K.
     assert solution["b"].si == pytest.approx(2.897771955e-3, rel=1e-9)
     assert "other-solution-taken" in codes(solution)
+
+
+def test_two_early_blocks_change_together() -> None:
+    """x^2 = a + b - 5.5 has a solution only where both quadratics take their larger root."""
+    solution = solved("(a-1)*(a-3) = 0\n(b-1)*(b-3) = 0\nx^2 = a + b - 5.5\na near 1.2\nb near 0.8\n")
+    assert (solution["a"].si, solution["b"].si) == pytest.approx((3.0, 3.0), rel=1e-12)
+    assert codes(solution).count("other-solution-taken") == 2
+
+
+def test_a_trouble_that_moves_on_is_followed() -> None:
+    """Each of the lines has two roots, and only the positive one lets the next have any."""
+    text = "c_0 = 2\n" + "".join(f"c_{i} - c_{i + 1} = 3*c_{i + 1}^2\n" for i in range(6))
+    solution = solved(text)
+    expected = 2.0
+    for i in range(1, 6):
+        expected = (-1.0 + math.sqrt(1.0 + 12.0 * expected)) / 6.0
+        assert solution[f"c_{i}"].si == pytest.approx(expected, rel=1e-9)
+
+
+def test_the_next_trouble_does_not_bring_the_first_one_back() -> None:
+    """The roots of x^2 = 9 serve one of two later lines each."""
+    solution = eqsheet.parse("x^2 = 9\ny = sqrt(x)\nz = sqrt(-x)\n").solve()
+    assert solution.status == "unsolved"
+    assert solution["x"].si == 3.0
+    assert solution["y"].si == pytest.approx(math.sqrt(3.0), rel=1e-12)
+
+
+def test_further_turns_of_an_angle_are_tried() -> None:
+    solution = solved("sin(t) = 0.5\nx = sqrt(t - 20)\n")
+    # The first angle beyond 20 with this sine.
+    assert solution["t"].si == pytest.approx(math.pi - math.asin(0.5) + 3.0 * math.tau, rel=1e-12)
+    solution = solved("cos(3*t + 1) + 0.01*t = 0.5\nt near 0\nx = sqrt(t - 5)\n")
+    assert solution["t"].si > 5.0
+    assert math.cos(3.0 * solution["t"].si + 1.0) + 0.01 * solution["t"].si == pytest.approx(0.5, rel=1e-12)
+
+
+def test_a_root_next_to_the_first_is_found() -> None:
+    """Alternate depths of a channel near the critical one, y + c/y^2 = E: the lower one is meant."""
+    solution = solved("y + 0.35/y^2 = 1.335\ny near 1.2\ns = sqrt(0.88 - y)\n")
+    y = solution["y"].si
+    assert 0.8 < y < 0.88
+    assert y + 0.35 / y**2 == pytest.approx(1.335, rel=1e-12)
+
+
+def test_the_same_signs_are_tried_first() -> None:
+    solution = solved("(x - 2)*(x + 2.5)*(x - 9) = 0\nx near 1.9\ny = ln(abs(x) - 2.2)\n")
+    assert solution["x"].si == pytest.approx(9.0, rel=1e-12)
+
+
+def test_only_blocks_that_matter_are_changed() -> None:
+    solution = solved("a^2 = 9\nb^2 = 16\nc = sqrt(-a)\nd = b + 1\n")
+    assert (solution["a"].si, solution["b"].si) == (-3.0, 4.0)
+    assert codes(solution).count("other-solution-taken") == 1
