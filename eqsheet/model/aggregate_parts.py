@@ -9,7 +9,7 @@ so that they are kept and solved as arrays.
 from __future__ import annotations
 
 import re
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass, fields, replace
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any
@@ -25,6 +25,7 @@ from eqsheet.syntax import nodes as syntax
 
 if TYPE_CHECKING:
     from eqsheet.model.lower import Lowering
+    from eqsheet.model.scope import QuantityKey
 
 # From this many members on; a sum of fewer is one formula.
 MANY = 1000
@@ -51,12 +52,15 @@ class Part:
     domain : Domain
     conditions : tuple of ConditionMet
         Validity conditions of definitions that the members use.
+    summed : frozenset of int
+        Provisional numbers of what an index over a range runs through, which the aggregate does not make.
     """
 
     name: str
     formula: Formula
     domain: Domain
     conditions: tuple[ConditionMet, ...]
+    summed: frozenset[int]
 
 
 def in_parts(lowering: Lowering, node: syntax.Aggregate, domain: Domain, indexing: Indexing) -> int:
@@ -247,4 +251,14 @@ def _add(
     formula = builder.formula((left, value), 0, ((left, value),))
     of_set = {name: sets[name.partition(ENTRY)[0] or ENTRY] for name in arrays}
     domain = Domain(len(entries), {**arrays, ENTRY: entries}, {**of_set, ENTRY: ""})
-    lowering.parts.append(Part(made.path[0][0], formula, domain, conditions))
+    running = {name for name, set_name in of_set.items() if not set_name and not name.startswith(ENTRY)}
+    summed = frozenset(n for n in formula.quantities if _runs(lowering.key_of(n), running))
+    lowering.parts.append(Part(made.path[0][0], formula, domain, conditions, summed))
+
+
+def _runs(key: QuantityKey, running: Collection[str]) -> bool:
+    """Whether one of the indices stands in the brackets by itself."""
+    return isinstance(key, FamilyReference) and any(
+        isinstance(node, syntax.Reference) and node.subscripts is None and node.dotted in running
+        for node in key.nodes
+    )

@@ -78,6 +78,7 @@ class Binder:
         self._statement_numbers = statement_numbers
         self._broken = broken
         self._diagnostics = diagnostics
+        self._without_member: set[object] = set()
         self._plain: dict[int, int] = {}
         for number, key in enumerate(provisional.names):
             if isinstance(key, str) and key in numbering.plain:
@@ -312,6 +313,11 @@ class Binder:
         start: int,
         end: int,
     ) -> None:
+        # A sum that runs too far wants many of them, in one place.
+        where = (key.path, id(place.statement), start, end)
+        if where in self._without_member:
+            return
+        self._without_member.add(where)
         texts = [
             member_text(s, int(np.broadcast_to(np.asarray(c), (domain.size,))[entry]), self.indexing)
             for s, c in zip(family.sets, codes)

@@ -203,6 +203,7 @@ def _parts(work: Lowering) -> tuple[PartMeant, ...]:
             equation=EquationItem(formula, place, valid=valid),
             named=_named(formula),
             conditions_name=conditions_name,
+            summed=part.summed,
             uses_gauge=_holds_gauge(formula.literals, formula.tape.instructions),
         )
         found.append(PartMeant(part.name, part.domain, lowered))

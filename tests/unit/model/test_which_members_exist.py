@@ -24,13 +24,18 @@ def place(found: Diagnostic) -> tuple[int, int]:
         ("low = min(x[j] for j in 0..4)", "x[0]"),
         ("big = sum(sum(x[j] for j in 1..k) for k in 4..6)", "x[5]"),
         ("for k in 1..2:\n    y[k] = sum(x[j] for j in k..5)", "x[5]"),
+        ("total = sum(x[j] for j in 1..100)", "x[5]"),
         ("define f(n) = sum(x[j] for j in 1..5) + n\ny = f(2 m)", "x[5]"),
     ],
 )
 def test_a_sum_over_a_range_makes_no_members(line: str, member: str) -> None:
-    found = said(FOUR + line)
-    assert {one.code for one in found} == {"no-such-member"}
-    assert found[0].message.startswith(f"there is no `{member}`")
+    assert only(FOUR + line, "no-such-member").message.startswith(f"there is no `{member}`")
+
+
+@pytest.mark.parametrize("body", ["x[j]", "x[j]^2"])
+def test_nor_does_one_over_many(body: str) -> None:
+    text = f"for i in 1..1999:\n    x[i] = i*1 m\ntotal = sum({body} for j in 1..2000)"
+    assert only(text, "no-such-member").message.startswith("there is no `x[2000]`")
 
 
 def test_a_limit_and_an_equation_take_the_same_members() -> None:
