@@ -10,17 +10,16 @@ import math
 import sys
 from collections.abc import Callable, Mapping
 from contextlib import suppress
-from dataclasses import replace
 from fractions import Fraction
 from typing import Any, Never
 
 from eqsheet.model.aggregate_parts import JOINED, MANY, Part, in_parts
 from eqsheet.model.exact import exact_value
 from eqsheet.model.families import FamilyReference, with_fixed
-from eqsheet.model.findings import Finding
 from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown, index_twice
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.literal_kind import kind_of, shortened_number
+from eqsheet.model.lowering_findings import LoweringFindings
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance, QuantityKey
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
@@ -44,7 +43,7 @@ AGGREGATE_NAMES = frozenset(("sum", "prod"))
 TRUTH_OPERATIONS = frozenset(("lt", "le", "eq", "and", "or", "not"))
 
 
-class Lowering:
+class Lowering(LoweringFindings):
     """One formula in the making.
 
     Attributes
@@ -62,20 +61,18 @@ class Lowering:
     def __init__(
         self, context: Context, names: NameTable, text: str, indices: IndexScope = NO_INDICES
     ) -> None:
+        super().__init__(text)
         self.builder = TapeBuilder()
-        self.findings: list[Finding] = []
         self.conditions: list[ConditionMet] = []
         self.parts: list[Part] = []
         self.exist: set[int] = set()
         self.first_unit: Unit | None = None
         self._context = context
         self._names = names
-        self.text = text
         self._parameters: Mapping[str, int] = {}
         self._guards: tuple[tuple[int, bool], ...] = ()
         self._calls: tuple[str, ...] = ()
         self._empirical = ""
-        self._fixed_place: Place2 | None = None
         self._free = indices.free
         self._fixed = dict(indices.fixed)
         self._around = frozenset((*indices.free, *indices.fixed))
@@ -442,11 +439,6 @@ class Lowering:
         zero = self.builder.constant(Fraction(0), place)
         return self.builder.apply("le" if holds else "lt", zero, zero, place=place)
 
-    def _note_finding(self, finding: Finding) -> None:
-        if self._fixed_place is not None:
-            finding = replace(finding, start=self._fixed_place[0], end=self._fixed_place[1])
-        self.findings.append(finding)
-
     def _call(self, node: syntax.Call) -> int:
         definition = self._context.definitions.get(node.name)
         if definition is not None:
@@ -532,70 +524,13 @@ class Lowering:
             self._parameters, self._calls, self._empirical, self._fixed_place, self.text = saved
         return result
 
-    # --- findings ---------------------------------------------------------------------------------------
-
-    def _place(self, node: syntax.Expression) -> Place2:
-        return self._fixed_place or (node.start, node.end)
-
-    def _note(
-        self,
-        code: str,
-        message: str,
-        node: syntax.Expression | syntax.UnitText | syntax.UnitFactor,
-        help: str = "",
-    ) -> None:
-        start, end = self._fixed_place or (node.start, node.end)
-        self.findings.append(Finding(code, message, start, end, help))
-
-    def _refuse(self, code: str, message: str, node: syntax.Expression, help: str = "") -> Never:
-        self._note(code, message, node, help)
-        raise Poisoned
-
-    def _refuse_count(self, node: syntax.Call, needed: int) -> Never:
-        given = len(node.arguments)
-        self._refuse(
-            "argument-count",
-            f"`{node.name}` takes {needed} argument{'s' * (needed != 1)}, not {given}",
-            node,
-        )
-
     def _refuse_call(self, node: syntax.Call) -> Never:
-        name = syntax.Reference(node.start, node.name_end, node.name)
         if node.name == "log":
-            self._refuse(
-                "log-ambiguous",
-                "`log` does not say which logarithm is meant",
-                name,
-                help="write `ln` for the natural or `log10` for the decimal logarithm",
-            )
+            self._refuse_logarithm(node)
         if node.name in self._names.numbers or node.name in self._parameters:
-            argument = self.text[node.name_end : node.end] if self._fixed_place is None else "(...)"
-            self._refuse(
-                "quantity-as-function",
-                f"`{node.name}` is a quantity, not a function",
-                name,
-                help=f"to multiply, write `{node.name}*{argument}`",
-            )
-        known = (*FUNCTION_NAMES, *self._context.definitions, *self._context.curves)
-        self._refuse(
-            "unknown-function",
-            f"there is no function `{node.name}`",
-            name,
-            help=did_you_mean(node.name, known)
-            or f"write `define {node.name}(...) = ...`, or `{node.name}*(...)` to multiply",
-        )
-
-    def _note_unit(
-        self, problem: UnitProblem, unit: syntax.UnitText, place: syntax.UnitText | syntax.UnitFactor
-    ) -> None:
-        symbol = unit.factors[problem.index].symbol if unit.factors else ""
-        start, end = self._fixed_place or (place.start, place.end)
-        help, cure = problem.help, ""
-        if problem.code == "unknown-unit" and symbol.isidentifier():
-            cure = "put spaces around the operator before it" if problem.index else "write `*` before it"
-            help = f"{help}; if `{symbol}` is to be a quantity, {cure}"
-        self.findings.append(
-            Finding(problem.code, problem.message, start, end, help, symbol=symbol, cure_if_quantity=cure)
+            self._refuse_quantity_as_function(node)
+        self._refuse_unknown_function(
+            node, (*FUNCTION_NAMES, *self._context.definitions, *self._context.curves)
         )
 
 
