@@ -30,7 +30,7 @@ from eqsheet.model.gather import (
     put_statement,
 )
 from eqsheet.model.grouping import Grouping
-from eqsheet.model.indexing import Indexing, IndexSlip, each_with_all, whole_number
+from eqsheet.model.indexing import Indexing, each_with_all, whole_number
 from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
 from eqsheet.model.lower_statements import (
     LoweredStatement,

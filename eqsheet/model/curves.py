@@ -26,6 +26,8 @@ from eqsheet.model.interpolant import (
     straight_surface,
 )
 from eqsheet.model.lower import AGGREGATE_NAMES, FUNCTION_NAMES
+from eqsheet.model.lower_definitions import parameter_slip
+from eqsheet.model.reserved_names import reserved_name
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.registry import UnitProblem, UnitTable
 from eqsheet.units.unit import Unit
@@ -112,7 +114,7 @@ def _name_taken(
     if node.name in first:
         other = Label(first[node.name].whole, "first here")
         return error("defined-twice", f"there are two curves `{node.name}`", here, other)
-    return None
+    return reserved_name(node.name, "curve", here) or parameter_slip(statement, node.parameters)
 
 
 class _Reader:

@@ -15,6 +15,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from eqsheet.model.findings import Finding
+from eqsheet.model.reserved_names import RESERVED
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import left_spine
@@ -172,8 +173,8 @@ def _check_name(clause: syntax.IndexClause, indexing: Indexing) -> None:
     """An index may bear no name that means something else where the index is used."""
     name = clause.index
     of = indexing.sets.get(clause.over.dotted) if isinstance(clause.over, syntax.Reference) else None
-    if name in ("pi", "const"):
-        other = "`pi` is the number" if name == "pi" else "`const` holds the constants"
+    if name in RESERVED:
+        other = RESERVED[name]
     elif name in indexing.sets:
         other = f"`{name}` is an index set"
     elif of is not None and name in of.positions:

@@ -20,6 +20,8 @@ from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown, index_twi
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.literal_kind import kind_of, shortened_number
 from eqsheet.model.lowering_findings import LoweringFindings
+from eqsheet.model.reserved_names import CODE as RESERVED_CODE
+from eqsheet.model.reserved_names import RESERVED
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance, QuantityKey
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import BINARY_FUNCTIONS, UNARY_FUNCTIONS, Literal, TapeBuilder
@@ -199,6 +201,7 @@ class Lowering(LoweringFindings):
         if node.owner is not None and node.owner.owner is None and node.owner.name == "const":
             return self._constant(node, place)
         if node.owner is not None or node.subscripts is not None:
+            self.check_name(node)
             return self._quantity(self.reference(node), node)
         parameter = self._parameters.get(node.name)
         if parameter is not None:
@@ -207,7 +210,17 @@ class Lowering(LoweringFindings):
             return self._index(node, place)
         if node.name == "pi":
             return self.builder.constant(math.pi, place)
+        self.check_name(node)
         return self._quantity(node.name, node)
+
+    def check_name(self, node: syntax.Reference) -> None:
+        """A quantity or instance may not bear a reserved name."""
+        first = node
+        while first.owner is not None:
+            first = first.owner
+        if first.name in RESERVED:
+            help = "choose another name"
+            self._refuse(RESERVED_CODE, f"{RESERVED[first.name]}, so no quantity can be called so", first, help)
 
     def _quantity(self, key: str | FamilyReference, node: syntax.Reference) -> int:
         """The leaf for a quantity of the worksheet."""

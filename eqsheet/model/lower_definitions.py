@@ -8,6 +8,7 @@ from collections.abc import Collection, Mapping, Sequence
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.findings import Finding
 from eqsheet.model.lower import AGGREGATE_NAMES, FUNCTION_NAMES, Lowering
+from eqsheet.model.reserved_names import reserved_name
 from eqsheet.model.scope import Context, NameTable
 from eqsheet.model.while_lowering import Poisoned
 from eqsheet.syntax import nodes as syntax
@@ -24,7 +25,10 @@ def collect_definitions(
             continue
         start = node.name_end - len(node.name)
         here = Label(statement.span(start, node.name_end))
-        if node.name in FUNCTION_NAMES or node.name in AGGREGATE_NAMES:
+        reserved = reserved_name(node.name, "definition", here)
+        if reserved is not None:
+            diagnostics.append(reserved)
+        elif node.name in FUNCTION_NAMES or node.name in AGGREGATE_NAMES:
             diagnostics.append(
                 error(
                     "definition-of-built-in",
@@ -40,24 +44,31 @@ def collect_definitions(
                     "defined-twice", f"`{node.name}` is defined twice", here, Label(other.whole, "first here")
                 )
             )
-        elif (problem := _parameter_problem(node)) is not None:
+        elif (slip := parameter_slip(statement, node.parameters)) is not None:
+            diagnostics.append(slip)
+        elif (problem := _unit_problem(node)) is not None:
             diagnostics.append(problem.at(statement))
         else:
             found[node.name] = statement
     return found
 
 
-def _parameter_problem(node: syntax.Definition) -> Finding | None:
+def parameter_slip(statement: syntax.Statement, parameters: Sequence[syntax.Parameter]) -> Diagnostic | None:
+    """What is wrong with the names of the parameters of a definition, curve or surface, if anything."""
     seen: set[str] = set()
-    for parameter in node.parameters:
+    for parameter in parameters:
+        here = Label(statement.span(parameter.start, parameter.end))
+        reserved = reserved_name(parameter.name, "parameter", here)
+        if reserved is not None:
+            return reserved
         if parameter.name in seen:
-            return Finding(
-                "parameter-twice",
-                f"the parameter `{parameter.name}` stands twice",
-                parameter.start,
-                parameter.end,
-            )
+            return error("parameter-twice", f"the parameter `{parameter.name}` stands twice", here)
         seen.add(parameter.name)
+    return None
+
+
+def _unit_problem(node: syntax.Definition) -> Finding | None:
+    """That only some of the parameters and the result have built-in units, if so."""
     with_units = [p for p in node.parameters if p.unit is not None]
     if node.result_unit is None and with_units:
         return Finding(

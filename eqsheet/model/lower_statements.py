@@ -434,6 +434,7 @@ def _key(node: syntax.Reference, work: Lowering) -> str | FamilyReference:
             Finding("name-needed", "the name of a quantity is needed here", node.start, node.end)
         )
         raise Poisoned
+    work.check_name(node)
     return node.name if _is_plain_reference(node) else work.reference(node)
 
 

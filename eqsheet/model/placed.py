@@ -12,6 +12,7 @@ from dataclasses import dataclass, field, replace
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.families import FamilyReference, Path
 from eqsheet.model.lower_statements import known_name
+from eqsheet.model.reserved_names import reserved_name
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.written_nodes import canonical, renamed
 from eqsheet.syntax import nodes as syntax
@@ -217,6 +218,10 @@ def _unfold(
     if len(work.placed) > MOST_PLACED:
         work.diagnostics.append(error("worksheet-too-large", "templates make too many statements", here))
         return
+    slip = _name_slip(statement, node.instance)
+    if slip is not None:
+        work.diagnostics.append(slip)
+        return
     instance = _instance_scope(node, scope, heads, template)
     if work.instances.setdefault(instance.text, statement) is not statement:
         work.diagnostics.append(
@@ -274,6 +279,19 @@ def _sets(statement: syntax.Statement) -> str:
     if isinstance(node, syntax.Guess) and isinstance(node.target, syntax.Reference):
         return f"near {canonical(node.target, {})}"
     return known_name(statement) or ""
+
+
+def _name_slip(statement: syntax.Statement, name: syntax.Reference) -> Diagnostic | None:
+    """What is wrong with the name of an instance, if anything."""
+    here = Label(statement.span(name.start, name.end))
+    if name.owner is not None:
+        return error(
+            "instance-name",
+            "the name of an instance has no dot",
+            here,
+            help=f"write `{name.dotted.replace('.', '_')}`, or put the `use` into the template of `{name.owner.dotted}`",
+        )
+    return reserved_name(name.name, "instance", here)
 
 
 def _instance_scope(

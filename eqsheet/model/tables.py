@@ -16,6 +16,7 @@ from eqsheet.diagnostics.shortened import shortened
 from eqsheet.model.cell_number import cell_number, cure_of_cell, cure_of_row
 from eqsheet.model.indexing import Codes, IndexSet, MemberColumn
 from eqsheet.model.literal_kind import kind_of
+from eqsheet.model.reserved_names import reserved_name
 from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import Literal
 from eqsheet.syntax import nodes as syntax
@@ -101,6 +102,10 @@ def collect_tables(
         found = slips[name]
         for position, column in enumerate(node.columns):
             here = Label(_heading(statement, node).span(column.start, column.end), "again here")
+            reserved = reserved_name(column.name, "column", Label(here.span))
+            if reserved is not None:
+                found.append(reserved)
+                continue
             other = headed.setdefault(column.name, here)
             if other is not here:
                 message = f"there are two columns `{column.name}`"

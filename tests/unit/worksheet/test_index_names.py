@@ -19,7 +19,7 @@ SPECIES = """
         ("for species in species", "an index set"),
         ("for species in 1..2", "an index set"),
         ("for pi in 1..2", "`pi` is the number"),
-        ("for const in 1..2", "the constants"),
+        ("for const in 1..2", "the physical constants"),
     ],
 )
 def test_an_index_bears_no_name_that_means_something_else(head: str, why: str) -> None:
