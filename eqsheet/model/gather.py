@@ -65,6 +65,7 @@ class Gathered:
     equations: list[EquationItem] = field(default_factory=list)
     limits: list[LimitItem | LimitGroup] = field(default_factory=list)
     guesses: list[GuessItem] = field(default_factory=list)
+    of_all_members: dict[tuple[object, ...], Place] = field(default_factory=dict)
     shown: dict[int, Unit | None] = field(default_factory=dict)
     shows: list[Formula] = field(default_factory=list)
     hints: tuple[dict[int, Unit], dict[int, Unit], dict[int, Unit], dict[int, Unit]] = field(
@@ -264,6 +265,12 @@ def _put_guesses(gathered: Gathered, one: Work, meant: GuessMeant, binder: Binde
         if members is not None:
             targets = members.tolist()
             exact = False
+            for role in meant.roles:
+                first = gathered.of_all_members.setdefault((role, *targets[:1], len(targets)), place)
+                if first != place:
+                    key = binder.resolved(meant.target, one.place)
+                    name = key if isinstance(key, str) else key.text
+                    binder.note(_guess_twice(name, role, gathered.statements, place, first))
     bound = binder.bind(lowered.named, one.place, one.domain, meant.target if targets is not None else -1)
     if gathered.grouping is not None and _keep_guesses(gathered, one, meant, bound, targets, exact):
         return
@@ -436,18 +443,18 @@ def by_precedence(
         for role in item.roles:
             first = seen.setdefault((item.quantity, role), item)
             if first is not item:
-                what = {"near": "a start value", "lower": "a lower bound", "upper": "an upper bound"}[role]
-                diagnostics.append(
-                    error(
-                        "guess-twice",
-                        f"`{names[item.quantity]}` has two guesses with {what}",
-                        Label(
-                            used[item.place.statement].span(item.place.start, item.place.end), "again here"
-                        ),
-                        Label(
-                            used[first.place.statement].span(first.place.start, first.place.end), "first here"
-                        ),
-                        help="keep one of the two lines, or switch one `off`",
-                    )
-                )
+                diagnostics.append(_guess_twice(names[item.quantity], role, used, item.place, first.place))
     return sorted(guesses, key=lambda g: not g.exact)
+
+
+def _guess_twice(
+    name: str, role: str, statements: Sequence[syntax.Statement], place: Place, first: Place
+) -> Diagnostic:
+    what = {"near": "a start value", "lower": "a lower bound", "upper": "an upper bound"}[role]
+    return error(
+        "guess-twice",
+        f"`{name}` has two guesses with {what}",
+        Label(statements[place.statement].span(place.start, place.end), "again here"),
+        Label(statements[first.statement].span(first.start, first.end), "first here"),
+        help="keep one of the two lines, or switch one `off`",
+    )
