@@ -23,7 +23,7 @@ from eqsheet.model.lower import FUNCTION_NAMES, Lowering
 from eqsheet.model.no_value import no_value
 from eqsheet.model.outside_curve import HELP as OUTSIDE_CURVE_HELP
 from eqsheet.model.outside_curve import outside_curve, written
-from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable
+from eqsheet.model.scope import NO_INDICES, IndexScope, Surroundings
 from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
 from eqsheet.model.tape import Formula, Instruction, Literal, extract
 from eqsheet.model.while_lowering import ConditionMet, Poisoned
@@ -106,27 +106,25 @@ class PartMeant:
     lowered: LoweredStatement
 
 
-def lower_equation(
-    statement: syntax.Statement,
-    context: Context,
-    names: NameTable,
-    indices: IndexScope = NO_INDICES,
-    in_instance: bool = False,
-) -> LoweredStatement:
+def _lowering(statement: syntax.Statement, around: Surroundings) -> Lowering:
+    return Lowering(around.context, around.names, statement.line.text, around.indices)
+
+
+def lower_equation(statement: syntax.Statement, around: Surroundings) -> LoweredStatement:
     """An equation, and whether it is a known: one name against an expression without names."""
     node = statement.node
     assert isinstance(node, syntax.Equation)
-    work = Lowering(context, names, statement.line.text, indices)
+    work = _lowering(statement, around)
     try:
-        work.of_instance = in_instance
+        work.of_instance = around.in_instance
         left = work.value(node.left)
         work.of_instance = False
         right = work.value(node.right)
         work.valid(node.valid)
-        target, value_node = _known_parts(node, indices, in_instance)
+        target, value_node = _known_parts(node, around.indices, around.in_instance)
         tolerance = _tolerance(node, value_node, work) if node.tolerance else None
     except Poisoned:
-        return _broken(work, names, node)
+        return _broken(work, node)
     formula = work.builder.formula((left, right), 0, ((left, right),))
     formula, valid, conditions_name = _with_conditions(formula, work.conditions)
     known, value = -1, math.nan
@@ -145,11 +143,11 @@ def lower_equation(
                 work.findings.append(
                     Finding("outside-curve", outside.message, *place, help=OUTSIDE_CURVE_HELP)
                 )
-                return _broken(work, names, node)
+                return _broken(work, node)
             name = work.text[target.start : target.end]
             alone = extract(formula, (other,))
-            work.findings.append(without_value(alone, name, work.text, context.unit_table))
-            return _broken(work, names, node)
+            work.findings.append(without_value(alone, name, work.text, around.context.unit_table))
+            return _broken(work, node)
         reads_curve = formula.tape.instructions[other][0] in ("curve", "surface")
         # `w = 2*pi*9 kHz` is an angular speed, which a unit of frequency must not show.
         reckoned_frequency = (
@@ -166,7 +164,7 @@ def lower_equation(
         conditions_name=conditions_name,
         summed=frozenset(work.builder.quantities).difference(work.exist),
         unit_hints=hints,
-        curve_hints=tuple(_units_of_curves(formula)) if context.curves else (),
+        curve_hints=tuple(_units_of_curves(formula)) if around.context.curves else (),
         uses_gauge=uses_gauge(work),
         findings=tuple(work.findings),
         parts=_parts(work),
@@ -229,17 +227,11 @@ def without_value(value: Formula, name: str, line: str, unit_table: UnitTable) -
     )
 
 
-def lower_guess(
-    statement: syntax.Statement,
-    context: Context,
-    names: NameTable,
-    indices: IndexScope = NO_INDICES,
-    in_instance: bool = False,
-) -> LoweredStatement:
+def lower_guess(statement: syntax.Statement, around: Surroundings) -> LoweredStatement:
     """A guess: one formula that holds the start value and the bounds like its target."""
     node = statement.node
     assert isinstance(node, syntax.Guess)
-    work = Lowering(context, names, statement.line.text, indices)
+    work = _lowering(statement, around)
     pattern = isinstance(node.target, syntax.NamePattern)
     try:
         parts = [
@@ -249,13 +241,13 @@ def lower_guess(
         ]
         # A pattern stands for many quantities; each gets its own formula when the names are known, and until
         # then a provisional quantity of the pattern's name holds the place.
-        work.of_instance = in_instance
+        work.of_instance = around.in_instance
         key = node.target.pattern if isinstance(node.target, syntax.NamePattern) else _key(node.target, work)
         number = work.number_of(key)
         work.of_instance = False
         target = work.builder.quantity(number, (node.target.start, node.target.end))
     except Poisoned:
-        return _broken(work, names, node)
+        return _broken(work, node)
     outputs = tuple(index for _, index in parts)
     formula = work.builder.formula(outputs, 0, tuple((target, index) for index in outputs))
     literals = [p for p in (node.near, node.lower, node.upper) if isinstance(p, syntax.Number) and p.unit]
@@ -271,17 +263,11 @@ def lower_guess(
     )
 
 
-def lower_limit(
-    statement: syntax.Statement,
-    context: Context,
-    names: NameTable,
-    indices: IndexScope = NO_INDICES,
-    in_instance: bool = False,
-) -> LoweredStatement:
+def lower_limit(statement: syntax.Statement, around: Surroundings) -> LoweredStatement:
     """A limit: its operands as outputs of one formula, all alike."""
     node = statement.node
     assert isinstance(node, syntax.Limit)
-    work = Lowering(context, names, statement.line.text, indices)
+    work = _lowering(statement, around)
     condition = node.condition
     if not isinstance(condition, syntax.Comparison):
         work.findings.append(
@@ -293,13 +279,13 @@ def lower_limit(
                 "write one comparison or chain a line: `require 0.5 m/s <= v <= 2.5 m/s`",
             )
         )
-        return _broken(work, names, node)
+        return _broken(work, node)
     try:
         operands = [work.value(operand) for operand in condition.operands]
         unit = work.first_unit
         within = None if node.within is None else work.value(node.within)
     except Poisoned:
-        return _broken(work, names, node)
+        return _broken(work, node)
     alike = [(operands[0], other) for other in operands[1:]]
     differences: tuple[int, ...] = ()
     if within is not None and not node.relative:
@@ -311,7 +297,7 @@ def lower_limit(
     # The percent sign of `within 1 %` is no unit of the quantity.
     unit = unit if node.relative else work.first_unit
     hints = [
-        (names.number(_key(reference, work)), unit)
+        (around.names.number(_key(reference, work)), unit)
         for reference in references
         if unit is not None and reference.name not in work.index_names
     ]
@@ -335,23 +321,17 @@ def lower_limit(
     )
 
 
-def lower_show(
-    statement: syntax.Statement,
-    context: Context,
-    names: NameTable,
-    indices: IndexScope = NO_INDICES,
-    in_instance: bool = False,
-) -> LoweredStatement:
+def lower_show(statement: syntax.Statement, around: Surroundings) -> LoweredStatement:
     """Shown units, each tied to its quantity by a formula so that their dimensions must agree."""
     node = statement.node
     assert isinstance(node, syntax.Show)
-    work = Lowering(context, names, statement.line.text, indices)
+    work = _lowering(statement, around)
     shows: list[ShowMeant] = []
     gauge = False
     for item in node.items:
-        one = Lowering(context, names, statement.line.text, indices)
+        one = _lowering(statement, around)
         try:
-            number = names.number(_key(item.target, one))
+            number = around.names.number(_key(item.target, one))
             unit = None if item.unit is None else one.resolve(item.unit)
         except Poisoned:
             work.findings.extend(one.findings)
@@ -559,7 +539,7 @@ def _named(formula: Formula) -> tuple[tuple[int, int, int], ...]:
     )
 
 
-def _broken(work: Lowering, names: NameTable, node: syntax.StatementNode) -> LoweredStatement:
+def _broken(work: Lowering, node: syntax.StatementNode) -> LoweredStatement:
     """Only the findings; the names still count as seen, so that they are not reported as unknown."""
     named = tuple((number, node.start, node.end) for number in work.builder.quantities)
     severe = [f for f in work.findings if f.severity is Severity.ERROR]

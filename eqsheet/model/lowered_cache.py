@@ -13,11 +13,11 @@ from eqsheet.model.lower_statements import (
     lower_limit,
     lower_show,
 )
-from eqsheet.model.scope import Context, IndexScope, NameTable
+from eqsheet.model.scope import Context, IndexScope, NameTable, Surroundings
 from eqsheet.model.while_lowering import NeedsMembers
 from eqsheet.syntax import nodes as syntax
 
-_LOWER: dict[type, Callable[..., LoweredStatement]] = {
+_LOWER: dict[type, Callable[[syntax.Statement, Surroundings], LoweredStatement]] = {
     syntax.Equation: lower_equation,
     syntax.Guess: lower_guess,
     syntax.Limit: lower_limit,
@@ -56,7 +56,8 @@ class LoweredCache:
         assert self.context is not None
         found: LoweredStatement | None
         try:
-            found = _LOWER[type(statement.node)](statement, self.context, self.names, indices, in_instance)
+            around = Surroundings(self.context, self.names, indices, in_instance)
+            found = _LOWER[type(statement.node)](statement, around)
         except NeedsMembers:
             found = None
         self.entries[key] = found

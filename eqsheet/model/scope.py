@@ -69,3 +69,23 @@ class IndexScope:
 
 
 NO_INDICES = IndexScope()
+
+
+@dataclass(frozen=True, slots=True)
+class Surroundings:
+    """What one statement is lowered against.
+
+    Attributes
+    ----------
+    context : Context
+    names : NameTable
+        Takes the quantities that the statement names.
+    indices : IndexScope
+    in_instance : bool
+        Whether the statement stands in the group of a `use`, so that the names on its left are the instance's.
+    """
+
+    context: Context
+    names: NameTable
+    indices: IndexScope = NO_INDICES
+    in_instance: bool = False
