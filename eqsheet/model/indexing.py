@@ -17,6 +17,7 @@ from numpy.typing import NDArray
 from eqsheet.model.findings import Finding
 from eqsheet.model.reserved_names import RESERVED
 from eqsheet.model.spelling import did_you_mean
+from eqsheet.model.written_nodes import canonical
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import left_spine
 
@@ -190,10 +191,10 @@ def _check_name(clause: syntax.IndexClause, indexing: Indexing) -> None:
 
 
 def filtered(domain: Domain, condition: syntax.Expression | None, indexing: Indexing) -> Domain:
-    """The part of the domain for which a condition on indices holds."""
+    """The part of the domain for which a condition on indices holds; a cell left unknown lets none hold."""
     if condition is None:
         return domain
-    return domain.where(np.broadcast_to(_holds(condition, domain, indexing), (domain.size,)))
+    return domain.where(np.broadcast_to(_truth(condition, domain, indexing)[0], (domain.size,)))
 
 
 def each_with_all(outer: Domain, inner: Domain) -> Domain:
@@ -219,7 +220,7 @@ def subscript(node: syntax.Expression, domain: Domain, indexing: Indexing) -> In
         case syntax.Number():
             return Indices(_whole_literal(node))
         case syntax.Reference() if node.subscripts is not None:
-            return _through_column(node, domain, indexing)
+            return _member_of_column(node, domain, indexing)
         case syntax.Reference():
             name = node.dotted
             if name in domain.arrays:
@@ -244,7 +245,8 @@ def subscript(node: syntax.Expression, domain: Domain, indexing: Indexing) -> In
     )
 
 
-def _through_column(node: syntax.Reference, domain: Domain, indexing: Indexing) -> Indices:
+def _column_read(node: syntax.Reference, indexing: Indexing) -> tuple[MemberColumn, syntax.Expression]:
+    """The column that a reference like ``a[l]`` is to, and what stands in its brackets."""
     column = indexing.columns.get(node.dotted)
     if column is None or node.subscripts is None or len(node.subscripts) != 1:
         raise IndexSlip(
@@ -253,11 +255,32 @@ def _through_column(node: syntax.Reference, domain: Domain, indexing: Indexing) 
             node,
             f"write `{node.name} of SET` in the heading of its rows",
         )
-    inner = placed(subscript(node.subscripts[0], domain, indexing), column.rows, node.subscripts[0], indexing)
-    codes = column.codes[np.asarray(inner)]
-    if (codes < 0).any():
-        raise IndexSlip("cell-left-unknown", f"`{node.dotted}` has a cell left unknown here", node)
+    return column, node.subscripts[0]
+
+
+def _member_of_column(node: syntax.Reference, domain: Domain, indexing: Indexing) -> Indices:
+    """The members that the cells of a column name, of which none may be left unknown."""
+    column, below = _column_read(node, indexing)
+    rows = placed(subscript(below, domain, indexing), column.rows, below, indexing)
+    codes = column.codes[np.asarray(rows)]
+    missing = np.flatnonzero(codes < 0)
+    if missing.size:
+        row = member_text(column.rows, int(np.ravel(rows)[missing[0]]), indexing)
+        text = canonical(node, {})
+        raise IndexSlip(
+            "cell-left-unknown",
+            f"`{column.name}[{row}]` names no member: its cell is left unknown",
+            node,
+            f"name one, or leave the row out with `if {text} = {text}`: no comparison with such a cell holds",
+        )
     return Indices(codes, column.of)
+
+
+def _cells_of_column(node: syntax.Reference, domain: Domain, indexing: Indexing) -> Indices:
+    """The members that the cells of a column name, -1 for a cell left unknown."""
+    column, below = _column_read(node, indexing)
+    rows = np.asarray(placed(_compared(below, domain, indexing), column.rows, below, indexing))
+    return Indices(np.where(rows < 0, -1, column.codes[rows]), column.of)
 
 
 def placed(indices: Indices, set_name: str, node: syntax.Expression, indexing: Indexing) -> Codes | int:
@@ -355,36 +378,64 @@ def _whole_literal(node: syntax.Number) -> int:
     return value
 
 
-def _holds(node: syntax.Expression, domain: Domain, indexing: Indexing) -> NDArray[np.bool_]:
+def decided(node: syntax.Expression, domain: Domain, indexing: Indexing) -> bool:
+    """Whether a condition on indices holds, in a domain of one entry.
+
+    Raises
+    ------
+    IndexSlip
+        Also where a cell left unknown decides.
+    """
+    true, false = _truth(node, domain, indexing)
+    if not (true.all() or false.all()):
+        raise IndexSlip(
+            "cell-left-unknown",
+            "this comparison cannot be decided: the cell is left unknown",
+            node,
+            "name a member in the cell, or leave its row out with a filter",
+        )
+    return bool(true.all())
+
+
+Truth: TypeAlias = tuple[NDArray[np.bool_], NDArray[np.bool_]]
+
+
+def _truth(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Truth:
+    """Where a condition holds and where it does not; neither, where a cell left unknown decides (three values, after Kleene)."""
     match node:
         case syntax.Logical():
-            parts = [_holds(operand, domain, indexing) for operand in node.operands]
-            combine = np.logical_and if node.operator == "and" else np.logical_or
-            result = parts[0]
-            for part in parts[1:]:
-                result = combine(result, part)
-            return result
+            parts = [_truth(operand, domain, indexing) for operand in node.operands]
+            true, false = parts[0]
+            for more_true, more_false in parts[1:]:
+                if node.operator == "and":
+                    true, false = true & more_true, false | more_false
+                else:
+                    true, false = true | more_true, false & more_false
+            return true, false
         case syntax.Unary() if node.operator == "not":
-            return np.logical_not(_holds(node.operand, domain, indexing))
+            true, false = _truth(node.operand, domain, indexing)
+            return false, true
         case syntax.Comparison():
             operands = [_compared(operand, domain, indexing) for operand in node.operands]
-            result = np.asarray(True)
+            true, false = np.asarray(True), np.asarray(False)
             for operator, a, b, node_a, node_b in zip(
                 node.operators, operands, operands[1:], node.operands, node.operands[1:]
             ):
                 set_name = a.set or b.set
                 left, right = placed(a, set_name, node_a, indexing), placed(b, set_name, node_b, indexing)
-                result = np.logical_and(result, _COMPARE[operator](left, right))
-            return result
+                holds = np.asarray(_COMPARE[operator](left, right))
+                # The code of a cell left unknown is negative, as whole numbers may be.
+                known = (np.asarray(left) >= 0) & (np.asarray(right) >= 0) if set_name else np.asarray(True)
+                true, false = true & holds & known, false | (~holds & known)
+            return true, false
     raise IndexSlip("filter-form", "a filter compares indices, members and whole-number knowns", node)
 
 
 def _compared(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Indices:
-    if (
-        isinstance(node, syntax.Reference)
-        and node.subscripts is not None
-        and node.dotted not in indexing.columns
-    ):
+    """A side of a comparison; unlike in brackets, cells left unknown may stand here."""
+    if isinstance(node, syntax.Reference) and node.subscripts is not None:
+        if node.dotted in indexing.columns:
+            return _cells_of_column(node, domain, indexing)
         raise IndexSlip(
             "filter-form",
             f"`{node.dotted}` is a quantity, and which members there are cannot depend on its value",

@@ -16,7 +16,7 @@ from typing import Any, Never
 from eqsheet.model.aggregate_parts import JOINED, MANY, Part, in_parts
 from eqsheet.model.exact import exact_value
 from eqsheet.model.families import FamilyReference, with_fixed
-from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown, index_twice
+from eqsheet.model.indexing import Domain, IndexSlip, decided, filtered, grown, index_twice
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.literal_kind import kind_of, shortened_number
 from eqsheet.model.lowering_findings import LoweringFindings
@@ -445,7 +445,7 @@ class Lowering(LoweringFindings):
         if names_in((node,)) & set(self._free):
             raise NeedsMembers
         try:
-            holds = filtered(with_fixed(Domain(), self._fixed), node, self._context.indexing).size > 0
+            holds = decided(node, with_fixed(Domain(), self._fixed), self._context.indexing)
         except IndexSlip as slip:
             self._note_finding(slip.finding)
             raise Poisoned from None

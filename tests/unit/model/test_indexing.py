@@ -76,6 +76,13 @@ def index_of(text: str) -> syntax.Expression:
         ("l in line if a[l] = A", {"l": [0]}),
         ("i in 1..3, k in 1..3 if i < k and not k = 3", {"i": [1], "k": [2]}),
         ("i in 1..9 if 2*i = N+1", {"i": [2]}),
+        # L2 has no b: nothing said of it holds.
+        ("l in line if b[l] = B", {"l": [0]}),
+        ("l in line if b[l] != A", {"l": [0]}),
+        ("l in line if not (b[l] != B)", {"l": [0]}),
+        ("l in line if b[l] = b[l]", {"l": [0]}),
+        ("l in line if b[l] = B or l = L2", {"l": [0, 1]}),
+        ("l in line if not (b[l] = A and l = L1)", {"l": [0, 1]}),
     ],
 )
 def test_domains(text: str, expected: dict[str, list[int]]) -> None:
@@ -95,7 +102,6 @@ def test_domains(text: str, expected: dict[str, list[int]]) -> None:
         ("n in node if n = D", "no-such-member"),
         ("n in node if n = 2", "index-mixed"),
         ("i in 1..3 if q[i] > 2", "filter-form"),
-        ("l in line if b[l] = A", "cell-left-unknown"),
     ],
 )
 def test_slips_of_domains(text: str, code: str) -> None:
