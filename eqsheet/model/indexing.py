@@ -401,7 +401,7 @@ Truth: TypeAlias = tuple[NDArray[np.bool_], NDArray[np.bool_]]
 
 
 def _truth(node: syntax.Expression, domain: Domain, indexing: Indexing) -> Truth:
-    """Where a condition holds and where it does not; neither, where a cell left unknown decides (three values, after Kleene)."""
+    """Where a condition holds and where it does not; neither, where a cell left unknown decides (after Kleene)."""
     match node:
         case syntax.Logical():
             parts = [_truth(operand, domain, indexing) for operand in node.operands]
