@@ -97,9 +97,9 @@ class GroupRun:
     @property
     def formulas(self) -> Sequence[Formula]:
         """The formulas of all equations, with the branches taken."""
-        written = tuple(self._written)
+        # The list itself, not a copy, which would be made anew for every block.
         groups = [(len(group), group.bound.at) for group in self._equations.groups]
-        return LazySequence([(len(written), written.__getitem__), *groups])
+        return LazySequence([(len(self._written), self._written.__getitem__), *groups])
 
     def solve_all(self) -> None:
         """Solve block after block; what depends on a failed block is left out."""
@@ -162,8 +162,10 @@ class GroupRun:
 
     def _contested(self, equations: Numbers) -> bool:
         contested = self.prepared.contested
+        if not contested:
+            return False
         formulas = self.formulas
-        return bool(contested) and any(q in contested for e in equations for q in formulas[int(e)].quantities)
+        return any(q in contested for e in equations for q in formulas[int(e)].quantities)
 
     def _result(self, equations: Numbers, block: Block) -> BlockResult:
         dimensions = self.prepared.dimensions
