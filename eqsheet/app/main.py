@@ -8,6 +8,7 @@ import os
 import sys
 from collections.abc import Sequence
 from contextlib import suppress
+from typing import TypeAlias
 
 from eqsheet.app import exit_status
 
@@ -30,6 +31,9 @@ exit status:
 """
 
 
+_Commands: TypeAlias = "argparse._SubParsersAction[argparse.ArgumentParser]"
+
+
 def build_parser() -> argparse.ArgumentParser:
     """The parser of the command line."""
     parser = argparse.ArgumentParser(
@@ -42,68 +46,88 @@ def build_parser() -> argparse.ArgumentParser:
     parser.add_argument("--version", action="store_true", help="print the version and stop")
     commands = parser.add_subparsers(dest="command", metavar="COMMAND", title="commands")
 
-    solve = commands.add_parser(
+    solve = _command(
+        commands,
         "solve",
-        help="solve worksheets and print the results",
-        description="Solve each worksheet and print its quantities, limits and warnings.",
-        epilog="example: eqsheet solve loop.eqsheet --with 'D = 60 mm' --free v",
-        allow_abbrev=False,
+        "solve worksheets and print the results",
+        "Solve each worksheet and print its quantities, limits and warnings.",
+        "solve loop.eqsheet --with 'D = 60 mm' --free v",
     )
-    _add_files(solve, many=True)
+    _add_files(solve)
     _add_changes(solve)
-    solve.add_argument("--json", action="store_true", help="print one JSON object a file")
+    _add_json(solve)
     solve.add_argument("--trace", action="store_true", help="print the course of the iterations too")
 
-    check = commands.add_parser(
+    check = _command(
+        commands,
         "check",
-        help="solve worksheets and print only the verdicts",
-        description="Solve each worksheet; print what is wrong with it and one line of verdict. "
+        "solve worksheets and print only the verdicts",
+        "Solve each worksheet; print what is wrong with it and one line of verdict. "
         "Fails where a limit fails or a validity range is left.",
-        epilog="example: eqsheet check *.eqsheet",
-        allow_abbrev=False,
+        "check *.eqsheet",
     )
-    _add_files(check, many=True)
+    _add_files(check)
     _add_changes(check)
-    check.add_argument("--json", action="store_true", help="print one JSON object a file")
+    _add_json(check)
 
-    blocks = commands.add_parser(
+    blocks = _command(
+        commands,
         "blocks",
-        help="show the order of solution",
-        description="Show block by block what is solved together, by which method, and what it depends on.",
-        epilog="example: eqsheet blocks loop.eqsheet",
-        allow_abbrev=False,
+        "show the order of solution",
+        "Show block by block what is solved together, by which method, and what it depends on.",
+        "blocks loop.eqsheet",
     )
-    _add_files(blocks, many=False)
+    _add_file(blocks)
     _add_changes(blocks)
-    blocks.add_argument("--json", action="store_true", help="print one JSON object")
+    _add_json(blocks)
 
-    edit = commands.add_parser(
+    edit = _command(
+        commands,
         "edit",
-        help="edit a worksheet and see what each change does",
-        description="Edit a worksheet line by line; after each change the quantities that moved are shown.",
-        epilog="example: eqsheet edit loop.eqsheet",
-        allow_abbrev=False,
+        "edit a worksheet and see what each change does",
+        "Edit a worksheet line by line; after each change the quantities that moved are shown.",
+        "edit loop.eqsheet",
     )
-    _add_files(edit, many=False)
+    _add_file(edit)
 
-    fmt = commands.add_parser(
+    fmt = _command(
+        commands,
         "fmt",
-        help="tidy the text of worksheets",
-        description="Rewrite each worksheet in canonical spacing; never changes its meaning. "
+        "tidy the text of worksheets",
+        "Rewrite each worksheet in canonical spacing; never changes its meaning. "
         "With - the tidied text goes to standard output.",
-        epilog="example: eqsheet fmt --check *.eqsheet",
-        allow_abbrev=False,
+        "fmt --check *.eqsheet",
     )
-    _add_files(fmt, many=True)
+    _add_files(fmt)
     fmt.add_argument("--check", action="store_true", help="change nothing; exit 1 if a file is not tidy")
     return parser
 
 
-def _add_files(parser: argparse.ArgumentParser, many: bool) -> None:
-    if many:
-        parser.add_argument("files", nargs="+", metavar="FILE", help="worksheet, or - for standard input")
-    else:
-        parser.add_argument("file", metavar="FILE", help="worksheet, or - for standard input")
+def _command(
+    commands: _Commands, name: str, summary: str, description: str, example: str
+) -> argparse.ArgumentParser:
+    return commands.add_parser(
+        name,
+        help=summary,
+        description=description,
+        epilog=f"example: eqsheet {example}",
+        allow_abbrev=False,
+    )
+
+
+_FILE = "worksheet, or - for standard input"
+
+
+def _add_file(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("file", metavar="FILE", help=_FILE)
+
+
+def _add_files(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("files", nargs="+", metavar="FILE", help=_FILE)
+
+
+def _add_json(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("--json", action="store_true", help="print one JSON object a file")
 
 
 def _add_changes(parser: argparse.ArgumentParser) -> None:
