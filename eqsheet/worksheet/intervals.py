@@ -2,7 +2,7 @@
 
 Source: Benhamou, Goualard, Granvilliers and Puget, Revising hull and box consistency, Int. Conf. Logic
 Programming 1999, the algorithm HC4-revise: each expression is given a range from its parts, then each part from
-its expression. What is not monotone (a sine, a curve) passes on what is certain and nothing else. A branch of an
+its expression. Of what is not monotone (a sine, a curve) see `interval_functions`. A branch of an
 `if` has no say unless it is certain to be taken: where it has no value, the other one is.
 
 The ranges hold every solution within the bounds; where one becomes empty there is none.
@@ -32,6 +32,21 @@ from eqsheet.worksheet.interval import (
     root,
     times,
     widened,
+)
+from eqsheet.worksheet.interval_functions import (
+    arc_cosine,
+    cosine,
+    of_arc_cosine,
+    of_cosine,
+    of_hyperbolic_cosine,
+    of_larger,
+    of_read,
+    of_sine,
+    of_smaller,
+    of_tangent,
+    read,
+    sine,
+    tangent,
 )
 from eqsheet.worksheet.interval_truth import FALSE, TRUE, compared, denied, joined, operands, sides
 
@@ -233,6 +248,8 @@ def _forwards(instruction: Instruction, of: Sequence[Interval]) -> Interval | No
     if operation in ("strip", "attach"):
         unit = rest[1]
         return increasing(unit.from_si if operation == "strip" else unit.to_si, of[rest[0]])
+    if operation == "curve":
+        return read(rest[1], of[rest[0]])
     if operation in _CERTAIN:
         return _CERTAIN[operation](of[rest[0]])
     if operation in COMPARISONS:
@@ -242,6 +259,16 @@ def _forwards(instruction: Instruction, of: Sequence[Interval]) -> Interval | No
     return EVERYTHING
 
 
+_HALF_TURN = (-1.0, 1.0)
+_RIGHT_ANGLES = (-math.pi / 2, math.pi / 2)
+_POSITIVE = (0.0, math.inf)
+
+
+def _length(a: Interval, b: Interval) -> Interval | None:
+    first, second = raised(a, 2.0), raised(b, 2.0)
+    return None if first is None or second is None else increasing(math.sqrt, plus(first, second), _POSITIVE)
+
+
 _OF_TWO: Mapping[str, Callable[[Interval, Interval], Interval | None]] = {
     "add": plus,
     "sub": minus,
@@ -249,10 +276,8 @@ _OF_TWO: Mapping[str, Callable[[Interval, Interval], Interval | None]] = {
     "div": over,
     "min": lambda a, b: (min(a[0], b[0]), min(a[1], b[1])),
     "max": lambda a, b: (max(a[0], b[0]), max(a[1], b[1])),
+    "hypot": _length,
 }
-_HALF_TURN = (-1.0, 1.0)
-_RIGHT_ANGLES = (-math.pi / 2, math.pi / 2)
-_POSITIVE = (0.0, math.inf)
 
 
 def _logarithm(of: Callable[[float], float]) -> Callable[[float], float]:
@@ -283,12 +308,13 @@ _RISING: Mapping[str, tuple[Callable[[float], float], Callable[[float], float], 
 _CERTAIN: Mapping[str, Callable[[Interval], Interval | None]] = {
     "neg": negated,
     "abs": magnitude,
-    "sin": lambda a: widened(-1.0, 1.0),
-    "cos": lambda a: widened(-1.0, 1.0),
-    "erf": lambda a: widened(-1.0, 1.0),
+    "sin": sine,
+    "cos": cosine,
+    "tan": tangent,
+    "erf": lambda a: increasing(math.erf, a),
     "sign": lambda a: (-1.0, 1.0),
     "cosh": lambda a: increasing(math.cosh, magnitude(a)),
-    "acos": lambda a: None if meet(a, _HALF_TURN) is None else widened(0.0, math.pi),
+    "acos": arc_cosine,
 }
 
 
@@ -299,7 +325,7 @@ def _backwards(instruction: Instruction, whole: Interval, of: list[Interval]) ->
     """Narrow the parts of one expression by its range; False where a part has no value left."""
     operation, *rest = instruction
     parts: dict[int, Interval | None] = {}
-    if operation in ("add", "sub", "mul", "div"):
+    if operation in _TURNED:
         a, b = rest
         if a == b:
             return True
@@ -311,7 +337,11 @@ def _backwards(instruction: Instruction, whole: Interval, of: list[Interval]) ->
         logarithm = _logarithm_of_base(of[rest[0]])
         back = EVERYTHING if logarithm is None else increasing(_logarithm(math.log), whole, _POSITIVE)
         if logarithm is not None:
-            parts = {rest[1]: None if back is None else _factor(back, logarithm)}
+            exponent = None if back is None else _factor(back, logarithm)
+            base = None if back is None else _factor(back, of[rest[1]])
+            parts = {rest[0]: None if base is None else increasing(math.exp, base)}
+            # The same for both, if one is the other.
+            parts[rest[1]] = exponent if rest[0] != rest[1] else parts[rest[0]]
     elif operation in _RISING:
         _, inverse, domain, image = _RISING[operation]
         back = increasing(inverse, whole, image)
@@ -323,6 +353,10 @@ def _backwards(instruction: Instruction, whole: Interval, of: list[Interval]) ->
         parts = {rest[0]: negated(whole)}
     elif operation == "abs":
         parts = {rest[0]: hull(negated(whole), whole)}
+    elif operation in _OF_ONE:
+        parts = {rest[0]: _OF_ONE[operation](whole, of[rest[0]])}
+    elif operation == "curve":
+        parts = {rest[0]: of_read(whole, rest[1], of[rest[0]])}
     elif operation in COMPARISONS:
         parts = dict(zip(rest, sides(operation, whole, of[rest[0]], of[rest[1]])))
     elif operation == "not":
@@ -336,8 +370,8 @@ def _backwards(instruction: Instruction, whole: Interval, of: list[Interval]) ->
 
 
 def _logarithm_of_base(base: Interval) -> Interval | None:
-    """Range of the logarithm of a base that is positive throughout; None of any other."""
-    return increasing(math.log, base) if base[0] > 0.0 else None
+    """Range of the logarithm of a base that is nowhere negative; None of any other."""
+    return increasing(_logarithm(math.log), base) if base[0] >= 0.0 else None
 
 
 def _of_product(whole: Interval, a: Interval, b: Interval) -> tuple[Interval | None, Interval | None]:
@@ -355,9 +389,25 @@ def _of_quotient(whole: Interval, a: Interval, b: Interval) -> tuple[Interval | 
     return times(whole, b), _factor(a, whole)
 
 
+def _not_longer(whole: Interval, a: Interval) -> Interval | None:
+    """What of `a` is no longer than the largest in `whole`."""
+    return None if whole[1] < 0.0 else meet(a, (-whole[1], whole[1]))
+
+
+# Functions of one argument: their range and that of the argument to what is left of the latter.
+_OF_ONE: Mapping[str, Callable[[Interval, Interval], Interval | None]] = {
+    "sin": of_sine,
+    "cos": of_cosine,
+    "tan": of_tangent,
+    "acos": of_arc_cosine,
+    "cosh": of_hyperbolic_cosine,
+}
 _TURNED: Mapping[str, Callable[[Interval, Interval, Interval], tuple[Interval | None, Interval | None]]] = {
     "add": lambda whole, a, b: (minus(whole, b), minus(whole, a)),
     "sub": lambda whole, a, b: (plus(whole, b), minus(a, whole)),
     "mul": _of_product,
     "div": _of_quotient,
+    "min": of_smaller,
+    "max": of_larger,
+    "hypot": lambda whole, a, b: (_not_longer(whole, a), _not_longer(whole, b)),
 }

@@ -148,3 +148,88 @@ def test_a_condition_narrows_where_its_branch_is_taken() -> None:
     assert narrow(text, {"y": (-2.0, 0.0), "x": (4.0, 5.0)})[0].empty == 0
     _, ranges = narrow("y = if x < 3 or x > 7 then -1 else 1\n", {"y": (0.0, 2.0)})
     assert holds(ranges["x"], 3.0, 7.0)
+
+
+def test_a_proof_for_values_found_before_is_worded_as_one() -> None:
+    """The other roots of the first lines would not do either, but that is not what bounds prove."""
+    found = only(
+        solve("(a-1)*(a-3) = 0\nb^2 + a*b = 4\na near 1.2\nb near 0.8\nsqrt(c) = a*b - 3.2"), "no-solution"
+    )
+    assert found.message == "no solution with the values found before: `c` from line 5"
+    assert "with a = 1, b = 1.5616 this is certain: no values satisfy line 5" in found.notes
+    assert found.help is not None and "may lead `a` and `b` to another solution" in found.help
+
+
+@pytest.mark.parametrize(
+    "before",
+    [
+        "A = pi*(2.0)^2/4",
+        "p + A = 4\np - A = 2",
+        "exp(A) + 1 = 3",
+        "A*exp(A) = 3",
+        "A^2 = 4\nA within 0 ..",
+        "sin(w) = 0.5\nA = 2 + w^2",
+    ],
+)
+def test_a_proof_that_holds_whatever_was_found_before_is_one_of_the_worksheet(before: str) -> None:
+    found = only(solve(f"{before}\nx^2 = -A"), "no-solution")
+    assert found.message.startswith("there is no solution")
+    assert any(note.startswith("this is certain: no values") for note in found.notes)
+
+
+def test_what_follows_in_one_way_from_a_value_that_may_differ_may_differ() -> None:
+    text = "(a-1)*(a-3) = 0\nb^2 + a*b = 4\na near 1.2\nb near 0.8\nv = a*b\nsqrt(c) = v - 3.2"
+    found = only(solve(text), "no-solution")
+    assert found.message == "no solution with the values found before: `c` from line 6"
+    assert found.help is not None and "may lead `v` to another solution" in found.help
+
+
+def test_a_wave_narrows_its_argument_within_the_turns_given() -> None:
+    """sin(x) = 1/2 for x from 0 to 2: only pi/6; from 2 to 9: from 5 pi/6 to 17 pi/6; cos(y) = 0 from 1 to 4: pi/2."""
+    _, ranges = narrow("sin(x) = 0.5\n", {"x": (0.0, 2.0)})
+    assert ranges["x"] == pytest.approx((math.pi / 6, math.pi / 6), rel=1e-9)
+    _, ranges = narrow("sin(x) = 0.5\n", {"x": (2.0, 9.0)})
+    assert ranges["x"] == pytest.approx((5 * math.pi / 6, 17 * math.pi / 6), rel=1e-9)
+    _, ranges = narrow("cos(y) = 0\n", {"y": (1.0, 4.0)})
+    assert ranges["y"] == pytest.approx((math.pi / 2, math.pi / 2), rel=1e-9)
+    _, ranges = narrow("tan(y) = 1\n", {"y": (2.0, 4.0)})
+    assert ranges["y"] == pytest.approx((5 * math.pi / 4, 5 * math.pi / 4), rel=1e-9)
+
+
+@pytest.mark.parametrize(
+    ("text", "bounds"),
+    [
+        ("sin(x) = 0.5", {"x": (1.0, 2.0)}),
+        ("cos(x) = -0.2", {"x": (-1.0, 1.0)}),
+        ("tan(x) = 5", {"x": (0.0, 1.0)}),
+        ("x^1.8 = 3", {"x": (2.0, math.inf)}),
+        ("max(x, y) = 2", {"x": (3.0, 4.0), "y": (0.0, 1.0)}),
+        ("cosh(x) = 2", {"x": (-1.0, 1.0)}),
+    ],
+)
+def test_what_no_part_of_a_range_gives_is_proven_impossible(
+    text: str, bounds: dict[str, tuple[float, float]]
+) -> None:
+    assert narrow(text + "\n", bounds)[0].empty == 0
+
+
+def test_powers_of_what_may_be_zero_are_turned_back() -> None:
+    """x^1.8 = 3 + y with y to 4 leaves x from 3^(1/1.8) to 7^(1/1.8), by a constant exponent and by a known one."""
+    expected = (3.0 ** (1 / 1.8), 7.0 ** (1 / 1.8))
+    bounds = {"x": POSITIVE, "y": (0.0, 4.0), "n": (1.8, 1.8)}
+    for power in ("x^1.8", "x^n"):
+        assert narrow(f"{power} = 3 + y\n", bounds)[1]["x"] == pytest.approx(expected, rel=1e-9)
+
+
+def test_a_curve_narrows_what_it_is_read_at() -> None:
+    """Head of a pump between 10 and 20 m: on the falling part only, by the points of the curve (data invented)."""
+    text = """
+curve head(Q in L/s) in m by line:
+    0 30
+    4 25
+    8 10
+H = head(Q)
+"""
+    _, ranges = narrow(text, {"Q": (0.0, math.inf), "H": (10.0, 20.0)})
+    assert ranges["Q"] == pytest.approx((4e-3 + 4e-3 / 3, 8e-3), rel=1e-9)
+    assert narrow(text, {"Q": (6e-3, 7e-3), "H": (20.0, 24.0)})[0].empty == 0
