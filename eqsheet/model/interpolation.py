@@ -123,32 +123,40 @@ def step_at(interpolant: Interpolant, arguments: Sequence[float]) -> int:
 
 
 def _inverse(interpolant: Interpolant) -> Function:
-    (axis,), pieces = interpolant.axes, interpolant.pieces
-    tolerance = slack(axis)
+    turned = _turned(interpolant)
 
     def value(t: float) -> float:
         if t != t:
             return t
-        i, rise = _place(axis, t, tolerance)
-        left, s = _solved(pieces[i], axis[i] + rise, rise / (axis[i + 1] - axis[i]))
+        _, left, s = turned(t)
         return left + s
 
     return value
 
 
 def _inverse_slope(interpolant: Interpolant) -> Function:
-    (axis,), pieces = interpolant.axes, interpolant.pieces
-    tolerance = slack(axis)
+    turned, pieces = _turned(interpolant), interpolant.pieces
 
     def value(t: float) -> float:
         if t != t:
             return t
-        i, rise = _place(axis, t, tolerance)
-        _, s = _solved(pieces[i], axis[i] + rise, rise / (axis[i + 1] - axis[i]))
+        i, _, s = turned(t)
         _, _, _, c1, c2, c3 = pieces[i]
         return 1.0 / (c1 + s * (2.0 * c2 + s * 3.0 * c3))
 
     return value
+
+
+def _turned(interpolant: Interpolant) -> Callable[[float], tuple[int, float, float]]:
+    """What finds the argument of a value: the piece it lies in, where that begins, and how far in."""
+    (axis,), pieces = interpolant.axes, interpolant.pieces
+    tolerance = slack(axis)
+
+    def found(t: float) -> tuple[int, float, float]:
+        i, rise = _place(axis, t, tolerance)
+        return i, *_solved(pieces[i], axis[i] + rise, rise / (axis[i + 1] - axis[i]))
+
+    return found
 
 
 def _solved(piece: Numbers, target: float, share: float) -> tuple[float, float]:
