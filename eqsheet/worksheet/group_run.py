@@ -17,6 +17,7 @@ from eqsheet.structure.verdict import Block
 from eqsheet.worksheet.array_equations import LARGE_BLOCK
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.block_run import BlockRun
+from eqsheet.worksheet.curve_choice import curve_choice_note
 from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import (
     FEW_DIGITS,
@@ -155,6 +156,7 @@ class GroupRun:
         if blind_names(system, run):
             first = system.equations[int(equations[0])].place
             self.diagnostics += start_note_at(system, run, first)
+        self.diagnostics += curve_choice_note(self.prepared, run, self._known, self.guesses)
 
     def _after(self, block: Block) -> tuple[int, ...]:
         numbers = self._numbers

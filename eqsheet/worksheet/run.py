@@ -19,6 +19,7 @@ from eqsheet.structure.verdict import Conflict
 from eqsheet.worksheet.block_memory import BlockMemory
 from eqsheet.worksheet.block_order import blocks_in_order
 from eqsheet.worksheet.block_run import BlockRun as BlockRun
+from eqsheet.worksheet.curve_choice import curve_choice_note
 from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
 from eqsheet.worksheet.follow_from_knowns import follow_from_knowns
@@ -123,6 +124,7 @@ def run_blocks(
                     # No start would help.
                     continue
             diagnostics += start_note(system, run)
+            diagnostics += curve_choice_note(prepared, run, known, guesses)
     verdicts = _conflicts(prepared, formulas, values, errors)
     diagnostics += [diagnostic for _, _, diagnostic in verdicts]
     _withhold(prepared, runs, values, [c for c, satisfied, _ in verdicts if not satisfied])
