@@ -18,11 +18,11 @@ from eqsheet.solve.explain import Facts, explain
 from eqsheet.solve.outcome import Status
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
 from eqsheet.units.display import default_unit
-from eqsheet.worksheet.beyond_bounds import LARGEST_BLOCK, Beyond, beyond_bounds
+from eqsheet.worksheet.beyond_bounds import Beyond, beyond_bounds
 from eqsheet.worksheet.curve_messages import curve_notes, outside_curve_diagnostic, stepped_diagnostic
 from eqsheet.worksheet.guesses import Guesses
-from eqsheet.worksheet.intervals import narrowed
 from eqsheet.worksheet.places import label_of, line_words, quoted
+from eqsheet.worksheet.proof_messages import Proof
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known
 
@@ -66,9 +66,20 @@ _CURES = {
 
 
 def failure_diagnostic(
-    system: EquationSystem, prepared: Prepared, run: BlockRun, known: Known, guesses: Guesses
+    system: EquationSystem,
+    prepared: Prepared,
+    run: BlockRun,
+    known: Known,
+    guesses: Guesses,
+    before: Sequence[BlockRun] = (),
 ) -> Diagnostic:
-    """What went wrong in a failed block: equations, terms, bounds, dependence, and what to try."""
+    """What went wrong in a failed block: equations, terms, bounds, dependence, and what to try.
+
+    Parameters
+    ----------
+    before : sequence of BlockRun
+        The blocks before it, by number from 1.
+    """
     result = run.result
     assert result is not None
     names = [system.names[q] for q in run.unknowns]
@@ -102,9 +113,8 @@ def failure_diagnostic(
     headline = _HEADLINES.get(status, "no solution found")
     if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
         headline = _AT_MINIMUM
-    proof = writer.proof()
-    if proof >= 0:
-        headline = "there is no solution" + (" within the bounds" if writer.bounded() else "")
+    proof = Proof(prepared, run, known, guesses, before)
+    headline = proof.headline or headline
     message = f"{headline}: {quoted(names)} from {where}"
     labels = [label_of(system, places[worst], guilty if len(places) > 1 else "")]
     others = sorted((p for i, p in enumerate(places) if i != worst), key=lambda p: (p.statement, p.start))
@@ -112,9 +122,9 @@ def failure_diagnostic(
     # One bound is as likely at fault as an equation; several at once rather follow from one.
     labels += shut_out[:1] + [label_of(system, p) for p in others[:8]] + shut_out[1:]
     # A best point that satisfies what nothing can satisfy lies where a term is lost to underflow.
-    notes = writer.at_best_point() if proof < 0 or writer.gaps() else []
+    notes = writer.at_best_point() if not proof or writer.gaps() else []
     notes += writer.found_beyond(beyond)
-    notes += writer.proven(proof)
+    notes += proof.notes()
     if facts is not None and facts.not_finite >= 0:
         notes += writer.not_finite(facts.not_finite)
     elif facts is not None:
@@ -125,14 +135,14 @@ def failure_diagnostic(
         notes += writer.not_finite(0) or writer.terms([0])
         notes += writer.range_tried()
     notes += writer.jump()
-    if proof < 0 and status not in _NO_START_HELPS:
+    if not proof and status not in _NO_START_HELPS:
         notes += writer.blind_start()
     notes += curve_notes(writer.formulas, writer.point(), run.unknowns)
     help = _CURES.get(
         status, "give a start value near the solution (`near`), or check sign and size of the terms"
     )
-    if proof >= 0 and beyond is None:
-        help = "no start value helps: check sign and size of the terms, and the bounds and knowns they use"
+    if proof and beyond is None:
+        help = proof.help
     return error("no-solution", message, *labels, notes=tuple(notes), help=help)
 
 
@@ -190,28 +200,6 @@ class _Writer:
             *labels,
             help="widen the bound, or check the equation and the values it uses",
         )
-
-    def bounded(self) -> bool:
-        """Whether any unknown has bounds."""
-        return any(map(math.isfinite, (b for q in self.run.unknowns for b in self.guesses.bounds(q))))
-
-    def proof(self) -> int:
-        """Position of an equation that no values within the bounds satisfy, by carrying bounds through; else -1."""
-        return -1 if len(self.run.unknowns) > LARGEST_BLOCK else self._empty(self.formulas)
-
-    def _empty(self, formulas: Sequence[Formula]) -> int:
-        bounds = [self.guesses.bounds(q) for q in self.run.unknowns]
-        return narrowed(self.run.unknowns, formulas, self.known.values, bounds, self.known.errors).empty
-
-    def proven(self, equation: int) -> list[str]:
-        """That there is no solution, and by which line."""
-        if equation < 0:
-            return []
-        place = line_words(self.system, [self.system.equations[self.run.equations[equation]].place])
-        within = " within the bounds" if self.bounded() else ""
-        alone = self._empty(self.formulas[equation : equation + 1]) >= 0
-        rest = "" if alone else " with what the other lines leave"
-        return [f"this is certain: no values{within} satisfy {place}{rest}"]
 
     def beyond(self) -> Beyond | None:
         """A solution outside the bounds, if there is one."""

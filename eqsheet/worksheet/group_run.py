@@ -141,7 +141,7 @@ class GroupRun:
         system = self.prepared.system
         if not result.solved:
             self.unsolved.append(number)
-            failure = failure_diagnostic(system, self.prepared, run, self._known, self.guesses)
+            failure = failure_diagnostic(system, self.prepared, run, self._known, self.guesses, self.runs)
             self.diagnostics.append(failure)
             if failure.code in OF_CURVES:
                 # No start would help.

@@ -118,7 +118,7 @@ def run_blocks(
                 diagnostics += trust_warnings(system, run)
             else:
                 unsolved.append(number)
-                failure = failure_diagnostic(system, prepared, run, known, guesses)
+                failure = failure_diagnostic(system, prepared, run, known, guesses, runs)
                 diagnostics.append(failure)
                 if failure.code in OF_CURVES:
                     # No start would help.
