@@ -17,7 +17,7 @@ from typing import NamedTuple
 from eqsheet.model.branches import literal_values
 from eqsheet.model.generate import value_function
 from eqsheet.model.isolate import isolate
-from eqsheet.model.tape import Formula
+from eqsheet.model.tape import Formula, Tape
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.block_plan import plan_of
 from eqsheet.worksheet.curve_ranges import Range, argument_ranges
@@ -178,6 +178,18 @@ def _between(low: float, high: float, position: int) -> float | None:
     return low + part * (high - low)
 
 
+def _stands_alone(tape: Tape, output: int, slot: int) -> bool:
+    """Whether an expression is a quantity, or that times or by a number: in which scale it is written is no matter."""
+    instructions = tape.instructions
+    operation, *rest = instructions[output]
+    while operation in ("mul", "div", "neg"):
+        factors = [i for i in rest if instructions[i][0] not in ("literal", "const")]
+        if len(factors) != 1 or (operation == "div" and factors[0] != rest[0]):
+            return False
+        operation, *rest = instructions[factors[0]]
+    return (operation, *rest) == ("quantity", slot)
+
+
 class _Propagation:
     """Lets each equation with one magnitude missing tell it, until none does.
 
@@ -220,11 +232,11 @@ class _Propagation:
         heapify(self._ready)
 
     def _turned(self, number: int) -> bool:
-        """Whether the one magnitude missing in an equation does not stand alone on a side."""
+        """Whether the one magnitude missing in an equation does not stand alone on a side, but for a factor."""
         formula = self._formulas[number]
         (quantity,) = self._missing[number]
-        alone = ("quantity", formula.quantities.index(quantity))
-        return all(formula.tape.instructions[o] != alone for o in formula.tape.outputs)
+        slot = formula.quantities.index(quantity)
+        return not any(_stands_alone(formula.tape, output, slot) for output in formula.tape.outputs)
 
     def put(self, quantity: int, start: float, after: tuple[int, int] = (0, -1)) -> None:
         """Give an unknown its start; `after` is the round and number of the equation that has told it."""

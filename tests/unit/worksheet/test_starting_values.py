@@ -5,6 +5,8 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import Any
 
+import pytest
+
 import eqsheet
 from eqsheet.model.build import build_system
 from eqsheet.syntax.parse import parse_document
@@ -73,3 +75,12 @@ def test_many_seeds() -> None:
         a, b, c = (start.values[place[f"{name}[{i}]"]] for name in "abc")
         assert abs(a + b - 3.0 * c) < 1e-14
     assert looks <= 8 * 3 * n
+
+
+@pytest.mark.parametrize(("h", "scale"), [("h", 1.0), ("1000*h", 1e-3), ("h/1000", 1e3)])
+def test_in_which_scale_an_equation_says_what_an_unknown_is_is_no_matter(h: str, scale: float) -> None:
+    """From x near 2, h is 6 by what it is, and 11 by the balance that would have to be turned for it."""
+    says, balance = f"{h} = 3*x", f"{h} - x^3 = 3"
+    for lines in ([balance, says], [says, balance]):
+        start, place, _ = started("\n".join(lines) + "\nx near 2\n")
+        assert start.values[place["h"]] == pytest.approx(6.0 * scale, rel=1e-12)
