@@ -310,3 +310,23 @@ def test_the_size_that_agrees_with_itself_is_found_from_any_other(start: float) 
 
 def test_a_size_in_a_loop_outside_the_range_is_no_solution() -> None:
     assert errors(solve(BORE + "D = bore(d)\nd = 33 mm + 0.1*D")) == ["no-solution"]
+
+
+@pytest.mark.parametrize(
+    ("use", "told"),
+    [
+        ("P = shaft(50 Hz)", ["50 Hz"]),
+        ("P = shaft(f/2)\nf = 50 Hz", ["f/2", "50 Hz"]),
+        ("P = shaft(2*pi*f)\nf = 50 Hz", []),
+        ("P = shaft(1450 rpm)", []),
+        ("P = shaft(60 1/s)", []),
+        ("n = 20 Hz\nspeed(x) = n\nx = 30 %", ["n", "speed(x)", "20 Hz"]),
+    ],
+)
+def test_a_frequency_where_a_curve_has_a_speed(use: str, told: list[str]) -> None:
+    solution = solve(
+        "curve shaft(n in rpm) in W:\n    0 0\n    4000 10\n"
+        "curve speed(x in %) in rpm:\n    0 0\n    100 3000\n" + use
+    )
+    found = [d for d in solution.diagnostics if d.code == "rpm-against-hz"]
+    assert [label.span.text for d in found for label in d.labels] == told
