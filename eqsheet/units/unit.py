@@ -64,8 +64,10 @@ class Unit:
         value = self.from_si(si)
         if value == 0.0 or not abs(value) < _LARGEST_ROUNDED:
             return value
-        # From two decimals less than one unit in the last place of the SI value leaves certain.
-        certain = -math.ceil(math.log10(math.ulp(si)) - math.log10(self.factor))
+        # From two decimals less than one unit in the last place of the SI value leaves certain. Near absolute zero it is
+        # the origin, taken off and put on again, that has been rounded most.
+        place = max(math.ulp(si), math.ulp(self.origin))
+        certain = -math.ceil(math.log10(place) - math.log10(self.factor))
         for kept in range(certain - 2, certain + 3):
             short = round(value, kept)
             if self.to_si(short) == si:
