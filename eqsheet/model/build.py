@@ -30,7 +30,8 @@ from eqsheet.model.gather import (
     put_statement,
 )
 from eqsheet.model.grouping import Grouping
-from eqsheet.model.indexing import Indexing, each_with_all, whole_number
+from eqsheet.model.index_conditions import by_condition, index_conditions
+from eqsheet.model.indexing import Domain, Indexing, each_with_all, whole_number
 from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
 from eqsheet.model.lower_statements import (
     LoweredStatement,
@@ -158,31 +159,57 @@ def _lower_all(
     for place in placed:
         statement = place.statement
         number = numbered[id(statement)][0]
-        in_instance = place.instance is not None
         domain = domains.of(place)
         if domain is None:
             lost.update(_names_at(place))
             continue
         free = visible(domain.sets)
-        indices = IndexScope(free=free) if free else NO_INDICES
-        one = cache.lowered(statement, indices, in_instance)
-        if one is not None:
+        found = _lowered(place, domain, free, cache, indexing)
+        for over, one in found:
             if one.findings and id(statement) not in said:
                 said.add(id(statement))
                 slips.extend((finding, statement) for finding in one.findings)
-            work.append(Work(place, number, domain, one))
-            work += _parts(work[-1], parts_there)
-            continue
-        for entry in range(domain.size):
-            fixed = {n: (int(domain.arrays[n][entry]), free[n]) for n in free}
-            one = cache.lowered(statement, IndexScope(fixed=fixed), in_instance)
-            assert one is not None
-            if one.findings and id(statement) not in said:
-                said.add(id(statement))
-                slips.extend((finding, statement) for finding in one.findings)
-            work.append(Work(place, number, domain.at(entry), one))
+            work.append(Work(place, number, over, one))
             work += _parts(work[-1], parts_there)
     return work
+
+
+def _lowered(
+    place: Placed, domain: Domain, free: Mapping[str, str], cache: LoweredCache, indexing: Indexing
+) -> Iterator[tuple[Domain, LoweredStatement]]:
+    """A statement lowered for the parts of its domain that need a formula of their own."""
+    statement, in_instance = place.statement, place.instance is not None
+    if not free:
+        one = cache.lowered(statement, NO_INDICES, in_instance)
+        assert one is not None, "without an index there is one member"
+        yield domain, one
+        return
+    conditions = index_conditions(statement, free, domain, indexing)
+    # The members of a limit are told in order, so they are not taken apart.
+    if not conditions or not isinstance(statement.node, syntax.Limit):
+        for over, decided in by_condition(domain, conditions, indexing):
+            one = cache.lowered(statement, IndexScope(free=free, decided=decided), in_instance)
+            if one is None:
+                yield from _member_by_member(statement, over, free, cache, in_instance)
+            else:
+                yield over, one
+        return
+    yield from _member_by_member(statement, domain, free, cache, in_instance)
+
+
+def _member_by_member(
+    statement: syntax.Statement,
+    domain: Domain,
+    free: Mapping[str, str],
+    cache: LoweredCache,
+    in_instance: bool,
+) -> Iterator[tuple[Domain, LoweredStatement]]:
+    """A statement lowered for each member by itself."""
+    for entry in range(domain.size):
+        fixed = {n: (int(domain.arrays[n][entry]), free[n]) for n in free}
+        one = cache.lowered(statement, IndexScope(fixed=fixed), in_instance)
+        assert one is not None, "with its indices fixed a member is lowered"
+        yield domain.at(entry), one
 
 
 def _names_at(place: Placed) -> Iterator[str]:

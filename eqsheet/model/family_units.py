@@ -60,7 +60,8 @@ def check_units_by_family(system: EquationSystem) -> FamilyUnits:
             if stands_in and _makes_part(formula, system):
                 continue
             numbers = tuple([family_of[q] for q in formula.quantities])
-            key = (formula.statement, formula.tape, numbers)
+            # Branches of one line may share a tape; their literals stand in different places.
+            key = (formula.statement, formula.tape, numbers, formula.places)
             if key in seen:
                 continue
             seen.add(key)

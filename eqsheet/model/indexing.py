@@ -378,23 +378,23 @@ def _whole_literal(node: syntax.Number) -> int:
     return value
 
 
-def decided(node: syntax.Expression, domain: Domain, indexing: Indexing) -> bool:
-    """Whether a condition on indices holds, in a domain of one entry.
+def holds(condition: syntax.Expression, domain: Domain, indexing: Indexing) -> NDArray[np.bool_]:
+    """Whether a condition on indices holds at the entries (size,) of the domain.
 
     Raises
     ------
     IndexSlip
         Also where a cell left unknown decides.
     """
-    true, false = _truth(node, domain, indexing)
-    if not (true.all() or false.all()):
+    true, false = (np.broadcast_to(one, (domain.size,)) for one in _truth(condition, domain, indexing))
+    if not (true | false).all():
         raise IndexSlip(
             "cell-left-unknown",
             "this comparison cannot be decided: the cell is left unknown",
-            node,
+            condition,
             "name a member in the cell, or leave its row out with a filter",
         )
-    return bool(true.all())
+    return true
 
 
 Truth: TypeAlias = tuple[NDArray[np.bool_], NDArray[np.bool_]]

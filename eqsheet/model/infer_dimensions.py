@@ -104,8 +104,20 @@ def infer_dimensions(
         for quantity, parts in sorted(open_ones.items())
     )
     dimensions = tuple(lines.dimensions[n] if n != UNKNOWN else None for n in found.state)
-    clashes = [describe_clash(lines, found, origins, index) for index in sorted(blamed)]
+    clashes = [
+        describe_clash(lines, found, origins, index) or _clash_within_statement(lines, given, blamed, index)
+        for index in sorted(blamed)
+    ]
     return DimensionResult(dimensions, origins, tuple(c for c in clashes if c is not None), links)
+
+
+def _clash_within_statement(
+    lines: Worklines, given: Mapping[int, Dimension], blamed: Collection[int], index: int
+) -> Clash | None:
+    """How a blamed formula contradicts others of its own statement, as one branch of an `if` does another."""
+    set_aside = {sibling for other in blamed if other != index for sibling in lines.siblings(other)}
+    found = propagate(lines, given, set_aside.difference(lines.siblings(index)) | {index})
+    return describe_clash(lines, found, origins_of(lines, given, found), index)
 
 
 def _take_back(

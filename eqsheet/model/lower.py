@@ -16,7 +16,7 @@ from typing import Any, Never
 from eqsheet.model.aggregate_parts import JOINED, MANY, Part, in_parts
 from eqsheet.model.exact import exact_value
 from eqsheet.model.families import FamilyReference, with_fixed
-from eqsheet.model.indexing import Domain, IndexSlip, decided, filtered, grown, index_twice
+from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown, holds, index_twice
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.literal_kind import kind_of, shortened_number
 from eqsheet.model.lowering_findings import LoweringFindings
@@ -77,6 +77,7 @@ class Lowering(LoweringFindings):
         self._empirical = ""
         self._free = indices.free
         self._fixed = dict(indices.fixed)
+        self._decided = indices.decided
         self._around = frozenset((*indices.free, *indices.fixed))
         self._running: frozenset[str] = frozenset()
         self.of_instance = False
@@ -220,7 +221,9 @@ class Lowering(LoweringFindings):
             first = first.owner
         if first.name in RESERVED:
             help = "choose another name"
-            self._refuse(RESERVED_CODE, f"{RESERVED[first.name]}, so no quantity can be called so", first, help)
+            self._refuse(
+                RESERVED_CODE, f"{RESERVED[first.name]}, so no quantity can be called so", first, help
+            )
 
     def _quantity(self, key: str | FamilyReference, node: syntax.Reference) -> int:
         """The leaf for a quantity of the worksheet."""
@@ -347,6 +350,9 @@ class Lowering(LoweringFindings):
         return result
 
     def _conditional(self, node: syntax.Conditional) -> int:
+        decided = self._decision(node.condition)
+        if decided is not None:
+            return self.value(node.then if decided else node.otherwise)
         condition = self.truth(node.condition)
         outer = self._guards
         self._guards = (*outer, (condition, True))
@@ -355,6 +361,18 @@ class Lowering(LoweringFindings):
         otherwise = self.value(node.otherwise)
         self._guards = outer
         return self.builder.apply("if", condition, then, otherwise, place=self._place(node))
+
+    def _decision(self, condition: syntax.Expression) -> bool | None:
+        """Whether a condition on indices alone holds; None for one that is not decided here."""
+        if not self._calls and (condition.start, condition.end) in self._decided:
+            return self._decided[condition.start, condition.end]
+        names = names_in((condition,))
+        if not names & set(self._fixed) or names & {*self._parameters, *self._free}:
+            return None
+        try:
+            return bool(holds(condition, with_fixed(Domain(), self._fixed), self._context.indexing)[0])
+        except IndexSlip:
+            return None
 
     def _aggregate(self, node: syntax.Aggregate) -> int:
         """A sum, product, minimum or maximum written out over its members."""
@@ -445,12 +463,12 @@ class Lowering(LoweringFindings):
         if names_in((node,)) & set(self._free):
             raise NeedsMembers
         try:
-            holds = decided(node, with_fixed(Domain(), self._fixed), self._context.indexing)
+            true = bool(holds(node, with_fixed(Domain(), self._fixed), self._context.indexing)[0])
         except IndexSlip as slip:
             self._note_finding(slip.finding)
             raise Poisoned from None
         zero = self.builder.constant(Fraction(0), place)
-        return self.builder.apply("le" if holds else "lt", zero, zero, place=place)
+        return self.builder.apply("le" if true else "lt", zero, zero, place=place)
 
     def _call(self, node: syntax.Call) -> int:
         definition = self._context.definitions.get(node.name)

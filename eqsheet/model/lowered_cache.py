@@ -65,7 +65,7 @@ class LoweredCache:
 
 
 def _signature(indices: IndexScope) -> tuple[object, ...]:
-    return tuple(sorted(indices.free.items())), tuple(sorted(indices.fixed.items()))
+    return tuple(tuple(sorted(one.items())) for one in (indices.free, indices.fixed, indices.decided))
 
 
 def _same_context(a: Context, b: Context) -> bool:

@@ -62,10 +62,13 @@ class IndexScope:
         Indices that run over a domain, with their sets (empty: whole numbers); one formula serves all members.
     fixed : mapping of str to (int, str)
         Indices that have one member here: code and set.
+    decided : mapping of (int, int) to bool
+        Conditions on indices that are decided for all members here, by their place in the line.
     """
 
     free: Mapping[str, str] = field(default_factory=dict)
     fixed: Mapping[str, tuple[int, str]] = field(default_factory=dict)
+    decided: Mapping[tuple[int, int], bool] = field(default_factory=dict)
 
 
 NO_INDICES = IndexScope()
