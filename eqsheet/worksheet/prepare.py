@@ -31,6 +31,7 @@ from eqsheet.worksheet.group_prepare import (
     structure_of_groups,
 )
 from eqsheet.worksheet.structure_messages import structure_diagnostics
+from eqsheet.worksheet.unused_templates import unused_template_diagnostics
 from eqsheet.worksheet.without_unknowns import Checked, check_without_unknowns
 
 
@@ -98,6 +99,7 @@ def prepare(
     clock = time.perf_counter
     begin = clock()
     system, found = build_system(statements, cache, freed, large_family)
+    found = (*found, *unused_template_diagnostics(statements))
     diagnostics = [*earlier, *without_echoes(found, earlier)]
     units = check_units_by_family(system)
     diagnostics += _of_a_whole(units.diagnostics, diagnostics)
