@@ -5,16 +5,26 @@ What needs a member by itself (a message, a branch) has its formula or item writ
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+import math
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
-from eqsheet.model.bind import Bound
-from eqsheet.model.evaluate import evaluate_arrays
+from eqsheet.model.bind import Bound, merged
+from eqsheet.model.evaluate import INTERPOLATED, evaluate_arrays
 from eqsheet.model.indexing import Codes, Domain
-from eqsheet.model.system import EquationItem, GuessItem, LimitItem, Place
+from eqsheet.model.specialise import specialise, specialise_formula
+from eqsheet.model.system import (
+    EquationItem,
+    Guard,
+    GuessItem,
+    LimitItem,
+    Place,
+    ToleranceOfKnown,
+    Validity,
+)
 from eqsheet.model.tape import Formula, Literal, Tape
 
 Array = NDArray[np.float64]
@@ -22,8 +32,6 @@ Array = NDArray[np.float64]
 # From this many members on a statement is kept as arrays; below, written out, it takes less time than importing
 # the library of sparse graphs.
 LARGE_FAMILY = 1000
-# Operations with branches or ranges, in which members differ.
-_DECIDED = frozenset(("if", "curve", "surface"))
 
 
 @dataclass(frozen=True)
@@ -58,6 +66,18 @@ class BoundFormula:
         numbers = tuple(self.numbers[entry].tolist())
         return replace(self.formula, quantities=numbers, literals=tuple(own))
 
+    def part(self, entries: Codes) -> BoundFormula:
+        """Some of the entries."""
+        literals = tuple(v[entries] if isinstance(v, np.ndarray) else v for v in self.literals)
+        return BoundFormula(self.formula, self.numbers.T[:, entries].T, literals)
+
+    def specialised(self, branches: Mapping[int, bool]) -> BoundFormula:
+        """With each ``if`` in `branches`, by instruction, replaced by the branch taken."""
+        held = specialise(self.formula.tape, branches)
+        literals = tuple(self.literals[k] for k in held.literals)
+        numbers = self.numbers.T[list(held.quantities)].T
+        return BoundFormula(specialise_formula(self.formula, branches), numbers, literals)
+
     def literals_of(self, entries: Codes) -> tuple[Array, ...]:
         """Values of the literals at some entries, an array each."""
         return tuple(
@@ -80,6 +100,10 @@ class EquationGroup:
         SI values of the known.
     member : callable
         Position of an entry to what tells it from the others, see `EquationItem.member`.
+    tolerance : ToleranceOfKnown or None
+    valid : tuple of ValidityGroup
+    unsettled : BoundFormula or None
+        The formula with the conditions that knowns decide, which `bound` is without; None where it has none.
     """
 
     bound: BoundFormula
@@ -87,17 +111,65 @@ class EquationGroup:
     known: Codes | None
     values: Array | None
     member: Callable[[int], str]
+    tolerance: ToleranceOfKnown | None = None
+    valid: tuple[ValidityGroup, ...] = ()
+    unsettled: BoundFormula | None = None
 
     def __len__(self) -> int:
         return len(self.bound)
 
+    @property
+    def as_written(self) -> BoundFormula:
+        """The formula with all its conditions."""
+        return self.unsettled or self.bound
+
     def item(self, entry: int) -> EquationItem:
         """One equation, written out."""
-        formula = self.bound.at(entry)
-        if self.known is None or self.values is None:
-            return EquationItem(formula, self.place, member=self.member(entry))
-        known, value = int(self.known[entry]), float(self.values[entry])
-        return EquationItem(formula, self.place, known, value, member=self.member(entry))
+        formula = self.as_written.at(entry)
+        valid = tuple(one.item(entry) for one in self.valid)
+        known, value = -1, math.nan
+        if self.known is not None and self.values is not None:
+            known, value = int(self.known[entry]), float(self.values[entry])
+        return EquationItem(formula, self.place, known, value, self.tolerance, valid, self.member(entry))
+
+    def part(self, entries: Codes, bound: BoundFormula) -> EquationGroup:
+        """Some of its entries, whose formula without the conditions that knowns decide is `bound`."""
+        chosen = entries.tolist()
+        return replace(
+            self,
+            bound=bound,
+            member=lambda entry: self.member(chosen[entry]),
+            valid=tuple(one.part(entries) for one in self.valid),
+            unsettled=self.as_written.part(entries),
+        )
+
+
+@dataclass(frozen=True)
+class ValidityGroup:
+    """A validity condition of the equations of a large family; see `Validity`.
+
+    Attributes
+    ----------
+    bound : BoundFormula
+        In its rows a quantity may stand twice.
+    shared : Validity
+        What they have in common; its formulas are without meaning.
+    guards : tuple of (BoundFormula, bool)
+    """
+
+    bound: BoundFormula
+    shared: Validity
+    guards: tuple[tuple[BoundFormula, bool], ...]
+
+    def item(self, entry: int) -> Validity:
+        """Of one member."""
+        guards = tuple(Guard(merged(bound.at(entry)), branch) for bound, branch in self.guards)
+        return replace(self.shared, formula=merged(self.bound.at(entry)), guards=guards)
+
+    def part(self, entries: Codes) -> ValidityGroup:
+        """Of some members."""
+        guards = tuple((bound.part(entries), branch) for bound, branch in self.guards)
+        return ValidityGroup(self.bound.part(entries), self.shared, guards)
 
 
 @dataclass(frozen=True)
@@ -178,14 +250,9 @@ def part_of(bound: Bound, mask: NDArray[np.bool_]) -> Bound:
     )
 
 
-def is_simple(item: EquationItem) -> bool:
-    """Whether nothing of an equation has to be decided member by member."""
-    return item.tolerance is None and not item.valid and not is_decided(item.formula.tape)
-
-
-def is_decided(tape: Tape) -> bool:
-    """Whether members may differ in branches or ranges."""
-    return any(instruction[0] in _DECIDED for instruction in tape.instructions)
+def reads_curve(tape: Tape) -> bool:
+    """Whether there are curves or surfaces in it, outside whose range some members may be."""
+    return any(instruction[0] in INTERPOLATED for instruction in tape.instructions)
 
 
 def values_of_knowns(item: EquationItem, bound: BoundFormula) -> Array:

@@ -162,6 +162,9 @@ def _everything(system: EquationSystem) -> Iterator[tuple[int, Formula, bool]]:
     for item in written:
         for validity in item.valid:
             yield -1, validity.formula, True
+    for group in system.groups:
+        for condition in group.valid:
+            yield -1, merged(condition.bound.at(0)), True
     if not system.guess_groups:
         for guess in system.guesses:
             yield -1, guess.formula, False

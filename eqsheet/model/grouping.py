@@ -17,17 +17,17 @@ from eqsheet.model.equation_group import (
     EquationGroup,
     GuessGroup,
     LimitGroup,
+    ValidityGroup,
     bound_formula,
-    is_decided,
-    is_simple,
     part_of,
+    reads_curve,
     repeating,
     values_of_knowns,
 )
 from eqsheet.model.families import Numbering
 from eqsheet.model.indexing import Codes, Domain
 from eqsheet.model.lazy_sequence import LazySequence
-from eqsheet.model.system import EquationItem, GuessItem, LimitItem, Place
+from eqsheet.model.system import EquationItem, GuessItem, LimitItem, Place, Validity
 from eqsheet.model.tape import Formula
 from eqsheet.units.unit import Unit
 
@@ -63,9 +63,9 @@ class Grouping:
         self, item: EquationItem, bound: Bound, place: Place, member: Callable[[Domain, int], str]
     ) -> Bound | None:
         """Keep the equations of a statement; gives what must be written out, None for nothing."""
-        if bound.domain.size < self._least or not is_simple(item):
+        if bound.domain.size < self._least:
             return bound
-        if item.known >= 0 and not self._keep_knowns:
+        if item.known >= 0 and (not self._keep_knowns or reads_curve(item.formula.tape)):
             return bound
         rest = None
         group = bound_formula(item.formula, bound, place.statement, bound.domain.size)
@@ -80,13 +80,21 @@ class Grouping:
             values = values_of_knowns(item, group)
         if domain.size:
             self.equations.append(
-                EquationGroup(group, place, known, values, lambda entry: member(domain, entry))
+                EquationGroup(
+                    group,
+                    place,
+                    known,
+                    values,
+                    lambda entry: member(domain, entry),
+                    item.tolerance,
+                    tuple(_validity(one, bound, place.statement) for one in item.valid),
+                )
             )
         return rest
 
     def limits(self, item: LimitItem, bound: Bound, member: Callable[[int], str]) -> LimitGroup | None:
         """The limits of a statement kept as arrays, None where they must be written out."""
-        if bound.domain.size < self._least or is_decided(item.formula.tape):
+        if bound.domain.size < self._least or reads_curve(item.formula.tape):
             return None
         group = bound_formula(item.formula, bound, item.place.statement, bound.domain.size)
         if repeating(group).any():
@@ -156,6 +164,14 @@ class Grouping:
         return LazySequence(
             [(end - first, _same(of_first, first)) for first, end in zip(self._first_list, ends)]
         )
+
+
+def _validity(one: Validity, bound: Bound, statement: int) -> ValidityGroup:
+    """A validity condition over the entries of a domain."""
+    members = bound.domain.size
+    guards = tuple((bound_formula(g.formula, bound, statement, members), g.branch) for g in one.guards)
+    shared = replace(one, place=replace(one.place, statement=statement))
+    return ValidityGroup(bound_formula(one.formula, bound, statement, members), shared, guards)
 
 
 def _always(item: T) -> Callable[[int], T]:

@@ -45,13 +45,14 @@ def solution_lines(solution: Solution) -> list[str]:
 
 def branch_lines(branches: Iterable[BranchReport]) -> list[str]:
     """A line for each condition: whether it holds; members of a family that take the same branch are counted."""
-    members: dict[tuple[int | None, str, bool], list[str]] = {}
+    members: dict[tuple[int | None, str, bool], list[BranchReport]] = {}
     for branch in branches:
-        members.setdefault((branch.line, branch.text, branch.holds), []).append(branch.member)
+        members.setdefault((branch.line, branch.text, branch.holds), []).append(branch)
     rows = []
-    for (line, text, holds), names in members.items():
+    for (line, text, holds), alike in members.items():
         where = "" if line is None else f"line {line}"
-        own = names[0] if len(names) == 1 else f"{len(names)} members"
+        count = sum(branch.count for branch in alike)
+        own = alike[0].member if count == 1 else f"{count} members"
         rows.append((text, "holds" if holds else "does not hold", where, own))
     return in_columns(rows, indent="  ")
 

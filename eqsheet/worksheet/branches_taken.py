@@ -18,7 +18,6 @@ def branches_taken(prepared: Prepared, run: Run) -> tuple[BranchReport, ...]:
     """
     system = prepared.system
     found: dict[tuple[int, int], BranchReport] = {}
-    # Groups hold no conditions.
     for item in system.written:
         formula = item.formula
         if not conditions(formula.tape):
@@ -31,4 +30,10 @@ def branches_taken(prepared: Prepared, run: Run) -> tuple[BranchReport, ...]:
             text = " ".join(statement.line.text[start:end].split())
             report = BranchReport(statement, text, holds, item.member)
             found[item.place.statement, len(found)] = report
+    for group in system.groups:
+        if conditions(group.as_written.formula.tape):
+            from eqsheet.worksheet.judge_families import branches_of_family
+
+            for report in branches_of_family(prepared, run, group):
+                found[group.place.statement, len(found)] = report
     return tuple(report for _, report in sorted(found.items(), key=lambda pair: pair[0]))

@@ -8,6 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from eqsheet.model.branches import settle, switches
+from eqsheet.model.equation_group import reads_curve
 from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.linear import is_linear_in
 from eqsheet.model.tape import Formula
@@ -17,6 +18,7 @@ from eqsheet.solve.trail import Budget, Trail
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.array_equations import ArrayBlock, Shape
 from eqsheet.worksheet.curve_ranges import argument_ranges
+from eqsheet.worksheet.decided_shapes import decided_shapes
 from eqsheet.worksheet.group_equations import GroupedEquations
 from eqsheet.worksheet.group_guesses import GuessArrays
 from eqsheet.worksheet.group_starts import group_starts
@@ -71,7 +73,12 @@ def solve_group_block(
         return solve_equations(everything, unknowns, known, guesses, dimensions, budget)
     shapes = equations.shapes(numbers, written)
     columns = np.asarray(unknowns)
-    ranges = argument_ranges(unknowns, written, known.values) if written else {}
+    decided = decided_shapes(shapes, columns, values)
+    if decided is None:
+        return solve_equations(everything, unknowns, known, guesses, dimensions, budget)
+    shapes = decided
+    readers = everything if any(reads_curve(shape.tape) for shape in shapes) else ()
+    ranges = argument_ranges(unknowns, readers, known.values) if readers else {}
     start = group_starts(shapes, columns, values, arrays, ranges, firsts, equations.part, dimensions)
     problem = ArrayBlock(shapes, columns, values, errors).problem(start)
     if _linear(shapes, columns, len(values)):

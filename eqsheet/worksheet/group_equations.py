@@ -98,7 +98,7 @@ class GroupedEquations:
     def outside(self, equations: Numbers, formulas: Sequence[Formula], unknowns: Sequence[int]) -> list[int]:
         """Quantities that the equations of a block take besides its unknowns, ascending."""
         _, parts = self.parts(equations)
-        arrays = [np.unique(group.bound.numbers[entries]) for group, _, entries in parts]
+        arrays = [np.unique(group.as_written.numbers[entries]) for group, _, entries in parts]
         arrays.append(np.array([q for formula in formulas for q in formula.quantities], dtype=np.int64))
         found: list[int] = np.setdiff1d(np.concatenate(arrays), np.array(unknowns, dtype=np.int64)).tolist()
         return found

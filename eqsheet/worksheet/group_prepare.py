@@ -6,15 +6,18 @@ for equations written out.
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
+from eqsheet.model.branch_codes import branch_codes, branches_of
 from eqsheet.model.branches import settle
-from eqsheet.model.equation_group import offsets
+from eqsheet.model.equation_group import EquationGroup, offsets
 from eqsheet.model.lazy_sequence import LazySequence
-from eqsheet.model.system import EquationSystem
+from eqsheet.model.specialise import conditions
+from eqsheet.model.system import EquationItem, EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.verdict import Structure
 
@@ -31,8 +34,44 @@ def knowns_of_groups(system: EquationSystem, known_values: dict[int, float], set
             setters.setdefault(quantity, number)
 
 
+def settle_groups(system: EquationSystem, known_values: Mapping[int, float]) -> EquationSystem:
+    """The system with the conditions in groups decided that known quantities decide: see `settle`.
+
+    A group whose members take different branches is one for each choice of branches, in its place.
+    """
+    if not any(conditions(group.bound.formula.tape) for group in system.groups):
+        return system
+    known = np.full(len(system.names), np.nan)
+    numbers = np.fromiter(known_values.keys(), np.int64, len(known_values))
+    known[numbers] = np.fromiter(known_values.values(), float, len(known_values))
+    groups: list[EquationGroup] = []
+    for group in system.groups:
+        groups += _settled(group, known)
+    written = tuple(system.written)
+    equations: list[tuple[int, Callable[[int], EquationItem]]] = [(len(written), written.__getitem__)]
+    equations += [(len(group), group.item) for group in groups]
+    return replace(system, groups=tuple(groups), equations=LazySequence(equations))
+
+
+def _settled(group: EquationGroup, known: NDArray[np.float64]) -> list[EquationGroup]:
+    tape = group.bound.formula.tape
+    found = conditions(tape)
+    if not found or group.known is not None:
+        return [group]
+    code = branch_codes(tape, list(known[group.bound.numbers.T]), group.bound.literals, len(group))
+    if not code.any():
+        return [group]
+    parts = []
+    _, firsts = np.unique(code, return_index=True)
+    for one in code[np.sort(firsts)].tolist():
+        entries = np.flatnonzero(code == one)
+        part = group.bound.part(entries)
+        parts.append(group.part(entries, part.specialised(branches_of(tape, one)) if one else part))
+    return parts
+
+
 def settled_formulas(system: EquationSystem, known_values: Mapping[int, float]) -> Sequence[Formula]:
-    """The formulas of all equations; those of groups have no conditions to settle."""
+    """The formulas of all equations; those of groups are settled already."""
     written = tuple([settle(item.formula, known_values.get) for item in system.written])
     groups = [(len(group), group.bound.at) for group in system.groups]
     return LazySequence([(len(written), written.__getitem__), *groups])

@@ -106,9 +106,10 @@ class GroupRun:
         """Solve block after block; what depends on a failed block is left out."""
         blocks = self.prepared.structure.blocks
         position = 0
-        for begin, end in self._singles.runs(LEAST_CHAIN):
+        for where in self._singles.runs(LEAST_CHAIN):
+            begin, end = int(where[0]), int(where[-1]) + 1
             self._one_by_one(position, begin)
-            if self._failed or self._given or not self._chain(begin, end):
+            if self._failed or self._given or not self._chain(where):
                 self._one_by_one(begin, end)
             position = end
         self._one_by_one(position, len(blocks))
@@ -249,11 +250,11 @@ class GroupRun:
 
     # --- chains -------------------------------------------------------------------------------------------
 
-    def _chain(self, begin: int, end: int) -> bool:
-        """Solve the blocks from `begin` to before `end` as a chain; whether that went well."""
-        targets = self._singles.columns[begin:end]
+    def _chain(self, where: Numbers) -> bool:
+        """Solve the blocks at some positions as a chain; whether that went well."""
+        targets = self._singles.columns[where]
         result = solve_chain(
-            self._singles.parts(begin, end),
+            self._singles.parts(where),
             targets,
             self.values,
             self.value_array,
@@ -268,19 +269,19 @@ class GroupRun:
         self.error_array[targets] = result.errors
         for quantity, error in zip(targets.tolist(), result.errors.tolist()):
             self.errors[quantity] = error
-        self.block_of[targets] = self._numbers[begin:end]
-        make = self._runs_of_chain(begin, result)
-        self._parts.append((end - begin, make))
+        self.block_of[targets] = self._numbers[where]
+        make = self._runs_of_chain(where, result)
+        self._parts.append((len(where), make))
         for i in np.flatnonzero(self._few_digits(result.values, result.errors)).tolist():
             self.diagnostics += trust_warnings(self.prepared.system, make(i))
         return True
 
-    def _runs_of_chain(self, begin: int, result: ChainResult) -> Callable[[int], BlockRun]:
+    def _runs_of_chain(self, where: Numbers, result: ChainResult) -> Callable[[int], BlockRun]:
         """Makes the account of one block of a chain."""
         prepared, numbers, after = self.prepared, self._numbers, self._after
 
         def run(i: int) -> BlockRun:
-            block = prepared.structure.blocks[begin + i]
+            block = prepared.structure.blocks[int(where[i])]
             equation = prepared.rows[block.rows[0]]
             one = BlockResult(
                 True,
@@ -290,6 +291,6 @@ class GroupRun:
                 residual=float(result.residuals[i]),
                 formulas=(prepared.formulas[equation],),
             )
-            return BlockRun(int(numbers[begin + i]), (equation,), block.columns, after(block), one)
+            return BlockRun(int(numbers[where[i]]), (equation,), block.columns, after(block), one)
 
         return run

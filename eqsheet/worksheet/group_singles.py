@@ -53,16 +53,18 @@ class Singles:
                     self._form[mine[slots == slot]] = len(self._closed)
                     self._closed[len(self._closed)] = position, slot, closed
 
-    def runs(self, least: int) -> Iterator[tuple[int, int]]:
-        """Beginnings and ends of runs of at least `least` blocks that can be part of a chain."""
-        edges = np.flatnonzero(np.diff(np.concatenate([[False], self._form >= 0, [False]]).astype(np.int8)))
+    def runs(self, least: int) -> Iterator[Numbers]:
+        """Positions of runs of at least `least` blocks that can be part of a chain; knowns between are left out."""
+        solved = np.flatnonzero(self.numbers)
+        able = self._form[solved] >= 0
+        edges = np.flatnonzero(np.diff(np.concatenate([[False], able, [False]]).astype(np.int8)))
         for begin, end in zip(edges[::2].tolist(), edges[1::2].tolist()):
             if end - begin >= least:
-                yield begin, end
+                yield solved[begin:end]
 
-    def parts(self, begin: int, end: int) -> list[ChainPart]:
-        """The blocks of a run by group and slot."""
-        forms = self._form[begin:end]
+    def parts(self, where: Numbers) -> list[ChainPart]:
+        """The blocks of a run, given by their positions, by group and slot."""
+        forms = self._form[where]
         found = []
         for form in np.flatnonzero(np.bincount(forms)).tolist():
             position, slot, closed = self._closed[form]
@@ -73,7 +75,7 @@ class Singles:
                     slot,
                     closed,
                     positions,
-                    self._entry[begin:end][positions],
+                    self._entry[where][positions],
                 )
             )
         return found

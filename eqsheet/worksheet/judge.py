@@ -10,7 +10,7 @@ from eqsheet.model.branches import literal_values
 from eqsheet.model.dimension_of import dimensions_of
 from eqsheet.model.evaluate import Evidence, evaluate, evaluate_with_evidence
 from eqsheet.model.outside_curve import outside_curve
-from eqsheet.model.system import LimitItem, Validity
+from eqsheet.model.system import EquationItem, LimitItem, Validity
 from eqsheet.model.tape import Formula
 from eqsheet.units.dimension import Dimension
 from eqsheet.units.display import default_unit
@@ -166,7 +166,11 @@ def judge_validity(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
     """A warning for each validity range that the solution leaves, where its formula is in use."""
     system = prepared.system
     diagnostics: list[Diagnostic] = []
-    if not any(item.valid for item in system.written):
+    if system.groups:
+        from eqsheet.worksheet.validity_of_families import judge_validity_of_families
+
+        return judge_validity_of_families(prepared, run)
+    if not any(item.valid for item in system.equations):
         return ()
     used = _quantities_used(prepared, run)
     produced = {equation: block.unknowns for block in run.blocks for equation in block.equations}
@@ -174,12 +178,17 @@ def judge_validity(prepared: Prepared, run: Run) -> tuple[Diagnostic, ...]:
         unknowns = produced.get(number, ())
         if unknowns and not any(q in used for q in unknowns) and len(unknowns) == 1:
             continue
-        diagnostics += [
-            _left(prepared, run, validity)
-            for validity in item.valid
-            if _applies(validity, run) and not _truth(validity.formula, run)
-        ]
+        diagnostics += ranges_left(prepared, run, item)
     return tuple(diagnostics)
+
+
+def ranges_left(prepared: Prepared, run: Run, item: EquationItem) -> list[Diagnostic]:
+    """A warning for each validity range of an equation that the solution leaves."""
+    return [
+        range_left(prepared, run, validity)
+        for validity in item.valid
+        if _applies(validity, run) and not _truth(validity.formula, run)
+    ]
 
 
 def _quantities_used(prepared: Prepared, run: Run) -> set[int]:
@@ -192,11 +201,8 @@ def _quantities_used(prepared: Prepared, run: Run) -> set[int]:
         mine = own.get(number, set())
         in_use.update(q for q in formula.quantities if q not in mine)
         mentioned.update(q for q in item.formula.quantities if q not in mine)
-    for limit in system.limit_parts:
-        if isinstance(limit, LimitItem):
-            in_use.update(limit.formula.quantities)
-        else:
-            in_use.update(limit.bound.numbers.ravel().tolist())
+    for limit in system.limits:
+        in_use.update(limit.formula.quantities)
     return in_use | (set(range(len(system.names))) - mentioned)
 
 
@@ -216,7 +222,7 @@ def _truth(formula: Formula, run: Run) -> bool:
     return values[formula.tape.outputs[0]] is True
 
 
-def _left(prepared: Prepared, run: Run, validity: Validity) -> Diagnostic:
+def range_left(prepared: Prepared, run: Run, validity: Validity) -> Diagnostic:
     system = prepared.system
     dimensions, kinds = prepared.dimensions, prepared.kinds
     values = [

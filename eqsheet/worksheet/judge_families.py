@@ -2,18 +2,22 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from typing import Any
+
 import numpy as np
 from numpy.typing import NDArray
 
 from eqsheet.model.array_evidence import ArrayEvidence, evaluate_arrays_with_evidence
-from eqsheet.model.equation_group import LimitGroup
-from eqsheet.model.evaluate import ROUNDING
+from eqsheet.model.equation_group import EquationGroup, LimitGroup
+from eqsheet.model.evaluate import ROUNDING, evaluate_arrays
 from eqsheet.model.system import LimitItem
+from eqsheet.model.tape import Tape, operands_of
 from eqsheet.worksheet.judge import difference_text, judge_limit, limit_side, operands_compared, slack_unit
 from eqsheet.worksheet.limit_reports import JudgedFamily, LimitReports
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import Run
-from eqsheet.worksheet.solution import LimitReport
+from eqsheet.worksheet.solution import BranchReport, LimitReport
 
 Array = NDArray[np.float64]
 
@@ -87,3 +91,46 @@ def _link(
 
 def _as_typed(value: Array) -> Array:
     return np.where(value == np.floor(value), 0.0, 2.0 * ROUNDING * np.abs(value))
+
+
+def branches_of_family(prepared: Prepared, run: Run, group: EquationGroup) -> list[BranchReport]:
+    """Which branches the members take, each told once with the number of members: see `branches_taken`."""
+    bound = group.as_written
+    values = np.array(run.values)
+    there = np.flatnonzero(np.isfinite(values[bound.numbers]).all(axis=1))
+    tape = bound.formula.tape
+    with np.errstate(all="ignore"):
+        results = evaluate_arrays(tape, list(values[bound.numbers[there].T]), bound.literals_of(there))
+    statement = prepared.system.statements[group.place.statement]
+    found: list[tuple[int, int, BranchReport]] = []
+    for condition, reached in _reached(tape, results, len(there)).items():
+        truth = np.broadcast_to(np.asarray(results[condition], dtype=float), (len(there),))
+        start, end = bound.formula.places[condition]
+        text = " ".join(statement.line.text[start:end].split())
+        for holds in (True, False):
+            alike = np.flatnonzero(reached & (truth == float(holds)))
+            if len(alike):
+                first = int(there[alike[0]])
+                report = BranchReport(statement, text, holds, group.member(first), len(alike))
+                found.append((first, condition, report))
+    return [report for _, _, report in sorted(found, key=lambda one: one[:2])]
+
+
+def _reached(tape: Tape, results: Sequence[Any], members: int) -> dict[int, NDArray[np.bool_]]:
+    """The instructions that are conditions, in order, and for which members the outputs pass through them."""
+    use = [np.zeros(members, dtype=bool) for _ in tape.instructions]
+    for output in tape.outputs:
+        use[output][:] = True
+    reached: dict[int, NDArray[np.bool_]] = {}
+    for i in range(len(use) - 1, -1, -1):
+        if tape.instructions[i][0] != "if":
+            for operand in operands_of(tape.instructions[i]):
+                use[operand] |= use[i]
+            continue
+        _, condition, a, b = tape.instructions[i]
+        truth = np.asarray(results[condition], dtype=float)
+        use[condition] |= use[i]
+        use[a] |= use[i] & (truth == 1.0)
+        use[b] |= use[i] & (truth != 1.0)
+        reached[condition] = reached.get(condition, np.zeros(members, dtype=bool)) | use[i]
+    return dict(sorted(reached.items()))

@@ -27,6 +27,7 @@ from eqsheet.worksheet.echoes import without_echoes
 from eqsheet.worksheet.group_prepare import (
     all_hold_unknowns,
     knowns_of_groups,
+    settle_groups,
     settled_formulas,
     structure_of_groups,
 )
@@ -112,6 +113,7 @@ def prepare(
     settled: Sequence[Formula]
     if system.groups:
         knowns_of_groups(system, known_values, setters)
+        system = settle_groups(system, known_values)
         settled = settled_formulas(system, known_values)
     else:
         settled = tuple(settle(item.formula, known_values.get) for item in system.equations)

@@ -158,12 +158,15 @@ class BranchReport:
         The branch after ``then`` is taken where it holds, else the other.
     member : str
         In a family or an instance, which member.
+    count : int
+        How many members of a large family it speaks of, of which `member` is the first.
     """
 
     statement: Statement
     text: str
     holds: bool
     member: str = ""
+    count: int = 1
 
     @property
     def line(self) -> int | None:

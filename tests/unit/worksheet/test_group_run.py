@@ -90,7 +90,95 @@ for i in 1..N:
     f[i] = if Re[i] < 2300 then 64/Re[i] else 0.3164/Re[i]^0.25
     dp[i] = f[i]*(1 m)/(20 mm)*(1000 kg/m^3)*v[i]^2/2
 """
+RANGES = """
+N = 40
+define Nu(Re) = 0.023*Re^0.8 valid Re > 1e4
+T[0] = 20 degC
+for i in 1..N:
+    T[i] = T[i-1] + 0.5 K valid T[i] <= 30 degC
+    Re[i] = i*600 + T[i]/(1 K)
+    h[i] = if Re[i] < 2300 then 3.66 else Nu(Re[i])
+    w[i] = h[i]*2 valid h[i] > 1, i < 90
+    idle[i] = 3*T[i] valid T[i] < 25 degC
+"""
+BRANCHES_OF_KNOWNS = """
+N = 50
+for i in 1..N:
+    a[i] = i - 20
+    x[i] = if a[i] > 0 then y[i] + 1 else 2*z[i]
+    y[i] = if a[i] > 10 and i < 45 then 3 else if a[i] > 0 then 4 else x[i]
+    z[i] = if a[i] > 0 then x[i] else 7 - i/10
+"""
+BRANCHES_OF_UNKNOWNS = """
+N = 60
+x[0] = 1
+for i in 1..N:
+    x[i] = if x[i-1] > 4 then x[i-1] - 0.5 else x[i-1] + 0.3
+    y[i] = if x[i] > 3 and x[i-1] > 2 then ln(x[i]) else if x[i] > 2 then -1 else sqrt(x[i])
+"""
+DECIDED_BEFORE = """
+N = 70
+x[0] = 1
+for i in 1..N:
+    x[i] = x[i-1] + 0.1
+    T[i+1] - 2*T[i] + T[i-1] = if x[i] > 4 then 1e-4*T[i] else 2e-4*(T[i] - 300 K)
+    T[i] near 330 K within 200 K .. 900 K
+T[0] = 300 K
+T[N+1] = 350 K
+"""
+REGIMES = """
+N = 64
+for i in 1..N:
+    T[i+1] - 2*T[i] + T[i-1] = if T[i] > 320 K then 1e-4*(T[i] - 320 K) else 0 K
+    T[i] near 330 K within 200 K .. 900 K
+T[0] = 300 K
+T[N+1] = 350 K
+"""
+CURVES = """
+N = 45
+curve cp(T in degC) in kJ/(kg*K):
+    0 4.2
+    20 4.18
+    50 4.19
+    100 4.21
+curve size(D in mm) in mm by step:
+    10 10
+    20 20
+    50 50
+T[0] = 20 degC
+for i in 1..N:
+    T[i] = T[i-1] + 0.7 K
+    c[i] = cp(T[i])
+    d[i] = size(i*1 mm)
+    q[i] = if T[i] > 30 degC then cp(T[i-1])*T[i] else c[i]*T[i]
+    k[i] = cp(0.5 degC + i*1 K)
+"""
+CURVES_COUPLED = """
+N = 70
+curve k(T in degC) in W/(m*K):
+    0 0.5
+    40 0.7
+    100 1.1
+for i in 1..N:
+    k(T[i])*(T[i+1] - 2*T[i] + T[i-1]) = 1 W/m
+    T[i] near 60 degC within 1 degC .. 99 degC
+T[0] = 20 degC
+T[N+1] = 80 degC
+"""
+TOLERANCES = """
+for i in 1..30:
+    L[i] = 20 mm ± 0.1 mm
+    A[i] = L[i]^2
+"""
 RESULTS = {
+    "ranges": RANGES,
+    "branches of knowns": BRANCHES_OF_KNOWNS,
+    "branches of unknowns": BRANCHES_OF_UNKNOWNS,
+    "branches decided before": DECIDED_BEFORE,
+    "regimes": REGIMES,
+    "curves": CURVES,
+    "curves in a block": CURVES_COUPLED.replace("1 W/m", "1e-3 W*K/(m*K)"),
+    "tolerances": TOLERANCES,
     "conduction": CONDUCTION,
     "chain": CHAIN,
     "loops": LOOPS,
@@ -144,6 +232,9 @@ def test_limits_on_members_that_were_not_found_are_left_out() -> None:
 
 
 WRONG = {
+    "outside a curve": CURVES.replace("0.7 K", "3 K"),
+    "a branch without value": BRANCHES_OF_UNKNOWNS.replace("ln(x[i])", "ln(2 - x[i])"),
+    "a condition without value": BRANCHES_OF_UNKNOWNS.replace("x[i] > 2 then", "sqrt(2.5 - x[i]) > 0 then"),
     "one equation missing": CONDUCTION.replace("T[0] = 20 degC", ""),
     "one equation too many": CONDUCTION + "T[30] = 400 K\n",
     "a known twice": CONDUCTION + "q[7] = 3 W/m^3\n",
