@@ -39,6 +39,6 @@ class Finding:
         """
         label = Label(statement.span(self.start, self.end))
         help = self.help
-        if self.symbol and self.symbol in quantities:
+        if self.cure_if_quantity and self.symbol in quantities:
             help = f"`{self.symbol}` is a quantity of the worksheet: {self.cure_if_quantity}"
         return Diagnostic(self.code, self.severity, self.message, (label,), self.notes, help)

@@ -481,7 +481,9 @@ class Lowering(LoweringFindings):
             self._refuse_call(node)
         arguments = [self.value(argument) for argument in node.arguments]
         place = self._place(node)
-        if node.name in ("min", "max") and len(arguments) >= 2:
+        if node.name in ("min", "max"):
+            if len(arguments) < 2:
+                self._refuse_without_members(node)
             return self._join(node.name, arguments, place)
         needed = 1 if node.name in UNARY_FUNCTIONS else 2
         if len(arguments) != needed:
@@ -560,6 +562,8 @@ class Lowering(LoweringFindings):
             self._refuse_logarithm(node)
         if node.name in self._names.numbers or node.name in self._parameters:
             self._refuse_quantity_as_function(node)
+        if node.name in AGGREGATE_NAMES:
+            self._refuse_without_members(node)
         self._refuse_unknown_function(
             node, (*FUNCTION_NAMES, *self._context.definitions, *self._context.curves)
         )

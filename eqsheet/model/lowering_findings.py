@@ -16,6 +16,9 @@ from eqsheet.model.while_lowering import Place2, Poisoned
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.registry import UnitProblem
 
+# What joins the members of an aggregate that is no function of two values.
+_OPERATORS = {"sum": "+", "prod": "*"}
+
 
 class LoweringFindings:
     """The findings of one formula.
@@ -69,6 +72,26 @@ class LoweringFindings:
             help=f"to multiply, write `{node.name}*{argument}`",
         )
 
+    def _refuse_without_members(self, node: syntax.Call) -> Never:
+        """A sum, product or extreme that is written like a function of one value, or a sum like one of several."""
+        (first, *others) = node.arguments
+        term = self.text[first.start : first.end] if self._fixed_place is None else "..."
+        if isinstance(first, syntax.Reference) and first.subscripts is None and first.owner is None:
+            term = f"{term}[i]"
+        help = f"write `{node.name}({term} for i in ...)` with a range, `1..N`, or a set"
+        if node.name in _OPERATORS:
+            sign = _OPERATORS[node.name]
+            help = (
+                f"write the operator, `a {sign} b`"
+                if others
+                else f"{help}; of a few values write `a {sign} b`"
+            )
+        else:
+            help = f"{help}, or give two values or more"
+        self._refuse(
+            "members-missing", f"`{node.name}` does not say over which members it runs", _name_of(node), help
+        )
+
     def _refuse_unknown_function(self, node: syntax.Call, known: Collection[str]) -> Never:
         self._refuse(
             "unknown-function",
@@ -84,8 +107,9 @@ class LoweringFindings:
         symbol = unit.factors[problem.index].symbol if unit.factors else ""
         start, end = self._place(place)
         help, cure = problem.help, ""
-        if problem.code == "unknown-unit" and symbol.isidentifier():
+        if symbol.isidentifier():
             cure = "put spaces around the operator before it" if problem.index else "write `*` before it"
+        if problem.code == "unknown-unit" and cure:
             help = f"{help}; if `{symbol}` is to be a quantity, {cure}"
         self.findings.append(
             Finding(problem.code, problem.message, start, end, help, symbol=symbol, cure_if_quantity=cure)
