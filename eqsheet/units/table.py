@@ -152,6 +152,7 @@ UNITS: dict[str, Row] = {
 ALIASES: dict[str, str] = {
     'l': 'L',
     'Ω': 'Ohm',
+    'ohm': 'Ohm',
     'lbm': 'lb',
     'Btu': 'BTU',
 }
@@ -246,7 +247,6 @@ SPELLINGS: dict[str, str] = {
     'volts': 'V',
     'amp': 'A',
     'amps': 'A',
-    'ohm': 'Ohm',
     'ohms': 'Ohm',
     'mho': 'S',
     'degrees': 'deg',
