@@ -171,6 +171,42 @@ def _reached(tape: Tape, results: Sequence[Any]) -> Mapping[int, bool | float]:
     return reached
 
 
+def held_conditions(
+    formulas: Sequence[Formula], found: Sequence[Switch], branches: Sequence[int]
+) -> tuple[Mapping[int, bool], ...] | None:
+    """Truth of the conditions that decide each formula with switches held at their branches, by instruction.
+
+    None where one condition would have to hold and not to hold. Conditions in a branch not taken are left out, and
+    so are switches whose branch is negative, which are not held.
+    """
+    taken = [
+        {s.instruction: b == 0 for s, b in zip(found, branches) if s.formula == number and b >= 0}
+        for number in range(len(formulas))
+    ]
+    conditions_of: list[Mapping[int, bool]] = []
+    for formula, own in zip(formulas, taken):
+        truth: dict[int, bool] = {}
+        seen: set[int] = set()
+        stack = list(formula.tape.outputs)
+        while stack:
+            i = stack.pop()
+            if i in seen:
+                continue
+            seen.add(i)
+            entry: tuple[Any, ...] = formula.tape.instructions[i]
+            if entry[0] != "if":
+                stack.extend(operands_of(entry))
+                continue
+            _, condition, a, b = entry
+            stack.append(condition)
+            if i in own:
+                if truth.setdefault(condition, own[i]) != own[i]:
+                    return None
+                stack.append(a if own[i] else b)
+        conditions_of.append(truth)
+    return tuple(conditions_of)
+
+
 def hold(
     formulas: Sequence[Formula], found: Sequence[Switch], branches: Sequence[int]
 ) -> tuple[Formula, ...]:

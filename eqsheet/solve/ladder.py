@@ -73,6 +73,32 @@ def solve_block(
     return found
 
 
+def first_rungs(
+    problem: Problem,
+    budget: Budget = DEFAULT_BUDGET,
+    own_rungs: Sequence[tuple[str, Rung]] = (),
+    hopeless: Callable[[], bool] | None = None,
+) -> Outcome:
+    """As `solve_block` by what costs little: damped Newton from the start, and from the start moved.
+
+    For many problems of which few have a root; `own_rungs` and `hopeless` are not asked.
+    """
+    if problem.n == 1:
+        return solve_scalar(as_scalar(problem), budget)
+    deadline = perf_counter() + budget.seconds
+    with np.errstate(all="ignore"):
+        attempts = [
+            _attempt(_newton, problem, problem.start, Trail("newton", problem.start, budget, deadline))
+        ]
+        if not _final(attempts[0], deadline):
+            from eqsheet.solve.moved_start import moved_start
+
+            start = moved_start(problem)
+            trail = Trail("newton, start moved", start, budget, deadline)
+            attempts.append(_attempt(newton, problem, start, trail))
+        return _concluded(attempts, lambda: _distance_from_zero(problem))
+
+
 def solve_scalar(problem: ScalarProblem, budget: Budget = DEFAULT_BUDGET) -> Outcome:
     """As `solve_block` for one equation in plain floats: safeguarded Newton, then bracketing."""
     deadline = perf_counter() + budget.seconds

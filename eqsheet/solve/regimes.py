@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass, replace
+from itertools import chain, combinations, islice, product
 
 import numpy as np
 
@@ -14,6 +15,9 @@ Branches = tuple[int, ...]
 
 # Combinations of branches tried at most for one block.
 MOST_COMBINATIONS = 64
+# Combinations asked whether they may have a solution: by nearness to the first one, and then systematically.
+MOST_NEAR = 64
+MOST_LOOKED_AT = 1024
 # Scaled distance of two solutions, each in the other's branch, at which they are one solution on the
 # switching point.
 SAME_POINT = 1e-9
@@ -48,8 +52,12 @@ def solve_regimes(
     solve_held: Callable[[Branches, Vector | None], Outcome],
     consistent: Callable[[Vector], Branches],
     magnitude: Vector,
+    possible: Callable[[Branches], bool] = lambda branches: True,
+    solve_thoroughly: Callable[[Branches, Vector | None, int], Outcome] | None = None,
 ) -> Held:
     """A solution whose branches are those that its own values choose.
+
+    All combinations are tried cheaply before the first of them is searched with more effort.
 
     Parameters
     ----------
@@ -63,32 +71,75 @@ def solve_regimes(
         x (n,) to the branches that x itself chooses; the number of branches where it chooses none of them.
     magnitude : ndarray (n,)
         Typical size of each unknown, for telling points apart.
+    possible : callable
+        Whether a combination, -1 standing for a condition left open, may have a solution; False only for certain.
+    solve_thoroughly : callable, optional
+        As `solve_held`, for combinations it has not solved; the last argument is how many of them are left.
     """
-    tried: dict[Branches, tuple[Outcome, Branches]] = {}
+    work = _Work(counts, consistent, magnitude)
     queue: list[tuple[Branches, Vector | None]] = [(first, None)]
-    spare = _neighbours(first, counts)
-    while queue and len(tried) < MOST_COMBINATIONS:
+    near = (b for b in islice(_neighbours(first, counts), MOST_NEAR) if possible(b))
+    spare = chain(near, _left_open(first, counts, possible))
+    if not possible(first):
+        queue = [(following, None)] if (following := next(spare, None)) is not None else queue
+    while queue and len(work.tried) < MOST_COMBINATIONS:
         branches, start = queue.pop()
-        outcome = solve_held(branches, start)
-        chosen = consistent(outcome.x)
-        tried[branches] = (outcome, chosen)
-        if outcome.solved:
-            if chosen == branches:
-                return Held(outcome, branches, tuple(tried))
-            back = tried.get(chosen)
-            if back is not None and back[0].solved and _same(outcome.x, back[0].x, magnitude):
-                # Each is in the other's branch by rounding: the solution lies on the switching point.
-                return Held(outcome, branches, tuple(tried))
-        if outcome.status is Status.INTERRUPTED:
-            return Held(outcome, branches, tuple(tried))
-        if chosen not in tried and all(branch < count for branch, count in zip(chosen, counts)):
+        held = work.add(branches, solve_held(branches, start))
+        if held is not None:
+            return held
+        outcome, chosen = work.tried[branches]
+        if work.may_follow(chosen) and chosen not in work.tried and possible(chosen):
             # Go on from where this branch led to, which is already in the next one's region.
             queue.append((chosen, outcome.x))
         elif not queue:
-            following = next((b for b in spare if b not in tried), None)
+            following = next((b for b in spare if b not in work.tried), None)
             if following is not None:
                 queue.append((following, None))
-    return _unresolved(tried, magnitude)
+    if solve_thoroughly is not None:
+        failed = [branches for branches, (outcome, _) in work.tried.items() if not outcome.solved]
+        for number, branches in enumerate(failed):
+            held = work.add(branches, solve_thoroughly(branches, None, len(failed) - number))
+            if held is not None:
+                return held
+    return _unresolved(work.tried, magnitude)
+
+
+class _Work:
+    """What has been tried.
+
+    Attributes
+    ----------
+    tried : dict
+        By combination, in order: its last outcome and the branches that this chooses.
+    """
+
+    def __init__(
+        self, counts: tuple[int, ...], consistent: Callable[[Vector], Branches], magnitude: Vector
+    ) -> None:
+        self.tried: dict[Branches, tuple[Outcome, Branches]] = {}
+        self._counts = counts
+        self._consistent = consistent
+        self._magnitude = magnitude
+
+    def add(self, branches: Branches, outcome: Outcome) -> Held | None:
+        """Put an outcome down; the end of the search where it is one."""
+        chosen = self._consistent(outcome.x)
+        self.tried[branches] = (outcome, chosen)
+        if outcome.status is Status.INTERRUPTED:
+            return Held(outcome, branches, tuple(self.tried))
+        if not outcome.solved:
+            return None
+        if chosen == branches:
+            return Held(outcome, branches, tuple(self.tried))
+        back = self.tried.get(chosen)
+        if back is not None and back[0].solved and _same(outcome.x, back[0].x, self._magnitude):
+            # Each is in the other's branch by rounding: the solution lies on the switching point.
+            return Held(outcome, branches, tuple(self.tried))
+        return None
+
+    def may_follow(self, chosen: Branches) -> bool:
+        """Whether every condition has chosen one of its branches."""
+        return all(branch < count for branch, count in zip(chosen, self._counts))
 
 
 def _unresolved(tried: dict[Branches, tuple[Outcome, Branches]], magnitude: Vector) -> Held:
@@ -116,8 +167,6 @@ def _unresolved(tried: dict[Branches, tuple[Outcome, Branches]], magnitude: Vect
 
 def _neighbours(first: Branches, counts: tuple[int, ...]) -> Iterator[Branches]:
     """All other combinations, those that differ from `first` in fewer conditions first."""
-    from itertools import combinations, product
-
     for changed in range(1, len(counts) + 1):
         for places in combinations(range(len(counts)), changed):
             for values in product(*(range(counts[k]) for k in places)):
@@ -126,6 +175,26 @@ def _neighbours(first: Branches, counts: tuple[int, ...]) -> Iterator[Branches]:
                     for k, value in zip(places, values):
                         branches[k] = value
                     yield tuple(branches)
+
+
+def _left_open(
+    first: Branches, counts: tuple[int, ...], possible: Callable[[Branches], bool]
+) -> Iterator[Branches]:
+    """All combinations but those that are not possible, one condition after the other held, as in `first` first."""
+    stack: list[Branches] = [()]
+    looked_at = 0
+    while stack and looked_at < MOST_LOOKED_AT:
+        begin = stack.pop()
+        looked_at += 1
+        rest = len(counts) - len(begin)
+        if not possible(begin + (-1,) * rest):
+            continue
+        if rest == 0:
+            yield begin
+            continue
+        own = first[len(begin)]
+        others = [value for value in range(counts[len(begin)]) if value != own]
+        stack += [(*begin, value) for value in (*reversed(others), own)]
 
 
 def _same(a: Vector, b: Vector, magnitude: Vector) -> bool:

@@ -13,6 +13,7 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
+from types import MappingProxyType
 from typing import cast
 
 from eqsheet.model.branches import literal_values
@@ -54,6 +55,7 @@ from eqsheet.worksheet.interval_truth import FALSE, TRUE, compared, denied, join
 MOST_SWEEPS = 12
 # A range that loses less than this part of itself is not worth another sweep.
 _WORTH = 0.01
+_NOTHING_HELD: Mapping[int, bool] = MappingProxyType({})
 
 
 @dataclass(frozen=True, slots=True)
@@ -78,6 +80,7 @@ def narrowed(
     values: Sequence[float],
     bounds: Sequence[Interval],
     errors: Sequence[float] | None = None,
+    held: Sequence[Mapping[int, bool]] = (),
 ) -> Narrowed:
     """The bounds of the unknowns of a block, narrowed by its equations.
 
@@ -91,6 +94,8 @@ def narrowed(
         By position of the unknowns.
     errors : sequence of float, optional
         How far `values` may be off besides rounding.
+    held : sequence of mapping of int to bool, optional
+        Truth that conditions of each formula are to have, by instruction.
     """
     ranges = dict(zip(unknowns, bounds))
     own = set(unknowns)
@@ -103,7 +108,7 @@ def narrowed(
     for _ in range(MOST_SWEEPS):
         before = dict(ranges)
         for position, formula in enumerate(formulas):
-            if not _revise(formula, given, ranges):
+            if not _revise(formula, given, ranges, held[position] if held else _NOTHING_HELD):
                 return Narrowed(tuple(before[q] for q in unknowns), position)
         if not any(_much(before[q], ranges[q]) for q in unknowns):
             break
@@ -122,7 +127,12 @@ def _much(before: Interval, after: Interval) -> bool:
     return not math.isfinite(width) or after[1] - after[0] < (1.0 - _WORTH) * width
 
 
-def _revise(formula: Formula, given: Mapping[int, Interval], ranges: dict[int, Interval]) -> bool:
+def _revise(
+    formula: Formula,
+    given: Mapping[int, Interval],
+    ranges: dict[int, Interval],
+    held: Mapping[int, bool],
+) -> bool:
     """Narrow the ranges by one equation; False where it holds nowhere in them."""
     instructions = formula.tape.instructions
     literals = literal_values(formula)
@@ -136,6 +146,8 @@ def _revise(formula: Formula, given: Mapping[int, Interval], ranges: dict[int, I
             of.append(widened(literals[instruction[1]], literals[instruction[1]]))
         else:
             of.append(_value(instruction, of))
+        if len(of) - 1 in held:
+            of[-1] = _met(of[-1], TRUE if held[len(of) - 1] else FALSE)
     left, right = formula.tape.outputs
     both = _met(of[left], of[right])
     of[left] = of[right] = both

@@ -7,17 +7,14 @@ solve layer; conditions that depend on the block's own unknowns are held, checke
 from __future__ import annotations
 
 import math
-import operator
-import time
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
+from typing import TypeAlias
 
 import numpy as np
 
 from eqsheet.model.branches import (
     Switch,
-    chosen_branches,
-    hold,
     literal_values,
     quantities_under,
     settle,
@@ -33,9 +30,8 @@ from eqsheet.solve.ladder import DEFAULT_BUDGET, solve_block, solve_scalar
 from eqsheet.solve.linear import linear_step
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, Vector
-from eqsheet.solve.regimes import Held, solve_regimes
 from eqsheet.solve.termination import ACCEPTABLE
-from eqsheet.solve.trail import Budget, Trail
+from eqsheet.solve.trail import Budget, Rung, Trail
 from eqsheet.solve.verdict import judge, judge_by_factor
 from eqsheet.structure.array_sequence import as_sequence
 from eqsheet.units.dimension import Dimension
@@ -50,6 +46,9 @@ from eqsheet.worksheet.torn import TornBlock, torn_block
 
 # Rounding of a closed form may put its value this far past a bound, relative to the bound.
 PAST_BOUND = 1e-12
+Ladder: TypeAlias = Callable[
+    [Problem, Budget, Sequence[tuple[str, Rung]], Callable[[], bool] | None], Outcome
+]
 
 
 @dataclass(frozen=True)
@@ -129,16 +128,19 @@ def solve_equations(
         found = switches(formulas, plan.own)
     if not found:
         if len(unknowns) == 1:
-            closed = _closed_form(formulas[0], unknowns[0], known, guesses)
+            closed = closed_form(formulas[0], unknowns[0], known, guesses)
             if closed is not None:
                 return closed
         start = starting_values(unknowns, formulas, values, guesses, dimensions)
         return _iterate(formulas, unknowns, known, start, budget)
     start = starting_values(unknowns, formulas, values, guesses, dimensions)
-    return _by_regimes(formulas, unknowns, known, guesses, start, budget)
+    # Most blocks have no condition left to be decided.
+    from eqsheet.worksheet.held_branches import by_held_branches
+
+    return by_held_branches(formulas, unknowns, known, guesses, start, budget)
 
 
-def _closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses) -> BlockResult | None:
+def closed_form(formula: Formula, unknown: int, known: Known, guesses: Guesses) -> BlockResult | None:
     """The best closed form; None where there is none with a finite value that solves the equation.
 
     A quantity set to what has no value (``y = sqrt(x)`` at a negative x) fails here: no search would help.
@@ -258,21 +260,28 @@ def _within(value: float, low: float, high: float) -> bool:
     return low - slack <= value <= high + slack
 
 
-def _solve_plain(
+def solve_plain(
     formulas: Sequence[Formula],
     unknowns: Sequence[int],
     known: Known,
     start: Start,
     budget: Budget,
+    ladder: Ladder = solve_block,
 ) -> tuple[Outcome, Problem | None]:
-    """The solver's outcome for equations without undecided conditions."""
+    """The solver's outcome for equations without undecided conditions.
+
+    Parameters
+    ----------
+    ladder : callable
+        What several equations are solved by, as `solve_block`.
+    """
     if len(unknowns) == 1:
         if unknowns[0] not in formulas[0].quantities:
             # A held branch has lost the unknown.
             point = np.array(start.values)
             return Outcome(Status.SINGULAR, point, math.inf, 0, "newton"), None
         return solve_scalar(scalar_problem(formulas[0], unknowns[0], known.values, start), budget), None
-    problem = _problem(formulas, unknowns, known, start)
+    problem = problem_of(formulas, unknowns, known, start)
     if plan_of(formulas, unknowns).linear:
         return linear_step(problem, problem.start, Trail("linear", problem.start, budget)), problem
     if start.blind:
@@ -288,7 +297,7 @@ def _solve_plain(
             and narrowed(unknowns, formulas, known.values, bounds, known.errors).empty >= 0
         )
 
-    return solve_block(problem, budget, (("torn", through_tears),), hopeless), problem
+    return ladder(problem, budget, (("torn", through_tears),), hopeless), problem
 
 
 def _less_blind(
@@ -302,7 +311,7 @@ def _less_blind(
     return replace(problem, start=np.array(begin.values), magnitude=np.array(begin.magnitude))
 
 
-def _problem(formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start) -> Problem:
+def problem_of(formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start) -> Problem:
     """The block for the solver: as arrays where it is large, else as one generated function."""
     if len(unknowns) < LARGE_BLOCK:
         return block_problem(formulas, unknowns, known.values, known.errors, start)
@@ -352,67 +361,13 @@ def _through_tears(torn: TornBlock | None, problem: Problem, trail: Trail) -> Ou
 def _iterate(
     formulas: tuple[Formula, ...], unknowns: Sequence[int], known: Known, start: Start, budget: Budget
 ) -> BlockResult:
-    outcome, problem = _solve_plain(formulas, unknowns, known, start, budget)
+    outcome, problem = solve_plain(formulas, unknowns, known, start, budget)
     kinks = plan_of(formulas, unknowns).kinked
     if kinks and outcome.solved and len(unknowns) <= LARGEST_EXAMINED:
         posed = problem or scalar_problem(formulas[0], unknowns[0], known.values, start)
         with_kinks = [formulas[k] for k in kinks]
         outcome = beyond_the_kinks(outcome, posed, with_kinks, unknowns, known.values, start)
     return judged(formulas, unknowns, known, start, outcome, problem)
-
-
-def _by_regimes(
-    formulas: tuple[Formula, ...],
-    unknowns: Sequence[int],
-    known: Known,
-    guesses: Guesses,
-    start: Start,
-    budget: Budget,
-) -> BlockResult:
-    """Hold the branches, solve, check, switch."""
-    found = switches(formulas, set(unknowns))
-    deadline = time.perf_counter() + budget.seconds
-    position = {q: i for i, q in enumerate(unknowns)}
-
-    def choose(x: Vector) -> tuple[int, ...]:
-        return chosen_branches(
-            formulas, found, lambda q: float(x[position[q]]) if q in position else known.values[q]
-        )
-
-    def solve_held(branches: tuple[int, ...], at: Vector | None) -> Outcome:
-        held = hold(formulas, found, branches)
-        if len(unknowns) == 1:
-            closed = (
-                _closed_form(held[0], unknowns[0], known, guesses)
-                if unknowns[0] in held[0].quantities
-                else None
-            )
-            if closed is not None:
-                status = Status.CONVERGED if closed.solved else Status.HELD
-                return Outcome(status, np.array(closed.values), closed.residual, 0, "closed form")
-        begin = start if at is None else _started_at(start, at)
-        left = Budget(budget.iterations, max(deadline - time.perf_counter(), 0.0))
-        return _solve_plain(held, unknowns, known, begin, left)[0]
-
-    counts = tuple(switch.count for switch in found)
-    first = tuple(map(min, choose(np.array(start.values)), (count - 1 for count in counts)))
-    held: Held = solve_regimes(first, counts, solve_held, choose, np.array(start.magnitude))
-    taken, outcome = hold(formulas, found, held.branches), held.outcome
-    if outcome.status is Status.NO_CONSISTENT_BRANCH and any(map(operator.eq, choose(outcome.x), counts)):
-        # What the branch gives is no use where the condition itself has no value.
-        taken, outcome = formulas, replace(outcome, status=Status.DOMAIN)
-    problem = None
-    if len(unknowns) > 1:
-        problem = _problem(taken, unknowns, known, start)
-    gap = () if held.gap is None else tuple(held.gap.tolist())
-    return judged(taken, unknowns, known, start, outcome, problem, gap)
-
-
-def _started_at(start: Start, x: Vector) -> Start:
-    """The same start at another point, kept inside the bounds."""
-    inside = [min(max(v, low), high) for v, low, high in zip(x.tolist(), start.lower, start.upper)]
-    values = tuple(v if math.isfinite(v) else s for v, s in zip(inside, start.values))
-    return Start(values, start.lower, start.upper, start.magnitude, start.assumed, start.blind)
 
 
 def _evidence(

@@ -91,7 +91,7 @@ def starting_values(
             found[quantity] = room.on_curves(guesses.near[quantity], quantity, position)
             continue
         assumed.append(position)
-        between = _between(*room.bounds(quantity), position)
+        between = point_between(*room.bounds(quantity), position)
         if between is not None:
             found[quantity] = between
     given = dict(found)
@@ -154,7 +154,7 @@ class _Room:
         first, last = self.ranges.get(quantity, (-math.inf, math.inf))
         if first <= value <= last:
             return value
-        between = _between(*self.bounds(quantity), position)
+        between = point_between(*self.bounds(quantity), position)
         return value if between is None else between
 
 
@@ -168,7 +168,7 @@ def _narrowed(
     return room if found.empty >= 0 else _Room(room.guesses, dict(zip(unknowns, found.ranges)))
 
 
-def _between(low: float, high: float, position: int) -> float | None:
+def point_between(low: float, high: float, position: int) -> float | None:
     """A point well inside finite bounds, different for each position; None where a side is open."""
     if not (math.isfinite(low) and math.isfinite(high)):
         return None
@@ -337,7 +337,7 @@ def _inside(value: float, room: _Room, quantity: int) -> float:
         if low < candidate < high:
             return candidate
     if math.isfinite(low) and math.isfinite(high):
-        return _between(low, high, 0) or low
+        return point_between(low, high, 0) or low
     if math.isfinite(low):
         return low + (abs(low) or abs(value) or 1.0) * 0.5
     return high - (abs(high) or abs(value) or 1.0) * 0.5

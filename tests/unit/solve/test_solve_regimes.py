@@ -86,3 +86,40 @@ def test_the_number_of_combinations_is_bounded():
     held = solve_regimes((0,) * 20, (2,) * 20, solve_held, lambda x: (int(x[0]) % 2,) + (1,) * 19, ONE)
     assert count <= 64
     assert held.outcome.status is Status.NO_CONSISTENT_BRANCH
+
+
+def test_what_is_not_possible_is_not_held():
+    tried = []
+
+    def solve_held(branches, start):
+        tried.append(branches)
+        return outcome(float(branches[0] + 2 * branches[1]))
+
+    held = solve_regimes(
+        (0, 0),
+        (2, 2),
+        solve_held,
+        lambda x: (int(x[0]) % 2, int(x[0]) // 2),
+        ONE,
+        possible=lambda branches: branches == (1, 1),
+    )
+    assert tried == [(1, 1)]
+    assert held.outcome.solved and held.branches == (1, 1)
+
+
+def test_every_combination_is_tried_before_one_is_searched_thoroughly():
+    tried = []
+
+    def quickly(branches, start):
+        tried.append(("quickly", branches))
+        return outcome(0.0, Status.STALLED)
+
+    def thoroughly(branches, start, left):
+        tried.append(("thoroughly", branches, left))
+        return outcome(
+            1.0 if branches == (1,) else 0.0, Status.CONVERGED if branches == (1,) else Status.STALLED
+        )
+
+    held = solve_regimes((0,), (2,), quickly, lambda x: (int(x[0]),), ONE, solve_thoroughly=thoroughly)
+    assert tried == [("quickly", (0,)), ("quickly", (1,)), ("thoroughly", (0,), 2), ("thoroughly", (1,), 1)]
+    assert held.outcome.solved and held.branches == (1,)

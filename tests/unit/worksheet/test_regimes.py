@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 import random
+import time
 
 import pytest
 from solving import errors, only, solve, values
@@ -194,3 +195,42 @@ def test_a_root_in_each_branch_bars_neither_side(p2: str, sign: float) -> None:
     assert math.copysign(1.0, found["Q"]) == sign
     assert found["dp"] == pytest.approx(sign * (found["Q"] / 1e-5) ** 2, rel=1e-9)
     assert found["dp"] == pytest.approx(2e5 + 3e8 * (1e-3 - found["Q"]) - float(p2.split()[0]), rel=1e-9)
+
+
+PARALLEL_VALVES = """
+k = 1 L/s
+p1 = 30 kPa
+q1 = if p1 > pm then k*sqrt((p1 - pm)/(10 kPa)) else 0 L/s
+q2 = if pm > p2 then k*sqrt((pm - p2)/(10 kPa)) else 0 L/s
+q3 = if pm > p3 then 2*k*sqrt((pm - p3)/(10 kPa)) else 0 L/s
+p2 = 5 kPa
+p3 = {p3}
+q1 = q2 + q3
+{guess}
+"""
+
+
+@pytest.mark.parametrize("p3", ["25 kPa", "60 kPa"])
+@pytest.mark.parametrize("guess", ["", "pm near 70 kPa", "pm within 0 kPa .. 100 kPa", "pm near 1 kPa"])
+def test_combinations_without_a_solution_do_not_use_up_the_time(p3: str, guess: str) -> None:
+    """Three check valves at one node: the third stays shut, and the node lies half way between the others.
+
+    Where all three are shut any pressure would do, if it did not open one of them.
+    """
+    begin = time.perf_counter()
+    solution = solve(PARALLEL_VALVES.format(p3=p3, guess=guess))
+    assert solution.status == "solved"
+    assert values(solution)["pm"] == pytest.approx(17.5e3, rel=1e-9)
+    # The time allowed for a block is 10 s.
+    assert time.perf_counter() - begin < 5.0
+
+
+def test_many_conditions_are_told_by_what_bounds_leave() -> None:
+    """Twelve lines from one node, each with a check valve: those to lower pressures flow."""
+    pressures = [5.0 * k for k in range(1, 13)]
+    lines = [f"q_{k} = if p > {v} then sqrt(p - {v}) else 0" for k, v in enumerate(pressures)]
+    total = " + ".join(f"q_{k}" for k in range(12))
+    solution = solve("\n".join([*lines, f"{total} = 6", "p near 100"]))
+    assert solution.status == "solved"
+    p = values(solution)["p"]
+    assert sum(math.sqrt(max(p - v, 0.0)) for v in pressures) == pytest.approx(6.0, rel=1e-9)
