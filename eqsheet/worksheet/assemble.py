@@ -16,6 +16,7 @@ from eqsheet.worksheet.branches_taken import branches_taken
 from eqsheet.worksheet.deferred import DeferredMapping, DeferredSequence
 from eqsheet.worksheet.failure_messages import digits_of
 from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds, limits_outside_curves
+from eqsheet.worksheet.limits_without_value import limits_without_value
 from eqsheet.worksheet.many_limits import failing_limits
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import BlockRun, Run
@@ -24,7 +25,9 @@ from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, 
 
 _RANK = {Severity.ERROR: 0, Severity.WARNING: 1, Severity.NOTE: 2}
 # Errors that say the worksheet is sound but no solution was found.
-UNSOLVED_CODES = frozenset(("no-solution", "outside-bounds", "outside-curve", "step-read-backwards"))
+UNSOLVED_CODES = frozenset(
+    ("no-solution", "outside-bounds", "outside-curve", "step-read-backwards", "limit-without-value")
+)
 
 
 def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str, float]) -> Solution:
@@ -39,6 +42,7 @@ def assemble(name: str, prepared: Prepared, run: Run | None, timing: Mapping[str
         diagnostics += known_bounds(prepared, run)
         diagnostics += judge_validity(prepared, run)
         diagnostics += limits_outside_curves(prepared, run)
+        diagnostics += limits_without_value(prepared, run)
         limits = judge_limits(prepared, run)
         own: Mapping[int, int]
         if prepared.system.groups:

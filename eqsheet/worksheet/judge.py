@@ -37,7 +37,7 @@ def judge_limits(prepared: Prepared, run: Run) -> Sequence[LimitReport]:
 
 
 def judge_limit(prepared: Prepared, run: Run, item: LimitItem) -> LimitReport | None:
-    """One limit; None where a quantity is not found, or a curve is read outside its range."""
+    """One limit; None where a quantity is not found, a curve is read outside its range, or a side has no value."""
     formula = item.formula
     inputs = [run.values[q] for q in formula.quantities]
     if not all(map(math.isfinite, inputs)):
@@ -46,6 +46,8 @@ def judge_limit(prepared: Prepared, run: Run, item: LimitItem) -> LimitReport | 
         formula.tape, inputs, literal_values(formula), [run.errors[q] for q in formula.quantities]
     )
     if outside_curve(formula.tape, evidence.values) is not None:
+        return None
+    if not all(math.isfinite(evidence.values[output]) for output in formula.tape.outputs):
         return None
     return _report(prepared, item, evidence)
 

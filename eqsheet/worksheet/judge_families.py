@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from eqsheet.model.array_evidence import ArrayEvidence, evaluate_arrays_with_evidence
-from eqsheet.model.equation_group import EquationGroup, LimitGroup
+from eqsheet.model.equation_group import BoundFormula, EquationGroup, LimitGroup
 from eqsheet.model.evaluate import ROUNDING, evaluate_arrays
 from eqsheet.model.system import LimitItem
 from eqsheet.model.tape import Tape, operands_of
@@ -39,14 +39,11 @@ def judge_limits_of_families(prepared: Prepared, run: Run) -> LimitReports:
 def _judged(prepared: Prepared, group: LimitGroup, values: Array, errors: Array) -> JudgedFamily:
     bound, item = group.bound, group.item(0)
     there = np.flatnonzero(np.isfinite(values[bound.numbers]).all(axis=1))
-    numbers = bound.numbers[there].T
-    evidence = evaluate_arrays_with_evidence(
-        bound.formula.tape,
-        tuple(values[numbers]),
-        bound.literals_of(there),
-        tuple(errors[numbers]),
-        len(there),
-    )
+    evidence = _evidence(bound, there, values, errors)
+    judged = np.isfinite(evidence.values).all(axis=0)
+    if not judged.all():
+        there = there[judged]
+        evidence = _evidence(bound, there, values, errors)
     operands = operands_compared(item)
     unit, relative = slack_unit(prepared, item)
     holds = np.ones(len(there), dtype=bool)
@@ -70,6 +67,17 @@ def _judged(prepared: Prepared, group: LimitGroup, values: Array, errors: Array)
         slack,
         unit,
         difference_text(unit.text, prepared),
+    )
+
+
+def _evidence(bound: BoundFormula, there: NDArray[np.int64], values: Array, errors: Array) -> ArrayEvidence:
+    numbers = bound.numbers[there].T
+    return evaluate_arrays_with_evidence(
+        bound.formula.tape,
+        tuple(values[numbers]),
+        bound.literals_of(there),
+        tuple(errors[numbers]),
+        len(there),
     )
 
 
