@@ -130,7 +130,7 @@ def prepare(
     diagnostics += checked.diagnostics
     valid_text = not any(d.severity is Severity.ERROR for d in (*earlier, *found, *units.diagnostics))
     if valid_text:
-        diagnostics += structure_diagnostics(system, settled, checked.rows, structure)
+        diagnostics += structure_diagnostics(system, settled, checked.rows, structure, statements)
     done = clock()
     timing = {"model": modelled - begin, "structure": done - modelled}
     return Prepared(

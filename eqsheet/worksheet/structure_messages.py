@@ -10,10 +10,14 @@ from eqsheet.model.spelling import close_names
 from eqsheet.model.system import EquationItem, EquationSystem
 from eqsheet.model.tape import Formula
 from eqsheet.structure.verdict import Conflict, Shortfall, Structure
-from eqsheet.worksheet.places import MOST_LABELS, label_of, line_words, listed, quoted
+from eqsheet.syntax.nodes import Statement
+from eqsheet.worksheet.places import MOST_LABELS, MOST_LISTED, label_of, line_words, listed, quoted
+from eqsheet.worksheet.unshared_names import unshared_note
 
 # Each name is compared with all others; where very many quantities are free, a slip is not the reason.
 MOST_SPELLED = 20
+# The forgotten `shared` of a template shows at its first instances.
+MOST_LOOKED_AT = 200
 
 # Names that an engineer may take for given.
 _NOT_GIVEN = {
@@ -23,16 +27,20 @@ _NOT_GIVEN = {
 
 
 def structure_diagnostics(
-    system: EquationSystem, formulas: Sequence[Formula], rows: Sequence[int], structure: Structure
+    system: EquationSystem,
+    formulas: Sequence[Formula],
+    rows: Sequence[int],
+    structure: Structure,
+    statements: Sequence[Statement],
 ) -> list[Diagnostic]:
-    """One diagnostic for each over- or under-determined piece.
+    """One diagnostic for each over- or under-determined piece of a worksheet of some statements.
 
     Conflicts are not reported here: whether the statements contradict each other or merely repeat themselves is
     told once the rest is solved, see `conflict_diagnostic`.
     """
     square = len(structure.unmatched_rows) == len(structure.unmatched_columns)
     singular = bool(structure.conflicts) and square
-    slips = _likely_slips(system, formulas, structure.shortfalls)
+    slips = _likely_slips(system, formulas, structure.shortfalls, statements)
     return [
         shortfall_diagnostic(system, rows, shortfall, singular, slips) for shortfall in structure.shortfalls
     ]
@@ -54,8 +62,12 @@ def shortfall_diagnostic(
     slips : mapping of int to str
         What is to be said of quantities whose names are likely slips.
     """
-    names = [system.names[c] for c in shortfall.columns]
     items = [system.equations[rows[r]] for r in shortfall.rows]
+    columns: Sequence[int] = shortfall.columns
+    if len(columns) > MOST_LISTED:
+        # Not all of them are told: the ones that may be missing a line go first.
+        columns = sorted(columns, key=_as_if_found(system, items))
+    names = [system.names[c] for c in columns]
     missing = shortfall.missing
     count = "one more equation or known is" if missing == 1 else f"{missing} more equations or knowns are"
     if items:
@@ -64,11 +76,11 @@ def shortfall_diagnostic(
         message = f"{where} {'does' if number == 1 else 'do'} not determine {quoted(names)}: {count} needed"
     else:
         message = f"nothing determines {quoted(names)}"
-    labels = [label_of(system, system.first_places[shortfall.columns[0]])]
+    labels = [label_of(system, system.first_places[columns[0]])]
     others = dict.fromkeys(
         label_of(system, i.place)
         for i in items
-        if i.place.statement != system.first_places[shortfall.columns[0]].statement
+        if i.place.statement != system.first_places[columns[0]].statement
     )
     labels += list(others)[:MOST_LABELS]
     notes = []
@@ -86,28 +98,72 @@ def shortfall_diagnostic(
     return error("under-determined", message, *labels, notes=tuple(notes), help=help)
 
 
+def _as_if_found(
+    system: EquationSystem, items: Sequence[EquationItem]
+) -> Callable[[int], tuple[bool, bool, bool, bool]]:
+    """How much a free quantity looks like one to be found, not like one whose line was forgotten.
+
+    What has a guess or a shown unit, or is alone on a left side, is to be found; what stands in one equation only, or
+    nowhere alone, may be a known that is missing.
+    """
+    wanted = {*system.shown, *(guess.quantity for guess in system.guesses)}
+    uses = Counter(quantity for item in items for quantity in item.formula.quantities)
+    alone: tuple[set[int], set[int]] = (set(), set())
+    for item in items:
+        for side, output in enumerate(item.formula.tape.outputs[:2]):
+            operation, *rest = item.formula.tape.instructions[output]
+            if operation == "quantity":
+                alone[side].add(item.formula.quantities[rest[0]])
+    left, right = alone
+    return lambda q: (q in wanted, q in left, uses[q] > 1, q in right)
+
+
 def _likely_slips(
-    system: EquationSystem, formulas: Sequence[Formula], shortfalls: Sequence[Shortfall]
+    system: EquationSystem,
+    formulas: Sequence[Formula],
+    shortfalls: Sequence[Shortfall],
+    statements: Sequence[Statement],
 ) -> dict[int, str]:
-    """Free quantities that stand in one equation only and have a name close to another: likely slips."""
+    """What is to be said of free quantities that are likely slips.
+
+    They stand in one equation only and have a name close to another, or are local to a template that forgot to share
+    them.
+    """
     if not shortfalls:
         return {}
     uses = Counter(quantity for formula in formulas for quantity in formula.quantities)
     free = [c for shortfall in shortfalls for c in shortfall.columns]
     once = [c for c in free if uses[c] == 1 or system.names[c] in _NOT_GIVEN]
     found: dict[int, str] = {}
+    inside = (c for c in free[:MOST_LOOKED_AT] if "." in system.names[c])
+    for column in inside:
+        said = unshared_note(system.names[column], statements, system.names)
+        # Once for all instances of a template.
+        if said and not any(said.endswith(other.partition(" is there")[2]) for other in found.values()):
+            found[column] = said
     for column in once[:MOST_SPELLED]:
+        if column in found:
+            continue
         # Members of one family are alike by design, and an index is no slip.
         if system.names[column] in _NOT_GIVEN:
             found[column] = _NOT_GIVEN[system.names[column]].format(system.names[column])
             continue
-        close = close_names(system.names[column], system.names) if "[" not in system.names[column] else ()
+        close = () if "[" in system.names[column] else _close(system.names[column], system.names)
         if close:
             place = line_words(system, (system.first_places[column],))
             found[column] = (
                 f"`{system.names[column]}` occurs only on {place}: did you mean {quoted(close, 'or')}?"
             )
     return found
+
+
+def _close(name: str, names: Sequence[str]) -> tuple[str, ...]:
+    """Names that one may be a slip for; inside an instance, of its own quantities."""
+    owner, dot, last = name.rpartition(".")
+    if not dot:
+        return close_names(name, names)
+    others = [n.rpartition(".") for n in names]
+    return tuple(f"{owner}.{n}" for n in close_names(last, [n for own, _, n in others if own == owner]))
 
 
 def conflict_diagnostic(

@@ -137,3 +137,58 @@ def test_a_known_whose_quantity_has_a_guess_is_named_first_among_what_competes()
 def test_a_known_that_an_equation_has_alone_on_a_side_is_named_before_the_others() -> None:
     found = only(solve("a = 2 m\nb = 3 m\nc = a*b/1 m\nd = c + a\nd = 4 m"), "contradicting-equations")
     assert 5 in lines(found)[:2]
+
+
+def test_what_may_be_missing_goes_before_a_long_list_of_what_is_to_be_found() -> None:
+    solution = solve(
+        """
+        N = 50
+        for i in 1..N:
+            T[i-1] - 2*T[i] + T[i+1] = 0 K
+            T[i] near 300 K
+        T[0] = 300 K
+        T[N+1] = u
+        """
+    )
+    found = only(solution, "under-determined")
+    assert "do not determine `u`, " in found.message
+    assert found.help.startswith("set one of `u`, ")
+    assert lines(found)[0] == 6
+
+
+INNER = """
+    template pipe:
+        shared g
+        m = 2*v + g
+        v = 1 m/s
+    template two:
+        use pipe as a
+        total = a.m
+    g = 1 m/s
+"""
+
+
+def test_a_shared_name_that_the_template_between_does_not_share() -> None:
+    found = only(solve(INNER + "    use two as t\n"), "under-determined")
+    assert [note for note in found.notes if "`t.g`" in note] == [
+        "`t.g` is there because `pipe` shares `g`: if that of the worksheet around is meant, "
+        "write `shared g` in `two` too"
+    ]
+
+
+def test_it_is_told_once_for_all_instances() -> None:
+    text = INNER + "    for i in 1..5:\n        use two as t[i]\n"
+    found = [d for d in solve(text).diagnostics if d.code == "under-determined"]
+    assert sum("write `shared g`" in note for d in found for note in d.notes) == 1
+
+
+def test_a_name_of_the_template_between_is_its_own() -> None:
+    text = INNER.replace("total = a.m", "total = a.m + g") + "    use two as t\n"
+    found = only(solve(text), "under-determined")
+    assert not any("shares" in note for note in found.notes)
+
+
+def test_a_close_name_is_looked_for_in_the_same_instance() -> None:
+    text = "template t:\n    y = 2*flov\n    flow = 3\nuse t as p\nflov = 1\n"
+    found = only(solve(text), "under-determined")
+    assert found.notes[0].startswith("`p.flov` occurs only on line 2: did you mean `p.flow`?")
