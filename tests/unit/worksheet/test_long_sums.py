@@ -3,14 +3,17 @@
 from __future__ import annotations
 
 import math
+from pathlib import Path
 
 import pytest
 
 import eqsheet
 from eqsheet.diagnostics.source import Source
+from eqsheet.live.document import EditedWorksheet, open_text
 from eqsheet.syntax.format import format_document
 from eqsheet.syntax.nodes import Equation
 from eqsheet.syntax.parse import parsed_text
+from eqsheet.syntax.read import TextFile
 from eqsheet.syntax.write import write_expression
 
 TERMS = 2_400
@@ -69,3 +72,15 @@ def test_a_long_sum_is_written_and_laid_out() -> None:
     assert write_expression(equation.right) == " + ".join(["a*b", "(c - d)/2"] * (TERMS // 4))
     laid_out = format_document(Source("sheet", text))
     assert laid_out.split() == f"y = {' + '.join(['a*b', '(c - d)/2'] * (TERMS // 4))}".split()
+
+
+def test_a_worksheet_with_a_long_definition_is_solved_again_after_an_edit(tmp_path: Path) -> None:
+    lines = [f"define f(x) = {'+'.join(['x'] * TERMS)}", "a = 2", f"y = f(a) + {'+'.join(['a'] * TERMS)}"]
+    path = tmp_path / "long.eqsheet"
+    path.write_text("\n".join(lines), encoding="utf-8")
+    file = open_text(str(path))
+    assert isinstance(file, TextFile)
+    sheet = EditedWorksheet(file, str(path))
+    assert sheet.solution["y"].si == 4 * TERMS
+    sheet.type("a = 3")
+    assert sheet.solution["y"].si == 6 * TERMS
