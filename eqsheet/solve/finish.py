@@ -9,6 +9,7 @@ import numpy as np
 from eqsheet.solve.factor import Factor, factorise, smallest_singular_vectors
 from eqsheet.solve.interior import Interior
 from eqsheet.solve.kind_of_root import DOUBTFUL, kind_of_root
+from eqsheet.solve.near_zero import below_floor, own_magnitudes, root_as_it_is
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
 from eqsheet.solve.termination import (
@@ -139,14 +140,44 @@ def _concluded(problem: Problem, interior: Interior, trail: Trail, rest: _Rest, 
         sizes = equation_sizes(problem, x, jacobian)
         scaled = scaled_norm(residual, sizes)
     believed = scaled <= ACCEPTABLE and (sure or confirmed(problem, x, residual, jacobian))
-    if believed and (factor.singular or not at_rest(problem, x, factor, residual)):
+    if believed and not sure and below_floor(problem, x).any():
+        root = root_as_it_is(problem, interior, x, factor)
+        if root is not None:
+            own = own_magnitudes(problem, root)
+            return _close(own, interior, trail, _rest_at(own, root, jacobian), slow_steps, False)
+        believed = False
+    if believed:
+        return _close(problem, interior, trail, rest._replace(scaled=scaled, sizes=sizes), slow_steps, sure)
+    return give_up(problem, interior, trail, -factor.weights * factor.solve(residual), factor)
+
+
+def _rest_at(problem: Problem, x: Vector, beside: Matrix) -> _Rest:
+    """All that is to be known of a point; where slopes are infinite, the Jacobian `beside` it stands for its own."""
+    residual, jacobian = problem.linearise(x)
+    if not np.isfinite(abs(jacobian).sum()):
+        jacobian = beside
+    factor = factorise(jacobian, np.maximum(np.abs(x), WEIGHT_FLOOR * problem.magnitude))
+    sizes = equation_sizes(problem, x, jacobian)
+    return _Rest(x, residual, jacobian, factor, scaled_norm(residual, sizes), sizes)
+
+
+def _close(
+    problem: Problem, interior: Interior, trail: Trail, rest: _Rest, slow_steps: int, sure: bool
+) -> Outcome:
+    """The outcome at a point where residuals vanish: what kind of root it is, if it is one.
+
+    Parameters
+    ----------
+    sure : bool
+        Whether the residuals are at rounding level and the steps before have shrunk.
+    """
+    x, residual, jacobian, factor, scaled, sizes = rest
+    believed = True
+    if factor.singular or not at_rest(problem, x, factor, residual):
         # No small step explains the residuals, so they must be small against terms that are really there.
         believed = scaled_norm(residual, sizes_really_there(problem, x, jacobian)) <= ACCEPTABLE
-    if believed and underflown(problem, x, factor):
-        believed = False
-    if not believed:
-        step = -factor.weights * factor.solve(residual)
-        return give_up(problem, interior, trail, step, factor)
+    if not believed or underflown(problem, x, factor):
+        return give_up(problem, interior, trail, -factor.weights * factor.solve(residual), factor)
     single = sure and factor.condition < SURELY_SINGLE and isinstance(factor.inverse, np.ndarray)
     # The condition is that of the matrix equilibrated where it had to be, so the inverse itself is asked too.
     single = single and np.abs(factor.inverse).max() < SURELY_SINGLE

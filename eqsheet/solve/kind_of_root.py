@@ -7,7 +7,8 @@ from math import inf
 
 import numpy as np
 
-from eqsheet.solve.factor import Factor, factorise, pseudo_inverse, smallest_singular_vectors
+from eqsheet.solve.factor import TINY, Factor, factorise, pseudo_inverse, smallest_singular_vectors
+from eqsheet.solve.order_of_growth import NOISE, grows_by_a_power
 from eqsheet.solve.outcome import Status
 from eqsheet.solve.problem import Matrix, Problem, Vector
 from eqsheet.solve.termination import (
@@ -27,6 +28,8 @@ DOUBTFUL = 1e4
 # Order of the largest block that is examined so: it takes dense matrices. A larger one is not believed
 # where it is singular.
 LARGEST_EXAMINED = 300
+# How far off, relative to the size of the unknowns, a root is looked at whose residuals grow too slowly to be told.
+FAR = 0.5
 # Gauss-Newton steps towards the roots at that distance: few where they converge quadratically, many where an edge
 # of the domain lets them come only by halves.
 STEPS = 40
@@ -52,7 +55,8 @@ def kind_of_root(problem: Problem, x: Vector, scaled: float, sizes: Vector, fact
     -----
     Looks along the right singular vector v of the smallest singular value. At distances t and 2t along it the
     residual is made as small as the other directions allow; what is left grows with t^2 at a double root
-    and with t at a regular one, and stays at rounding level on a continuum.
+    and with t at a regular one, and stays at rounding level on a continuum. Where it is lost in rounding at 2t, as with
+    t^3 or more, it is followed further off.
     """
     if not _sensitive(factor, _with_floors(problem, x, sizes, factor), DOUBTFUL):
         return Status.CONVERGED
@@ -73,11 +77,24 @@ def kind_of_root(problem: Problem, x: Vector, scaled: float, sizes: Vector, fact
     )
     left_over = [least_residuals(problem, x, reach, units, direction, t) for t in (PROBE, 2.0 * PROBE)]
     near, far = (min(pair) for pair in left_over)
-    if far <= max(64.0 * ROUNDING, 8.0 * scaled):
-        return Status.CONTINUUM
+    noise = max(NOISE * ROUNDING, 8.0 * scaled)
+    if far <= noise:
+        distances = _distances(problem, x, reach, direction)
+        further = (min(least_residuals(problem, x, reach, units, direction, t)) for t in distances)
+        return Status.DOUBLE if grows_by_a_power(further, noise) else Status.CONTINUUM
     if far > 3.0 * near or factor.singular:
         return Status.DOUBLE
     return Status.CONVERGED
+
+
+def _distances(problem: Problem, x: Vector, reach: Vector, direction: Vector) -> Iterator[float]:
+    """Distances that double from that of the examination up to a good part of the unknowns' sizes."""
+    moved = reach * np.abs(direction)
+    farthest = FAR * float((np.maximum(np.abs(x), problem.magnitude) / np.maximum(moved, TINY)).min())
+    distance = 2.0 * PROBE
+    while distance <= farthest:
+        yield distance
+        distance *= 2.0
 
 
 def _with_floors(problem: Problem, x: Vector, sizes: Vector, factor: Factor) -> Vector:

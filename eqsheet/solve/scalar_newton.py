@@ -8,12 +8,15 @@ the idea; the code is our own).
 
 from __future__ import annotations
 
-from math import copysign, inf, nextafter
+from math import copysign, inf, log2, nextafter
 
 from eqsheet.solve.damping import LEAST_DAMPING
 from eqsheet.solve.factor import SINGULAR_CONDITION
 from eqsheet.solve.interior import LEAST_FRACTION, NUDGE, RESTING
+from eqsheet.solve.kind_of_root import FAR
+from eqsheet.solve.near_zero import UNSETTLED
 from eqsheet.solve.newton import CONTRACTING, QUICK
+from eqsheet.solve.order_of_growth import NOISE, grows_by_a_power
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import ScalarProblem
 from eqsheet.solve.termination import (
@@ -158,13 +161,36 @@ def finish(problem: ScalarProblem, x: float, value: float, slope: float, trail: 
                 x, value, slope = polished, again, again_slope
     sure = trail.contracting and 0.0 < abs(value) <= SURE * abs(slope * x)
     scaled = (residual_by_slope if sure else scaled_residual)(problem, x, value, slope)
-    if not (scaled <= ACCEPTABLE and (sure or _confirmed(problem, x, value, slope))):
+    if not (scaled <= ACCEPTABLE and (sure or confirmed_scalar(problem, x, value, slope))):
         return trail.close(Status.STALLED, x, scaled)
+    if not sure:
+        root = _root_as_it_is(problem, x, value, slope)
+        if root is None:
+            return trail.close(Status.STALLED, x, scaled)
+        x, value, slope = root
     bound = problem.lower if x - problem.lower < problem.upper - x else problem.upper
     resting = (0,) if abs(x - bound) <= RESTING * max(abs(bound), problem.magnitude) < inf else ()
     kind = _kind_of_root(problem, x, value, slope)
     null = () if kind is Status.CONVERGED else (1.0,)
     return trail.close(kind, x, scaled, resting, null, null)
+
+
+def _root_as_it_is(
+    problem: ScalarProblem, x: float, value: float, slope: float
+) -> tuple[float, float, float] | None:
+    """The root with value and slope: x itself, or zero beside it; None where neither is one. See `near_zero`."""
+    size = max(problem.size(x) or term_size(problem, x, slope), abs(slope * x))
+    # Beyond a kink there may be neither terms nor slopes.
+    holds = value == 0.0 or abs(value) <= ACCEPTABLE * size
+    if holds and (
+        abs(x) > NEIGHBOURHOOD * problem.magnitude or ROUNDING * size <= UNSETTLED * abs(slope * x)
+    ):
+        return x, value, slope
+    if problem.lower <= 0.0 <= problem.upper:
+        at_zero, slope_there = problem.linearise(0.0)
+        if abs(at_zero) <= ACCEPTABLE * problem.size(0.0):
+            return 0.0, at_zero, slope_there if abs(slope_there) < inf else slope
+    return (x, value, slope) if holds else None
 
 
 def _kind_of_root(problem: ScalarProblem, x: float, value: float, slope: float) -> Status:
@@ -177,8 +203,11 @@ def _kind_of_root(problem: ScalarProblem, x: float, value: float, slope: float) 
     if abs(slope) * reach * SUSPECT_CONDITION >= size > 0.0:
         return Status.CONVERGED
     near, far = (_least_beside(problem, x, distance * reach) for distance in (PROBE, 2.0 * PROBE))
-    if far <= max(64.0 * ROUNDING * size, 8.0 * abs(value)):
-        return Status.CONTINUUM
+    noise = max(NOISE * ROUNDING * size, 8.0 * abs(value))
+    if far <= noise:
+        farthest = int(log2(FAR * max(abs(x), problem.magnitude) / (PROBE * reach)))
+        further = (_least_beside(problem, x, PROBE * reach * 2.0**k) for k in range(1, farthest + 1))
+        return Status.DOUBLE if grows_by_a_power(further, noise) else Status.CONTINUUM
     if far > 3.0 * near or abs(slope) * reach * SINGULAR_CONDITION < size:
         return Status.DOUBLE
     return Status.CONVERGED
@@ -192,17 +221,19 @@ def _least_beside(problem: ScalarProblem, x: float, distance: float) -> float:
     return min((v for v in values if v < inf), default=inf)
 
 
-def _confirmed(problem: ScalarProblem, x: float, value: float, slope: float) -> bool:
+def confirmed_scalar(problem: ScalarProblem, x: float, value: float, slope: float) -> bool:
     """Whether a residual small only against the slope belongs to a root, not a pole; see `termination`."""
-    if abs(value) <= ACCEPTABLE * known_size(problem, x):
+    if value == 0.0:
         return True
     shift = BESIDE * max(abs(x), ZERO_FLOOR * problem.magnitude)
     for moved in (x + shift, x - shift):
         if problem.lower < moved < problem.upper:
             there = problem.residual(moved)
             if abs(there) < inf:
+                if abs(value) <= ACCEPTABLE * min(known_size(problem, x), known_size(problem, moved)):
+                    return True
                 return abs(there) > max(abs(value), 0.25 * abs(slope) * shift)
-    return False
+    return abs(value) <= ACCEPTABLE * known_size(problem, x)
 
 
 def _cut(problem: ScalarProblem, x: float, trial: float, closeness: float) -> float:

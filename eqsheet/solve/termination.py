@@ -150,10 +150,19 @@ def confirmed(problem: Problem, x: Vector, residual: Vector, jacobian: Matrix) -
     """Whether residuals that are not small against terms grow away from x as their derivatives foretell.
 
     Beside a pole ``|J| |x|`` is larger than everything else, and a huge residual would pass for rounding;
-    but there it falls with the distance.
+    but there it falls with the distance. So does the size of what has the pole inside, as ``tan(x)`` has.
     """
-    doubtful = np.flatnonzero(np.abs(residual) > ACCEPTABLE * known_sizes(problem, x))
+    if not residual.any():
+        return True
+    sizes = np.minimum(known_sizes(problem, x), known_sizes(problem, _a_little_off(problem, x)))
+    doubtful = np.flatnonzero(~(np.abs(residual) <= ACCEPTABLE * sizes))
     return all(_grows_away(problem, x, residual, jacobian, int(i)) for i in doubtful)
+
+
+def _a_little_off(problem: Problem, x: Vector) -> Vector:
+    """A point further from zero in every unknown, or nearer where bounds want it."""
+    shift = np.copysign(BESIDE * floored(x, problem), x)
+    return np.where((problem.lower < x + shift) & (x + shift < problem.upper), x + shift, x - shift)
 
 
 def underflown(problem: Problem, x: Vector, factor: Factor) -> bool:

@@ -15,6 +15,8 @@ UNIT_ROUNDOFF = 2.0**-53
 # far as doubles tell. The unknowns themselves are rounded too, which moves a residual by up to this many
 # roundings of |J| |x|.
 ROUNDED_UNKNOWNS = 4.0
+# A residual that many times the bound of its own rounding is looked at once more.
+EXCUSED = 2.0**20
 # Digits a double carries.
 MOST_DIGITS = 15
 
@@ -37,7 +39,10 @@ class Verdict:
     forward_error : ndarray (n,)
         Estimate of the error of each unknown, in its own unit.
     reach : ndarray (n,)
-        Size of each unknown, > 0.
+        Size of each unknown.
+    excused : bool
+        Whether a residual is far more than the evaluation at this very point rounds, so that only the rounding of the
+        unknowns explains it: as beside a pole.
     """
 
     solved: bool
@@ -46,12 +51,13 @@ class Verdict:
     condition: float
     forward_error: Vector
     reach: Vector
+    excused: bool = False
 
     @property
     def digits(self) -> tuple[int, ...]:
         """Significant digits of each unknown to trust, 0 to 15."""
         with np.errstate(divide="ignore"):
-            digits = np.floor(-np.log10(np.maximum(self.forward_error / self.reach, 1e-16)))
+            digits = np.floor(-np.log10(np.maximum(self.forward_error / np.maximum(self.reach, TINY), 1e-16)))
         # An error that is no number leaves no digits.
         return tuple(np.clip(np.nan_to_num(digits, nan=0.0), 0, MOST_DIGITS).astype(int).tolist())
 
@@ -77,6 +83,7 @@ def judge(
         Running error bound of each residual (Higham 2002, section 3.3), in its own unit.
     jacobian : ndarray (n, n)
     x, magnitude : ndarray (n,)
+        The magnitude is the scale of the factorisation for unknowns that are zero.
     factor : Factor, optional
         Of a Jacobian at x or next to it, where there is one already.
 
@@ -84,32 +91,27 @@ def judge(
     -----
     The forward error is ``|J^-1| (|r| + bound)``, componentwise (Higham 2002, section 7.1).
     """
-    reach = _reach(x, magnitude)
-    slopes = abs(jacobian) @ reach
     if not np.isfinite(abs(jacobian).sum()):
-        return _unfit(residual)
-    return _judged(residual, sizes, error_bounds, slopes, factor or factorise(jacobian, reach), x, reach)
+        return unfit(residual.size, int(np.isfinite(residual).argmin()))
+    size = np.abs(x)
+    if factor is None:
+        factor = factorise(jacobian, np.maximum(size, ZERO_FLOOR * magnitude))
+    return _judged(residual, sizes, error_bounds, abs(jacobian) @ size, factor, size)
 
 
 def judge_by_factor(
-    residual: Vector, sizes: Vector, error_bounds: Vector, factor: Factor, x: Vector, magnitude: Vector
+    residual: Vector, sizes: Vector, error_bounds: Vector, factor: Factor, x: Vector
 ) -> Verdict:
     """`judge` by what is factorised already: a Jacobian at x or next to it."""
-    reach = _reach(x, magnitude)
-    slopes = factor.rows * (abs(factor.matrix) @ (reach / factor.weights))
-    return _judged(residual, sizes, error_bounds, slopes, factor, x, reach)
+    size = np.abs(x)
+    slopes = factor.rows * (abs(factor.matrix) @ (size / factor.weights))
+    return _judged(residual, sizes, error_bounds, slopes, factor, size)
 
 
-def _reach(x: Vector, magnitude: Vector) -> Vector:
-    """Size (n,) of each unknown, > 0."""
-    return np.maximum(np.abs(x), ZERO_FLOOR * magnitude)
-
-
-def _unfit(residual: Vector) -> Verdict:
-    """The verdict where something is not finite."""
-    worst = int(np.flatnonzero(~np.isfinite(residual))[0]) if not np.isfinite(residual).all() else 0
-    nothing = np.full(residual.size, np.inf)
-    return Verdict(False, worst, np.inf, np.inf, nothing, np.ones(residual.size))
+def unfit(count: int, worst: int = 0) -> Verdict:
+    """The verdict where something is not finite, or nothing but noise."""
+    nothing = np.full(count, np.inf)
+    return Verdict(False, worst, np.inf, np.inf, nothing, np.ones(count))
 
 
 def _judged(
@@ -118,12 +120,11 @@ def _judged(
     error_bounds: Vector,
     slopes: Vector,
     factor: Factor,
-    x: Vector,
     reach: Vector,
 ) -> Verdict:
-    """The verdict, with ``slopes = |J| reach`` (n,)."""
+    """The verdict, with ``reach = |x|`` and ``slopes = |J| |x|`` (n,)."""
     if not np.isfinite(residual).all():
-        return _unfit(residual)
+        return unfit(residual.size, int(np.isfinite(residual).argmin()))
     rounding = error_bounds + ROUNDED_UNKNOWNS * UNIT_ROUNDOFF * slopes
     allowed = np.maximum(ACCEPTABLE * sizes, rounding)
     gaps = np.abs(residual)
@@ -131,11 +132,12 @@ def _judged(
     worst = int(shares.argmax())
     size = max(float(sizes[worst]), float(slopes[worst]), TINY)
     if factor.singular:
-        error = np.full(x.size, np.inf)
+        error = np.full(reach.size, np.inf)
     else:
         error = factor.weights * _absolute_solve(factor.inverse, (gaps + rounding) / factor.rows)
     solved = bool((gaps <= allowed).all())
-    return Verdict(solved, worst, float(gaps[worst]) / size, factor.condition, error, reach)
+    excused = bool((gaps > EXCUSED * error_bounds).any())
+    return Verdict(solved, worst, float(gaps[worst]) / size, factor.condition, error, reach, excused)
 
 
 def _absolute_solve(inverse: Matrix, right: Vector) -> Vector:

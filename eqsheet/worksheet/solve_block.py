@@ -25,14 +25,17 @@ from eqsheet.model.evidence_function import evidence_of_outputs
 from eqsheet.model.isolate import isolate
 from eqsheet.model.linear import affine_in
 from eqsheet.model.tape import Formula, Tape
+from eqsheet.solve.factor import Factor
 from eqsheet.solve.kind_of_root import LARGEST_EXAMINED
 from eqsheet.solve.ladder import DEFAULT_BUDGET, solve_block, solve_scalar
 from eqsheet.solve.linear import linear_step
+from eqsheet.solve.near_zero import own_magnitudes
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, Vector
-from eqsheet.solve.termination import ACCEPTABLE
+from eqsheet.solve.scalar_newton import confirmed_scalar
+from eqsheet.solve.termination import ACCEPTABLE, NEIGHBOURHOOD, confirmed
 from eqsheet.solve.trail import Budget, Rung, Trail
-from eqsheet.solve.verdict import judge, judge_by_factor
+from eqsheet.solve.verdict import Verdict, judge, judge_by_factor, unfit
 from eqsheet.structure.array_sequence import as_sequence
 from eqsheet.units.dimension import Dimension
 from eqsheet.worksheet.array_equations import LARGE_BLOCK, ArrayBlock, ArrayProblem, shapes_of
@@ -388,6 +391,30 @@ def _evidence(
     return np.array(residuals), np.array(sizes), np.array(bounds)
 
 
+def _noise_left_out(x: Vector, verdict: Verdict, start: Start) -> Vector | None:
+    """The point with zero for unknowns next to it that are no larger than their error; None where there are none."""
+    noise = ~(verdict.forward_error < verdict.reach) & (x != 0.0)
+    noise &= verdict.reach <= NEIGHBOURHOOD * np.array(start.magnitude)
+    zero = np.where(noise, 0.0, x)
+    inside = (np.array(start.lower) <= zero) & (zero <= np.array(start.upper))
+    return zero if noise.any() and inside[noise].all() else None
+
+
+def _confirmed(
+    problem: Problem | None,
+    formulas: Sequence[Formula],
+    unknowns: Sequence[int],
+    known: Known,
+    start: Start,
+    x: Vector,
+) -> bool:
+    """Whether residuals that only the rounding of the unknowns explains belong to a root, and not to a pole."""
+    if problem is not None:
+        return confirmed(own_magnitudes(problem, x), x, *problem.linearise(x))
+    scalar = scalar_problem(formulas[0], unknowns[0], known.values, start)
+    return confirmed_scalar(scalar, float(x[0]), *scalar.linearise(float(x[0])))
+
+
 def judged(
     formulas: Sequence[Formula],
     unknowns: Sequence[int],
@@ -421,22 +448,31 @@ def judged(
             problem=problem,
         )
 
+    def verdict_on(point: Vector, factor: Factor | None) -> Verdict:
+        if isinstance(problem, ArrayProblem | BlockProblem):
+            evidence = problem.evidence(point)
+        else:
+            evidence = _evidence(formulas, dict(zip(unknowns, point.tolist())), known)
+        if not isinstance(problem, ArrayProblem) and _noise(formulas, unknowns, known, evidence[2]):
+            return unfit(point.size)
+        if isinstance(problem, BlockProblem) and factor is not None:
+            return judge_by_factor(*evidence, factor, point)
+        if problem is not None:
+            return judge(*evidence, problem.linearise(point)[1], point, problem.magnitude, factor)
+        scalar = scalar_problem(formulas[0], unknowns[0], known.values, start)
+        slope = scalar.linearise(float(point[0]))[1]
+        return judge(*evidence, np.array([[slope]]), point, np.array(start.magnitude))
+
     if not outcome.solved:
         return failed()
-    if isinstance(problem, ArrayProblem | BlockProblem):
-        residuals, sizes, bounds = problem.evidence(x)
-    else:
-        residuals, sizes, bounds = _evidence(formulas, dict(zip(unknowns, values)), known)
-    if not isinstance(problem, ArrayProblem) and _noise(formulas, unknowns, known, bounds):
+    verdict = verdict_on(x, factor)
+    if not (verdict.forward_error < verdict.reach).all():
+        zero = _noise_left_out(x, verdict, start)
+        at_zero = verdict if zero is None else verdict_on(zero, None)
+        if zero is not None and at_zero.solved:
+            x, verdict, values = zero, at_zero, as_sequence(zero)
+    if verdict.excused and not _confirmed(problem, formulas, unknowns, known, start, x):
         return failed()
-    magnitude = np.array(start.magnitude)
-    if isinstance(problem, BlockProblem) and factor is not None:
-        verdict = judge_by_factor(residuals, sizes, bounds, factor, x, magnitude)
-    elif problem is not None:
-        verdict = judge(residuals, sizes, bounds, problem.linearise(x)[1], x, magnitude, factor)
-    else:
-        _, slope = scalar_problem(formulas[0], unknowns[0], known.values, start).linearise(values[0])
-        verdict = judge(residuals, sizes, bounds, np.array([[slope]]), x, magnitude)
     if isinstance(problem, BlockProblem) and verdict.solved and factor is not None:
         problem.repeats.solved(factor)
     if not verdict.solved:
