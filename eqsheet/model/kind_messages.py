@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
+from eqsheet.diagnostics.shortened import shortened
 from eqsheet.model.infer_kinds import KIND_WORDS, KindResult
 from eqsheet.model.kind_misuse import Misuse
 from eqsheet.model.kind_rules import TEMPERATURE
@@ -47,7 +48,7 @@ def _diagnostic(
 ) -> Diagnostic:
     formula = formulas[misuse.formula]
     statement = statements[formula.statement]
-    text = " ".join(statement.line.text[slice(*misuse.place)].split())
+    text = shortened(statement.line.text[slice(*misuse.place)])
     literal = formula.literals[misuse.literal] if misuse.literal >= 0 else None
     noun = "a temperature" if misuse.dimension == TEMPERATURE else "a gauge pressure"
     labels = [Label(statement.span(*misuse.place)), *_origins(misuse, formulas, statements, names)]
@@ -62,7 +63,7 @@ def _diagnostic(
             help=f"leave `{text}` out",
         )
     if misuse.what == "sum":
-        where = " ".join(statement.line.text[slice(*(misuse.against or misuse.place))].split())
+        where = shortened(statement.line.text[slice(*(misuse.against or misuse.place))])
         return error(
             SUM,
             f"`{where}` adds up readings, which have an origin each",

@@ -132,10 +132,17 @@ def _subtracted(reader: KindReader, side: int, weights: Sequence[Weight | None])
 
 
 def _terms(reader: KindReader, index: int) -> list[int]:
-    operation, *operands = reader.instructions[index]
-    if operation in ("add", "sub", "neg"):
-        return [term for o in operands if isinstance(o, int) for term in _terms(reader, o)]
-    return [index]
+    """The terms of a sum, in the order of the text."""
+    terms: list[int] = []
+    waiting = [index]
+    while waiting:
+        term = waiting.pop()
+        operation, *operands = reader.instructions[term]
+        if operation in ("add", "sub", "neg"):
+            waiting.extend(reversed([o for o in operands if isinstance(o, int)]))
+        else:
+            terms.append(term)
+    return terms
 
 
 def doubled_offsets(

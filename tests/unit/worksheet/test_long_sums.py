@@ -65,6 +65,11 @@ def test_a_clash_in_a_long_sum_points_at_its_term() -> None:
     assert all(len(line) < 200 for d in clashes for line in (d.message, d.help or "", *d.notes))
 
 
+def test_a_long_sum_of_readings_is_refused() -> None:
+    solution = eqsheet.parse(f"T = 20 degC\ny = {'+'.join(['T'] * TERMS)}\ndT = 5 K").solve()
+    assert [d.code for d in solution.diagnostics] == ["sum-of-readings"]
+
+
 def test_a_long_sum_is_written_and_laid_out() -> None:
     text = f"y = {'+'.join(['a*b', '(c - d)/2'] * (TERMS // 4))}"
     equation = parsed_text(text).node
