@@ -21,7 +21,7 @@ from eqsheet.units.display import default_unit
 from eqsheet.worksheet.beyond_bounds import Beyond, beyond_bounds
 from eqsheet.worksheet.curve_messages import curve_notes, outside_curve_diagnostic, stepped_diagnostic
 from eqsheet.worksheet.guesses import Guesses
-from eqsheet.worksheet.places import label_of, line_words, quoted
+from eqsheet.worksheet.places import equation_words, label_of, line_words, quoted
 from eqsheet.worksheet.proof_messages import Proof
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known
@@ -32,6 +32,9 @@ if TYPE_CHECKING:
 
 MOST_TERMS = 6
 MOST_EQUATIONS = 3
+MOST_PRESSED = 4
+# Nearer than this to a bound, relative to its own size, an unknown rests on it.
+ON_A_BOUND = 1e-6
 # Below this many digits a result is not good enough for ordinary work, and the run says so.
 FEW_DIGITS = 5
 # Below this part of a value an error leaves that many digits for sure.
@@ -120,7 +123,8 @@ def failure_diagnostic(
     others = sorted((p for i, p in enumerate(places) if i != worst), key=lambda p: (p.statement, p.start))
     shut_out = writer.shut_out_by(beyond)
     # One bound is as likely at fault as an equation; several at once rather follow from one.
-    labels += shut_out[:1] + [label_of(system, p) for p in others[:8]] + shut_out[1:]
+    lines = dict.fromkeys(label_of(system, p) for p in others if p != places[worst])
+    labels += shut_out[:1] + list(lines)[:8] + shut_out[1:]
     # A best point that satisfies what nothing can satisfy lies where a term is lost to underflow.
     notes = writer.at_best_point() if not proof or writer.gaps() else []
     notes += writer.found_beyond(beyond)
@@ -275,7 +279,7 @@ class _Writer:
                 " ".join(_signed(self._term(formula, i, results[i], units[i]), sign) for sign, i in terms)
                 for terms in (_terms(formula, output) for output in formula.tape.outputs)
             ]
-            place = line_words(self.system, [self.system.equations[self.run.equations[position]].place])
+            place = equation_words(self.system, self.run.equations[position])
             left, right = formula.tape.outputs
             if results[left] == results[right]:
                 continue
@@ -316,7 +320,7 @@ class _Writer:
         found = no_value(formula, self._evaluate(formula), self._line(formula))
         if found is None:
             return []
-        place = line_words(self.system, [self.system.equations[self.run.equations[equation]].place])
+        place = equation_words(self.system, self.run.equations[equation])
         return [f"{place}: there {found.reason}"]
 
     def _line(self, formula: Formula) -> str:
@@ -349,18 +353,27 @@ class _Writer:
         )
 
     def pressed(self, facts: Facts) -> list[str]:
-        """Unknowns on their bounds, and which equation pushes them."""
-        notes = []
-        for position, side, equation in facts.pressed[:4]:
+        """Unknowns on their bounds, and which equation pushes them; where none is, those heading past one."""
+        resting, heading = [], []
+        for position, side, equation in facts.pressed:
             quantity = self.run.unknowns[position]
-            low, high = self.guesses.bounds(quantity)
-            bound = self.value(quantity, low if side < 0 else high)
-            place = line_words(self.system, [self.system.equations[self.run.equations[equation]].place])
-            notes.append(
-                f"`{self.system.names[quantity]}` rests on its {'lower' if side < 0 else 'upper'} bound {bound}; "
-                f"{place} pushes it there"
-            )
-        return notes
+            name = self.system.names[quantity]
+            bound = self.guesses.bounds(quantity)[side > 0]
+            which = f"{'lower' if side < 0 else 'upper'} bound {self.value(quantity, bound)}"
+            place = equation_words(self.system, self.run.equations[equation])
+            if abs(self.own[quantity] - bound) <= ON_A_BOUND * self._span(position):
+                resting.append(f"`{name}` rests on its {which}; {place} pushes it there")
+            else:
+                heading.append(f"{place} would take `{name}` past its {which}")
+        return (resting or heading)[:MOST_PRESSED]
+
+    def _span(self, position: int) -> float:
+        """What the distance of an unknown from a bound is large or small against."""
+        quantity = self.run.unknowns[position]
+        low, high = self.guesses.bounds(quantity)
+        problem = self.result.problem
+        typical = 0.0 if problem is None else float(problem.magnitude[position])
+        return min(max(abs(self.own[quantity]), typical), high - low)
 
     def dependence(self, facts: Facts) -> list[str]:
         """Equations that depend on each other and the combination of unknowns left free."""

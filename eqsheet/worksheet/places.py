@@ -46,6 +46,13 @@ def line_words(system: EquationSystem, places: Iterable[Place]) -> str:
     return " and ".join([*words, *sorted(others)])
 
 
+def equation_words(system: EquationSystem, number: int) -> str:
+    """``line 3``, and of a family which member: ``line 3 (i = 5)``."""
+    item = system.equations[number]
+    place = line_words(system, (item.place,))
+    return f"{place} ({item.member})" if item.member else place
+
+
 def listed(words: list[str], joint: str = "and") -> str:
     """``a``, ``a and b``, ``a, b and c``; long lists are folded.
 

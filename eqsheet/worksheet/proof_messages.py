@@ -13,7 +13,7 @@ from eqsheet.worksheet.block_run import BlockRun
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.intervals import narrowed
 from eqsheet.worksheet.may_differ import proven_whatever_they_are, that_may_differ
-from eqsheet.worksheet.places import line_words, quoted
+from eqsheet.worksheet.places import equation_words, quoted
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import Known
 
@@ -94,7 +94,7 @@ class Proof:
         if not self:
             return []
         equation = self._run.equations[self.equation]
-        place = line_words(self._system, [self._system.equations[equation].place])
+        place = equation_words(self._system, equation)
         alone = self._empty(self._formulas[self.equation : self.equation + 1]) >= 0
         rest = "" if alone else " with what the other lines leave"
         values = [f"{self._system.names[q]} = {self._value(q)}" for q in self._found_before()]
