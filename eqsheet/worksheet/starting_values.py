@@ -19,6 +19,7 @@ from eqsheet.model.generate import value_function
 from eqsheet.model.isolate import isolate
 from eqsheet.model.tape import Formula, Tape
 from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.angles import angles
 from eqsheet.worksheet.block_plan import plan_of
 from eqsheet.worksheet.curve_ranges import Range, argument_ranges
 from eqsheet.worksheet.guesses import Guesses
@@ -37,6 +38,9 @@ TYPICAL: Mapping[str, float] = {
 NEAR_ZERO = 1e-3
 # In a larger block carrying bounds through the equations takes longer than it helps.
 MOST_NARROWED = 60
+# An angle, in radians: nearer to zero than to a quarter of a turn, as angles between buses or of a deflection are, but
+# not where a cosine has no slope.
+SMALL_ANGLE = 0.1
 # Golden section: multiples of it modulo 1 spread evenly without repeating, so that starts differ.
 GOLDEN_SECTION = 0.6180339887498949
 # Bounds of a wider ratio are halved in the logarithm.
@@ -107,10 +111,16 @@ def starting_values(
     propagation.run(room)
     if len(found) < len(unknowns):
         room = _narrowed(unknowns, formulas, values, room)
+    turned = angles(formulas) if len(found) < len(unknowns) else frozenset()
+
+    def usual(quantity: int, position: int) -> float:
+        size = _typical(dimensions[quantity], position)
+        return _inside(SMALL_ANGLE * size if quantity in turned else size, room, quantity)
+
     for position, quantity in enumerate(unknowns):
         if quantity not in found:
             blind.append(position)
-            propagation.put(quantity, _inside(_typical(dimensions[quantity], position), room, quantity))
+            propagation.put(quantity, usual(quantity, position))
             # One seed may let the equations tell the others.
             propagation.run(room)
     bounds = [guesses.bounds(quantity) for quantity in unknowns]

@@ -58,6 +58,12 @@ def worksheet(case: dict[str, Any]) -> str:
     return "\n".join(lines) + "\n" + EQUATIONS
 
 
+def without(text: str, *guessed: str) -> str:
+    """The text without the guesses of these families."""
+    lines = (line for line in text.splitlines() if not line.startswith(tuple(f"{g} near" for g in guessed)))
+    return "\n".join(lines) + "\n"
+
+
 def solved(case: dict[str, Any]) -> tuple[np.ndarray[Any, Any], np.ndarray[Any, Any], eqsheet.Solution]:
     """Voltages, angles in degrees, and the whole solution."""
     solution = eqsheet.parse(worksheet(case)).solve()
@@ -90,3 +96,14 @@ def test_power_flow_against_the_library(case: Any) -> None:
     assert solution[f"P_g[N{slack}]"].si * 100 == pytest.approx(reference["gen"][0, 1], abs=1e-8)
     for bus, _, reactive in reference["gen"][:, :3]:
         assert solution[f"Q_g[N{int(bus)}]"].si * 100 == pytest.approx(reactive, abs=1e-8)
+
+
+@pytest.mark.parametrize("guessed", [("theta",), ("theta", "delta")], ids=" and ".join)
+@pytest.mark.parametrize("case", [case14, case30], ids=["14 buses", "30 buses"])
+def test_angles_need_no_guess(case: Any, guessed: tuple[str, ...]) -> None:
+    """The same voltages as with guesses: the operating point, and no other solution of the equations."""
+    voltages, _, _ = solved(case())
+    solution = eqsheet.parse(without(worksheet(case()), *guessed)).solve()
+    assert solution.status == "solved", [d.message for d in solution.diagnostics]
+    again = np.array([solution[f"V[N{int(row[0])}]"].si for row in case()["bus"]])
+    assert abs(again - voltages).max() < 1e-10
