@@ -18,6 +18,7 @@ from eqsheet.model.domains import Domains, visible
 from eqsheet.model.equation_group import LARGE_FAMILY
 from eqsheet.model.families import FamilyCollector, FamilyReference, Numbering
 from eqsheet.model.family_names import FamilyNames
+from eqsheet.model.find_units_like_names import find_units_like_names
 from eqsheet.model.findings import Finding
 from eqsheet.model.gather import (
     Gathered,
@@ -290,6 +291,7 @@ def _assemble(
         *groups,
         () if grouping is None else guesses,
         limits if grouping is None else tuple(gathered.limits),
+        find_units_like_names(work, numbering),
     )
 
 

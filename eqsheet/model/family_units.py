@@ -15,6 +15,7 @@ from eqsheet.model.equation_group import LimitGroup, offsets
 from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.system import EquationSystem
 from eqsheet.model.tape import Formula
+from eqsheet.model.units_like_names import doubtful_units
 from eqsheet.units.dimension import Dimension
 
 T = TypeVar("T")
@@ -82,8 +83,13 @@ def check_units_by_family(system: EquationSystem) -> FamilyUnits:
     elif system.families:
         dimensions = tuple([dimensions[f] for f in family_of])
         kinds = tuple([kinds[f] for f in family_of])
+    candidates = [
+        replace(one, quantity=family_of[one.quantity]) if one.quantity >= 0 and system.families else one
+        for one in system.units_like_names
+    ]
+    doubtful = doubtful_units(candidates, formulas, units.dimensions, system.statements, system.unit_table)
     clashing = frozenset(stands_for[clash.formula] for clash in units.dimensions.clashes)
-    return FamilyUnits(dimensions, kinds, clashing - {-1}, units.diagnostics)
+    return FamilyUnits(dimensions, kinds, clashing - {-1}, (*units.diagnostics, *doubtful))
 
 
 def _family_numbers(system: EquationSystem, firsts: Sequence[int]) -> Sequence[int]:

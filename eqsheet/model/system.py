@@ -18,6 +18,7 @@ from eqsheet.units.unit import Unit
 if TYPE_CHECKING:
     from eqsheet.model.equation_group import EquationGroup, GuessGroup, LimitGroup
     from eqsheet.model.indexing import Codes
+    from eqsheet.model.units_like_names import UnitLikeName
 
 
 @dataclass(frozen=True, slots=True)
@@ -190,6 +191,8 @@ class EquationSystem:
         ascending. Sequences over quantities and equations are then made item by item when asked for.
     limit_parts : tuple of (LimitItem or LimitGroup)
         The limits in their order, those on large families as arrays.
+    units_like_names : tuple of UnitLikeName
+        Literals whose unit ends in the name of a quantity or an index.
     """
 
     statements: tuple[Statement, ...]
@@ -210,6 +213,7 @@ class EquationSystem:
     firsts: Codes | None = None
     guesses_apart: tuple[GuessItem, ...] = ()
     limit_parts: tuple[LimitItem | LimitGroup, ...] = ()
+    units_like_names: tuple[UnitLikeName, ...] = ()
 
     @property
     def written(self) -> Sequence[EquationItem]:
