@@ -67,6 +67,7 @@ class Gathered:
     guesses: list[GuessItem] = field(default_factory=list)
     of_all_members: dict[tuple[object, ...], Place] = field(default_factory=dict)
     shown: dict[int, Unit | None] = field(default_factory=dict)
+    shown_by_name: set[int] = field(default_factory=set)
     shows: list[Formula] = field(default_factory=list)
     hints: tuple[dict[int, Unit], dict[int, Unit], dict[int, Unit], dict[int, Unit]] = field(
         default_factory=lambda: ({}, {}, {}, {})
@@ -331,7 +332,12 @@ def _put_show(
     except Unbound:
         return
     for entry in range(bound.domain.size):
-        gathered.shown.setdefault(bound.numbers((provisional,), entry)[0], unit)
+        quantity = bound.numbers((provisional,), entry)[0]
+        if members is None and quantity not in gathered.shown_by_name:
+            # A member by itself goes before the family, whichever stands first.
+            gathered.shown_by_name.add(quantity)
+            gathered.shown[quantity] = unit
+        gathered.shown.setdefault(quantity, unit)
     if formula is not None:
         gathered.shows.extend(member_formulas(formula, bound, one.number))
 

@@ -34,10 +34,10 @@ def values_together(quantities: Mapping[str, QuantityValue]) -> Sequence[ManyVal
     """The values in order of showing, with the members of large families taken together: see `ManyQuantities`."""
     if isinstance(quantities, ManyQuantities):
         return quantities.together(MOST_MEMBERS)
-    groups: dict[tuple[str, str, bool], list[QuantityValue]] = {}
+    groups: dict[tuple[str, str, bool, str], list[QuantityValue]] = {}
     for value in quantities.values():
         section = "" if value.statement is None else value.statement.section
-        groups.setdefault((section, family_name(value.name), value.known), []).append(value)
+        groups.setdefault((section, family_name(value.name), value.known, value.unit), []).append(value)
     result: list[ManyValues] = []
     for group in groups.values():
         together = [group] if len(group) > MOST_MEMBERS else [[value] for value in group]

@@ -83,6 +83,9 @@ class LazyQuantities(ManyQuantities):
         family = np.searchsorted(firsts, order, side="right")
         section = origins.section[statement]
         key = (section * (len(firsts) + 1) + family) * 2 + (block > 0)
+        units = _shown_apart(self._system)
+        if units.any():
+            key = key * (int(units.max()) + 1) + units[order]
         _, begins, which, counts = np.unique(key, return_index=True, return_inverse=True, return_counts=True)
         members = np.split(np.argsort(which, kind="stable"), np.cumsum(counts)[:-1])
         found: list[tuple[int, ManyValues]] = []
@@ -102,6 +105,22 @@ class LazyQuantities(ManyQuantities):
 
     def __repr__(self) -> str:
         return f"LazyQuantities({len(self)} quantities)"
+
+
+def _shown_apart(system: EquationSystem) -> Numbers:
+    """For each quantity 0, or a number for the unit in which it is shown other than its family."""
+    found = np.zeros(len(system.names), dtype=np.int64)
+    assert system.firsts is not None
+    numbers: dict[str, int] = {}
+    common: dict[int, str] = {}
+    for quantity in sorted(system.shown):
+        unit = system.shown[quantity]
+        if unit is None:
+            continue
+        family = int(np.searchsorted(system.firsts, quantity, side="right"))
+        if common.setdefault(family, unit.text) != unit.text:
+            found[quantity] = numbers.setdefault(unit.text, len(numbers) + 1)
+    return found
 
 
 class _MadeValues(ValuesView[QuantityValue]):
