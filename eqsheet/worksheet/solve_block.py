@@ -44,6 +44,7 @@ from eqsheet.worksheet.block_plan import plan_of
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.intervals import narrowed
 from eqsheet.worksheet.kinks import beyond_the_kinks
+from eqsheet.worksheet.less_blind import less_blind
 from eqsheet.worksheet.starting_values import MOST_NARROWED, Start, starting_values
 from eqsheet.worksheet.torn import TornBlock, torn_block
 
@@ -288,7 +289,7 @@ def solve_plain(
     if plan_of(formulas, unknowns).linear:
         return linear_step(problem, problem.start, Trail("linear", problem.start, budget)), problem
     if start.blind:
-        problem = _less_blind(formulas, unknowns, known, start, problem)
+        problem = less_blind(formulas, unknowns, known.values, start, problem)
 
     def through_tears(block: Problem, at: Vector, trail: Trail) -> Outcome:
         return _through_tears(torn_block(formulas, unknowns, known.values, start), block, trail)
@@ -303,17 +304,6 @@ def solve_plain(
     return ladder(problem, budget, (("torn", through_tears),), hopeless), problem
 
 
-def _less_blind(
-    formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start, problem: Problem
-) -> Problem:
-    """The problem with a better start for the unknowns that nothing has placed."""
-    torn = torn_block(formulas, unknowns, known.values, start)
-    if torn is None:
-        return problem
-    begin = _consistent(torn, start)
-    return replace(problem, start=np.array(begin.values), magnitude=np.array(begin.magnitude))
-
-
 def problem_of(formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start) -> Problem:
     """The block for the solver: as arrays where it is large, else as one generated function."""
     if len(unknowns) < LARGE_BLOCK:
@@ -321,24 +311,6 @@ def problem_of(formulas: Sequence[Formula], unknowns: Sequence[int], known: Know
     numbers = np.array(unknowns, dtype=np.int64)
     block = ArrayBlock(shapes_of(formulas), numbers, np.array(known.values), np.array(known.errors))
     return block.problem(start)
-
-
-def _consistent(torn: TornBlock, start: Start) -> Start:
-    """The start with the unknowns that nothing has placed told by the closed forms, where these have a value.
-
-    The others are left alone: what a guess, bounds or known values tell is better than what follows from a
-    blind start.
-    """
-    told, _ = torn.expand([start.values[p] for p in torn.tears])
-    blind = set(start.blind)
-    values = tuple(
-        t if i in blind and math.isfinite(t) and t != 0.0 else v
-        for i, (t, v) in enumerate(zip(told, start.values))
-    )
-    magnitude = tuple(
-        abs(v) if v != s and v != 0.0 else m for v, s, m in zip(values, start.values, start.magnitude)
-    )
-    return Start(values, start.lower, start.upper, magnitude, start.assumed, start.blind)
 
 
 def _through_tears(torn: TornBlock | None, problem: Problem, trail: Trail) -> Outcome:

@@ -52,7 +52,8 @@ class Start:
     """Start of one block, in SI, by position of its unknowns.
 
     ``assumed`` holds the positions of unknowns without a guess of their own; ``blind`` those among them that
-    neither bounds on both sides nor an equation placed, so that they were started at a typical value.
+    neither bounds on both sides nor an equation placed, so that they were started at a typical value. ``typical`` are
+    the values with what equations have told from those alone at a typical value too; empty where that is nothing.
     """
 
     values: tuple[float, ...]
@@ -61,6 +62,7 @@ class Start:
     magnitude: tuple[float, ...]
     assumed: tuple[int, ...]
     blind: tuple[int, ...] = ()
+    typical: tuple[float, ...] = ()
 
 
 def starting_values(
@@ -111,6 +113,7 @@ def starting_values(
     propagation.run(room)
     if len(found) < len(unknowns):
         room = _narrowed(unknowns, formulas, values, room)
+    placed = set(found)
     turned = angles(formulas) if len(found) < len(unknowns) else frozenset()
 
     def usual(quantity: int, position: int) -> float:
@@ -123,6 +126,7 @@ def starting_values(
             propagation.put(quantity, usual(quantity, position))
             # One seed may let the equations tell the others.
             propagation.run(room)
+    placed.update(unknowns[position] for position in blind)
     bounds = [guesses.bounds(quantity) for quantity in unknowns]
     start = Start(
         tuple(found[q] for q in unknowns),
@@ -131,6 +135,9 @@ def starting_values(
         tuple(_magnitude(found[q], room, q, dimensions[q]) for q in unknowns),
         tuple(assumed),
         tuple(blind),
+        tuple(found[q] if q in placed else usual(q, p) for p, q in enumerate(unknowns))
+        if len(placed) < len(unknowns)
+        else (),
     )
     if plan.often and settled and told is not None and not room.ranges:
         plan.start = StartPlan(plan, guesses, given, told, start)
