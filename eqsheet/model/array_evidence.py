@@ -174,7 +174,11 @@ def _attach(instruction: Any, v: Array, values: Any, sizes: Any, bounds: Any) ->
 
 def _smaller(instruction: Any, v: Array, values: Any, sizes: Any, bounds: Any) -> tuple[Any, Any]:
     _, a, b = instruction
-    return np.where(v == values[a], sizes[a], sizes[b]), np.maximum(bounds[a], bounds[b])
+    first = v == values[a]
+    own = np.where(first, bounds[a], bounds[b])
+    # Which one is chosen is not in doubt where they are further apart than both errors.
+    sure = np.abs(values[a] - values[b]) > bounds[a] + bounds[b]
+    return np.where(first, sizes[a], sizes[b]), np.where(sure, own, np.maximum(bounds[a], bounds[b]))
 
 
 def _if(instruction: Any, v: Array, values: Any, sizes: Any, bounds: Any) -> tuple[Any, Any]:
@@ -191,7 +195,8 @@ def _sqrt(instruction: Any, v: Array, values: Any, sizes: Any, bounds: Any) -> t
     a = instruction[1]
     base = values[a]
     reach = np.sqrt(np.maximum(base - bounds[a], 0.0))
-    spread = np.where(np.asarray(bounds[a]) == 0.0, 0.0, bounds[a] / (v + reach))
+    spread = np.minimum(bounds[a] / (v + reach), np.sqrt(bounds[a]))
+    spread = np.where(np.asarray(bounds[a]) == 0.0, 0.0, spread)
     ratio = np.where(base != 0.0, sizes[a] / np.abs(base), 1.0)
     size = np.where(v == 0.0, np.sqrt(sizes[a]), np.abs(v) * np.sqrt(ratio))
     return size, spread + _rounding(v)

@@ -155,13 +155,30 @@ class _Gradient:
         """Hand on past a selection between `a` and `b`.
 
         The selection is made on the finished derivatives, not on the adjoints: a derivative of the
-        branch not taken may be infinite, and 0 times infinity is not 0.
+        branch not taken may be infinite, and 0 times infinity is not 0. Nor is it where the adjoint is infinite,
+        as that of ``sqrt(max(x, 0))`` is for negative x, so that a branch that does not change hands on nothing.
         """
         writer = self.writer
         for leaf, x, y in zip(self.leaves, self.of(a), self.of(b)):
             if x == y == writer.zero:
                 continue
-            self.give(leaf, writer.mul(adjoint, writer.select(condition, x, y)))
+            self.give(leaf, self._times(adjoint, writer.select(condition, x, y)))
+
+    def _times(self, adjoint: int, slope: int) -> int:
+        """The product, taken inside the branches of a slope one of which is zero."""
+        writer = self.writer
+        operation, *rest = writer.instructions[slope]
+        if operation != "if" or not self._may_be_zero(slope):
+            return writer.mul(adjoint, slope)
+        condition, a, b = rest
+        return writer.select(condition, self._times(adjoint, a), self._times(adjoint, b))
+
+    def _may_be_zero(self, slope: int) -> bool:
+        """Whether a slope is zero for certain where some branches are taken."""
+        if slope == self.writer.zero:
+            return True
+        operation, *rest = self.writer.instructions[slope]
+        return operation == "if" and (self._may_be_zero(rest[1]) or self._may_be_zero(rest[2]))
 
 
 # Rules of operations with more than one operand, or an operand that is no index: called with the gradient,

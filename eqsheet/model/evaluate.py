@@ -375,7 +375,7 @@ def unary_evidence(operation: str, v: float, a: float, size: float, error: float
     if operation == "sqrt":
         # The slope is infinite at 0, where the root of the size and of the error say more.
         reach = math.sqrt(max(a - error, 0.0)) if a == a else math.nan
-        spread = divide(error, v + reach) if error else 0.0
+        spread = min(divide(error, v + reach), math.sqrt(error)) if error else 0.0
         return _safe_power(v, divide(size, abs(a)) if a else 1.0, 0.5, size), spread + rounding_of(v)
     if operation in ("abs", "neg"):
         return size, error
@@ -467,7 +467,9 @@ def _of_general_power(
 def _of_smaller(
     v: float, a: float, a_size: float, a_error: float, b: float, b_size: float, b_error: float
 ) -> tuple[float, float]:
-    return (a_size if v == a else b_size), max(a_error, b_error)
+    size, own = (a_size, a_error) if v == a else (b_size, b_error)
+    # Which one is chosen is not in doubt where they are further apart than both errors.
+    return size, own if abs(a - b) > a_error + b_error else max(a_error, b_error)
 
 
 def _of_hypot(

@@ -102,3 +102,17 @@ def test_derivatives_come_in_the_order_wanted_and_zero_where_absent() -> None:
     steps = evaluate(derived, (3.0, 5.0, 7.0), ())
     assert [steps[i] for i in derived.outputs] == [8.0, -1.0, 3.0]
     assert float_function(partials(tape, 1, (0, 2)))(3.0, 5.0, 7.0) == (7.0, 0.0, 1.0)
+
+
+def test_an_infinite_slope_of_what_does_not_change_is_no_slope() -> None:
+    """The root of max(x - 10, 0) is flat below 10, however deep the extremes are nested."""
+    b = TapeBuilder()
+    x = b.quantity(0, (0, 1))
+    above = b.apply("max", b.apply("sub", x, b.constant(Fraction(10))), b.constant(Fraction(0)))
+    root = b.apply("sqrt", above)
+    twice = b.apply("sqrt", b.apply("max", b.apply("add", above, above), b.constant(Fraction(0))))
+    for tape in (b.tape((root,)), b.tape((twice,))):
+        assert slopes(tape, 3.0) == (0.0,)
+    assert slopes(b.tape((root,)), 14.0) == (0.25,)
+    assert slopes(b.tape((twice,)), 18.0) == (0.25,)
+    assert slopes(b.tape((root,)), 10.0) == (math.inf,)

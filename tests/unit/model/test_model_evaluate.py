@@ -119,3 +119,17 @@ def test_exact_operations_have_no_error() -> None:
     b, x, y = build()
     tape = last(b, b.apply("max", b.apply("neg", x), b.apply("abs", y)))
     assert evaluate_with_evidence(tape, (1.0, -2.0), ()).errors == (0.0,) * len(tape.instructions)
+
+
+def test_the_extreme_has_the_error_of_the_other_only_where_that_may_be_chosen() -> None:
+    b, x, y = build()
+    tape = last(b, b.apply("max", x, y))
+    assert evaluate_with_evidence(tape, (-7.0, 0.0), (), (1e-3, 0.0)).errors[-1] == 0.0
+    assert evaluate_with_evidence(tape, (-7.0, 0.0), (), (1e-3, 1e-5)).errors[-1] == 1e-5
+    assert evaluate_with_evidence(tape, (-1e-4, 0.0), (), (1e-3, 0.0)).errors[-1] == 1e-3
+
+
+def test_the_root_of_nothing_is_off_by_the_root_of_the_error() -> None:
+    b, x, _ = build()
+    tape = last(b, b.apply("sqrt", x))
+    assert evaluate_with_evidence(tape, (0.0, 1.0), (), (1e-8, 0.0)).errors[-1] == pytest.approx(1e-4)

@@ -234,3 +234,29 @@ def test_many_conditions_are_told_by_what_bounds_leave() -> None:
     assert solution.status == "solved"
     p = values(solution)["p"]
     assert sum(math.sqrt(max(p - v, 0.0)) for v in pressures) == pytest.approx(6.0, rel=1e-9)
+
+
+@pytest.mark.parametrize(
+    "text, name, expected",
+    [
+        ("y = 5 - x + sqrt(max(x - 10, 0))\ny = 2\nx near 1", "x", 3.0),
+        # An overflow weir that does not run: the orifice below it takes all of Q = 30 cm^2*sqrt(2*g*h).
+        (
+            "Q_in = 20 L/s\nQ_in = 30 cm^2*sqrt(2*const.g_n*h) + Q_s\n"
+            "Q_s = 10 cm^2*sqrt(2*const.g_n*max(h - 2.5 m, 0 m))",
+            "h",
+            (0.02 / 30e-4) ** 2 / (2.0 * 9.80665),
+        ),
+        (
+            "q1 = sqrt(max(30 - pm, 0))\nq2 = sqrt(max(pm - 5, 0))\nq3 = 2*sqrt(max(pm - 60, 0))\nq1 = q2 + q3",
+            "pm",
+            17.5,
+        ),
+    ],
+)
+def test_a_root_of_what_is_not_at_work_does_not_stand_in_the_way(
+    text: str, name: str, expected: float
+) -> None:
+    solution = solve(text)
+    assert solution.status == "solved"
+    assert values(solution)[name] == pytest.approx(expected, rel=1e-10)
