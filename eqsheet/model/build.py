@@ -258,7 +258,10 @@ def _assemble(
         numbering, indexing, provisional, {i: n for i, (n, _) in numbered.items()}, broken, diagnostics
     )
     grouping = None
-    if any(one.domain.size >= large_family for one in work):
+    largest = max(
+        (*(one.domain.size for one in work), *(len(column.knowns) for column in tables.columns)), default=0
+    )
+    if largest >= large_family:
         grouping = Grouping(numbering, large_family, not freed and all(s.source.numbered for s in statements))
     names = numbering.names(indexing) if grouping is None else FamilyNames(numbering, indexing)
     _refuse_indices_like_quantities(work, numbering, diagnostics)

@@ -104,6 +104,8 @@ class EquationGroup:
     valid : tuple of ValidityGroup
     unsettled : BoundFormula or None
         The formula with the conditions that knowns decide, which `bound` is without; None where it has none.
+    cells : ndarray (members, 3) or None
+        Statement, start and end of each, where they are the cells of a column and not of one statement.
     """
 
     bound: BoundFormula
@@ -114,9 +116,19 @@ class EquationGroup:
     tolerance: ToleranceOfKnown | None = None
     valid: tuple[ValidityGroup, ...] = ()
     unsettled: BoundFormula | None = None
+    cells: Codes | None = None
 
     def __len__(self) -> int:
         return len(self.bound)
+
+    @property
+    def statements(self) -> int | Codes:
+        """The statement of all entries, or of each (members,)."""
+        return self.place.statement if self.cells is None else self.cells[:, 0]
+
+    def place_of(self, entry: int) -> Place:
+        """Where one equation stands."""
+        return self.place if self.cells is None else Place(*self.cells[entry].tolist())
 
     @property
     def as_written(self) -> BoundFormula:
@@ -125,12 +137,15 @@ class EquationGroup:
 
     def item(self, entry: int) -> EquationItem:
         """One equation, written out."""
-        formula = self.as_written.at(entry)
+        formula, place = self.as_written.at(entry), self.place_of(entry)
+        if self.cells is not None:
+            cell = (place.start, place.end)
+            formula = replace(formula, statement=place.statement, places=(cell,) * len(formula.places))
         valid = tuple(one.item(entry) for one in self.valid)
         known, value = -1, math.nan
         if self.known is not None and self.values is not None:
             known, value = int(self.known[entry]), float(self.values[entry])
-        return EquationItem(formula, self.place, known, value, self.tolerance, valid, self.member(entry))
+        return EquationItem(formula, place, known, value, self.tolerance, valid, self.member(entry))
 
     def part(self, entries: Codes, bound: BoundFormula) -> EquationGroup:
         """Some of its entries, whose formula without the conditions that knowns decide is `bound`."""

@@ -339,6 +339,10 @@ def _put_show(
             gathered.shown[quantity] = unit
         gathered.shown.setdefault(quantity, unit)
     if formula is not None:
+        if gathered.grouping is not None and members is not None:
+            # One member tells of all.
+            _, firsts = np.unique([gathered.grouping.family(q) for q in members.tolist()], return_index=True)
+            bound = Bound(Domain(len(firsts)), {provisional: members[firsts]})
         gathered.shows.extend(member_formulas(formula, bound, one.number))
 
 
@@ -348,6 +352,8 @@ def put_column(gathered: Gathered, column: TableColumn, numbering: Numbering, bi
     if family is None:
         return
     numbers = family.numbers([column.codes], len(column.codes))
+    if gathered.grouping is not None and _keep_cells(gathered, gathered.grouping, column, numbers, binder):
+        return
     for known in column.knowns:
         quantity = int(numbers[known.code])
         item = _cell_item(quantity, known, binder.statement_number(known.row))
@@ -355,6 +361,24 @@ def put_column(gathered: Gathered, column: TableColumn, numbering: Numbering, bi
         gathered.see(quantity, item.place)
         if column.unit is not None:
             gathered.hints[0].setdefault(quantity, column.unit)
+
+
+def _keep_cells(
+    gathered: Gathered, grouping: Grouping, column: TableColumn, numbers: Codes, binder: Binder
+) -> bool:
+    """Keep the knowns of a column as arrays; whether that was possible."""
+    if not column.knowns:
+        return False
+    known = numbers[np.array([one.code for one in column.knowns], dtype=np.int64)]
+    values = np.array([one.literal.value for one in column.knowns])
+    places = [(binder.statement_number(k.row), k.literal.start, k.literal.end) for k in column.knowns]
+    first = _cell_item(int(known[0]), column.knowns[0], places[0][0])
+    if not grouping.take_cells(first, known, values, np.array(places, dtype=np.int64)):
+        return False
+    gathered.see(int(known[0]), first.place)
+    if column.unit is not None:
+        gathered.hints[0].setdefault(int(known[0]), column.unit)
+    return True
 
 
 def count_plainly(gathered: Gathered, indexing: Indexing, numbering: Numbering) -> None:

@@ -14,6 +14,8 @@ import numpy as np
 
 from eqsheet.model.bind import Bound
 from eqsheet.model.equation_group import (
+    Array,
+    BoundFormula,
     EquationGroup,
     GuessGroup,
     LimitGroup,
@@ -91,6 +93,24 @@ class Grouping:
                 )
             )
         return rest
+
+    def take_cells(self, first: EquationItem, known: Codes, values: Array, cells: Codes) -> bool:
+        """Keep the knowns of a column; whether that was possible.
+
+        Parameters
+        ----------
+        first : EquationItem
+            The first of them.
+        known, values : ndarray (m,)
+            Quantity numbers and SI values.
+        cells : ndarray (m, 3)
+            Statement, start and end of each.
+        """
+        if len(known) < self._least or not self._keep_knowns:
+            return False
+        bound = BoundFormula(first.formula, known[:, None], (values,))
+        self.equations.append(EquationGroup(bound, first.place, known, values, lambda _: "", cells=cells))
+        return True
 
     def limits(self, item: LimitItem, bound: Bound, member: Callable[[int], str]) -> LimitGroup | None:
         """The limits of a statement kept as arrays, None where they must be written out."""

@@ -76,7 +76,7 @@ def extremes(group: ManyValues) -> Extremes:
 def worst_limits(limits: Iterable[LimitReport]) -> list[tuple[LimitReport, str]]:
     """The limits, of a large family the worst member alone with a count of the others in words."""
     groups: dict[int, list[WorstLimit]] = {}
-    for one in worst_of_each(limits):
+    for one in worst_of_each(limits, MOST_MEMBERS):
         groups.setdefault(id(one.limit.statement), []).append(one)
     result: list[tuple[LimitReport, str]] = []
     for group in groups.values():

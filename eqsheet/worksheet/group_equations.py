@@ -50,7 +50,7 @@ class GroupedEquations:
         for first, end in zip(firsts, [*firsts[1:], len(system.names)]):
             self.part[first:end] = is_part(system.names[first])
         for start, group in zip(self.starts.tolist(), self.groups):
-            self.statement[start : start + len(group)] = group.place.statement
+            self.statement[start : start + len(group)] = group.statements
             self.known[start : start + len(group)] = group.known is not None
 
     def group_of(self, equation: int) -> tuple[int, int]:

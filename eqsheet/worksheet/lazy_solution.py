@@ -97,6 +97,10 @@ class LazyQuantities(ManyQuantities):
             # Of a block of one equation the statement says it all.
             several = np.where(origins.equations[block[positions]] > 1, block[positions], 0)
             _, distinct = np.unique(np.stack([statement[positions], several]), axis=1, return_index=True)
+            if len(distinct) > MOST_PICKED and not several.any():
+                # Of the rows of a table the first and the last line are told.
+                lines = origins.line[statement[positions[distinct]]]
+                distinct = distinct[[lines.argmin(), lines.argmax()]]
             first, smallest, largest = (make(int(order[positions[p]])) for p in (0, si.argmin(), si.argmax()))
             of_each = tuple(make(int(order[positions[p]])) for p in np.sort(distinct))
             found.append((begin, ManyValues(len(positions), first, smallest, largest, of_each)))
@@ -160,6 +164,8 @@ class Origins:
         The own statement of each solved one, that which sets a known; -1 for neither.
     equations : ndarray (blocks + 1,)
         How many equations each block has, by its number.
+    line : ndarray (statements,)
+        Line of each statement, in its file.
     section : ndarray (statements + 1,)
         A number for the section of each statement; the last serves those without one.
     """
@@ -195,6 +201,11 @@ class Origins:
         """See above."""
         _, _, prepared, _ = self._needed
         return np.bincount(_blocks_of_equations(prepared, self.block), minlength=int(self.block.max()) + 1)
+
+    @cached_property
+    def line(self) -> Numbers:
+        """See above."""
+        return np.array([s.line.line for s in self._needed[2].system.statements], dtype=np.int64)
 
     @cached_property
     def section(self) -> Numbers:

@@ -85,10 +85,16 @@ class LimitReports(LazySequence[LimitReport], ManyLimits):
             for part in self._judged
         )
 
-    def together(self) -> Iterable[WorstLimit]:
+    def together(self, most: int) -> Iterable[WorstLimit]:
         """See `ManyLimits`."""
         for part in self._judged:
-            yield part.worst() if isinstance(part, JudgedFamily) else WorstLimit(part, 1, int(not part.holds))
+            if isinstance(part, LimitReport):
+                yield WorstLimit(part, 1, int(not part.holds))
+            elif len(part) > most:
+                yield part.worst()
+            else:
+                every = map(part.report, range(len(part)))
+                yield from (WorstLimit(one, 1, int(not one.holds)) for one in every)
 
 
 def _made(part: LimitReport | JudgedFamily) -> tuple[int, Callable[[int], LimitReport]]:

@@ -33,8 +33,8 @@ class ManyLimits(Sequence[LimitReport]):
         """How many fail."""
 
     @abstractmethod
-    def together(self) -> Iterable[WorstLimit]:
-        """The limits in the order of the text, those over a large family by its worst member."""
+    def together(self, most: int) -> Iterable[WorstLimit]:
+        """The limits in the order of the text, those over a family of more than `most` by its worst member."""
 
 
 def failing_limits(limits: Sequence[LimitReport]) -> int:
@@ -42,8 +42,8 @@ def failing_limits(limits: Sequence[LimitReport]) -> int:
     return limits.failing if isinstance(limits, ManyLimits) else sum(not limit.holds for limit in limits)
 
 
-def worst_of_each(limits: Iterable[LimitReport]) -> Iterable[WorstLimit]:
+def worst_of_each(limits: Iterable[LimitReport], most: int) -> Iterable[WorstLimit]:
     """The limits, see `ManyLimits.together`."""
     if isinstance(limits, ManyLimits):
-        return limits.together()
+        return limits.together(most)
     return [WorstLimit(limit, 1, int(not limit.holds)) for limit in limits]
