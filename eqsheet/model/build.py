@@ -137,7 +137,7 @@ def _whole_knowns(statements: Sequence[syntax.Statement]) -> Mapping[str, int]:
 def _numbered(placed: Sequence[Placed], tables: Tables) -> dict[int, tuple[int, syntax.Statement]]:
     """Statements of the system with their numbers, by identity."""
     numbered: dict[int, tuple[int, syntax.Statement]] = {}
-    rows = (known.row for column in tables.columns for known in column.knowns)
+    rows = (cell.row for column in tables.columns for cell in column.cells)
     for statement in (*(p.statement for p in placed), *rows):
         numbered.setdefault(id(statement), (len(numbered), statement))
     return numbered

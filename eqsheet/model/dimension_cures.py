@@ -96,7 +96,12 @@ def _unit_for_literal(guilty: str, expected: Dimension, found: Dimension | None)
         return "write it without a unit, or divide by a quantity of the same dimension"
     unit = suggested_unit(expected)
     if found == DIMENSIONLESS:
-        return f"give it a unit: `{guilty} {unit}`"
+        # An index counts as a number too, but a unit stands behind digits only.
+        return (
+            f"give it a unit: `{guilty} {unit}`"
+            if guilty[-1:].isdigit()
+            else f"give it a unit: `{guilty}*1 {unit}`"
+        )
     word = dimension_word(expected)
     return f"give it in a unit of {word}, such as {unit}" if word else ""
 

@@ -352,6 +352,9 @@ def put_column(gathered: Gathered, column: TableColumn, numbering: Numbering, bi
     if family is None:
         return
     numbers = family.numbers([column.codes], len(column.codes))
+    for cell in column.unknowns:
+        place = Place(binder.statement_number(cell.row), cell.start, cell.end)
+        gathered.see(int(numbers[cell.code]), place)
     if gathered.grouping is not None and _keep_cells(gathered, gathered.grouping, column, numbers, binder):
         return
     for known in column.knowns:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Collection, Mapping, Sequence
+from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.findings import Finding
@@ -105,6 +105,13 @@ def check_definition(statement: syntax.Statement, context: Context) -> tuple[Fin
     return ()
 
 
+def _all(statements: Iterable[syntax.Statement]) -> Iterator[syntax.Statement]:
+    """Statements with those in their groups: a definition in a group is no definition, but a name to be found."""
+    for statement in statements:
+        yield statement
+        yield from _all(statement.body)
+
+
 def without_echoes(
     diagnostics: Sequence[Diagnostic],
     told: Sequence[Diagnostic],
@@ -121,7 +128,7 @@ def without_echoes(
         Names of definitions and curves that can be used; a use of any other is an unknown function only because
         its line is broken.
     """
-    named = {s.node.name for s in statements if isinstance(s.node, syntax.Definition | syntax.Curve)}
+    named = {s.node.name for s in _all(statements) if isinstance(s.node, syntax.Definition | syntax.Curve)}
     lost = named.difference(kept)
     if not told and not lost:
         return tuple(diagnostics)

@@ -27,7 +27,7 @@ from eqsheet.model.scope import NO_INDICES, IndexScope, Surroundings
 from eqsheet.model.system import EquationItem, Guard, LimitItem, Place, ToleranceOfKnown, Validity
 from eqsheet.model.tape import Formula, Instruction, Literal, extract
 from eqsheet.model.while_lowering import ConditionMet, Poisoned
-from eqsheet.model.written_nodes import canonical
+from eqsheet.model.written_nodes import canonical, names_in
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.spine import operands_in_run
 from eqsheet.units.dimension import DIMENSIONLESS, Dimension
@@ -541,7 +541,9 @@ def _named(formula: Formula) -> tuple[tuple[int, int, int], ...]:
 
 def _broken(work: Lowering, node: syntax.StatementNode) -> LoweredStatement:
     """Only the findings; the names still count as seen, so that they are not reported as unknown."""
-    named = tuple((number, node.start, node.end) for number in work.builder.quantities)
+    # Lowering stopped at the slip, so that not all of them are in the formula.
+    numbers = dict.fromkeys((*work.builder.quantities, *map(work.number_of, sorted(names_in((node,))))))
+    named = tuple((number, node.start, node.end) for number in numbers)
     severe = [f for f in work.findings if f.severity is Severity.ERROR]
     assert severe, "a broken statement must say why"
     return LoweredStatement(named=named, findings=tuple(work.findings))

@@ -212,7 +212,9 @@ def _unfold(
         return
     if node.template in work.unfolding:
         work.diagnostics.append(
-            error("template-uses-itself", f"the template `{node.template}` uses itself", here)
+            error(
+                "template-uses-itself", f"the template `{node.template}` uses itself{_way(node, work)}", here
+            )
         )
         return
     if len(work.placed) > MOST_PLACED:
@@ -279,6 +281,12 @@ def _sets(statement: syntax.Statement) -> str:
     if isinstance(node, syntax.Guess) and isinstance(node.target, syntax.Reference):
         return f"near {canonical(node.target, {})}"
     return known_name(statement) or ""
+
+
+def _way(node: syntax.Use, work: _Work) -> str:
+    """Through which other templates a template uses itself; empty where it does so directly."""
+    between = work.unfolding[work.unfolding.index(node.template) + 1 :]
+    return "".join((", by way of ", " and ".join(f"`{name}`" for name in between))) if between else ""
 
 
 def _name_slip(statement: syntax.Statement, name: syntax.Reference) -> Diagnostic | None:

@@ -39,6 +39,16 @@ class CellKnown:
 
 
 @dataclass(frozen=True)
+class CellUnknown:
+    """A cell that leaves its member unknown: the row's code, its place, and the statement of the row."""
+
+    code: int
+    start: int
+    end: int
+    row: syntax.Statement
+
+
+@dataclass(frozen=True)
 class TableColumn:
     """A column of numbers.
 
@@ -49,6 +59,7 @@ class TableColumn:
         All rows, those left unknown included.
     knowns : tuple of CellKnown
     unit : Unit or None
+    unknowns : tuple of CellUnknown
     """
 
     name: str
@@ -56,6 +67,12 @@ class TableColumn:
     codes: Codes
     knowns: tuple[CellKnown, ...]
     unit: Unit | None
+    unknowns: tuple[CellUnknown, ...] = ()
+
+    @property
+    def cells(self) -> list[CellKnown | CellUnknown]:
+        """All cells in the order of their rows."""
+        return sorted([*self.knowns, *self.unknowns], key=lambda cell: cell.code)
 
 
 @dataclass(frozen=True)
@@ -256,10 +273,13 @@ def _number_column(
     diagnostics: list[Diagnostic],
 ) -> TableColumn:
     unit = _unit(_heading(statement, node), column.unit, unit_table, diagnostics)
-    knowns = []
+    knowns, unknowns = [], []
     for code, row in enumerate(rows):
         cell = _cell(row, position)
         if cell is None:
+            if position + 1 < len(_cells(row)):
+                left = _cells(row)[position + 1]
+                unknowns.append(CellUnknown(code, left.start, left.end, row))
             continue
         value = _value(cell, row, column, diagnostics)
         if value is None:
@@ -269,7 +289,7 @@ def _number_column(
         kind = "plain" if unit is None else kind_of(unit)
         text = "" if unit is None else unit.text
         knowns.append(CellKnown(code, Literal(si, dimension, kind, cell.start, cell.end, text), row))
-    return TableColumn(column.name, node.name, np.arange(len(rows)), tuple(knowns), unit)
+    return TableColumn(column.name, node.name, np.arange(len(rows)), tuple(knowns), unit, tuple(unknowns))
 
 
 def _unit(

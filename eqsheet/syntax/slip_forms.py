@@ -313,6 +313,9 @@ _WORDS_AFTER_OPERANDS = frozenset(
 )
 
 
+_STEPS = frozenset(("step", "by"))
+
+
 def products(misfit: Misfit) -> Slip | None:
     """Two things side by side, which do not multiply."""
     thing = misfit.thing
@@ -323,6 +326,16 @@ def products(misfit: Misfit) -> Slip | None:
         return None
     if not misfit.expected >= OPERATORS and misfit.last != "UNIT":
         return None
+    if misfit.has("FOR") and misfit.has("DOTS"):
+        # After a number the word was taken for a unit.
+        words = (misfit.word, misfit.last_text.rpartition(" ")[2] if misfit.last == "NUMBER" else "")
+        if not _STEPS.isdisjoint(words):
+            return misfit.with_last(
+                "range-step",
+                "a range has no step, it goes up by one",
+                "reckon with the index, `x[2*k+1]`, or leave members out with a filter",
+                len(misfit.thing),
+            )
     start = _start_of_operand(misfit)
     left, right = misfit.text[start : misfit.before[-1][2]], _operand_at(misfit)
     help = f"write `{left}({right})`" if left in _FUNCTIONS else f"write `{left}*{right}`"

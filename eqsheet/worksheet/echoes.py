@@ -1,4 +1,4 @@
-"""Diagnostics that merely echo a broken line: names that are missing because the line was not read."""
+"""Diagnostics that merely echo a broken line: names that are missing because the line, or a file, was not read."""
 
 from __future__ import annotations
 
@@ -7,7 +7,12 @@ from collections.abc import Iterable, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
 
-_MISSING = frozenset(("unknown-name", "unknown-function", "unknown-instance"))
+_MISSING = frozenset(
+    ("unknown-name", "unknown-function", "unknown-instance", "unknown-template", "unknown-index-set")
+)
+_FILES = frozenset(
+    ("unreadable-attachment", "path-not-inside", "include-cycle", "csv-empty", "csv-heading", "csv-quotes")
+)
 _WORD = re.compile(r"[^\W\d]\w*")
 
 
@@ -21,6 +26,9 @@ def without_echoes(found: Iterable[Diagnostic], earlier: Sequence[Diagnostic]) -
     earlier : sequence of Diagnostic
         From reading the text.
     """
+    if any(diagnostic.code in _FILES for diagnostic in earlier):
+        # What a file that was not read would have made cannot be known.
+        return [d for d in found if d.code not in _MISSING and d.code != "no-such-member"]
     lost: set[str] = set()
     for diagnostic in earlier:
         if diagnostic.span is not None:

@@ -202,7 +202,8 @@ def conflict_diagnostic(
     if satisfied is False:
         message = f"{where} contradict each other: {many}"
         return error("contradicting-equations", message, *labels, notes=tuple(notes), help=help)
-    message = f"{where} over-determine {listed([f'`{n}`' for n in names])}: {many}"
+    verb = "over-determines" if len({i.place.statement for i in items}) == 1 else "over-determine"
+    message = f"{where} {verb} {listed([f'`{n}`' for n in names])}: {many}"
     return error("over-determined", message, *labels, notes=tuple(notes), help=help)
 
 

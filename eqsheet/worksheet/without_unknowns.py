@@ -6,6 +6,7 @@ from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note
+from eqsheet.diagnostics.source import Span
 from eqsheet.model.evaluate import evaluate_with_evidence
 from eqsheet.model.system import EquationItem, EquationSystem
 from eqsheet.model.tape import Formula
@@ -55,6 +56,8 @@ def check_without_unknowns(
     repeated = {quantity: items for quantity, items in setters.items() if len(items) > 1}
     contested = frozenset(quantity for quantity, items in repeated.items() if not _one_value(items))
     seen: set[int] = set()
+    # A clash is told of one member of a family, and is one of all.
+    wrong = {system.equations[number].place.statement for number in clashing}
     for number, (item, formula) in enumerate(zip(system.equations, formulas)):
         if item.known >= 0:
             if item.known not in seen:
@@ -62,7 +65,7 @@ def check_without_unknowns(
                 seen.add(item.known)
         elif any(q not in known_values for q in formula.quantities):
             rows.append(number)
-        elif number not in clashing and contested.isdisjoint(formula.quantities):
+        elif item.place.statement not in wrong and contested.isdisjoint(formula.quantities):
             diagnostics.append(_check(system, number, formula, known_values, setters))
     diagnostics += [_set_twice(system, items) for items in repeated.values()]
     return Checked(_doubtful_last(system, rows), tuple(diagnostics), contested)
@@ -98,7 +101,7 @@ def _one_value(items: Sequence[EquationItem]) -> bool:
 
 def _set_twice(system: EquationSystem, items: Sequence[EquationItem]) -> Diagnostic:
     """One diagnostic for a quantity however often it is set."""
-    items = sorted(items, key=lambda item: item.place.statement)
+    items = sorted(items, key=lambda item: _in_text(span_of(system, item.place)))
     first, again, *more = items
     name = system.names[first.known]
     count = "twice" if not more else f"{len(items)} times"
@@ -113,6 +116,11 @@ def _set_twice(system: EquationSystem, items: Sequence[EquationItem]) -> Diagnos
         if more
         else "keep one of the two lines, or switch one `off`",
     )
+
+
+def _in_text(span: Span) -> tuple[bool, bool, str, int]:
+    """Order of reading: the worksheet itself, its other files by name, then what is given for this run."""
+    return not span.source.numbered, span.source.attached, span.source.name, span.start
 
 
 def _check(
