@@ -109,7 +109,8 @@ def _all(statements: Iterable[syntax.Statement]) -> Iterator[syntax.Statement]:
     """Statements with those in their groups: a definition in a group is no definition, but a name to be found."""
     for statement in statements:
         yield statement
-        yield from _all(statement.body)
+        if isinstance(statement.node, syntax.Family | syntax.Template | syntax.Use):
+            yield from _all(statement.body)
 
 
 def without_echoes(
