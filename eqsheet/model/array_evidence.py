@@ -68,7 +68,7 @@ def evaluate_arrays_with_evidence(
             elif operation == "quantity":
                 size, bound = np.abs(v), np.abs(errors[instruction[1]])
             elif operation in _LEAVES:
-                size, bound = np.abs(v), _rounding(v) if operation == "const" else 0.0
+                size, bound = np.abs(v), _rounding(v) if operation == "const" else _as_typed(v)
             else:
                 size, bound = _RULES[operation](instruction, v, values, sizes, bounds)
             sizes.append(size)
@@ -106,6 +106,11 @@ def _entry_by_entry(
 
 def _rounding(v: Array, units: float = 1.0) -> Array:
     return np.where(v != 0.0, units * (ROUNDING * np.abs(v) + _UNDERFLOW), 0.0)
+
+
+def _as_typed(v: Array) -> Array:
+    """As `as_typed` of `evaluate`."""
+    return np.where(v % 1.0 != 0.0, 2.0 * ROUNDING * np.abs(v), 0.0)
 
 
 def _product(a: Any, b: Any) -> Any:

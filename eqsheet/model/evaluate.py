@@ -264,6 +264,8 @@ def evaluate_with_evidence(
 
     Notes
     -----
+    Literals are decimal numbers rounded to floats (`as_typed`).
+
     The error bound is a running one (Higham, Accuracy and Stability of Numerical Algorithms, 2nd edition,
     2002, chapter 3): each operation hands on the errors of its operands to first order and adds its own
     rounding.
@@ -293,7 +295,7 @@ def evaluate_with_evidence(
             error = product_error(a, bounds[i], b, bounds[j]) + _product_rounding(v, a, b)
         elif operation == "literal":
             v = float(literals[instruction[1]])
-            size, error = abs(v), 0.0
+            size, error = abs(v), as_typed(v)
         elif operation == "const":
             v = as_float(instruction[1])
             size, error = abs(v), 0.0 if is_exact(instruction[1], v) else rounding_of(v)
@@ -348,10 +350,17 @@ TRUTH = frozenset({"lt", "le", "eq", "and", "or", "not"})
 _CURVE_UNITS = 16.0
 
 
+def as_typed(value: float) -> float:
+    """How far a float may be from the decimal number that was typed: rounded once, and once more to SI."""
+    return 2.0 * ROUNDING * abs(value) if value % 1.0 else 0.0
+
+
 def is_exact(constant: Any, value: float) -> bool:
-    """Whether `value` stands for the constant exactly."""
-    if isinstance(constant, float) or not math.isfinite(value):
+    """Whether `value` stands for the constant exactly; one that comes as a float, such as pi, is rounded."""
+    if not math.isfinite(value):
         return True
+    if isinstance(constant, float):
+        return not value % 1.0
     above, below = constant.numerator, constant.denominator
     if below == 1 and -_WHOLE <= above <= _WHOLE:
         return True

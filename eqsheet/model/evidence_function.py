@@ -192,9 +192,10 @@ class _Code:
             else:
                 self.lines.append(f"b{i}=abs(e[{operands[0]}])")
         elif operation == "literal":
-            self.lines.append(f"v{i}=l[{operands[0]}]; m{i}=s{i}=abs(v{i})")
+            self.lines.append(
+                f"v{i}=l[{operands[0]}]; m{i}=s{i}=abs(v{i}); b{i}=2.0*R*m{i} if v{i}%1.0 else 0.0"
+            )
             self._measured.add(i)
-            self._exact.add(i)
         elif operation == "const":
             value = as_float(operands[0])
             error = 0.0 if is_exact(operands[0], value) else rounding_of(value)

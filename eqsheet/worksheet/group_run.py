@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from eqsheet.diagnostics.diagnostic import Diagnostic
+from eqsheet.model.evaluate import as_typed
 from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.tape import Formula
 from eqsheet.solve.trail import Budget
@@ -35,7 +36,6 @@ from eqsheet.worksheet.group_guesses import guess_arrays, work_out_group_guesses
 from eqsheet.worksheet.group_singles import Singles
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
-from eqsheet.worksheet.written_values import as_typed
 
 Numbers = NDArray[np.int64]
 

@@ -8,7 +8,7 @@ from collections.abc import Sequence
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, warning
 from eqsheet.model.branches import literal_values
 from eqsheet.model.dimension_of import dimensions_of
-from eqsheet.model.evaluate import Evidence, evaluate, evaluate_with_evidence
+from eqsheet.model.evaluate import Evidence, as_typed, evaluate, evaluate_with_evidence
 from eqsheet.model.outside_curve import outside_curve
 from eqsheet.model.system import EquationItem, LimitItem, Validity
 from eqsheet.model.tape import Formula
@@ -21,7 +21,6 @@ from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import Run
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solution import LimitReport
-from eqsheet.worksheet.written_values import as_typed
 
 _WITH_READINGS = frozenset((Dimension.of({"K": 1}), Dimension.of({"kg": 1, "m": -1, "s": -2})))
 

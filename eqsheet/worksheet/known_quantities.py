@@ -6,8 +6,9 @@ import math
 from collections.abc import Mapping
 from typing import NamedTuple
 
+from eqsheet.model.branches import literal_values
+from eqsheet.model.evaluate import as_typed, evaluate_with_evidence
 from eqsheet.worksheet.prepare import Prepared
-from eqsheet.worksheet.written_values import as_typed
 
 
 class _Last(NamedTuple):
@@ -18,6 +19,8 @@ class _Last(NamedTuple):
 
 
 _last: list[_Last] = []
+# Instructions of a known set to a number: the quantity and the number.
+_A_NUMBER = 2
 
 
 def known_quantities(prepared: Prepared) -> tuple[tuple[float, ...], tuple[float, ...]]:
@@ -35,6 +38,18 @@ def known_quantities(prepared: Prepared) -> tuple[tuple[float, ...], tuple[float
     for quantity, value in prepared.known_values.items():
         if quantity not in prepared.contested:
             values[quantity] = value
-            errors[quantity] = as_typed(value)
+            errors[quantity] = _error(prepared, quantity, value)
     _last[:] = [_Last(prepared.known_values, prepared.contested, tuple(values), tuple(errors))]
     return _last[0].values, _last[0].errors
+
+
+def _error(prepared: Prepared, quantity: int, value: float) -> float:
+    """How far a known may be from what was typed: a number by its rounding, an expression by that of all its steps."""
+    formula = prepared.system.equations[prepared.setters[quantity]].formula
+    tape = formula.tape
+    if len(tape.instructions) <= _A_NUMBER:
+        return as_typed(value)
+    left, right = tape.outputs
+    side = right if tape.instructions[left][0] == "quantity" else left
+    evidence = evaluate_with_evidence(tape, (math.nan,), literal_values(formula))
+    return max(as_typed(value), evidence.errors[side])
