@@ -38,6 +38,7 @@ from eqsheet.model.lower_statements import (
     LoweredStatement,
 )
 from eqsheet.model.lowered_cache import LoweredCache
+from eqsheet.model.members_set import unmentioned_members
 from eqsheet.model.placed import Placed, Scope, place_statements
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance
 from eqsheet.model.system import (
@@ -271,6 +272,8 @@ def _assemble(
     for one in work:
         put_statement(gathered, one, binder, indexing)
     count_plainly(gathered, indexing, numbering)
+    headings = {column.name for column in tables.columns}
+    diagnostics.extend(unmentioned_members(gathered, numbering, indexing, headings))
     apply_overrides(gathered, freed, diagnostics)
     gathered.equations.sort(key=equation_key(statements))
     groups = gathered.grouped()

@@ -7,6 +7,7 @@ import math
 from typing import Any
 
 from eqsheet.diagnostics.json import as_data
+from eqsheet.syntax.nodes import Statement
 from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, Solution
 
 FORMAT = 1
@@ -32,6 +33,13 @@ def solution_data(solution: Solution) -> dict[str, Any]:
     }
 
 
+def _file(statement: Statement | None) -> dict[str, Any]:
+    """The file that a line stands in, where that is not the worksheet itself."""
+    if statement is None or not statement.source.attached:
+        return {}
+    return {"file": statement.source.name}
+
+
 def _quantity(value: QuantityValue) -> dict[str, Any]:
     return {
         "value": _finite(value.value),
@@ -41,6 +49,7 @@ def _quantity(value: QuantityValue) -> dict[str, Any]:
         "from": "known" if value.known else "block",
         "block": value.block,
         "line": value.line,
+        **_file(value.statement),
         "digits": value.digits,
     }
 
@@ -49,16 +58,25 @@ def _block(block: BlockReport) -> dict[str, Any]:
     return {
         "number": block.number,
         "unknowns": list(block.unknowns),
-        "lines": list(block.lines),
+        **_lines(block),
         "method": block.method,
         "iterations": block.iterations,
         "residual": _finite(block.residual),
     }
 
 
+def _lines(block: BlockReport) -> dict[str, Any]:
+    """The lines of a block, with their files where one of these is not the worksheet itself."""
+    if not any(statement.source.attached for statement in block.statements):
+        return {"lines": list(block.lines)}
+    places = dict.fromkeys((s.line.line, s.source.name) for s in block.statements if s.source.numbered)
+    return {"lines": [line for line, _ in places], "files": [file for _, file in places]}
+
+
 def _limit(limit: LimitReport) -> dict[str, Any]:
     return {
         "line": limit.line,
+        **_file(limit.statement),
         "text": limit.text,
         "holds": limit.holds,
         "margin": None if limit.margin is None else _finite(limit.margin),
