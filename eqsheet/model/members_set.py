@@ -10,7 +10,9 @@ from eqsheet.model.gather import Gathered
 from eqsheet.model.indexing import Indexing
 
 
-def unmentioned_members(gathered: Gathered, numbering: Numbering, indexing: Indexing) -> Iterator[Diagnostic]:
+def unmentioned_members(
+    gathered: Gathered, numbering: Numbering, indexing: Indexing, columns: Collection[str]
+) -> Iterator[Diagnostic]:
     """An error for each: it would add a quantity that nothing depends on, where a slip is likely.
 
     Parameters
