@@ -7,6 +7,7 @@ left out of the system; the others are unaffected.
 from __future__ import annotations
 
 from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
+from dataclasses import replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.bind import (
@@ -170,7 +171,7 @@ def _lower_all(
         for over, one in found:
             if one.findings and id(statement) not in said:
                 said.add(id(statement))
-                slips.extend((finding, statement) for finding in one.findings)
+                slips.extend((_of_instance(finding, place), statement) for finding in one.findings)
             work.append(Work(place, number, over, one))
             work += _parts(work[-1], parts_there)
     return work
@@ -212,6 +213,14 @@ def _member_by_member(
         one = cache.lowered(statement, IndexScope(fixed=fixed), in_instance)
         assert one is not None, "with its indices fixed a member is lowered"
         yield domain.at(entry), one
+
+
+def _of_instance(finding: Finding, place: Placed) -> Finding:
+    """A finding about a value, with the instance of a template that it is of."""
+    instance = place.instance or place.scope
+    if finding.code != "value-not-finite" or not instance.path:
+        return finding
+    return replace(finding, notes=(*finding.notes, f"in the instance `{instance.text}`"))
 
 
 def _names_at(place: Placed) -> Iterator[str]:

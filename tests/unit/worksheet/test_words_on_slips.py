@@ -29,6 +29,13 @@ def test_the_way_round_a_circle_of_templates() -> None:
     assert found.message == "the template `a` uses itself, by way of `b` and `c`"
 
 
+def test_a_value_that_is_none_is_told_with_its_instance() -> None:
+    found = only(solve("template t:\n    z = 1 m/0\nuse t as a\n"), "value-not-finite")
+    assert "in the instance `a`" in found.notes
+    outer = "template o:\n    use t as b:\n        z = 1 m/0\ntemplate t:\n    y = z\nuse o as a\n"
+    assert "in the instance `a.b`" in only(solve(outer), "value-not-finite").notes
+
+
 def test_an_index_is_given_a_unit_by_a_factor() -> None:
     found = only(solve("for i in 1..3:\n    x[i] = 2 m\n    y[i] = x[i] + i\n"), "dimension-clash")
     assert found.help == "give it a unit: `i*1 m`"
