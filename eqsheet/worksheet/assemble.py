@@ -14,7 +14,6 @@ from eqsheet.worksheet.alike import fold_alike
 from eqsheet.worksheet.ambient_note import ambient_note
 from eqsheet.worksheet.branches_taken import branches_taken
 from eqsheet.worksheet.deferred import DeferredMapping, DeferredSequence
-from eqsheet.worksheet.failure_messages import digits_of
 from eqsheet.worksheet.judge import judge_limits, judge_validity, known_bounds, limits_outside_curves
 from eqsheet.worksheet.limits_without_value import limits_without_value
 from eqsheet.worksheet.many_limits import failing_limits
@@ -22,6 +21,7 @@ from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.run import BlockRun, Run
 from eqsheet.worksheet.shown_units import shown_unit
 from eqsheet.worksheet.solution import BlockReport, LimitReport, QuantityValue, Solution
+from eqsheet.worksheet.trust import digits_of
 
 _RANK = {Severity.ERROR: 0, Severity.WARNING: 1, Severity.NOTE: 2}
 # Errors that say the worksheet is sound but no solution was found.

@@ -6,7 +6,7 @@ import math
 from collections.abc import Callable, Mapping, Sequence
 from typing import TYPE_CHECKING
 
-from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note, warning
+from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note
 from eqsheet.model.branches import literal_values
 from eqsheet.model.dimension_of import dimensions_of
 from eqsheet.model.evaluate import evaluate
@@ -35,10 +35,6 @@ MOST_EQUATIONS = 3
 MOST_PRESSED = 4
 # Nearer than this to a bound, relative to its own size, an unknown rests on it.
 ON_A_BOUND = 1e-6
-# Below this many digits a result is not good enough for ordinary work, and the run says so.
-FEW_DIGITS = 5
-# Below this part of a value an error leaves that many digits for sure.
-FEWEST_SURE = 0.5 * 10.0**-FEW_DIGITS
 
 _AT_MINIMUM = "no solution found: the search ended where no step brings the sides closer together"
 _HEADLINES = {
@@ -480,53 +476,3 @@ def blind_names(system: EquationSystem, run: BlockRun) -> Sequence[str]:
 
 def _was(names: Sequence[str]) -> str:
     return "was" if len(names) == 1 else "were"
-
-
-def trust_warnings(system: EquationSystem, run: BlockRun) -> list[Diagnostic]:
-    """A warning where a solved block is close to singular, so that few digits are good."""
-    result = run.result
-    assert result is not None
-    doubtful = [
-        position
-        for position, (value, error_bound) in enumerate(zip(result.values, result.errors))
-        if not error_bound <= FEWEST_SURE * abs(value) and value != 0.0
-    ]
-    found = [(digits_of(result.values[p], result.errors[p]), p) for p in doubtful]
-    worst = min((pair for pair in found if pair[0] < FEW_DIGITS), default=None)
-    if worst is None:
-        return []
-    return [few_digits_warning(system, run, *worst, [system.equations[e].place for e in run.equations])]
-
-
-def few_digits_warning(
-    system: EquationSystem, run: BlockRun, digits: int, position: int, places: Sequence[Place]
-) -> Diagnostic:
-    """A warning that the unknown at a position of a solved block has few digits.
-
-    Parameters
-    ----------
-    places : sequence of Place
-        Of the block's equations, in the order of the text; one of each statement will do.
-    """
-    result = run.result
-    assert result is not None
-    name = system.names[run.unknowns[position]]
-    double = result.outcome is not None and result.outcome.status is Status.DOUBLE
-    why = "a double root" if double else "the equations are close to depending on each other"
-    return warning(
-        "few-digits",
-        f"`{name}` from {line_words(system, places)} is good to about {digits} digits: {why}",
-        label_of(system, places[0]),
-        help="a small change of the inputs moves it much; check that the problem is posed as meant",
-    )
-
-
-def digits_of(value: float, error_bound: float) -> int:
-    """Decimal digits of a value that an error leaves good, 0 to 15."""
-    if not math.isfinite(error_bound):
-        return 0
-    if error_bound == 0.0:
-        return 15
-    if value == 0.0:
-        return 0
-    return int(min(max(math.floor(-math.log10(error_bound / abs(value))), 0), 15))

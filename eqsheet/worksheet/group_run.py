@@ -21,13 +21,9 @@ from eqsheet.worksheet.block_run import BlockRun
 from eqsheet.worksheet.curve_choice import curve_choice_note
 from eqsheet.worksheet.curve_messages import OF_CURVES
 from eqsheet.worksheet.failure_messages import (
-    FEW_DIGITS,
     blind_names,
-    digits_of,
     failure_diagnostic,
-    few_digits_warning,
     start_note_at,
-    trust_warnings,
 )
 from eqsheet.worksheet.group_block import solve_group_block
 from eqsheet.worksheet.group_chain import LEAST_CHAIN, ChainResult, solve_chain
@@ -36,6 +32,7 @@ from eqsheet.worksheet.group_guesses import guess_arrays, work_out_group_guesses
 from eqsheet.worksheet.group_singles import Singles
 from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
+from eqsheet.worksheet.trust import FEW_DIGITS, digits_of, few_digits_warning, trust_warnings
 
 Numbers = NDArray[np.int64]
 
@@ -148,7 +145,7 @@ class GroupRun:
                 # No start would help.
                 return
         elif len(equations) < LARGE_BLOCK:
-            self.diagnostics += trust_warnings(system, run)
+            self.diagnostics += trust_warnings(system, run, self.prepared.dimensions)
         else:
             columns = np.asarray(block.columns)
             self.diagnostics += self._trust(
@@ -273,7 +270,7 @@ class GroupRun:
         make = self._runs_of_chain(where, result)
         self._parts.append((len(where), make))
         for i in np.flatnonzero(self._few_digits(result.values, result.errors)).tolist():
-            self.diagnostics += trust_warnings(self.prepared.system, make(i))
+            self.diagnostics += trust_warnings(self.prepared.system, make(i), self.prepared.dimensions)
         return True
 
     def _runs_of_chain(self, where: Numbers, result: ChainResult) -> Callable[[int], BlockRun]:

@@ -21,7 +21,7 @@ from eqsheet.worksheet.block_order import blocks_in_order
 from eqsheet.worksheet.block_run import BlockRun as BlockRun
 from eqsheet.worksheet.curve_choice import curve_choice_note
 from eqsheet.worksheet.curve_messages import OF_CURVES
-from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note, trust_warnings
+from eqsheet.worksheet.failure_messages import failure_diagnostic, start_note
 from eqsheet.worksheet.follow_from_knowns import follow_from_knowns
 from eqsheet.worksheet.guesses import Guesses, constant_guesses, work_out_guesses
 from eqsheet.worksheet.known_quantities import known_quantities
@@ -30,6 +30,7 @@ from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
 from eqsheet.worksheet.structure_messages import conflict_diagnostic
+from eqsheet.worksheet.trust import trust_warnings
 from eqsheet.worksheet.without_unknowns import EQUAL_TO
 from eqsheet.worksheet.written_values import written
 
@@ -115,7 +116,7 @@ def run_blocks(
         runs.append(run)
         if result is not None:
             if result.solved:
-                diagnostics += trust_warnings(system, run)
+                diagnostics += trust_warnings(system, run, dimensions)
             else:
                 unsolved.append(number)
                 failure = failure_diagnostic(system, prepared, run, known, guesses, runs)
