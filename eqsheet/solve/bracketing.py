@@ -17,13 +17,17 @@ EVEN_SAMPLES = 64
 FARTHEST_DOUBLING = 60
 # Halvings when looking for the edge of the domain between a finite and a non-finite sample.
 EDGE_HALVINGS = 60
+# Golden section of an interval, and steps after which it is as short as a minimum is sharp.
+GOLDEN = 0.6180339887498949
+GOLDEN_STEPS = 50
 
 
 def bracketing(problem: ScalarProblem, start: float, trail: Trail) -> Outcome:
     """The root nearest `start` among the changes of sign that the samples show.
 
-    Statuses: as `scalar_newton` where a root was found; POLE where residuals change sign only by jumping;
-    NO_SIGN_CHANGE where they never do; DOMAIN where no sample is finite.
+    Statuses: as `scalar_newton` where a root was found; POLE where residuals change sign only by jumping; MINIMUM
+    where they never do and are least inside the range, NO_SIGN_CHANGE where they fall towards an end of it; DOMAIN
+    where no sample is finite.
     """
     jump: float | None = None
     for bracket in sign_changes(problem, start, trail):
@@ -45,12 +49,41 @@ def bracketing(problem: ScalarProblem, start: float, trail: Trail) -> Outcome:
         touched = scalar_newton(problem, float(trail.best), trail)
         if touched.solved:
             return touched
-        value, slope = problem.linearise(float(trail.best))
-        return trail.close(
-            Status.NO_SIGN_CHANGE, residual=scaled_residual(problem, float(trail.best), value, slope)
-        )
+        least = _least_near(problem, float(trail.best))
+        end = float(trail.best) if least is None else least
+        status = Status.NO_SIGN_CHANGE if least is None else Status.MINIMUM
+        return trail.close(status, end, scaled_residual(problem, end, *problem.linearise(end)))
     value, slope = problem.linearise(jump)
     return trail.close(Status.POLE, jump, scaled_residual(problem, jump, value, 0.0))
+
+
+def _least_near(problem: ScalarProblem, sample: float) -> float | None:
+    """Where the residual is least near a sample; None where it falls towards the end of the range.
+
+    By golden section (Kiefer, Proc. Amer. Math. Soc. 4 (1953), 502-506).
+    """
+
+    def size(x: float) -> float:
+        return abs(problem.residual(x))
+
+    points = sorted({sample, *sample_points(problem, sample)})
+    sizes = [size(x) for x in points]
+    i = points.index(sample)
+    while 0 < i < len(points) - 1:
+        lower = min(i - 1, i + 1, key=lambda k: sizes[k] if sizes[k] < inf else inf)
+        if not sizes[lower] < sizes[i]:
+            break
+        i = lower
+    if not 0 < i < len(points) - 1 or not sizes[i] < min(sizes[i - 1], sizes[i + 1]) < inf:
+        return None
+    begin, end = points[i - 1], points[i + 1]
+    for _ in range(GOLDEN_STEPS):
+        first, second = end - GOLDEN * (end - begin), begin + GOLDEN * (end - begin)
+        if size(first) <= size(second):
+            end = second
+        else:
+            begin = first
+    return 0.5 * (begin + end)
 
 
 def sign_changes(

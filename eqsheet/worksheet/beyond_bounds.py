@@ -19,6 +19,9 @@ from eqsheet.worksheet.solve_block import PAST_BOUND, BlockResult, Known, solve_
 _BUDGET = Budget(iterations=60, seconds=0.5)
 # What is large, or has families, is left as it is.
 LARGEST_BLOCK = 60
+# Further past a bound than so many times the range, or the size of a single bound, a solution is no help: an
+# equation with angles has others everywhere.
+FARTHEST = 30.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,9 +77,17 @@ def beyond_bounds(
 def _beyond(unknowns: Sequence[int], result: BlockResult, guesses: Guesses) -> Beyond | None:
     values = dict(zip(unknowns, result.values))
     outside = tuple(q for q in unknowns if not _inside(values[q], *guesses.bounds(q)))
-    return Beyond(values, outside) if outside else None
+    if not outside or any(_far(values[q], *guesses.bounds(q)) for q in outside):
+        return None
+    return Beyond(values, outside)
 
 
 def _inside(value: float, low: float, high: float) -> bool:
     slack = PAST_BOUND * abs(value)
     return low - slack <= value <= high + slack
+
+
+def _far(value: float, low: float, high: float) -> bool:
+    """Whether a value is so far past its bounds that they cannot be what is wrong; a bound at zero has no size."""
+    width = high - low if math.isfinite(high - low) else abs(low if math.isfinite(low) else high)
+    return width > 0.0 and max(low - value, value - high) > FARTHEST * width

@@ -7,11 +7,12 @@ from collections.abc import Callable, Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error, note
-from eqsheet.model.branches import literal_values
+from eqsheet.model.branches import literal_values, quantities_under
 from eqsheet.model.dimension_of import dimensions_of
-from eqsheet.model.evaluate import evaluate
+from eqsheet.model.evaluate import evaluate, first_nonfinite
 from eqsheet.model.lazy_sequence import LazySequence
-from eqsheet.model.no_value import no_value
+from eqsheet.model.no_value import NoValue, no_value
+from eqsheet.model.specialise import conditions
 from eqsheet.model.system import EquationSystem, Place
 from eqsheet.model.tape import Formula
 from eqsheet.solve.explain import Facts, explain
@@ -25,6 +26,7 @@ from eqsheet.worksheet.places import equation_words, label_of, line_words, quote
 from eqsheet.worksheet.proof_messages import Proof
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known
+from eqsheet.worksheet.trust import digits_of
 
 if TYPE_CHECKING:
     from eqsheet.worksheet.prepare import Prepared
@@ -60,6 +62,7 @@ _CURES = {
     Status.SINGULAR: "check that no equation of these lines repeats another, or start elsewhere with `near`",
     Status.DOMAIN: "give start values (`near`) or bounds (`within`) inside the domain of the equations",
     Status.NO_CONSISTENT_BRANCH: "let the branches meet where they switch, or check the condition",
+    Status.MINIMUM: "check sign and size of the terms; a start elsewhere (`near`) may lead past this point",
     Status.NO_SIGN_CHANGE: "check sign and size of the terms, and the bounds if there are any",
 }
 
@@ -113,7 +116,8 @@ def failure_diagnostic(
     if facts is not None and facts.local_minimum and status in (Status.STALLED, Status.SINGULAR):
         headline = _AT_MINIMUM
     proof = Proof(prepared, run, known, guesses, before)
-    headline = proof.headline or headline
+    unreliable = writer.unreliable()
+    headline = proof.headline or ("no value to rely on" if unreliable else headline)
     message = f"{headline}: {quoted(names)} from {where}"
     labels = [label_of(system, places[worst], guilty if len(places) > 1 else "")]
     others = sorted((p for i, p in enumerate(places) if i != worst), key=lambda p: (p.statement, p.start))
@@ -125,6 +129,7 @@ def failure_diagnostic(
     notes = writer.at_best_point() if not proof or writer.gaps() else []
     notes += writer.found_beyond(beyond)
     notes += proof.notes()
+    notes += [f"no digit of {quoted(unreliable)}, which it uses, is good"] if unreliable else []
     if facts is not None and facts.not_finite >= 0:
         notes += writer.not_finite(facts.not_finite)
     elif facts is not None:
@@ -143,6 +148,10 @@ def failure_diagnostic(
     )
     if proof and beyond is None:
         help = proof.help
+    elif unreliable:
+        help = (
+            f"a small change of the inputs moves {quoted(unreliable)} much; check that it is posed as meant"
+        )
     return error("no-solution", message, *labels, notes=tuple(notes), help=help)
 
 
@@ -323,15 +332,24 @@ class _Writer:
         return self.system.statements[formula.statement].line.text
 
     def without_value(self, names: Sequence[str]) -> Diagnostic | None:
-        """A quantity set to what has no value; None for any other failure."""
-        if self.result.outcome is not None or not math.isnan(self.result.values[0]):
-            return None
-        formula = self.result.formulas[0]
-        inputs = [1.0 if q in self.own else self.known.values[q] for q in formula.quantities]
-        values = evaluate(formula.tape, inputs, literal_values(formula))
-        found = no_value(formula, values, self._line(formula))
-        if found is None:
-            return None
+        """A part of an equation that has no value whatever the unknowns are; None for any other failure."""
+        for formula in self.formulas:
+            inputs = [1.0 if q in self.own else self.known.values[q] for q in formula.quantities]
+            values = evaluate(formula.tape, inputs, literal_values(formula))
+            part = first_nonfinite(formula.tape, values)
+            # What stands in a branch may not be needed.
+            if part is None or conditions(formula.tape):
+                continue
+            if any(formula.quantities[k] in self.own for k in quantities_under(formula.tape, part)):
+                continue
+            found = no_value(formula, values, self._line(formula))
+            if found is not None:
+                return self._without_value(names, formula, values, found)
+        return None
+
+    def _without_value(
+        self, names: Sequence[str], formula: Formula, values: Sequence[float], found: NoValue
+    ) -> Diagnostic:
         statement = self.system.statements[formula.statement]
         units = self._units(formula)
         parts = tuple(f"`{text}` is {units[i](values[i])}" for i, text in found.operands)
@@ -340,13 +358,24 @@ class _Writer:
             for q in formula.quantities
             if q not in self.own
         ]
+        explicit = self.result.outcome is None and math.isnan(self.result.values[0])
         return error(
             "no-solution",
-            f"`{names[0]}` has no value: {found.reason}",
+            f"{quoted(names)} {'has no value' if explicit else 'cannot be found'}: {found.reason}",
             Label(statement.span(found.start, found.end)),
             notes=(*parts, *((f"here {', '.join(others)}",) if others else ())),
             help="check the values it uses, and the lines they come from",
         )
+
+    def unreliable(self) -> list[str]:
+        """Names of quantities found before that have no good digit, where these leave a solution none."""
+        outcome = self.result.outcome
+        if outcome is None or not outcome.solved:
+            return []
+        used = {q for formula in self.result.formulas for q in formula.quantities if q not in self.own}
+        values, errors = self.known.values, self.known.errors
+        poor = [q for q in sorted(used) if values[q] != 0.0 and digits_of(values[q], errors[q]) == 0]
+        return [self.system.names[q] for q in poor]
 
     def pressed(self, facts: Facts) -> list[str]:
         """Unknowns on their bounds, and which equation pushes them; where none is, those heading past one."""
@@ -368,7 +397,10 @@ class _Writer:
         quantity = self.run.unknowns[position]
         low, high = self.guesses.bounds(quantity)
         problem = self.result.problem
+        start = self.result.start
         typical = 0.0 if problem is None else float(problem.magnitude[position])
+        # What a start tells of the size is no more to be relied on than the start.
+        typical = min(typical, start.typical[position]) if start is not None and start.typical else typical
         return min(max(abs(self.own[quantity]), typical), high - low)
 
     def dependence(self, facts: Facts) -> list[str]:
@@ -380,6 +412,8 @@ class _Writer:
             [self.system.equations[self.run.equations[i]].place for i, _ in facts.dependent_equations],
         )
         free = quoted(self.system.names[self.run.unknowns[i]] for i, _ in facts.free_unknowns)
+        if len(facts.dependent_equations) > 1 and lines.startswith("line "):
+            lines = f"equations of {lines}"
         verb = "depend" if len(facts.dependent_equations) > 1 else "says nothing"
         tail = "on each other" if len(facts.dependent_equations) > 1 else "about the unknowns"
         return [f"near the best point {lines} {verb} {tail} and leave {free} free"]

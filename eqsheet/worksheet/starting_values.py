@@ -41,6 +41,8 @@ MOST_NARROWED = 60
 # An angle, in radians: nearer to zero than to a quarter of a turn, as angles between buses or of a deflection are, but
 # not where a cosine has no slope.
 SMALL_ANGLE = 0.1
+# Values beyond this are no more than what equations without a solution run off to.
+LARGEST_TOLD = 1e100
 # Golden section: multiples of it modulo 1 spread evenly without repeating, so that starts differ.
 GOLDEN_SECTION = 0.6180339887498949
 # Bounds of a wider ratio are halved in the logarithm.
@@ -182,7 +184,14 @@ def _narrowed(
     if len(unknowns) > MOST_NARROWED:
         return room
     found = narrowed(unknowns, formulas, values, [room.bounds(q) for q in unknowns])
-    return room if found.empty >= 0 else _Room(room.guesses, dict(zip(unknowns, found.ranges)))
+    if found.empty >= 0:
+        return room
+    ranges = {
+        q: (low, high)
+        for q, (low, high) in zip(unknowns, found.ranges)
+        if low < LARGEST_TOLD and high > -LARGEST_TOLD
+    }
+    return _Room(room.guesses, ranges)
 
 
 def point_between(low: float, high: float, position: int) -> float | None:
