@@ -316,6 +316,10 @@ _WORDS_AFTER_OPERANDS = frozenset(
 _STEPS = frozenset(("step", "by"))
 
 
+# ``supply.head`` or ``p[l].head``, at the end.
+_DOTTED = re.compile(r"(?P<owner>[^\W\d]\w*)(?:\[[^\]]*\])?(?:\.[^\W\d]\w*(?:\[[^\]]*\])?)*\.[^\W\d]\w*$")
+
+
 def products(misfit: Misfit) -> Slip | None:
     """Two things side by side, which do not multiply."""
     thing = misfit.thing
@@ -339,6 +343,11 @@ def products(misfit: Misfit) -> Slip | None:
     start = _start_of_operand(misfit)
     left, right = misfit.text[start : misfit.before[-1][2]], _operand_at(misfit)
     help = f"write `{left}({right})`" if left in _FUNCTIONS else f"write `{left}*{right}`"
+    dotted = _DOTTED.search(misfit.text[: misfit.position]) if thing == "(" else None
+    if dotted is not None:
+        help = f"for a product write `{dotted[0]}*{right}`"
+        if dotted["owner"] != "const":
+            help += f"; definitions and curves belong to no instance, so they are called as `{left}{right}`"
     if misfit.last == "NUMBER" and misfit.word and right == misfit.word and not misfit.touches:
         if left[-1].isdigit() and misfit.text[misfit.before[-1][2] : misfit.position] != " ":
             return Slip(

@@ -12,6 +12,7 @@ from dataclasses import dataclass, field, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.spelling import did_you_mean
+from eqsheet.syntax.bounds import LARGEST_FILE
 from eqsheet.syntax.csv_table import Table, read_grid, read_table
 from eqsheet.syntax.nodes import Curve, Include, Rows, Statement
 from eqsheet.syntax.nodes import Text as TextNode
@@ -122,7 +123,9 @@ def _filled(
         return None
     source = read_regular_file(path)
     if isinstance(source, Diagnostic):
-        work.diagnostics.append(_unreadable(statement, written, replace(source, help=""), path, work))
+        work.diagnostics.append(
+            _unreadable(statement, written, replace(source, help=_where_too_large(path)), path, work)
+        )
         return None
     source = replace(source, name=os.path.join(work.shown, written.value), attached=True)
     is_grid = isinstance(node, Curve) and len(node.parameters) == 2
@@ -214,6 +217,13 @@ def _unreadable(
         Label(statement.span(written.start, written.end)),
         help=why.help if os.path.lexists(path) else _where_it_may_be(statement, written.value, path, work),
     )
+
+
+def _where_too_large(path: str) -> str:
+    """What to do with a table that is more than is read; empty for one that cannot be read for other reasons."""
+    if not os.path.isfile(path) or os.path.getsize(path) <= LARGEST_FILE:
+        return ""
+    return "leave out the columns and rows that the worksheet does not use: 200,000 rows have room"
 
 
 def _where_it_may_be(statement: Statement, name: str, path: str, work: _Attaching) -> str:

@@ -212,6 +212,7 @@ def test_a_file_of_100_megabytes_is_refused_at_once(tmp_path: Path) -> None:
     assert time.perf_counter() - begin < 2
     assert codes(solution) == ["unreadable-attachment"]
     assert "larger than" in solution.diagnostics[0].message
+    assert "leave out the columns and rows" in solution.diagnostics[0].help
 
 
 def test_what_is_no_text_is_refused(tmp_path: Path) -> None:
