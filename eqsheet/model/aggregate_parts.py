@@ -9,7 +9,7 @@ so that they are kept and solved as arrays.
 from __future__ import annotations
 
 import re
-from collections.abc import Collection, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, fields, replace
 from fractions import Fraction
 from typing import TYPE_CHECKING, Any
@@ -25,7 +25,6 @@ from eqsheet.syntax import nodes as syntax
 
 if TYPE_CHECKING:
     from eqsheet.model.lower import Lowering
-    from eqsheet.model.scope import QuantityKey
 
 # From this many members on; a sum of fewer is one formula.
 MANY = 1000
@@ -252,13 +251,6 @@ def _add(
     of_set = {name: sets[name.partition(ENTRY)[0] or ENTRY] for name in arrays}
     domain = Domain(len(entries), {**arrays, ENTRY: entries}, {**of_set, ENTRY: ""})
     running = {name for name, set_name in of_set.items() if not set_name and not name.startswith(ENTRY)}
-    summed = frozenset(n for n in formula.quantities if _runs(lowering.key_of(n), running))
+    keys = {number: lowering.key_of(number) for number in formula.quantities}
+    summed = frozenset(n for n, k in keys.items() if isinstance(k, FamilyReference) and k.runs_with(running))
     lowering.parts.append(Part(made.path[0][0], formula, domain, conditions, summed))
-
-
-def _runs(key: QuantityKey, running: Collection[str]) -> bool:
-    """Whether one of the indices stands in the brackets by itself."""
-    return isinstance(key, FamilyReference) and any(
-        isinstance(node, syntax.Reference) and node.subscripts is None and node.dotted in running
-        for node in key.nodes
-    )

@@ -13,7 +13,7 @@ import numpy as np
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
 from eqsheet.model.aggregate_parts import ENTRY, is_part
-from eqsheet.model.families import Family, FamilyReference, Numbering, with_fixed, written_name
+from eqsheet.model.families import Family, FamilyReference, Numbering, written_name
 from eqsheet.model.indexing import (
     Codes,
     Domain,
@@ -204,7 +204,7 @@ class Binder:
         end: int,
     ) -> list[Codes | int] | None:
         """The codes of the subscripts over the sets of the slots; None where one is wrong, which is said."""
-        full = with_fixed(domain, key.fixed)
+        full = key.over(domain)
         codes = []
         for k, (node, of) in enumerate(zip(key.nodes, sets)):
             try:

@@ -33,7 +33,7 @@ from eqsheet.model.gather import (
 )
 from eqsheet.model.grouping import Grouping
 from eqsheet.model.index_conditions import by_condition, index_conditions
-from eqsheet.model.indexing import Domain, Indexing, each_with_all, whole_number
+from eqsheet.model.indexing import Domain, Indexing, each_with_all
 from eqsheet.model.lower_definitions import check_definition, collect_definitions, without_echoes
 from eqsheet.model.lower_statements import (
     LoweredStatement,
@@ -48,6 +48,7 @@ from eqsheet.model.system import (
 )
 from eqsheet.model.tables import Tables, collect_tables
 from eqsheet.model.unit_statements import collect_units
+from eqsheet.model.whole_numbers import WholeNumbers
 from eqsheet.model.written_nodes import names_in
 from eqsheet.syntax import nodes as syntax
 from eqsheet.syntax.walk import walk
@@ -80,7 +81,8 @@ def build_system(
     definitions = collect_definitions(used, diagnostics)
     tables = collect_tables(used, unit_table, diagnostics)
     placed = place_statements(used, diagnostics)
-    indexing = Indexing(tables.sets, _whole_knowns(used), tables.members)
+    whole = WholeNumbers(placed, _names_in_subscripts(used))
+    indexing = Indexing(tables.sets, whole.of_worksheet(), tables.members)
     curves = collect_curves(used, definitions, unit_table, diagnostics)
     context = Context(unit_table, definitions, indexing, curves)
     cache.enter(context)
@@ -89,7 +91,7 @@ def build_system(
     numbered = _numbered(placed, tables)
     slips: list[tuple[Finding, syntax.Statement]] = []
     lost: set[object] = set()
-    work = _lower_all(placed, numbered, cache, indexing, slips, lost, diagnostics)
+    work = _lower_all(placed, numbered, cache, indexing, whole, slips, lost, diagnostics)
     # A known switched off still tells in which unit its quantity is thought of.
     idle = [
         one
@@ -98,7 +100,17 @@ def build_system(
         if (one := cache.lowered(s, IndexScope(), False)) is not None
     ]
     system = _assemble(
-        work, tables, idle, numbered, cache.names, lost, context, freed, diagnostics, large_family
+        work,
+        tables,
+        idle,
+        numbered,
+        cache.names,
+        lost,
+        context,
+        whole.mentioned,
+        freed,
+        diagnostics,
+        large_family,
     )
     if slips:
         quantities = {name.partition("[")[0] for name in system.names}
@@ -112,28 +124,13 @@ def _all(statements: Iterable[syntax.Statement]) -> Iterable[syntax.Statement]:
         yield from _all(statement.body)
 
 
-def _whole_knowns(statements: Sequence[syntax.Statement]) -> Mapping[str, int]:
-    """Knowns that are plain whole numbers, of those that subscripts and ranges mention."""
-    mentioned = names_in(
+def _names_in_subscripts(statements: Sequence[syntax.Statement]) -> set[str]:
+    """The names that subscripts, ranges, filters and lines with them mention."""
+    return names_in(
         (s.node.clauses, s.node.filter) if isinstance(s.node, syntax.Family) else s.node
         for s in _all(statements)
         if isinstance(s.node, syntax.Family | syntax.Use) or "[" in s.line.text or " for " in s.line.text
     )
-    if not mentioned:
-        return {}
-    whole: dict[str, int] = {}
-    for statement in statements:
-        node = statement.node
-        if not isinstance(node, syntax.Equation):
-            continue
-        for target, value in ((node.left, node.right), (node.right, node.left)):
-            if (
-                isinstance(target, syntax.Reference)
-                and target.dotted in mentioned
-                and (number := whole_number(value)) is not None
-            ):
-                whole[target.dotted] = number
-    return whole
 
 
 def _numbered(placed: Sequence[Placed], tables: Tables) -> dict[int, tuple[int, syntax.Statement]]:
@@ -150,13 +147,14 @@ def _lower_all(
     numbered: Mapping[int, tuple[int, syntax.Statement]],
     cache: LoweredCache,
     indexing: Indexing,
+    whole: WholeNumbers,
     slips: list[tuple[Finding, syntax.Statement]],
     lost: set[object],
     diagnostics: list[Diagnostic],
 ) -> list[Work]:
     """Lowered statements with their domains; the names of those whose `for` line is wrong are added to `lost`."""
     work: list[Work] = []
-    domains = Domains(indexing, diagnostics)
+    domains = Domains(indexing, whole, diagnostics)
     said: set[int] = set()
     parts_there: set[object] = set()
     for place in placed:
@@ -167,7 +165,7 @@ def _lower_all(
             lost.update(_names_at(place))
             continue
         free = visible(domain.sets)
-        found = _lowered(place, domain, free, cache, indexing)
+        found = _lowered(place, domain, free, cache, indexing, whole)
         for over, one in found:
             if one.findings and id(statement) not in said:
                 said.add(id(statement))
@@ -178,39 +176,50 @@ def _lower_all(
 
 
 def _lowered(
-    place: Placed, domain: Domain, free: Mapping[str, str], cache: LoweredCache, indexing: Indexing
+    place: Placed,
+    domain: Domain,
+    free: Mapping[str, str],
+    cache: LoweredCache,
+    indexing: Indexing,
+    whole: WholeNumbers,
 ) -> Iterator[tuple[Domain, LoweredStatement]]:
     """A statement lowered for the parts of its domain that need a formula of their own."""
     statement, in_instance = place.statement, place.instance is not None
+    local = whole.local(place.scope)
+    if local:
+        local = {name: local[name] for name in names_in((statement.node,)).intersection(local)}
+    here = IndexScope(whole=local) if local else NO_INDICES
     if not free:
-        one = cache.lowered(statement, NO_INDICES, in_instance)
+        one = cache.lowered(statement, here, in_instance)
         assert one is not None, "without an index there is one member"
         yield domain, one
         return
+    indexing = whole.indexing(indexing, place.scope)
     conditions = index_conditions(statement, free, domain, indexing)
     # The members of a limit are told in order, so they are not taken apart.
     if not conditions or not isinstance(statement.node, syntax.Limit):
         for over, decided in by_condition(domain, conditions, indexing):
-            one = cache.lowered(statement, IndexScope(free=free, decided=decided), in_instance)
+            one = cache.lowered(statement, replace(here, free=free, decided=decided), in_instance)
             if one is None:
-                yield from _member_by_member(statement, over, free, cache, in_instance)
+                yield from _member_by_member(statement, over, free, here, cache, in_instance)
             else:
                 yield over, one
         return
-    yield from _member_by_member(statement, domain, free, cache, in_instance)
+    yield from _member_by_member(statement, domain, free, here, cache, in_instance)
 
 
 def _member_by_member(
     statement: syntax.Statement,
     domain: Domain,
     free: Mapping[str, str],
+    here: IndexScope,
     cache: LoweredCache,
     in_instance: bool,
 ) -> Iterator[tuple[Domain, LoweredStatement]]:
     """A statement lowered for each member by itself."""
     for entry in range(domain.size):
         fixed = {n: (int(domain.arrays[n][entry]), free[n]) for n in free}
-        one = cache.lowered(statement, IndexScope(fixed=fixed), in_instance)
+        one = cache.lowered(statement, replace(here, fixed=fixed), in_instance)
         assert one is not None, "with its indices fixed a member is lowered"
         yield domain.at(entry), one
 
@@ -255,6 +264,7 @@ def _assemble(
     provisional: NameTable,
     lost: set[object],
     context: Context,
+    counting: Collection[str],
     freed: Collection[str],
     diagnostics: list[Diagnostic],
     large_family: int,
@@ -262,7 +272,7 @@ def _assemble(
     """Give the quantities their final numbers and bind all items to them."""
     indexing = context.indexing
     statements = tuple(statement for _, statement in numbered.values())
-    numbering, broken = _number(work, tables, provisional, indexing, diagnostics)
+    numbering, broken = _number(work, tables, provisional, indexing, counting, diagnostics)
     broken |= lost
     binder = Binder(
         numbering, indexing, provisional, {i: n for i, (n, _) in numbered.items()}, broken, diagnostics
@@ -370,9 +380,16 @@ def _number(
     tables: Tables,
     provisional: NameTable,
     indexing: Indexing,
+    counting: Collection[str],
     diagnostics: list[Diagnostic],
 ) -> tuple[Numbering, set[object]]:
-    """Numbers of all quantities that equations name, and the keys that broken statements name."""
+    """Numbers of all quantities that equations name, and the keys that broken statements name.
+
+    Parameters
+    ----------
+    counting : collection of str
+        Names that ranges and subscripts mention.
+    """
     collector = FamilyCollector(indexing)
     for column in tables.columns:
         collector.declare(((column.name, 1),), (column.set,), column.codes)
@@ -400,13 +417,12 @@ def _number(
             written_key = key.key if isinstance(key, OfInstance) else key
             # A path written out, `supply.dP`, refers to what the template makes; so does a line of an
             # instance's group.
-            makes = (
-                not isinstance(key, OfInstance)
-                and number not in one.lowered.summed
-                and (
-                    isinstance(written_key, str)
-                    or (isinstance(written_key, FamilyReference) and len(written_key.path) == 1)
-                )
+            local = isinstance(written_key, str) or (
+                isinstance(written_key, FamilyReference) and len(written_key.path) == 1
+            )
+            # A template may name a number in its ranges and subscripts only, where it is no quantity.
+            makes = number not in one.lowered.summed and (
+                written_key in counting if isinstance(key, OfInstance) else local
             )
             finding = collector.see(resolved, one.domain, makes, (start, end))
             if finding is not None and (found := finding.at(one.place.statement)) not in diagnostics:

@@ -12,6 +12,7 @@ from dataclasses import dataclass, field
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, warning
 from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown
 from eqsheet.model.placed import Placed, Scope, hidden_index, is_hidden
+from eqsheet.model.whole_numbers import WholeNumbers
 from eqsheet.syntax import nodes as syntax
 
 _ONE = Domain()
@@ -22,6 +23,7 @@ class Domains:
     """Domains worked out so far; what is wrong with a `for` line is added to `diagnostics`, once."""
 
     indexing: Indexing
+    whole: WholeNumbers
     diagnostics: list[Diagnostic]
     _known: dict[tuple[int, ...], Domain | None] = field(default_factory=dict)
     _around: dict[int, Domain | None] = field(default_factory=dict)
@@ -32,7 +34,7 @@ class Domains:
 
     def _over(self, scope: Scope, heads: Sequence[syntax.Statement]) -> Domain | None:
         base = self._of_instance(scope)
-        return None if base is None else self._grown(base, heads)
+        return None if base is None else self._grown(base, heads, self.whole.indexing(self.indexing, scope))
 
     def _of_instance(self, scope: Scope) -> Domain | None:
         """What the lines of an instance start from: the indices around its `use` under hidden names."""
@@ -43,24 +45,25 @@ class Domains:
             self._around[id(scope)] = outer if outer is None else _hidden(outer, scope.around.depth)
         return self._around[id(scope)]
 
-    def _grown(self, base: Domain, heads: Sequence[syntax.Statement]) -> Domain | None:
+    def _grown(self, base: Domain, heads: Sequence[syntax.Statement], indexing: Indexing) -> Domain | None:
         if not heads:
             return base
-        # Domains of instances are kept as long as this object, so their identities tell them apart.
-        key = (id(base), *map(id, heads))
+        # Domains of instances and what counts in them are kept as long as this object, so that identities tell
+        # them apart.
+        key = (id(base), id(indexing), *map(id, heads))
         if key not in self._known:
-            outer = self._grown(base, heads[:-1])
-            self._known[key] = outer if outer is None else self._one_more(outer, heads[-1])
+            outer = self._grown(base, heads[:-1], indexing)
+            self._known[key] = outer if outer is None else self._one_more(outer, heads[-1], indexing)
         return self._known[key]
 
-    def _one_more(self, outer: Domain, head: syntax.Statement) -> Domain | None:
+    def _one_more(self, outer: Domain, head: syntax.Statement, indexing: Indexing) -> Domain | None:
         node = head.node
         assert isinstance(node, syntax.Family)
         try:
             result = outer
             for clause in node.clauses:
-                result = grown(result, clause, self.indexing)
-            result = filtered(result, node.filter, self.indexing)
+                result = grown(result, clause, indexing)
+            result = filtered(result, node.filter, indexing)
         except IndexSlip as slip:
             self._say(slip.finding.at(head))
             return None

@@ -37,6 +37,8 @@ class FamilyReference:
     fixed : mapping of str to (int, str)
         Code and set of indices already decided (inside an aggregate written out); not compared, but part of
         `written`.
+    whole : mapping of str to int
+        Whole numbers of the template it stands in; likewise.
     place : tuple of (int, int)
         Where it stands in the line that named it first; other lines may name the same quantity. Not compared.
     inherited : int
@@ -49,11 +51,24 @@ class FamilyReference:
     fixed: Mapping[str, tuple[int, str]] = field(compare=False, default_factory=dict)
     place: tuple[int, int] = field(compare=False, default=(0, 0))
     inherited: int = field(compare=False, default=0)
+    whole: Mapping[str, int] = field(compare=False, default_factory=dict)
 
     @property
     def text(self) -> str:
         """The name without subscripts."""
         return ".".join(name for name, _ in self.path)
+
+    def runs_with(self, indices: Collection[str]) -> bool:
+        """Whether one of the indices stands in the brackets by itself."""
+        return any(
+            isinstance(node, syntax.Reference) and node.subscripts is None and node.dotted in indices
+            for node in self.nodes
+        )
+
+    def over(self, domain: Domain) -> Domain:
+        """The domain with what has one value everywhere."""
+        numbers = {name: (value, "") for name, value in self.whole.items()}
+        return with_fixed(domain, {**numbers, **self.fixed})
 
     def found_at(self, finding: Finding, slot: int, start: int, end: int) -> Finding:
         """What was found of a subscript, placed where the reference stands between `start` and `end`."""
@@ -189,7 +204,7 @@ class FamilyCollector:
         slots = self.sets.setdefault(reference.path, [None] * len(reference.nodes))
         for k, node in enumerate(reference.nodes):
             try:
-                found = subscript(node, with_fixed(domain, reference.fixed), self._indexing)
+                found = subscript(node, reference.over(domain), self._indexing)
                 if found.name:
                     if slots[k] is None:
                         self._by_name.setdefault(reference.path, [set() for _ in slots])[k].add(found.name)
@@ -261,7 +276,7 @@ class FamilyCollector:
             self._members.pop(path, None)
 
     def _codes(self, reference: FamilyReference, domain: Domain) -> Codes:
-        full = with_fixed(domain, reference.fixed)
+        full = reference.over(domain)
         slots = self.sets[reference.path]
         columns = [
             np.broadcast_to(

@@ -231,6 +231,23 @@ class PreferredUnits(Mapping[int, Unit]):
                 return found
         return default
 
+    def apart(self) -> Codes:
+        """For each quantity 0, or a number for its unit where that is not the one of the first of its family."""
+        found = np.zeros(self._total, dtype=np.int64)
+        decided = np.zeros(len(self._firsts), dtype=bool)
+        numbers: dict[str, int] = {}
+        for own in self._own:
+            units = {quantity: unit for quantity, unit in own.items() if unit is not None}
+            quantities = np.fromiter(units, np.int64, len(units))
+            family = np.searchsorted(self._firsts, quantities, side="right") - 1
+            if len({unit.text for unit in units.values()}) > 1:
+                common: dict[int, str] = {}
+                for q, f in sorted(zip(quantities.tolist(), family.tolist())):
+                    if not decided[f] and common.setdefault(f, units[q].text) != units[q].text:
+                        found[q] = numbers.setdefault(units[q].text, len(numbers) + 1)
+            decided[family] = True
+        return found
+
     def _of_family(
         self, own: Mapping[int, Unit | None], common: dict[int, Unit | None], position: int
     ) -> Unit | None:

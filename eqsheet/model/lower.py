@@ -16,7 +16,7 @@ from typing import Any, Never
 from eqsheet.model.aggregate_parts import JOINED, MANY, Part, in_parts
 from eqsheet.model.exact import exact_value
 from eqsheet.model.families import FamilyReference, with_fixed
-from eqsheet.model.indexing import Domain, IndexSlip, filtered, grown, holds, index_twice
+from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, holds, index_twice
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.literal_kind import kind_of, shortened_number
 from eqsheet.model.lowering_findings import LoweringFindings
@@ -78,10 +78,18 @@ class Lowering(LoweringFindings):
         self._free = indices.free
         self._fixed = dict(indices.fixed)
         self._decided = indices.decided
+        self._whole_here = indices.whole
+        self._whole = {name: value for name, value in indices.whole.items() if value is not None}
+        self._own_indexing = context.indexing_with(indices.whole)
         self._around = frozenset((*indices.free, *indices.fixed))
         self._running: frozenset[str] = frozenset()
         self.of_instance = False
         self._written_out: dict[tuple[str, tuple[int, ...]], int] = {}
+
+    @property
+    def _indexing(self) -> Indexing:
+        """What subscripts may refer to: a definition sees the worksheet's, not the template's that uses it."""
+        return self._context.indexing if self._calls else self._own_indexing
 
     @property
     def index_names(self) -> frozenset[str]:
@@ -236,10 +244,7 @@ class Lowering(LoweringFindings):
                 help=f"make it a parameter with a unit: `{self._empirical}(..., {node.name} in UNIT)`",
             )
         number = self.number_of(key)
-        if isinstance(key, str) or not any(
-            isinstance(s, syntax.Reference) and s.subscripts is None and s.dotted in self._running
-            for s in key.nodes
-        ):
+        if isinstance(key, str) or not key.runs_with(self._running):
             self.exist.add(number)
         return self.builder.quantity(number, self._place(node))
 
@@ -260,9 +265,11 @@ class Lowering(LoweringFindings):
             own = part.subscripts or ()
             path.append((part.name, len(own)))
             subscripts.extend(own)
-        written = tuple(canonical(s, self._fixed) for s in subscripts)
-        place = (node.start, node.end)
-        return FamilyReference(tuple(path), written, tuple(subscripts), dict(self._fixed), place)
+        whole = {} if self._calls else self._whole
+        decided = {**{name: (value, "") for name, value in whole.items()}, **self._fixed}
+        written, place = tuple(canonical(s, decided) for s in subscripts), (node.start, node.end)
+        nodes, fixed = tuple(subscripts), dict(self._fixed)
+        return FamilyReference(tuple(path), written, nodes, fixed, place, whole=whole)
 
     def _index(self, node: syntax.Reference, place: Place2) -> int:
         """An index as a number."""
@@ -370,7 +377,7 @@ class Lowering(LoweringFindings):
         if not names & set(self._fixed) or names & {*self._parameters, *self._free}:
             return None
         try:
-            return bool(holds(condition, with_fixed(Domain(), self._fixed), self._context.indexing)[0])
+            return bool(holds(condition, with_fixed(Domain(), self._fixed), self._indexing)[0])
         except IndexSlip:
             return None
 
@@ -385,8 +392,8 @@ class Lowering(LoweringFindings):
             for clause in node.clauses:
                 if clause.index in self._free and not self._calls:
                     raise index_twice(clause)
-                domain = grown(domain, clause, self._context.indexing)
-            domain = filtered(domain, node.filter, self._context.indexing)
+                domain = grown(domain, clause, self._indexing)
+            domain = filtered(domain, node.filter, self._indexing)
         except IndexSlip as slip:
             self._note_finding(slip.finding)
             raise Poisoned from None
@@ -395,13 +402,12 @@ class Lowering(LoweringFindings):
             raise NeedsMembers
         if domain.size >= MANY and self._stands_alone and not under_family:
             with suppress(NeedsMembers):
-                return in_parts(self, node, domain, self._context.indexing)
-        place = self._place(node)
-        parts: list[int] = []
-        inner = [clause.index for clause in node.clauses]
-        self._running = outside.union(n for n in inner if not domain.sets[n])
+                return in_parts(self, node, domain, self._indexing)
+        place, parts = self._place(node), list[int]()
+        inner = {clause.index: domain.sets[clause.index] for clause in node.clauses}
+        self._running = outside.union(n for n in inner if not inner[n])
         for entry in range(domain.size):
-            members = {n: (int(domain.arrays[n][entry]), domain.sets[n]) for n in inner}
+            members = {n: (int(domain.arrays[n][entry]), inner[n]) for n in inner}
             self._fixed = {**outer, **members}
             parts.append(self.value(node.body))
             if len(self.builder.instructions) > LARGEST_FORMULA:
@@ -434,7 +440,8 @@ class Lowering(LoweringFindings):
 
     def inside(self, sets: Mapping[str, str]) -> Lowering:
         """For a formula of its own in which some indices run over their members; findings are shared."""
-        lowering = Lowering(self._context, self._names, self.text, IndexScope(sets, self._fixed))
+        indices = IndexScope(sets, self._fixed, whole=self._whole_here)
+        lowering = Lowering(self._context, self._names, self.text, indices)
         lowering.findings = self.findings
         lowering.parts = self.parts
         return lowering
@@ -455,7 +462,7 @@ class Lowering(LoweringFindings):
         if not isinstance(node, syntax.Reference):
             return False
         if node.subscripts is not None:
-            return node.dotted in self._context.indexing.columns
+            return node.dotted in self._indexing.columns
         return bool(self._free.get(node.name) or self._fixed.get(node.name, (0, ""))[1])
 
     def _membership(self, node: syntax.Comparison, place: Place2) -> int:
@@ -463,7 +470,7 @@ class Lowering(LoweringFindings):
         if names_in((node,)) & set(self._free):
             raise NeedsMembers
         try:
-            true = bool(holds(node, with_fixed(Domain(), self._fixed), self._context.indexing)[0])
+            true = bool(holds(node, with_fixed(Domain(), self._fixed), self._indexing)[0])
         except IndexSlip as slip:
             self._note_finding(slip.finding)
             raise Poisoned from None

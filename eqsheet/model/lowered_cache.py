@@ -49,7 +49,7 @@ class LoweredCache:
     ) -> LoweredStatement | None:
         """The lowered statement, worked out now if it is new; None where each member needs one of its own."""
         text = statement.line.text
-        plain = not indices.free and not indices.fixed and not in_instance
+        plain = not indices.free and not indices.fixed and not indices.whole and not in_instance
         key: object = text if plain else (text, _signature(indices), in_instance)
         if key in self.entries:
             return self.entries[key]
@@ -65,7 +65,8 @@ class LoweredCache:
 
 
 def _signature(indices: IndexScope) -> tuple[object, ...]:
-    return tuple(tuple(sorted(one.items())) for one in (indices.free, indices.fixed, indices.decided))
+    parts = (indices.free, indices.fixed, indices.decided, indices.whole)
+    return tuple(tuple(sorted(one.items())) for one in parts)
 
 
 def _same_context(a: Context, b: Context) -> bool:

@@ -79,6 +79,7 @@ class Scope:
             key.fixed,
             key.place,
             len(scope.nodes) + key.inherited,
+            key.whole,
         )
 
     @property

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import TypeAlias
 
 from eqsheet.model.families import FamilyReference
@@ -51,6 +51,13 @@ class Context:
     indexing: Indexing = field(default_factory=Indexing)
     curves: Mapping[str, Interpolant] = field(default_factory=dict)
 
+    def indexing_with(self, whole: Mapping[str, int | None]) -> Indexing:
+        """What subscripts may refer to where some names are other whole numbers, or none; see `IndexScope.whole`."""
+        if not whole:
+            return self.indexing
+        numbers = {**self.indexing.whole, **whole}
+        return replace(self.indexing, whole={n: v for n, v in numbers.items() if v is not None})
+
 
 @dataclass(frozen=True)
 class IndexScope:
@@ -64,11 +71,14 @@ class IndexScope:
         Indices that have one member here: code and set.
     decided : mapping of (int, int) to bool
         Conditions on indices that are decided for all members here, by their place in the line.
+    whole : mapping of str to (int or None)
+        Names that are whole numbers of the template the line is in; None for one that only the worksheet has.
     """
 
     free: Mapping[str, str] = field(default_factory=dict)
     fixed: Mapping[str, tuple[int, str]] = field(default_factory=dict)
     decided: Mapping[tuple[int, int], bool] = field(default_factory=dict)
+    whole: Mapping[str, int | None] = field(default_factory=dict)
 
 
 NO_INDICES = IndexScope()

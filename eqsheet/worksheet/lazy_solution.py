@@ -10,6 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from eqsheet.model.aggregate_parts import is_part
+from eqsheet.model.grouping import PreferredUnits
 from eqsheet.model.lazy_sequence import LazySequence
 from eqsheet.model.system import EquationSystem
 from eqsheet.syntax.nodes import Statement
@@ -83,7 +84,8 @@ class LazyQuantities(ManyQuantities):
         family = np.searchsorted(firsts, order, side="right")
         section = origins.section[statement]
         key = (section * (len(firsts) + 1) + family) * 2 + (block > 0)
-        units = _shown_apart(self._system)
+        assert isinstance(self._system.units, PreferredUnits)
+        units = self._system.units.apart()
         if units.any():
             key = key * (int(units.max()) + 1) + units[order]
         _, begins, which, counts = np.unique(key, return_index=True, return_inverse=True, return_counts=True)
@@ -109,22 +111,6 @@ class LazyQuantities(ManyQuantities):
 
     def __repr__(self) -> str:
         return f"LazyQuantities({len(self)} quantities)"
-
-
-def _shown_apart(system: EquationSystem) -> Numbers:
-    """For each quantity 0, or a number for the unit in which it is shown other than its family."""
-    found = np.zeros(len(system.names), dtype=np.int64)
-    assert system.firsts is not None
-    numbers: dict[str, int] = {}
-    common: dict[int, str] = {}
-    for quantity in sorted(system.shown):
-        unit = system.shown[quantity]
-        if unit is None:
-            continue
-        family = int(np.searchsorted(system.firsts, quantity, side="right"))
-        if common.setdefault(family, unit.text) != unit.text:
-            found[quantity] = numbers.setdefault(unit.text, len(numbers) + 1)
-    return found
 
 
 class _MadeValues(ValuesView[QuantityValue]):

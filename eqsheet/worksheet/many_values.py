@@ -47,5 +47,5 @@ class ManyQuantities(Mapping[str, QuantityValue]):
         ----------
         most : int
             Members of a family that come from one section and are more than this, known ones and solved ones
-            apart, and those that `show` gives another unit, are taken together where the first of them stands.
+            apart, and those in another unit, are taken together where the first of them stands.
         """
