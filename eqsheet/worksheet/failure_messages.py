@@ -333,7 +333,8 @@ class _Writer:
 
     def without_value(self, names: Sequence[str]) -> Diagnostic | None:
         """A part of an equation that has no value whatever the unknowns are; None for any other failure."""
-        for formula in self.formulas:
+        explicit = self.result.outcome is None and math.isnan(self.result.values[0])
+        for formula in self.result.formulas if explicit else self.formulas:
             inputs = [1.0 if q in self.own else self.known.values[q] for q in formula.quantities]
             values = evaluate(formula.tape, inputs, literal_values(formula))
             part = first_nonfinite(formula.tape, values)
@@ -344,11 +345,12 @@ class _Writer:
                 continue
             found = no_value(formula, values, self._line(formula))
             if found is not None:
-                return self._without_value(names, formula, values, found)
+                verb = "has no value" if explicit else "cannot be found"
+                return self._without_value(f"{quoted(names)} {verb}", formula, values, found)
         return None
 
     def _without_value(
-        self, names: Sequence[str], formula: Formula, values: Sequence[float], found: NoValue
+        self, what: str, formula: Formula, values: Sequence[float], found: NoValue
     ) -> Diagnostic:
         statement = self.system.statements[formula.statement]
         units = self._units(formula)
@@ -358,10 +360,9 @@ class _Writer:
             for q in formula.quantities
             if q not in self.own
         ]
-        explicit = self.result.outcome is None and math.isnan(self.result.values[0])
         return error(
             "no-solution",
-            f"{quoted(names)} {'has no value' if explicit else 'cannot be found'}: {found.reason}",
+            f"{what}: {found.reason}",
             Label(statement.span(found.start, found.end)),
             notes=(*parts, *((f"here {', '.join(others)}",) if others else ())),
             help="check the values it uses, and the lines they come from",

@@ -92,3 +92,8 @@ def test_a_bound_is_rested_on_only_where_it_is_reached() -> None:
     for name in ("p1", "p2", "p3"):
         if any(note.startswith(f"`{name}` rests on its lower bound") for note in found.notes):
             assert solution.best[name].si < 1.0
+
+
+def test_in_a_branch_that_is_taken_for_sure_too() -> None:
+    found = only(solve("a + 1 = 3*a\nb = -2\ny = if a > 0 then sqrt(b) else 1"), "no-solution")
+    assert found.message == "`y` has no value: `sqrt(b)` takes the square root of a negative number"
