@@ -347,21 +347,20 @@ def _put_show(
 
 
 def put_column(gathered: Gathered, column: TableColumn, numbering: Numbering, binder: Binder) -> None:
-    """The knowns of a column of a table."""
+    """The knowns of a column of a table, and where its cells stand."""
     family = numbering.families.get(((column.name, 1),))
     if family is None:
         return
     numbers = family.numbers([column.codes], len(column.codes))
-    for cell in column.unknowns:
-        place = Place(binder.statement_number(cell.row), cell.start, cell.end)
-        gathered.see(int(numbers[cell.code]), place)
+    # Where places are kept by family, the first cell stands for all.
+    for cell in column.cells if gathered.grouping is None else column.cells[:1]:
+        gathered.see(int(numbers[cell.code]), Place(binder.statement_number(cell.row), *cell.place))
     if gathered.grouping is not None and _keep_cells(gathered, gathered.grouping, column, numbers, binder):
         return
     for known in column.knowns:
         quantity = int(numbers[known.code])
         item = _cell_item(quantity, known, binder.statement_number(known.row))
         gathered.equations.append(item)
-        gathered.see(quantity, item.place)
         if column.unit is not None:
             gathered.hints[0].setdefault(quantity, column.unit)
 
@@ -378,7 +377,6 @@ def _keep_cells(
     first = _cell_item(int(known[0]), column.knowns[0], places[0][0])
     if not grouping.take_cells(first, known, values, np.array(places, dtype=np.int64)):
         return False
-    gathered.see(int(known[0]), first.place)
     if column.unit is not None:
         gathered.hints[0].setdefault(int(known[0]), column.unit)
     return True

@@ -37,14 +37,18 @@ class CellKnown:
     literal: Literal
     row: syntax.Statement
 
+    @property
+    def place(self) -> tuple[int, int]:
+        """Start and end in the row."""
+        return self.literal.start, self.literal.end
+
 
 @dataclass(frozen=True)
 class CellUnknown:
-    """A cell that leaves its member unknown: the row's code, its place, and the statement of the row."""
+    """A cell that leaves its member unknown: the row's code, start and end in the row, and its statement."""
 
     code: int
-    start: int
-    end: int
+    place: tuple[int, int]
     row: syntax.Statement
 
 
@@ -279,7 +283,7 @@ def _number_column(
         if cell is None:
             if position + 1 < len(_cells(row)):
                 left = _cells(row)[position + 1]
-                unknowns.append(CellUnknown(code, left.start, left.end, row))
+                unknowns.append(CellUnknown(code, (left.start, left.end), row))
             continue
         value = _value(cell, row, column, diagnostics)
         if value is None:
