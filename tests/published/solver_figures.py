@@ -107,6 +107,9 @@ def distance_to_root(formulas, x) -> float:
         small = mpmath.mpf(10) ** -20
         for _ in range(120):
             values = mpmath.matrix(formulas(list(point), mpmath))
+            if not any(values):
+                # A root as it stands, where a singular Jacobian leaves no step.
+                break
             try:
                 step = mpmath.lu_solve(_differences(formulas, point, values), values)
             except (ZeroDivisionError, TypeError):
