@@ -30,6 +30,9 @@ from eqsheet.model.spelling import did_you_mean
 from eqsheet.model.tape import Formula, Instruction, Tape, TapeBuilder, interned, operands_of
 from eqsheet.syntax import nodes as syntax
 
+# Of the members there are so many are told by name.
+MOST_NAMED = 6
+
 
 class Unbound(Exception):
     """A statement names a quantity that is not there; the diagnostic is already noted."""
@@ -263,6 +266,17 @@ class Binder:
         if name in self.numbering.plain or name in self._by_name:
             self._add(error("not-a-family", f"`{name}` is not a family, so it takes no subscript", here))
             return
+        column = self.indexing.columns.get(name)
+        if column is not None:
+            self._add(
+                error(
+                    "member-as-number",
+                    f"`{name}` names members of `{column.of}`, so it is no quantity",
+                    here,
+                    help=f"it stands in brackets, `V[{name}[l]]`, and in filters, `if {name}[l] = n`",
+                )
+            )
+            return
         if isinstance(key, FamilyReference) and len(key.path) > 1:
             self._unknown_in_instance(key, here)
             return
@@ -302,6 +316,26 @@ class Binder:
             )
         )
 
+    def _members_there(self, family: Family) -> str:
+        """Which members there are, with the gaps between them where these are few."""
+
+        def name(position: int) -> str:
+            return f"`{family.name(position, self.indexing)}`"
+
+        last = family.size - 1
+        if len(family.sets) > 1:
+            return f"there are {family.size:,} members, from {name(0)} to {name(last)}"
+        runs = [(0, last)] if family.sets[0] else _runs(family.codes[:, 0])
+        if family.sets[0] and family.size <= MOST_NAMED:
+            runs = [(position, position) for position in range(family.size)]
+        if len(runs) == 1 and runs[0][0] < last:
+            return f"the members run from {name(0)} to {name(last)}"
+        if len(runs) > MOST_NAMED:
+            return f"there are {family.size:,} members, from {name(0)} to {name(last)}, with gaps"
+        texts = [name(a) if a == b else f"{name(a)} to {name(b)}" for a, b in runs]
+        are = "members are" if family.size > 1 else "only member is"
+        return f"the {are} " + " and ".join(part for part in (", ".join(texts[:-1]), texts[-1]) if part)
+
     def _no_member(
         self,
         key: FamilyReference,
@@ -324,16 +358,21 @@ class Binder:
         ]
         name = written_name(key.path, texts)
         at = entry_text(domain, entry, self.indexing)
-        first, last = family.name(0, self.indexing), family.name(family.size - 1, self.indexing)
         self._add(
             error(
                 "no-such-member",
                 f"there is no `{name}`" + (f" (at {at})" if at else ""),
                 Label(place.statement.span(start, end)),
-                notes=(f"the members run from `{first}` to `{last}`",),
+                notes=(self._members_there(family),),
                 help=f"give `{name}` a line of its own, or leave that member out with a filter (`if ...`)",
             )
         )
+
+
+def _runs(codes: Codes) -> list[tuple[int, int]]:
+    """Positions of the first and last of each run of consecutive whole numbers."""
+    ends = np.flatnonzero(np.append(np.diff(codes) != 1, True))
+    return list(zip([0, *(ends[:-1] + 1).tolist()], ends.tolist()))
 
 
 def resolved_key(key: object, place: Placed) -> str | FamilyReference:

@@ -429,9 +429,9 @@ def _number(
                 diagnostics.append(found)
     # What is wrong with a reference that makes no member is said again, and better, when it is bound.
     collector.finish()
-    collector.forget(alone - indexed)
+    collector.forget({*(alone - indexed), *indexing.columns})
     families = {path[0][0] for path in collector.sets if len(path) == 1 and path[0][1]}
-    return collector.numbering(plain - families), broken
+    return collector.numbering(plain.difference(families, indexing.columns)), broken
 
 
 def _check_labels(used: Iterable[syntax.Statement], diagnostics: list[Diagnostic]) -> None:

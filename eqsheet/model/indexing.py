@@ -312,8 +312,21 @@ def placed(indices: Indices, set_name: str, node: syntax.Expression, indexing: I
     if indices.set != set_name:
         here = f"a member of `{indices.set}`" if indices.set else "a whole number"
         there = f"members of `{set_name}`" if set_name else "whole numbers"
-        raise IndexSlip("index-mixed", f"{here} stands where {there} are used elsewhere", node)
+        help = _cure_for_mixed(node, set_name, indexing)
+        raise IndexSlip("index-mixed", f"{here} stands where {there} are used elsewhere", node, help)
     return indices.codes
+
+
+def _cure_for_mixed(node: syntax.Expression, set_name: str, indexing: Indexing) -> str:
+    """What to write in a slot over `set_name` (empty: whole numbers) in place of `node`."""
+    if not set_name:
+        return "write a whole number, or an index over a range: `for i in 1..N`"
+    members = indexing.sets[set_name].members
+    if isinstance(node, syntax.Number) and node.text in members:
+        return f'a member named by a number stands in quotes: `"{node.text}"`'
+    texts = (member_text(set_name, code, indexing) for code in range(min(len(members), 4)))
+    listed = ", ".join(texts) + (" ..." if len(members) > 4 else "")
+    return f"write a member ({listed}), an index `in {set_name}`, or a column `of {set_name}`"
 
 
 def no_set_with(name: str, node: syntax.Expression, indexing: Indexing) -> IndexSlip:

@@ -140,3 +140,58 @@ def test_a_local_name_is_a_family_or_is_not() -> None:
     found = only(text, "not-a-family")
     assert found.message == "`u.x` is not a family, so it takes no subscript"
     assert place(found) == (4, 9)
+
+
+@pytest.mark.parametrize(
+    ("text", "note"),
+    [
+        (
+            "for i in 1..5:\n    T[i+1] - T[i] = 2 K\nT[1] = 300 K\ny = T[7]",
+            "the members are `T[1]` to `T[5]` and `T[7]`",
+        ),
+        ("x[1] = 3\nfor i in 1..2:\n    y[i] = x[i-1]*2", "the only member is `x[1]`"),
+        (
+            "for i in 1..3 if i != 2:\n    x[i] = 2\nfor i in 1..3:\n    y[i] = 2*x[i+0]",
+            "the members are `x[1]` and `x[3]`",
+        ),
+        (
+            SPECIES + "for i in 1..2, s in sp:\n    T[i, s] = T[i-1, s] + K[s]\nT[0, H2O] = 1",
+            "there are 5 members, from `T[0, H2O]` to `T[2, CO2]`",
+        ),
+        (
+            SPECIES + "for s in sp if s = CO2:\n    w[s] = K[s]\nrequire w[H2O] >= 0",
+            "the only member is `w[CO2]`",
+        ),
+    ],
+)
+def test_the_members_that_are_there(text: str, note: str) -> None:
+    notes = [one.notes for one in said(text) if one.code == "no-such-member"]
+    assert notes[0] == (note,)
+
+
+@pytest.mark.parametrize(
+    ("line", "cure"),
+    [
+        ("w = x[2]", 'a member named by a number stands in quotes: `"2"`'),
+        ("w = sum(x[k] for k in s if k = 3)", 'a member named by a number stands in quotes: `"3"`'),
+        (
+            "for i in 1..3:\n    w[i] = x[i]",
+            'write a member ("1", "2", "3"), an index `in s`, or a column `of s`',
+        ),
+        (
+            "for k in s, i in 1..2:\n    w[i] = x[k]\n    v[k] = w[k]",
+            "write a whole number, or an index over a range: `for i in 1..N`",
+        ),
+    ],
+)
+def test_cure_for_members_mixed_with_numbers(line: str, cure: str) -> None:
+    (found,) = [
+        one for one in said("rows s: x\n    1 10\n    2 20\n    3 30\n" + line) if one.code == "index-mixed"
+    ]
+    assert found.help == cure
+
+
+@pytest.mark.parametrize("line", ["show a", "y = a", "z = 2*a[A]", "require a >= 3", "a[A] = 3"])
+def test_a_column_of_members_is_no_quantity(line: str) -> None:
+    found = only("rows s: a of s, v\n    A B 2\n    B A 3\n" + line, "member-as-number")
+    assert found.message == "`a` names members of `s`, so it is no quantity"
