@@ -18,14 +18,14 @@ def angles(formulas: Sequence[Formula]) -> frozenset[int]:
     inside: set[int] = set()
     outside: set[int] = set()
     for formula in formulas:
-        under, elsewhere = _slots(formula.tape)
+        under, elsewhere = slots_of_angles(formula.tape)
         inside.update(formula.quantities[slot] for slot in under)
         outside.update(formula.quantities[slot] for slot in elsewhere)
     return frozenset(inside - outside)
 
 
 @lru_cache(maxsize=4096)
-def _slots(tape: Tape) -> tuple[frozenset[int], frozenset[int]]:
+def slots_of_angles(tape: Tape) -> tuple[frozenset[int], frozenset[int]]:
     """Slots of the quantities that waves are taken of, and of those that occur elsewhere too."""
     # Whether an instruction is reached from an output without passing through a wave, and through one.
     plainly = [False] * len(tape.instructions)

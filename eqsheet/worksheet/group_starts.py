@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Mapping, Sequence
+from functools import cached_property
 from typing import cast
 
 import numpy as np
@@ -17,14 +18,25 @@ from numpy.typing import NDArray
 from eqsheet.model.evaluate import evaluate_arrays
 from eqsheet.model.isolate import isolate
 from eqsheet.units.dimension import Dimension
+from eqsheet.worksheet.angles import slots_of_angles
 from eqsheet.worksheet.array_equations import Shape
 from eqsheet.worksheet.curve_ranges import Range
 from eqsheet.worksheet.group_guesses import GuessArrays
-from eqsheet.worksheet.starting_values import GOLDEN_SECTION, NEAR_ZERO, WIDE, Start, typical_size
+from eqsheet.worksheet.starting_values import (
+    GOLDEN_SECTION,
+    NEAR_ZERO,
+    SMALL_ANGLE,
+    WIDE,
+    Start,
+    typical_size,
+)
 
 Numbers = NDArray[np.int64]
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
+# Where the known members of a family are zero the others start at this part of their typical size: nearer, differences
+# between them would be too small to take their scale from.
+BESIDE_ZERO = 0.1
 # Forms of equations that are told apart as origins of a start; more share the marks of others.
 _MARKS = 64
 
@@ -79,8 +91,10 @@ def group_starts(
         while work.open_positions().size:
             seeded = _next_family(work, firsts, parts)
             blind += seeded[~parts[unknowns[seeded]]].tolist()
-            first = firsts[np.searchsorted(firsts, unknowns[seeded[0]], side="right") - 1]
-            work.put(seeded, _like_others(work, seeded, firsts, typical_size(dimensions[first])))
+            size = float(_sizes(unknowns[seeded[:1]], firsts, dimensions)[0])
+            if work.are_angles[unknowns[seeded[0]]]:
+                size *= SMALL_ANGLE
+            work.put(seeded, _like_others(work, seeded, firsts, size))
             work.tell()
     start = work.current[unknowns]
     magnitude = np.abs(start)
@@ -134,6 +148,26 @@ class _Work:
         self._asked = [np.zeros(len(shape.rows), dtype=bool) for shape in shapes]
         # Which forms of equations a start comes from, by quantity, a bit each.
         self._origin = np.zeros(total, dtype=np.uint64)
+
+    @cached_property
+    def have_own_equations(self) -> Mask:
+        """Which quantities (quantities,) stand alone on a side of some equation."""
+        found = np.zeros(len(self.current), dtype=bool)
+        for shape in self._shapes:
+            for output in shape.tape.outputs:
+                operation, *rest = shape.tape.instructions[output]
+                if operation == "quantity":
+                    found[shape.quantities[:, rest[0]]] = True
+        return found
+
+    @cached_property
+    def are_angles(self) -> Mask:
+        """Which quantities (quantities,) are angles in every equation they occur in; see `angles`."""
+        under, elsewhere = (np.zeros(len(self.current), dtype=bool) for _ in range(2))
+        for shape in self._shapes:
+            for slots, found in zip(slots_of_angles(shape.tape), (under, elsewhere)):
+                found[shape.quantities[:, list(slots)]] = True
+        return under & ~elsewhere
 
     def open_positions(self) -> Numbers:
         """Positions of the unknowns without a start."""
@@ -251,12 +285,15 @@ def _moved(starts: Array, low: Array, high: Array) -> Array:
 
 
 def _next_family(work: _Work, firsts: Numbers, parts: Mask) -> Numbers:
-    """Positions of the unknowns without a start that are of the same family as the first, parts of sums last."""
+    """Positions of the unknowns without a start that are of one family, the next to be started.
+
+    Quantities with an equation of their own, which tells them once the others have a start, come after those, and
+    parts of sums last.
+    """
     left = work.open_positions()
-    named = left[~parts[work.unknowns[left]]]
-    left = named if len(named) else left
+    later = work.have_own_equations[work.unknowns[left]] + 2 * parts[work.unknowns[left]]
     family = np.searchsorted(firsts, work.unknowns[left], side="right")
-    return np.asarray(left[family == family[0]])
+    return np.asarray(left[family == family[later.argmin()]])
 
 
 def _like_others(work: _Work, positions: Numbers, firsts: Numbers, size: float) -> Array:
@@ -272,7 +309,7 @@ def _like_others(work: _Work, positions: Numbers, firsts: Numbers, size: float) 
     if low < high:
         return _between(np.full(len(share), low), np.full(len(share), high), share)
     if low == 0.0:
-        return np.asarray(NEAR_ZERO * size * (1.0 + 0.2 * share))
+        return np.asarray(BESIDE_ZERO * size * (1.0 + 0.2 * share))
     return np.asarray(low * (0.9 + 0.2 * share))
 
 
