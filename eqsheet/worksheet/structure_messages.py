@@ -6,6 +6,7 @@ from collections import Counter
 from collections.abc import Callable, Mapping, Sequence
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, error
+from eqsheet.model.aggregate_parts import is_part
 from eqsheet.model.spelling import close_names
 from eqsheet.model.system import EquationItem, EquationSystem
 from eqsheet.model.tape import Formula
@@ -63,7 +64,7 @@ def shortfall_diagnostic(
         What is to be said of quantities whose names are likely slips.
     """
     items = [system.equations[rows[r]] for r in shortfall.rows]
-    columns: Sequence[int] = shortfall.columns
+    columns: Sequence[int] = _told(system, shortfall.columns)
     if len(columns) > MOST_LISTED:
         # Not all of them are told: the ones that may be missing a line go first.
         columns = sorted(columns, key=_as_if_found(system, items))
@@ -72,7 +73,7 @@ def shortfall_diagnostic(
     count = "one more equation or known is" if missing == 1 else f"{missing} more equations or knowns are"
     if items:
         where = line_words(system, [i.place for i in items])
-        number = len(items)
+        number = len(items) - (len(shortfall.columns) - len(columns))
         message = f"{where} {'does' if number == 1 else 'do'} not determine {quoted(names)}: {count} needed"
     else:
         message = f"nothing determines {quoted(names)}"
@@ -166,6 +167,11 @@ def _close(name: str, names: Sequence[str]) -> tuple[str, ...]:
     return tuple(f"{owner}.{n}" for n in close_names(last, [n for own, _, n in others if own == owner]))
 
 
+def _told(system: EquationSystem, columns: Sequence[int]) -> Sequence[int]:
+    """The quantities without the parts of large sums, each of which has an equation of its own; those if alone."""
+    return [c for c in columns if not is_part(system.names[c])] or columns
+
+
 def conflict_diagnostic(
     system: EquationSystem, rows: Sequence[int], conflict: Conflict, satisfied: bool | None, gap: str
 ) -> Diagnostic:
@@ -181,10 +187,11 @@ def conflict_diagnostic(
     items = [system.equations[rows[r]] for r in conflict.rows]
     items.sort(key=lambda i: i.place.statement)
     likely = sorted(items, key=_suspicion(system, items))
-    names = [system.names[c] for c in conflict.columns]
+    names = [system.names[c] for c in _told(system, conflict.columns)]
     knowns = [system.names[i.known] for i in likely if i.known >= 0]
     where = line_words(system, [i.place for i in items])
-    many = f"{len(items)} statements for {len(names)} quantit{'y' if len(names) == 1 else 'ies'}"
+    parts = len(conflict.columns) - len(names)
+    many = f"{len(items) - parts} statements for {len(names)} quantit{'y' if len(names) == 1 else 'ies'}"
     left_out = [system.equations[rows[r]] for r in conflict.left_out]
     labels = [label_of(system, left_out[0].place, "this is one too many" if satisfied is not True else "")]
     others = dict.fromkeys(label_of(system, i.place) for i in likely if i.place != left_out[0].place)

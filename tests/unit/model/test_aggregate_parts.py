@@ -148,3 +148,19 @@ def test_too_many_members_are_refused_at_once(function: str) -> None:
 def test_a_pattern_does_not_match_parts() -> None:
     text = f"for i in 1..{MANY}:\n    q[i] = i\ns = sum(q[i] for i in 1..{MANY})\ns* within 1 .. 1e9\n"
     assert eqsheet.parse(text).solve().status == "solved"
+
+
+@pytest.mark.parametrize(
+    "line",
+    ["a[i] = 2 + w", "a[i] = 2*b"],
+    ids=["one equation missing", "one equation too many"],
+)
+def test_verdicts_speak_of_quantities_of_the_worksheet(line: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    text = f"for i in 1..40:\n    {line}\nQ = sum(a[i] for i in 1..40)\n"
+    if "w" not in line:
+        text += "b = 1\nQ = 90\n"
+    said = [
+        [(d.code, d.message, d.help) for d in solved(text, many, monkeypatch).diagnostics]
+        for many in (IN_PARTS, WRITTEN_OUT)
+    ]
+    assert said[0] == said[1] != []
