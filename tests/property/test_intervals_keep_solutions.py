@@ -8,12 +8,12 @@ from __future__ import annotations
 
 import math
 import random
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 import pytest
 
 import eqsheet
-from eqsheet.model.branches import literal_values
+from eqsheet.model.branches import chosen_branches, held_conditions, literal_values, switches
 from eqsheet.model.evaluate import evaluate_with_evidence
 from eqsheet.model.tape import Formula
 from eqsheet.worksheet.intervals import narrowed
@@ -96,6 +96,18 @@ def bounds_around(choice: random.Random, value: float) -> tuple[float, float]:
     return value - choice.random() * width, value + choice.random() * width
 
 
+def with_branches(
+    choice: random.Random, formulas: Sequence[Formula], point: Sequence[float]
+) -> list[Sequence[Mapping[int, bool]]]:
+    """Conditions held as they are at the point: all of them, and some."""
+    found = switches(formulas)
+    taken = chosen_branches(formulas, found, point.__getitem__)
+    some = tuple(branch if choice.random() < 0.5 else -1 for branch in taken)
+    held = [held_conditions(formulas, found, branches) for branches in (taken, some)]
+    assert None not in held
+    return [conditions for conditions in held if conditions is not None]
+
+
 @pytest.mark.parametrize("seed", range(20))
 def test_no_bounds_around_a_solution_lose_it(seed: int) -> None:
     choice = random.Random(seed)
@@ -108,9 +120,10 @@ def test_no_bounds_around_a_solution_lose_it(seed: int) -> None:
         formulas, point = found
         for _ in range(4):
             bounds = [bounds_around(choice, value) for value in point]
-            result = narrowed(range(len(point)), formulas, [math.nan] * len(point), bounds)
-            assert result.empty == -1
-            for value, (low, high) in zip(point, result.ranges):
-                slack = FEWEST_DIGITS * max(abs(value), 1.0)
-                assert low - slack <= value <= high + slack
+            for held in ((), *with_branches(choice, formulas, point)):
+                result = narrowed(range(len(point)), formulas, [math.nan] * len(point), bounds, held=held)
+                assert result.empty == -1
+                for value, (low, high) in zip(point, result.ranges):
+                    slack = FEWEST_DIGITS * max(abs(value), 1.0)
+                    assert low - slack <= value <= high + slack
     assert tried >= WORKSHEETS_A_SEED // 10
