@@ -10,6 +10,8 @@ from eqsheet.worksheet.solution import BlockReport, Solution
 
 # Of a long attempt the first and last iterations are shown.
 MOST_ITERATIONS = 40
+# Of a large block so many unknowns are named.
+MOST_UNKNOWNS = 12
 
 
 def trace_lines(solution: Solution) -> list[str]:
@@ -22,11 +24,18 @@ def trace_lines(solution: Solution) -> list[str]:
             lines.append("")
         where = ", ".join(map(str, block.lines))
         lines.append(
-            f"Block {block.number}: {', '.join(block.unknowns)} from line{'s' * (len(block.lines) != 1)} {where}"
+            f"Block {block.number}: {_unknowns(block)} from line{'s' * (len(block.lines) != 1)} {where}"
         )
         for attempt in _attempts(block.outcome):
             lines += _attempt_lines(attempt, block)
     return lines
+
+
+def _unknowns(block: BlockReport) -> str:
+    """The unknowns, of many the first and how many more there are."""
+    names = block.unknowns[:MOST_UNKNOWNS]
+    more = len(block.unknowns) - len(names)
+    return ", ".join(names) + (f" and {more:,} more" if more else "")
 
 
 def _attempts(outcome: Outcome) -> Iterator[Outcome]:
