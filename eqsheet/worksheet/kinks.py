@@ -10,7 +10,6 @@ import numpy as np
 from eqsheet.model.branches import literal_values, quantities_under
 from eqsheet.model.evaluate import evaluate, evaluate_with_evidence
 from eqsheet.model.tape import Formula
-from eqsheet.solve.beside_kinks import curve_beside, roots_beside
 from eqsheet.solve.outcome import Outcome, Status
 from eqsheet.solve.problem import Problem, ScalarProblem
 from eqsheet.solve.termination import ZERO_FLOOR
@@ -55,6 +54,8 @@ def beyond_the_kinks(
     off = {q: max(abs(v), ZERO_FLOOR * m) for q, v, m in zip(unknowns, found, start.magnitude)}
     if not any(_at_a_kink(formula, own, off, values) for formula in formulas):
         return outcome
+    from eqsheet.solve.beside_kinks import curve_beside, roots_beside
+
     if isinstance(problem, ScalarProblem):
         if not roots_beside(problem, found[0]):
             return outcome

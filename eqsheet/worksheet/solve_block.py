@@ -43,7 +43,6 @@ from eqsheet.worksheet.block_equations import BlockProblem, block_problem, scala
 from eqsheet.worksheet.block_plan import plan_of
 from eqsheet.worksheet.guesses import Guesses
 from eqsheet.worksheet.intervals import narrowed
-from eqsheet.worksheet.kinks import beyond_the_kinks
 from eqsheet.worksheet.less_blind import less_blind
 from eqsheet.worksheet.starting_values import MOST_NARROWED, Start, starting_values
 from eqsheet.worksheet.torn import TornBlock, torn_block
@@ -339,6 +338,8 @@ def _iterate(
     outcome, problem = solve_plain(formulas, unknowns, known, start, budget)
     kinks = plan_of(formulas, unknowns).kinked
     if kinks and outcome.solved and len(unknowns) <= LARGEST_EXAMINED:
+        from eqsheet.worksheet.kinks import beyond_the_kinks
+
         posed = problem or scalar_problem(formulas[0], unknowns[0], known.values, start)
         with_kinks = [formulas[k] for k in kinks]
         outcome = beyond_the_kinks(outcome, posed, with_kinks, unknowns, known.values, start)
