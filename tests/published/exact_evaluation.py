@@ -72,7 +72,7 @@ def residuals(text: str, values: Mapping[str, float], least: Mapping[str, float]
     found = []
     with mpmath.workdps(DIGITS):
         names = {n: Bounded(mpmath.mpf(v), max(abs(v), least.get(n, 0.0))) for n, v in values.items()}
-        evaluator = _Evaluator(names, definitions)
+        evaluator = Evaluator(names, definitions)
         for statement in statements:
             if isinstance(statement.node, Equation):
                 left = evaluator.of(statement.node.left)
@@ -86,7 +86,7 @@ def residuals(text: str, values: Mapping[str, float], least: Mapping[str, float]
 def within_bounds(text: str, values: Mapping[str, float]) -> bool:
     """Whether all values lie in the bounds that the worksheet's guesses set."""
     with mpmath.workdps(DIGITS):
-        evaluator = _Evaluator({name: _exactly(value) for name, value in values.items()}, {})
+        evaluator = Evaluator({name: _exactly(value) for name, value in values.items()}, {})
         for statement in statements_of(text):
             guess = statement.node
             if not (isinstance(guess, Guess) and isinstance(guess.target, Reference)):
@@ -125,7 +125,7 @@ def _exactly(value: float) -> Bounded:
     return Bounded(exact, abs(exact))
 
 
-class _Evaluator:
+class Evaluator:
     """Values of expressions at given quantities."""
 
     def __init__(self, names: Mapping[str, Bounded], definitions: Mapping[str, Definition]) -> None:
@@ -185,7 +185,7 @@ class _Evaluator:
         inner: dict[str, Bounded] = {} if definition.result_unit else dict(self.names)
         for parameter, argument in zip(definition.parameters, arguments):
             inner[parameter.name] = _plain(argument, parameter.unit)
-        result = _Evaluator(inner, self.definitions).of(definition.body)
+        result = Evaluator(inner, self.definitions).of(definition.body)
         if definition.result_unit is None:
             return result
         unit = _unit(definition.result_unit)
