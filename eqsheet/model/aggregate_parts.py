@@ -10,9 +10,9 @@ from __future__ import annotations
 
 import re
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, fields, replace
+from dataclasses import dataclass, replace
 from fractions import Fraction
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 
@@ -20,7 +20,7 @@ from eqsheet.model.families import FamilyReference
 from eqsheet.model.indexing import Codes, Domain, Indexing, member_text
 from eqsheet.model.tape import Formula, TapeBuilder
 from eqsheet.model.while_lowering import ConditionMet
-from eqsheet.model.written_nodes import canonical, names_in
+from eqsheet.model.written_nodes import canonical, names_in, renamed
 from eqsheet.syntax import nodes as syntax
 
 if TYPE_CHECKING:
@@ -197,21 +197,9 @@ def _operand(
     place: tuple[int, int],
 ) -> int:
     """The leaf for an operand by its position in its part."""
-    nodes = tuple(_renamed(node, indices, f"{ENTRY}{position}") for node in reference.nodes)
+    nodes = renamed(reference.nodes, {index: f"{index}{ENTRY}{position}" for index in indices})
     written = tuple(canonical(node, reference.fixed) for node in nodes)
     return builder.quantity(lowering.number_of(replace(reference, written=written, nodes=nodes)), place)
-
-
-def _renamed(node: Any, indices: Mapping[str, str], ending: str) -> Any:
-    """A subscript with some indices under names of their own."""
-    if isinstance(node, tuple):
-        return tuple(_renamed(one, indices, ending) for one in node)
-    if not hasattr(node, "__dataclass_fields__"):
-        return node
-    changed = {f.name: _renamed(getattr(node, f.name), indices, ending) for f in fields(node)}
-    if isinstance(node, syntax.Reference) and node.owner is None and node.subscripts is None:
-        changed["name"] = node.name + ending if node.name in indices else node.name
-    return replace(node, **changed)
 
 
 def _joined(
