@@ -130,7 +130,7 @@ def solve_equations(
         formulas = tuple(settle(f, lambda q: None if q in plan.own else values[q]) for f in formulas)
         found = switches(formulas, plan.own)
     if not found:
-        if len(unknowns) == 1:
+        if len(unknowns) == 1 and unknowns[0] in formulas[0].quantities:
             closed = closed_form(formulas[0], unknowns[0], known, guesses)
             if closed is not None:
                 return closed
@@ -280,9 +280,7 @@ def solve_plain(
     """
     if len(unknowns) == 1:
         if unknowns[0] not in formulas[0].quantities:
-            # A held branch has lost the unknown.
-            point = np.array(start.values)
-            return Outcome(Status.SINGULAR, point, math.inf, 0, "newton"), None
+            return _without_unknown(formulas[0], known, start), None
         return solve_scalar(scalar_problem(formulas[0], unknowns[0], known.values, start), budget), None
     problem = problem_of(formulas, unknowns, known, start)
     if plan_of(formulas, unknowns).linear:
@@ -301,6 +299,16 @@ def solve_plain(
         )
 
     return ladder(problem, budget, (("torn", through_tears),), hopeless), problem
+
+
+def _without_unknown(formula: Formula, known: Known, start: Start) -> Outcome:
+    """The outcome where the branch taken has lost the unknown: any value will do, or none."""
+    inputs = [known.values[q] for q in formula.quantities]
+    errors = [known.errors[q] for q in formula.quantities]
+    (left, right), sizes, bounds = evidence_of_outputs(formula.tape, inputs, literal_values(formula), errors)
+    holds = abs(left - right) <= max(ACCEPTABLE * max(sizes), sum(bounds))
+    status = Status.CONTINUUM if holds else Status.SINGULAR
+    return Outcome(status, np.array(start.values), 0.0 if holds else math.inf, 0, "newton")
 
 
 def problem_of(formulas: Sequence[Formula], unknowns: Sequence[int], known: Known, start: Start) -> Problem:

@@ -97,3 +97,18 @@ def test_a_bound_is_rested_on_only_where_it_is_reached() -> None:
 def test_in_a_branch_that_is_taken_for_sure_too() -> None:
     found = only(solve("a + 1 = 3*a\nb = -2\ny = if a > 0 then sqrt(b) else 1"), "no-solution")
     assert found.message == "`y` has no value: `sqrt(b)` takes the square root of a negative number"
+
+
+@pytest.mark.parametrize(
+    "line, message",
+    [
+        (
+            "1.35 = if a < b then c else 1.35",
+            "no single solution: the equations leave a combination of unknowns free: `c` from line 3",
+        ),
+        ("1.35 = if a > b then 1.3 else c", "no solution with the values found before: `c` from line 3"),
+    ],
+)
+def test_an_unknown_that_only_the_other_branch_holds(line: str, message: str) -> None:
+    """The branch is settled by what other lines give: a is 1 and b a little less."""
+    assert only(solve(f"b/a = 0.986\na^3 + a = 2\n{line}"), "no-solution").message == message
