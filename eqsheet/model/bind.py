@@ -253,13 +253,13 @@ class Binder:
         families = [family for family in self._by_name.get(name, ()) if family.sets]
         if families:
             family = families[0]
-            slots = ", ".join(s or "number" for s in family.sets)
+            slots = ", ".join(f"`{s}`" if s else "whole numbers" for s in family.sets)
             self._add(
                 error(
                     "family-without-subscript",
                     f"`{name}` is a family with {len(family.sets)} subscript{'s' * (len(family.sets) != 1)}",
                     here,
-                    help=f"write `{written_name(family.path, ['...'] * len(family.sets))}` (over: {slots})",
+                    help=f"write `{written_name(family.path, ['...'] * len(family.sets))}` (over {slots})",
                 )
             )
             return

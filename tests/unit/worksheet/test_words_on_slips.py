@@ -81,3 +81,8 @@ def test_what_a_file_would_have_made_is_not_missed(tmp_path: Path, table: str | 
     solution = eqsheet.load(sheet).solve()
     assert len(errors(solution)) == 1
     assert lines(solution.diagnostics[0])[0] == 1
+
+
+def test_what_a_family_runs_over_is_told_in_words() -> None:
+    text = "rows st: F\n    s1 1\nfor i in st, k in 1..2:\n    L[i, k] = F[i]*k\ny = L\n"
+    assert only(solve(text), "family-without-subscript").help.endswith("(over `st`, whole numbers)")
