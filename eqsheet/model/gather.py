@@ -37,6 +37,7 @@ from eqsheet.model.system import (
 )
 from eqsheet.model.tables import CellKnown, TableColumn
 from eqsheet.model.tape import Formula, Literal, TapeBuilder
+from eqsheet.model.unused_indices import unused_index
 from eqsheet.model.value_of_known import known_value
 from eqsheet.syntax import nodes as syntax
 from eqsheet.units.dimension import DIMENSIONLESS
@@ -132,6 +133,10 @@ def put_statement(gathered: Gathered, one: Work, binder: Binder, indexing: Index
     lowered = one.lowered
     try:
         if lowered.equation is not None:
+            slip = unused_index(one.place, one.domain)
+            if slip is not None:
+                binder.note(slip)
+                return
             bound = binder.bind((*lowered.named, *lowered.conditions_name), one.place, one.domain)
             _put_equations(gathered, one, lowered.equation, bound, binder)
             _put_hints(gathered.hints[0], lowered.unit_hints, bound)

@@ -10,7 +10,7 @@ from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 
 from eqsheet.diagnostics.diagnostic import Diagnostic, Label, error
-from eqsheet.model.families import FamilyReference, Path
+from eqsheet.model.families import FamilyReference, Path, makes_members
 from eqsheet.model.lower_statements import known_name
 from eqsheet.model.reserved_names import reserved_name
 from eqsheet.model.spelling import did_you_mean
@@ -46,6 +46,8 @@ class Scope:
     shared : frozenset of str
         Names that mean the same as around the instance.
     around : Scope or None
+    use : Statement or None
+        The line that makes the instance.
     """
 
     path: Path = ()
@@ -54,6 +56,7 @@ class Scope:
     shared: frozenset[str] = frozenset()
     around: Scope | None = None
     heads: tuple[syntax.Statement, ...] = ()
+    use: syntax.Statement | None = None
 
     @property
     def depth(self) -> int:
@@ -129,6 +132,15 @@ def hidden_index(name: str, depth: int) -> str:
 def is_hidden(name: str) -> bool:
     """Whether an index is one that no line can name."""
     return _HIDDEN in name
+
+
+def visible_name(index: str) -> str:
+    """What a hidden index is called where it can be named.
+
+    >>> visible_name("i'0")
+    'i'
+    """
+    return index.partition(_HIDDEN)[0]
 
 
 @dataclass
@@ -225,7 +237,18 @@ def _unfold(
     if slip is not None:
         work.diagnostics.append(slip)
         return
-    instance = _instance_scope(node, scope, heads, template)
+    instance = _instance_scope(statement, node, scope, heads, template)
+    for subscript in instance.nodes[len(scope.nodes) :]:
+        if not makes_members(subscript, _indices_of(heads)):
+            work.diagnostics.append(
+                error(
+                    "subscript-form",
+                    f"`{statement.line.text[subscript.start : subscript.end]}` makes no instances",
+                    Label(statement.span(subscript.start, subscript.end)),
+                    help="in the brackets of an instance stand indices by themselves, members and whole numbers",
+                )
+            )
+            return
     if work.instances.setdefault(instance.text, statement) is not statement:
         work.diagnostics.append(
             error(
@@ -304,7 +327,11 @@ def _name_slip(statement: syntax.Statement, name: syntax.Reference) -> Diagnosti
 
 
 def _instance_scope(
-    node: syntax.Use, scope: Scope, heads: tuple[syntax.Statement, ...], template: syntax.Statement
+    statement: syntax.Statement,
+    node: syntax.Use,
+    scope: Scope,
+    heads: tuple[syntax.Statement, ...],
+    template: syntax.Statement,
 ) -> Scope:
     """The scope of an instance as seen by the lines of its group, which may name the indices around it."""
     chain: list[syntax.Reference] = []
@@ -324,7 +351,12 @@ def _instance_scope(
         if isinstance(line.node, syntax.Shared) and not line.off
         for reference in line.node.names
     )
-    return Scope(tuple(path), tuple(written), tuple(nodes), shared, scope, heads)
+    return Scope(tuple(path), tuple(written), tuple(nodes), shared, scope, heads, statement)
+
+
+def _indices_of(heads: Iterable[syntax.Statement]) -> list[str]:
+    """The indices of some `for` lines."""
+    return [c.index for h in heads if isinstance(h.node, syntax.Family) for c in h.node.clauses]
 
 
 def _closed(instance: Scope) -> Scope:
@@ -332,8 +364,7 @@ def _closed(instance: Scope) -> Scope:
     if not instance.nodes or instance.around is None:
         return instance
     depth = instance.around.depth
-    indices = [c.index for h in instance.heads if isinstance(h.node, syntax.Family) for c in h.node.clauses]
-    names = {index: hidden_index(index, depth) for index in indices}
+    names = {index: hidden_index(index, depth) for index in _indices_of(instance.heads)}
     return replace(instance, nodes=renamed(instance.nodes, names))
 
 
