@@ -9,13 +9,29 @@ from typing import NamedTuple
 from eqsheet.model.branches import literal_values
 from eqsheet.model.evaluate import as_typed, evaluate_with_evidence
 from eqsheet.worksheet.prepare import Prepared
+from eqsheet.worksheet.trust import FEW_DIGITS, FEWEST_SURE, digits_of
+
+
+class Knowns(NamedTuple):
+    """What is known at first.
+
+    Attributes
+    ----------
+    values, errors : tuple of float
+        SI values by quantity number, nan where not known, and how far they may be from what was typed.
+    doubtful : tuple of int
+        Knowns set to expressions that may leave few digits.
+    """
+
+    values: tuple[float, ...]
+    errors: tuple[float, ...]
+    doubtful: tuple[int, ...]
 
 
 class _Last(NamedTuple):
     known_values: Mapping[int, float]
     contested: frozenset[int]
-    values: tuple[float, ...]
-    errors: tuple[float, ...]
+    knowns: Knowns
 
 
 _last: list[_Last] = []
@@ -23,24 +39,26 @@ _last: list[_Last] = []
 _A_NUMBER = 2
 
 
-def known_quantities(prepared: Prepared) -> tuple[tuple[float, ...], tuple[float, ...]]:
-    """SI values by quantity number, nan where not known, and how far they may be from what was typed.
-
-    Those of the last worksheet are kept, since it may well be solved again.
-    """
+def known_quantities(prepared: Prepared) -> Knowns:
+    """What is known at first; that of the last worksheet is kept, since it may well be solved again."""
     if _last:
         last = _last[0]
         if last.known_values is prepared.known_values and last.contested is prepared.contested:
-            return last.values, last.errors
+            return last.knowns
     count = len(prepared.system.names)
     values = [math.nan] * count
     errors = [0.0] * count
+    doubtful = []
     for quantity, value in prepared.known_values.items():
         if quantity not in prepared.contested:
             values[quantity] = value
-            errors[quantity] = _error(prepared, quantity, value)
-    _last[:] = [_Last(prepared.known_values, prepared.contested, tuple(values), tuple(errors))]
-    return _last[0].values, _last[0].errors
+            errors[quantity] = error = _error(prepared, quantity, value)
+            # Zero is what it is worked out as, but for rounding.
+            if value and error > FEWEST_SURE * abs(value) and digits_of(value, error) < FEW_DIGITS:
+                doubtful.append(quantity)
+    knowns = Knowns(tuple(values), tuple(errors), tuple(doubtful))
+    _last[:] = [_Last(prepared.known_values, prepared.contested, knowns)]
+    return knowns
 
 
 def _error(prepared: Prepared, quantity: int, value: float) -> float:

@@ -30,7 +30,7 @@ from eqsheet.worksheet.prepare import Prepared
 from eqsheet.worksheet.shown_units import shown_unit, written_quantity
 from eqsheet.worksheet.solve_block import BlockResult, Known, solve_equations
 from eqsheet.worksheet.structure_messages import conflict_diagnostic
-from eqsheet.worksheet.trust import trust_warnings
+from eqsheet.worksheet.trust import poor_known, trust_warnings
 from eqsheet.worksheet.without_unknowns import EQUAL_TO
 from eqsheet.worksheet.written_values import written
 
@@ -84,7 +84,9 @@ def run_blocks(
     if guesses is None:
         guesses, found = work_out_guesses(system, follow_from_knowns(prepared), prepared.kinds)
         diagnostics += found
-    values, errors = map(list, known_quantities(prepared))
+    knowns = known_quantities(prepared)
+    values, errors = list(knowns.values), list(knowns.errors)
+    diagnostics += [poor_known(prepared, q, values[q], errors[q]) for q in knowns.doubtful]
     formulas = list(prepared.formulas)
     dimensions = prepared.dimensions
     known = Known(values, errors)

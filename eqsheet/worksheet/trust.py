@@ -14,6 +14,7 @@ from eqsheet.worksheet.places import label_of, line_words
 from eqsheet.worksheet.starting_values import TYPICAL
 
 if TYPE_CHECKING:
+    from eqsheet.worksheet.prepare import Prepared
     from eqsheet.worksheet.run import BlockRun
 
 # Below this many digits a result is not good enough for ordinary work, and the run says so.
@@ -84,6 +85,19 @@ def few_digits_warning(
     else:
         said = f"`{name}` from {where} is good to about {digits} digits: {why}"
     return warning("few-digits", said, label_of(system, places[0]), help=_CHECK)
+
+
+def poor_known(prepared: Prepared, quantity: int, value: float, error_bound: float) -> Diagnostic:
+    """A warning that a known set to an expression has few digits."""
+    system = prepared.system
+    place = system.equations[prepared.setters[quantity]].place
+    name, where = system.names[quantity], line_words(system, [place])
+    return warning(
+        "few-digits",
+        f"`{name}` from {where} is good to about {digits_of(value, error_bound)} digits: {_MAGNIFIED}",
+        label_of(system, place),
+        help=_CHECK,
+    )
 
 
 def _double_root(system: EquationSystem, run: BlockRun, places: Sequence[Place]) -> Diagnostic:
