@@ -23,6 +23,10 @@ Step: TypeAlias = tuple[str, int]
 Path: TypeAlias = tuple[Step, ...]
 
 
+# The place of a reference in a definition, which is written out in another line.
+NOWHERE = (0, -1)
+
+
 @dataclass(frozen=True)
 class FamilyReference:
     """A quantity as referred to from a statement, before its subscripts are worked out.

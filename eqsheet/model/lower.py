@@ -15,11 +15,13 @@ from typing import Any, Never
 
 from eqsheet.model.aggregate_parts import JOINED, MANY, Part, in_parts
 from eqsheet.model.exact import exact_value
-from eqsheet.model.families import FamilyReference, with_fixed
+from eqsheet.model.families import NOWHERE, FamilyReference, with_fixed
 from eqsheet.model.indexing import Domain, Indexing, IndexSlip, filtered, grown, holds, index_twice
 from eqsheet.model.interpolant import Interpolant
 from eqsheet.model.literal_kind import kind_of, shortened_number
 from eqsheet.model.lowering_findings import LoweringFindings
+from eqsheet.model.member_arguments import hides, with_members
+from eqsheet.model.operations import ARITHMETIC, COMPARISON, EMPTY
 from eqsheet.model.reserved_names import CODE as RESERVED_CODE
 from eqsheet.model.reserved_names import RESERVED
 from eqsheet.model.scope import NO_INDICES, Context, IndexScope, NameTable, OfInstance, QuantityKey
@@ -267,7 +269,8 @@ class Lowering(LoweringFindings):
             subscripts.extend(own)
         whole = {} if self._calls else self._whole
         decided = {**{name: (value, "") for name, value in whole.items()}, **self._fixed}
-        written, place = tuple(canonical(s, decided) for s in subscripts), (node.start, node.end)
+        written = tuple(canonical(s, decided) for s in subscripts)
+        place = NOWHERE if self._calls else (node.start, node.end)
         nodes, fixed = tuple(subscripts), dict(self._fixed)
         return FamilyReference(tuple(path), written, nodes, fixed, place, whole=whole)
 
@@ -318,7 +321,7 @@ class Lowering(LoweringFindings):
         result = self.value(first)
         for part in operations:
             other = self.value(part.right)
-            result = self.builder.apply(_ARITHMETIC[part.operator], result, other, place=self._place(part))
+            result = self.builder.apply(ARITHMETIC[part.operator], result, other, place=self._place(part))
         return result
 
     def _power(self, node: syntax.Binary) -> int:
@@ -341,7 +344,7 @@ class Lowering(LoweringFindings):
         operands = [self.value(operand) for operand in node.operands]
         links = []
         for operator, a, b in zip(node.operators, operands, operands[1:]):
-            operation, swapped = _COMPARISON[operator]
+            operation, swapped = COMPARISON[operator]
             pair = (b, a) if swapped else (a, b)
             links.append(self.builder.apply(operation, *pair, place=place))
         return self._join("and", links, place)
@@ -419,8 +422,8 @@ class Lowering(LoweringFindings):
         self._fixed, self._running = outer, outside
         if parts:
             return self._join(JOINED[node.function], parts, place)
-        if node.function in _EMPTY:
-            return self.builder.constant(_EMPTY[node.function], place)
+        if node.function in EMPTY:
+            return self.builder.constant(EMPTY[node.function], place)
         return self._refuse(
             "empty-aggregate",
             f"`{node.function}` over no members has no value",
@@ -518,8 +521,15 @@ class Lowering(LoweringFindings):
             )
         if len(node.arguments) != len(definition.parameters):
             self._refuse_count(node, len(definition.parameters))
-        arguments = tuple(self.value(argument) for argument in node.arguments)
-        key = (node.name, arguments)
+        members = {n for n, of in self._free.items() if of} | {n for n, (_, of) in self._fixed.items() if of}
+        meant, needed = with_members(definition, node.arguments, members)
+        if meant is not definition and (hidden := hides(definition, node.arguments)):
+            self._refuse("index-twice", f"`{node.name}` has an index `{hidden}` of its own", node)
+        given = zip(definition.parameters, node.arguments)
+        arguments = {p.name: self.value(argument) for p, argument in given if p.name in needed}
+        key = (node.name, tuple(arguments.values()))
+        if meant is not definition:
+            return self._write_out(node, statement, meant, arguments)
         if key not in self._written_out or definition.valid:
             self._written_out[key] = self._write_out(node, statement, definition, arguments)
         return self._written_out[key]
@@ -529,7 +539,7 @@ class Lowering(LoweringFindings):
         node: syntax.Call,
         statement: syntax.Statement,
         definition: syntax.Definition,
-        arguments: tuple[int, ...],
+        outside: dict[str, int],
     ) -> int:
         if len(self.builder.instructions) > LARGEST_FORMULA:
             self._refuse(
@@ -541,7 +551,6 @@ class Lowering(LoweringFindings):
         self._fixed_place = place
         self.text = statement.line.text
         try:
-            outside = dict(zip((p.name for p in definition.parameters), arguments))
             inside = outside
             if definition.result_unit is not None:
                 inside = {
@@ -549,6 +558,7 @@ class Lowering(LoweringFindings):
                     if p.unit is not None
                     else outside[p.name]
                     for p in definition.parameters
+                    if p.name in outside
                 }
                 self._empirical = node.name
             self._parameters = inside
@@ -576,16 +586,6 @@ class Lowering(LoweringFindings):
         )
 
 
-_EMPTY = {"sum": Fraction(0), "prod": Fraction(1)}
-_ARITHMETIC = {"+": "add", "-": "sub", "*": "mul", "/": "div"}
-# operator -> (operation, operands swapped)
-_COMPARISON = {
-    "<": ("lt", False),
-    "<=": ("le", False),
-    ">": ("lt", True),
-    ">=": ("le", True),
-    "=": ("eq", False),
-}
 _LOWER: dict[type, Callable[[Lowering, Any], int]] = {
     syntax.Number: Lowering._number,
     syntax.Reference: Lowering._reference,
