@@ -34,6 +34,12 @@ def linear_step(problem: Problem, start: Vector, trail: Trail) -> Outcome:
     weights = floored(x, problem)
     trail.note(x, scaled_norm(residual, equation_sizes(problem, x, jacobian)), 0.0, -1)
     factor = factorise(jacobian, problem.magnitude)
+    # From zero, where the right sides stand alone: from anywhere else the step is a difference, whose rounding would
+    # drown the unknowns that are many decades smaller than their start.
+    origin = np.zeros(problem.n)
+    at_origin = problem.residual(origin)
+    if np.isfinite(at_origin).all():
+        x, residual = origin, at_origin
     for _ in range(2):
         x = x - problem.magnitude * factor.solve(residual)
         residual = problem.residual(x)
