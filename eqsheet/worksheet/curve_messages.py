@@ -40,7 +40,10 @@ def outside_curve_diagnostic(
     if found is None:
         return None
     place = Label(system.statements[formula.statement].span(*found.place(formula)))
-    notes = (f"{quoted(wanted)} cannot be found",) if wanted else ()
+    # Where nothing is wanted, as in a limit, the members it is about tell it from its like.
+    members = [name for name in (system.names[q] for q in formula.quantities) if "[" in name]
+    about = (f"this is about {quoted(members)}",) if members else ()
+    notes = (f"{quoted(wanted)} cannot be found",) if wanted else about
     return error("outside-curve", found.message, place, notes=notes, help=HELP)
 
 
