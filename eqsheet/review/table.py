@@ -127,7 +127,9 @@ def _family_origin(group: ManyValues, blocks: Sequence[BlockReport]) -> str:
         lines = sorted({value.line for value in group.origins if value.line is not None})
         if not lines:
             return "given for this run"
-        return f"given, lines {lines[0]} to {lines[-1]}" if lines[0] < lines[-1] else f"given, line {lines[0]}"
+        return (
+            f"given, lines {lines[0]} to {lines[-1]}" if lines[0] < lines[-1] else f"given, line {lines[0]}"
+        )
     numbers = {value.block for value in group.origins if value.block is not None}
     lines = sorted({line for number in numbers for line in blocks[number - 1].lines})
     if len(lines) <= MOST_LINES_NAMED:
