@@ -34,21 +34,24 @@ def agree(got: Any, wanted: Any, size: float) -> bool:
 def test_float_code_gives_the_interpreted_value_or_raises(tape: Tape, at: tuple[float, ...]) -> None:
     evidence = evaluate_with_evidence(tape, at[:QUANTITIES], at[QUANTITIES:])
     broken = first_nonfinite(tape, evidence.values)
+    # Two branches that share an instruction may have it evaluated though neither is taken.
+    anywhere = any(not math.isfinite(value) for value in evidence.values)
     try:
         got = float_function(tape)(*at)
     except DOMAIN_ERRORS:
-        assert broken is not None
+        assert anywhere
         got = None
     safe = safe_function(tape)(*at)
     interpreted = [evidence.values[i] for i in tape.outputs]
-    if broken is None:
+    if not anywhere:
         assert got is not None
+    if broken is None and got is not None:
         assert list(got) == interpreted
     # To the last digit, so that it does not matter which of them ran.
     assert [repr(value) for value in safe] == [repr(value) for value in (got or interpreted)]
     value = value_function(tape)
     for _ in range(14):
-        assert broken is not None or value(*at) == got
+        assert broken is not None or list(value(*at)) == interpreted
 
 
 @given(tapes(), st.lists(values(), min_size=1, max_size=4))
