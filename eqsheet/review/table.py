@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping, Sequence
+from pathlib import Path
 
 from eqsheet.diagnostics.diagnostic import Severity
 from eqsheet.review.columns import in_columns
@@ -127,9 +128,8 @@ def _family_origin(group: ManyValues, blocks: Sequence[BlockReport]) -> str:
         lines = sorted({value.line for value in group.origins if value.line is not None})
         if not lines:
             return "given for this run"
-        return (
-            f"given, lines {lines[0]} to {lines[-1]}" if lines[0] < lines[-1] else f"given, line {lines[0]}"
-        )
+        where = f"lines {lines[0]} to {lines[-1]}" if lines[0] < lines[-1] else f"line {lines[0]}"
+        return f"given, {where}{_in_file(group.first)}"
     numbers = {value.block for value in group.origins if value.block is not None}
     lines = sorted({line for number in numbers for line in blocks[number - 1].lines})
     if len(lines) <= MOST_LINES_NAMED:
@@ -147,7 +147,7 @@ def _is_own(value: QuantityValue, blocks: Sequence[BlockReport]) -> bool:
 def origin_words(value: QuantityValue, blocks: Sequence[BlockReport]) -> str:
     """Where a value comes from: the line that sets it or the lines it is solved from, its own one first."""
     if value.block is None:
-        return "given for this run" if value.line is None else f"given, line {value.line}"
+        return "given for this run" if value.line is None else f"given, line {value.line}{_in_file(value)}"
     lines = blocks[value.block - 1].lines
     if not lines:
         return "solved"
@@ -158,6 +158,13 @@ def origin_words(value: QuantityValue, blocks: Sequence[BlockReport]) -> str:
     if value.line is not None and _is_own(value, blocks):
         return f"line {value.line} with {len(lines) - 1} more"
     return f"{len(lines)} lines, {lines[0]} to {lines[-1]}"
+
+
+def _in_file(value: QuantityValue) -> str:
+    """The file that the line of a known stands in, where that is not the worksheet itself."""
+    if value.statement is None or not value.statement.source.attached:
+        return ""
+    return f" of {Path(value.statement.source.name).name}"
 
 
 def limit_lines(limits: Iterable[LimitReport]) -> list[str]:

@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+from pathlib import Path
+
 import eqsheet
-from eqsheet.review.table import solution_lines
+from eqsheet.review.table import origin_words, solution_lines
 
 PAGE = """\
 D = 80 mm                # bore
@@ -47,3 +49,14 @@ def test_many_lines_are_not_listed_but_the_own_one_is_named() -> None:
     assert again.endswith("head again")
     (speed,) = (line for line in lines if line.split()[:1] == ["v"])
     assert "4 lines, 3 to 8" in speed
+
+
+def test_the_line_of_a_table_names_its_file(tmp_path: Path) -> None:
+    (tmp_path / "pipes.csv").write_text("pipe,L in m\nA,3\nB,4\n", encoding="utf-8")
+    sheet = tmp_path / "net.eqsheet"
+    sheet.write_text(
+        'rows pipe from "pipes.csv"\ntotal = sum(L[l] for l in pipe)\nw = 2 m\n', encoding="utf-8"
+    )
+    solution = eqsheet.load(sheet).solve()
+    assert origin_words(solution["L[B]"], solution.blocks) == "given, line 3 of pipes.csv"
+    assert origin_words(solution["w"], solution.blocks) == "given, line 3"
