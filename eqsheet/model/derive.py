@@ -21,6 +21,7 @@ from typing import Any
 
 from eqsheet.model.simplify import ARITY, Simplifier
 from eqsheet.model.tape import Tape
+from eqsheet.units.unit import Unit
 
 MEMORY = 1 << 14
 
@@ -265,12 +266,12 @@ def _logmean(g: _Gradient, v: int, adjoint: int, a: int, b: int) -> None:
         g.give(b, w.mul(adjoint, w.put("logmean_slope", b, a)))
 
 
-def _strip(g: _Gradient, v: int, adjoint: int, a: int, unit: object) -> None:
-    g.give(a, g.writer.div(adjoint, g.writer.constant(_factor(unit))))
+def _strip(g: _Gradient, v: int, adjoint: int, a: int, unit: Unit) -> None:
+    g.give(a, g.writer.div(adjoint, g.writer.constant(unit.factor)))
 
 
-def _attach(g: _Gradient, v: int, adjoint: int, a: int, unit: object) -> None:
-    g.give(a, g.writer.mul(adjoint, g.writer.constant(_factor(unit))))
+def _attach(g: _Gradient, v: int, adjoint: int, a: int, unit: Unit) -> None:
+    g.give(a, g.writer.mul(adjoint, g.writer.constant(unit.factor)))
 
 
 def _interpolated(g: _Gradient, v: int, adjoint: int, *operands: Any) -> None:
@@ -281,11 +282,6 @@ def _interpolated(g: _Gradient, v: int, adjoint: int, *operands: Any) -> None:
     for a, slope in zip(arguments, interpolant.partials):
         if g.depends[a]:
             g.give(a, g.writer.mul(adjoint, g.writer.put(operation, *arguments, slope)))
-
-
-def _factor(unit: object) -> float:
-    factor: float = unit.factor  # type: ignore[attr-defined]  # a Unit, by the contract of a tape
-    return factor
 
 
 _RULES: dict[str, Callable[..., None]] = {

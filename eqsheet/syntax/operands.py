@@ -8,8 +8,7 @@ from eqsheet.syntax.slip import Slip
 
 def is_condition(node: Expression) -> bool:
     """Whether the expression is true or false rather than a number."""
-    kind = type(node)
-    return kind is Comparison or kind is Logical or (kind is Unary and node.operator == "not")  # type: ignore[union-attr]  # kind says so
+    return isinstance(node, Comparison | Logical) or (isinstance(node, Unary) and node.operator == "not")
 
 
 def as_number(node: Expression) -> Expression:

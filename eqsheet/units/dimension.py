@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from fractions import Fraction
 from functools import lru_cache
 
@@ -23,7 +24,7 @@ class Dimension(tuple[tuple[str, Fraction], ...]):
     __slots__ = ()
 
     @staticmethod
-    def of(exponents: dict[str, int | Fraction]) -> Dimension:
+    def of(exponents: Mapping[str, int | Fraction]) -> Dimension:
         """The dimension with the given exponents."""
         return Dimension(
             tuple((base, Fraction(power)) for base, power in sorted(exponents.items()) if power != 0)
@@ -53,7 +54,7 @@ def _combine(a: Dimension, b: Dimension, sign: int) -> Dimension:
     exponents = dict(a)
     for base, power in b:
         exponents[base] = exponents.get(base, Fraction(0)) + sign * power
-    return Dimension.of(exponents)  # type: ignore[arg-type]  # dicts are invariant
+    return Dimension.of(exponents)
 
 
 @lru_cache(maxsize=4096)

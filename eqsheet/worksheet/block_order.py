@@ -48,7 +48,7 @@ def blocks_in_order(prepared: Prepared) -> tuple[Ordered, ...]:
     kept = _kept.get(key)
     if kept is None:
         while len(_kept) >= MOST_KEPT:
-            del _kept[next(iter(_kept))]
+            _kept.pop(next(iter(_kept)), None)
         kept = _kept[key] = _Kept(prepared.structure, prepared.rows, tuple(_ordered(prepared)))
     return kept.blocks
 

@@ -108,6 +108,6 @@ def plan_of(formulas: Sequence[Formula], unknowns: Sequence[int]) -> BlockPlan:
     plan = _kept.get(key)
     if plan is None:
         while len(_kept) >= MOST_KEPT:
-            del _kept[next(iter(_kept))]
+            _kept.pop(next(iter(_kept)), None)
         plan = _kept[key] = BlockPlan(formulas, unknowns)
     return plan

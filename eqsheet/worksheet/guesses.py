@@ -94,7 +94,7 @@ def constant_guesses(system: EquationSystem, kinds: Sequence[str]) -> Guesses | 
             guesses, diagnostics = work_out_guesses(system, {}, kinds)
             found = None if diagnostics else guesses
         while len(_constant) >= MOST_KEPT:
-            del _constant[next(iter(_constant))]
+            _constant.pop(next(iter(_constant)), None)
         kept = _constant[key] = _Constant(system.guesses, kinds, found)
     return kept.guesses
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from concurrent.futures import ThreadPoolExecutor
 
 import pytest
 
@@ -132,3 +133,13 @@ def test_parts_of_a_solution_are_made_once() -> None:
     assert solution["dp"] is solution["dp"]
     assert solution.blocks[0] is solution.blocks[0]
     assert math.isfinite(solution["P"].value)
+
+
+def test_worksheets_solved_in_threads_keep_their_own_values() -> None:
+    values = [f"{k}e8" for k in range(1, 9)]
+    wanted = [outcome(eqsheet.parse(PIPES.format(k_1=value)).solve()) for value in values]
+    sheets = [eqsheet.parse(PIPES.format(k_1=value)) for value in values]
+    with ThreadPoolExecutor(4) as pool:
+        for _ in range(OFTEN):
+            found = list(pool.map(lambda sheet: outcome(sheet.solve()), sheets))
+            assert found == wanted
